@@ -1,0 +1,1 @@
+"""The linter: description, graph, physics, judgements and reports."""

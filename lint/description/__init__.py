@@ -1,0 +1,1 @@
+"""A description: YAML text with places, checked against the schema, as typed and frozen objects."""

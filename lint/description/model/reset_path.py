@@ -1,0 +1,169 @@
+"""What carries a decision to the loads: output stages, reset nets, loads, overrides, neighbours."""
+
+from __future__ import annotations
+
+from typing import ClassVar, Literal
+
+from tidegate.lint.description.model.part import Element, Part
+from tidegate.lint.quantity import (
+    Capacitance,
+    Charge,
+    Current,
+    Duration,
+    GainFactor,
+    Length,
+    Resistance,
+    Voltage,
+)
+
+
+class Hold(Part, frozen=True, kw_only=True):
+    """Passive hold."""
+
+    to: Literal["low", "high"] | None = None
+    through: Literal["resistor", "transistor"] | None = None
+    resistance: Resistance | None = None
+    coupling: Capacitance | None = None
+    note: str | None = None
+
+
+class Transistor(Part, frozen=True, kw_only=True):
+    """Output transistor."""
+
+    family: str | None = None
+    threshold: Voltage | None = None
+    gain: GainFactor | None = None
+
+
+class OutputLine(Part, frozen=True, kw_only=True):
+    """Output line."""
+
+    layer: str | None = None
+    width: Length | None = None
+    length: Length | None = None
+    via: str | None = None
+    vias: int | None = None
+    note: str | None = None
+
+
+class OutputStage(Element, frozen=True, kw_only=True):
+    """Output stage."""
+
+    section: ClassVar[str] = "output_stages"
+
+    driven_by: tuple[str, ...] | None = None
+    combine: Literal["any_asserts", "all_agree"] | None = None
+    domain: str | None = None
+    kind: Literal["gain", "inverter", "buffer", "schmitt", "latch", "level_shifter", "filter", "delay"] | None = None
+    inverting: bool | None = None
+    hold: Hold | Literal["none"] | None = None
+    works_from: Voltage | None = None
+    threshold: Voltage | None = None
+    input_edge: Duration | None = None
+    nmos: Transistor | None = None
+    pmos: Transistor | None = None
+    drive: Resistance | None = None
+    crowbar_peak: Current | None = None
+    output: OutputLine | None = None
+    leakage: Current | None = None
+    load: Capacitance | None = None
+    power_up: Literal["asserts", "releases", "undefined"] | None = None
+    dwell: Duration | None = None
+    edges_per_cycle: float | None = None
+    delay: Duration | None = None
+    gated_by: str | None = None
+    consumes: Current | None = None
+    note: str | None = None
+
+
+class Receiver(Part, frozen=True, kw_only=True):
+    """Receivers of a net."""
+
+    levels: Literal["JESD8C.01", "JESD8-5A.01", "JESD8-7A", "JESD8-11A", "JESD8-12A.01"] | None = None
+    threshold: Voltage | None = None
+    leakage: Current | None = None
+    count: int | None = None
+    note: str | None = None
+
+
+class Reset(Element, frozen=True, kw_only=True):
+    """Reset net."""
+
+    section: ClassVar[str] = "resets"
+
+    driven_by: tuple[str, ...] | None = None
+    combine: Literal["any_asserts", "all_agree"] | None = None
+    active: Literal["low", "high"] | None = None
+    guards: tuple[str, ...] | None = None
+    domain: str | None = None
+    receivers: Receiver | None = None
+    note: str | None = None
+
+
+class Need(Part, frozen=True, kw_only=True):
+    """Need of a supply."""
+
+    rail: str
+    works: Voltage | None = None
+
+
+class Load(Element, frozen=True, kw_only=True):
+    """Guarded load."""
+
+    section: ClassVar[str] = "loads"
+
+    needs: tuple[Need, ...] = ()
+    references: tuple[str, ...] | None = None
+    domain: str | None = None
+    ready: Duration | None = None
+    start: Duration | None = None
+    consumes: Current | None = None
+    leans_on: tuple[str, ...] | None = None
+    gated_by: str | None = None
+    note: str | None = None
+
+
+class Bypass(Element, frozen=True, kw_only=True):
+    """Bypass."""
+
+    section: ClassVar[str] = "bypasses"
+
+    overrides: str | None = None
+    forces: Literal["released", "asserted"] | None = None
+    controlled_by: Literal["pin", "register", "fuse", "test_port"] | None = None
+    domain: str | None = None
+    reset_by: str | None = None
+    leans_on: tuple[str, ...] | None = None
+    default: Literal["inactive", "active"] | None = None
+    hold: Hold | Literal["none"] | None = None
+    locked_outside_test: bool | None = None
+    readable: bool | None = None
+    note: str | None = None
+
+
+class VictimNode(Part, frozen=True, kw_only=True):
+    """Victim node."""
+
+    resistance: Resistance | None = None
+    capacitance: Capacitance | None = None
+
+
+class Neighbour(Element, frozen=True, kw_only=True):
+    """Neighbours."""
+
+    section: ClassVar[str] = "neighbours"
+
+    kind: Literal["capacitance", "shared_reference", "supply_impedance", "shared_return"]
+    aggressor: str
+    victim: str
+    mutual: bool | None = None
+    at: Literal["rail", "input", "reference"] | None = None
+    capacitance: Capacitance | None = None
+    step: Voltage | None = None
+    edge: Duration | None = None
+    node: VictimNode | None = None
+    impedance: Resistance | None = None
+    current_step: Current | None = None
+    reference: str | None = None
+    charge: Charge | None = None
+    note: str | None = None

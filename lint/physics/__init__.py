@@ -1,0 +1,1 @@
+"""Numbers in, numbers out: the formulas behind the judgements, each with its source."""

@@ -1,0 +1,1 @@
+"""What people and machines read: the same judgements in several forms."""

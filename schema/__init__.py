@@ -1,0 +1,1 @@
+"""JSON Schemas of the description and of the JSON report (data only)."""
