@@ -1,1 +1,1 @@
-"""The rules, one file a family."""
+"""The rules that come with the tool, one file a family."""

@@ -1,0 +1,207 @@
+"""Passive hold: the level a resistor leaves on an output that nothing drives, and the right resistor."""
+
+from __future__ import annotations
+
+import math
+
+from tidegate.lint.physics.coupling import bump_peak_v
+from tidegate.lint.physics.domain import DomainError, require_not_negative, require_positive
+
+
+def leakage_level_v(*, leakage_a: float, hold_ohm: float) -> float:
+    """Level that leakage makes on a held node.
+
+    Formula: v = I R
+    Symbols:
+        leakage_a  I  A    leakage into the node (magnitude), >= 0
+        hold_ohm   R  ohm  hold resistance, > 0
+    Returns: v, in V, away from the rail that R holds to.
+    Valid: leakage that does not depend on the level.
+    Source: Ohm's law.
+    Raises: DomainError: if I is negative or R is not > 0.
+    """
+    require_not_negative(leakage_a=leakage_a)
+    require_positive(hold_ohm=hold_ohm)
+    return leakage_a * hold_ohm
+
+
+def ramp_level_v(
+    *, hold_ohm: float, coupling_c_f: float, total_c_f: float, slope_v_per_s: float, ramp_s: float
+) -> float:
+    """Level that a supply ramp couples onto a held node, at the end of the ramp.
+
+    Formula: v = R Cc s (1 - exp(-t / tau)), tau = R C
+    Symbols:
+        hold_ohm       R   ohm  hold resistance, > 0
+        coupling_c_f   Cc  F    capacitance between the node and the ramping supply, >= 0
+        total_c_f      C   F    all capacitance of the node, Cc included, >= Cc
+        slope_v_per_s  s   V/s  slope of the ramp (magnitude), >= 0
+        ramp_s         t   s    duration of the ramp, >= 0
+    Returns: v, in V, away from the rail that R holds to; before the end of the ramp, and after, it is lower.
+    Valid: linear R and C; constant slope; node at rest before.
+    Source: solution of C dv/dt = Cc s - v/R, v(0) = 0, at t; the node of coupling.bump_peak_v with an edge of
+        height s t and duration t.
+    Raises: DomainError: if R is not > 0, C < Cc, or another symbol is negative.
+    """
+    require_positive(hold_ohm=hold_ohm)
+    _require_ramp(coupling_c_f=coupling_c_f, total_c_f=total_c_f, slope_v_per_s=slope_v_per_s, ramp_s=ramp_s)
+    return bump_peak_v(
+        step_v=slope_v_per_s * ramp_s,
+        edge_s=ramp_s,
+        r_ohm=hold_ohm,
+        coupling_c_f=coupling_c_f,
+        ground_c_f=total_c_f - coupling_c_f,
+    )
+
+
+def undriven_level_v(
+    *,
+    leakage_a: float,
+    hold_ohm: float,
+    coupling_c_f: float,
+    total_c_f: float,
+    slope_v_per_s: float,
+    ramp_s: float,
+) -> float:
+    """Highest level of a held, undriven node while its supply ramps.
+
+    Formula: v = I R + R Cc s (1 - exp(-t / tau)), tau = R C
+    Symbols:
+        leakage_a      I   A    leakage into the node (magnitude), >= 0
+        hold_ohm       R   ohm  hold resistance, > 0
+        coupling_c_f   Cc  F    capacitance between the node and the ramping supply, >= 0
+        total_c_f      C   F    all capacitance of the node, Cc included, >= Cc
+        slope_v_per_s  s   V/s  slope of the ramp (magnitude), >= 0
+        ramp_s         t   s    duration of the ramp, >= 0
+    Returns: v, in V, away from the rail that R holds to.
+    Valid: linear R and C, so the two levels add; leakage flows with its full value from before the ramp.
+    Source: sum of leakage_level_v and ramp_level_v (superposition).
+    Raises: DomainError: if R is not > 0, C < Cc, or another symbol is negative.
+    """
+    return leakage_level_v(leakage_a=leakage_a, hold_ohm=hold_ohm) + ramp_level_v(
+        hold_ohm=hold_ohm,
+        coupling_c_f=coupling_c_f,
+        total_c_f=total_c_f,
+        slope_v_per_s=slope_v_per_s,
+        ramp_s=ramp_s,
+    )
+
+
+def largest_hold_ohm(
+    *,
+    limit_v: float,
+    leakage_a: float,
+    coupling_c_f: float,
+    total_c_f: float,
+    slope_v_per_s: float,
+    ramp_s: float,
+) -> float:
+    """Largest hold resistance whose undriven level stays at or below a limit.
+
+    Formula: the R at which I R + R Cc s (1 - exp(-t / (R C))) = L; infinite where every R stays at or below L
+    Symbols:
+        limit_v        L   V    highest level allowed, > 0
+        leakage_a      I   A    leakage into the node (magnitude), >= 0
+        coupling_c_f   Cc  F    capacitance between the node and the ramping supply, >= 0
+        total_c_f      C   F    all capacitance of the node, Cc included, >= Cc
+        slope_v_per_s  s   V/s  slope of the ramp (magnitude), >= 0
+        ramp_s         t   s    duration of the ramp, >= 0
+    Returns: R, in ohm, to a relative 1e-12; math.inf where any R does.
+    Valid: as undriven_level_v.
+    Source: undriven_level_v set equal to L. There is at most one solution: with x = t/(R C) the coupled part
+        is (Cc/C) s t (1 - exp(-x))/x, which falls as x grows, so both parts grow with R. The level is never
+        above R (I + Cc s), which gives the lower end of the bracket; doubling finds the upper one.
+    Raises: DomainError: if L is not > 0, C < Cc, or another symbol is negative.
+    """
+    require_positive(limit_v=limit_v)
+    require_not_negative(leakage_a=leakage_a)
+    _require_ramp(coupling_c_f=coupling_c_f, total_c_f=total_c_f, slope_v_per_s=slope_v_per_s, ramp_s=ramp_s)
+
+    def holds(hold_ohm: float) -> bool:
+        return limit_v >= undriven_level_v(
+            leakage_a=leakage_a,
+            hold_ohm=hold_ohm,
+            coupling_c_f=coupling_c_f,
+            total_c_f=total_c_f,
+            slope_v_per_s=slope_v_per_s,
+            ramp_s=ramp_s,
+        )
+
+    share = coupling_c_f / total_c_f if coupling_c_f > 0.0 else 0.0
+    if leakage_a == 0.0 and share * slope_v_per_s * ramp_s <= limit_v:
+        return math.inf
+    low_ohm = limit_v / (leakage_a + coupling_c_f * slope_v_per_s)
+    high_ohm = 2.0 * low_ohm
+    while math.isfinite(high_ohm) and holds(high_ohm):
+        low_ohm, high_ohm = high_ohm, 2.0 * high_ohm
+    if math.isinf(high_ohm):
+        return math.inf
+    while high_ohm - low_ohm > 1e-12 * high_ohm:
+        middle_ohm = 0.5 * (low_ohm + high_ohm)
+        if holds(middle_ohm):
+            low_ohm = middle_ohm
+        else:
+            high_ohm = middle_ohm
+    return low_ohm
+
+
+def driven_level_v(*, supply_v: float, hold_ohm: float, drive_ohm: float) -> float:
+    """Level that a stage reaches when it drives its output against the hold resistor.
+
+    Formula: v = V R / (R + Rd)
+    Symbols:
+        supply_v   V   V    supply of the driving stage, >= 0
+        hold_ohm   R   ohm  hold resistance, > 0
+        drive_ohm  Rd  ohm  resistance of the stage when it drives, >= 0
+    Returns: v, in V, away from the rail that R holds to.
+    Valid: the stage behaves as a resistance up to this level; no other load.
+    Source: voltage divider.
+    Raises: DomainError: if R is not > 0, or V or Rd is negative.
+    """
+    require_positive(hold_ohm=hold_ohm)
+    require_not_negative(supply_v=supply_v, drive_ohm=drive_ohm)
+    return supply_v * (hold_ohm / (hold_ohm + drive_ohm))
+
+
+def smallest_hold_for_driver_ohm(*, supply_v: float, drive_ohm: float, needed_v: float) -> float:
+    """Smallest hold resistance against which a stage still reaches the level it must.
+
+    Formula: R = Rd Vn / (V - Vn)
+    Symbols:
+        supply_v   V   V    supply of the driving stage, > 0
+        drive_ohm  Rd  ohm  resistance of the stage when it drives, >= 0
+        needed_v   Vn  V    level to be reached, 0 <= Vn < V
+    Returns: R, in ohm.
+    Valid: as driven_level_v.
+    Source: driven_level_v set equal to Vn and solved for R.
+    Raises: DomainError: if V is not > 0, Rd is negative, or Vn is not in [0, V).
+    """
+    require_positive(supply_v=supply_v)
+    require_not_negative(drive_ohm=drive_ohm, needed_v=needed_v)
+    if needed_v >= supply_v:
+        raise DomainError(f"needed_v must be below supply_v ({supply_v!r}) (found {needed_v!r})")
+    return drive_ohm * (needed_v / (supply_v - needed_v))
+
+
+def hold_current_a(*, supply_v: float, hold_ohm: float) -> float:
+    """Current that a hold resistor takes while its node is driven to the other rail.
+
+    Formula: I = V / R
+    Symbols:
+        supply_v  V  V    voltage across the resistor, >= 0
+        hold_ohm  R  ohm  hold resistance, > 0
+    Returns: I, in A.
+    Valid: linear R; the largest case, a drive resistance of 0.
+    Source: Ohm's law.
+    Raises: DomainError: if V is negative or R is not > 0.
+    """
+    require_not_negative(supply_v=supply_v)
+    require_positive(hold_ohm=hold_ohm)
+    return supply_v / hold_ohm
+
+
+def _require_ramp(*, coupling_c_f: float, total_c_f: float, slope_v_per_s: float, ramp_s: float) -> None:
+    """Refuse a ramp or a node that cannot be."""
+    require_not_negative(coupling_c_f=coupling_c_f, total_c_f=total_c_f, slope_v_per_s=slope_v_per_s, ramp_s=ramp_s)
+    if total_c_f < coupling_c_f:
+        raise DomainError(f"total_c_f must be at least coupling_c_f ({coupling_c_f!r}) (found {total_c_f!r})")

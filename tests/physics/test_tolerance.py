@@ -1,0 +1,445 @@
+"""Combination of errors: worked examples of the GUM, its Supplement 1 and NIST, and published circuit budgets."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Sequence
+from typing import NamedTuple
+
+import numpy as np
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+from scipy import stats
+from tidegate.lint.physics.domain import DomainError
+from tidegate.lint.physics.tolerance import (
+    ARCSINE_DIVISOR,
+    RECTANGULAR_DIVISOR,
+    TRIANGULAR_DIVISOR,
+    Contributor,
+    Kind,
+    combined_uncertainty,
+    effective_degrees_of_freedom,
+    refer_offset_to_rail_v,
+    refer_relative_to_level_v,
+    root_sum_square_v,
+    standard_uncertainty_v,
+    worst_case_v,
+)
+from uncertainties import ufloat
+
+INF = math.inf
+
+
+def sigma(size_v: float, *, name: str = "sigma", coverage: float = 1.0) -> Contributor:
+    return Contributor(name, size_v, Kind.SIGMA, coverage=coverage, rectangular=False, tracks=True)
+
+
+def bound(size_v: float, *, name: str = "bound", rectangular: bool = False) -> Contributor:
+    return Contributor(name, size_v, Kind.BOUND, coverage=None, rectangular=rectangular, tracks=True)
+
+
+# --- the law of propagation against worked examples ------------------------------------------------------------
+
+
+class Budget(NamedTuple):
+    """A published uncertainty budget: inputs, and the results as printed, with half of the last digit unless noted."""
+
+    source: str
+    c: Sequence[float]
+    u: Sequence[float]
+    nu: Sequence[float]
+    combined: float
+    combined_within: float
+    effective: float
+    effective_within: float
+
+
+BUDGETS = (
+    Budget(
+        # JCGM 100:2008 H.1, end gauge, in nm (second-hand): printed 32, from 31.7; nu_eff printed 16.7, from rounded
+        # contributions (16.75 from the inputs).
+        "gum-h1-end-gauge",
+        c=(1.0, 1.0, 0.0, 0.0, 0.1 * 50_000_623.0, -50_000_623.0 * 11.5e-6),
+        u=(25.0, 9.7, 1.2e-6, 0.41, 0.58e-6, 0.029),
+        nu=(18.0, 25.6, INF, INF, 50.0, 2.0),
+        combined=31.7,
+        combined_within=0.05,
+        effective=16.7,
+        effective_within=0.06,
+    ),
+    Budget(
+        # JCGM 100:2008 H.1, the difference d, in nm (second-hand). The document takes the fourth power of the rounded
+        # 9.7, which alone turns 25.4 degrees of freedom into 25.6.
+        "gum-h1-difference",
+        c=(1.0, 1.0, 1.0),
+        u=(5.8, 3.9, 6.7),
+        nu=(24.0, 5.0, 8.0),
+        combined=9.7,
+        combined_within=0.05,
+        effective=25.6,
+        effective_within=0.2,
+    ),
+    Budget(
+        # JCGM 100:2008 H.1, temperature, in degC (second-hand): 0.2, and a swing of half-width 0.5 caught at random.
+        "gum-h1-temperature",
+        c=(1.0, 1.0),
+        u=(0.2, 0.5 / ARCSINE_DIVISOR),
+        nu=(INF, INF),
+        combined=0.41,
+        combined_within=0.005,
+        effective=INF,
+        effective_within=0.0,
+    ),
+    Budget(
+        # Welch-Satterthwaite example (second-hand): 0.57 with 9 degrees of freedom, 0.25 exact.
+        "welch-satterthwaite",
+        c=(1.0, 1.0),
+        u=(0.57, 0.25),
+        nu=(9.0, INF),
+        combined=math.hypot(0.57, 0.25),
+        combined_within=1e-12,
+        effective=12.80,
+        effective_within=0.005,
+    ),
+    Budget(
+        # NIST Technical Note 1900, example E11, attenuator, in dB (second-hand); only the first has few degrees of
+        # freedom, and it hardly counts.
+        "nist-tn1900-e11",
+        c=(1.0,) * 9,
+        u=(0.0091, 0.0025, 0.0003, 0.002, 0.002, 0.02, 0.0014, 0.0003, 0.0021),
+        nu=(INF,) * 9,
+        combined=0.0224,
+        combined_within=0.00005,
+        effective=INF,
+        effective_within=0.0,
+    ),
+)
+
+
+@pytest.mark.parametrize("budget", BUDGETS, ids=[row.source for row in BUDGETS])
+def test_published_budget(budget: Budget) -> None:
+    found = combined_uncertainty(sensitivities=budget.c, uncertainties=budget.u, correlations=None)
+    assert found == pytest.approx(budget.combined, abs=budget.combined_within)
+
+    contributions = [c * u for c, u in zip(budget.c, budget.u, strict=True)]
+    nu = effective_degrees_of_freedom(contributions=contributions, degrees_of_freedom=budget.nu)
+    assert nu == pytest.approx(budget.effective, abs=budget.effective_within)
+
+
+def test_expanded_uncertainty_of_gum_h1() -> None:
+    # JCGM 100:2008 H.1 (second-hand): U99 = t(16) u_c = 2.92 * 32 nm = 93 nm.
+    u = combined_uncertainty(
+        sensitivities=(1.0, 1.0, 5.0000623e6, -575.0071645),
+        uncertainties=(25.0, 9.7, 0.58e-6, 0.029),
+        correlations=None,
+    )
+    k99 = float(stats.t.ppf(0.995, 16))
+    assert k99 == pytest.approx(2.92, abs=0.005)
+    assert k99 * round(u) == pytest.approx(93.0, abs=0.5)
+
+
+# JCGM 100:2008 H.2 (second-hand): five simultaneous readings of V in V, I in A, phase in rad.
+H2_READINGS = np.array(
+    [
+        (5.007, 19.663e-3, 1.0456),
+        (4.994, 19.639e-3, 1.0438),
+        (5.005, 19.640e-3, 1.0468),
+        (4.990, 19.685e-3, 1.0428),
+        (4.999, 19.678e-3, 1.0433),
+    ]
+)
+H2_MEANS = H2_READINGS.mean(axis=0)
+H2_UNCERTAINTIES = tuple(H2_READINGS.std(axis=0, ddof=1) / math.sqrt(len(H2_READINGS)))
+H2_CORRELATIONS = np.corrcoef(H2_READINGS.T).tolist()
+
+
+def h2_sensitivities() -> dict[str, np.ndarray]:
+    v, i, phi = H2_MEANS
+    z = v / i
+    return {
+        "R": np.array([math.cos(phi) / i, -z * math.cos(phi) / i, -z * math.sin(phi)]),
+        "X": np.array([math.sin(phi) / i, -z * math.sin(phi) / i, z * math.cos(phi)]),
+        "Z": np.array([1.0 / i, -z / i, 0.0]),
+    }
+
+
+def h2_uncertainty(c: np.ndarray, correlations: list[list[float]] | None) -> float:
+    return combined_uncertainty(sensitivities=c.tolist(), uncertainties=H2_UNCERTAINTIES, correlations=correlations)
+
+
+@pytest.mark.parametrize(
+    ("name", "expected_ohm", "independent_ohm"),
+    [("R", 0.071, 0.195), ("X", 0.295, 0.201), ("Z", 0.236, 0.204)],
+    ids=["gum-h2-R", "gum-h2-X", "gum-h2-Z"],
+)
+def test_correlated_inputs_of_gum_h2(name: str, expected_ohm: float, independent_ohm: float) -> None:
+    c = h2_sensitivities()[name]
+    # The document rounds its correlations before use (X: 0.2956 without), hence one unit of the last digit.
+    assert h2_uncertainty(c, H2_CORRELATIONS) == pytest.approx(expected_ohm, abs=0.001)
+    # What forgetting the correlation gives; far outside the tolerance above.
+    assert h2_uncertainty(c, None) == pytest.approx(independent_ohm, abs=0.001)
+
+
+@pytest.mark.parametrize(
+    ("first", "second", "expected"),
+    [("R", "X", -0.588), ("R", "Z", -0.485), ("X", "Z", 0.993)],
+    ids=["gum-h2-r(R,X)", "gum-h2-r(R,Z)", "gum-h2-r(X,Z)"],
+)
+def test_correlated_results_of_gum_h2(first: str, second: str, expected: float) -> None:
+    c = h2_sensitivities()
+    u_sum, u1, u2 = (h2_uncertainty(x, H2_CORRELATIONS) for x in (c[first] + c[second], c[first], c[second]))
+    assert (u_sum**2 - u1**2 - u2**2) / (2.0 * u1 * u2) == pytest.approx(expected, abs=0.0015)
+
+
+# NIST Technical Note 1900, linear law (second-hand). E3: viscometer, u 1.027; E13: expansion coefficient, 1/degC.
+def viscosity(m: Sequence[float]) -> float:
+    return m[0] * m[1] * (m[2] - m[3]) / (m[4] * (m[2] - m[5]))
+
+
+def expansion(m: Sequence[float]) -> float:
+    return (m[2] - m[0]) / (m[0] * (m[3] - m[1]))
+
+
+class Measurement(NamedTuple):
+    source: str
+    model: Callable[[Sequence[float]], float]
+    values: Sequence[float]
+    uncertainties: Sequence[float]
+    result: float
+    uncertainty: float
+    within: float
+
+
+MEASUREMENTS = (
+    Measurement(
+        "nist-tn1900-e3",
+        viscosity,
+        values=(4.63, 61.0, 2217.0, 1180.0, 36.6, 810.0),
+        uncertainties=(0.0463, 6.1, 0.5, 0.5, 5.49, 0.5),
+        result=5.687,
+        uncertainty=1.03,
+        within=0.005,
+    ),
+    Measurement(
+        "nist-tn1900-e13",
+        expansion,
+        values=(1.4999, 288.15, 1.5021, 373.10),
+        uncertainties=(1e-4, 0.02, 2e-4, 0.05),
+        result=1.7266e-5,
+        uncertainty=1.76e-6,
+        within=0.005e-6,
+    ),
+)
+
+
+@pytest.mark.parametrize("case", MEASUREMENTS, ids=[row.source for row in MEASUREMENTS])
+def test_linear_law_of_nist_examples(case: Measurement) -> None:
+    inputs = [ufloat(x, u) for x, u in zip(case.values, case.uncertainties, strict=True)]
+    reference = case.model(inputs)  # derivatives, and the law itself, from the uncertainties library
+    sensitivities = [reference.derivatives[x] for x in inputs]
+    u = combined_uncertainty(sensitivities=sensitivities, uncertainties=case.uncertainties, correlations=None)
+    assert reference.nominal_value == pytest.approx(case.result, rel=1e-4)
+    assert u == pytest.approx(case.uncertainty, abs=case.within)
+    assert u == pytest.approx(reference.std_dev, rel=1e-9)
+
+
+def test_divider_trip_level() -> None:
+    # Derived: V = Vref (1 + R1/R2), 1.2 V, 200k, 100k, each +-1 %; the same from the uncertainties library below.
+    level_v = 3.6
+    shares = (0.01, 0.01 * 2.0 / 3.0, 0.01 * 2.0 / 3.0)
+    contributors = [bound(refer_relative_to_level_v(share=p, level_v=level_v)) for p in shares]
+    assert worst_case_v(contributors, coverage=3.0) / level_v == pytest.approx(0.02333333, abs=5e-9)
+    assert root_sum_square_v(contributors, coverage=3.0) / level_v == pytest.approx(0.013744, abs=5e-7)
+
+    reference = ufloat(1.2, 0.012) * (1 + ufloat(200e3, 2e3) / ufloat(100e3, 1e3))
+    # Bounds with no coverage of their own count whole, at whatever coverage they enter.
+    assert root_sum_square_v(contributors, coverage=2.0) == pytest.approx(reference.std_dev, rel=1e-9)
+
+
+# --- published circuit budget ----------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize(
+    ("op_amp_mv", "total_mv", "tolerance_mv"),
+    [(18.0, 19.0, 0.5), (6.6, 9.0, 0.5)],
+    ids=["pelgrom-1988-as-measured", "pelgrom-1988-better-op-amp"],
+)
+def test_band_gap_output_budget(op_amp_mv: float, total_mv: float, tolerance_mv: float) -> None:
+    # M. Pelgrom et al., ESSCIRC 1988 (digest, second-hand): base-emitter spread 6 mV, its difference 0.14 mV times 11,
+    # ratio 0.3 mV, resistor 0.7 mV, op amp; 17 samples measured 19 mV, target with the better op amp 9 mV.
+    contributors = [sigma(1e-3 * size) for size in (6.0, 1.5, 0.3, 0.7, op_amp_mv)]
+    assert 1e3 * root_sum_square_v(contributors, coverage=1.0) == pytest.approx(total_mv, abs=tolerance_mv)
+    assert 1e3 * worst_case_v(contributors, coverage=1.0) == pytest.approx(8.5 + op_amp_mv, rel=1e-12)
+
+
+def test_uncertainty_of_gum_supplement_1_additive_model() -> None:
+    # JCGM 101:2008, 9.2.2 and 9.2.3 (second-hand): four inputs of unit standard deviation, normal or rectangular:
+    # u = 2.0; 9.2.4 (value from memory): one of them 10: u = 10.1.
+    rectangular = [bound(RECTANGULAR_DIVISOR, rectangular=True)] * 4
+    assert root_sum_square_v([sigma(1.0)] * 4, coverage=1.0) == pytest.approx(2.0, rel=1e-12)
+    assert root_sum_square_v(rectangular, coverage=1.0) == pytest.approx(2.0, rel=1e-12)
+    wide = [*rectangular[:3], bound(10.0 * RECTANGULAR_DIVISOR, rectangular=True)]
+    assert root_sum_square_v(wide, coverage=1.0) == pytest.approx(10.1, abs=0.05)
+    assert root_sum_square_v(wide, coverage=1.959964) == pytest.approx(19.9, abs=0.05)
+
+
+@pytest.mark.parametrize(
+    ("divisor", "distribution"),
+    [
+        (RECTANGULAR_DIVISOR, stats.uniform(-1.0, 2.0)),
+        (TRIANGULAR_DIVISOR, stats.triang(0.5, loc=-1.0, scale=2.0)),
+        (ARCSINE_DIVISOR, stats.arcsine(loc=-1.0, scale=2.0)),
+    ],
+    ids=["scipy-uniform", "scipy-triang", "scipy-arcsine"],
+)
+def test_divisor_is_half_width_over_standard_deviation(divisor: float, distribution: object) -> None:
+    assert 1.0 / divisor == pytest.approx(float(distribution.std()), rel=1e-9)  # type: ignore[attr-defined]
+
+
+# --- how a contributor counts ----------------------------------------------------------------------------------
+
+
+def test_a_contributor_counts_as_it_says() -> None:
+    three_sigma = sigma(9e-3, coverage=3.0)
+    assert standard_uncertainty_v(three_sigma, coverage=2.0) == pytest.approx(3e-3, rel=1e-15)
+    assert worst_case_v([three_sigma], coverage=2.0) == pytest.approx(6e-3, rel=1e-15)
+    assert standard_uncertainty_v(bound(9e-3), coverage=2.0) == pytest.approx(4.5e-3, rel=1e-15)
+    assert worst_case_v([bound(9e-3)], coverage=2.0) == 9e-3
+    stated = Contributor("stated", 9e-3, Kind.BOUND, coverage=6.0, rectangular=False, tracks=False)
+    assert root_sum_square_v([stated], coverage=2.0) == pytest.approx(3e-3, rel=1e-15)
+
+
+def test_nothing_gives_no_error() -> None:
+    assert worst_case_v([], coverage=3.0) == 0.0
+    assert root_sum_square_v([], coverage=3.0) == 0.0
+
+
+def test_offset_behind_a_divider_grows_at_the_rail() -> None:
+    # 5 mV at an input that sees a third of the rail: 15 mV.
+    assert refer_offset_to_rail_v(offset_v=5e-3, divider_ratio=1.0 / 3.0) == pytest.approx(15e-3, rel=1e-12)
+    assert refer_offset_to_rail_v(offset_v=5e-3, divider_ratio=1.0) == 5e-3
+
+
+sizes = st.lists(st.floats(0.0, 1.0), min_size=1, max_size=6)
+
+
+@settings(max_examples=50, deadline=None)
+@given(bounds=sizes, sigmas=sizes, k=st.floats(0.5, 6.0))
+def test_root_sum_square_never_exceeds_worst_case(bounds: list[float], sigmas: list[float], k: float) -> None:
+    contributors = [bound(b) for b in bounds] + [sigma(s) for s in sigmas]
+    worst = worst_case_v(contributors, coverage=k)
+    assert root_sum_square_v(contributors, coverage=k) <= worst * (1.0 + 1e-12)
+    assert worst_case_v([*contributors, bound(0.1)], coverage=k) == pytest.approx(worst + 0.1)
+
+
+@settings(max_examples=50, deadline=None)
+@given(u=st.lists(st.floats(0.01, 10.0), min_size=2, max_size=5), r=st.floats(-1.0, 1.0))
+def test_correlated_law_against_a_matrix_product(u: list[float], r: float) -> None:
+    size = len(u)
+    # Correlation of +-r between the first two only.
+    matrix = np.eye(size)
+    matrix[0, 1] = matrix[1, 0] = r
+    covariance = np.outer(u, u) * matrix
+    found = combined_uncertainty(sensitivities=[1.0] * size, uncertainties=u, correlations=matrix.tolist())
+    assert found**2 == pytest.approx(float(covariance.sum()), abs=1e-10 * sum(x * x for x in u))
+
+
+@settings(max_examples=50, deadline=None)
+@given(st.lists(st.tuples(st.floats(0.01, 1.0), st.integers(1, 50)), min_size=1, max_size=6))
+def test_effective_degrees_lie_between_the_least_and_the_sum(rows: list[tuple[float, int]]) -> None:
+    nu = [float(n) for _, n in rows]
+    found = effective_degrees_of_freedom(contributions=[u for u, _ in rows], degrees_of_freedom=nu)
+    assert min(nu) * (1.0 - 1e-9) <= found <= sum(nu) * (1.0 + 1e-9)
+
+
+# --- refusals --------------------------------------------------------------------------------------------------
+
+REFUSALS = (
+    (lambda: bound(-1e-3), "at_rail_v must be at least 0 (found -0.001)"),
+    (lambda: bound(math.nan), "at_rail_v must be at least 0 (found nan)"),
+    (lambda: sigma(1.0, coverage=0.0), "coverage must be greater than 0 (found 0.0)"),
+    (
+        lambda: Contributor("x", 1.0, Kind.SIGMA, coverage=None, rectangular=False, tracks=True),
+        "coverage of a sigma must be given (found None)",
+    ),
+    (lambda: worst_case_v([], coverage=0.0), "coverage must be greater than 0 (found 0.0)"),
+    (lambda: root_sum_square_v([], coverage=-1.0), "coverage must be greater than 0 (found -1.0)"),
+    (lambda: standard_uncertainty_v(bound(1.0), coverage=0.0), "coverage must be greater than 0 (found 0.0)"),
+    (
+        lambda: refer_offset_to_rail_v(offset_v=-1.0, divider_ratio=0.5),
+        "offset_v must be at least 0 (found -1.0)",
+    ),
+    (
+        lambda: refer_offset_to_rail_v(offset_v=1.0, divider_ratio=0.0),
+        "divider_ratio must be greater than 0 (found 0.0)",
+    ),
+    (
+        lambda: refer_offset_to_rail_v(offset_v=1.0, divider_ratio=1.5),
+        "divider_ratio must lie in 0.0 to 1.0 (found 1.5)",
+    ),
+    (lambda: refer_relative_to_level_v(share=-0.1, level_v=1.0), "share must be at least 0 (found -0.1)"),
+    (lambda: refer_relative_to_level_v(share=0.1, level_v=-1.0), "level_v must be at least 0 (found -1.0)"),
+    (
+        lambda: combined_uncertainty(sensitivities=(1.0,), uncertainties=(1.0, 1.0), correlations=None),
+        "sensitivities must be as many as uncertainties, 2 (found 1)",
+    ),
+    (
+        lambda: combined_uncertainty(sensitivities=(math.inf,), uncertainties=(1.0,), correlations=None),
+        "sensitivities must be a finite number (found inf)",
+    ),
+    (
+        lambda: combined_uncertainty(sensitivities=(1.0,), uncertainties=(-1.0,), correlations=None),
+        "uncertainties must be at least 0 (found -1.0)",
+    ),
+    (
+        lambda: combined_uncertainty(sensitivities=(1.0, 1.0), uncertainties=(1.0, 1.0), correlations=[[1.0]]),
+        "correlations must be 2 rows of 2",
+    ),
+    (
+        lambda: combined_uncertainty(sensitivities=(1.0,), uncertainties=(1.0,), correlations=[[0.5]]),
+        "correlations must be 1 on the diagonal (found 0.5)",
+    ),
+    (
+        lambda: combined_uncertainty(
+            sensitivities=(1.0, 1.0), uncertainties=(1.0, 1.0), correlations=[[1.0, 2.0], [2.0, 1.0]]
+        ),
+        "correlations must lie in -1.0 to 1.0 (found 2.0)",
+    ),
+    (
+        lambda: combined_uncertainty(
+            sensitivities=(1.0, 1.0), uncertainties=(1.0, 1.0), correlations=[[1.0, 0.5], [0.4, 1.0]]
+        ),
+        "correlations must be symmetric (found 0.5 against 0.4)",
+    ),
+    (
+        lambda: effective_degrees_of_freedom(contributions=(1.0,), degrees_of_freedom=(1.0, 2.0)),
+        "degrees_of_freedom must be as many as contributions, 1 (found 2)",
+    ),
+    (
+        lambda: effective_degrees_of_freedom(contributions=(1.0,), degrees_of_freedom=(0.0,)),
+        "degrees_of_freedom must be greater than 0 (found 0.0)",
+    ),
+    (
+        lambda: effective_degrees_of_freedom(contributions=(math.nan,), degrees_of_freedom=(1.0,)),
+        "contributions must be a finite number (found nan)",
+    ),
+    (
+        lambda: effective_degrees_of_freedom(contributions=(0.0,), degrees_of_freedom=(1.0,)),
+        "combined_uncertainty must be greater than 0 (found 0.0)",
+    ),
+)
+
+
+@pytest.mark.parametrize(("call", "message"), REFUSALS, ids=[row[1] for row in REFUSALS])
+def test_refused(call: Callable[[], object], message: str) -> None:
+    with pytest.raises(DomainError) as caught:
+        call()
+    assert str(caught.value) == message
+
+
+def test_correlations_that_no_quantities_can_have_are_refused() -> None:
+    # Each of three pairs at -0.9: a sum of three such quantities would have a variance below 0.
+    matrix = [[1.0, -0.9, -0.9], [-0.9, 1.0, -0.9], [-0.9, -0.9, 1.0]]
+    with pytest.raises(DomainError, match=r"^correlations must give a variance of at least 0"):
+        combined_uncertainty(sensitivities=(1.0, 1.0, 1.0), uncertainties=(1.0, 1.0, 1.0), correlations=matrix)
