@@ -2,65 +2,51 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
 from typing import Any
 
-from tidegate.lint.description.place import Fault
+from tidegate.lint.description.place import Fault, Path, Place, dotted
+from tidegate.lint.description.schema_tree import Schema, object_at
 from tidegate.lint.description.sources import Sources
-from tidegate.lint.description.yaml_text import Step, dotted
+from tidegate.lint.description.unknown_key import unknown_key
 
 
-def fill_empty(sources: Sources, schema: Mapping[str, Any]) -> list[Fault]:
-    """Give each empty element an empty mapping in the data; empty facts stay out of it.
+def fill_empty(sources: Sources, schema: Schema) -> list[Fault]:
+    """Give each empty element an empty mapping in the data; empty facts stay out of it, and so do spans of them.
 
     Returns: a fault for each empty key that the schema does not know.
     """
     faults: list[Fault] = []
     for file in sources.files:
         for path in file.empty:
-            above = _schema_at(schema, path[:-1])
+            above = object_at(schema, path[:-1])
             key = str(path[-1])
-            if above is None or key in above.get("properties", {}) or key.startswith("x-"):
+            if above is None or key.startswith("x-"):
                 continue
-            if isinstance(above.get("additionalProperties"), dict):
-                _put(sources.data, path)
+            if key in above.get("properties", {}):
+                if "min" in above["properties"]:
+                    _drop_empty_span(sources.data, path[:-1])
+            elif isinstance(above.get("additionalProperties"), dict):
+                entries = _value_at(sources.data, path[:-1])
+                if isinstance(entries, dict):
+                    entries.setdefault(key, {})
             else:
-                faults.append(_unknown(sources, path, above))
+                place = file.place(path, key=True) or Place(file.name)
+                faults.append(unknown_key(place, dotted(path[:-1]), key, above))
     return faults
 
 
-def _unknown(sources: Sources, path: tuple[Step, ...], above: Mapping[str, Any]) -> Fault:
-    from tidegate.lint.description.schema_faults import nearest_key
+def _drop_empty_span(data: dict[str, Any], path: Path) -> None:
+    """Take out a span of which neither least nor typical nor greatest is given yet."""
+    above = _value_at(data, path[:-1])
+    if isinstance(above, dict) and above.get(path[-1]) == {}:
+        del above[path[-1]]
 
-    key = str(path[-1])
-    advice = nearest_key(key, list(above.get("properties", {})))
-    return Fault(sources.place(path, key=True), dotted(path[:-1]), f"unknown key {key!r}", advice)
 
-
-def _schema_at(schema: Mapping[str, Any], path: Sequence[Step]) -> Mapping[str, Any] | None:
-    """The schema of the object at a path; None where the schema knows no object there."""
-    node: Mapping[str, Any] | None = schema
+def _value_at(data: Any, path: Path) -> Any:
+    """The value at a path; None where nothing stands."""
     for step in path:
-        if node is None:
-            return None
         if isinstance(step, int):
-            child = node.get("items")
+            data = data[step] if isinstance(data, list) and step < len(data) else None
         else:
-            child = node.get("properties", {}).get(step, node.get("additionalProperties"))
-        node = _object_behind(child, schema["$defs"]) if isinstance(child, dict) else None
-    return node
-
-
-def _object_behind(node: Mapping[str, Any], defs: Mapping[str, Any]) -> Mapping[str, Any]:
-    """Follow references and choices to the schema of an object or list."""
-    while "$ref" in node or "anyOf" in node:
-        node = defs[node["$ref"].rpartition("/")[2]] if "$ref" in node else node["anyOf"][-1]
-    return node
-
-
-def _put(data: dict[str, Any], path: tuple[Step, ...]) -> None:
-    """Put an empty mapping at a path, making the mappings above it where they are missing."""
-    node: Any = data
-    for step in path[:-1]:
-        node = node.setdefault(step, {}) if isinstance(node, dict) else node[step]
-    node.setdefault(path[-1], {})
+            data = data.get(step) if isinstance(data, dict) else None
+    return data

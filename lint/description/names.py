@@ -7,18 +7,20 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from difflib import get_close_matches
 from typing import Any, Final
 
-from tidegate.lint.description.place import Fault
+from tidegate.lint.description.place import Fault, Path, dotted
 from tidegate.lint.description.sources import Sources
-from tidegate.lint.description.yaml_text import Step, dotted
+from tidegate.lint.found import escaped, quoted
 
 NAMED_SECTIONS: Final = (
     "rails", "domains", "references", "biases", "comparators", "output_stages", "resets", "loads", "bypasses",
     "neighbours",
 )  # fmt: skip
 """Sections whose entries share one namespace."""
+
+MOST_SUGGESTIONS: Final = 50
+"""How many wrong names of one description are compared with all the right ones."""
 
 _PROCESS_NAMES: Final = {
     ("output_stages", "output", "layer"): "layers",
@@ -29,14 +31,24 @@ _PROCESS_NAMES: Final = {
     ("comparators", "crossover", "device"): "devices",
 }
 
+_KINDS: Final = {
+    "layers": "layer of the process", "vias": "via of the process", "devices": "transistor family of the process",
+    "diodes": "diode of the process",
+}  # fmt: skip
+
+_SINGULAR: Final = {
+    "biases": "a bias", "output_stages": "an output stage", "bypasses": "a bypass", "loads": "a load",
+    "resets": "a reset net", "rails": "a rail", "domains": "a domain", "references": "a reference",
+    "comparators": "a comparator", "neighbours": "a pair of neighbours",
+}  # fmt: skip
+
 
 @dataclass(frozen=True, slots=True)
 class NameField:
     """A field that names elements: the way to it (``*`` for every entry) and the sections it may point into."""
 
     way: tuple[str, ...]
-    sections: frozenset[str]
-    wanted: str
+    sections: tuple[str, ...]
 
 
 def name_fields(schema: Mapping[str, Any]) -> tuple[NameField, ...]:
@@ -46,8 +58,7 @@ def name_fields(schema: Mapping[str, Any]) -> tuple[NameField, ...]:
 
 def _fields_below(node: Mapping[str, Any], defs: Mapping[str, Any], way: tuple[str, ...]) -> Iterator[NameField]:
     if "x-names" in node:
-        sections = node["x-names"]
-        yield NameField((*way, "*") if node.get("type") == "array" else way, frozenset(sections), _wanted(sections))
+        yield NameField((*way, "*") if node.get("type") == "array" else way, tuple(node["x-names"]))
         return
     if "$ref" in node:
         yield from _fields_below(defs[node["$ref"].rpartition("/")[2]], defs, way)
@@ -60,40 +71,47 @@ def _fields_below(node: Mapping[str, Any], defs: Mapping[str, Any], way: tuple[s
             yield from _fields_below(node[inside], defs, (*way, "*"))
 
 
-_SINGULAR: Final = {
-    "biases": "a bias", "output_stages": "an output stage", "bypasses": "a bypass", "loads": "a load",
-    "resets": "a reset net", "rails": "a rail", "domains": "a domain", "references": "a reference",
-    "comparators": "a comparator", "neighbours": "a pair of neighbours",
-}  # fmt: skip
-
-
-def _wanted(sections: Sequence[str]) -> str:
-    words = [_SINGULAR[section] for section in sections]
-    return words[0] if len(words) == 1 else ", ".join(words[:-1]) + " or " + words[-1]
-
-
 def name_faults(data: Mapping[str, Any], fields: Sequence[NameField], sources: Sources) -> list[Fault]:
-    """Ids given twice, and names that point nowhere or to the wrong kind of element."""
-    home: dict[str, str] = {}
-    faults: list[Fault] = []
-    for section in NAMED_SECTIONS:
-        for name in data.get(section, ()):
-            if name in home:
-                first = sources.place((home[name], name), key=True)
-                problem = f"the id {name} is taken (first at {first}, in {home[name]})"
-                place = sources.place((section, name), key=True)
-                faults.append(Fault(place, section, problem, "ids are unique in the whole description"))
-            else:
-                home[name] = section
+    """Ids given twice, and names that point nowhere or to the wrong kind of element.
+
+    The data may have other faults; what is no name is left to the schema.
+    """
+    home, faults = _homes(data, sources)
+    advice = _Advice()
     for field in fields:
         for path, name in _values(data, field.way, ()):
-            if home.get(name) not in field.sections and isinstance(name, str):
-                faults.append(_dangling(name, field, home, sources, path))
-    faults.extend(_process_faults(data, sources))
+            if isinstance(name, str) and home.get(name) not in field.sections:
+                problem, choices = _problem(name, field, home)
+                faults.append(Fault(sources.place(path), dotted(path), problem, advice.about(name, choices)))
+    for path, name, kind, known in _names_of_parts(data):
+        if name not in known:
+            problem = f"no {kind} is called {quoted(name)}"
+            faults.append(Fault(sources.place(path), dotted(path), problem, advice.about(name, list(known))))
     return faults
 
 
-def _values(node: Any, way: tuple[str, ...], path: tuple[Step, ...]) -> Iterator[tuple[tuple[Step, ...], Any]]:
+def _homes(data: Mapping[str, Any], sources: Sources) -> tuple[dict[str, str], list[Fault]]:
+    """The section of every id, and the ids that are given twice."""
+    home: dict[str, str] = {}
+    faults: list[Fault] = []
+    for section in NAMED_SECTIONS:
+        for name in _mapping(data.get(section)):
+            if name not in home:
+                home[name] = section
+                continue
+            first = sources.place((home[name], name), key=True)
+            problem = f"the id {escaped(name)} is taken (first at {first}, in {home[name]})"
+            place = sources.place((section, name), key=True)
+            faults.append(Fault(place, section, problem, "ids are unique in the whole description"))
+    return home, faults
+
+
+def _mapping(value: Any) -> Mapping[str, Any]:
+    return value if isinstance(value, dict) else {}
+
+
+def _values(node: Any, way: tuple[str, ...], path: Path) -> Iterator[tuple[Path, Any]]:
+    """Every value at the end of a way, with its path."""
     if not way:
         yield path, node
     elif way[0] != "*":
@@ -101,39 +119,59 @@ def _values(node: Any, way: tuple[str, ...], path: tuple[Step, ...]) -> Iterator
             yield from _values(node[way[0]], way[1:], (*path, way[0]))
     elif isinstance(node, dict):
         for key, child in node.items():
-            if not key.startswith("x-"):
-                yield from _values(child, way[1:], (*path, key))
+            yield from _values(child, way[1:], (*path, key))
     elif isinstance(node, list):
         for index, child in enumerate(node):
             yield from _values(child, way[1:], (*path, index))
 
 
-def _dangling(name: str, field: NameField, home: Mapping[str, str], sources: Sources, path: tuple[Step, ...]) -> Fault:
+def _problem(name: str, field: NameField, home: Mapping[str, str]) -> tuple[str, list[str]]:
+    """What is wrong with a name, and the names that would be right."""
     choices = [known for known, section in home.items() if section in field.sections]
+    words = [_SINGULAR[section] for section in field.sections]
+    wanted = words[0] if len(words) == 1 else f"{', '.join(words[:-1])} or {words[-1]}"
     if name in home:
-        problem = f"{name} is {_SINGULAR[home[name]]}; {field.wanted} is due"
-    else:
-        problem = f"no element is called {name!r}"
-    return Fault(sources.place(path), dotted(path), problem, _suggestion(name, choices, field.wanted))
+        return f"{escaped(name)} is {_SINGULAR[home[name]]} where {wanted} is due", choices
+    thing = wanted.partition(" ")[2] if len(words) == 1 else "element"
+    return f"no {thing} is called {quoted(name)}", choices
 
 
-def _suggestion(name: str, choices: Sequence[str], wanted: str) -> str:
-    near = get_close_matches(name, choices, 3, 0.5)
+class _Advice:
+    """What would be right in place of a wrong name; each name is compared once, and not too many of them."""
+
+    def __init__(self) -> None:
+        self._given: dict[tuple[str, ...], str] = {}
+
+    def about(self, name: str, choices: Sequence[str]) -> str:
+        """Advice about a name."""
+        if not choices:
+            return "describe it, or correct the name"
+        key = (name, choices[0], choices[-1])
+        if key not in self._given:
+            if len(self._given) >= MOST_SUGGESTIONS:
+                return "correct the name"
+            self._given[key] = _nearest_or_some(name, choices)
+        return self._given[key]
+
+
+def _nearest_or_some(name: str, choices: Sequence[str]) -> str:
+    # Loaded here alone: a description without faults does not compare names.
+    from tidegate.lint.description.nearest import nearest
+
+    near = nearest(name, choices, most=3)
     if near:
-        return f"did you mean {' or '.join(near)}?"
-    if choices:
-        more = ", ..." if len(choices) > 8 else ""
-        return f"described here: {', '.join(choices[:8])}{more}"
-    return f"describe {wanted} of that name"
+        return f"did you mean {' or '.join(map(escaped, near))}?"
+    more = ", ..." if len(choices) > 8 else ""
+    return f"there is {', '.join(map(escaped, choices[:8]))}{more}"
 
 
-def _process_faults(data: Mapping[str, Any], sources: Sources) -> Iterator[Fault]:
-    """Names of layers, vias, transistor families and junctions."""
-    process = data.get("process", {})
+def _names_of_parts(data: Mapping[str, Any]) -> Iterator[tuple[Path, str, str, Mapping[str, Any]]]:
+    """Names of layers, vias, transistor families, junctions and codes, with what they may name."""
+    process = _mapping(data.get("process"))
     for (section, *inner), kind in _PROCESS_NAMES.items():
-        known = process.get(kind, {})
         for path, name in _values(data, (section, "*", *inner), ()):
-            if name not in known:
-                near = get_close_matches(name, known, 1)
-                advice = f"did you mean {near[0]}?" if near else f"described: {', '.join(known) or 'none'}"
-                yield Fault(sources.place(path), dotted(path), f"process.{kind} has no {name!r}", advice)
+            if isinstance(name, str):
+                yield path, name, _KINDS[kind], _mapping(process.get(kind))
+    for path, name in _values(data, ("comparators", "*", "ships_with"), ()):
+        if isinstance(name, str):
+            yield path, name, "code", _mapping(_mapping(data["comparators"][path[1]]).get("codes"))

@@ -1,12 +1,22 @@
-"""Where something stands in a file, and what is wrong there."""
+"""Where something stands, in a file and in the data; what is wrong there."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import re
+from collections.abc import Sequence
+from typing import Final, TypeAlias
+
+import msgspec
+
+from tidegate.lint.found import escaped, quoted
+
+Step: TypeAlias = "str | int"
+Path: TypeAlias = "tuple[Step, ...]"
+
+_PLAIN_STEP: Final = re.compile(r"[A-Za-z0-9_-]{1,64}", re.ASCII)
 
 
-@dataclass(frozen=True, slots=True, order=True)
-class Place:
+class Place(msgspec.Struct, frozen=True, order=True):
     """A position in a file: line and column count from 1, columns in code points; 0 where only the file is meant."""
 
     file: str
@@ -14,11 +24,11 @@ class Place:
     column: int = 0
 
     def __str__(self) -> str:
-        return f"{self.file}:{self.line}:{self.column}" if self.line else self.file
+        name = escaped(self.file)
+        return f"{name}:{self.line}:{self.column}" if self.line else name
 
 
-@dataclass(frozen=True, slots=True, order=True)
-class Fault:
+class Fault(msgspec.Struct, frozen=True, order=True):
     """One thing that keeps a file from being read: where, what is wrong (with what was found), what would be right."""
 
     place: Place
@@ -28,12 +38,33 @@ class Fault:
 
     def __str__(self) -> str:
         path = f"{self.path}: " if self.path else ""
-        return f"{self.place}: {path}{self.problem}" + (f"; {self.advice}" if self.advice else "")
+        return f"{self.place}: {path}{self.problem}; {self.advice}"
+
+    def lies_in(self, path: str) -> bool:
+        """Whether it is about the value at this path, or about something inside it."""
+        return self.path == path or (bool(path) and self.path.startswith((f"{path}.", f"{path}[")))
 
 
 class DescriptionError(Exception):
     """A description cannot be used; carries every fault found, sorted by place."""
 
-    def __init__(self, faults: list[Fault]) -> None:
+    def __init__(self, faults: Sequence[Fault]) -> None:
         self.faults = tuple(sorted(set(faults)))
         super().__init__("\n".join(map(str, self.faults)))
+
+
+def dotted(path: Sequence[Step]) -> str:
+    """A path as people write it: ``rails.avdd.rise.min``, ``waivers[2].until``; odd keys stand in quotes."""
+    text = ""
+    for step in path:
+        if isinstance(step, int):
+            text += f"[{step}]"
+        else:
+            word = step if _PLAIN_STEP.fullmatch(step) else quoted(step)
+            text += f".{word}" if text else word
+    return text
+
+
+def steps(path: str) -> Path:
+    """The steps of a path of plain keys: ``waivers[2].until`` as well as ``waivers.2.until``."""
+    return tuple(int(step) if step.isdecimal() else step for step in re.findall(r"[^.\[\]]+", path))

@@ -1,136 +1,100 @@
 """What is wrong with data that the schema refuses, in words an engineer can act on.
 
 This is the explaining half of validation: the compiled validator says yes or no, and only where it says no is the
-slower, explaining one (the ``jsonschema`` library, taught the keywords ``x-quantity`` and ``x-names``) loaded.
+slower, explaining one (the ``jsonschema`` library, taught the keyword ``x-quantity``) loaded.
 """
 
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator, Mapping, Sequence
-from difflib import get_close_matches
+from collections.abc import Iterator, Mapping
 from typing import Any, Final
 
 from jsonschema import Draft202012Validator, ValidationError, validators
 
-from tidegate.lint import quantity
-from tidegate.lint.description.place import Fault
+from tidegate.lint.description.nearest import nearest
+from tidegate.lint.description.place import Fault, Path, dotted
+from tidegate.lint.description.schema_tree import Schema, example_at
 from tidegate.lint.description.sources import Sources
-from tidegate.lint.description.yaml_text import dotted
+from tidegate.lint.description.unknown_key import unknown_key
+from tidegate.lint.description.written import written
+from tidegate.lint.found import found
+from tidegate.lint.quantity import QuantityError, Span
 
-_SPANS: Final = {kind.dimension.value: kind for kind in quantity.Span.__subclasses__()}
-_PARTS: Final = frozenset({"Least", "Typical", "Greatest"})  # titles of the parts of a span
-MOST_SHOWN: Final = 60
-"""Longest text found in a file that a message repeats, in characters."""
+_SPANS: Final = {kind.dimension.value: kind for kind in Span.__subclasses__()}
+_PARTS: Final = ("min", "typ", "max")
 
 
-def schema_faults(data: Mapping[str, Any], schema: Mapping[str, Any], sources: Sources) -> list[Fault]:
+def schema_faults(data: Mapping[str, Any], schema: Schema, sources: Sources) -> list[Fault]:
     """Every fault of the data, with its place; empty if there is none."""
-    faults: list[Fault] = []
-    for error in _Explaining(schema).iter_errors(data):
-        faults.extend(_faults_of(error, sources))
-    return faults
+    explaining: Any = _EXPLAINING(schema)
+    return [fault for error in explaining.iter_errors(data) for fault in _faults_of(error, schema, sources)]
 
 
-def _quantity(validator: Any, dimension: str, instance: Any, schema: Any) -> Iterator[ValidationError]:
-    if isinstance(instance, dict):
-        return  # its parts are judged by the rest of the schema; their order when it is read
-    try:
-        _SPANS[dimension].read(instance)
-    except quantity.QuantityError as error:
-        yield ValidationError(str(error))
-
-
-def _span(validator: Any, branches: Any, instance: Any, schema: Any) -> Iterator[ValidationError]:
-    """``anyOf``: only the branch that the author meant is worth talking about."""
+def _any_of(validator: Any, branches: Any, instance: Any, schema: Schema) -> Iterator[ValidationError]:
+    """``anyOf``: a text or number of its own, or a mapping; only what the author meant is worth talking about."""
     if "x-quantity" in schema:
-        if isinstance(instance, dict):
-            yield from validator.descend(instance, branches[1], schema_path=1)
-            yield from _parts(schema["x-quantity"], instance)
+        yield from _quantity(validator, branches[1], instance, _SPANS[schema["x-quantity"]])
+    elif isinstance(instance, dict):
+        yield from validator.descend(instance, branches[1], schema_path=1)
+    elif not any(validator.evolve(schema=branch).is_valid(instance) for branch in branches):
+        yield ValidationError("neither")
+
+
+def _quantity(validator: Any, mapping: Schema, instance: Any, span: type[Span]) -> Iterator[ValidationError]:
+    """What is wrong with a quantity, each of its parts at its own place; else with their order."""
+    if not isinstance(instance, dict):
+        yield from _misread(span, instance)
         return
-    if not any(validator.evolve(schema=branch).is_valid(instance) for branch in branches):
-        if isinstance(instance, dict):
-            yield from validator.descend(instance, branches[1], schema_path=1)
-        else:
-            yield ValidationError("neither")
+    parts = {key: instance[key] for key in _PARTS if key in instance}
+    # The library judges what else stands there; numbers and units are judged by reading them.
+    rest = {**mapping, "minProperties": 0, "properties": {**mapping["properties"], **dict.fromkeys(_PARTS, True)}}
+    yield from validator.descend(instance, rest, schema_path=1)
+    wrong = [fault for key, part in parts.items() for fault in _misread(span, part, key)]
+    yield from wrong or _misread(span, parts)
 
 
-def _parts(dimension: str, instance: Mapping[str, Any]) -> Iterator[ValidationError]:
-    """The parts of a span that are no quantities, each at its own place; else what is wrong with their order."""
-    wrong = False
-    for key in ("min", "typ", "max"):
-        if key in instance:
-            try:
-                _SPANS[dimension].read(instance[key])
-            except quantity.QuantityError as error:
-                wrong = True
-                yield ValidationError(str(error), path=(key,), validator="x-quantity")
-    if not wrong:
-        try:
-            _SPANS[dimension].read({key: instance[key] for key in ("min", "typ", "max") if key in instance})
-        except quantity.QuantityError as error:
-            yield ValidationError(str(error), validator="x-quantity")
+def _misread(span: type[Span], given: object, *path: str) -> Iterator[ValidationError]:
+    try:
+        if path and isinstance(given, dict):
+            raise QuantityError(f"a mapping is no {span.dimension.noun}; write it as in {span.dimension.example}")
+        span.read(given)
+    except QuantityError as error:
+        yield ValidationError(str(error), path=path, validator="x-quantity")
 
 
-def _pattern(validator: Any, pattern: str, instance: Any, schema: Any) -> Iterator[ValidationError]:
-    """Patterns of quantities are explained by ``x-quantity``; ids and dates here, a final line break refused."""
-    if schema.get("title") not in _PARTS and isinstance(instance, str):
-        if not re.search(pattern.removesuffix("$") + r"\Z", instance):
-            yield ValidationError("does not fit")
+def _pattern(validator: Any, pattern: str, instance: Any, schema: Schema) -> Iterator[ValidationError]:
+    """Patterns end at the end of the text: a final line break does not count as one."""
+    if isinstance(instance, str) and not re.search(pattern.removesuffix("$") + r"\Z", instance):
+        yield ValidationError("does not fit")
 
 
-def _min_properties(validator: Any, least: int, instance: Any, schema: Any) -> Iterator[ValidationError]:
-    """An empty span is explained where its parts are read."""
-    yield from ()
+_VALIDATORS: Final[Any] = validators
+_EXPLAINING: Final = _VALIDATORS.extend(Draft202012Validator, {"anyOf": _any_of, "pattern": _pattern})
 
 
-def _type(validator: Any, kind: Any, instance: Any, schema: Any) -> Iterator[ValidationError]:
-    if schema.get("title") not in _PARTS:
-        yield from Draft202012Validator.VALIDATORS["type"](validator, kind, instance, schema)
+def _faults_of(error: Any, schema: Schema, sources: Sources) -> Iterator[Fault]:
+    path: Path = tuple(error.absolute_path)
+    match error.validator:
+        case "additionalProperties":
+            known = error.schema.get("properties", {})
+            for key in error.instance:
+                if key not in known and not key.startswith("x-"):
+                    yield unknown_key(sources.place((*path, key), key=True), dotted(path), key, error.schema)
+        case "required":
+            for key in error.validator_value:
+                if key not in error.instance:
+                    example = written(example_at(schema, (*path, key)))
+                    advice = f"{key} is needed here, such as {example}"
+                    yield Fault(sources.place(path, key=True), dotted(path), f"no {key}", advice)
+        case _ if "propertyNames" in error.absolute_schema_path:
+            place = sources.place((*path, error.instance), key=True)
+            yield Fault(place, dotted(path), f"{found(error.instance)} is no name", _NAME)
+        case _:
+            yield Fault(sources.place(path), dotted(path), *_in_words(error, example_at(schema, path)))
 
 
-_Explaining: Final = validators.extend(
-    Draft202012Validator,
-    {
-        "x-quantity": _quantity,
-        "anyOf": _span,
-        "pattern": _pattern,
-        "minProperties": _min_properties,
-        "type": _type,
-    },
-)
-
-
-def _faults_of(error: ValidationError, sources: Sources) -> Iterator[Fault]:
-    path = tuple(error.absolute_path)
-    if error.validator == "additionalProperties" and isinstance(error.instance, dict):
-        known = list(error.schema.get("properties", {}))
-        for key in error.instance:
-            if key not in known and not key.startswith("x-"):
-                place = sources.place((*path, key), key=True)
-                yield Fault(place, dotted(path), f"unknown key {_found(key)}", nearest_key(key, known))
-        return
-    if error.validator == "required":
-        missing = [key for key in error.validator_value if key not in error.instance]
-        for key in missing:
-            yield Fault(sources.place(path, key=True), dotted(path), f"no {key}", f"{key} is needed here")
-        return
-    in_key = error.parent is None and "propertyNames" in error.absolute_schema_path
-    problem, advice = _in_words(error)
-    if in_key:
-        place = sources.place((*path, error.instance), key=True)
-        yield Fault(place, dotted(path), problem, advice)
-    else:
-        yield Fault(sources.place(path), dotted(path), problem, advice)
-
-
-def nearest_key(key: str, known: Sequence[str]) -> str:
-    """Advice about an unknown key."""
-    near = get_close_matches(key, known, 1) or get_close_matches(key.lower().replace("-", "_"), known, 1)
-    if near:
-        return f"did you mean {near[0]}?"
-    return f"known here: {', '.join(known)}; keys of your own begin with x-"
-
+_NAME: Final = "a name has letters, digits, - and _, begins with a letter or _, and has 64 characters at the most"
 
 _TYPE_WORDS: Final = {
     "object": "a mapping of keys", "array": "a list", "string": "a text", "number": "a number",
@@ -138,56 +102,44 @@ _TYPE_WORDS: Final = {
 }  # fmt: skip
 
 
-def _in_words(error: ValidationError) -> tuple[str, str]:
+def _in_words(error: Any, example: Any) -> tuple[str, str]:
     """What is wrong (with what was found), and what would be right."""
-    found, value = _found(error.instance), error.validator_value
+    was, value = found(error.instance), error.validator_value
+    as_in = f"write it as in {written(example)}"
     match error.validator:
         case "x-quantity":
             problem, _, advice = error.message.partition("; ")
             return problem, advice
         case "anyOf":
-            return f"neither none nor a mapping (found {found})", "write none, or a mapping that says what it is"
+            hint = "did you mean none? " if nearest(str(error.instance), ["none"]) else ""
+            return f"neither none nor a mapping of keys (found {was})", f"{hint}write none, or a mapping as in {written(example)}"
         case "type":
-            kind = _TYPE_WORDS[value]
-            quote = " (put it in quotes)" if value == "string" and not isinstance(error.instance, dict | list) else ""
-            return f"{kind} is due (found {found})", f"write {kind}, such as {_example(error)}{quote}"
+            return f"{_TYPE_WORDS[value]} is due (found {was})", _advice_on_type(value, error.instance, as_in)
         case "enum":
-            near = get_close_matches(str(error.instance), [str(v) for v in value], 1)
+            near = nearest(str(error.instance), map(str, value))
             hint = f"did you mean {near[0]}? " if near else ""
-            return f"no such choice (found {found})", f"{hint}choices: {', '.join(map(str, value))}"
+            return f"no such choice (found {was})", f"{hint}choices: {', '.join(map(str, value))}"
         case "pattern":
-            return f"{found} does not fit", _example_sentence(error)
-        case "minimum" | "exclusiveMinimum":
-            above = "above" if error.validator == "exclusiveMinimum" else "at least"
-            return f"too small (found {found})", f"{above} {value} is due"
-        case "minLength":
-            return "empty text", "write it, or leave the key out"
+            return f"{was} does not fit", _NAME if error.schema.get("title") == "Name" else as_in
+        case "minimum" | "exclusiveMinimum" | "maximum" | "exclusiveMaximum":
+            size = "small" if "min" in error.validator.lower() else "large"
+            return f"too {size} (found {was})", f"{_LIMITS[error.validator]} {value} is due"
+        case "minLength" | "minItems":
+            return f"nothing in it (found {was})", f"{as_in}, or leave the key out"
         case "uniqueItems":
-            return "names something twice", "keep one of them"
+            return "a list that names something twice", "keep one of them"
         case _:
-            return f"not as the schema wants it (found {found})", _example_sentence(error)
+            return f"not as it should be (found {was})", as_in
 
 
-def _example_sentence(error: ValidationError) -> str:
-    if "propertyNames" in error.absolute_schema_path or error.schema.get("title") == "Name":
-        return "a name has letters, digits, - and _, begins with a letter or _, and is 64 characters long at the most"
-    return f"write it as in {_example(error)}"
+_LIMITS: Final = {
+    "minimum": "at least", "exclusiveMinimum": "more than", "maximum": "at most", "exclusiveMaximum": "less than",
+}  # fmt: skip
 
 
-def _example(error: ValidationError) -> str:
-    examples = error.schema.get("examples")
-    if not examples:
-        return "the reference shows"
-    return str(examples[0]).lower() if isinstance(examples[0], bool) else str(examples[0])
-
-
-def _found(instance: Any) -> str:
-    """What was found, on one line and not too long."""
-    if isinstance(instance, bool):
-        return "true" if instance else "false"
-    if isinstance(instance, dict):
-        return "a mapping" if instance else "an empty mapping"
-    if isinstance(instance, list):
-        return "a list"
-    text = repr(instance)
-    return text if len(text) <= MOST_SHOWN else text[: MOST_SHOWN - 3] + "..."
+def _advice_on_type(kind: str, instance: Any, as_in: str) -> str:
+    if kind == "string" and not isinstance(instance, dict | list):
+        return f'put it in quotes: "{found(instance)}"'
+    if kind == "array" and not isinstance(instance, dict):
+        return f"write [{written(instance)}]"
+    return as_in

@@ -7,24 +7,38 @@ file only.  Every fact remembers the file it came from.
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
-from pathlib import Path, PurePosixPath
+from pathlib import Path as FilePath
+from pathlib import PurePosixPath
 from typing import Any, Final
 
-from tidegate.lint.description.place import DescriptionError, Fault, Place
-from tidegate.lint.description.yaml_text import Plain, Step, YamlFile, dotted, read_yaml
+from tidegate.lint.description.nearest import nearest
+from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, Step, dotted
+from tidegate.lint.description.plain_data import Plain
+from tidegate.lint.description.yaml_nodes import MOST_BYTES, PARSER, Parser
+from tidegate.lint.description.yaml_text import YamlFile, read_yaml
+from tidegate.lint.found import quoted
 
 MOST_FILES: Final = 1000
 """Most files that one description may be split into."""
+MOST_INCLUDED: Final = 16
+"""Longest chain of files that include one another."""
 
-Reader = Callable[[Path], bytes]
+Reader = Callable[[FilePath], bytes]
+
+
+def read_file(path: FilePath) -> bytes:
+    """The content of a file, as far as a description may reach."""
+    with path.open("rb") as file:
+        return file.read(MOST_BYTES + 1)
 
 
 class Sources:
-    """The merged plain data of a description, and the place of everything in it."""
+    """The merged plain data of a description, the place of everything in it, and the faults of its files."""
 
-    def __init__(self, files: Sequence[YamlFile], data: dict[str, Plain]) -> None:
+    def __init__(self, files: Sequence[YamlFile], data: dict[str, Plain], faults: Sequence[Fault] = ()) -> None:
         self.files = tuple(files)
         self.data = data
+        self.faults = tuple(faults)
 
     def place(self, path: Sequence[Step], *, key: bool = False) -> Place:
         """Where the value (or key) at a path stands, or the nearest part of the description above it."""
@@ -36,8 +50,8 @@ class Sources:
                     return place
         return Place(self.files[0].name, 1, 1)
 
-    def _own_path(self, path: tuple[Step, ...]) -> tuple[Sequence[YamlFile], tuple[Step, ...]]:
-        """The files to look in; a list joined from several files has an index of its own in each."""
+    def _own_path(self, path: Path) -> tuple[Sequence[YamlFile], Path]:
+        """The files to look in, and the path there: an entry has one file, a joined list an index in each."""
         if len(path) > 1 and isinstance(path[1], int):
             index = path[1]
             for file in self.files:
@@ -46,46 +60,55 @@ class Sources:
                 if index < length:
                     return (file,), (path[0], index, *path[2:])
                 index -= length
-        return self.files, path
+            return self.files, path[:1]
+        entry = path[: _depth_of_entries(path)]
+        return next(((file,) for file in self.files if file.place(entry)), self.files), path
 
 
-def read_sources(path: Path, shown: str, read: Reader) -> Sources:
+def _depth_of_entries(path: Sequence[Step]) -> int:
+    """How many steps lead to an entry that stands in one file only."""
+    return 3 if path and path[0] == "process" else 2
+
+
+def read_sources(path: FilePath, shown: str, read: Reader = read_file, parser: type[Parser] = PARSER) -> Sources:
     """Read a description and what it includes.
 
     ``shown`` is the file's name in messages; included files are named beside it.
-    Raises: DescriptionError: with the faults of all files.
+    Returns: the joined data, with the faults of single values and entries.
+    Raises: DescriptionError: with the faults of all files, where one of them cannot be read at all.
     """
-    gatherer = _Gatherer(path, read)
+    gatherer = _Gatherer(path, read, parser)
     gatherer.take(path, shown, ())
+    faults = [*gatherer.faults, *(fault for file in gatherer.files for fault in file.faults)]
     if gatherer.faults:
-        raise DescriptionError(gatherer.faults)
-    data = _joined(gatherer.files, gatherer.faults)
-    if gatherer.faults:
-        raise DescriptionError(gatherer.faults)
-    return Sources(gatherer.files, data)
+        raise DescriptionError(faults)
+    data = _joined(gatherer.files, faults)
+    return Sources(gatherer.files, data, faults)
 
 
 class _Gatherer:
     """Reads files in the order in which they are named, each once."""
 
-    def __init__(self, path: Path, read: Reader) -> None:
-        self.folder = path.resolve().parent
+    def __init__(self, path: FilePath, read: Reader, parser: type[Parser]) -> None:
+        self.folder = path.parent
         self.read = read
+        self.parser = parser
         self.files: list[YamlFile] = []
         self.faults: list[Fault] = []
-        self._taken: set[Path] = set()
+        self._taken: set[FilePath] = set()
 
-    def take(self, path: Path, shown: str, above: tuple[Path, ...]) -> None:
+    def take(self, path: FilePath, shown: str, above: tuple[FilePath, ...]) -> None:
         """Read one file, then what it includes."""
-        real = path.resolve()
-        self._taken.add(real)
         try:
-            file = read_yaml(shown, self.read(path))
+            real = path.resolve()
+            self._taken.add(real)
+            file = read_yaml(shown, self.read(path), self.parser)
         except DescriptionError as error:
             self.faults += error.faults
             return
-        except OSError as error:
-            self.faults.append(Fault(Place(shown), "", f"cannot be read ({error.strerror or error})", ""))
+        except (OSError, ValueError, RuntimeError) as error:
+            reason = getattr(error, "strerror", None) or "no usable file name"
+            self.faults.append(Fault(Place(shown), "", f"cannot be read ({reason})", _near_file(path)))
             return
         self.files.append(file)
         names = file.data.get("include", [])
@@ -93,62 +116,91 @@ class _Gatherer:
             if isinstance(name, str):
                 self._include(file, path, name, index, (*above, real))
 
-    def _include(self, file: YamlFile, path: Path, name: str, index: int, above: tuple[Path, ...]) -> None:
-        place = file.place(("include", index)) or Place(file.name)
+    def _include(self, file: YamlFile, path: FilePath, name: str, index: int, above: tuple[FilePath, ...]) -> None:
         target = path.parent / name
-        problem = self._why_not(name, target, above)
-        if problem:
-            what, advice = problem
-            self.faults.append(Fault(place, dotted(("include", index)), f"{what} (found {name!r})", advice))
-        elif target.resolve() not in self._taken:
-            self.take(target, str(PurePosixPath(file.name).parent / name), above)
-
-    def _why_not(self, name: str, target: Path, above: tuple[Path, ...]) -> tuple[str, str] | None:
-        below = f"name a file below the folder of {self.files[0].name}"
         try:
             real = target.resolve()
-        except (OSError, RuntimeError, ValueError):
-            return "no usable file name", below
-        if Path(name).is_absolute() or not real.is_relative_to(self.folder):
+            problem = self._why_not(name, target, real, above)
+        except (OSError, ValueError, RuntimeError):
+            real = target
+            problem = "no usable file name", f"name a file below the folder of {self.files[0].name}"
+        if problem:
+            what, advice = problem
+            place = file.place(("include", index)) or Place(file.name)
+            self.faults.append(Fault(place, dotted(("include", index)), f"{what} (found {quoted(name)})", advice))
+        elif real not in self._taken:
+            self.take(target, str(PurePosixPath(file.name).parent / name), above)
+
+    def _why_not(
+        self, name: str, target: FilePath, real: FilePath, above: tuple[FilePath, ...]
+    ) -> tuple[str, str] | None:
+        below = f"name a file below the folder of {self.files[0].name}"
+        if FilePath(name).is_absolute() or not real.is_relative_to(self.folder.resolve()):
             return "leaves the folder of the description", below
         if real in above:
             return "a file that includes itself", "remove one of the includes"
+        if real.is_dir():
+            return "a folder", "name the files in it"
         if not real.is_file():
-            return "no such file", below
+            return "no such file", _near_file(target)
+        if len(above) >= MOST_INCLUDED:
+            return f"a chain of more than {MOST_INCLUDED} includes", "include the files side by side"
         if len(self._taken) >= MOST_FILES:
             return f"more than {MOST_FILES} files", "join some of them"
         return None
 
 
+def _near_file(path: FilePath) -> str:
+    """Advice about a file that is not there."""
+    try:
+        beside = sorted(each.name for each in path.parent.iterdir() if each.suffix in {".yaml", ".yml", ".json"})
+    except (OSError, ValueError):
+        beside = []
+    near = nearest(path.name, beside)
+    return f"did you mean {quoted(near[0])}?" if near else "name a description in YAML or JSON"
+
+
 def _joined(files: Sequence[YamlFile], faults: list[Fault]) -> dict[str, Plain]:
+    if len(files) == 1:
+        return dict(files[0].data)
     data: dict[str, Plain] = {}
+    joining = _Joining(data, faults)
     for number, file in enumerate(files):
         for section, content in file.data.items():
-            if number and section == "include":
-                continue
-            _join(data, content, (section,), file, files[:number], faults)
+            if number == 0 or section != "include":
+                joining.put(data, content, (section,), file)
+        joining.earlier.append(file)
     return data
 
 
-def _join(
-    data: dict[str, Any], content: Plain, path: tuple[str, ...], file: YamlFile, earlier: Sequence[YamlFile],
-    faults: list[Fault],
-) -> None:  # fmt: skip
-    """Put one section, or one entry of the process data, into the joined data."""
-    key = path[-1]
-    old = data.get(key)
-    if old is None:
-        data[key] = dict(content) if isinstance(content, dict) else content
-    elif isinstance(old, list) and isinstance(content, list):
-        data[key] = old + content
-    elif (
-        isinstance(old, dict)
-        and isinstance(content, dict)
-        and (len(path) == 1 or path[0] == "process" and len(path) < 3)
-    ):
-        for name, entry in content.items():
-            _join(old, entry, (*path, name), file, earlier, faults)
-    else:
-        first = next((place for other in earlier if (place := other.place(path, key=True))), None)
-        place = file.place(path, key=True) or Place(file.name)
-        faults.append(Fault(place, dotted(path), f"given twice (first at {first})", "keep one of them"))
+class _Joining:
+    """Joins sections entry by entry; what cannot be joined is a fault."""
+
+    def __init__(self, data: dict[str, Plain], faults: list[Fault]) -> None:
+        self.data = data
+        self.faults = faults
+        self.earlier: list[YamlFile] = []
+
+    def put(self, into: dict[str, Any], content: Plain, path: tuple[str, ...], file: YamlFile) -> None:
+        """Put a section, or an entry of one, into the joined data."""
+        key = path[-1]
+        old = into.get(key)
+        joinable = len(path) < _depth_of_entries(path)
+        if old is None:
+            into[key] = _copied(content, _depth_of_entries(path) - len(path))
+        elif joinable and isinstance(old, list) and isinstance(content, list):
+            into[key] = old + content
+        elif joinable and isinstance(old, dict) and isinstance(content, dict):
+            for name, entry in content.items():
+                self.put(old, entry, (*path, name), file)
+        else:
+            first = next((place for other in self.earlier if (place := other.place(path, key=True))), None)
+            place = file.place(path, key=True) or Place(file.name)
+            self.faults.append(Fault(place, dotted(path), f"given twice (first at {first})", "keep one of them"))
+
+
+def _copied(content: Plain, levels: int) -> Plain:
+    """The content with its outer mappings copied: a joined description must not change what one file says."""
+    if levels and isinstance(content, dict):
+        return {key: _copied(value, levels - 1) for key, value in content.items()}
+    return content

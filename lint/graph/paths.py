@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections import deque
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import Edge, EdgeKind, Hop, Path
@@ -43,7 +43,8 @@ class Reach:
     def __contains__(self, element: str) -> bool:
         return element in self._came
 
-    def __iter__(self):  # type: ignore[no-untyped-def]
+    def __iter__(self) -> Iterator[str]:
+        """What was reached, the start first."""
         return iter(self._came)
 
     def path(self, goal: str) -> Path:
@@ -59,16 +60,12 @@ class Reach:
 
 def loop_through(start: str, neighbours: Neighbours) -> Path | None:
     """The shortest closed way from an element back to itself; None where there is none."""
-    best: Path | None = None
-    for there, words, _ in neighbours(start):
-        if there == start:
-            return (Hop(start, ""), Hop(start, words))
-        reach = Reach(there, neighbours)
-        if start in reach:
-            way = reach.path(start)
-            path = (Hop(start, ""), Hop(there, words), *way[1:])
-            best = path if best is None or len(path) < len(best) else best
-    return best
+    reach = Reach(start, neighbours)
+    for here in reach:  # nearest first, so that the first way back is the shortest
+        for there, words, _ in neighbours(here):
+            if there == start:
+                return (*reach.path(here), Hop(start, words))
+    return None
 
 
 def cut(neighbours: Neighbours, removed: str) -> Neighbours:

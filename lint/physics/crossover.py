@@ -205,7 +205,7 @@ def least_reference_ratio(
 
 
 def _where_it_exists(trip_v: FloatArray, exists: BoolArray) -> FloatArray:
-    exists = np.broadcast_to(np.asarray(exists), trip_v.shape)
+    trip_v, exists = np.broadcast_arrays(trip_v, exists)
     if not exists.all():
         raise NoCrossingError(exists)
-    return trip_v
+    return np.array(trip_v)

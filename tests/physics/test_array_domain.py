@@ -7,6 +7,7 @@ from collections.abc import Callable
 
 import numpy as np
 import pytest
+
 from tidegate.lint.physics.array_domain import FloatArray, between_0_and_1, finite, not_negative, positive
 from tidegate.lint.physics.domain import DomainError
 

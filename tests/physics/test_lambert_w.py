@@ -12,6 +12,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy import special
 from scipy.optimize import brentq
+
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.lambert_w import (
     diode_current_a,
@@ -76,8 +77,8 @@ def test_lower_branch_solves_its_equation(y: float) -> None:
     assert z - math.log(z) == pytest.approx(y, rel=1e-14)
 
 
-# Boost C++ libraries, math, example/lambert_w_diode.cpp: IS 25 fA, n = 1; its rounded constants k = 1.38e-23, q = 1.6e-19
-# and 298 K reproduce the printed digits.
+# Boost C++ libraries, math, example/lambert_w_diode.cpp: IS 25 fA, n = 1; its rounded constants k = 1.38e-23,
+# q = 1.6e-19 and 298 K reproduce the printed digits.
 BOOST_EMISSION_V = 1.38e-23 * 298.0 / 1.6e-19
 BOOST_SATURATION_A = 25e-15
 
@@ -111,7 +112,7 @@ def test_diode_behind_a_resistor_against_scipy(source_v: float) -> None:
         saturation_a=BOOST_SATURATION_A,
         emission_v=BOOST_EMISSION_V,
     )
-    assert found == pytest.approx(DERIVED_A[source_v], rel=3e-5)
+    assert found == pytest.approx(DERIVED_A[source_v], rel=5e-5)  # five digits, some of which end in zeros
     for ohm, amp in zip(DERIVED_OHM, found, strict=True):
 
         def excess_a(v: float, ohm: float = ohm) -> float:

@@ -9,6 +9,7 @@ import pytest
 from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 from scipy.optimize import brentq
+
 from tidegate.lint.physics import trip_margin
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.placement import (

@@ -11,6 +11,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy import constants
 from scipy.integrate import solve_ivp
+
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.silicon import (
     SILICON_GAP,
@@ -53,8 +54,8 @@ def test_thermal_voltage() -> None:
     assert float(thermal_voltage_v(t_k=300.0)) * math.log(10.0) == pytest.approx(59.526e-3, abs=5e-7)
 
 
-# B. Razavi, Design of Analog CMOS Integrated Circuits (second-hand, from lecture notes), m = -3/2; the first prints -1.88
-# with V_T taken as 26 mV, the second about -1.5. The last two are the same law, derived.
+# B. Razavi, Design of Analog CMOS Integrated Circuits (second-hand, from lecture notes), m = -3/2; the first prints
+# -1.88 with V_T taken as 26 mV, the second about -1.5. The last two are the same law, derived.
 SLOPES = (
     ("razavi-second-hand-0.70-V", 0.70, 1.20, -1.88, 0.005),
     ("razavi-second-hand-0.75-V", 0.75, 1.12, -1.4488, 0.0001),

@@ -6,6 +6,7 @@ import math
 from collections.abc import Callable
 
 import pytest
+
 from tidegate.lint.physics import trip_margin
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.trip_window import TripWindow, Window, window_from_ranges

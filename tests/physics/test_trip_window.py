@@ -10,6 +10,7 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.tolerance import Contributor, Kind
 from tidegate.lint.physics.trip_window import (

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import Literal
 
-from tidegate.lint.description.model.part import Part
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
+from tidegate.lint.description.model.part import Part
 from tidegate.lint.description.model.process import Process
 from tidegate.lint.description.model.reset_path import Bypass, Load, Neighbour, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain, Rail

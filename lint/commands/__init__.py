@@ -1,0 +1,1 @@
+"""The commands, one file each: its options, and what it does with them."""

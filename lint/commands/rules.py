@@ -1,0 +1,87 @@
+"""``tidegate rules``: the catalogue, and one rule in full."""
+
+from __future__ import annotations
+
+import argparse
+import inspect
+import textwrap
+from collections.abc import Iterator, Sequence
+from difflib import get_close_matches
+
+from tidegate.lint.commands.streams import Exit, Streams
+from tidegate.lint.rule import Rule
+
+_WIDTH = 78
+
+
+def configure(parser: argparse.ArgumentParser) -> None:
+    """Declare the options."""
+    parser.add_argument("id", nargs="?", metavar="ID", help="a rule (family/name) or a family; all of them if left out")
+
+
+def run(options: argparse.Namespace, streams: Streams, families: Sequence[Sequence[Rule]]) -> int:
+    """Print the catalogue, a family of it, or one rule with formula, facts, sources, example and mend."""
+    rules = [rule for family in families for rule in family]
+    if options.id is None or any(rule.family == options.id for rule in rules):
+        shown = [rule for rule in rules if options.id in (None, rule.family)]
+        streams.out.write("\n".join(_listed(shown)) + "\n")
+        return Exit.KEPT
+    rule = next((rule for rule in rules if rule.id == options.id), None)
+    if rule is None:
+        known = [rule.id for rule in rules] + sorted({rule.family for rule in rules})
+        near = get_close_matches(options.id, known, 1)
+        hint = f"did you mean {near[0]}?" if near else "tidegate rules lists them"
+        streams.err.write(f"no rule or family is called {options.id!r}; {hint}\n")
+        return Exit.UNUSABLE
+    streams.out.write("\n".join(_in_full(rule)) + "\n")
+    return Exit.KEPT
+
+
+def _listed(rules: Sequence[Rule]) -> Iterator[str]:
+    family = ""
+    longest = max(len(rule.id) for rule in rules)
+    for rule in rules:
+        if rule.family != family:
+            if family:
+                yield ""
+            family = rule.family
+            yield family.replace("_", " ")
+        yield f"  {rule.id.ljust(longest)}  {rule.level.value.ljust(7)}  {rule.title}"
+
+
+def _in_full(rule: Rule) -> Iterator[str]:
+    yield f"{rule.id}   ({rule.level.value}, judges {rule.applies_to.replace('_', ' ')})"
+    yield f"  {rule.title}"
+    yield ""
+    yield from _part("proves", [rule.proves])
+    for formula in rule.formulas:
+        yield from _formula(formula)
+    yield from _part("facts", rule.facts)
+    yield from _part("mend", [rule.mend])
+    yield from _part("sources", rule.sources)
+    yield from _part("fails with", [rule.example.fails], fill=False)
+    yield from _part("holds with", [rule.example.holds], fill=False)
+    source = inspect.getsourcefile(rule.judge)
+    module = inspect.getmodule(rule.judge)
+    if source and module:
+        yield from _part("code", [f"{module.__name__}.{rule.judge.__name__}"])
+
+
+def _part(label: str, texts: Sequence[str], *, fill: bool = True) -> Iterator[str]:
+    """A label, and texts that keep clear of it."""
+    head = f"  {label}".ljust(14)
+    for text in texts:
+        lines = textwrap.wrap(text, _WIDTH - 14, break_on_hyphens=False) if fill else text.splitlines()
+        for line in lines:
+            yield head + line
+            head = " " * 14
+
+
+def _formula(formula: object) -> Iterator[str]:
+    """The contract of a formula as its documentation states it, with the module to read on in."""
+    module = inspect.getmodule(formula)
+    name = f"{module.__name__}.{getattr(formula, '__name__', '')}" if module else ""
+    yield from _part("formula", [name])
+    lines = inspect.cleandoc(inspect.getdoc(formula) or "").splitlines()
+    for line in lines:
+        yield (" " * 16 + line).rstrip()

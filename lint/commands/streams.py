@@ -1,0 +1,36 @@
+"""The outside world as a command sees it: where it writes, how wide that is, and which day it is."""
+
+from __future__ import annotations
+
+import datetime
+from dataclasses import dataclass
+from enum import IntEnum
+from typing import TYPE_CHECKING, TextIO
+
+if TYPE_CHECKING:
+    from rich.console import Console
+
+
+class Exit(IntEnum):
+    """Exit statuses."""
+
+    KEPT = 0
+    FINDINGS = 1
+    UNUSABLE = 2
+    RULE_FAULT = 3
+
+
+@dataclass(frozen=True, slots=True)
+class Streams:
+    """Output, errors and the date; made by the command line, handed to every command."""
+
+    out: TextIO
+    err: TextIO
+    today: datetime.date
+
+    def console(self, *, error: bool = False) -> Console:
+        """A console on the output or the error stream that takes text as it is: no markup, no emoji."""
+        from rich.console import Console
+
+        file = self.err if error else self.out
+        return Console(file=file, markup=False, emoji=False, highlight=False, soft_wrap=True)

@@ -1,0 +1,55 @@
+"""The schema, looked up by the path of a value."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping, Sequence
+from typing import Any
+
+from tidegate.lint.description.place import Step
+
+Schema = Mapping[str, Any]
+
+
+def object_at(schema: Schema, path: Sequence[Step]) -> Schema | None:
+    """The schema of the mapping at a path; None where the schema knows none there."""
+    node: Schema | None = schema
+    for step in path:
+        node = child_of(node, step) if node is not None else None
+        node = _object_behind(node, schema["$defs"]) if node is not None else None
+    return node
+
+
+def child_of(node: Schema, step: Step) -> Schema | None:
+    """The schema of one value of a mapping or list, references not followed."""
+    child = node.get("items") if isinstance(step, int) else node.get("properties", {}).get(step)
+    if child is None and isinstance(step, str):
+        child = node.get("additionalProperties")
+    return child if isinstance(child, dict) else None
+
+
+def example_at(schema: Schema, path: Sequence[Step]) -> Any:
+    """An example of the value at a path; None where the schema gives none."""
+    above = object_at(schema, path[:-1]) if path else None
+    for node in _with_references(child_of(above, path[-1]) if above else None, schema["$defs"]):
+        if node.get("examples"):
+            return node["examples"][0]
+    if len(path) > 1:  # an entry of a list or of a section, whose example holds one
+        around = example_at(schema, path[:-1])
+        if isinstance(around, list) and around:
+            return around[0]
+        if isinstance(around, dict) and around and above and path[-1] not in above.get("properties", {}):
+            return next(iter(around.values()))
+    return None
+
+
+def _with_references(node: Schema | None, defs: Schema) -> Iterator[Schema]:
+    while node is not None:
+        yield node
+        node = defs[node["$ref"].rpartition("/")[2]] if "$ref" in node else None
+
+
+def _object_behind(node: Schema, defs: Schema) -> Schema:
+    """Follow references and choices to the schema of a mapping or list."""
+    while "$ref" in node or "anyOf" in node:
+        node = defs[node["$ref"].rpartition("/")[2]] if "$ref" in node else node["anyOf"][-1]
+    return node

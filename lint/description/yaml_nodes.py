@@ -1,0 +1,149 @@
+"""Bytes to a tree of YAML nodes with their places.
+
+What a scalar means is left open here: no node is given a type by the parser, so that none of the types of YAML 1.1 can
+slip in.  The C parser of PyYAML and the pure Python one give the same tree; where a text cannot be parsed, the pure one
+says why, because its wording does not depend on the installation.
+"""
+
+from __future__ import annotations
+
+import re
+from typing import Any, Final, Protocol
+
+import yaml
+
+from tidegate.lint.description.place import DescriptionError, Fault, Place
+
+MOST_BYTES: Final = 64 * 1024 * 1024
+"""Largest file that is read."""
+MOST_DEPTH: Final = 32
+"""Deepest nesting of mappings and lists that is read."""
+
+UNTYPED: Final = "?"
+"""The tag of every node that the file gives none."""
+
+# Neither text nor harmless: control characters, halves of surrogate pairs, line ends that editors do not count as
+# such, marks of byte order inside the text.
+NOT_TEXT: Final = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x9f\u2028\u2029\ud800-\udfff\ufeff\ufffe\uffff]")
+
+
+class Parser(Protocol):
+    """Composes the one document of a text."""
+
+    def get_single_node(self) -> yaml.Node | None:
+        """The root node; None where the text holds no document."""
+
+    def dispose(self) -> None:
+        """Break the rings between the parser and its parts."""
+
+
+class _Untyped:
+    """What both parsers ask about each node; the answers keep them from deciding anything."""
+
+    def resolve(self, kind: Any, value: Any, implicit: Any) -> str:
+        return UNTYPED
+
+    def descend_resolver(self, parent: Any, index: Any) -> None:
+        pass
+
+    def ascend_resolver(self) -> None:
+        pass
+
+
+class PureParser(_Untyped, yaml.BaseLoader):
+    """The pure Python parser; refuses deep nesting before it runs out of stack."""
+
+    def __init__(self, text: str) -> None:
+        super().__init__(text)
+        self._depth = 0
+
+    def compose_node(self, parent: yaml.Node | None, index: Any) -> yaml.Node | None:
+        """Compose a node and what is below it."""
+        if self._depth > MOST_DEPTH and not self.check_event(yaml.ScalarEvent, yaml.AliasEvent):
+            raise TooDeepError(self.peek_event().start_mark)
+        self._depth += 1
+        node = super().compose_node(parent, index)
+        self._depth -= 1
+        return node
+
+
+class TooDeepError(Exception):
+    """A mapping or list lies deeper than any description needs."""
+
+    def __init__(self, mark: yaml.Mark) -> None:
+        self.mark = mark
+        super().__init__()
+
+    def fault(self, name: str) -> Fault:
+        """The fault of the file of this name."""
+        place = Place(name, self.mark.line + 1, self.mark.column + 1)
+        return Fault(place, "", f"nested more than {MOST_DEPTH} levels deep", "a description needs far fewer")
+
+
+try:
+    from yaml.cyaml import CParser
+except ImportError:  # PyYAML built without its C part
+    PARSER: type[Parser] = PureParser
+else:
+
+    class FastParser(_Untyped, CParser):
+        """The C parser."""
+
+    PARSER = FastParser
+
+
+def node_tree(name: str, content: bytes, parser: type[Parser] = PARSER) -> yaml.Node | None:
+    """The root node of the content of a file; None where it holds no document.
+
+    Raises: DescriptionError: where the content is no text, or no YAML.
+    """
+    text = _decoded(name, content)
+    # The two parsers read tabs differently; what both must refuse, the pure one does.
+    tabs = "\t" in text
+    if tabs and text.lstrip().startswith("{"):
+        text, tabs = text.replace("\t", " "), False  # JSON: its quoted texts hold no bare tab
+    try:
+        return _composed(text, PureParser if tabs else parser)
+    except (yaml.YAMLError, TooDeepError):
+        pass
+    try:
+        return _composed(text, PureParser)
+    except TooDeepError as error:
+        raise DescriptionError([error.fault(name)]) from None
+    except yaml.YAMLError as error:
+        # Loaded here alone: a file without faults does not pay for the wording of faults.
+        from tidegate.lint.description.syntax_faults import syntax_fault
+
+        raise DescriptionError([syntax_fault(name, error, text)]) from None
+
+
+def _composed(text: str, parser: type[Any]) -> yaml.Node | None:
+    composer: Parser = parser(text)
+    try:
+        return composer.get_single_node()
+    finally:
+        composer.dispose()
+
+
+def _decoded(name: str, content: bytes) -> str:
+    if len(content) > MOST_BYTES:
+        problem = f"more than {MOST_BYTES // 2**20} MiB"
+        raise DescriptionError([Fault(Place(name), "", problem, "split the description")])
+    try:
+        text = content.decode("utf-8-sig")
+    except UnicodeDecodeError as error:
+        place = _place_after(name, content[: error.start].decode("utf-8-sig", "replace"))
+        problem = f"byte 0x{content[error.start]:02X} is not UTF-8"
+        raise DescriptionError([Fault(place, "", problem, "save the file as UTF-8")]) from None
+    if b"\x00" in content[:4]:
+        raise DescriptionError([Fault(Place(name, 1, 1), "", "the file is UTF-16 or UTF-32", "save it as UTF-8")])
+    found = NOT_TEXT.search(text)
+    if found:
+        place = _place_after(name, text[: found.start()])
+        raise DescriptionError([Fault(place, "", f"the character U+{ord(found[0]):04X}", "remove it")])
+    return text
+
+
+def _place_after(name: str, before: str) -> Place:
+    lines = re.split("\r\n|[\n\r]", before)
+    return Place(name, len(lines), len(lines[-1]) + 1)

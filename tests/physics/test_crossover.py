@@ -1,0 +1,314 @@
+"""Trip levels without a reference: SciPy's root finder on the circuit equations, at corners and at random draws."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+
+import numpy as np
+import pytest
+from scipy.optimize import brentq
+
+from tidegate.lint.physics.corner_spread import factorial_corners
+from tidegate.lint.physics.crossover import (
+    NoCrossingError,
+    RisingReference,
+    crude_overtakes_v,
+    divider_diode_trip_v,
+    divider_mos_trip_v,
+    least_reference_ratio,
+    reference_overtakes_v,
+)
+from tidegate.lint.physics.domain import DomainError
+from tidegate.lint.physics.fed_branch import Branch, DiodeBranch, MosBranch
+from tidegate.lint.physics.mos_threshold import gain_a_per_v2, specific_current_a, threshold_linear_v
+from tidegate.lint.physics.resistor import resistance_ohm
+from tidegate.lint.physics.silicon import saturation_current_a, thermal_voltage_v
+
+# Circuits are invented. Saturation current, its law and its corners are the model card of the GF180 pnp
+# (sm141064.ngspice L47295-47308, L309-, L339- in google/globalfoundries-pdk-libs-gf180mcu_fd_pr at 9f992d5a).
+SATURATION_A, GAP_EV, XTI, NOMINAL_K = 9e-19, 1.17, 3.0, 298.15
+K_OVER_Q = 1.380649e-23 / 1.602176634e-19
+SLOPE_FACTOR = 1.3
+
+DIODE_SPANS = {
+    "series_ohm": (0.8e6, 1.0e6, 1.2e6),
+    "saturation_a": (0.65 * SATURATION_A, SATURATION_A, 1.35 * SATURATION_A),
+    "offset_v": (-0.008, 0.0, 0.008),
+    "divider_ratio": (0.42, 0.45),
+    "t_k": (233.15, 273.15, 298.15, 348.15, 398.15),
+}
+MOS_SPANS = {
+    "series_ohm": (0.8e6, 1.0e6, 1.2e6),
+    "threshold_v": (0.53, 0.63, 0.73),
+    "offset_v": (-0.008, 0.0, 0.008),
+    "divider_ratio": (0.5, 0.6),
+    "t_k": (233.15, 273.15, 298.15, 348.15, 398.15),
+}
+
+Values = dict[str, np.ndarray]
+
+
+def diode_branch(c: Values) -> DiodeBranch:
+    ohm = resistance_ohm(t_k=c["t_k"], r_ref_ohm=c["series_ohm"], t_ref_k=NOMINAL_K, tc1_per_k=-0.9e-4, tc2_per_k2=7e-7)
+    saturation_a = saturation_current_a(
+        t_k=c["t_k"], is_ref_a=c["saturation_a"], t_ref_k=NOMINAL_K, xti=XTI, gap_ev=GAP_EV
+    )
+    return DiodeBranch(ohm, saturation_a, thermal_voltage_v(t_k=c["t_k"]))
+
+
+def mos_branch(c: Values) -> MosBranch:
+    threshold_v = threshold_linear_v(
+        t_k=c["t_k"], threshold_ref_v=c["threshold_v"], t_ref_k=NOMINAL_K, fall_v_per_k=1.54e-3
+    )
+    gain = gain_a_per_v2(t_k=c["t_k"], gain_ref_a_per_v2=2e-5, t_ref_k=NOMINAL_K, exponent=-1.5)
+    specific_a = specific_current_a(t_k=c["t_k"], gain=gain, slope_factor=SLOPE_FACTOR)
+    return MosBranch(c["series_ohm"], threshold_v, SLOPE_FACTOR, specific_a, thermal_voltage_v(t_k=c["t_k"]))
+
+
+def diode_trip_v(c: Values) -> np.ndarray:
+    return divider_diode_trip_v(diode_branch(c), divider_ratio=c["divider_ratio"], offset_v=c["offset_v"])
+
+
+def mos_trip_v(c: Values) -> np.ndarray:
+    return divider_mos_trip_v(mos_branch(c), divider_ratio=c["divider_ratio"], offset_v=c["offset_v"])
+
+
+# The two circuits again, scalar and written out independently: what is left of the current at a supply.
+
+
+def diode_law_a(v: float, *, series_ohm: float, saturation_a: float, t_k: float) -> tuple[float, float]:
+    above = t_k - NOMINAL_K
+    exponent = XTI * math.log(t_k / NOMINAL_K) + GAP_EV / K_OVER_Q * (1.0 / NOMINAL_K - 1.0 / t_k)
+    current_a = saturation_a * math.exp(exponent) * math.expm1(v / (K_OVER_Q * t_k))
+    return current_a, series_ohm * (1.0 - 0.9e-4 * above + 7e-7 * above * above)
+
+
+def mos_law_a(v: float, *, series_ohm: float, threshold_v: float, t_k: float) -> tuple[float, float]:
+    vt = K_OVER_Q * t_k
+    specific_a = 2.0 * SLOPE_FACTOR * 2e-5 * (t_k / NOMINAL_K) ** -1.5 * vt * vt
+    x = (v - threshold_v + 1.54e-3 * (t_k - NOMINAL_K)) / (2.0 * SLOPE_FACTOR * vt)
+    softplus = max(x, 0.0) + math.log1p(math.exp(-abs(x)))
+    return specific_a * softplus * softplus, series_ohm
+
+
+Law = Callable[..., tuple[float, float]]
+
+
+def brentq_trip_v(law: Law, offset_v: float, divider_ratio: float, **device: float) -> float:
+    def excess_a(supply_v: float) -> float:
+        device_v = divider_ratio * supply_v - offset_v
+        current_a, ohm = law(device_v, **device)
+        return (supply_v - device_v) / ohm - current_a
+
+    return float(brentq(excess_a, 0.25, 6.0, xtol=1e-13, rtol=1e-14))
+
+
+CASES = (
+    pytest.param(diode_trip_v, diode_law_a, DIODE_SPANS, id="diode"),
+    pytest.param(mos_trip_v, mos_law_a, MOS_SPANS, id="mos"),
+)
+
+
+def rows_of(values: Values) -> list[dict[str, float]]:
+    return [dict(zip(values, map(float, row), strict=True)) for row in zip(*values.values(), strict=True)]
+
+
+@pytest.mark.parametrize(("trip_v", "law", "spans"), CASES)
+def test_every_corner_of_a_factorial_against_scipy(
+    trip_v: Callable[[Values], np.ndarray], law: Law, spans: dict[str, tuple[float, ...]]
+) -> None:
+    corners = factorial_corners(spans)
+    expected = [brentq_trip_v(law, **row) for row in rows_of(corners)]
+    assert trip_v(corners) == pytest.approx(np.array(expected), abs=1e-11)
+
+
+@pytest.mark.parametrize(("trip_v", "law", "spans"), CASES)
+def test_random_parts_lie_inside_the_window_of_the_corners(
+    trip_v: Callable[[Values], np.ndarray], law: Law, spans: dict[str, tuple[float, ...]]
+) -> None:
+    generator = np.random.default_rng(11)
+    drawn = {name: generator.uniform(min(v), max(v), 10_000) for name, v in spans.items()}
+    found = trip_v(drawn)
+    corners = trip_v(factorial_corners({**spans, "t_k": tuple(np.linspace(233.15, 398.15, 34))}))
+    assert corners.min() <= found.min() <= found.max() <= corners.max()
+    for index in range(0, 10_000, 100):  # a hundred of them against SciPy as well
+        row = {name: float(values[index]) for name, values in drawn.items()}
+        assert found[index] == pytest.approx(brentq_trip_v(law, **row), abs=1e-11)
+
+
+def test_a_leaky_diode_never_gets_ahead() -> None:
+    # By hand: at 0 V the diode takes 1/(1 + IS R/(n V_T)) of the supply; a divider with more leads from the start.
+    limit_a = 0.026 / 1e6 * (1.0 - 0.4) / 0.4
+    saturation_a = limit_a * np.array([0.5, 0.999, 1.001, 2.0])
+    branch = DiodeBranch(1e6, saturation_a, 0.026)
+    with pytest.raises(NoCrossingError) as caught:
+        divider_diode_trip_v(branch, divider_ratio=0.4, offset_v=0.0)
+    assert caught.value.exists.tolist() == [True, True, False, False]
+    assert str(caught.value) == "no crossing at 2 of 4 corners, first at index (2,)"
+    with pytest.raises(NoCrossingError, match=r"^no crossing at 1 of 1 corners$"):
+        divider_diode_trip_v(DiodeBranch(1e6, 2.0 * limit_a, 0.026), divider_ratio=0.4, offset_v=0.0)
+
+
+def test_an_offset_that_favours_the_divider_too_much_leaves_no_crossing() -> None:
+    diode = DiodeBranch(1e6, 9e-19, 0.026)
+    assert float(divider_diode_trip_v(diode, divider_ratio=0.45, offset_v=-0.05)) > 1.0
+    with pytest.raises(NoCrossingError):
+        divider_diode_trip_v(diode, divider_ratio=0.45, offset_v=-0.5)
+    mos = MosBranch(1e6, 0.6, 1.3, 5e-8, 0.026)
+    assert float(divider_mos_trip_v(mos, divider_ratio=0.5, offset_v=-0.05)) > 0.5
+    with pytest.raises(NoCrossingError):
+        divider_mos_trip_v(mos, divider_ratio=0.5, offset_v=-0.5)
+
+
+def test_levels_move_the_way_they_must() -> None:
+    # A larger part, more leakage, a lower threshold: the part overtakes sooner. A larger offset: later.
+    diode = DiodeBranch(1e6, np.array([9e-19, 1.8e-18]), 0.026)
+    by_leakage = divider_diode_trip_v(diode, divider_ratio=0.45, offset_v=0.0)
+    assert by_leakage[1] < by_leakage[0]
+    mos = MosBranch(1e6, np.array([0.6, 0.5]), 1.3, 5e-8, 0.026)
+    by_threshold = divider_mos_trip_v(mos, divider_ratio=0.5, offset_v=0.0)
+    assert by_threshold[1] < by_threshold[0]
+    ratios, offsets = np.array([0.40, 0.45]), np.array([0.0, 0.01])
+    for trip_v in (
+        lambda **k: divider_diode_trip_v(DiodeBranch(1e6, 9e-19, 0.026), **k),
+        lambda **k: divider_mos_trip_v(MosBranch(1e6, 0.6, 1.3, 5e-8, 0.026), **k),
+    ):
+        assert np.diff(trip_v(divider_ratio=ratios, offset_v=0.0))[0] < 0.0
+        assert np.diff(trip_v(divider_ratio=0.45, offset_v=offsets))[0] > 0.0
+
+
+# --- crude current against a reference's own ---------------------------------------------------------------------
+
+DIODE = DiodeBranch(series_ohm=np.array([1e6, 0.8e6]), saturation_a=9e-19, emission_v=0.0257)
+MOS = MosBranch(series_ohm=np.array([1e6, 0.8e6]), threshold_v=0.6, slope_factor=1.3, specific_a=5e-8, thermal_v=0.0257)
+BRANCHES = (pytest.param(DIODE, id="diode"), pytest.param(MOS, id="mos"))
+
+
+def device_voltage_v(branch: Branch, current_a: float) -> float:
+    if isinstance(branch, DiodeBranch):
+        return 0.0257 * math.log1p(current_a / 9e-19)
+    return 0.6 + 2.0 * 1.3 * 0.0257 * math.log(math.expm1(math.sqrt(current_a / 5e-8)))
+
+
+def brentq_crude_a(branch: Branch, ohm: float, supply_v: float) -> float:
+    def excess_v(log_a: float) -> float:
+        return math.exp(log_a) * ohm + device_voltage_v(branch, math.exp(log_a)) - supply_v
+
+    return math.exp(brentq(excess_v, math.log(1e-25), math.log(1e-3), xtol=1e-14, rtol=1e-14))
+
+
+@pytest.mark.parametrize("branch", BRANCHES)
+@pytest.mark.parametrize("supply_v", [0.3, 0.6, 1.2, 3.6])
+def test_crude_current_against_scipy(branch: Branch, supply_v: float) -> None:
+    expected = [brentq_crude_a(branch, ohm, supply_v) for ohm in np.asarray(branch.series_ohm)]
+    assert branch.current_a(supply_v) == pytest.approx(np.array(expected), rel=1e-9)
+
+
+@pytest.mark.parametrize("branch", BRANCHES)
+def test_reference_overtakes_where_scipy_says(branch: Branch) -> None:
+    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=8e-6)
+    found = reference_overtakes_v(branch, mirror_ratio=2.0, reference=reference)
+    for ohm, trip_v in zip(np.asarray(branch.series_ohm), found, strict=True):
+
+        def excess_a(v: float, ohm: float = ohm) -> float:
+            return float(reference.current_a(v)) - 2.0 * brentq_crude_a(branch, ohm, v)
+
+        assert trip_v == pytest.approx(brentq(excess_a, 0.9, 1.3, xtol=1e-13), abs=1e-10)
+
+
+@pytest.mark.parametrize("branch", BRANCHES)
+def test_crude_overtakes_where_scipy_says(branch: Branch) -> None:
+    found = crude_overtakes_v(branch, mirror_ratio=2.0, regulated_a=8e-6)
+    for ohm, level_v in zip(np.asarray(branch.series_ohm), found, strict=True):
+        expected = brentq(lambda v, ohm=ohm: brentq_crude_a(branch, ohm, v) - 4e-6, 0.9, 12.0, xtol=1e-13)
+        assert level_v == pytest.approx(expected, abs=1e-10)
+
+
+@pytest.mark.parametrize("branch", BRANCHES)
+@pytest.mark.parametrize(("least_v", "most_v"), [(1.1, 3.6), (1.1, 1.25), (2.0, 5.5)])
+def test_least_ratio_is_what_a_dense_sweep_finds(branch: Branch, least_v: float, most_v: float) -> None:
+    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=8e-6)
+    found = least_reference_ratio(
+        branch, mirror_ratio=2.0, reference=reference, supply_least_v=least_v, supply_most_v=most_v
+    )
+    swept_v = np.linspace(least_v, most_v, 400)
+    swept = np.array([reference.current_a(v) / (2.0 * branch.current_a(v)) for v in swept_v])
+    assert found == pytest.approx(swept.min(axis=0), rel=1e-9)
+
+
+@pytest.mark.parametrize("branch", BRANCHES)
+def test_ratio_is_one_at_both_crossings(branch: Branch) -> None:
+    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=8e-6)
+    first = reference_overtakes_v(branch, mirror_ratio=2.0, reference=reference)
+    second = crude_overtakes_v(branch, mirror_ratio=2.0, regulated_a=8e-6)
+    assert np.all(first < second)
+    for level_v in (first, second):
+        ratio = reference.current_a(level_v) / (2.0 * branch.current_a(level_v))
+        assert ratio == pytest.approx(np.ones(2), rel=1e-9)
+
+
+def test_a_reference_below_the_crude_current_never_overtakes() -> None:
+    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=np.array([8e-6, 1e-9]))
+    with pytest.raises(NoCrossingError) as caught:
+        reference_overtakes_v(DIODE, mirror_ratio=2.0, reference=reference)
+    assert caught.value.exists.tolist() == [True, False]
+
+
+def test_corners_of_the_reference_alone_broadcast() -> None:
+    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=np.array([8e-6, 9e-6]))
+    found = reference_overtakes_v(DiodeBranch(1e6, 9e-19, 0.0257), mirror_ratio=2.0, reference=reference)
+    assert found.shape == (2,)
+    assert found[0] == found[1]
+
+
+REFERENCE = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=8e-6)
+REFUSALS: tuple[tuple[Callable[[], object], str], ...] = (
+    (lambda: DiodeBranch(0.0, 1e-18, 0.026), "series_ohm must be greater than 0 (found 0.0)"),
+    (lambda: DiodeBranch(1e6, 0.0, 0.026), "saturation_a must be greater than 0 (found 0.0)"),
+    (lambda: DiodeBranch(1e6, 1e-18, -1.0), "emission_v must be greater than 0 (found -1.0)"),
+    (lambda: MosBranch(1e6, math.nan, 1.3, 5e-8, 0.026), "threshold_v must be a finite number (found nan)"),
+    (lambda: MosBranch(1e6, 0.6, 0.0, 5e-8, 0.026), "slope_factor must be greater than 0 (found 0.0)"),
+    (
+        lambda: MosBranch(1e6, 0.6, 1.3, np.array([5e-8, 0.0]), 0.026),
+        "specific_a must be greater than 0 (found 0.0 at index (1,))",
+    ),
+    (lambda: MosBranch(1e6, 0.6, 1.3, 5e-8, 0.0), "thermal_v must be greater than 0 (found 0.0)"),
+    (
+        lambda: divider_diode_trip_v(DIODE, divider_ratio=1.0, offset_v=0.0),
+        "divider_ratio must be between 0 and 1, ends excluded (found 1.0)",
+    ),
+    (
+        lambda: divider_mos_trip_v(MOS, divider_ratio=0.5, offset_v=math.nan),
+        "offset_v must be a finite number (found nan)",
+    ),
+    (lambda: MOS.current_a(-0.1), "source_v must be at least 0 (found -0.1)"),
+    (lambda: RisingReference(-0.1, 1e-6, 1e-6), "start_v must be at least 0 (found -0.1)"),
+    (lambda: RisingReference(0.9, 0.0, 1e-6), "rise_a_per_v must be greater than 0 (found 0.0)"),
+    (lambda: RisingReference(0.9, 1e-6, 0.0), "regulated_a must be greater than 0 (found 0.0)"),
+    (
+        lambda: reference_overtakes_v(DIODE, mirror_ratio=0.0, reference=REFERENCE),
+        "mirror_ratio must be greater than 0 (found 0.0)",
+    ),
+    (
+        lambda: reference_overtakes_v(DIODE, mirror_ratio=40.0, reference=REFERENCE),
+        "rise_a_per_v must be greater than mirror_ratio / series_ohm",
+    ),
+    (
+        lambda: crude_overtakes_v(DIODE, mirror_ratio=1.0, regulated_a=0.0),
+        "regulated_a must be greater than 0 (found 0.0)",
+    ),
+    (
+        lambda: least_reference_ratio(
+            DIODE, mirror_ratio=1.0, reference=REFERENCE, supply_least_v=3.0, supply_most_v=2.0
+        ),
+        "supply_most_v must be at least supply_least_v",
+    ),
+)
+
+
+@pytest.mark.parametrize(("call", "message"), REFUSALS, ids=[row[1] for row in REFUSALS])
+def test_refused(call: Callable[[], object], message: str) -> None:
+    with pytest.raises(DomainError) as caught:
+        call()
+    assert str(caught.value) == message

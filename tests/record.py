@@ -1,0 +1,91 @@
+"""Writes everything that is recorded from the code: `python tests/record.py`; tests fail where it is stale.
+
+What it writes is read by a person before it is committed: recorded output freezes mistakes.
+"""
+
+from __future__ import annotations
+
+import contextlib
+import io
+import os
+from collections.abc import Callable, Iterator, Mapping
+from pathlib import Path
+
+ROOT = Path(__file__).resolve().parents[1]
+
+
+@contextlib.contextmanager
+def in_project(columns: int = 80) -> Iterator[None]:
+    """Run from the root of the project, at a fixed width: the recorded paths and line breaks depend on both."""
+    before, width = Path.cwd(), os.environ.get("COLUMNS")
+    os.chdir(ROOT)
+    os.environ["COLUMNS"] = str(columns)
+    try:
+        yield
+    finally:
+        os.chdir(before)
+        os.environ.pop("COLUMNS") if width is None else os.environ.update(COLUMNS=width)
+
+
+def command(*arguments: str) -> str:
+    """What a command prints."""
+    from tidegate.lint.cli import main
+
+    out = io.StringIO()
+    with in_project(), contextlib.redirect_stdout(out):
+        main(arguments)
+    return out.getvalue()
+
+
+def completion(shell: str) -> str:
+    """The completion script of a shell, from the options themselves."""
+    import shtab
+
+    from tidegate.lint.cli import parser
+
+    text: str = shtab.complete(parser(), shell)
+    return text.rstrip() + "\n"
+
+
+def recorded() -> Mapping[str, Callable[[], str]]:
+    """Every recorded file, and how its text is made."""
+    return {
+        "lint/completion/tidegate.bash": lambda: completion("bash"),
+        "lint/completion/tidegate.zsh": lambda: completion("zsh"),
+        "lint/completion/tidegate.tcsh": lambda: completion("tcsh"),
+        "examples/starter.yaml": lambda: command("start"),
+        "tests/golden/sound.txt": lambda: command("review", "examples/sound.yaml"),
+        "tests/golden/sound_every.txt": lambda: command("review", "--every", "examples/sound.yaml"),
+        "tests/golden/faulty.txt": lambda: command("review", "examples/faulty.yaml"),
+        "tests/golden/faulty.json": lambda: command("review", "--as", "json", "examples/faulty.yaml"),
+        "tests/golden/starter.txt": lambda: command("review", "examples/starter.yaml"),
+        "tests/golden/rules.txt": lambda: command("rules"),
+        "tests/golden/help.txt": _help,
+    }
+
+
+def _help() -> str:
+    from tidegate.lint.cli import _COMMANDS, parser
+
+    texts = []
+    with in_project():
+        top = parser()
+        texts.append(top.format_help())
+        actions = next(a for a in top._actions if a.dest == "command")
+        texts += [actions.choices[name].format_help() for name in _COMMANDS]  # type: ignore[index]
+    return "\n".join(texts)
+
+
+def main() -> None:
+    """Write what is stale."""
+    for name, make in recorded().items():
+        path = ROOT / name
+        text = make()
+        if not path.exists() or path.read_text("utf-8") != text:
+            path.parent.mkdir(parents=True, exist_ok=True)
+            path.write_text(text, "utf-8")
+            print(f"wrote {name}")
+
+
+if __name__ == "__main__":
+    main()

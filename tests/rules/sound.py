@@ -1,0 +1,82 @@
+"""The sound example with a patch laid over it, judged by one family of rules: what the tests of all families share."""
+
+from __future__ import annotations
+
+import datetime
+import json
+import tempfile
+from collections.abc import Mapping, Sequence
+from functools import cache
+from pathlib import Path
+from typing import Any, Final
+
+import yaml
+
+from tidegate.lint.description.load import Loaded, load
+from tidegate.lint.description.sources import read_sources
+from tidegate.lint.engine import Catalogue, review
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.lint.rule import Rule
+
+SOUND: Final = Path(__file__).parents[2] / "examples" / "sound.yaml"
+TODAY: Final = datetime.date(2026, 1, 1)
+
+Judgements = Mapping[tuple[str, str], Judgement]
+"""Judgements by rule and subject."""
+
+
+def patched(patch_yaml: str) -> Loaded:
+    """The sound example with a patch laid over it: mappings are merged, ``null`` removes a key.
+
+    A list is replaced, or patched by index: ``needs: {0: {works: null}}``.
+    """
+    data = _laid_over(read_sources(SOUND, SOUND.name, Path.read_bytes).data, yaml.safe_load(patch_yaml) or {})
+    data.pop("include")  # the included data are joined in already
+    with tempfile.TemporaryDirectory() as folder:
+        file = Path(folder) / "patched.yaml"
+        file.write_text(json.dumps(data), "utf-8")
+        return load(file, shown="patched.yaml")
+
+
+@cache
+def judged(patch_yaml: str, family: tuple[Rule, ...]) -> Judgements:
+    """What a family says about the sound example with a patch laid over it; no rule may raise."""
+    result = review(patched(patch_yaml), Catalogue([family]), today=TODAY)
+    assert result.faults == ()
+    return {(judgement.rule, judgement.subject): judgement for judgement in result.judgements}
+
+
+def changed(patch_yaml: str, family: tuple[Rule, ...]) -> dict[tuple[str, str], Kind]:
+    """The judgements that a patch gives another kind than they have on the sound example; new elements count too."""
+    before = judged("", family)
+    after = judged(patch_yaml, family)
+    return {key: new.kind for key, new in after.items() if key not in before or before[key].kind is not new.kind}
+
+
+def without(*facts: str) -> str:
+    """A patch that removes facts, named by their paths with dots."""
+    patch: dict[str, Any] = {}
+    for fact in facts:
+        *above, last = fact.split(".")
+        place = patch
+        for step in above:
+            place = place.setdefault(step, {})
+        place[last] = None
+    return json.dumps(patch)
+
+
+def of_kind(judgements: Judgements, *kinds: Kind) -> Sequence[tuple[str, str]]:
+    """Rule and subject of the judgements of some kinds."""
+    return [key for key, judgement in judgements.items() if judgement.kind in kinds]
+
+
+def _laid_over(data: Any, patch: Any) -> Any:
+    """The data with a patch laid over them; the keys of a patch of a list are its indices."""
+    if not isinstance(patch, dict):
+        return patch
+    joined = dict(enumerate(data)) if isinstance(data, list) else dict(data) if isinstance(data, dict) else {}
+    for name, value in patch.items():
+        key = int(name) if isinstance(data, list) else name
+        joined[key] = _laid_over(joined.get(key), value)
+    kept = {key: value for key, value in joined.items() if value is not None}
+    return list(kept.values()) if isinstance(data, list) else kept
