@@ -49,7 +49,7 @@ def _nearest(message: str) -> str:
     """A near command for one that is none."""
     if "invalid choice: '" not in message:
         return ""
-    word = message.split("invalid choice: '")[1].split("'")[0]
+    word = message.split("invalid choice: '")[1].split("'", maxsplit=1)[0]
     near = get_close_matches(word, _COMMANDS, 1)
     return f"; did you mean {near[0]}?" if near else ""
 
@@ -99,9 +99,9 @@ def _run(options: argparse.Namespace) -> int:
     streams = Streams(sys.stdout, sys.stderr, datetime.date.today())
     module = _module(options.command)
     if options.command in ("review", "rules"):
-        from tidegate.rules.catalogue import FAMILIES
+        from tidegate.rules.catalogue import families
 
-        return int(module.run(options, streams, FAMILIES))
+        return int(module.run(options, streams, families))
     return int(module.run(options, streams))
 
 

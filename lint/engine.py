@@ -1,4 +1,4 @@
-"""Runs rules over a description: every rule on every element it applies to, then waivers and order."""
+"""Runs rules over a description: every rule on every element it applies to, then settings, waivers and order."""
 
 from __future__ import annotations
 
@@ -11,11 +11,15 @@ import msgspec
 
 from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.description.load import Loaded
+from tidegate.lint.description.model.description import Conditions
+from tidegate.lint.description.place import DescriptionError, Fault, Place
 from tidegate.lint.graph.dependency import SECTIONS, Element, Graph, build
-from tidegate.lint.judgement import Judgement, Kind, Level
+from tidegate.lint.judgement import Judgement, Kind, Level, least_margin
 from tidegate.lint.physics.domain import DomainError
+from tidegate.lint.quantity import QuantityError
 from tidegate.lint.rule import Rule
-from tidegate.lint.waivers import waived
+from tidegate.lint.settings import Settings, name_faults
+from tidegate.lint.waivers import STILL_RIGHT, PlacedWaiver, apply_waivers, placed_waivers
 
 
 class Catalogue:
@@ -30,12 +34,13 @@ class Catalogue:
         self._by_section: dict[str, list[Rule]] = {section: [] for section in SECTIONS}
         for family in families:
             for rule in family:
-                if rule.id in self.rules:
+                if rule.id in self.rules or rule.id == STILL_RIGHT.id:
                     raise ValueError(f"two rules are called {rule.id}")
                 if rule.applies_to not in self._by_section:
                     raise ValueError(f"{rule.id} applies to {rule.applies_to}, which is no section of elements")
                 self.rules[rule.id] = rule
                 self._by_section[rule.applies_to].append(rule)
+        self.rules[STILL_RIGHT.id] = STILL_RIGHT
 
     def for_section(self, section: str) -> Sequence[Rule]:
         """The rules that apply to the elements of a section."""
@@ -55,6 +60,7 @@ class Review(msgspec.Struct, frozen=True):
 
     loaded: Loaded
     graph: Graph
+    settings: Settings
     judgements: tuple[Judgement, ...]
     faults: tuple[RuleFault, ...]
 
@@ -63,39 +69,79 @@ class Review(msgspec.Struct, frozen=True):
         """How many judgements there are of each kind."""
         return Counter(judgement.kind for judgement in self.judgements)
 
-    def findings(self) -> Iterator[Judgement]:
-        """Judgements that somebody must act on."""
-        return (judgement for judgement in self.judgements if judgement.is_finding)
+    def place(self, judgement: Judgement) -> Place:
+        """Where what a judgement is about stands."""
+        return judgement.place or self.loaded.place(judgement.at)
 
-    def reaches(self, level: Level) -> bool:
-        """Whether a finding weighs as much as a level, or more."""
-        return any(WEIGHT[judgement.level] >= WEIGHT[level] for judgement in self.findings())
+    def findings(self, fail_at: Level, also: Iterable[str]) -> Iterator[Judgement]:
+        """Failures that weigh at least so much, and judgements of other kinds that are to count, less the waived."""
+        least, kinds = WEIGHT[fail_at], {Kind(kind) for kind in also}
+        for judgement in self.judgements:
+            failure = judgement.kind is Kind.FAIL and WEIGHT[judgement.level] >= least
+            if not judgement.waiver and (failure or judgement.kind in kinds):
+                yield judgement
 
 
 WEIGHT: Final = {Level.NOTE: 0, Level.WARNING: 1, Level.ERROR: 2}
 """Levels by weight."""
 
 
-def review(loaded: Loaded, catalogue: Catalogue, *, today: datetime.date) -> Review:
-    """Judge a description: one judgement for every rule and every element it applies to."""
+def review(loaded: Loaded, catalogue: Catalogue, *, today: datetime.date, settings: Settings | None = None) -> Review:
+    """Judge a description: one judgement for every rule and every element it applies to.
+
+    Raises: DescriptionError: if the settings name a rule that nobody has, or a margin of the wrong dimension.
+    """
+    settings = settings or Settings()
+    faults = name_faults(settings, catalogue.rules)
+    if faults:
+        raise DescriptionError(faults)
+    loaded = _with_conditions(loaded, settings.conditions)
     graph = build(loaded.description)
     judgements: list[Judgement] = []
-    faults: list[RuleFault] = []
+    rule_faults: list[RuleFault] = []
     for section in SECTIONS:
-        rules = catalogue.for_section(section)
+        rules = [rule for rule in catalogue.for_section(section) if not settings.leaves_out(rule)]
         for element in getattr(loaded.description, section).values():
             for rule in rules:
-                answer = _judge(rule, element, loaded, graph)
+                answer = _judge(rule, element, loaded, graph, settings)
                 if isinstance(answer, Judgement):
                     judgements.append(answer)
                 else:
-                    faults.append(answer)
-    judgements = waived(judgements, loaded.description.waivers, today=today)
-    return Review(loaded, graph, tuple(judgements), tuple(faults))
+                    rule_faults.append(answer)
+    if not settings.leaves_out(STILL_RIGHT):
+        judgements = apply_waivers(
+            judgements, _waivers(loaded, settings), today=today, rules=catalogue.rules, elements=graph.elements,
+            level=settings.level_of(STILL_RIGHT),
+        )  # fmt: skip
+    return Review(loaded, graph, settings, tuple(judgements), tuple(rule_faults))
 
 
-def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph) -> Judgement | RuleFault:
-    case = Case(subject=element, rule=rule.id, level=rule.level, description=loaded.description, graph=graph)
+def _with_conditions(loaded: Loaded, offered: Conditions | None) -> Loaded:
+    """The description with the conditions of the settings where it leaves them out."""
+    if offered is None:
+        return loaded
+    own = loaded.description.conditions or Conditions()
+    fields = {
+        name: getattr(own, name) if getattr(own, name) is not None else getattr(offered, name)
+        for name in Conditions.__struct_fields__
+    }
+    description = msgspec.structs.replace(loaded.description, conditions=Conditions(**fields))
+    return Loaded(description, loaded.sources)
+
+
+def _waivers(loaded: Loaded, settings: Settings) -> list[PlacedWaiver]:
+    own = placed_waivers(
+        loaded.description.waivers,
+        lambda index: f"waivers[{index}]",
+        lambda index: loaded.sources.place(("waivers", index)),
+    )
+    elements = {element for section in SECTIONS for element in getattr(loaded.description, section)}
+    return [*own, *(placed for placed in settings.waived if placed.waiver.element in elements)]
+
+
+def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings: Settings) -> Judgement | RuleFault:
+    level = settings.level_of(rule)
+    case = Case(subject=element, rule=rule.id, level=level, description=loaded.description, graph=graph)
     try:
         answer: object = rule.judge(element, case)
     except MissingFactsError as error:
@@ -106,4 +152,11 @@ def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph) -> Judgem
         return RuleFault(rule.id, element.id, f"{type(error).__name__}: {error}")
     if not isinstance(answer, Judgement):
         return RuleFault(rule.id, element.id, f"answered {type(answer).__name__}, not a judgement")
-    return answer
+    asked = settings.least_margin_of(rule)
+    if asked is None or answer.kind is not Kind.PASS or answer.measure is None:
+        return answer
+    try:
+        return least_margin(answer, asked)
+    except QuantityError as error:
+        place = Place(settings.file)
+        raise DescriptionError([Fault(place, "least_margins", f"{rule.id}: {error}", "")]) from None

@@ -6,8 +6,9 @@ from enum import StrEnum
 
 import msgspec
 
+from tidegate.lint.description.place import Place
 from tidegate.lint.graph.edge import Path
-from tidegate.lint.quantity import Dimension, show, show_apart
+from tidegate.lint.quantity import Dimension, parse, show, show_apart
 
 
 class Kind(StrEnum):
@@ -54,9 +55,21 @@ class Measure(msgspec.Struct, frozen=True):
         """Whether the number keeps its limit; at the limit, it does."""
         return self.margin >= 0.0
 
+    @property
+    def slack(self) -> float:
+        """The margin as a share of the need (of the number found where that is 0): margins of all kinds compare."""
+        scale = abs(self.need) or abs(self.have)
+        if self.margin == 0.0:
+            return 0.0
+        return self.margin / scale if scale else 0.0
+
+    def texts(self) -> tuple[str, str]:
+        """The number found and its limit, with digits enough to tell them apart."""
+        return show_apart(self.have, self.need, self.dimension)
+
     def text(self) -> str:
-        """``25 mV, at least 38 mV needed``, with digits enough to tell the two apart."""
-        have, need = show_apart(self.have, self.need, self.dimension)
+        """``25 mV, at least 38 mV needed``."""
+        have, need = self.texts()
         return f"{have}, {self.relation} {need} needed"
 
     def margin_text(self) -> str:
@@ -87,10 +100,28 @@ class Judgement(msgspec.Struct, frozen=True, kw_only=True):
     path: Path = ()
     missing: tuple[str, ...] = ()
     mend: str = ""
+    place: Place | None = None
+    """Where it stands, for what stands outside the description; None where ``at`` says it."""
     waiver: str = ""
     """Why the finding is accepted; empty where it is not."""
 
-    @property
-    def is_finding(self) -> bool:
-        """Whether somebody must act: a failure or a question for a person, not waived."""
-        return self.kind in (Kind.FAIL, Kind.REVIEW) and not self.waiver
+
+def least_margin(judgement: Judgement, asked: str) -> Judgement:
+    """A judgement that passes, held against a margin that is asked for: a quantity, or a share of the need.
+
+    Raises: QuantityError: if the text is neither.
+    """
+    measure = judgement.measure
+    assert measure is not None
+    least = (
+        parse(asked, Dimension.RATIO) * abs(measure.need)
+        if asked.endswith(("%", "ppm"))
+        else parse(asked, _difference(measure.dimension))
+    )
+    if measure.margin >= least * (1 - 1e-9):
+        return judgement
+    message = (
+        f"{judgement.message}; the margin of {measure.margin_text()} is less than the {asked} that the settings ask for"
+    )
+    mend = f"another {show(least - measure.margin, _difference(measure.dimension))} of margin"
+    return msgspec.structs.replace(judgement, kind=Kind.FAIL, message=message, mend=mend)

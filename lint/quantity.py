@@ -15,9 +15,12 @@ from typing import Any, ClassVar, Final, Literal, NoReturn, Self
 
 import msgspec
 
+from tidegate.lint import units
 from tidegate.lint.found import found
 from tidegate.lint.units import POWERS, SCALED
-from tidegate.lint.units import Dimension as Dimension
+
+Dimension = units.Dimension
+"""What a quantity measures; here for those who read and show quantities and need no table of units."""
 
 MOST_TEXT: Final = 64
 """Longest text of a quantity that is read, in characters."""
@@ -35,9 +38,9 @@ class QuantityError(ValueError):
 
 def pattern(dimension: Dimension) -> str:
     """The regular expression that the schema uses for a text of this dimension."""
-    units = "|".join(re.escape(unit) for unit in dimension.units)
+    names = "|".join(re.escape(unit) for unit in dimension.units)
     sign = "[+-]?" if dimension.signed else "[+]?"
-    return f"^{sign}[0-9]+(\\.[0-9]+)?([eE][+-]?[0-9]+)? ?({units})$"
+    return f"^{sign}[0-9]+(\\.[0-9]+)?([eE][+-]?[0-9]+)? ?({names})$"
 
 
 def parse(text: str, dimension: Dimension) -> float:
@@ -157,10 +160,10 @@ class Span:
     __slots__ = ("basis", "least", "most", "typical")
     dimension: ClassVar[Dimension]
 
-    least: Final[float | None]
-    typical: Final[float | None]
-    most: Final[float | None]
-    basis: Final[Basis | None]
+    least: float | None
+    typical: float | None
+    most: float | None
+    basis: Basis | None
 
     def __init__(
         self, least: float | None, typical: float | None, most: float | None, basis: Basis | None = None
@@ -206,7 +209,7 @@ class Span:
         least, typical, most = (cls._part(given, key) for key in ("min", "typ", "max"))
         known = [value for value in (least, typical, most) if value is not None]
         if not known:
-            raise QuantityError("needs at least one of min, typ, max")
+            raise QuantityError("a span without values; give at least one of min, typ, max")
         if known != sorted(known):
             raise QuantityError(f"{_order(given)} are out of order; min <= typ <= max is due")
         basis = given.get("basis")

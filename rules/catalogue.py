@@ -8,3 +8,8 @@ from tidegate.lint.rule import Rule
 from tidegate.rules import hysteresis
 
 FAMILIES: Final[tuple[tuple[Rule, ...], ...]] = (hysteresis.RULES,)
+
+
+def families() -> tuple[tuple[Rule, ...], ...]:
+    """The families; a function, so that another process can be told where to find them."""
+    return FAMILIES

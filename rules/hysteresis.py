@@ -2,15 +2,17 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import math
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.disturbance import bumps_on, seen_v
-from tidegate.lint.derived.trip_levels import falling_window, hysteresis_window, rising_window
-from tidegate.lint.description.model.detector import Comparator, Hysteresis
+from tidegate.lint.derived.hysteresis_need import disturbance, noise_v
+from tidegate.lint.derived.logic_signal import origin
+from tidegate.lint.derived.safe_rounding import show_down, show_up
+from tidegate.lint.derived.trip_levels import falling_window, has_no_hysteresis, hysteresis_window, rising_window
+from tidegate.lint.description.model.detector import Comparator, Hysteresis, Switch
 from tidegate.lint.description.model.supply import Rail
-from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.judgement import Judgement, Level, Measure, Relation
 from tidegate.lint.physics import hysteresis, noise
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
 from tidegate.lint.quantity import Dimension, Voltage, show
@@ -18,83 +20,14 @@ from tidegate.lint.rule import Example, Rule, rule
 
 _V: Final = Dimension.VOLTAGE
 _COMMON_PRACTICE: Final = "common practice, no source: every comparator that judges a supply has some hysteresis"
+_OTHER: Final = {"high": "low", "low": "high"}
+_PLACE_APART: Final = "place the rising level above the falling one by the hysteresis"
 _NO_HYSTERESIS: Final = "there is no hysteresis to judge (hysteresis/present says so)"
-
-
-def _has_none(comparator: Comparator) -> bool:
-    """Whether the description says outright that there is no hysteresis."""
-    if comparator.hysteresis == "none":
-        return True
-    stated = comparator.hysteresis.amount if isinstance(comparator.hysteresis, Hysteresis) else None
-    return stated is not None and stated.most == 0.0
+_WRONG_SENSE: Final = "its rising level can lie below its falling one (hysteresis/sense says so)"
 
 
 def _rail(case: Case, comparator: Comparator) -> Rail:
     return case.description.rails[comparator.watches]
-
-
-@dataclass(frozen=True, slots=True)
-class _Disturbance:
-    """What the hysteresis must cover besides noise, in V at the rail."""
-
-    ripple_v: float
-    dip_v: float
-    droop_v: float
-    bumps_v: float
-
-    @property
-    def total_v(self) -> float:
-        return hysteresis.disturbance_v(
-            ripple_v=self.ripple_v, dip_v=self.dip_v, release_droop_v=self.droop_v, neighbours_v=self.bumps_v,
-            noise_v=0.0,
-        )  # fmt: skip
-
-    def text(self) -> str:
-        parts = (
-            (self.ripple_v, "ripple"), (self.dip_v, "dip of the ramp"), (self.droop_v, "droop at release"),
-            (self.bumps_v, "neighbours"),
-        )  # fmt: skip
-        return " + ".join(f"{show(size, _V)} {word}" for size, word in parts if size > 0.0) or "nothing"
-
-
-def _disturbance(comparator: Comparator, case: Case) -> _Disturbance:
-    facts = case.of(_rail(case, comparator))
-    return _Disturbance(
-        *case.gather(
-            lambda: facts.most("ripple.peak_to_peak"),
-            lambda: _dip_in_band_v(comparator, case),
-            lambda: _droop_v(comparator, case),
-            lambda: _bumps_v(comparator, case),
-        )
-    )
-
-
-def _droop_v(comparator: Comparator, case: Case) -> float:
-    """Droop of the supply when reset is released: for an over-voltage detector, away from its level."""
-    if comparator.role == "over_voltage":
-        return 0.0
-    facts = case.of(_rail(case, comparator))
-    step_a, source_ohm = facts.most("load_step"), facts.most("source_impedance")
-    case.settle()
-    return hysteresis.release_droop_v(load_step_a=step_a, source_ohm=source_ohm)
-
-
-def _bumps_v(comparator: Comparator, case: Case) -> float:
-    """All neighbours at once, each with the part of its bump that the comparator can act on."""
-    return sum(seen_v(case, comparator, bump) for bump in bumps_on(case, comparator))
-
-
-def _dip_in_band_v(comparator: Comparator, case: Case) -> float:
-    """The non-monotonic dip of the ramp, where it can fall between the levels; anywhere if it is not said where."""
-    rail = _rail(case, comparator)
-    facts = case.of(rail)
-    depth_v = facts.most("dip.depth")
-    if rail.dip is None or rail.dip.at is None or depth_v == 0.0:
-        return depth_v
-    down, up = case.gather(lambda: falling_window(case, comparator), lambda: rising_window(case, comparator))
-    begins_v, ends_v = facts.most("dip.at"), facts.least("dip.at") - depth_v
-    case.settle()
-    return depth_v if ends_v <= up.most_v and begins_v >= down.least_v else 0.0
 
 
 @rule(
@@ -112,34 +45,20 @@ def _dip_in_band_v(comparator: Comparator, case: Case) -> float:
     ),
 )
 def hysteresis_present(comparator: Comparator, case: Case) -> Judgement:
-    """Pass if the greatest hysteresis is above zero."""
-    if not _has_none(comparator):
+    """Pass if there is some; its sign and its size are for other rules to judge."""
+    if not has_no_hysteresis(comparator):
         window = hysteresis_window(case, comparator)
-        if window.most_v != 0.0:  # below zero it has the wrong sense, which is another rule's to say
-            return case.passes(f"has hysteresis, {_window_text(window.least_v, window.most_v)}", at="hysteresis")
-    needed = case.attempt(lambda: _needed_without(comparator, case))
-    size = f"of at least {needed}" if needed else "that covers ripple, droop at release, neighbours and noise"
+        return case.passes(f"has hysteresis, {_window_text(window.least_v, window.most_v)}", at="hysteresis")
+    needed_v = case.attempt(
+        lambda: disturbance(case, comparator, dip_anywhere=True).with_noise_v(noise_v(case, comparator))
+    )
+    covers = "that covers ripple, droop at release, neighbours and noise"
+    size = covers if needed_v is None else f"of at least {show_up(needed_v, _V)}"
     return case.fails("has no hysteresis", mend=f"add hysteresis {size}", at="hysteresis")
 
 
 def _window_text(least_v: float, most_v: float) -> str:
     return show(least_v, _V) if least_v == most_v else f"{show(least_v, _V)} to {show(most_v, _V)}"
-
-
-def _needed_without(comparator: Comparator, case: Case) -> str:
-    """What hysteresis a comparator without one needs: a dip counts wherever it is."""
-    facts = case.of(_rail(case, comparator))
-    need_v = hysteresis.disturbance_v(
-        ripple_v=facts.most("ripple.peak_to_peak"), dip_v=facts.most("dip.depth"),
-        release_droop_v=_droop_v(comparator, case), neighbours_v=_bumps_v(comparator, case),
-        noise_v=_noise_v(case),
-    )  # fmt: skip
-    return show(need_v, _V)
-
-
-def _noise_v(case: Case) -> float:
-    """Noise at the stated coverage."""
-    return case.whole.number("conditions.coverage") * case.own.most("noise.rms")
 
 
 @rule(
@@ -160,24 +79,26 @@ def _noise_v(case: Case) -> float:
 )
 def hysteresis_moves_away(comparator: Comparator, case: Case) -> Judgement:
     """Pass if rising lies above falling and the feedback is positive."""
-    if _has_none(comparator):
+    if has_no_hysteresis(comparator):
         return case.not_applicable(_NO_HYSTERESIS)
-    feedback = case.own.must("hysteresis.feedback")
-    least_v = hysteresis_window(case, comparator).least_v
-    up_v, down_v = _middle_v(comparator, "rising"), _middle_v(comparator, "falling")
-    if feedback == "negative":
+    if isinstance(comparator.hysteresis, Hysteresis) and comparator.hysteresis.feedback == "negative":
         return case.fails(
             "the feedback moves the level towards the supply: it oscillates at its level",
             mend="make the feedback positive: swap the two switches, or the two ends of the feedback",
             at="hysteresis.feedback",
         )
-    swapped = up_v is not None and down_v is not None and up_v < down_v
-    if swapped or least_v < 0.0:
-        levels = f"{show(up_v or 0.0, _V)} rising, {show(down_v or 0.0, _V)} falling"
-        found = levels if swapped else f"{show(-least_v, _V)} below at the worst"
+    up_v, down_v = _middle_v(comparator, "rising"), _middle_v(comparator, "falling")
+    if up_v is not None and down_v is not None and up_v < down_v:
         return case.fails(
-            f"the rising level can lie below the falling one ({found})",
-            mend="place the rising level above the falling one by the hysteresis",
+            f"the rising level lies below the falling one ({show(up_v, _V)} rising, {show(down_v, _V)} falling)",
+            mend=_PLACE_APART,
+            at="trip",
+        )
+    _, window = case.gather(lambda: case.own.must("hysteresis.feedback"), lambda: hysteresis_window(case, comparator))
+    if window.least_v < 0.0:
+        return case.fails(
+            f"the rising level can lie below the falling one ({show(-window.least_v, _V)} below at the worst)",
+            mend=_PLACE_APART,
             at="trip",
         )
     return case.passes("the decision moves the level away from the supply", at="hysteresis.feedback")
@@ -216,25 +137,23 @@ def _middle_v(comparator: Comparator, which: str) -> float | None:
 )  # fmt: skip
 def hysteresis_covers_disturbance(comparator: Comparator, case: Case) -> Judgement:
     """Compare the least hysteresis with the sum of disturbances."""
-    if _has_none(comparator):
+    if has_no_hysteresis(comparator):
         return case.not_applicable(_NO_HYSTERESIS)
-    noise_v, disturbance, window = case.gather(
-        lambda: _noise_v(case),
-        lambda: _disturbance(comparator, case),
+    random_v, disturbed, window = case.gather(
+        lambda: noise_v(case, comparator),
+        lambda: disturbance(case, comparator),
         lambda: hysteresis_window(case, comparator),
     )
-    kept_v = window.least_v
-    need_v = hysteresis.disturbance_v(
-        ripple_v=disturbance.ripple_v, dip_v=disturbance.dip_v, release_droop_v=disturbance.droop_v,
-        neighbours_v=disturbance.bumps_v, noise_v=noise_v,
-    )  # fmt: skip
+    if window.least_v < 0.0:
+        return case.not_applicable(_WRONG_SENSE)
+    need_v = disturbed.with_noise_v(random_v)
     return case.at_least(
         need=need_v,
-        have=kept_v,
+        have=window.least_v,
         dimension=_V,
         says="hysteresis",
-        why=f"{disturbance.text()} + {show(noise_v, _V)} noise",
-        mend=f"at least {show(need_v, _V)} of hysteresis; now {show(kept_v, _V)}",
+        why=f"{disturbed.text()} + {show(random_v, _V)} noise",
+        mend=f"at least {show_up(need_v, _V)} of hysteresis; now {show(window.least_v, _V)}",
         at="hysteresis.amount",
     )
 
@@ -254,34 +173,40 @@ def hysteresis_covers_disturbance(comparator: Comparator, case: Case) -> Judgeme
     mend="more hysteresis, less noise, or a filter that limits its bandwidth",
     sources=("S. O. Rice, Mathematical Analysis of Random Noise, Bell System Technical Journal 23 and 24 (1944-45)",),
     example=Example(
-        fails="comparators: {uv: {noise: {rms: 8 mV}}}",
+        fails="comparators: {uv: {noise: {rms: 2.5 mV}}}",
         holds="comparators: {uv: {noise: {rms: 0.5 mV}}}",
     ),
     formulas=(noise.false_trip_distance_v, noise.zero_level_rate_hz),
 )  # fmt: skip
 def noise_trips_seldom(comparator: Comparator, case: Case) -> Judgement:
     """Compare what the disturbances leave of the hysteresis with the distance that noise needs."""
-    if _has_none(comparator):
+    if has_no_hysteresis(comparator):
         return case.not_applicable(_NO_HYSTERESIS)
     own, whole = case.own, case.whole
     sigma_v, bandwidth_hz = own.most("noise.rms"), own.most("noise.bandwidth")
     life_s, allowed = whole.most("conditions.service_life"), whole.number("conditions.false_trips")
-    disturbance, window = case.gather(
-        lambda: _disturbance(comparator, case), lambda: hysteresis_window(case, comparator)
-    )
-    left_v = window.least_v - disturbance.total_v
+    disturbed, window = case.gather(lambda: disturbance(case, comparator), lambda: hysteresis_window(case, comparator))
+    if window.least_v < 0.0:
+        return case.not_applicable(_WRONG_SENSE)
+    random_v = case.attempt(lambda: noise_v(case, comparator))
+    if random_v is not None and not _covers(window.least_v, disturbed.with_noise_v(random_v)):
+        return case.not_applicable("the hysteresis does not cover what disturbs it (hysteresis/covers_disturbance)")
     need_v = noise.false_trip_distance_v(
         sigma_v=sigma_v, bandwidth_hz=bandwidth_hz, life_s=life_s, allowed_trips=allowed
     )
     return case.at_least(
         need=need_v,
-        have=left_v,
+        have=window.least_v - disturbed.total_v,
         dimension=_V,
         says="the hysteresis leaves noise a distance of",
-        why=f"{show(window.least_v, _V)} less {disturbance.text()}; {show(sigma_v, _V)} r.m.s. of noise",
-        mend=f"at least {show(need_v + disturbance.total_v, _V)} of hysteresis; now {show(window.least_v, _V)}",
+        why=f"{show(window.least_v, _V)} less {disturbed.text()}; {show(sigma_v, _V)} r.m.s. of noise",
+        mend=f"at least {show_up(need_v + disturbed.total_v, _V)} of hysteresis; now {show(window.least_v, _V)}",
         at="noise",
     )
+
+
+def _covers(have_v: float, need_v: float) -> bool:
+    return Measure(need_v, have_v, _V, Relation.AT_LEAST).holds
 
 
 @rule(
@@ -304,29 +229,34 @@ def noise_trips_seldom(comparator: Comparator, case: Case) -> Judgement:
 )  # fmt: skip
 def hysteresis_fits_window(comparator: Comparator, case: Case) -> Judgement:
     """Compare the greatest hysteresis with the room between the deciding level and the supply in service."""
-    if _has_none(comparator):
+    if has_no_hysteresis(comparator):
         return case.not_applicable(_NO_HYSTERESIS)
     facts = case.of(_rail(case, comparator))
     half_ripple_v = facts.most("ripple.peak_to_peak") / 2
     over = comparator.role == "over_voltage"
     edge_v = facts.most("delivered") if over else facts.least("delivered")
-    rising, falling, window = case.gather(
-        lambda: rising_window(case, comparator),
-        lambda: falling_window(case, comparator),
+    level, window = case.gather(
+        lambda: falling_window(case, comparator) if over else rising_window(case, comparator),
         lambda: hysteresis_window(case, comparator),
     )
     service_v = edge_v + half_ripple_v if over else edge_v - half_ripple_v
-    spare_v = falling.least_v - service_v if over else service_v - rising.most_v
+    spare_v = level.least_v - service_v if over else service_v - level.most_v
     room_v = window.most_v + spare_v
-    which, value_v = ("falling", falling.least_v) if over else ("rising", rising.most_v)
+    which, value_v, way = ("falling", level.least_v, "down") if over else ("rising", level.most_v, "up")
+    fits = f"at most {show_down(room_v, _V)} of hysteresis; now {show(window.most_v, _V)}"
+    fits_none = (
+        f"a higher rising level: with this one none fits above {show(service_v, _V)}"
+        if over
+        else f"a lower falling level: with this one none fits below {show(service_v, _V)}"
+    )
     return case.at_most(
         need=room_v,
         have=window.most_v,
         dimension=_V,
         says="greatest hysteresis",
-        why=f"{which} level {'down' if over else 'up'} to {show(value_v, _V)}, supply in service "
+        why=f"{which} level {way} to {show(value_v, _V)}, supply in service "
         f"{'up' if over else 'down'} to {show(service_v, _V)}",
-        mend=f"at most {show(max(room_v, 0.0), _V)} of hysteresis; now {show(window.most_v, _V)}",
+        mend=fits if room_v > 0.0 else fits_none,
         at="hysteresis.amount",
     )
 
@@ -349,14 +279,33 @@ def hysteresis_fits_window(comparator: Comparator, case: Case) -> Judgement:
     ),
 )
 def switches_are_complementary(comparator: Comparator, case: Case) -> Judgement:
-    """Pass if two switches hang on one output with opposite levels."""
-    if _has_none(comparator):
+    """Pass if two switches hang on one output, as it is or inverted, and only one of them is closed at a time."""
+    if has_no_hysteresis(comparator):
         return case.not_applicable(_NO_HYSTERESIS)
     made_by = case.own.must("hysteresis.made_by")
     if made_by not in ("switched_reference", "switched_tap"):
         return case.not_applicable(f"its hysteresis is made by {made_by}, without switches")
     assert isinstance(comparator.hysteresis, Hysteresis)
     switches = comparator.hysteresis.switches
+    _note_missing(case, switches)
+    mend = "two switches turned by one output, one closed when it is high and one when it is low"
+    if len(switches) != 2:
+        return case.fails(f"has {len(switches)} switches for two levels", mend=mend, at="hysteresis.switches")
+    first, second = switches
+    one, other = case.gather(lambda: origin(case, str(first.turned_by)), lambda: origin(case, str(second.turned_by)))
+    names = str(first.turned_by) if first.turned_by == second.turned_by else f"{first.turned_by} and {second.turned_by}"
+    if one.element != other.element:
+        what = f"its two switches are turned by {names}: both can be open, or closed"
+        return case.fails(what, mend=mend, at="hysteresis.switches")
+    alike = (first.closed_when == second.closed_when) == (one.inverted == other.inverted)
+    if alike:
+        when = first.closed_when if one.inverted is False else _OTHER[str(first.closed_when)]
+        what = f"both switches are closed when {one.element} is {when}"
+        return case.fails(what, mend=mend, at="hysteresis.switches")
+    return case.passes(f"its switches take turns with {names}", at="hysteresis.switches")
+
+
+def _note_missing(case: Case, switches: tuple[Switch, ...]) -> None:
     if not switches:
         case.own.lacks("hysteresis.switches")
     for index, switch in enumerate(switches):
@@ -364,17 +313,6 @@ def switches_are_complementary(comparator: Comparator, case: Case) -> Judgement:
             if getattr(switch, fact) is None:
                 case.own.lacks(f"hysteresis.switches.{index}.{fact}")
     case.settle()
-    mend = "two switches turned by one output, one closed when it is high and one when it is low"
-    if len(switches) != 2:
-        return case.fails(f"has {len(switches)} switches for two levels", mend=mend, at="hysteresis.switches")
-    first, second = switches
-    if first.turned_by != second.turned_by:
-        what = f"its two switches are turned by {first.turned_by} and {second.turned_by}: both can be open, or closed"
-        return case.fails(what, mend=mend, at="hysteresis.switches")
-    if first.closed_when == second.closed_when:
-        what = f"both switches are closed when {first.turned_by} is {first.closed_when}"
-        return case.fails(what, mend=mend, at="hysteresis.switches")
-    return case.passes(f"its switches take turns with {first.turned_by}", at="hysteresis.switches")
 
 
 @rule(
@@ -398,26 +336,34 @@ def switches_are_complementary(comparator: Comparator, case: Case) -> Judgement:
 )  # fmt: skip
 def feedback_comes_in_time(comparator: Comparator, case: Case) -> Judgement:
     """Compare the travel of the supply during the feedback delay with the least hysteresis."""
-    if _has_none(comparator):
+    if has_no_hysteresis(comparator):
         return case.not_applicable(_NO_HYSTERESIS)
     facts = case.of(_rail(case, comparator))
     delay_s = case.own.most("hysteresis.feedback_delay")
     nominal_v, rise_s = facts.most("nominal"), facts.least("rise")
-    ripple_v, frequency_hz = facts.most("ripple.peak_to_peak"), facts.most("ripple.frequency")
+    ripple_v = facts.most("ripple.peak_to_peak")
+    frequency_hz = None if ripple_v == 0.0 else facts.most("ripple.frequency")
     kept_v = hysteresis_window(case, comparator).least_v
     case.settle()
+    if kept_v < 0.0:
+        return case.not_applicable(_WRONG_SENSE)
     ramp_v_per_s = ramp_slope_v_per_s(rise_v=nominal_v, rise_s=rise_s)
-    ripple_v_per_s = hysteresis.steepest_ripple_v_per_s(peak_to_peak_v=ripple_v, frequency_hz=frequency_hz)
+    ripple_v_per_s = (
+        0.0
+        if frequency_hz is None
+        else hysteresis.steepest_ripple_v_per_s(peak_to_peak_v=ripple_v, frequency_hz=frequency_hz)
+    )
     fastest_v_per_s = max(ramp_v_per_s, ripple_v_per_s)
     travel_v = hysteresis.supply_travel_v(slope_v_per_s=fastest_v_per_s, delay_s=delay_s)
     what = "ramp" if fastest_v_per_s == ramp_v_per_s else "ripple"
+    allowed_s = kept_v / fastest_v_per_s if fastest_v_per_s > 0.0 else math.inf
     return case.at_most(
         need=kept_v,
         have=travel_v,
         dimension=_V,
         says="until the level has moved, the supply travels",
         why=f"{show(delay_s, Dimension.DURATION)} at {show(fastest_v_per_s, Dimension.SLOPE)}, the fastest {what}",
-        mend=f"a feedback delay of at most {show(kept_v / fastest_v_per_s, Dimension.DURATION)}; "
+        mend=f"a feedback delay of at most {show_down(allowed_s, Dimension.DURATION)}; "
         f"now {show(delay_s, Dimension.DURATION)}",
         at="hysteresis.feedback_delay",
     )

@@ -2,19 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from contextlib import suppress
-from typing import Final
+import math
+from typing import Final, Literal
 
-from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.follows_alive import why_not_alive
-from tidegate.lint.derived.held_node import SureLevel, held_node, reads_it, sure_high, sure_low
-from tidegate.lint.derived.rail_of import domain_rail, rail_of
+from tidegate.lint.case import Case
+from tidegate.lint.derived.follows_alive import not_alive
+from tidegate.lint.derived.held_node import HeldNode, held_node, reads_it, sure_high, sure_low
+from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.reset_path import arrivals, onward
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.derived.standing_current import circuit_takers, hold_takers, largest_first, stages_in
 from tidegate.lint.description.model.reset_path import Hold, OutputStage, Reset
-from tidegate.lint.description.model.supply import Domain, Rail
+from tidegate.lint.description.model.supply import Domain
 from tidegate.lint.graph.edge import EdgeKind, Hop
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.physics import hold, logic_levels
@@ -120,7 +119,7 @@ def stages_after_hold_are_alive(stage: OutputStage, case: Case) -> Judgement:
     if not loose:
         return case.passes("every stage after its hold is held too", at="hold")
     rail = rail_of(case, stage)
-    dead = _dead(case, loose, rail)
+    dead = not_alive(case, loose, held_rail=rail)
     if not dead:
         return case.passes(f"alive after its hold: {', '.join(after.id for after in loose)}", at="hold")
     after, reason = dead[0]
@@ -130,19 +129,6 @@ def stages_after_hold_are_alive(stage: OutputStage, case: Case) -> Judgement:
         at="hold",
         path=behind.path(after.id),
     )
-
-
-def _dead(case: Case, loose: Sequence[OutputStage], rail: Rail) -> list[tuple[OutputStage, str]]:
-    """The stages without a hold that may be dead while the hold before them is needed, and why."""
-    found = []
-    for after in loose:
-        with suppress(MissingFactsError):  # noted: settle speaks of it below
-            reason = why_not_alive(case, after, held_rail=rail)
-            if reason and after.hold is None:
-                case.of(after).lacks("hold")
-            found.append((after, reason))
-    case.settle()
-    return [(after, reason) for after, reason in found if reason]
 
 
 @rule(
@@ -196,17 +182,18 @@ def hold_leaves_the_active_level(stage: OutputStage, case: Case) -> Judgement:
     level=Level.ERROR,
     applies_to="output_stages",
     proves="What leaks onto the undriven output at the hottest corner (from the stage, and from the receivers of the "
-    "reset nets it drives), through the greatest hold, and what the fastest ramp couples onto it, with all else on the "
-    "node at its least, leave it at a level that each stage and receiver behind it surely reads as the level held. A "
-    "low level counts from ground; a high one from the least supply delivered. A standard's level is taken at the "
-    "least supply of its receivers (for a high level on another rail: at the greatest).",
+    "reset nets it drives) through the greatest hold, and what the fastest ramp adds, leave it at a level that each "
+    "stage and receiver it drives surely reads as the level held. Held low, the ramp lifts it through its coupling to "
+    "the rail, with the least load on the node; held high, below the least supply delivered, it stays behind the ramp "
+    "with its greatest load. The level of a standard is taken at the least supply of the receivers (a high one on "
+    "another rail: at the greatest).",
     facts=(
         "output_stages.*.hold", "output_stages.*.leakage", "output_stages.*.load", "resets.*.receivers",
         "output_stages.*.threshold of each stage it drives", "rails.*.nominal", "rails.*.rise",
-        "rails.*.delivered, for a high level and for a standard's level", "resets.*.domain, for a standard's level",
+        "rails.*.delivered, for a high level or a standard's", "resets.*.domain, for a standard's level",
     ),
     mend="a smaller hold resistance, less leakage, or less coupling to the rail",
-    sources=("Ohm's law and a ramp through a capacitor into a resistor (derived at the formula)", _LEVELS),
+    sources=("Ohm's law, and a ramp through a capacitor onto a resistor (derived at the formula)", _LEVELS),
     example=Example(
         fails="output_stages: {rst_out: {leakage: {max: 500 nA}}}",
         holds="output_stages: {rst_out: {leakage: {max: 20 nA}}}",
@@ -219,14 +206,185 @@ def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
         return case.not_applicable(_why_no_hold(stage))
     if not reads_it(case, stage):
         return case.not_applicable("it drives nothing")
-    to, node, (supply_v, sure) = case.gather(
-        lambda: str(case.own.must("hold.to")),
+    if case.own.must("hold.to") == "low":
+        node, sure = case.gather(lambda: held_node(case, stage), lambda: sure_low(case, stage, supply="least"))
+        return case.at_most(
+            need=sure.level_v,
+            have=node.moves_v,
+            dimension=_V,
+            says="not driven, it rises to",
+            why=f"{node.text()}; {sure.reader} surely reads low up to {show(sure.level_v, _V)}",
+            mend=_smaller_hold(node, sure.level_v),
+            at="hold.resistance",
+        )
+    node, sure, supply_v = case.gather(
         lambda: held_node(case, stage),
-        lambda: _undriven_limit(case, stage, stage.hold),
+        lambda: sure_high(case, stage, supply="least"),
+        lambda: _end_v(case, stage, "least"),
     )
-    room_v = sure.level_v if to == "low" else supply_v - sure.level_v
-    parts = [f"{show(node.leakage_a, _A)} of leakage through {show(node.hold_ohm, _OHM)}: {show(node.leaks_to_v, _V)}"]
-    if node.coupling_c_f:
-        slope = show(node.slope_v_per_s, Dimension.SLOPE)
-        parts.append(f"{show(node.coupling_c_f, Dimension.CAPACITANCE)} to a ramp of {slope}: {show(node.ramps_to_v, _V)}")
-    return case.passes("")
+    return case.at_least(
+        need=sure.level_v,
+        have=supply_v - node.moves_v,
+        dimension=_V,
+        says="not driven, it stays up at",
+        why=f"{show(supply_v, _V)} less {node.text()}; {sure.reader} surely reads high from "
+        f"{show(sure.level_v, _V)} on",
+        mend=_smaller_hold(node, supply_v - sure.level_v),
+        at="hold.resistance",
+    )
+
+
+def _end_v(case: Case, stage: OutputStage, end: Literal["least", "most"]) -> float:
+    """The least or the greatest supply delivered to a stage."""
+    facts = case.of(rail_of(case, stage))
+    return facts.least("delivered") if end == "least" else facts.most("delivered")
+
+
+def _smaller_hold(node: HeldNode, room_v: float) -> str:
+    """The greatest hold that would do."""
+    if room_v <= 0.0:
+        return "no hold will do: a supply, or a reader, with more room between them"
+    return f"a hold of {show_down(node.largest_hold_ohm(room_v), _OHM)} or less; now up to {show(node.hold_ohm, _OHM)}"
+
+
+@rule(
+    "passive_default/driver_wins",
+    title="the stage wins against its own hold",
+    level=Level.ERROR,
+    applies_to="output_stages",
+    proves="Driven away from the level held, through its greatest drive resistance against the least hold, the output "
+    "reaches a level that each stage and receiver it drives surely reads as the opposite one: against a hold to low "
+    "at the least supply delivered, against a hold to high at the greatest.",
+    facts=(
+        "output_stages.*.hold", "output_stages.*.drive", "rails.*.delivered", "resets.*.receivers",
+        "output_stages.*.threshold of each stage it drives", "resets.*.domain, for a standard's level",
+    ),
+    mend="a larger hold resistance, or a stronger stage",
+    sources=("voltage divider (derived at the formula)", _LEVELS),
+    example=Example(
+        fails="output_stages: {rst_out: {drive: {max: 400 kohm}}}",
+        holds="output_stages: {rst_out: {drive: {max: 8 kohm}}}",
+    ),
+    formulas=(hold.driven_level_v, hold.smallest_hold_for_driver_ohm, logic_levels.input_levels_v),
+)  # fmt: skip
+def driver_wins_against_hold(stage: OutputStage, case: Case) -> Judgement:
+    """Compare the level that the stage reaches against its hold with what is surely read as the opposite level."""
+    if not isinstance(stage.hold, Hold):
+        return case.not_applicable(_why_no_hold(stage))
+    if not reads_it(case, stage):
+        return case.not_applicable("it drives nothing")
+    drive_ohm, hold_ohm = case.own.most("drive"), case.own.least("hold.resistance")
+    through = f"{show(drive_ohm, _OHM)} of drive against a hold of {show(hold_ohm, _OHM)}"
+    if case.own.must("hold.to") == "low":
+        supply_v, sure = case.gather(
+            lambda: _end_v(case, stage, "least"), lambda: sure_high(case, stage, supply="least")
+        )
+        moves_v = hold.driven_level_v(supply_v=supply_v, hold_ohm=hold_ohm, drive_ohm=drive_ohm)
+        return case.at_least(
+            need=sure.level_v,
+            have=moves_v,
+            dimension=_V,
+            says="driven high, it reaches",
+            why=f"{show(supply_v, _V)} through {through}; {sure.reader} surely reads high from "
+            f"{show(sure.level_v, _V)} on",
+            mend=_larger_hold(supply_v, sure.level_v, drive_ohm, hold_ohm),
+            at="hold.resistance",
+        )
+    supply_v, sure = case.gather(lambda: _end_v(case, stage, "most"), lambda: sure_low(case, stage, supply="most"))
+    moves_v = hold.driven_level_v(supply_v=supply_v, hold_ohm=hold_ohm, drive_ohm=drive_ohm)
+    return case.at_most(
+        need=sure.level_v,
+        have=supply_v - moves_v,
+        dimension=_V,
+        says="driven low, it comes down to",
+        why=f"{show(supply_v, _V)} through {through}; {sure.reader} surely reads low up to {show(sure.level_v, _V)}",
+        mend=_larger_hold(supply_v, supply_v - sure.level_v, drive_ohm, hold_ohm),
+        at="hold.resistance",
+    )
+
+
+def _larger_hold(supply_v: float, needed_v: float, drive_ohm: float, hold_ohm: float) -> str:
+    """The least hold that would do."""
+    if needed_v >= supply_v:
+        return "no hold will do: a supply, or a reader, with more room between them"
+    least_ohm = hold.smallest_hold_for_driver_ohm(supply_v=supply_v, drive_ohm=drive_ohm, needed_v=max(needed_v, 0.0))
+    return f"a hold of {show_up(least_ohm, _OHM)} or more; now down to {show(hold_ohm, _OHM)}"
+
+
+@rule(
+    "passive_default/holds_within_budget",
+    title="the holds fit into the current budget of their domain",
+    level=Level.ERROR,
+    applies_to="domains",
+    proves="With every stage driven against its least hold at the greatest supply delivered, the holds, what the "
+    "references, biases and comparators of the domain take at most, and what its stages are said to take or to leak "
+    "(a CMOS stage at rest takes no more than it leaks, so what is not said there does not count) stay within the "
+    "budget. Loads, dividers and the defaults of overrides are not counted. A domain without holds is not judged.",
+    facts=(
+        "domains.*.budget", "domains.*.rail", "rails.*.delivered", "output_stages.*.hold", "references.*.consumes",
+        "biases.*.consumes", "comparators.*.consumes",
+    ),
+    mend="larger holds, or a larger budget",
+    sources=("Ohm's law; currents into one domain add up",),
+    example=Example(
+        fails="domains: {aon: {budget: 5 uA}}",
+        holds="domains: {aon: {budget: 9 uA}}",
+    ),
+    formulas=(hold.hold_current_a,),
+)  # fmt: skip
+def holds_fit_budget(domain: Domain, case: Case) -> Judgement:
+    """Compare what the holds and the circuits of a domain take with its budget."""
+    if all(stage.hold == "none" for stage in stages_in(case, domain)):
+        return case.not_applicable("nothing in it is held")
+    budget_a = case.own.most("budget")
+    holds, circuits = case.gather(lambda: hold_takers(case, domain), lambda: circuit_takers(case, domain))
+    takers = [*holds, *circuits]
+    total_a = math.fsum(taker.current_a for taker in takers)
+    return case.at_most(
+        need=budget_a,
+        have=total_a,
+        dimension=_A,
+        says="its holds and circuits take",
+        why=largest_first(takers, _TAKERS_SHOWN),
+        mend=f"take {show_up(total_a - budget_a, _A)} less, or a budget of at least {show_up(total_a, _A)}",
+        at="budget",
+    )
+
+
+@rule(
+    "passive_default/latch_state",
+    title="a latch comes up in a defined state",
+    level=Level.ERROR,
+    applies_to="output_stages",
+    proves="It is said what the latch does to the reset nets behind it when its supply comes up, and it is one of two.",
+    facts=("output_stages.*.kind", "output_stages.*.power_up"),
+    mend="give the latch a state at power-up: set or reset it by a power-on detector, or make it lopsided",
+    sources=("common practice, no source: an even latch comes up either way",),
+    example=Example(
+        fails="output_stages: {ov_latch: {power_up: undefined}}",
+        holds="output_stages: {ov_latch: {power_up: asserts}}",
+    ),
+)
+def latch_state_is_defined(stage: OutputStage, case: Case) -> Judgement:
+    """Pass if the latch asserts, or releases, when its supply comes up."""
+    if case.own.must("kind") != "latch":
+        return case.not_applicable("it is no latch")
+    state = case.own.must("power_up")
+    if state == "undefined":
+        return case.fails(
+            "it comes up in either state",
+            mend="let a power-on detector set or reset it, or make it lopsided",
+            at="power_up",
+        )
+    return case.passes(f"it {state} when its supply comes up", at="power_up")
+
+
+RULES: Final[tuple[Rule, ...]] = (
+    reset_net_is_held,
+    stages_after_hold_are_alive,
+    hold_leaves_the_active_level,
+    hold_is_strong_enough,
+    driver_wins_against_hold,
+    holds_fit_budget,
+    latch_state_is_defined,
+)

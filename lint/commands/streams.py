@@ -28,6 +28,16 @@ class Streams:
     err: TextIO
     today: datetime.date
 
+    @property
+    def colour(self) -> bool:
+        """Whether the output takes colour: a terminal, unless the environment asks for none."""
+        return self.console().color_system is not None
+
+    @property
+    def width(self) -> int:
+        """Columns of the output; 80 where it has none of its own."""
+        return self.console().width
+
     def console(self, *, error: bool = False) -> Console:
         """A console on the output or the error stream that takes text as it is: no markup, no emoji."""
         from rich.console import Console

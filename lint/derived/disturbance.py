@@ -1,18 +1,20 @@
-"""What moves a comparator's supply or level while it should stay still, at the rail."""
+"""What neighbours do to a comparator's supply or level while it should stay still, at the rail."""
 
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
-from typing import Final
+from functools import partial
+from math import inf
 
 from tidegate.lint.case import Case, Facts
+from tidegate.lint.derived.ask_all import ask_all
+from tidegate.lint.derived.input_share import input_share
 from tidegate.lint.description.model.detector import Comparator, Reference
 from tidegate.lint.description.model.reset_path import Neighbour
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.physics import coupling
-
-_HALVINGS: Final = 50  # to the last digit of a float
+from tidegate.lint.physics.lasting_bump import decayed_kick_v, lasting_bump_v
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,33 +26,63 @@ class Bump:
     via: str
     """The pair of neighbours, or the shared reference, through which it comes."""
     peak_v: float
-    lasts_s: Callable[[float], float]
-    """How long it stays above a level, in s for a level in V at the rail."""
+    lasting_v: Callable[[float], float]
+    """The highest level, in V at the rail, above which it can stay for a time in s; its peak, for no time."""
     path: Path
     fact: str
     """Path of the fact that its size rests on most."""
 
 
 def bumps_on(case: Case, comparator: Comparator) -> list[Bump]:
-    """Every bump that others leave on a comparator: described pairs, and comparators on the same reference."""
-    found: list[Bump] = []
-    for neighbour in case.description.neighbours.values():
-        if neighbour.victim == comparator.id:
-            found.append(neighbour_bump(case, neighbour, comparator, neighbour.aggressor))
-        elif neighbour.mutual and neighbour.aggressor == comparator.id:
-            found.append(neighbour_bump(case, neighbour, comparator, neighbour.victim))
-    found.extend(kicks_on(case, comparator))
-    return found
+    """Every bump that others leave on a comparator: described pairs, and comparators on the same reference.
+
+    Raises: MissingFactsError: where a fact of any of them is missing, with all that is.
+    """
+    return ask_all(case, asks_for_bumps(case, comparator))
 
 
-def kicks_on(case: Case, comparator: Comparator) -> Iterator[Bump]:
-    """Bumps that other comparators leave on the reference that they share with this one."""
+def asks_for_bumps(case: Case, comparator: Comparator) -> list[Callable[[], Bump]]:
+    """The bumps of ``bumps_on``, not worked out yet: a function for each."""
+    pairs = (
+        partial(neighbour_bump, case, pair, comparator, aggressor) for pair, aggressor in pairs_on(case, comparator)
+    )
+    return [*pairs, *asks_for_kicks(case, comparator)]
+
+
+def pairs_on(case: Case, comparator: Comparator) -> Iterator[tuple[Neighbour, str]]:
+    """The described pairs in which a comparator is disturbed, each with what disturbs it there."""
+    for edge in case.graph.into(comparator.id):
+        if edge.kind is EdgeKind.COUPLES_TO:
+            _, pair, _ = edge.fact.split(".")
+            yield case.description.neighbours[pair], edge.tail
+
+
+def asks_for_kicks(case: Case, comparator: Comparator) -> list[Callable[[], Bump]]:
+    """The kicks that other comparators leave on the reference that they share with this one, a function for each.
+
+    A described pair that shares the reference says more about the same charge, and stands in its place.
+    """
     if comparator.reference is None:
-        return
-    for other_id in case.graph.tails(comparator.reference, EdgeKind.TAKES_REFERENCE_FROM):
-        other = case.description.comparators.get(other_id)
-        if other is not None and other.id != comparator.id:
-            yield kick(case, other, comparator)
+        return []
+    described = {
+        aggressor
+        for pair, aggressor in pairs_on(case, comparator)
+        if pair.kind == "shared_reference" and pair.reference == comparator.reference
+    }
+    others = (
+        case.description.comparators[other]
+        for other in case.graph.tails(comparator.reference, EdgeKind.TAKES_REFERENCE_FROM)
+        if other in case.description.comparators and other != comparator.id and other not in described
+    )
+    return [partial(kick, case, other, comparator) for other in others]
+
+
+def kicks_on(case: Case, comparator: Comparator) -> list[Bump]:
+    """Bumps that other comparators leave on the reference that they share with this one.
+
+    Raises: MissingFactsError: where a fact of any of them is missing, with all that is.
+    """
+    return ask_all(case, asks_for_kicks(case, comparator))
 
 
 def kick(case: Case, aggressor: Comparator, victim: Comparator) -> Bump:
@@ -68,53 +100,83 @@ def neighbour_bump(case: Case, neighbour: Neighbour, victim: Comparator, aggress
     """The bump of a described pair of neighbours."""
     facts = case.of(neighbour)
     if neighbour.kind == "shared_reference":
-        reference = case.of(neighbour).element("reference")
-        charge_c = facts.most("charge")
+        charge_c, reference = case.gather(lambda: facts.most("charge"), lambda: facts.element("reference"))
         return _on_reference(
             case, reference, victim, charge_c=charge_c, aggressor=aggressor, via=neighbour.id, fact=facts.path("charge")
         )
-    scale = _to_rail(case, facts, victim)
     path = (Hop(aggressor, ""), Hop(victim.id, f"couples through {neighbour.id} to"))
     if neighbour.kind == "capacitance":
-        edge = {
-            "step_v": facts.most("step"),
-            "edge_s": facts.least("edge"),
-            "r_ohm": facts.most("node.resistance"),
-            "coupling_c_f": facts.most("capacitance"),
-            "ground_c_f": facts.least("node.capacitance"),
-        }
-        case.settle()
-        peak_v = coupling.bump_peak_v(**edge) / scale
+        scale, edge = case.gather(lambda: rail_share(case, facts, victim), lambda: coupled_edge(case, neighbour))
+        peak_v, lasting_v = edge.peak_v / scale, lambda lasts_s: edge.lasting_v(lasts_s) / scale
+        return Bump(aggressor, victim.id, neighbour.id, peak_v, lasting_v, path, facts.path("capacitance"))
+    scale, step_a, impedance_ohm = case.gather(
+        lambda: rail_share(case, facts, victim), lambda: facts.most("current_step"), lambda: facts.most("impedance")
+    )
+    step_v = coupling.shared_impedance_bump_v(step_a=step_a, impedance_ohm=impedance_ohm) / scale
+    # A step of current that stays: no filter waits it out.
+    return Bump(aggressor, victim.id, neighbour.id, step_v, lambda _: step_v, path, facts.path("impedance"))
 
-        def lasts_s(level_v: float) -> float:
-            return coupling.time_above_s(level_v=level_v * scale, **edge) if level_v > 0.0 else float("inf")
 
-        return Bump(aggressor, victim.id, neighbour.id, peak_v, lasts_s, path, facts.path("capacitance"))
-    step_a, impedance_ohm = facts.most("current_step"), facts.most("impedance")
+@dataclass(frozen=True, slots=True)
+class CoupledEdge:
+    """The worst edge of a neighbour, and the node that it couples into."""
+
+    step_v: float
+    least_edge_s: float
+    most_edge_s: float
+    """Infinite where it is not said how slow the edge can be."""
+    r_ohm: float
+    coupling_c_f: float
+    least_c_f: float
+    most_c_f: float
+    """Infinite where it is not said how much capacitance the node can have."""
+
+    @property
+    def peak_v(self) -> float:
+        """Its peak at the node, V."""
+        return coupling.bump_peak_v(
+            step_v=self.step_v, edge_s=self.least_edge_s, r_ohm=self.r_ohm, coupling_c_f=self.coupling_c_f,
+            ground_c_f=self.least_c_f,
+        )  # fmt: skip
+
+    def lasting_v(self, lasts_s: float) -> float:
+        """What no edge of this neighbour holds the node above for a time, V at the node: the least of three bounds."""
+        held_v = lasting_bump_v(
+            lasts_s=lasts_s, step_v=self.step_v, r_ohm=self.r_ohm, coupling_c_f=self.coupling_c_f,
+            ground_c_f=self.least_c_f,
+        )  # fmt: skip
+        bound_v = min(self.peak_v, held_v)
+        least_c_f = self.coupling_c_f + self.least_c_f
+        if self.most_edge_s >= lasts_s or least_c_f == 0.0:
+            return bound_v
+        after_edge_v = decayed_kick_v(
+            lasts_s=lasts_s - self.most_edge_s, charge_c=self.step_v * self.coupling_c_f, r_ohm=self.r_ohm,
+            least_c_f=least_c_f, most_c_f=self.coupling_c_f + self.most_c_f,
+        )  # fmt: skip
+        return min(bound_v, after_edge_v)
+
+
+def coupled_edge(case: Case, neighbour: Neighbour) -> CoupledEdge:
+    """The edge and the node of a pair that couples through a capacitance."""
+    facts = case.of(neighbour)
+    node_c = neighbour.node.capacitance if neighbour.node is not None else None
+    slowest_s = neighbour.edge.most if neighbour.edge is not None else None
+    edge = CoupledEdge(
+        step_v=facts.most("step"),
+        least_edge_s=facts.least("edge"),
+        most_edge_s=inf if slowest_s is None else slowest_s,
+        r_ohm=facts.most("node.resistance"),
+        coupling_c_f=facts.most("capacitance"),
+        least_c_f=facts.least("node.capacitance"),
+        most_c_f=inf if node_c is None or node_c.most is None else node_c.most,
+    )
     case.settle()
-    peak_v = coupling.shared_impedance_bump_v(step_a=step_a, impedance_ohm=impedance_ohm) / scale
-    return Bump(aggressor, victim.id, neighbour.id, peak_v, _for_good(peak_v), path, facts.path("impedance"))
+    return edge
 
 
-def _for_good(peak_v: float) -> Callable[[float], float]:
-    """A step that stays: above every level below it for ever."""
-    return lambda level_v: float("inf") if peak_v > level_v else 0.0
-
-
-def _to_rail(case: Case, facts: Facts, victim: Comparator) -> float:
-    """Divide by this to refer a bump to the rail."""
-    if facts.must("at") == "rail":
-        return 1.0
-    return input_share(case, victim)
-
-
-def input_share(case: Case, comparator: Comparator) -> float:
-    """The part of the rail that reaches the comparator's input; 1 where there is no divider."""
-    if comparator.divider is None:
-        return 1.0
-    share = case.of(comparator).number("divider.ratio")
-    case.settle()
-    return share
+def rail_share(case: Case, facts: Facts, victim: Comparator) -> float:
+    """The part of a change at the rail that shows where a pair of neighbours meets its victim."""
+    return 1.0 if facts.must("at") == "rail" else input_share(case, victim)
 
 
 def _on_reference(
@@ -122,39 +184,34 @@ def _on_reference(
 ) -> Bump:
     """A charge thrown onto a decoupled reference, which gives it back through its source resistance."""
     facts = case.of(reference)
-    c_f, r_ohm = facts.least("decoupling"), facts.most("source_resistance")
-    share = input_share(case, victim)
-    case.settle()
-    at_reference_v = coupling.charge_kick_v(charge_c=charge_c, c_f=c_f)
-    peak_v = at_reference_v / share
+    c_f, r_ohm, share = case.gather(
+        lambda: facts.least("decoupling"),
+        lambda: facts.most("source_resistance"),
+        lambda: input_share(case, victim),
+    )
+    peak_v = coupling.charge_kick_v(charge_c=charge_c, c_f=c_f) / share
+    greatest = reference.decoupling.most if reference.decoupling is not None else None
 
-    def lasts_s(level_v: float) -> float:
-        if level_v >= peak_v:
-            return 0.0
-        if level_v <= 0.0:
-            return float("inf")
-        return coupling.settling_time_s(r_ohm=r_ohm, c_f=c_f, residual=level_v / peak_v)
+    def lasting_v(lasts_s: float) -> float:
+        most_c_f = inf if greatest is None else greatest
+        return decayed_kick_v(lasts_s=lasts_s, charge_c=charge_c, r_ohm=r_ohm, least_c_f=c_f, most_c_f=most_c_f) / share
 
     path = (Hop(aggressor, ""), Hop(reference.id, "kicks"), Hop(victim.id, "is the reference of"))
-    return Bump(aggressor, victim.id, via, peak_v, lasts_s, path, fact)
+    return Bump(aggressor, victim.id, via, peak_v, lasting_v, path, fact)
 
 
 def seen_v(case: Case, comparator: Comparator, bump: Bump) -> float:
     """The part of a bump that a comparator can act on, in V at the rail.
 
-    Its peak where there is no filter; else the highest level above which it stays as long as the filter may need.
+    Its peak where there is no filter; else the highest level above which it can stay as long as the filter may need.
     """
+    return bump.lasting_v(ignored_s(case, comparator))
+
+
+def ignored_s(case: Case, comparator: Comparator) -> float:
+    """For how long a crossing may last and is surely not seen, in s: what the filter keeps off; 0 without one."""
     if comparator.filter is None:
-        return bump.peak_v
+        return 0.0
     shortest_s = case.of(comparator).least("filter")
     case.settle()
-    if bump.lasts_s(0.0) < shortest_s:
-        return 0.0
-    low_v, high_v = 0.0, bump.peak_v
-    for _ in range(_HALVINGS):
-        middle_v = (low_v + high_v) / 2
-        if bump.lasts_s(middle_v) >= shortest_s:
-            low_v = middle_v
-        else:
-            high_v = middle_v
-    return high_v
+    return shortest_s

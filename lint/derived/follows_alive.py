@@ -1,27 +1,45 @@
-"""Whether a stage behind a held one is alive whenever that hold is needed."""
+"""Whether the stages behind a held one are alive whenever that hold is needed."""
 
 from __future__ import annotations
 
-from tidegate.lint.case import Case
+from collections.abc import Iterable
+from contextlib import suppress
+
+from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.rail_order import rails_before
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.description.model.supply import Domain, Rail
 
 
-def why_not_alive(case: Case, stage: OutputStage, *, held_rail: Rail) -> str:
-    """Why a stage may be dead while a stage on another rail, or on the same, is held; empty where it is alive.
+def not_alive(case: Case, stages: Iterable[OutputStage], *, held_rail: Rail) -> list[tuple[OutputStage, str]]:
+    """The stages without a hold that may be dead while a stage on ``held_rail`` before them is held, and why.
 
-    It is alive where nothing gates it and it lives in a domain that is always on, on the same rail or on one that is
-    up before it.  Facts that are missing are noted; the answer is then of no use.
+    A stage is alive where nothing gates it and it lives in a domain that is always on, on that rail or on one that is
+    up before it.
+    Raises: MissingFactsError: where that is not given, or not whether a stage that may be dead has a hold.
     """
+    found = []
+    for stage in stages:
+        with suppress(MissingFactsError):  # noted: settle speaks of it below
+            why = _why(case, stage, held_rail)
+            if why and stage.hold is None:
+                case.of(stage).lacks("hold")
+            found.append((stage, why))
+    case.settle()
+    return [(stage, why) for stage, why in found if why]
+
+
+def _why(case: Case, stage: OutputStage, held_rail: Rail) -> str:
+    """Why a stage may be dead; empty where it is alive."""
     if stage.gated_by is not None:
         return f"works only when {stage.gated_by} enables it"
     domain = case.of(stage).element("domain")
     assert isinstance(domain, Domain)
-    kind, rail = case.gather(lambda: case.of(domain).must("kind"), lambda: rail_of(case, stage))
+    kind = case.of(domain).must("kind")
     if kind == "switched":
         return f"lives in {domain.id}, which is switched"
+    rail = rail_of(case, stage)
     if rail is held_rail or rail.id in rails_before(case, held_rail):
         return ""
     if held_rail.id in rails_before(case, rail):

@@ -2,20 +2,21 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
+from contextlib import suppress
 from dataclasses import dataclass
-from typing import Final
+from typing import Final, Literal
 
-from tidegate.lint.case import Case
-from tidegate.lint.derived.rail_of import domain_rail, rail_of
+from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.description.model.reset_path import OutputStage, Reset
-from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.physics import hold
 from tidegate.lint.physics.logic_levels import input_levels_v
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
+from tidegate.lint.quantity import Dimension, show
 
-_NAN: Final = float("nan")
+_SURE: Final[Mapping[str, str]] = {"low": "low_most_v", "high": "high_least_v"}
 
 
 def reads_it(case: Case, stage: OutputStage) -> list[OutputStage | Reset]:
@@ -57,6 +58,15 @@ class HeldNode:
         """How far both move it away, in V."""
         return self.leaks_to_v + self.ramps_to_v
 
+    def text(self) -> str:
+        """What moves it, in V, and by what."""
+        leakage = f"{show(self.leakage_a, Dimension.CURRENT)} through {show(self.hold_ohm, Dimension.RESISTANCE)}"
+        leaks = f"{show(self.leaks_to_v, Dimension.VOLTAGE)} from {leakage}"
+        if self.coupling_c_f == 0.0:
+            return leaks
+        slope = show(self.slope_v_per_s, Dimension.SLOPE)
+        return f"{leaks} + {show(self.ramps_to_v, Dimension.VOLTAGE)} from a ramp of {slope}"
+
     def largest_hold_ohm(self, limit_v: float) -> float:
         """The largest hold with which it moves no further than a limit, in ohm."""
         return hold.largest_hold_ohm(
@@ -68,17 +78,21 @@ class HeldNode:
 def held_node(case: Case, stage: OutputStage) -> HeldNode:
     """The node at the output of a held stage.
 
+    Held low, it is what couples the rail to the node that lifts it, most with little else on the node; held high, it is
+    all that the node has to the ground (no more than all it has) which keeps it behind the rail.
     Raises: MissingFactsError: where a fact is missing.
     """
     own = case.of(stage)
-    hold_ohm, leakage_a, coupling_f = own.most("hold.resistance"), own.most("leakage"), own.most("hold.coupling")
+    hold_ohm, leakage_a = own.most("hold.resistance"), own.most("leakage")
     for reader in reads_it(case, stage):
         if isinstance(reader, Reset):
             leakage_a += case.of(reader).most("receivers.leakage")
+    low = own.must("hold.to") == "low"
+    coupling_f = own.most("hold.coupling") if low else own.most("load")
     if coupling_f == 0.0:
         case.settle()
         return HeldNode(hold_ohm, leakage_a, 0.0, 0.0, 0.0, 0.0)
-    load_f = own.least("load")
+    load_f = own.least("load") if low else coupling_f
     rise_v, rise_s = case.gather(
         lambda: case.of(rail_of(case, stage)).most("nominal"), lambda: case.of(rail_of(case, stage)).least("rise")
     )
@@ -94,60 +108,56 @@ class SureLevel:
     level_v: float
 
 
-def sure_low(case: Case, stage: OutputStage, *, rail: Rail, supply_v: float) -> SureLevel:
+def sure_low(case: Case, stage: OutputStage, *, supply: Literal["least", "most"]) -> SureLevel:
     """The lowest of the levels up to which those that read a stage surely take its output for low.
 
-    A standard's level is taken at ``supply_v`` where the receivers live on the rail of the stage, else at the least
-    supply of their own.  Raises: MissingFactsError: where a fact is missing.
+    The level of a standard is taken at the least supply of the receivers; where they live on the rail of the stage, at
+    that end of it which ``supply`` names.
+    Raises: MissingFactsError: where a fact is missing.
     """
-    return min(_sure(case, stage, rail, supply_v, low=True), key=lambda sure: sure.level_v)
+    return min(_sure(case, stage, "low", supply), key=lambda sure: sure.level_v)
 
 
-def sure_high(case: Case, stage: OutputStage, *, rail: Rail, supply_v: float) -> SureLevel:
+def sure_high(case: Case, stage: OutputStage, *, supply: Literal["least", "most"]) -> SureLevel:
     """The highest of the levels from which on those that read a stage surely take its output for high.
 
-    A standard's level is taken at ``supply_v`` where the receivers live on the rail of the stage, else at the greatest
-    supply of their own.  Raises: MissingFactsError: where a fact is missing.
+    The level of a standard is taken at the greatest supply of the receivers; where they live on the rail of the stage,
+    at that end of it which ``supply`` names.
+    Raises: MissingFactsError: where a fact is missing.
     """
-    return max(_sure(case, stage, rail, supply_v, low=False), key=lambda sure: sure.level_v)
+    return max(_sure(case, stage, "high", supply), key=lambda sure: sure.level_v)
 
 
-def _sure(case: Case, stage: OutputStage, rail: Rail, supply_v: float, *, low: bool) -> list[SureLevel]:
-    found = [
-        level for reader in reads_it(case, stage) for level in _levels(case, reader, rail, supply_v, low=low)
-    ]
+def _sure(case: Case, stage: OutputStage, level: str, supply: str) -> list[SureLevel]:
+    found: list[SureLevel] = []
+    for reader in reads_it(case, stage):
+        with suppress(MissingFactsError):  # noted: settle speaks of it below
+            found.extend(_levels(case, stage, reader, level, supply))
     case.settle()
     return found
 
 
 def _levels(
-    case: Case, reader: OutputStage | Reset, rail: Rail, supply_v: float, *, low: bool
+    case: Case, stage: OutputStage, reader: OutputStage | Reset, level: str, supply: str
 ) -> Iterator[SureLevel]:
     facts = case.of(reader)
     if isinstance(reader, OutputStage):
-        yield SureLevel(reader.id, facts.least("threshold") if low else facts.most("threshold"))
+        yield SureLevel(reader.id, facts.least("threshold") if level == "low" else facts.most("threshold"))
         return
     receivers = reader.receivers
-    standard = receivers.levels if receivers is not None else None
-    if standard is not None:
-        at_v = _receiver_supply_v(case, reader, rail, supply_v, low=low)
-        if at_v == at_v:  # a number: the rail of the receivers is known
-            levels = input_levels_v(standard=standard, supply_v=at_v)
-            yield SureLevel(f"{reader.id} ({standard})", levels.low_most_v if low else levels.high_least_v)
-    if standard is None or (receivers is not None and receivers.threshold is not None):
+    if receivers is None or receivers.levels is None or receivers.threshold is not None:
         fact = "receivers.threshold"
-        yield SureLevel(reader.id, facts.least(fact) if low else facts.most(fact))
+        yield SureLevel(reader.id, facts.least(fact) if level == "low" else facts.most(fact))
+    if receivers is not None and receivers.levels is not None:
+        at_v = _receiver_supply_v(case, stage, reader, level, supply)
+        levels = input_levels_v(standard=receivers.levels, supply_v=at_v)
+        yield SureLevel(f"{reader.id} ({receivers.levels})", getattr(levels, _SURE[level]))
 
 
-def _receiver_supply_v(case: Case, reader: Reset, rail: Rail, supply_v: float, *, low: bool) -> float:
-    """The supply of a net's receivers at which their level is worst; not a number, and noted, where it is not given."""
-    if reader.domain is None:
-        return case.of(reader).lacks("domain")
-    domain = case.description.domains[reader.domain]
-    assert isinstance(domain, Domain)
-    if domain.rail is None:
-        return case.of(domain).lacks("rail")
-    own = domain_rail(case, domain)
-    if own is rail:
-        return supply_v
-    return case.of(own).least("delivered") if low else case.of(own).most("delivered")
+def _receiver_supply_v(case: Case, stage: OutputStage, reader: Reset, level: str, supply: str) -> float:
+    """The supply at which the receivers of a net read a level at its worst."""
+    own, rail = rail_of(case, reader), rail_of(case, stage)
+    worst = supply if own is rail else {"low": "least", "high": "most"}[level]
+    supply_v = case.of(own).least("delivered") if worst == "least" else case.of(own).most("delivered")
+    case.settle()
+    return supply_v

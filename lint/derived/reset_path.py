@@ -29,7 +29,7 @@ class Onward:
 
 
 def onward(case: Case, stage: OutputStage) -> Onward:
-    """The stages and reset nets behind an output stage, nearest first; stages that lead to no reset net do not count."""
+    """The stages and reset nets behind an output stage, nearest first; stages that lead to no reset net left out."""
     ahead = Reach(stage.id, drives(case.graph))
     resets = tuple(case.description.resets[name] for name in ahead if name in case.description.resets)
     back = driven_by(case.graph)

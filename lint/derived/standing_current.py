@@ -6,6 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.rail_of import domain_rail
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
 from tidegate.lint.description.model.reset_path import Hold, OutputStage
 from tidegate.lint.description.model.supply import Domain
@@ -28,17 +29,18 @@ def stages_in(case: Case, domain: Domain) -> list[OutputStage]:
     return [stages[name] for name in case.graph.tails(domain.id, EdgeKind.SUPPLIED_BY) if name in stages]
 
 
-def hold_takers(case: Case, domain: Domain, *, supply_v: float) -> list[Taker]:
-    """What each hold in a domain takes while its stage drives against it.
+def hold_takers(case: Case, domain: Domain) -> list[Taker]:
+    """What each hold in a domain takes at the greatest supply, while its stage drives against it.
 
-    Raises: MissingFactsError: where it is not given whether a stage has a hold, or how large it is.
+    Raises: MissingFactsError: where it is not given whether a stage has a hold, or how large it is, or the supply.
     """
-    held = []
+    held: list[tuple[str, float]] = []
     for stage in stages_in(case, domain):
         if stage.hold is None:
             case.of(stage).lacks("hold")
         elif isinstance(stage.hold, Hold):
             held.append((stage.id, case.of(stage).least("hold.resistance")))
+    supply_v = case.of(domain_rail(case, domain)).most("delivered")
     case.settle()
     return [Taker(f"hold of {name}", hold_current_a(supply_v=supply_v, hold_ohm=ohm)) for name, ohm in held]
 
@@ -49,7 +51,7 @@ def circuit_takers(case: Case, domain: Domain) -> list[Taker]:
     A stage takes what is given: CMOS at rest takes its leakage alone.
     Raises: MissingFactsError: where it is not given what a reference, a bias or a comparator takes.
     """
-    takers = []
+    takers: list[Taker] = []
     for name in case.graph.tails(domain.id, EdgeKind.SUPPLIED_BY):
         element = case.graph.elements[name]
         facts = case.of(element)

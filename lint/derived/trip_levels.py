@@ -2,16 +2,28 @@
 
 from __future__ import annotations
 
-from typing import Final
+from functools import partial
+from typing import Final, Literal
 
 from tidegate.lint.case import Case, Facts
+from tidegate.lint.derived.ask_all import ask_all
+from tidegate.lint.derived.input_share import input_share
 from tidegate.lint.description.model.detector import Comparator, Contributor, Hysteresis
 from tidegate.lint.physics import tolerance
 from tidegate.lint.physics.tolerance import Kind, refer_offset_to_rail_v, refer_relative_to_level_v
-from tidegate.lint.physics.trip_window import Combination, Window, combined_error_v
+from tidegate.lint.physics.trip_window import (
+    Combination,
+    Window,
+    combined_error_v,
+    window_from_contributors,
+    window_from_falling,
+    window_from_ranges,
+    window_from_rising,
+)
 from tidegate.lint.quantity import Voltage
 
 _PLAIN_SIGMA: Final = 1.0
+_Level = Literal["rising", "falling"]
 
 
 def falling_window(case: Case, comparator: Comparator) -> Window:
@@ -30,91 +42,123 @@ def hysteresis_window(case: Case, comparator: Comparator) -> Window:
     As stated where an amount is; else from the levels: errors that track move both and cancel.
     """
     facts = case.of(comparator)
-    if isinstance(comparator.hysteresis, Hysteresis) and comparator.hysteresis.amount is not None:
+    if _amount(comparator) is not None:
         least_v, most_v = facts.least("hysteresis.amount"), facts.most("hysteresis.amount")
         case.settle()
         return Window(least_v, most_v)
-    rising, falling = _nominal(comparator, "rising"), _nominal(comparator, "falling")
-    if rising is not None and falling is not None:
-        apart_v = 2.0 * _error_v(case, comparator, max(rising, falling), untracked_only=True)
-        return _ordered(rising - falling - apart_v, rising - falling + apart_v)
-    up, down = rising_window(case, comparator), falling_window(case, comparator)
-    if facts.must("tracked"):
-        return _ordered(up.least_v - down.least_v, up.most_v - down.most_v)
-    return _ordered(up.least_v - down.most_v, up.most_v - down.least_v)
+    rising, falling = _span(comparator, "rising"), _span(comparator, "falling")
+    if rising is None or falling is None:
+        facts.lacks("hysteresis.amount")
+        case.settle()
+    up_v, down_v = _nominal_v(rising), _nominal_v(falling)
+    if up_v is not None and down_v is not None:
+        contributors, coverage, method = level_errors(case, comparator, max(up_v, down_v), tracking_matters=True)
+        return window_from_contributors(
+            rising_v=up_v, falling_v=down_v, contributors=contributors, hysteresis_error_v=0.0, coverage=coverage,
+            method=method,
+        ).hysteresis  # fmt: skip
+    up, down, tracked = case.gather(
+        lambda: rising_window(case, comparator),
+        lambda: falling_window(case, comparator),
+        lambda: bool(facts.must("tracked")),
+    )
+    return window_from_ranges(rising=up, falling=down, hysteresis=None, tracked=tracked).hysteresis
 
 
-def _ordered(first_v: float, second_v: float) -> Window:
-    return Window(min(first_v, second_v), max(first_v, second_v))
+def has_no_hysteresis(comparator: Comparator) -> bool:
+    """Whether the description says that there is none: outright, as an amount of 0 V, or as two equal levels."""
+    if comparator.hysteresis == "none":
+        return True
+    amount = _amount(comparator)
+    if amount is not None:
+        return amount.most == 0.0
+    rising, falling = _span(comparator, "rising"), _span(comparator, "falling")
+    return rising is not None and falling is not None and rising.middle is not None and rising.middle == falling.middle
 
 
-def _level_window(case: Case, comparator: Comparator, which: str) -> Window:
-    """A level as stated: a range as it stands, a nominal value with the error contributors about it.
+def _level_window(case: Case, comparator: Comparator, which: _Level) -> Window:
+    """A level as stated: a nominal value with the error contributors about it, or a range as it stands.
 
-    A level that is not given is the other one and the hysteresis between them.
+    An end that is not stated is the other level and the hysteresis between them. An end that is stated stays where it
+    is: a bounded level is not the other one and the hysteresis once more.
     """
-    facts = case.of(comparator)
-    other = "rising" if which == "falling" else "falling"
     stated = _span(comparator, which)
-    if stated is None and _span(comparator, other) is not None and isinstance(comparator.hysteresis, Hysteresis):
-        base, apart = _level_window(case, comparator, other), hysteresis_window(case, comparator)
-        if which == "falling":
-            return Window(base.least_v - apart.most_v, base.most_v - apart.least_v)
-        return Window(base.least_v + apart.least_v, base.most_v + apart.most_v)
-    facts.must("trip")
-    facts.must(f"trip.{which}")
-    nominal_v = _nominal(comparator, which)
+    nominal_v = _nominal_v(stated)
     if nominal_v is not None:
-        error_v = _error_v(case, comparator, nominal_v, untracked_only=False)
+        contributors, coverage, method = level_errors(case, comparator, nominal_v, tracking_matters=False)
+        error_v = combined_error_v(contributors, coverage=coverage, method=method)
         return Window(nominal_v - error_v, nominal_v + error_v)
-    least_v, most_v = facts.least(f"trip.{which}"), facts.most(f"trip.{which}")
-    case.settle()
-    return Window(least_v, most_v)
+    least_v, most_v = (None, None) if stated is None else (stated.least, stated.most)
+    if least_v is not None and most_v is not None:
+        return Window(least_v, most_v)
+    reached = _from_other_level(case, comparator, which)
+    return Window(reached.least_v if least_v is None else least_v, reached.most_v if most_v is None else most_v)
 
 
-def _span(comparator: Comparator, which: str) -> Voltage | None:
+def _from_other_level(case: Case, comparator: Comparator, which: _Level) -> Window:
+    """A level from the other one, which must stand by itself, and the hysteresis, which must be stated."""
+    other: _Level = "rising" if which == "falling" else "falling"
+    span = _span(comparator, other)
+    stands = span is not None and (_nominal_v(span) is not None or None not in (span.least, span.most))
+    if not stands or _amount(comparator) is None:
+        facts, stated = case.of(comparator), _span(comparator, which)
+        if stated is None:
+            facts.lacks(f"trip.{which}")
+        else:
+            facts.least(f"trip.{which}"), facts.most(f"trip.{which}")
+        case.settle()
+    base, apart = case.gather(
+        lambda: _level_window(case, comparator, other), lambda: hysteresis_window(case, comparator)
+    )
+    if which == "falling":
+        return window_from_rising(rising=base, hysteresis=apart).falling
+    return window_from_falling(falling=base, hysteresis=apart).rising
+
+
+def _amount(comparator: Comparator) -> Voltage | None:
+    return comparator.hysteresis.amount if isinstance(comparator.hysteresis, Hysteresis) else None
+
+
+def _span(comparator: Comparator, which: _Level) -> Voltage | None:
     return None if comparator.trip is None else getattr(comparator.trip, which)
 
 
-def _nominal(comparator: Comparator, which: str) -> float | None:
+def _nominal_v(span: Voltage | None) -> float | None:
     """The level, where a nominal value and no range is stated."""
-    span = _span(comparator, which)
-    if span is None or span.typical is None:
-        return None
-    ranged = span.least != span.most
-    return None if ranged else span.typical
+    return None if span is None or span.least != span.most else span.typical
 
 
-def _error_v(case: Case, comparator: Comparator, level_v: float, *, untracked_only: bool) -> float:
-    """The combined error of one level, in V at the rail."""
-    facts = case.of(comparator)
+def level_errors(
+    case: Case, comparator: Comparator, level_v: float, *, tracking_matters: bool
+) -> tuple[list[tolerance.Contributor], float, Combination]:
+    """What moves a level that lies at ``level_v``, at which coverage, and how it is combined."""
+    facts, whole = case.of(comparator), case.whole
     if not comparator.errors:
         facts.lacks("errors")
-        case.settle()
-    contributors = [
-        _contributor(case, facts, comparator, name, level_v, needs_tracking=untracked_only)
+    sizes = [
+        partial(_contributor, case, comparator, name, level_v, tracking_matters=tracking_matters)
         for name in comparator.errors
     ]
-    whole = case.whole
-    method = Combination[whole.must("conditions.combine").upper()]
-    needs_coverage = method is Combination.ROOT_SUM_SQUARE or any(e.is_ == "sigma" for e in comparator.errors.values())
-    coverage = whole.number("conditions.coverage") if needs_coverage else _PLAIN_SIGMA
+    contributors, method = case.gather(
+        lambda: ask_all(case, sizes), lambda: Combination[whole.must("conditions.combine").upper()]
+    )
+    random = any(contributor.kind is Kind.SIGMA for contributor in contributors)
+    matters = random or method is Combination.ROOT_SUM_SQUARE
+    coverage = whole.number("conditions.coverage") if matters else _PLAIN_SIGMA
     case.settle()
-    chosen = [c for c in contributors if not (untracked_only and c.tracks)]
-    return combined_error_v(chosen, coverage=coverage, method=method)
+    return contributors, coverage, method
 
 
 def _contributor(
-    case: Case, facts: Facts, comparator: Comparator, name: str, level_v: float, *, needs_tracking: bool
+    case: Case, comparator: Comparator, name: str, level_v: float, *, tracking_matters: bool
 ) -> tolerance.Contributor:
-    error = comparator.errors[name]
-    path = f"errors.{name}"
-    size_v = _size_at_rail_v(facts, comparator, error, path, level_v)
-    kind = Kind(facts.must(f"{path}.is"))
+    error, facts, path = comparator.errors[name], case.of(comparator), f"errors.{name}"
     tracks = error.tracks if error.tracks is not None else comparator.tracked
-    if tracks is None and needs_tracking:
+    if tracks is None and tracking_matters:
         facts.lacks(f"{path}.tracks")
-    case.settle()
+    size_v, kind = case.gather(
+        lambda: _size_at_rail_v(case, comparator, error, path, level_v), lambda: Kind(facts.must(f"{path}.is"))
+    )
     return tolerance.Contributor(
         name=name,
         at_rail_v=size_v,
@@ -125,10 +169,14 @@ def _contributor(
     )
 
 
-def _size_at_rail_v(facts: Facts, comparator: Comparator, error: Contributor, path: str, level_v: float) -> float:
-    if error.share is not None and error.amount is None:
-        return refer_relative_to_level_v(share=facts.most(f"{path}.share"), level_v=level_v)
-    size_v = facts.most(f"{path}.amount")
-    if facts.must(f"{path}.at") == "rail" or comparator.divider is None:
-        return size_v
-    return refer_offset_to_rail_v(offset_v=size_v, divider_ratio=facts.number("divider.ratio"))
+def _size_at_rail_v(case: Case, comparator: Comparator, error: Contributor, path: str, level_v: float) -> float:
+    """The part that scales with the level and the part that does not; one cause moves both the same way."""
+    facts: Facts = case.of(comparator)
+    share = facts.most(f"{path}.share") if error.share is not None else 0.0
+    amount_v = facts.most(f"{path}.amount") if error.amount is not None or error.share is None else 0.0
+    divided = error.amount is not None and not (comparator.divider is None and comparator.crossover is None)
+    ratio = input_share(case, comparator) if divided and facts.must(f"{path}.at") == "input" else 1.0
+    case.settle()
+    return refer_relative_to_level_v(share=share, level_v=level_v) + refer_offset_to_rail_v(
+        offset_v=amount_v, divider_ratio=ratio
+    )

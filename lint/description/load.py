@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import gc
 import json
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping, Sequence
+from contextlib import contextmanager
 from functools import lru_cache
 from pathlib import Path
 from typing import Any, Final
@@ -15,9 +17,10 @@ import tidegate.schema
 from tidegate.lint.description.empty_values import fill_empty
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.names import NAMED_SECTIONS, NameField, name_faults, name_fields
-from tidegate.lint.description.place import DescriptionError, Fault, Place
-from tidegate.lint.description.sources import Sources, read_sources
-from tidegate.lint.description.yaml_text import Step, YamlFile, read_yaml
+from tidegate.lint.description.place import DescriptionError, Fault, Place, dotted, steps
+from tidegate.lint.description.sources import Sources, read_file, read_sources
+from tidegate.lint.description.yaml_nodes import PARSER, Parser
+from tidegate.lint.description.yaml_text import read_yaml
 from tidegate.lint.quantity import Span
 
 KITS: Final = Path(__file__).parents[1] / "process_kits"
@@ -32,25 +35,33 @@ class Loaded(msgspec.Struct, frozen=True):
 
     def place(self, path: str) -> Place:
         """Where a fact stands (path with dots), or the nearest part of the description above it."""
-        steps: list[Step] = [int(step) if step.isdigit() else step for step in path.split(".")]
-        return self.sources.place(steps)
+        return self.sources.place(steps(path))
 
 
-def load(path: str | Path, *, shown: str | None = None) -> Loaded:
+def load(path: str | Path, *, shown: str | None = None, parser: type[Parser] = PARSER) -> Loaded:
     """Read, check and type a description.
 
     ``shown`` is the name under which messages speak of the file; the path itself where it is not given.
     Raises: DescriptionError: with every fault of the files that could be found, sorted by place.
     """
-    sources = read_sources(Path(path), shown or str(path), Path.read_bytes)
-    sources = _with_kit(sources)
-    data = sources.data
-    unknown = fill_empty(sources, description_schema())
-    faults = unknown if _validator().is_valid(data) else [*unknown, *_explained(sources)]
-    faults = faults or name_faults(data, _name_fields(), sources) or _empty_faults(data, sources)
-    if faults:
-        raise DescriptionError(faults)
-    return Loaded(_typed(sources), sources)
+    with _collector_off():
+        sources = _with_kit(read_sources(Path(path), shown or str(path), read_file, parser), parser)
+        faults = [*sources.faults, *_faults_of_data(sources)]
+        if faults:
+            raise DescriptionError(faults)
+        return Loaded(_typed(sources), sources)
+
+
+@contextmanager
+def _collector_off() -> Iterator[None]:
+    """Loading makes many objects and no garbage: the collector would only walk them, again and again."""
+    was_on = gc.isenabled()
+    gc.disable()
+    try:
+        yield
+    finally:
+        if was_on:
+            gc.enable()
 
 
 @lru_cache(maxsize=1)
@@ -75,7 +86,30 @@ def _name_fields() -> tuple[NameField, ...]:
     return name_fields(description_schema())
 
 
-def _explained(sources: Sources) -> list[Fault]:
+def _faults_of_data(sources: Sources) -> list[Fault]:
+    """What is wrong with the joined data, less what only follows from the faults of the files."""
+    data = sources.data
+    faults = fill_empty(sources, description_schema())
+    if not _validator().is_valid(data):
+        faults += _explained(sources)
+    if _sections_are_whole(data):
+        faults += name_faults(data, _name_fields(), sources)
+        if not faults and not any(data.get(section) for section in NAMED_SECTIONS):
+            place = Place(sources.files[0].name)
+            faults.append(Fault(place, "", "the file describes no element", "tidegate start writes a starter"))
+    spoiled = [path for file in sources.files for path in file.spoiled]
+    return [fault for fault in faults if not any(fault.lies_in(path) for path in spoiled)]
+
+
+def _sections_are_whole(data: Mapping[str, Any]) -> bool:
+    """Whether every element is where it can be found; if not, a wrong name may be the fault of its section."""
+    known = description_schema()["properties"]
+    return all(
+        isinstance(data[key], dict) if key in NAMED_SECTIONS else key in known or key.startswith("x-") for key in data
+    )
+
+
+def _explained(sources: Sources) -> Sequence[Fault]:
     """What is wrong with data that the validator refused; never empty."""
     # Loaded here alone: a description without faults does not pay for the library that explains them.
     from tidegate.lint.description.schema_faults import schema_faults
@@ -83,34 +117,34 @@ def _explained(sources: Sources) -> list[Fault]:
     faults = schema_faults(sources.data, description_schema(), sources)
     if faults:
         return faults
-    error = next(_validator().iter_errors(sources.data))
-    return [Fault(sources.place(tuple(error.instance_path)), "", error.message, "write it as the schema says")]
+    path = next((tuple(error.instance_path) for error in _validator().iter_errors(sources.data)), ())
+    return [Fault(sources.place(path), dotted(path), "a value that does not fit", "write it as the schema says")]
 
 
-def _with_kit(sources: Sources) -> Sources:
+def _with_kit(sources: Sources, parser: type[Parser]) -> Sources:
     """The description joined with the ready-made process data it names; its own entries win."""
     process = sources.data.get("process")
     kit = process.get("kit") if isinstance(process, dict) else None
-    file = KITS / f"{kit}.yaml" if isinstance(kit, str) and kit.replace("-", "").isalnum() else None
-    if not isinstance(process, dict) or file is None or not file.is_file():
+    if not isinstance(process, dict) or kit not in _kits():
         return sources  # a kit of another name is a fault that the schema explains
-    shipped = read_yaml(f"process kit {kit}", file.read_bytes())
-    joined = {**_mapping(shipped.data.get("process")), **process}
-    for key, entries in _mapping(shipped.data.get("process")).items():
-        if isinstance(entries, dict) and isinstance(process.get(key, {}), dict):
-            joined[key] = {**entries, **_mapping(process.get(key))}
-    return Sources([*sources.files, YamlFile(shipped.name, shipped.root, {})], {**sources.data, "process": joined})
+    shipped = read_yaml(f"process kit {kit}", (KITS / f"{kit}.yaml").read_bytes(), parser)
+    offered = _mapping(shipped.data.get("process"))
+    joined = {**offered, **process}
+    for key, entries in offered.items():
+        own = process.get(key, {})
+        if isinstance(entries, dict) and isinstance(own, dict):
+            joined[key] = {**entries, **own}
+    files = [*sources.files, shipped.without_data()]
+    return Sources(files, {**sources.data, "process": joined}, [*sources.faults, *shipped.faults])
+
+
+def _kits() -> Sequence[str]:
+    kits: Sequence[str] = description_schema()["$defs"]["process"]["properties"]["kit"]["enum"]
+    return kits
 
 
 def _mapping(value: Any) -> dict[str, Any]:
     return value if isinstance(value, dict) else {}
-
-
-def _empty_faults(data: Mapping[str, Any], sources: Sources) -> list[Fault]:
-    if any(data.get(section) for section in NAMED_SECTIONS):
-        return []
-    place = Place(sources.files[0].name)
-    return [Fault(place, "", "the file describes no element", "tidegate start writes a starter")]
 
 
 def _typed(sources: Sources) -> Description:

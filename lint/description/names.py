@@ -82,11 +82,13 @@ def name_faults(data: Mapping[str, Any], fields: Sequence[NameField], sources: S
         for path, name in _values(data, field.way, ()):
             if isinstance(name, str) and home.get(name) not in field.sections:
                 problem, choices = _problem(name, field, home)
-                faults.append(Fault(sources.place(path), dotted(path), problem, advice.about(name, choices)))
+                missing = "none is described yet" if name in home else "describe it, or correct the name"
+                faults.append(Fault(sources.place(path), dotted(path), problem, advice.about(name, choices, missing)))
     for path, name, kind, known in _names_of_parts(data):
         if name not in known:
             problem = f"no {kind} is called {quoted(name)}"
-            faults.append(Fault(sources.place(path), dotted(path), problem, advice.about(name, list(known))))
+            missing = "describe it, or correct the name"
+            faults.append(Fault(sources.place(path), dotted(path), problem, advice.about(name, list(known), missing)))
     return faults
 
 
@@ -142,10 +144,10 @@ class _Advice:
     def __init__(self) -> None:
         self._given: dict[tuple[str, ...], str] = {}
 
-    def about(self, name: str, choices: Sequence[str]) -> str:
-        """Advice about a name."""
+    def about(self, name: str, choices: Sequence[str], missing: str) -> str:
+        """Advice about a name; what is missing where there is no choice at all."""
         if not choices:
-            return "describe it, or correct the name"
+            return missing
         key = (name, choices[0], choices[-1])
         if key not in self._given:
             if len(self._given) >= MOST_SUGGESTIONS:
@@ -162,7 +164,7 @@ def _nearest_or_some(name: str, choices: Sequence[str]) -> str:
     if near:
         return f"did you mean {' or '.join(map(escaped, near))}?"
     more = ", ..." if len(choices) > 8 else ""
-    return f"there is {', '.join(map(escaped, choices[:8]))}{more}"
+    return f"there {'is' if len(choices) == 1 else 'are'} {', '.join(map(escaped, choices[:8]))}{more}"
 
 
 def _names_of_parts(data: Mapping[str, Any]) -> Iterator[tuple[Path, str, str, Mapping[str, Any]]]:

@@ -41,8 +41,8 @@ class Fault(msgspec.Struct, frozen=True, order=True):
         return f"{self.place}: {path}{self.problem}; {self.advice}"
 
     def lies_in(self, path: str) -> bool:
-        """Whether it is about the value at this path, or about something inside it."""
-        return self.path == path or (bool(path) and self.path.startswith((f"{path}.", f"{path}[")))
+        """Whether it is about the value at this path, or about something inside it; nothing lies in the empty path."""
+        return bool(path) and (self.path == path or self.path.startswith((f"{path}.", f"{path}[")))
 
 
 class DescriptionError(Exception):

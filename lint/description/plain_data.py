@@ -1,12 +1,13 @@
 """A tree of YAML nodes as plain data, by rules of our own.
 
-The traps of YAML 1.1 are faults with a place: ``off`` is no boolean, ``010`` no octal and ``1:30`` no number of seconds.
+The traps of YAML 1.1 are faults with a place: ``off`` is no boolean, ``010`` no octal, ``1:30`` no number of seconds.
 A value with a fault keeps its text in the data, so that one fault does not draw others after it.
 """
 
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
 from typing import Final, TypeAlias
 
 import yaml
@@ -22,14 +23,14 @@ MOST_GROWTH: Final = 16
 
 Plain: TypeAlias = "dict[str, Plain] | list[Plain] | str | int | float | bool"
 
-_NULLS: Final = frozenset({"", "~", "null", "Null", "NULL"})
+NULLS: Final = frozenset({"", "~", "null", "Null", "NULL"})
 _BOOLEANS: Final = {"true": True, "false": False}
 _SWITCH_WORDS: Final = frozenset(
     variant
     for word in ("y", "n", "yes", "no", "on", "off", "true", "false")
     for variant in (word, word.capitalize(), word.upper())
 ) - frozenset(_BOOLEANS)
-_SPECIAL: Final = _NULLS | _SWITCH_WORDS | frozenset(_BOOLEANS)
+_SPECIAL: Final = NULLS | _SWITCH_WORDS | frozenset(_BOOLEANS)
 
 _INTEGER: Final = re.compile(r"[+-]?(?:0|[1-9][0-9]{0,15})", re.ASCII)
 _FLOAT: Final = re.compile(r"[+-]?(?:0|[1-9][0-9]*)(?:\.[0-9]+)?(?:[eE][+-]?[0-9]+)?", re.ASCII)
@@ -47,13 +48,14 @@ class PlainFile:
         Raises: DescriptionError: where it is nested too deep.
         """
         self.faults: list[Fault] = []
+        self.spoiled: list[str] = []  # paths of values that are not what the author meant
         self.empty: list[Path] = []
         self._name = name
         self._path: list[Step] = []
         self._size = 0  # of the text so far in characters, aliases expanded
         self._seen: dict[int, tuple[Plain, int | None]] = {}
         if root.tag != UNTYPED:
-            self._fault(root, None, f"a tag (found {quoted(root.tag)})", "remove it")
+            self._fault(root, None, f"a tag (found {_tag(root)})", "remove it")
         self.data = self._mapping(root)
         own = root.end_mark.index - root.start_mark.index
         if self._size > max(MOST_EXPANDED, MOST_GROWTH * own):
@@ -70,12 +72,12 @@ class PlainFile:
                 key = self._odd_key(key_node)
                 if key is None:
                     continue
-                if key != key_node.value:  # the value stands in the key
+                if not key_node.style and key != key_node.value:  # the value stands in the key
                     data[key] = key_node.value.partition(":")[2]
                     continue
             if key in first:
                 line = first[key].start_mark.line + 1
-                self._fault(key_node, key, f"given twice (first in line {line})", "keep one of them")
+                self._note(key_node, (*self._path, key), f"given twice (first in line {line})", "keep one of them")
                 continue
             first[key] = key_node
             self._size += len(key)
@@ -93,8 +95,7 @@ class PlainFile:
             return None
         text: str = node.value
         if node.style:
-            self._check_text(node, text)
-            return text
+            return self._checked(node, text)
         if text == "<<":
             self._fault(node, None, "a merge key (<<)", "write the values out, or use include")
             return None
@@ -112,8 +113,7 @@ class PlainFile:
             if node.tag != UNTYPED:
                 return self._tagged(node, step, text)
             if node.style:  # quoted, or a block of text
-                self._check_text(node, text, step)
-                return text
+                return self._checked(node, text, step)
             return self._special(node, text, step) if text in _SPECIAL else self._number_or_text(node, text, step)
         seen = self._seen.get(id(node))
         if seen is not None:
@@ -169,16 +169,26 @@ class PlainFile:
         return text
 
     def _tagged(self, node: yaml.Node, step: Step, data: Plain) -> Plain:
-        self._fault(node, step, f"a tag (found {quoted(node.tag)})", "remove it")
+        self._fault(node, step, f"a tag (found {_tag(node)})", "remove it")
         return data
 
-    def _check_text(self, node: yaml.ScalarNode, text: str, step: Step | None = None) -> None:
-        """Only an escape in double quotes can bring in what the file itself may not hold."""
+    def _checked(self, node: yaml.ScalarNode, text: str, step: Step | None = None) -> str:
+        """A quoted text; only an escape in double quotes can bring in what the file itself may not hold."""
         found = NOT_TEXT.search(text) if node.style == '"' else None
-        if found:
-            self._fault(node, step, f"the character U+{ord(found[0]):04X} in a text", "remove it")
+        if found is None:
+            return text
+        self._fault(node, step, f"the character U+{ord(found[0]):04X} in a text", "remove it")
+        return NOT_TEXT.sub("", text)
 
     def _fault(self, node: yaml.Node, step: Step | None, problem: str, advice: str) -> None:
-        place = Place(self._name, node.start_mark.line + 1, node.start_mark.column + 1)
         path = self._path if step is None else (*self._path, step)
+        self.spoiled.append(dotted(path))
+        self._note(node, path, problem, advice)
+
+    def _note(self, node: yaml.Node, path: Sequence[Step], problem: str, advice: str) -> None:
+        place = Place(self._name, node.start_mark.line + 1, node.start_mark.column + 1)
         self.faults.append(Fault(place, dotted(path), problem, advice))
+
+
+def _tag(node: yaml.Node) -> str:
+    return quoted(node.tag.replace("tag:yaml.org,2002:", "!!"))

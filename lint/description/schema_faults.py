@@ -70,7 +70,12 @@ def _pattern(validator: Any, pattern: str, instance: Any, schema: Schema) -> Ite
 
 
 _VALIDATORS: Final[Any] = validators
-_EXPLAINING: Final = _VALIDATORS.extend(Draft202012Validator, {"anyOf": _any_of, "pattern": _pattern})
+_EXPLAINING: Final = _VALIDATORS.extend(
+    Draft202012Validator,
+    {"anyOf": _any_of, "pattern": _pattern},
+    # 2.0 is a whole number to JSON Schema, but none to the typed description.
+    type_checker=Draft202012Validator.TYPE_CHECKER.redefine("integer", lambda _, value: type(value) is int),
+)
 
 
 def _faults_of(error: Any, schema: Schema, sources: Sources) -> Iterator[Fault]:
@@ -84,14 +89,13 @@ def _faults_of(error: Any, schema: Schema, sources: Sources) -> Iterator[Fault]:
         case "required":
             for key in error.validator_value:
                 if key not in error.instance:
-                    example = written(example_at(schema, (*path, key)))
-                    advice = f"{key} is needed here, such as {example}"
+                    advice = f"{key} is needed here, such as {written(example_at(schema, (*path, key)))}"
                     yield Fault(sources.place(path, key=True), dotted(path), f"no {key}", advice)
         case _ if "propertyNames" in error.absolute_schema_path:
             place = sources.place((*path, error.instance), key=True)
             yield Fault(place, dotted(path), f"{found(error.instance)} is no name", _NAME)
         case _:
-            yield Fault(sources.place(path), dotted(path), *_in_words(error, example_at(schema, path)))
+            yield Fault(sources.place(path), dotted(path), *_in_words(error, written(example_at(schema, path))))
 
 
 _NAME: Final = "a name has letters, digits, - and _, begins with a letter or _, and has 64 characters at the most"
@@ -101,45 +105,53 @@ _TYPE_WORDS: Final = {
     "integer": "a whole number", "boolean": "true or false",
 }  # fmt: skip
 
+_LIMITS: Final = {
+    "minimum": "at least", "exclusiveMinimum": "more than", "maximum": "at most", "exclusiveMaximum": "less than",
+}  # fmt: skip
 
-def _in_words(error: Any, example: Any) -> tuple[str, str]:
+
+def _in_words(error: Any, example: str) -> tuple[str, str]:
     """What is wrong (with what was found), and what would be right."""
-    was, value = found(error.instance), error.validator_value
-    as_in = f"write it as in {written(example)}"
+    was, limit = found(error.instance), error.validator_value
     match error.validator:
         case "x-quantity":
             problem, _, advice = error.message.partition("; ")
             return problem, advice
         case "anyOf":
             hint = "did you mean none? " if nearest(str(error.instance), ["none"]) else ""
-            return f"neither none nor a mapping of keys (found {was})", f"{hint}write none, or a mapping as in {written(example)}"
+            return f"neither none nor a mapping of keys (found {was})", f"{hint}write none, or as in {example}"
         case "type":
-            return f"{_TYPE_WORDS[value]} is due (found {was})", _advice_on_type(value, error.instance, as_in)
+            kind = "a name" if _is_name(error.schema) else _TYPE_WORDS[limit]
+            return f"{kind} is due (found {was})", _advice_on_type(limit, error, example)
         case "enum":
-            near = nearest(str(error.instance), map(str, value))
+            near = nearest(str(error.instance), map(str, limit))
             hint = f"did you mean {near[0]}? " if near else ""
-            return f"no such choice (found {was})", f"{hint}choices: {', '.join(map(str, value))}"
+            return f"no such choice (found {was})", f"{hint}choices: {', '.join(map(str, limit))}"
         case "pattern":
-            return f"{was} does not fit", _NAME if error.schema.get("title") == "Name" else as_in
+            return f"{was} does not fit", _NAME if _is_name(error.schema) else f"write it as in {example}"
         case "minimum" | "exclusiveMinimum" | "maximum" | "exclusiveMaximum":
             size = "small" if "min" in error.validator.lower() else "large"
-            return f"too {size} (found {was})", f"{_LIMITS[error.validator]} {value} is due"
+            return f"too {size} (found {was})", f"{_LIMITS[error.validator]} {limit} is due"
         case "minLength" | "minItems":
-            return f"nothing in it (found {was})", f"{as_in}, or leave the key out"
+            return f"nothing in it (found {was})", f"write it as in: {example}"
         case "uniqueItems":
             return "a list that names something twice", "keep one of them"
         case _:
-            return f"not as it should be (found {was})", as_in
+            return f"not as it should be (found {was})", f"write it as in {example}"
 
 
-_LIMITS: Final = {
-    "minimum": "at least", "exclusiveMinimum": "more than", "maximum": "at most", "exclusiveMaximum": "less than",
-}  # fmt: skip
-
-
-def _advice_on_type(kind: str, instance: Any, as_in: str) -> str:
-    if kind == "string" and not isinstance(instance, dict | list):
+def _advice_on_type(kind: str, error: Any, example: str) -> str:
+    instance = error.instance
+    if kind == "string" and not _is_name(error.schema) and not isinstance(instance, dict | list):
         return f'put it in quotes: "{found(instance)}"'
-    if kind == "array" and not isinstance(instance, dict):
-        return f"write [{written(instance)}]"
-    return as_in
+    if kind == "boolean":
+        return "write true or false, without quotes" if isinstance(instance, str) else "write true or false"
+    if kind in {"number", "integer"} and isinstance(instance, str) and re.fullmatch(r"[0-9.]{1,20}", instance):
+        return f"write it without quotes, as in {example}"
+    if kind == "array" and isinstance(instance, str) and re.fullmatch(r"[\w.-]{1,40}", instance, re.ASCII):
+        return f"write [{instance}]"
+    return f"write it as in {example}"
+
+
+def _is_name(schema: Schema) -> bool:
+    return bool(schema.get("title") == "Name")

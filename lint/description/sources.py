@@ -11,7 +11,6 @@ from pathlib import Path as FilePath
 from pathlib import PurePosixPath
 from typing import Any, Final
 
-from tidegate.lint.description.nearest import nearest
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, Step, dotted
 from tidegate.lint.description.plain_data import Plain
 from tidegate.lint.description.yaml_nodes import MOST_BYTES, PARSER, Parser
@@ -152,6 +151,9 @@ class _Gatherer:
 
 def _near_file(path: FilePath) -> str:
     """Advice about a file that is not there."""
+    # Loaded here alone: a description without faults does not compare names.
+    from tidegate.lint.description.nearest import nearest
+
     try:
         beside = sorted(each.name for each in path.parent.iterdir() if each.suffix in {".yaml", ".yml", ".json"})
     except (OSError, ValueError):

@@ -34,8 +34,8 @@ _SAYINGS: Final = (
             "remove it"),
     _Saying(r"undefined alias", "an alias (*) of an anchor (&) that is not there", "write the value out"),
     _Saying(r"duplicate anchor", "an anchor (&) is set twice (first in line {line})", "give it another name"),
-    _Saying(r"scanning an (alias|anchor)|scanning a tag|parsing a tag|undefined tag handle", "a text cannot begin with {sign}", _QUOTE_IT,
-            at_context=True),
+    _Saying(r"scanning an (alias|anchor)|(scanning|parsing) a tag|undefined tag", "a text cannot begin with {sign}",
+            _QUOTE_IT, at_context=True),
     _Saying(r"scanning a block scalar", "nothing may follow > or | in its line", _QUOTE_IT, at_context=True),
     _Saying(r"quoted scalar found unexpected", "a quoted text without its end", "close the quote", at_context=True),
     _Saying(r"escape", "an unknown escape after a backslash", "write \\\\ for a backslash, or use single quotes"),
@@ -64,7 +64,7 @@ def syntax_fault(name: str, error: yaml.YAMLError, text: str) -> Fault:
     mark = error.problem_mark or error.context_mark if isinstance(error, yaml.MarkedYAMLError) else None
     if mark is None or not isinstance(error, yaml.MarkedYAMLError):
         return Fault(Place(name), "", "the file is not YAML", "save it as text in UTF-8")
-    lines = re.split("\r\n|[\n\r]", text) + [""]
+    lines = [*re.split("\r\n|[\n\r]", text), ""]
     merge = next((number for number, line in enumerate(lines) if re.match(r"(<{7}|>{7}) ", line)), None)
     if merge is not None:
         return Fault(Place(name, merge + 1, 1), "", "a mark of a merge that was not settled", "settle it")
@@ -115,5 +115,6 @@ def _no_key(name: str, number: int, lines: Sequence[str]) -> Fault:
     place = Place(name, number + 1, len(lines[number]) - len(lines[number].lstrip()) + 1)
     key, colon, value = text.partition(":")
     if colon and value:
-        return Fault(place, "", f"no space after the colon (found {quoted(text)})", f"write {escaped(key)}: ...")
+        advice = f"write {escaped(key[:40])}: {escaped(value[:40])}"
+        return Fault(place, "", f"no space after the colon (found {quoted(text)})", advice)
     return Fault(place, "", f"a line without a key and a colon (found {quoted(text)})", "write key: value")

@@ -50,6 +50,11 @@ class _Untyped:
         pass
 
 
+_next_event: Final[Any] = yaml.BaseLoader.peek_event
+_scan_plain: Final[Any] = yaml.BaseLoader.scan_plain
+_peek: Final[Any] = yaml.BaseLoader.peek
+
+
 class PureParser(_Untyped, yaml.BaseLoader):
     """The pure Python parser; refuses deep nesting before it runs out of stack."""
 
@@ -59,18 +64,32 @@ class PureParser(_Untyped, yaml.BaseLoader):
 
     def compose_node(self, parent: yaml.Node | None, index: Any) -> yaml.Node | None:
         """Compose a node and what is below it."""
-        if self._depth > MOST_DEPTH and not self.check_event(yaml.ScalarEvent, yaml.AliasEvent):
-            raise TooDeepError(self.peek_event().start_mark)
+        if self._depth > MOST_DEPTH:
+            event: Any = _next_event(self)
+            if isinstance(event, yaml.CollectionStartEvent):
+                raise TooDeepError(event.start_mark)
         self._depth += 1
         node = super().compose_node(parent, index)
         self._depth -= 1
         return node
 
+    def scan_plain(self) -> Any:
+        """Scan a text without quotes; a ? in it is part of it in flow style too, as it is to the C parser."""
+        if not self.flow_level:
+            return _scan_plain(self)
+        peek = _peek
+        shadow: Any = self  # by a method of its own, as long as this text lasts
+        shadow.peek = lambda index=0: "x" if (sign := peek(self, index)) == "?" else sign
+        try:
+            return _scan_plain(self)
+        finally:
+            del shadow.peek
+
 
 class TooDeepError(Exception):
     """A mapping or list lies deeper than any description needs."""
 
-    def __init__(self, mark: yaml.Mark) -> None:
+    def __init__(self, mark: Any) -> None:
         self.mark = mark
         super().__init__()
 
@@ -80,11 +99,10 @@ class TooDeepError(Exception):
         return Fault(place, "", f"nested more than {MOST_DEPTH} levels deep", "a description needs far fewer")
 
 
-try:
-    from yaml.cyaml import CParser
-except ImportError:  # PyYAML built without its C part
-    PARSER: type[Parser] = PureParser
-else:
+PARSER: type[Parser] = PureParser
+"""The fastest parser there is."""
+if yaml.__with_libyaml__:
+    from yaml._yaml import CParser
 
     class FastParser(_Untyped, CParser):
         """The C parser."""

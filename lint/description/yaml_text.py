@@ -7,21 +7,25 @@ from collections.abc import Sequence
 import yaml
 
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, Step
-from tidegate.lint.description.plain_data import Plain, PlainFile
+from tidegate.lint.description.plain_data import NULLS, Plain, PlainFile
 from tidegate.lint.description.yaml_nodes import PARSER, Parser, node_tree
 
 
 class YamlFile:
-    """A YAML file: its plain data, the place of every key and value, the keys that have no value yet, its faults."""
+    """A YAML file: its plain data, the place of every key and value, the keys that have no value yet, its faults.
+
+    ``spoiled`` are the paths of values that are not what the author meant; what else is wrong there only follows.
+    """
 
     def __init__(
-        self, name: str, root: yaml.Node | None, data: dict[str, Plain], empty: Sequence[Path] = (),
-        faults: Sequence[Fault] = (),
+        self, name: str, root: yaml.Node | None, data: dict[str, Plain], *, empty: Sequence[Path] = (),
+        faults: Sequence[Fault] = (), spoiled: Sequence[str] = (),
     ) -> None:  # fmt: skip
         self.name = name
         self.data = data
         self.empty = tuple(empty)
         self.faults = tuple(faults)
+        self.spoiled = tuple(spoiled)
         self._root = root
         self._pairs: dict[int, dict[str, tuple[yaml.Node, yaml.Node]]] = {}
 
@@ -63,11 +67,11 @@ def read_yaml(name: str, content: bytes, parser: type[Parser] = PARSER) -> YamlF
     Raises: DescriptionError: where the content cannot be read at all.
     """
     root = node_tree(name, content, parser)
-    if root is None or (isinstance(root, yaml.ScalarNode) and not root.value and not root.style):
+    if root is None or (isinstance(root, yaml.ScalarNode) and root.value in NULLS and not root.style):
         return YamlFile(name, None, {})
     if not isinstance(root, yaml.MappingNode):
         kind = "a list" if isinstance(root, yaml.SequenceNode) else "a text"
         place = Place(name, root.start_mark.line + 1, root.start_mark.column + 1)
         raise DescriptionError([Fault(place, "", f"the file holds {kind}", "begin with a section, such as rails:")])
     plain = PlainFile(name, root)
-    return YamlFile(name, root, plain.data, plain.empty, plain.faults)
+    return YamlFile(name, root, plain.data, empty=plain.empty, faults=plain.faults, spoiled=plain.spoiled)

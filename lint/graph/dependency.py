@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping
-from typing import Final, TypeAlias
+from collections.abc import Callable, Iterable, Iterator, Mapping
+from typing import Any, Final, TypeAlias, TypeVar
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
@@ -20,13 +20,15 @@ SECTIONS: Final = (
 """Sections whose entries are nodes, in the order in which the supply meets them."""
 
 _NONE: Final[tuple[Edge, ...]] = ()
+_A = TypeVar("_A")
 
 
 class Graph:
-    """Elements by id, and their edges both ways. Nothing changes it once it is built."""
+    """Elements by id, and their edges both ways. Nothing changes them once the graph is built."""
 
     def __init__(self, elements: Mapping[str, Element], edges: Iterable[Edge]) -> None:
         self.elements = elements
+        self._worked_out: dict[Callable[[Graph], Any], Any] = {}
         self._out: dict[str, list[Edge]] = {}
         self._into: dict[str, list[Edge]] = {}
         for edge in edges:
@@ -55,22 +57,50 @@ class Graph:
         return [edge.tail for edge in self.into(element) if edge.kind is kind]
 
     def needs(self, element: str) -> Iterator[tuple[str, str, Edge]]:
-        """What an element leans on directly: id, the words that lead there, the edge."""
+        """What an element leans on directly: id, the words that lead there, the edge.
+
+        A reset net that guards a domain holds the loads and the control registers in it; the domain stays supplied,
+        and what has no reset of its own, such as a detector, does not wait for the net.
+        """
         for edge in self.out(element):
             if edge.kind.tail_leans:
                 yield edge.head, edge.kind.forwards, edge
         for edge in self.into(element):
-            if edge.kind.head_leans:
+            if edge.kind.head_leans and not self._is_guarded_domain(edge):
                 yield edge.tail, edge.kind.backwards, edge
+        if _has_reset(self.elements[element]):
+            for domain in self.heads(element, EdgeKind.SUPPLIED_BY):
+                for edge in self.into(domain):
+                    if edge.kind is EdgeKind.GUARDS:
+                        yield edge.tail, edge.kind.backwards, edge
 
     def needed_by(self, element: str) -> Iterator[tuple[str, str, Edge]]:
-        """What leans on an element directly: id, the words that lead there, the edge."""
+        """What leans on an element directly: id, the words that lead there, the edge; ``needs`` the other way round."""
         for edge in self.into(element):
             if edge.kind.tail_leans:
                 yield edge.tail, edge.kind.backwards, edge
         for edge in self.out(element):
-            if edge.kind.head_leans:
+            if self._is_guarded_domain(edge):
+                for held in self.tails(edge.head, EdgeKind.SUPPLIED_BY):
+                    if _has_reset(self.elements[held]):
+                        yield held, edge.kind.forwards, edge
+            elif edge.kind.head_leans:
                 yield edge.head, edge.kind.forwards, edge
+
+    def once(self, ask: Callable[[Graph], _A]) -> _A:
+        """What a function finds out about the whole graph, worked out when it is first asked."""
+        if ask not in self._worked_out:
+            self._worked_out[ask] = ask(self)
+        answer: _A = self._worked_out[ask]
+        return answer
+
+    def _is_guarded_domain(self, edge: Edge) -> bool:
+        return edge.kind is EdgeKind.GUARDS and isinstance(self.elements[edge.head], Domain)
+
+
+def _has_reset(element: Element) -> bool:
+    """Whether an element in a guarded domain is held in reset with it."""
+    return isinstance(element, Load) or (isinstance(element, Bypass) and element.controlled_by == "register")
 
 
 def build(description: Description) -> Graph:
@@ -84,6 +114,7 @@ def build(description: Description) -> Graph:
 def _edges(description: Description) -> Iterator[Edge]:
     for rail in description.rails.values():
         yield from _one(rail, "made_by", rail.made_by, EdgeKind.MADE_BY)
+        yield from _one(rail, "after", rail.after, EdgeKind.COMES_AFTER)
     for domain in description.domains.values():
         yield from _one(domain, "rail", domain.rail, EdgeKind.SUPPLIED_BY)
         yield from _one(domain, "switched_by", domain.switched_by, EdgeKind.GATED_BY)

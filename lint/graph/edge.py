@@ -15,6 +15,7 @@ class EdgeKind(Enum):
     LEANS_ON = ("leans on", "is leant on by", "forward")
     GATED_BY = ("gated by", "gates", "forward")
     MADE_BY = ("made by", "makes", "forward")
+    COMES_AFTER = ("comes up after", "comes up before", "forward")
     DRIVES = ("drives", "driven by", "backward")
     GUARDS = ("guards", "guarded by", "backward")
     WATCHES = ("watches", "watched by", "none")

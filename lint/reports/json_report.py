@@ -17,12 +17,12 @@ REPORT_SCHEMA: Final = "urn:tidegate:report:1"
 """The version of the report's form."""
 
 
-def json_text(files: Sequence[dict[str, Any]], *, fail_at: str) -> str:
+def json_text(files: Sequence[dict[str, Any]], *, settings: str, fail_at: str) -> str:
     """The whole report as text, one file entry for each description."""
     report = {
         "schema": REPORT_SCHEMA,
         "tool": {"name": "tidegate", "version": VERSION},
-        "settings": {"fail_at": fail_at},
+        "settings": {"file": settings, "fail_at": fail_at},
         "caution": CAUTION,
         "files": list(files),
     }
@@ -71,7 +71,7 @@ def _judgement(review: Review, judgement: Judgement) -> dict[str, Any]:
         "have": _number(measure, "have"),
         "margin": _number(measure, "margin"),
         "fact": judgement.at,
-        "place": _place(review.loaded.place(judgement.at)),
+        "place": _place(review.place(judgement)),
         "path": [{"element": hop.element, "by": hop.by} for hop in judgement.path],
         "missing": list(judgement.missing),
         "waiver": judgement.waiver or None,

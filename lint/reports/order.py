@@ -6,6 +6,7 @@ from collections.abc import Iterable, Iterator
 from itertools import groupby
 from typing import Final
 
+from tidegate.lint.description.place import Place
 from tidegate.lint.engine import WEIGHT, Review
 from tidegate.lint.judgement import Judgement, Kind
 
@@ -27,6 +28,26 @@ def by_element(judgements: Iterable[Judgement]) -> Iterator[tuple[str, list[Judg
 
 def _weight(judgement: Judgement) -> tuple[int, int, str]:
     return _KIND_ORDER[judgement.kind], -WEIGHT[judgement.level], judgement.rule
+
+
+def described(review: Review, subject: str) -> tuple[str, Place]:
+    """What a subject is called, and where it stands: an element, or a waiver."""
+    element = review.graph.elements.get(subject)
+    if element is not None:
+        return NOUNS[element.section], review.loaded.sources.place((element.section, subject), key=True)
+    first = next(judgement for judgement in review.judgements if judgement.subject == subject)
+    return "waiver", review.place(first)
+
+
+def kind_word(kind: Kind) -> str:
+    """The word for a kind in running text."""
+    return {Kind.NOT_APPLICABLE: "not applicable", Kind.REVIEW: "to look at"}.get(kind, kind.value)
+
+
+def closest_first(judgements: Iterable[Judgement]) -> list[Judgement]:
+    """The judgements with a number, that with the least slack for its need first."""
+    measured = [judgement for judgement in judgements if judgement.measure is not None]
+    return sorted(measured, key=lambda judgement: judgement.measure.slack if judgement.measure else 0.0)
 
 
 def missing_facts(review: Review) -> dict[str, list[str]]:

@@ -13,7 +13,7 @@ from tidegate.lint.description.place import Fault
 from tidegate.lint.engine import Review
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind, Level
-from tidegate.lint.reports.order import CAUTION, NOUNS, by_element, missing_facts, verdict
+from tidegate.lint.reports.order import CAUTION, by_element, described, missing_facts, verdict
 from tidegate.lint.reports.plain_text import plain
 
 MOST_WIDTH: Final = 110
@@ -121,13 +121,12 @@ def _count(number: int, one: str, many: str) -> str:
 
 
 def _element_line(review: Review, subject: str, width: int) -> Line:
-    element = review.graph.elements[subject]
-    place = review.loaded.sources.place((element.section, subject), key=True)
-    return _two_ends(f"{subject}, {NOUNS[element.section]}", f"{place.file}:{place.line}", width, "bold")
+    noun, place = described(review, subject)
+    return _two_ends(f"{subject}, {noun}", f"{place.file}:{place.line}", width, "bold")
 
 
 def _judgement_lines(review: Review, judgement: Judgement, width: int) -> Iterator[Line]:
-    place = review.loaded.place(judgement.at)
+    place = review.place(judgement)
     word = "waived" if judgement.waiver else _kind_word(judgement)
     style = "dim" if judgement.waiver else _STYLES[judgement.kind]
     room = max(width - 2 - _LABEL, 24)
@@ -171,9 +170,7 @@ def _missing(review: Review, width: int) -> Iterator[Line]:
     unexplained = [j for j in review.judgements if j.kind is Kind.OPEN and not j.missing]
     for judgement in unexplained:
         yield from _wrapped("open", f"{judgement.subject}: {judgement.message}", width, indent=2)
-        yield from _wrapped(
-            " ", f"for {judgement.rule}, {review.loaded.place(judgement.at)}", width, indent=2, style="dim"
-        )
+        yield from _wrapped(" ", f"for {judgement.rule}, {review.place(judgement)}", width, indent=2, style="dim")
 
 
 def _table(review: Review) -> Iterator[Line]:

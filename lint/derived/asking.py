@@ -1,0 +1,45 @@
+"""Asking a description for derived numbers outside of a rule: an answer, or what keeps it from being given."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import TypeVar
+
+from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.description.model.description import Description
+from tidegate.lint.graph.dependency import Element, Graph
+from tidegate.lint.judgement import Level
+from tidegate.lint.physics.domain import DomainError
+
+_A = TypeVar("_A")
+
+
+@dataclass(frozen=True, slots=True)
+class Unknown:
+    """Why there is no answer: facts that are missing, or a sentence."""
+
+    missing: tuple[str, ...]
+    problem: str
+
+    def text(self) -> str:
+        """The reason in one sentence."""
+        return f"not given: {', '.join(self.missing)}" if self.missing else self.problem
+
+
+class NoAnswerError(Exception):
+    """There is nothing to answer; the message says why."""
+
+
+def ask(description: Description, graph: Graph, element: Element, question: Callable[[Case], _A]) -> _A | Unknown:
+    """What a question about an element is answered with, or why it cannot be."""
+    case = Case(subject=element, rule="", level=Level.NOTE, description=description, graph=graph)
+    try:
+        answer = question(case)
+    except MissingFactsError as error:
+        return Unknown(error.missing, "")
+    except DomainError as error:
+        return Unknown((), f"the numbers given lie outside the range of the formula: {error}")
+    except NoAnswerError as error:
+        return Unknown((), str(error))
+    return Unknown(tuple(dict.fromkeys(case.missing)), "") if case.missing else answer

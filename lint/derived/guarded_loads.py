@@ -1,0 +1,67 @@
+"""The loads that a detector keeps in reset, and the supply at which each of them still works."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from tidegate.lint.case import Case
+from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.description.model.reset_path import Load
+from tidegate.lint.description.model.supply import Domain
+from tidegate.lint.graph.dependency import Graph
+from tidegate.lint.graph.edge import EdgeKind, Hop, Path
+from tidegate.lint.graph.paths import Reach, drives
+
+
+@dataclass(frozen=True, slots=True)
+class Bound:
+    """A supply level that an element sets, in V, with the fact that says so and the way to the element."""
+
+    level_v: float
+    element: str
+    fact: str
+    path: Path
+
+
+def guarded_loads(graph: Graph, detector: str) -> Iterator[tuple[Load, Path]]:
+    """Every load that a reset net of a detector guards, by itself or with its domain, and the way to it."""
+    reach = Reach(detector, drives(graph))
+    seen: set[str] = set()
+    for net in reach:
+        for guarded in graph.heads(net, EdgeKind.GUARDS):
+            domain = isinstance(graph.elements[guarded], Domain)
+            for name in graph.tails(guarded, EdgeKind.SUPPLIED_BY) if domain else [guarded]:
+                load = graph.elements[name]
+                if isinstance(load, Load) and name not in seen:
+                    seen.add(name)
+                    yield load, (*reach.path(net), Hop(name, EdgeKind.GUARDS.forwards))
+
+
+def least_supplies(case: Case, comparator: Comparator) -> list[Bound]:
+    """The least supply of each guarded load that needs the rail a detector watches, the most demanding load first.
+
+    Raises: MissingFactsError: where one of them does not say from which supply on it works.
+    """
+    return sorted(_supplies(case, comparator, least=True), key=lambda bound: -bound.level_v)
+
+
+def greatest_supplies(case: Case, comparator: Comparator) -> list[Bound]:
+    """The greatest supply of each guarded load that needs the rail a detector watches, the most demanding load first.
+
+    Raises: MissingFactsError: where one of them does not say up to which supply it works.
+    """
+    return sorted(_supplies(case, comparator, least=False), key=lambda bound: bound.level_v)
+
+
+def _supplies(case: Case, comparator: Comparator, *, least: bool) -> list[Bound]:
+    found = []
+    for load, path in guarded_loads(case.graph, comparator.id):
+        facts = case.of(load)
+        for index, need in enumerate(load.needs):
+            if need.rail == comparator.watches:
+                fact = f"needs.{index}.works"
+                level_v = facts.least(fact) if least else facts.most(fact)
+                found.append(Bound(level_v, load.id, facts.path(fact), path))
+    case.settle()
+    return found

@@ -1,0 +1,43 @@
+"""Where a logic signal comes from, and whether it arrives inverted."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Final
+
+from tidegate.lint.case import Case
+from tidegate.lint.description.model.reset_path import OutputStage
+
+_SAID_BY_KIND: Final = {"inverter": True, "buffer": False}
+
+
+@dataclass(frozen=True, slots=True)
+class Origin:
+    """The element that makes a signal, and whether the signal is its inverse."""
+
+    element: str
+    inverted: bool
+
+
+def origin(case: Case, element: str) -> Origin:
+    """Follow a signal back through stages that pass it on: one driver, and no memory.
+
+    Raises: MissingFactsError: where it is not given what a stage on the way does.
+    """
+    inverted = False
+    seen: set[str] = set()
+    while element not in seen:
+        seen.add(element)
+        stage = case.graph.elements[element]
+        if not isinstance(stage, OutputStage) or stage.driven_by is None or len(stage.driven_by) != 1:
+            break
+        facts = case.of(stage)
+        kind = facts.must("kind")
+        if kind == "latch":
+            break
+        inverted ^= _SAID_BY_KIND.get(kind, False) if stage.inverting is None else stage.inverting
+        if stage.inverting is None and kind not in _SAID_BY_KIND:
+            facts.lacks("inverting")
+        element = stage.driven_by[0]
+    case.settle()
+    return Origin(element, inverted)

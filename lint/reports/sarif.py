@@ -1,0 +1,194 @@
+"""The report for code hosts: SARIF 2.1.0 (OASIS Standard, 27 March 2020, with errata 01)."""
+
+from __future__ import annotations
+
+import hashlib
+import json
+from collections.abc import Iterable, Sequence
+from pathlib import PurePath
+from typing import Any, Final
+from urllib.parse import quote
+
+from tidegate.lint.description.place import Fault, Place
+from tidegate.lint.engine import Review, RuleFault
+from tidegate.lint.graph.edge import path_text
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.lint.quantity import Dimension
+from tidegate.lint.reports.plain_text import plain
+from tidegate.lint.rule import Rule
+from tidegate.lint.version import VERSION
+
+_SCHEMA: Final = "https://docs.oasis-open.org/sarif/sarif/v2.1.0/errata01/os/schemas/sarif-schema-2.1.0.json"
+_FINGERPRINT: Final = "tidegate/1"
+
+
+def sarif_text(results: Iterable[Sequence[dict[str, Any]]], rules: Sequence[Rule], *, ran: dict[str, Any]) -> str:
+    """One run: the results of every file in turn, the rules behind them, and how the tool was called."""
+    joined = [result for part in results for result in part]
+    index = {rule.id: number for number, rule in enumerate(rules)}
+    for result in joined:
+        if result["ruleId"] in index:
+            result["ruleIndex"] = index[result["ruleId"]]
+    run = {
+        "tool": {"driver": _driver(rules)},
+        "columnKind": "unicodeCodePoints",
+        "invocations": [ran],
+        "originalUriBaseIds": {"ROOT": {"description": {"text": "The folder in which the tool was called."}}},
+        "results": joined,
+    }
+    log = {"$schema": _SCHEMA, "version": "2.1.0", "runs": [run]}
+    return json.dumps(log, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+
+
+def invocation(
+    *, successful: bool, status: int, notifications: Sequence[dict[str, Any]], settings: str
+) -> dict[str, Any]:
+    """How the run ended; files that could not be used and rules that failed themselves are notifications."""
+    return {
+        "executionSuccessful": successful,
+        "exitCode": status,
+        "toolExecutionNotifications": list(notifications),
+        "properties": {"settings": settings},
+    }
+
+
+def _driver(rules: Sequence[Rule]) -> dict[str, Any]:
+    return {
+        "name": "tidegate",
+        "version": VERSION,
+        "semanticVersion": VERSION,
+        "rules": [_rule(rule) for rule in rules],
+    }
+
+
+def _rule(rule: Rule) -> dict[str, Any]:
+    name = "".join(word.capitalize() for word in rule.id.replace("/", "_").split("_"))
+    help_text = f"{rule.proves}\n\nMend: {rule.mend}.\n\nSources: {'; '.join(rule.sources)}."
+    return {
+        "id": rule.id,
+        "name": name,
+        "shortDescription": {"text": _sentence(rule.title)},
+        "fullDescription": {"text": rule.proves},
+        "help": {"text": help_text},
+        "defaultConfiguration": {"level": rule.level.value},
+        "properties": {"family": rule.family, "appliesTo": rule.applies_to, "facts": list(rule.facts)},
+    }
+
+
+def _sentence(text: str) -> str:
+    return f"{text[0].upper()}{text[1:]}."
+
+
+def review_results(review: Review) -> list[dict[str, Any]]:
+    """One result for every judgement on one description."""
+    return [_result(review, judgement) for judgement in review.judgements]
+
+
+def _result(review: Review, judgement: Judgement) -> dict[str, Any]:
+    place = review.place(judgement)
+    result: dict[str, Any] = {
+        "ruleId": judgement.rule,
+        "kind": judgement.kind.value,
+        "level": judgement.level.value if judgement.kind is Kind.FAIL else "none",
+        "message": {"text": _message(judgement)},
+        "locations": [
+            {
+                "physicalLocation": _physical(place),
+                "logicalLocations": [
+                    {"name": judgement.subject, "fullyQualifiedName": judgement.at, "kind": "element"}
+                ],
+            }
+        ],
+        "partialFingerprints": {_FINGERPRINT: _fingerprint(review, judgement)},
+        "properties": _properties(judgement),
+    }
+    if judgement.path:
+        result["relatedLocations"] = _related(review, judgement)
+    if judgement.waiver:
+        result["suppressions"] = [{"kind": "external", "status": "accepted", "justification": plain(judgement.waiver)}]
+    return result
+
+
+def _message(judgement: Judgement) -> str:
+    parts = [f"{judgement.subject}: {judgement.message}"]
+    if judgement.why:
+        parts.append(f"Why: {judgement.why}")
+    if judgement.path:
+        parts.append(f"Path: {path_text(judgement.path)}")
+    if judgement.mend:
+        parts.append(f"Mend: {judgement.mend}")
+    return ". ".join(plain(part) for part in parts) + "."
+
+
+def _fingerprint(review: Review, judgement: Judgement) -> str:
+    """The same for the same finding, whatever stands elsewhere in the file or how the numbers move."""
+    file = _uri(review.loaded.sources.files[0].name)
+    return hashlib.sha256("\0".join((file, judgement.rule, judgement.subject)).encode()).hexdigest()
+
+
+def _properties(judgement: Judgement) -> dict[str, Any]:
+    measure = judgement.measure
+    properties: dict[str, Any] = {"subject": judgement.subject, "mend": plain(judgement.mend)}
+    if judgement.missing:
+        properties["missing"] = list(judgement.missing)
+    if measure is not None:
+        unit = "1" if measure.dimension is Dimension.COUNT else measure.dimension.unit
+        properties |= {"relation": measure.relation.value, "unit": unit}
+        properties |= {name: _number(getattr(measure, name)) for name in ("need", "have", "margin")}
+        properties["marginText"] = measure.margin_text()
+    return properties
+
+
+def _number(value: float) -> float | str:
+    return value if abs(value) != float("inf") else str(value)
+
+
+def _related(review: Review, judgement: Judgement) -> list[dict[str, Any]]:
+    """The elements on the path, each where it is described."""
+    related = []
+    for number, hop in enumerate(judgement.path):
+        element = review.graph.elements.get(hop.element)
+        if element is None:
+            continue
+        place = review.loaded.sources.place((element.section, hop.element), key=True)
+        text = plain(f"{hop.by} {hop.element}".strip())
+        related.append({"id": number, "physicalLocation": _physical(place), "message": {"text": text}})
+    return related
+
+
+def _physical(place: Place) -> dict[str, Any]:
+    location: dict[str, Any] = {"artifactLocation": {"uri": _uri(place.file)}}
+    if not PurePath(place.file).is_absolute():
+        location["artifactLocation"]["uriBaseId"] = "ROOT"
+    if place.line:
+        location["region"] = {"startLine": place.line, "startColumn": place.column}
+    return location
+
+
+def _uri(file: str) -> str:
+    path = PurePath(file)
+    return path.as_uri() if path.is_absolute() else quote(path.as_posix())
+
+
+def fault_notifications(faults: Sequence[Fault]) -> list[dict[str, Any]]:
+    """Why a file cannot be used."""
+    return [
+        {
+            "level": "error",
+            "message": {"text": plain(f"{fault}")},
+            "locations": [{"physicalLocation": _physical(fault.place)}],
+        }
+        for fault in faults
+    ]
+
+
+def rule_fault_notifications(faults: Sequence[RuleFault]) -> list[dict[str, Any]]:
+    """Rules that failed themselves."""
+    return [
+        {
+            "level": "error",
+            "message": {"text": plain(f"rule {fault.rule} failed on {fault.subject}: {fault.error}")},
+            "associatedRule": {"id": fault.rule},
+        }
+        for fault in faults
+    ]
