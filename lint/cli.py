@@ -8,15 +8,19 @@ import os
 import sys
 from collections.abc import Sequence
 from difflib import get_close_matches
-from typing import Final, NoReturn
+from typing import TYPE_CHECKING, Final, NoReturn
 
 from tidegate.lint.version import VERSION
+
+if TYPE_CHECKING:
+    from tidegate.lint.rule import Rule
 
 _COMMANDS: Final = {
     "review": "judge descriptions: the main job",
     "rules": "the catalogue of rules, or one rule in full",
     "trace": "what an element leans on, and what leans on it",
     "start": "write a starter description",
+    "compare": "what changed between two revisions of a description",
     "schema": "the JSON Schema of a description, for editors",
     "completion": "the completion script of a shell",
 }
@@ -96,13 +100,15 @@ def main(arguments: Sequence[str] | None = None) -> int:
 def _run(options: argparse.Namespace) -> int:
     from tidegate.lint.commands.streams import Streams
 
-    streams = Streams(sys.stdout, sys.stderr, datetime.date.today())
-    module = _module(options.command)
-    if options.command in ("review", "rules"):
-        from tidegate.rules.catalogue import families
+    streams = Streams(sys.stdout, sys.stderr, datetime.date.today(), own_families)
+    return int(_module(options.command).run(options, streams))
 
-        return int(module.run(options, streams, families))
-    return int(module.run(options, streams))
+
+def own_families() -> Sequence[Sequence[Rule]]:
+    """The rules that come with the tool: the one place that joins them to the engine."""
+    from tidegate.rules.catalogue import FAMILIES
+
+    return FAMILIES
 
 
 if __name__ == "__main__":

@@ -5,11 +5,10 @@ from __future__ import annotations
 from typing import Final
 
 from tidegate.lint.rule import Rule
-from tidegate.rules import hysteresis
+from tidegate.rules import electromigration, hysteresis, passive_default
 
-FAMILIES: Final[tuple[tuple[Rule, ...], ...]] = (hysteresis.RULES,)
-
-
-def families() -> tuple[tuple[Rule, ...], ...]:
-    """The families; a function, so that another process can be told where to find them."""
-    return FAMILIES
+FAMILIES: Final[tuple[tuple[Rule, ...], ...]] = (
+    hysteresis.RULES,
+    passive_default.RULES,
+    electromigration.RULES,
+)

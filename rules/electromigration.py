@@ -2,22 +2,24 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
-from contextlib import suppress
+from functools import partial
 from typing import Final
 
-from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.case import Case
+from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.crowbar_peak import Crowbar, crowbar_of
 from tidegate.lint.derived.output_metal import Conductor, line_of, vias_of
 from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.safe_rounding import show_down
-from tidegate.lint.derived.trip_levels import hysteresis_window
+from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window
 from tidegate.lint.derived.wire_limit import wear_of
-from tidegate.lint.description.model.detector import Comparator, Hysteresis
+from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.graph.paths import Reach, driven_by, drives
 from tidegate.lint.judgement import Judgement, Level, Measure, Relation
-from tidegate.lint.physics import conductor_size, crowbar, electromigration, hysteresis, short_length
+from tidegate.lint.physics import conductor_size, coupling, crowbar, electromigration, short_length
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 
@@ -104,7 +106,7 @@ def slow_edge_meets_schmitt(stage: OutputStage, case: Case) -> Judgement:
         fails="rails: {avdd: {source_impedance: {max: 200 ohm}}}\noutput_stages: {por_out: {crowbar_peak: 0.28 mA}}",
         holds="rails: {avdd: {source_impedance: {max: 150 ohm}}}\noutput_stages: {por_out: {crowbar_peak: 0.28 mA}}",
     ),
-    formulas=(crowbar.peak_current_a, hysteresis.release_droop_v),
+    formulas=(crowbar.peak_current_a, coupling.shared_impedance_bump_v),
 )
 def crowbar_leaves_the_level(stage: OutputStage, case: Case) -> Judgement:
     """Compare the droop at the crowbar peak with the least hysteresis of the detectors behind it."""
@@ -115,7 +117,7 @@ def crowbar_leaves_the_level(stage: OutputStage, case: Case) -> Judgement:
     behind = Reach(stage.id, driven_by(case.graph))
     known = case.description.comparators
     watching = [known[name] for name in behind if name in known and known[name].watches == rail.id]
-    detectors = [comparator for comparator in watching if not _has_none(comparator)]
+    detectors = [comparator for comparator in watching if not has_no_hysteresis(comparator)]
     if not detectors:
         why = "has hysteresis (hysteresis/present says so)" if watching else "drives it"
         return case.not_applicable(f"no detector that watches {rail.id} {why}")
@@ -125,8 +127,8 @@ def crowbar_leaves_the_level(stage: OutputStage, case: Case) -> Judgement:
         lambda: crowbar_of(case, stage),
     )
     detector, kept_v = kept
-    droop_v = hysteresis.release_droop_v(load_step_a=current.peak_a, source_ohm=source_ohm)
-    most_a = f"at most {show_down(kept_v / source_ohm, _A)} of crowbar current" if source_ohm > 0.0 else ""
+    droop_v = coupling.shared_impedance_bump_v(step_a=current.peak_a, impedance_ohm=source_ohm)
+    most_a = kept_v / source_ohm if source_ohm > 0.0 else math.inf
     return case.at_most(
         need=kept_v,
         have=droop_v,
@@ -134,26 +136,17 @@ def crowbar_leaves_the_level(stage: OutputStage, case: Case) -> Judgement:
         says=f"its crowbar current moves {rail.id} by",
         why=f"{show(current.peak_a, _A)} ({current.text()}) through {show(source_ohm, _OHM)}; least hysteresis of "
         f"{detector}",
-        mend=f"{most_a}; now {show(current.peak_a, _A)}",
+        mend=f"at most {show_down(most_a, _A)} of crowbar current; now {show(current.peak_a, _A)}",
         at="input_edge",
         path=Reach(detector, drives(case.graph)).path(stage.id),
     )
 
 
-def _has_none(comparator: Comparator) -> bool:
-    """Whether the description says outright that there is no hysteresis."""
-    stated = comparator.hysteresis.amount if isinstance(comparator.hysteresis, Hysteresis) else None
-    return comparator.hysteresis == "none" or (stated is not None and stated.most == 0.0)
-
-
 def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, float]:
     """The detector with the least hysteresis, and how much it is, in V."""
-    found: list[tuple[str, float]] = []
-    for detector in detectors:
-        with suppress(MissingFactsError):  # noted: settle speaks of it below
-            found.append((detector.id, hysteresis_window(case, detector).least_v))
-    case.settle()
-    return min(found, key=lambda each: each[1])
+    windows = ask_all(case, (partial(hysteresis_window, case, detector) for detector in detectors))
+    least = {detector.id: window.least_v for detector, window in zip(detectors, windows, strict=True)}
+    return min(least.items(), key=lambda each: each[1])
 
 
 @rule(
@@ -162,10 +155,10 @@ def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, flo
     level=Level.ERROR,
     applies_to="output_stages",
     proves="An edge much longer than the thermal time constant of a wire is direct current to it: the greatest crowbar "
-    "current keeps the direct, r.m.s. and peak limits of the line at its narrowest, less the width bias of the layer, at "
-    "the hottest junction and for the service life. Where it keeps all but the direct limit, a line too short to fail "
-    "(Blech) holds; else the damage of all edges and of the longest stays at the threshold is added up, and a person "
-    "must look if that is less than the whole life.",
+    "current keeps the direct, r.m.s. and peak limits of the line at its narrowest, less the width bias of the layer "
+    "where there is one, at the hottest junction and for the service life. Where it exceeds the direct limit alone, a "
+    "line too short to fail (Blech) will do; else the damage of all edges and of the longest stays at the threshold "
+    "is added up, and a person must look where it is no whole life.",
     facts=(
         *_PEAK_FACTS, "output_stages.*.output.layer", "output_stages.*.output.width", "process.layers.*.limits",
         *_WEAR_FACTS, "output_stages.*.output.length, process.layers.*.thickness and "
@@ -223,7 +216,7 @@ def _carried(stage: OutputStage, case: Case, metal: Callable[[Case, OutputStage]
     if known is not None and known.peak_a == 0.0:
         return case.passes("there is no crowbar current", why=known.text(), at="input_edge")
     current, conductor = case.gather(lambda: crowbar_of(case, stage), lambda: metal(case, stage))
-    outright = _at_most(current.peak_a, min(conductor.direct.here, *conductor.heating_a.values()))
+    outright = _at_most(current, conductor.limit_a)
     if outright.holds or _heats(current, conductor):
         return case.at_most(
             need=outright.need,
@@ -235,36 +228,36 @@ def _carried(stage: OutputStage, case: Case, metal: Callable[[Case, OutputStage]
             at=conductor.fact,
         )
     short = conductor.short
-    if short is not None and _at_most(short.product_a_per_m(current.peak_a), short.limit_a_per_m).holds:
+    if short is not None and _at_most(current, short.largest_a).holds:
+        length_um, limit_a_per_cm = short.length_m * 1e6, short.limit_a_per_m / 100.0
         return case.at_most(
-            need=short.limit_a_per_m,
-            have=short.product_a_per_m(current.peak_a),
-            dimension=Dimension.CURRENT_PER_WIDTH,
-            says=f"its {conductor.name} is too short to fail (Blech): current density times length",
-            why=f"{show(current.peak_a, _A)} ({current.text()}), above the limits of a long line: "
-            f"{_limits_text(current, conductor)}",
+            need=short.largest_a,
+            have=current.peak_a,
+            dimension=_A,
+            says=f"too short to fail (Blech) from the crowbar current of its {conductor.name}",
+            why=f"{current.text()}; {length_um:g} um keep below {limit_a_per_cm:g} A/cm of density times length; "
+            f"for a long line {_limits_text(current, conductor)}",
             at="output.length",
         )
     return _worn(stage, case, current, conductor)
 
 
-def _at_most(current: float, limit: float) -> Measure:
-    return Measure(limit, current, _A, Relation.AT_MOST)
+def _at_most(current: Crowbar, limit_a: float) -> Measure:
+    return Measure(limit_a, current.peak_a, _A, Relation.AT_MOST)
 
 
 def _heats(current: Crowbar, conductor: Conductor) -> bool:
-    """Whether the current exceeds a limit of the conductor that no short time and no short length makes up for."""
-    return any(not _at_most(current.peak_a, limit_a).holds for limit_a in conductor.heating_a.values())
+    """Whether the current exceeds a limit that no short time and no short length makes up for."""
+    return any(not _at_most(current, limit_a).holds for limit_a in conductor.heating_a.values())
 
 
 def _limits_text(current: Crowbar, conductor: Conductor) -> str:
     """The limit for direct current, and each other limit that the current exceeds or that is the smallest."""
-    smallest_a = min(conductor.direct.here, *conductor.heating_a.values())
     parts = [f"{show(conductor.direct.here, _A)} direct, {conductor.direct.text()}"]
     for word, limit_a in conductor.heating_a.items():
-        if limit_a == smallest_a or not _at_most(current.peak_a, limit_a).holds:
+        if limit_a == conductor.limit_a or not _at_most(current, limit_a).holds:
             parts.append(f"{show(limit_a, _A)} {word}")
-    return "; ".join(parts)
+    return ", ".join(parts)
 
 
 def _worn(stage: OutputStage, case: Case, current: Crowbar, conductor: Conductor) -> Judgement:

@@ -3,14 +3,14 @@
 from __future__ import annotations
 
 import math
-from typing import Final, Literal
+from typing import Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.follows_alive import not_alive
-from tidegate.lint.derived.held_node import HeldNode, held_node, reads_it, sure_high, sure_low
-from tidegate.lint.derived.rail_of import rail_of
+from tidegate.lint.derived.held_node import drives_reset, held_node, larger_hold, reads_it, sure_high, sure_low
+from tidegate.lint.derived.rail_of import delivered_v, rail_of
 from tidegate.lint.derived.reset_path import arrivals, onward
-from tidegate.lint.derived.safe_rounding import show_down, show_up
+from tidegate.lint.derived.safe_rounding import show_up
 from tidegate.lint.derived.standing_current import circuit_takers, hold_takers, largest_first, stages_in
 from tidegate.lint.description.model.reset_path import Hold, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain
@@ -27,6 +27,11 @@ _OPPOSITE: Final = {"low": "high", "high": "low"}
 _TAKERS_SHOWN: Final = 4
 _COMMON_PRACTICE: Final = "common practice, no source: what nothing drives is held in its safe state"
 _LEVELS: Final = "JEDEC JESD8 family, input levels at a pin, as quoted by others (see the formula)"
+
+_STRETCH: Final = """output_stages:
+  stretch: {{driven_by: [gather], domain: {domain}, kind: buffer, threshold: {{min: 0.4 V, max: 1.25 V}}, hold: none}}
+  rst_out: {{driven_by: [stretch]}}
+"""  # a stage between the two that are held
 
 
 def _why_no_hold(stage: OutputStage) -> str:
@@ -59,23 +64,17 @@ def reset_net_is_held(reset: Reset, case: Case) -> Judgement:
     stages = [driver for driver in drivers if isinstance(driver, OutputStage)]
     bare = [driver.id for driver in drivers if not isinstance(driver, OutputStage)]
     loose = [stage.id for stage in stages if stage.hold == "none"]
-    through = f"{reset.active}, through a resistor" if reset.active else "through a resistor"
     if bare or loose:
+        level = f"{reset.active} " if reset.active else ""
+        found, mends = [], []
+        if bare:
+            found.append(f"driven directly by {' and '.join(bare)}: the output of a comparator has no hold")
+            mends.append(f"put a stage with an output held {level}between {' and '.join(bare)} and the net")
+        if loose:
+            found.append(f"nothing holds the output of {' and of '.join(loose)}, which drives it")
+            mends.append(f"hold the output of {' and of '.join(loose)} {level}through a resistor")
         path = (Hop((bare or loose)[0], ""), Hop(reset.id, EdgeKind.DRIVES.forwards))
-    if bare:
-        return case.fails(
-            f"driven directly by {' and '.join(bare)}: the output of a comparator has no hold",
-            mend=f"put a stage between {' and '.join(bare)} and the net, and hold its output {through}",
-            at="driven_by",
-            path=path,
-        )
-    if loose:
-        return case.fails(
-            f"nothing holds the output of {' and of '.join(loose)}, which drives it",
-            mend=f"hold the output of {' and of '.join(loose)} {through}",
-            at="driven_by",
-            path=path,
-        )
+        return case.fails("; ".join(found), mend="; ".join(mends), at="driven_by", path=path)
     if not drivers:
         case.own.lacks("driven_by")
     for stage in stages:
@@ -91,7 +90,8 @@ def reset_net_is_held(reset: Reset, case: Case) -> Judgement:
     level=Level.ERROR,
     applies_to="output_stages",
     proves="The level of a hold comes through to each reset net: every stage on a way there is held itself, or lives, "
-    "with nothing that gates it, in a domain that is always on, on the same rail or on one that is up before.",
+    "with nothing that gates it, in a domain that is always on, on the same rail or on one that is up before. Whether "
+    "the last stage of all is held, passive_default/held says.",
     facts=(
         "output_stages.*.hold", "output_stages.*.domain", "output_stages.*.gated_by", "domains.*.kind",
         "domains.*.rail", "rails.*.after and rails.*.made_by, where the rails differ",
@@ -99,36 +99,42 @@ def reset_net_is_held(reset: Reset, case: Case) -> Judgement:
     mend="hold the output of the stage that may be dead, or move it to a domain that is up in time",
     sources=(_COMMON_PRACTICE,),
     example=Example(
-        fails="output_stages: {rst_out: {hold: none, domain: analog}}",
-        holds="output_stages: {rst_out: {hold: {to: low, through: resistor}, domain: analog}}",
+        fails=_STRETCH.format(domain="analog"),
+        holds=_STRETCH.format(domain="aon"),
     ),
 )  # fmt: skip
 def stages_after_hold_are_alive(stage: OutputStage, case: Case) -> Judgement:
     """Pass if every stage between the hold and each reset net is alive or held."""
     behind = onward(case, stage)
-    last = any(isinstance(reader, Reset) for reader in reads_it(case, stage))
-    if stage.hold is None and behind.resets and not last:
+    if stage.hold is None and behind.resets and not drives_reset(case, stage):
         case.own.must("hold")
     if not isinstance(stage.hold, Hold):
         return case.not_applicable(_why_no_hold(stage))
     if not behind.resets:
         return case.not_applicable("no reset net lies behind it")
-    loose = [after for after in behind.stages if not isinstance(after.hold, Hold)]
     if not behind.stages:
         return case.passes("no stage comes after its hold", at="hold")
+    loose = [after for after in behind.stages if not isinstance(after.hold, Hold)]
     if not loose:
         return case.passes("every stage after its hold is held too", at="hold")
     rail = rail_of(case, stage)
     dead = not_alive(case, loose, held_rail=rail)
-    if not dead:
-        return case.passes(f"alive after its hold: {', '.join(after.id for after in loose)}", at="hold")
-    after, reason = dead[0]
-    return case.fails(
-        f"{after.id} comes after its hold, is not held, and {reason}",
-        mend=f"hold the output of {after.id} too, or let it live in a domain that is always on and up with {rail.id}",
-        at="hold",
-        path=behind.path(after.id),
-    )
+    between = [(after, why) for after, why in dead if not drives_reset(case, after)]
+    for after, _ in between:
+        if after.hold is None:
+            case.of(after).lacks("hold")
+    case.settle()
+    if between:
+        after, why = between[0]
+        return case.fails(
+            f"{after.id} comes after its hold, is not held, and {why}",
+            mend=f"hold the output of {after.id} too, or move it to a domain that is always on and up with {rail.id}",
+            at="hold",
+            path=behind.path(after.id),
+        )
+    if dead:
+        return case.not_applicable(f"the output of {dead[0][0].id} is not held (passive_default/held says so)")
+    return case.passes(f"alive after its hold: {', '.join(after.id for after in loose)}", at="hold")
 
 
 @rule(
@@ -214,13 +220,13 @@ def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
             dimension=_V,
             says="not driven, it rises to",
             why=f"{node.text()}; {sure.reader} surely reads low up to {show(sure.level_v, _V)}",
-            mend=_smaller_hold(node, sure.level_v),
+            mend=node.smaller_hold(sure.level_v),
             at="hold.resistance",
         )
     node, sure, supply_v = case.gather(
         lambda: held_node(case, stage),
         lambda: sure_high(case, stage, supply="least"),
-        lambda: _end_v(case, stage, "least"),
+        lambda: delivered_v(case, stage, "least"),
     )
     return case.at_least(
         need=sure.level_v,
@@ -229,22 +235,9 @@ def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
         says="not driven, it stays up at",
         why=f"{show(supply_v, _V)} less {node.text()}; {sure.reader} surely reads high from "
         f"{show(sure.level_v, _V)} on",
-        mend=_smaller_hold(node, supply_v - sure.level_v),
+        mend=node.smaller_hold(supply_v - sure.level_v),
         at="hold.resistance",
     )
-
-
-def _end_v(case: Case, stage: OutputStage, end: Literal["least", "most"]) -> float:
-    """The least or the greatest supply delivered to a stage."""
-    facts = case.of(rail_of(case, stage))
-    return facts.least("delivered") if end == "least" else facts.most("delivered")
-
-
-def _smaller_hold(node: HeldNode, room_v: float) -> str:
-    """The greatest hold that would do."""
-    if room_v <= 0.0:
-        return "no hold will do: a supply, or a reader, with more room between them"
-    return f"a hold of {show_down(node.largest_hold_ohm(room_v), _OHM)} or less; now up to {show(node.hold_ohm, _OHM)}"
 
 
 @rule(
@@ -277,7 +270,7 @@ def driver_wins_against_hold(stage: OutputStage, case: Case) -> Judgement:
     through = f"{show(drive_ohm, _OHM)} of drive against a hold of {show(hold_ohm, _OHM)}"
     if case.own.must("hold.to") == "low":
         supply_v, sure = case.gather(
-            lambda: _end_v(case, stage, "least"), lambda: sure_high(case, stage, supply="least")
+            lambda: delivered_v(case, stage, "least"), lambda: sure_high(case, stage, supply="least")
         )
         moves_v = hold.driven_level_v(supply_v=supply_v, hold_ohm=hold_ohm, drive_ohm=drive_ohm)
         return case.at_least(
@@ -287,10 +280,10 @@ def driver_wins_against_hold(stage: OutputStage, case: Case) -> Judgement:
             says="driven high, it reaches",
             why=f"{show(supply_v, _V)} through {through}; {sure.reader} surely reads high from "
             f"{show(sure.level_v, _V)} on",
-            mend=_larger_hold(supply_v, sure.level_v, drive_ohm, hold_ohm),
+            mend=larger_hold(supply_v=supply_v, needed_v=sure.level_v, drive_ohm=drive_ohm, hold_ohm=hold_ohm),
             at="hold.resistance",
         )
-    supply_v, sure = case.gather(lambda: _end_v(case, stage, "most"), lambda: sure_low(case, stage, supply="most"))
+    supply_v, sure = case.gather(lambda: delivered_v(case, stage, "most"), lambda: sure_low(case, stage, supply="most"))
     moves_v = hold.driven_level_v(supply_v=supply_v, hold_ohm=hold_ohm, drive_ohm=drive_ohm)
     return case.at_most(
         need=sure.level_v,
@@ -298,17 +291,9 @@ def driver_wins_against_hold(stage: OutputStage, case: Case) -> Judgement:
         dimension=_V,
         says="driven low, it comes down to",
         why=f"{show(supply_v, _V)} through {through}; {sure.reader} surely reads low up to {show(sure.level_v, _V)}",
-        mend=_larger_hold(supply_v, supply_v - sure.level_v, drive_ohm, hold_ohm),
+        mend=larger_hold(supply_v=supply_v, needed_v=supply_v - sure.level_v, drive_ohm=drive_ohm, hold_ohm=hold_ohm),
         at="hold.resistance",
     )
-
-
-def _larger_hold(supply_v: float, needed_v: float, drive_ohm: float, hold_ohm: float) -> str:
-    """The least hold that would do."""
-    if needed_v >= supply_v:
-        return "no hold will do: a supply, or a reader, with more room between them"
-    least_ohm = hold.smallest_hold_for_driver_ohm(supply_v=supply_v, drive_ohm=drive_ohm, needed_v=max(needed_v, 0.0))
-    return f"a hold of {show_up(least_ohm, _OHM)} or more; now down to {show(hold_ohm, _OHM)}"
 
 
 @rule(

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import argparse
 import os
-from collections.abc import Callable, Iterable, Iterator
+from collections.abc import Iterable, Iterator
 from concurrent.futures import Executor
 from contextlib import AbstractContextManager, contextmanager, nullcontext
 from dataclasses import dataclass
@@ -12,7 +12,7 @@ from functools import partial
 from pathlib import Path
 from typing import Any, Final
 
-from tidegate.lint.batch import Families, Judged, Request, catalogue, found_files, judge_file
+from tidegate.lint.batch import Judged, Request, catalogue, found_files, judge_file
 from tidegate.lint.batch import run as run_batch
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.judgement import Level
@@ -86,7 +86,7 @@ def _status(judged: Judged) -> int:
     return Exit.KEPT if found is None else Exit.FINDINGS
 
 
-def run(options: argparse.Namespace, streams: Streams, families: Callable[[], Families]) -> int:
+def run(options: argparse.Namespace, streams: Streams) -> int:
     """Judge every file; the exit status is the worst of all."""
     saved = _saved(options.save, streams)
     if saved is None:
@@ -97,7 +97,7 @@ def run(options: argparse.Namespace, streams: Streams, families: Callable[[], Fa
     form = Form(options.form)
     forms = tuple(dict.fromkeys((form, *saved.values())))
     request = Request(
-        streams.today, families, options.settings, tuple(options.pack), options.fail_at,
+        streams.today, streams.families, options.settings, tuple(options.pack), options.fail_at,
         None if options.also is None else tuple(options.also),
     )  # fmt: skip
     wanted = _Wanted(request, forms, Look(streams.width, streams.colour and form is Form.TERMINAL, options.every))
@@ -206,7 +206,8 @@ def _cluster(address: str) -> Iterator[Executor]:
     """A Dask cluster that runs already, as an executor; a worker that dies has its work done by another."""
     from distributed import Client
 
-    with Client(address) as client:
+    connect: Any = Client
+    with connect(address) as client:
         yield client.get_executor(retries=3)
 
 

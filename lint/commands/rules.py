@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 import inspect
 import textwrap
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from difflib import get_close_matches
 
 from tidegate.lint.commands.streams import Exit, Streams
@@ -19,9 +19,9 @@ def configure(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("id", nargs="?", metavar="ID", help="a rule (family/name) or a family; all of them if left out")
 
 
-def run(options: argparse.Namespace, streams: Streams, families: Callable[[], Sequence[Sequence[Rule]]]) -> int:
+def run(options: argparse.Namespace, streams: Streams) -> int:
     """Print the catalogue, a family of it, or one rule with formula, facts, sources, example and mend."""
-    rules = [rule for family in families() for rule in family]
+    rules = [rule for family in streams.families() for rule in family]
     if options.id is None or any(rule.family == options.id for rule in rules):
         shown = [rule for rule in rules if options.id in (None, rule.family)]
         streams.out.write("\n".join(_listed(shown)) + "\n")

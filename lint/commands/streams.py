@@ -1,14 +1,17 @@
-"""The outside world as a command sees it: where it writes, how wide that is, and which day it is."""
+"""The outside world as a command sees it: where it writes, how wide that is, which day it is, and the rules."""
 
 from __future__ import annotations
 
 import datetime
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from enum import IntEnum
 from typing import TYPE_CHECKING, TextIO
 
 if TYPE_CHECKING:
     from rich.console import Console
+
+    from tidegate.lint.rule import Rule
 
 
 class Exit(IntEnum):
@@ -22,11 +25,13 @@ class Exit(IntEnum):
 
 @dataclass(frozen=True, slots=True)
 class Streams:
-    """Output, errors and the date; made by the command line, handed to every command."""
+    """Output, errors, the date and the rules; made by the command line, handed to every command."""
 
     out: TextIO
     err: TextIO
     today: datetime.date
+    families: Callable[[], Sequence[Sequence[Rule]]]
+    """The rules that come with the tool; a function, so that a command that needs none does not load them."""
 
     @property
     def colour(self) -> bool:

@@ -33,88 +33,106 @@ class Bump:
     """Path of the fact that its size rests on most."""
 
 
-def bumps_on(case: Case, comparator: Comparator) -> list[Bump]:
-    """Every bump that others leave on a comparator: described pairs, and comparators on the same reference.
+@dataclass(frozen=True, slots=True)
+class Disturber:
+    """What can disturb a comparator, and the way on which it does; its bump is yet to be worked out."""
 
-    Raises: MissingFactsError: where a fact of any of them is missing, with all that is.
-    """
-    return ask_all(case, asks_for_bumps(case, comparator))
+    aggressor: str
+    path: Path
+    bump: Callable[[], Bump]
 
 
-def asks_for_bumps(case: Case, comparator: Comparator) -> list[Callable[[], Bump]]:
-    """The bumps of ``bumps_on``, not worked out yet: a function for each."""
+def disturbers(case: Case, comparator: Comparator) -> list[Disturber]:
+    """All others that disturb a comparator: described pairs, and comparators on the same reference."""
     pairs = (
-        partial(neighbour_bump, case, pair, comparator, aggressor) for pair, aggressor in pairs_on(case, comparator)
+        Disturber(
+            aggressor, pair_path(pair, comparator, aggressor), partial(pair_bump, case, pair, comparator, aggressor)
+        )
+        for pair, aggressor in _pairs(case, comparator)
     )
-    return [*pairs, *asks_for_kicks(case, comparator)]
+    return [*pairs, *sharers(case, comparator)]
 
 
-def pairs_on(case: Case, comparator: Comparator) -> Iterator[tuple[Neighbour, str]]:
-    """The described pairs in which a comparator is disturbed, each with what disturbs it there."""
-    for edge in case.graph.into(comparator.id):
-        if edge.kind is EdgeKind.COUPLES_TO:
-            _, pair, _ = edge.fact.split(".")
-            yield case.description.neighbours[pair], edge.tail
-
-
-def asks_for_kicks(case: Case, comparator: Comparator) -> list[Callable[[], Bump]]:
-    """The kicks that other comparators leave on the reference that they share with this one, a function for each.
+def sharers(case: Case, comparator: Comparator) -> list[Disturber]:
+    """The other comparators that kick the reference of a comparator.
 
     A described pair that shares the reference says more about the same charge, and stands in its place.
     """
-    if comparator.reference is None:
+    reference = comparator.reference
+    if reference is None:
         return []
     described = {
         aggressor
-        for pair, aggressor in pairs_on(case, comparator)
-        if pair.kind == "shared_reference" and pair.reference == comparator.reference
+        for pair, aggressor in _pairs(case, comparator)
+        if pair.kind == "shared_reference" and pair.reference == reference
     }
     others = (
         case.description.comparators[other]
-        for other in case.graph.tails(comparator.reference, EdgeKind.TAKES_REFERENCE_FROM)
+        for other in case.graph.tails(reference, EdgeKind.TAKES_REFERENCE_FROM)
         if other in case.description.comparators and other != comparator.id and other not in described
     )
-    return [partial(kick, case, other, comparator) for other in others]
+    return [
+        Disturber(other.id, _kick_path(other.id, reference, comparator), partial(kick, case, other, comparator))
+        for other in others
+    ]
 
 
-def kicks_on(case: Case, comparator: Comparator) -> list[Bump]:
-    """Bumps that other comparators leave on the reference that they share with this one.
+def bumps_on(case: Case, comparator: Comparator) -> list[Bump]:
+    """Every bump that others leave on a comparator.
 
     Raises: MissingFactsError: where a fact of any of them is missing, with all that is.
     """
-    return ask_all(case, asks_for_kicks(case, comparator))
+    return ask_all(case, (disturber.bump for disturber in disturbers(case, comparator)))
 
 
 def kick(case: Case, aggressor: Comparator, victim: Comparator) -> Bump:
     """The bump that one comparator's decision leaves on another's reference (or on its own)."""
     assert victim.reference is not None
     reference = case.description.references[victim.reference]
-    charge_c = case.of(aggressor).most("kick")
-    fact = case.of(aggressor).path("kick")
+    charge_c, fact = case.of(aggressor).most("kick"), case.of(aggressor).path("kick")
     return _on_reference(
         case, reference, victim, charge_c=charge_c, aggressor=aggressor.id, via=reference.id, fact=fact
     )
 
 
-def neighbour_bump(case: Case, neighbour: Neighbour, victim: Comparator, aggressor: str) -> Bump:
+def pair_bump(case: Case, pair: Neighbour, victim: Comparator, aggressor: str) -> Bump:
     """The bump of a described pair of neighbours."""
-    facts = case.of(neighbour)
-    if neighbour.kind == "shared_reference":
+    facts = case.of(pair)
+    if pair.kind == "shared_reference":
         charge_c, reference = case.gather(lambda: facts.most("charge"), lambda: facts.element("reference"))
         return _on_reference(
-            case, reference, victim, charge_c=charge_c, aggressor=aggressor, via=neighbour.id, fact=facts.path("charge")
+            case, reference, victim, charge_c=charge_c, aggressor=aggressor, via=pair.id, fact=facts.path("charge")
         )
-    path = (Hop(aggressor, ""), Hop(victim.id, f"couples through {neighbour.id} to"))
-    if neighbour.kind == "capacitance":
-        scale, edge = case.gather(lambda: rail_share(case, facts, victim), lambda: coupled_edge(case, neighbour))
+    path = pair_path(pair, victim, aggressor)
+    if pair.kind == "capacitance":
+        scale, edge = case.gather(lambda: rail_share(case, facts, victim), lambda: coupled_edge(case, pair))
         peak_v, lasting_v = edge.peak_v / scale, lambda lasts_s: edge.lasting_v(lasts_s) / scale
-        return Bump(aggressor, victim.id, neighbour.id, peak_v, lasting_v, path, facts.path("capacitance"))
+        return Bump(aggressor, victim.id, pair.id, peak_v, lasting_v, path, facts.path("capacitance"))
     scale, step_a, impedance_ohm = case.gather(
         lambda: rail_share(case, facts, victim), lambda: facts.most("current_step"), lambda: facts.most("impedance")
     )
     step_v = coupling.shared_impedance_bump_v(step_a=step_a, impedance_ohm=impedance_ohm) / scale
     # A step of current that stays: no filter waits it out.
-    return Bump(aggressor, victim.id, neighbour.id, step_v, lambda _: step_v, path, facts.path("impedance"))
+    return Bump(aggressor, victim.id, pair.id, step_v, lambda _: step_v, path, facts.path("impedance"))
+
+
+def pair_path(pair: Neighbour, victim: Comparator, aggressor: str) -> Path:
+    """The way on which one of a described pair disturbs the other."""
+    if pair.kind == "shared_reference" and pair.reference is not None:
+        return _kick_path(aggressor, pair.reference, victim)
+    return Hop(aggressor, ""), Hop(victim.id, f"couples through {pair.id} to")
+
+
+def _kick_path(aggressor: str, reference: str, victim: Comparator) -> Path:
+    return Hop(aggressor, ""), Hop(reference, "kicks"), Hop(victim.id, "is the reference of")
+
+
+def _pairs(case: Case, comparator: Comparator) -> Iterator[tuple[Neighbour, str]]:
+    """The described pairs in which a comparator is disturbed, each with what disturbs it there."""
+    for edge in case.graph.into(comparator.id):
+        if edge.kind is EdgeKind.COUPLES_TO:
+            _, pair, _ = edge.fact.split(".")
+            yield case.description.neighbours[pair], edge.tail
 
 
 @dataclass(frozen=True, slots=True)
@@ -156,11 +174,11 @@ class CoupledEdge:
         return min(bound_v, after_edge_v)
 
 
-def coupled_edge(case: Case, neighbour: Neighbour) -> CoupledEdge:
+def coupled_edge(case: Case, pair: Neighbour) -> CoupledEdge:
     """The edge and the node of a pair that couples through a capacitance."""
-    facts = case.of(neighbour)
-    node_c = neighbour.node.capacitance if neighbour.node is not None else None
-    slowest_s = neighbour.edge.most if neighbour.edge is not None else None
+    facts = case.of(pair)
+    node_c = pair.node.capacitance if pair.node is not None else None
+    slowest_s = pair.edge.most if pair.edge is not None else None
     edge = CoupledEdge(
         step_v=facts.most("step"),
         least_edge_s=facts.least("edge"),
@@ -184,19 +202,22 @@ def _on_reference(
 ) -> Bump:
     """A charge thrown onto a decoupled reference, which gives it back through its source resistance."""
     facts = case.of(reference)
+    needs_decay = victim.filter is not None  # without a filter, the peak is all there is to see
     c_f, r_ohm, share = case.gather(
         lambda: facts.least("decoupling"),
-        lambda: facts.most("source_resistance"),
+        lambda: facts.most("source_resistance") if needs_decay else inf,
         lambda: input_share(case, victim),
     )
     peak_v = coupling.charge_kick_v(charge_c=charge_c, c_f=c_f) / share
-    greatest = reference.decoupling.most if reference.decoupling is not None else None
+    greatest_f = reference.decoupling.most if reference.decoupling is not None else None
 
     def lasting_v(lasts_s: float) -> float:
-        most_c_f = inf if greatest is None else greatest
+        if lasts_s == 0.0:
+            return peak_v
+        most_c_f = inf if greatest_f is None else greatest_f
         return decayed_kick_v(lasts_s=lasts_s, charge_c=charge_c, r_ohm=r_ohm, least_c_f=c_f, most_c_f=most_c_f) / share
 
-    path = (Hop(aggressor, ""), Hop(reference.id, "kicks"), Hop(victim.id, "is the reference of"))
+    path = _kick_path(aggressor, reference.id, victim)
     return Bump(aggressor, victim.id, via, peak_v, lasting_v, path, fact)
 
 

@@ -2,32 +2,26 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
-from contextlib import suppress
+from collections.abc import Sequence
+from functools import partial
 
-from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.case import Case
+from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.rail_order import rails_before
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.description.model.supply import Domain, Rail
 
 
-def not_alive(case: Case, stages: Iterable[OutputStage], *, held_rail: Rail) -> list[tuple[OutputStage, str]]:
-    """The stages without a hold that may be dead while a stage on ``held_rail`` before them is held, and why.
+def not_alive(case: Case, stages: Sequence[OutputStage], *, held_rail: Rail) -> list[tuple[OutputStage, str]]:
+    """The stages that may be dead while a stage on ``held_rail`` before them is held, and why.
 
     A stage is alive where nothing gates it and it lives in a domain that is always on, on that rail or on one that is
     up before it.
-    Raises: MissingFactsError: where that is not given, or not whether a stage that may be dead has a hold.
+    Raises: MissingFactsError: where that is not given.
     """
-    found = []
-    for stage in stages:
-        with suppress(MissingFactsError):  # noted: settle speaks of it below
-            why = _why(case, stage, held_rail)
-            if why and stage.hold is None:
-                case.of(stage).lacks("hold")
-            found.append((stage, why))
-    case.settle()
-    return [(stage, why) for stage, why in found if why]
+    whys = ask_all(case, (partial(_why, case, stage, held_rail) for stage in stages))
+    return [(stage, why) for stage, why in zip(stages, whys, strict=True) if why]
 
 
 def _why(case: Case, stage: OutputStage, held_rail: Rail) -> str:

@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
-from contextlib import suppress
+from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Final, Literal
+from functools import partial
+from typing import Final, Literal, TypeAlias
 
-from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.rail_of import rail_of
+from tidegate.lint.case import Case
+from tidegate.lint.derived.ask_all import ask_all
+from tidegate.lint.derived.rail_of import delivered_v, rail_of
+from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.description.model.reset_path import OutputStage, Reset
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.physics import hold
@@ -16,7 +18,11 @@ from tidegate.lint.physics.logic_levels import input_levels_v
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
 from tidegate.lint.quantity import Dimension, show
 
+_End: TypeAlias = Literal["least", "most"]
+
 _SURE: Final[Mapping[str, str]] = {"low": "low_most_v", "high": "high_least_v"}
+_WORST: Final[Mapping[str, _End]] = {"low": "least", "high": "most"}
+_NO_ROOM: Final = "no hold will do: a supply, or a reader, with room between the two levels"
 
 
 def reads_it(case: Case, stage: OutputStage) -> list[OutputStage | Reset]:
@@ -27,6 +33,11 @@ def reads_it(case: Case, stage: OutputStage) -> list[OutputStage | Reset]:
         assert isinstance(element, OutputStage | Reset)
         found.append(element)
     return found
+
+
+def drives_reset(case: Case, stage: OutputStage) -> bool:
+    """Whether a stage drives a reset net directly."""
+    return any(isinstance(reader, Reset) for reader in reads_it(case, stage))
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,19 +78,32 @@ class HeldNode:
         slope = show(self.slope_v_per_s, Dimension.SLOPE)
         return f"{leaks} + {show(self.ramps_to_v, Dimension.VOLTAGE)} from a ramp of {slope}"
 
-    def largest_hold_ohm(self, limit_v: float) -> float:
-        """The largest hold with which it moves no further than a limit, in ohm."""
-        return hold.largest_hold_ohm(
-            limit_v=limit_v, leakage_a=self.leakage_a, coupling_c_f=self.coupling_c_f, total_c_f=self.total_c_f,
+    def smaller_hold(self, room_v: float) -> str:
+        """The greatest hold with which it moves no further than there is room, in words."""
+        if room_v <= 0.0:
+            return _NO_ROOM
+        largest_ohm = hold.largest_hold_ohm(
+            limit_v=room_v, leakage_a=self.leakage_a, coupling_c_f=self.coupling_c_f, total_c_f=self.total_c_f,
             slope_v_per_s=self.slope_v_per_s, ramp_s=self.ramp_s,
         )  # fmt: skip
+        now = show(self.hold_ohm, Dimension.RESISTANCE)
+        return f"a hold of {show_down(largest_ohm, Dimension.RESISTANCE)} or less; now up to {now}"
+
+
+def larger_hold(*, supply_v: float, needed_v: float, drive_ohm: float, hold_ohm: float) -> str:
+    """The least hold against which a stage moves its output as far as is needed, in words."""
+    if needed_v >= supply_v:
+        return _NO_ROOM
+    least_ohm = hold.smallest_hold_for_driver_ohm(supply_v=supply_v, drive_ohm=drive_ohm, needed_v=max(needed_v, 0.0))
+    now = show(hold_ohm, Dimension.RESISTANCE)
+    return f"a hold of {show_up(least_ohm, Dimension.RESISTANCE)} or more; now down to {now}"
 
 
 def held_node(case: Case, stage: OutputStage) -> HeldNode:
     """The node at the output of a held stage.
 
-    Held low, it is what couples the rail to the node that lifts it, most with little else on the node; held high, it is
-    all that the node has to the ground (no more than all it has) which keeps it behind the rail.
+    Held low, the rail lifts it through what couples the two, most where there is little else on the node.  Held high,
+    what it has to the ground keeps it behind the rail, and that is no more than all it has.
     Raises: MissingFactsError: where a fact is missing.
     """
     own = case.of(stage)
@@ -108,7 +132,7 @@ class SureLevel:
     level_v: float
 
 
-def sure_low(case: Case, stage: OutputStage, *, supply: Literal["least", "most"]) -> SureLevel:
+def sure_low(case: Case, stage: OutputStage, *, supply: _End) -> SureLevel:
     """The lowest of the levels up to which those that read a stage surely take its output for low.
 
     The level of a standard is taken at the least supply of the receivers; where they live on the rail of the stage, at
@@ -118,7 +142,7 @@ def sure_low(case: Case, stage: OutputStage, *, supply: Literal["least", "most"]
     return min(_sure(case, stage, "low", supply), key=lambda sure: sure.level_v)
 
 
-def sure_high(case: Case, stage: OutputStage, *, supply: Literal["least", "most"]) -> SureLevel:
+def sure_high(case: Case, stage: OutputStage, *, supply: _End) -> SureLevel:
     """The highest of the levels from which on those that read a stage surely take its output for high.
 
     The level of a standard is taken at the greatest supply of the receivers; where they live on the rail of the stage,
@@ -128,36 +152,28 @@ def sure_high(case: Case, stage: OutputStage, *, supply: Literal["least", "most"
     return max(_sure(case, stage, "high", supply), key=lambda sure: sure.level_v)
 
 
-def _sure(case: Case, stage: OutputStage, level: str, supply: str) -> list[SureLevel]:
-    found: list[SureLevel] = []
-    for reader in reads_it(case, stage):
-        with suppress(MissingFactsError):  # noted: settle speaks of it below
-            found.extend(_levels(case, stage, reader, level, supply))
-    case.settle()
+def _sure(case: Case, stage: OutputStage, level: str, supply: _End) -> list[SureLevel]:
+    asks = (partial(_levels, case, stage, reader, level, supply) for reader in reads_it(case, stage))
+    return [sure for levels in ask_all(case, asks) for sure in levels]
+
+
+def _levels(case: Case, stage: OutputStage, reader: OutputStage | Reset, level: str, supply: _End) -> list[SureLevel]:
+    facts = case.of(reader)
+    receivers = reader.receivers if isinstance(reader, Reset) else None
+    standard = receivers.levels if receivers is not None else None
+    found = []
+    if standard is None or (receivers is not None and receivers.threshold is not None):
+        fact = "receivers.threshold" if isinstance(reader, Reset) else "threshold"
+        found.append(SureLevel(reader.id, facts.least(fact) if level == "low" else facts.most(fact)))
+    if standard is not None and isinstance(reader, Reset):
+        levels = input_levels_v(standard=standard, supply_v=_receiver_supply_v(case, stage, reader, level, supply))
+        found.append(SureLevel(f"{reader.id} ({standard})", getattr(levels, _SURE[level])))
     return found
 
 
-def _levels(
-    case: Case, stage: OutputStage, reader: OutputStage | Reset, level: str, supply: str
-) -> Iterator[SureLevel]:
-    facts = case.of(reader)
-    if isinstance(reader, OutputStage):
-        yield SureLevel(reader.id, facts.least("threshold") if level == "low" else facts.most("threshold"))
-        return
-    receivers = reader.receivers
-    if receivers is None or receivers.levels is None or receivers.threshold is not None:
-        fact = "receivers.threshold"
-        yield SureLevel(reader.id, facts.least(fact) if level == "low" else facts.most(fact))
-    if receivers is not None and receivers.levels is not None:
-        at_v = _receiver_supply_v(case, stage, reader, level, supply)
-        levels = input_levels_v(standard=receivers.levels, supply_v=at_v)
-        yield SureLevel(f"{reader.id} ({receivers.levels})", getattr(levels, _SURE[level]))
-
-
-def _receiver_supply_v(case: Case, stage: OutputStage, reader: Reset, level: str, supply: str) -> float:
+def _receiver_supply_v(case: Case, stage: OutputStage, reader: Reset, level: str, supply: _End) -> float:
     """The supply at which the receivers of a net read a level at its worst."""
-    own, rail = rail_of(case, reader), rail_of(case, stage)
-    worst = supply if own is rail else {"low": "least", "high": "most"}[level]
-    supply_v = case.of(own).least("delivered") if worst == "least" else case.of(own).most("delivered")
+    shared = rail_of(case, reader) is rail_of(case, stage)
+    supply_v = delivered_v(case, reader, supply if shared else _WORST[level])
     case.settle()
     return supply_v

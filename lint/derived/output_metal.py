@@ -29,11 +29,13 @@ class ShortLine:
     limit_a_per_m: float
     """Product of current density and length below which the layer does not fail."""
 
-    def product_a_per_m(self, current_a: float) -> float:
-        """Product of current density and length of the line."""
-        return short_length_product_a_per_m(
-            current_a=current_a, width_m=self.width_m, thickness_m=self.thickness_m, length_m=self.length_m
+    @property
+    def largest_a(self) -> float:
+        """The current up to which it does not fail, however long it flows."""
+        product_a_per_m = short_length_product_a_per_m(
+            current_a=1.0, width_m=self.width_m, thickness_m=self.thickness_m, length_m=self.length_m
         )
+        return self.limit_a_per_m / product_a_per_m
 
 
 @dataclass(frozen=True, slots=True)
@@ -50,6 +52,11 @@ class Conductor:
     enough: Callable[[float], str]
     """How much of it would carry a current, in words."""
     short: ShortLine | None
+
+    @property
+    def limit_a(self) -> float:
+        """The smallest of its limits, in A."""
+        return min([self.direct.here, *self.heating_a.values()])
 
 
 def line_of(case: Case, stage: OutputStage) -> Conductor:
@@ -73,7 +80,7 @@ def line_of(case: Case, stage: OutputStage) -> Conductor:
     is_narrow = width_m <= narrow_m * (1.0 + _SAME)
 
     def enough(current_a: float) -> str:
-        strictest = min(per_width.here, *heating.values())
+        strictest = min([per_width.here, *heating.values()])
         needed_m = width_for_current_m(current_a=current_a, per_width_a_per_m=strictest, width_bias_m=bias_m)
         wide_m = max(needed_m, narrow_m + _GRID_M) if is_narrow else needed_m
         return f"{width_up_um(wide_m)} wide, or wider; now {width_m * 1e6:g} um"

@@ -1,6 +1,8 @@
-"""The rail that feeds an element."""
+"""The rail that feeds an element, and what it delivers."""
 
 from __future__ import annotations
+
+from typing import Literal
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.supply import Domain, Rail
@@ -25,3 +27,12 @@ def domain_rail(case: Case, domain: Domain) -> Rail:
     rail = case.of(domain).element("rail")
     assert isinstance(rail, Rail)
     return rail
+
+
+def delivered_v(case: Case, element: Element, end: Literal["least", "most"]) -> float:
+    """The least or the greatest supply delivered to an element, in V; not a number, and noted, where it is not given.
+
+    Raises: MissingFactsError: where its domain, or the domain's rail, is not given.
+    """
+    facts = case.of(rail_of(case, element))
+    return facts.least("delivered") if end == "least" else facts.most("delivered")

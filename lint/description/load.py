@@ -45,7 +45,7 @@ def load(path: str | Path, *, shown: str | None = None, parser: type[Parser] = P
     Raises: DescriptionError: with every fault of the files that could be found, sorted by place.
     """
     with _collector_off():
-        sources = _with_kit(read_sources(Path(path), shown or str(path), read_file, parser), parser)
+        sources = _with_kit(read_sources(Path(path), shown or str(Path(path)), read_file, parser), parser)
         faults = [*sources.faults, *_faults_of_data(sources)]
         if faults:
             raise DescriptionError(faults)
@@ -94,11 +94,11 @@ def _faults_of_data(sources: Sources) -> list[Fault]:
         faults += _explained(sources)
     if _sections_are_whole(data):
         faults += name_faults(data, _name_fields(), sources)
-        if not faults and not any(data.get(section) for section in NAMED_SECTIONS):
+        if not faults and not sources.faults and not any(data.get(section) for section in NAMED_SECTIONS):
             place = Place(sources.files[0].name)
             faults.append(Fault(place, "", "the file describes no element", "tidegate start writes a starter"))
-    spoiled = [path for file in sources.files for path in file.spoiled]
-    return [fault for fault in faults if not any(fault.lies_in(path) for path in spoiled)]
+    spoiled = {path for file in sources.files for path in file.spoiled}
+    return [fault for fault in faults if not fault.lies_in(spoiled)]
 
 
 def _sections_are_whole(data: Mapping[str, Any]) -> bool:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Sequence, Set
 from typing import Final, TypeAlias
 
 import msgspec
@@ -40,9 +40,11 @@ class Fault(msgspec.Struct, frozen=True, order=True):
         path = f"{self.path}: " if self.path else ""
         return f"{self.place}: {path}{self.problem}; {self.advice}"
 
-    def lies_in(self, path: str) -> bool:
-        """Whether it is about the value at this path, or about something inside it; nothing lies in the empty path."""
-        return bool(path) and (self.path == path or self.path.startswith((f"{path}.", f"{path}[")))
+    def lies_in(self, paths: Set[str]) -> bool:
+        """Whether it is about the value at one of these paths, or about something inside it."""
+        if self.path in paths:
+            return self.path != ""
+        return any(self.path[: step.start()] in paths for step in re.finditer(r"[.\[]", self.path))
 
 
 class DescriptionError(Exception):

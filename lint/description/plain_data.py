@@ -45,7 +45,7 @@ class PlainFile:
     def __init__(self, name: str, root: yaml.MappingNode) -> None:
         """Read a tree of nodes.
 
-        Raises: DescriptionError: where it is nested too deep.
+        Raises: DescriptionError: where it is nested too deep, or its aliases stand for too much.
         """
         self.faults: list[Fault] = []
         self.spoiled: list[str] = []  # paths of values that are not what the author meant
@@ -60,7 +60,7 @@ class PlainFile:
         own = root.end_mark.index - root.start_mark.index
         if self._size > max(MOST_EXPANDED, MOST_GROWTH * own):
             problem = f"aliases (*) make {own} characters stand for more than {max(MOST_EXPANDED, MOST_GROWTH * own)}"
-            self.faults.append(Fault(Place(name, 1, 1), "", problem, "write the values out"))
+            raise DescriptionError([*self.faults, Fault(Place(name, 1, 1), "", problem, "write the values out")])
 
     def _mapping(self, node: yaml.MappingNode) -> dict[str, Plain]:
         """The data of a mapping; keys are text whatever they look like, empty values are left out as not given."""

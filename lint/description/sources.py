@@ -22,6 +22,8 @@ MOST_FILES: Final = 1000
 MOST_INCLUDED: Final = 16
 """Longest chain of files that include one another."""
 
+_NAME_A_FILE: Final = "name a description in YAML or JSON"
+
 Reader = Callable[[FilePath], bytes]
 
 
@@ -107,7 +109,8 @@ class _Gatherer:
             return
         except (OSError, ValueError, RuntimeError) as error:
             reason = getattr(error, "strerror", None) or "no usable file name"
-            self.faults.append(Fault(Place(shown), "", f"cannot be read ({reason})", _near_file(path)))
+            advice = _near_file(path) if isinstance(error, FileNotFoundError) else _NAME_A_FILE
+            self.faults.append(Fault(Place(shown), "", f"cannot be read ({reason})", advice))
             return
         self.files.append(file)
         names = file.data.get("include", [])
@@ -155,11 +158,12 @@ def _near_file(path: FilePath) -> str:
     from tidegate.lint.description.nearest import nearest
 
     try:
-        beside = sorted(each.name for each in path.parent.iterdir() if each.suffix in {".yaml", ".yml", ".json"})
+        beside = sorted(each for each in path.parent.iterdir() if each.suffix in {".yaml", ".yml", ".json"})
+        by_stem = {each.stem: each.name for each in beside if each.is_file()}
     except (OSError, ValueError):
-        beside = []
-    near = nearest(path.name, beside)
-    return f"did you mean {quoted(near[0])}?" if near else "name a description in YAML or JSON"
+        by_stem = {}
+    near = nearest(path.stem, by_stem)
+    return f"did you mean {quoted(by_stem[near[0]])}?" if near else _NAME_A_FILE
 
 
 def _joined(files: Sequence[YamlFile], faults: list[Fault]) -> dict[str, Plain]:

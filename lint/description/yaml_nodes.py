@@ -147,13 +147,14 @@ def _decoded(name: str, content: bytes) -> str:
     if len(content) > MOST_BYTES:
         problem = f"more than {MOST_BYTES // 2**20} MiB"
         raise DescriptionError([Fault(Place(name), "", problem, "split the description")])
+    content = content.removeprefix(b"\xef\xbb\xbf")
     try:
-        text = content.decode("utf-8-sig")
+        text = content.decode()
     except UnicodeDecodeError as error:
-        place = _place_after(name, content[: error.start].decode("utf-8-sig", "replace"))
+        place = _place_after(name, content[: error.start].decode())
         problem = f"byte 0x{content[error.start]:02X} is not UTF-8"
         raise DescriptionError([Fault(place, "", problem, "save the file as UTF-8")]) from None
-    if b"\x00" in content[:4]:
+    if b"\x00" in content[:2]:
         raise DescriptionError([Fault(Place(name, 1, 1), "", "the file is UTF-16 or UTF-32", "save it as UTF-8")])
     found = NOT_TEXT.search(text)
     if found:

@@ -70,8 +70,8 @@ def _terminal(judged: Judged, look: Look) -> str:
 
     out = io.StringIO()
     console = Console(
-        file=out, width=look.width, force_terminal=look.colour, color_system="standard" if look.colour else None, markup=False, emoji=False,
-        highlight=False, legacy_windows=False,
+        file=out, width=look.width, force_terminal=look.colour, color_system="standard" if look.colour else None,
+        markup=False, emoji=False, highlight=False, legacy_windows=False,
     )  # fmt: skip
     if judged.review is None:
         show_faults(console, judged.faults)

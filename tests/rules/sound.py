@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime
 import json
+import re
 import tempfile
 from collections.abc import Mapping, Sequence
 from functools import cache
@@ -13,7 +14,6 @@ from typing import Any, Final
 import yaml
 
 from tidegate.lint.description.load import Loaded, load
-from tidegate.lint.description.sources import read_sources
 from tidegate.lint.engine import Catalogue, review
 from tidegate.lint.judgement import Judgement, Kind
 from tidegate.lint.rule import Rule
@@ -26,14 +26,34 @@ Judgements = Mapping[tuple[str, str], Judgement]
 """Judgements by rule and subject."""
 
 
+class _Loader(yaml.SafeLoader):
+    """YAML in which ``true`` and ``false`` alone are booleans: ``off`` is a key of modes."""
+
+    yaml_implicit_resolvers = {
+        sign: [(tag, pattern) for tag, pattern in resolvers if not tag.endswith(":bool")]
+        for sign, resolvers in yaml.SafeLoader.yaml_implicit_resolvers.items()
+    }
+
+
+_Loader.add_implicit_resolver("tag:yaml.org,2002:bool", re.compile("^(?:true|false)$"), list("tf"))
+
+
+@cache
+def _sound() -> dict[str, Any]:
+    """The sound example with what it includes."""
+    data: dict[str, Any] = yaml.load(SOUND.read_text("utf-8"), _Loader)
+    for name in data.pop("include"):
+        data |= yaml.load((SOUND.parent / name).read_text("utf-8"), _Loader)
+    return data
+
+
 def patched(patch_yaml: str) -> Loaded:
     """The sound example with a patch laid over it: mappings are merged, ``null`` removes a key.
 
     A range of a quantity (min, typ, max) is replaced whole, unless the patch removes an end of it. A list is replaced,
     or patched by index: ``needs: {0: {works: null}}``.
     """
-    data = _laid_over(read_sources(SOUND, SOUND.name, Path.read_bytes).data, yaml.safe_load(patch_yaml) or {})
-    data.pop("include")  # the included data are joined in already
+    data = _laid_over(_sound(), yaml.load(patch_yaml, _Loader) or {})
     with tempfile.TemporaryDirectory() as folder:
         file = Path(folder) / "patched.yaml"
         file.write_text(json.dumps(data), "utf-8")

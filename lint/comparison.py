@@ -1,0 +1,135 @@
+"""Two reviews side by side: facts that changed, judgements that changed kind, margins that moved; the worst first."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from enum import IntEnum
+from typing import Any, Final
+
+from tidegate.lint.description.place import dotted
+from tidegate.lint.engine import Review
+from tidegate.lint.judgement import Judgement, Kind
+
+
+class Harm(IntEnum):
+    """How a change of a judgement is to be taken; the worst is the greatest."""
+
+    BETTER = 0
+    MARGIN_GREW = 1
+    OTHER = 2
+    MARGIN_SHRANK = 3
+    WORSE = 4
+
+
+@dataclass(frozen=True, slots=True)
+class FactChange:
+    """A fact that was given, taken away or changed; None where it is not given."""
+
+    path: str
+    old: str | None
+    new: str | None
+
+
+@dataclass(frozen=True, slots=True)
+class JudgementChange:
+    """What a rule says about an element, before and after; None where it says nothing."""
+
+    rule: str
+    subject: str
+    old: Judgement | None
+    new: Judgement | None
+    harm: Harm
+
+    @property
+    def moved(self) -> float:
+        """By how much of its need the margin moved; below zero it shrank."""
+        if self.old is None or self.new is None or self.old.measure is None or self.new.measure is None:
+            return 0.0
+        return self.new.measure.slack - self.old.measure.slack
+
+
+@dataclass(frozen=True, slots=True)
+class Comparison:
+    """All that changed between two reviews."""
+
+    facts: tuple[FactChange, ...]
+    judgements: tuple[JudgementChange, ...]
+
+    @property
+    def got_worse(self) -> bool:
+        """Whether anything needs somebody that did not before."""
+        return any(change.harm is Harm.WORSE for change in self.judgements)
+
+
+_RANK: Final = {Kind.PASS: 0, Kind.NOT_APPLICABLE: 0, Kind.REVIEW: 1, Kind.OPEN: 2, Kind.FAIL: 3}
+_STILL: Final = 1e-9  # of the need: less is rounding, and no move
+
+
+def compare(old: Review, new: Review) -> Comparison:
+    """What changed from one review to the other."""
+    before = {(judgement.rule, judgement.subject): judgement for judgement in old.judgements}
+    after = {(judgement.rule, judgement.subject): judgement for judgement in new.judgements}
+    changes = []
+    for key in {**before, **after}:
+        change = _change(*key, before.get(key), after.get(key))
+        if change is not None:
+            changes.append(change)
+    changes.sort(key=lambda change: (-change.harm, change.moved))
+    return Comparison(tuple(_facts(old.loaded.sources.data, new.loaded.sources.data)), tuple(changes))
+
+
+def _change(rule: str, subject: str, old: Judgement | None, new: Judgement | None) -> JudgementChange | None:
+    harm = _harm(old, new)
+    return None if harm is None else JudgementChange(rule, subject, old, new, harm)
+
+
+def _harm(old: Judgement | None, new: Judgement | None) -> Harm | None:
+    """None where nothing changed that a reader should know."""
+    was, now = _rank(old), _rank(new)
+    if now > was:
+        return Harm.WORSE
+    if now < was:
+        return Harm.BETTER
+    if old is None or new is None:
+        return None
+    if old.kind is not new.kind or bool(old.waiver) != bool(new.waiver):
+        return Harm.OTHER
+    if old.measure is None or new.measure is None:
+        return None
+    moved = new.measure.slack - old.measure.slack
+    if abs(moved) <= _STILL:
+        return None
+    if moved > 0:
+        return Harm.MARGIN_GREW
+    return Harm.WORSE if new.kind is Kind.FAIL and not new.waiver else Harm.MARGIN_SHRANK
+
+
+def _rank(judgement: Judgement | None) -> int:
+    """How much a judgement asks of somebody; an accepted one asks nothing."""
+    return 0 if judgement is None or judgement.waiver else _RANK[judgement.kind]
+
+
+def _facts(old: Mapping[str, Any], new: Mapping[str, Any]) -> Iterator[FactChange]:
+    before, after = dict(_flat(old, ())), dict(_flat(new, ()))
+    for path in {**before, **after}:
+        if before.get(path) != after.get(path):
+            yield FactChange(path, before.get(path), after.get(path))
+
+
+def _flat(node: Any, path: tuple[str | int, ...]) -> Iterator[tuple[str, str]]:
+    """Every single fact with its path."""
+    if isinstance(node, dict) and node:
+        for key, child in node.items():
+            yield from _flat(child, (*path, key))
+    elif isinstance(node, list) and node:
+        for index, child in enumerate(node):
+            yield from _flat(child, (*path, index))
+    else:
+        yield dotted(path), _shown(node)
+
+
+def _shown(node: Any) -> str:
+    if isinstance(node, bool):
+        return "true" if node else "false"
+    return "none given" if node in ({}, []) else str(node)
