@@ -72,19 +72,22 @@ def value_or_none(text: str, dimension: Dimension) -> float | None:
     power = POWERS[dimension].get(unit)
     if power is not None:
         value = float(f"{mantissa}e{int(exponent or 0) + power}")
+        vanished = value == 0.0 and mantissa.strip("+-0.") != ""
     else:
         scaled = SCALED.get(dimension, {}).get(unit)
         if scaled is None:
             return None
-        value = _scaled(Decimal(f"{mantissa}e{exponent or 0}", _EXACT), *scaled)
-    if not -_LARGEST <= value <= _LARGEST or (value == 0.0 and mantissa.strip("+-0.")):
+        exact = _scaled(Decimal(f"{mantissa}e{exponent or 0}", _EXACT), *scaled)
+        value = float(exact)
+        vanished = value == 0.0 and exact != 0
+    if vanished or not -_LARGEST <= value <= _LARGEST:
         return None
     return None if value < 0.0 and dimension is Dimension.TEMPERATURE else value
 
 
-def _scaled(number: Decimal, factor: str, divisor: str, offset: str) -> float:
+def _scaled(number: Decimal, factor: str, divisor: str, offset: str) -> Decimal:
     product = _EXACT.multiply(number, Decimal(factor))
-    return float(_EXACT.add(_EXACT.divide(product, Decimal(divisor)), Decimal(offset)))
+    return _EXACT.add(_EXACT.divide(product, Decimal(divisor)), Decimal(offset))
 
 
 _SHOWN: Final[Mapping[Dimension, tuple[tuple[float, str], ...]]] = {

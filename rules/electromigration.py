@@ -17,7 +17,8 @@ from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_wind
 from tidegate.lint.derived.wire_limit import wear_of
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import OutputStage
-from tidegate.lint.graph.paths import Reach, driven_by, drives
+from tidegate.lint.graph.edge import EdgeKind, Hop, Path
+from tidegate.lint.graph.paths import Reach, driven_by
 from tidegate.lint.judgement import Judgement, Level, Measure, Relation
 from tidegate.lint.physics import conductor_size, coupling, crowbar, electromigration, short_length
 from tidegate.lint.quantity import Dimension, show
@@ -55,7 +56,7 @@ def _edge(case: Case) -> Measure:
 def _why_fast(case: Case) -> str:
     """Why crowbar current is no matter; empty where the stage is behind a slow edge."""
     edge = _edge(case)
-    return f"its input edge of {show(edge.have, _TIME)} is no slow one" if edge.holds else ""
+    return f"its input edge of {show(edge.have, _TIME)} is not slow" if edge.holds else ""
 
 
 @rule(
@@ -79,14 +80,13 @@ def slow_edge_meets_schmitt(stage: OutputStage, case: Case) -> Judgement:
     if stage.kind == "schmitt":
         return case.passes("a Schmitt stage is good for any edge", at="kind")
     edge = _edge(case)
-    if not edge.holds:
-        case.own.must("kind")
+    kind = "" if edge.holds else case.own.must("kind").replace("_", " ")
     return case.at_most(
         need=edge.need,
         have=edge.have,
         dimension=_TIME,
         says="input edge",
-        why="" if edge.holds else f"a {stage.kind} has no hysteresis",
+        why=f"a {kind} stage has no hysteresis" if kind else "",
         mend=f"make it a Schmitt stage, or an edge of at most {show(edge.need, _TIME)}",
         at="input_edge",
     )
@@ -138,8 +138,14 @@ def crowbar_leaves_the_level(stage: OutputStage, case: Case) -> Judgement:
         f"{detector}",
         mend=f"at most {show_down(most_a, _A)} of crowbar current; now {show(current.peak_a, _A)}",
         at="input_edge",
-        path=Reach(detector, drives(case.graph)).path(stage.id),
+        path=_forwards(behind.path(detector)),
     )
+
+
+def _forwards(path: Path) -> Path:
+    """The way from a stage back to a detector, as the way from the detector to the stage."""
+    names = [hop.element for hop in reversed(path)]
+    return (Hop(names[0], ""), *(Hop(name, EdgeKind.DRIVES.forwards) for name in names[1:]))
 
 
 def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, float]:

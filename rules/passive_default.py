@@ -24,6 +24,7 @@ _V: Final = Dimension.VOLTAGE
 _A: Final = Dimension.CURRENT
 _OHM: Final = Dimension.RESISTANCE
 _OPPOSITE: Final = {"low": "high", "high": "low"}
+_NO_RESET: Final = "no reset net lies behind it"
 _TAKERS_SHOWN: Final = 4
 _COMMON_PRACTICE: Final = "common practice, no source: what nothing drives is held in its safe state"
 _LEVELS: Final = "JEDEC JESD8 family, input levels at a pin, as quoted by others (see the formula)"
@@ -34,13 +35,12 @@ _STRETCH: Final = """output_stages:
 """  # a stage between the two that are held
 
 
-def _why_no_hold(stage: OutputStage) -> str:
-    """Why there is no hold to judge; empty where there is one."""
-    if isinstance(stage.hold, Hold):
-        return ""
+def _why_no_hold(case: Case, stage: OutputStage) -> str:
+    """Why there is no hold to judge."""
     if stage.hold == "none":
         return "nothing holds its output"
-    return "it is not said what holds its output (passive_default/held and passive_default/chain_alive ask for it)"
+    asking = "held" if drives_reset(case, stage) else "chain_alive"
+    return f"it is not said what holds its output (passive_default/{asking} asks for it)"
 
 
 @rule(
@@ -105,13 +105,12 @@ def reset_net_is_held(reset: Reset, case: Case) -> Judgement:
 )  # fmt: skip
 def stages_after_hold_are_alive(stage: OutputStage, case: Case) -> Judgement:
     """Pass if every stage between the hold and each reset net is alive or held."""
+    if stage.hold == "none" or (stage.hold is None and drives_reset(case, stage)):
+        return case.not_applicable(_why_no_hold(case, stage))
     behind = onward(case, stage)
-    if stage.hold is None and behind.resets and not drives_reset(case, stage):
-        case.own.must("hold")
-    if not isinstance(stage.hold, Hold):
-        return case.not_applicable(_why_no_hold(stage))
     if not behind.resets:
-        return case.not_applicable("no reset net lies behind it")
+        return case.not_applicable(_NO_RESET)
+    case.own.must("hold")
     if not behind.stages:
         return case.passes("no stage comes after its hold", at="hold")
     loose = [after for after in behind.stages if not isinstance(after.hold, Hold)]
@@ -158,10 +157,10 @@ def stages_after_hold_are_alive(stage: OutputStage, case: Case) -> Judgement:
 def hold_leaves_the_active_level(stage: OutputStage, case: Case) -> Judgement:
     """Pass if the level held arrives as the active level at each reset net, on every way."""
     if not isinstance(stage.hold, Hold):
-        return case.not_applicable(_why_no_hold(stage))
+        return case.not_applicable(_why_no_hold(case, stage))
     behind = onward(case, stage)
     if not behind.resets:
-        return case.not_applicable("no reset net lies behind it")
+        return case.not_applicable(_NO_RESET)
     active = {reset.id: reset.active for reset in behind.resets}
     for reset in behind.resets:
         if reset.active is None:
@@ -201,15 +200,15 @@ def hold_leaves_the_active_level(stage: OutputStage, case: Case) -> Judgement:
     mend="a smaller hold resistance, less leakage, or less coupling to the rail",
     sources=("Ohm's law, and a ramp through a capacitor onto a resistor (derived at the formula)", _LEVELS),
     example=Example(
-        fails="output_stages: {rst_out: {leakage: {max: 500 nA}}}",
-        holds="output_stages: {rst_out: {leakage: {max: 20 nA}}}",
+        fails="resets: {por_n: {receivers: {leakage: {max: 500 nA}}}}",
+        holds="resets: {por_n: {receivers: {leakage: {max: 2 nA}}}}",
     ),
     formulas=(hold.undriven_level_v, hold.largest_hold_ohm, logic_levels.input_levels_v),
 )  # fmt: skip
 def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
     """Compare the level that leakage and the ramp leave with what is surely read as the level held."""
     if not isinstance(stage.hold, Hold):
-        return case.not_applicable(_why_no_hold(stage))
+        return case.not_applicable(_why_no_hold(case, stage))
     if not reads_it(case, stage):
         return case.not_applicable("it drives nothing")
     if case.own.must("hold.to") == "low":
@@ -220,7 +219,7 @@ def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
             dimension=_V,
             says="not driven, it rises to",
             why=f"{node.text()}; {sure.reader} surely reads low up to {show(sure.level_v, _V)}",
-            mend=node.smaller_hold(sure.level_v),
+            mend="" if node.moves_v <= sure.level_v else node.smaller_hold(sure.level_v),
             at="hold.resistance",
         )
     node, sure, supply_v = case.gather(
@@ -235,7 +234,7 @@ def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
         says="not driven, it stays up at",
         why=f"{show(supply_v, _V)} less {node.text()}; {sure.reader} surely reads high from "
         f"{show(sure.level_v, _V)} on",
-        mend=node.smaller_hold(supply_v - sure.level_v),
+        mend="" if node.moves_v <= supply_v - sure.level_v else node.smaller_hold(supply_v - sure.level_v),
         at="hold.resistance",
     )
 
@@ -263,7 +262,7 @@ def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
 def driver_wins_against_hold(stage: OutputStage, case: Case) -> Judgement:
     """Compare the level that the stage reaches against its hold with what is surely read as the opposite level."""
     if not isinstance(stage.hold, Hold):
-        return case.not_applicable(_why_no_hold(stage))
+        return case.not_applicable(_why_no_hold(case, stage))
     if not reads_it(case, stage):
         return case.not_applicable("it drives nothing")
     drive_ohm, hold_ohm = case.own.most("drive"), case.own.least("hold.resistance")

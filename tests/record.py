@@ -6,10 +6,12 @@ What it writes is read by a person before it is committed: recorded output freez
 from __future__ import annotations
 
 import contextlib
+import importlib.util
 import io
 import os
 from collections.abc import Callable, Iterator, Mapping
 from pathlib import Path
+from typing import Any
 
 ROOT = Path(__file__).resolve().parents[1]
 
@@ -59,9 +61,25 @@ def recorded() -> Mapping[str, Callable[[], str]]:
         "tests/golden/faulty.txt": lambda: command("review", "examples/faulty.yaml"),
         "tests/golden/faulty.json": lambda: command("review", "--as", "json", "examples/faulty.yaml"),
         "tests/golden/starter.txt": lambda: command("review", "examples/starter.yaml"),
+        "tests/golden/place.txt": lambda: command("place", "examples/sound.yaml"),
+        "tests/golden/place_uv.txt": lambda: command("place", "examples/sound.yaml", "uv"),
+        "tests/golden/place_uv.json": lambda: command("place", "examples/sound.yaml", "uv", "--as", "json"),
+        "tests/golden/margins.txt": lambda: command("margins", "examples/sound.yaml"),
+        "rules/README.md": _documents().rule_catalogue,
+        "schema/README.md": _documents().description_reference,
+        "lint/physics/README.md": _documents().formula_sheet,
         "tests/golden/rules.txt": lambda: command("rules"),
         "tests/golden/help.txt": _help,
     }
+
+
+def _documents() -> Any:
+    """The module beside this one, wherever Python was started."""
+    spec = importlib.util.spec_from_file_location("documents", Path(__file__).with_name("documents.py"))
+    assert spec is not None and spec.loader is not None
+    module = importlib.util.module_from_spec(spec)
+    spec.loader.exec_module(module)
+    return module
 
 
 def _help() -> str:

@@ -77,7 +77,7 @@ class Ring:
 
 
 class CouplingMap:
-    """Every push of a description, by who makes it and by whom it moves."""
+    """Every push of a description that is not surely nothing, by who makes it and by whom it moves."""
 
     def __init__(self, case: Case) -> None:
         self._out: dict[str, list[Push]] = {}
@@ -85,6 +85,8 @@ class CouplingMap:
         drivers = _Drivers(case.graph)
         for comparator in case.description.comparators.values():
             for push in _pushes_onto(case, comparator, drivers):
+                if push.bump_v == 0.0 and push.known:
+                    continue
                 self._out.setdefault(push.by, []).append(push)
                 self._onto.setdefault(push.victim, []).append(push)
         self._rings = _rings(self._out, case.description.comparators)
@@ -194,7 +196,7 @@ def _rings(out: Mapping[str, Sequence[Push]], comparators: Iterable[str]) -> dic
         for push in out.get(name, ()):
             if not push.known:
                 unknown[name].append(push)
-            elif push.bump_v > 0.0 and push.ratio > _ratio(strongest[name].get(push.victim)):
+            elif push.ratio > _ratio(strongest[name].get(push.victim)):
                 strongest[name][push.victim] = push
     heads = {name: [*strongest[name], *(push.victim for push in unknown[name])] for name in order}
     rings: dict[str, Ring] = {}

@@ -3,9 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from functools import partial
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.guarded_loads import Bound, guarded_loads, least_supplies
+from tidegate.lint.derived.lowest_supply import lowest_supply
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.graph.paths import Reach, driven_by, drives
@@ -18,15 +21,22 @@ def follower_supplies(case: Case, power_on: Comparator) -> list[Bound]:
     rail feeds them; and those of guarded loads for which no under-voltage detector of that rail stands.
     Raises: MissingFactsError: where one of them does not say from which supply on it works.
     """
-    found = []
-    for element, path in _takes_over(case, power_on):
-        facts = case.of(element)
-        found.append(Bound(facts.most("works_from"), element.id, facts.path("works_from"), path))
     watched = {load for other in _under_voltage(case, power_on.watches) for load in _loads(case, other)}
-    if any(load not in watched for load in _loads(case, power_on)):
-        found += [bound for bound in least_supplies(case, power_on) if bound.element not in watched]
-    case.settle()
+    alone = [load for load in _loads(case, power_on) if load not in watched]
+    asks = [partial(_works_from, case, element, path) for element, path in _takes_over(case, power_on)]
+    sources, loads = case.gather(lambda: ask_all(case, asks), lambda: least_supplies(case, power_on) if alone else [])
+    found = [*sources, *(bound for bound in loads if bound.element in alone)]
     return sorted(found, key=lambda bound: -bound.level_v)
+
+
+def _works_from(case: Case, element: Comparator | Reference | Bias, path: Path) -> Bound:
+    facts = case.of(element)
+    if isinstance(element, Comparator):
+        level_v = facts.most("works_from")
+        case.settle()
+    else:
+        level_v = lowest_supply(case, element).level_v
+    return Bound(level_v, element.id, facts.path("works_from"), path)
 
 
 def _loads(case: Case, detector: Comparator) -> list[str]:

@@ -71,9 +71,7 @@ def _setting(
 ) -> Limit:
     """The limit behind an end, before the error was taken off."""
     ends_v = (limit.nominal_v - (hysteresis_v if limit.level is Level.RISING else 0.0) for limit in nominal)
-    return next(
-        limit for limit, at_v in zip(raw, ends_v, strict=True) if limit.side is side and math.isclose(at_v, end_v)
-    )
+    return next(limit for limit, at_v in zip(raw, ends_v, strict=True) if limit.side is side and at_v == end_v)
 
 
 def _largest_hysteresis_v(facts: PlacementFacts) -> float:

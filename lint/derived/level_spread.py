@@ -90,12 +90,14 @@ def level_spreads(case: Case, comparator: Comparator) -> LevelSpreads:
     """
     trip = comparator.trip
     down, up = (trip.falling, trip.rising) if trip is not None else (None, None)
-    apart_v, apart_half_v = _apart(case, comparator, down, up)
     if down is None and up is None:
-        own = _by_errors(case, comparator)
+        own, (apart_v, _) = case.gather(lambda: _by_errors(case, comparator), lambda: _apart(case, comparator))
         return LevelSpreads(own, own, apart_v, None, None, ranged=False)
-    falling = None if down is None else _stated(case, comparator, "falling", down)
-    rising = None if up is None else _stated(case, comparator, "rising", up)
+    falling, rising, (apart_v, apart_half_v) = case.gather(
+        lambda: None if down is None else _stated(case, comparator, "falling", down),
+        lambda: None if up is None else _stated(case, comparator, "rising", up),
+        lambda: (0.0, 0.0) if down is not None and up is not None else _apart(case, comparator),
+    )
     if falling is None:
         assert rising is not None
         spread, level_v = rising
@@ -114,9 +116,9 @@ def is_nominal(span: Voltage) -> bool:
     return span.typical is not None and span.least == span.most
 
 
-def _apart(case: Case, comparator: Comparator, down: Voltage | None, up: Voltage | None) -> tuple[float, float]:
-    """How far rising lies above falling where one of them is not stated: nominal and half its tolerance, in V."""
-    if (down is not None and up is not None) or comparator.hysteresis == "none":
+def _apart(case: Case, comparator: Comparator) -> tuple[float, float]:
+    """How far rising lies above falling, as it is stated: nominal and half its tolerance, in V."""
+    if comparator.hysteresis == "none":
         return 0.0, 0.0
     if not isinstance(comparator.hysteresis, Hysteresis) or comparator.hysteresis.amount is None:
         case.of(comparator).lacks("hysteresis.amount")

@@ -84,7 +84,8 @@ def _halved_error(facts: PlacementFacts, name: str) -> str:
         parts.append((error.share, Dimension.RATIO))
     if error.at_zero.at_rail_v:
         parts.append((error.at_zero.at_rail_v, _V))
-    return ", ".join(f"{show(size, unit)} to {show(size / 2, unit)}" for size, unit in parts)
+    sizes = ", ".join(f"{show(size, unit)} to {show(size / 2, unit)}" for size, unit in parts)
+    return f"{sizes} at the rail"
 
 
 def _scaled(facts: PlacementFacts, names: set[str]) -> PlacementFacts:
@@ -130,16 +131,15 @@ def _supply(facts: PlacementFacts, rail: str) -> Iterator[_Tried]:
 
 
 def _bounds(facts: PlacementFacts) -> Iterator[_Tried]:
-    first = facts.bounds[0]
-    away = 1.0 if facts.role == "over_voltage" else -1.0
-    moved = [
-        replace(bound, level_v=bound.level_v + away * _STEP_V) if bound.element == first.element else bound
-        for bound in facts.bounds
-    ]
-    moved.sort(key=lambda bound: away * bound.level_v)
-    change = f"{show(first.level_v, _V)} to {show(first.level_v + away * _STEP_V, _V)}"
-    wider = replace(facts, bounds=tuple(moved))
-    yield f"{first.element} signed off {show(_STEP_V, _V)} wider", change, first.fact, wider
+    first, over = facts.bounds[0], facts.role == "over_voltage"
+    wider_v = first.level_v + (_STEP_V if over else -_STEP_V)
+    moved = [bound for bound in facts.bounds if (bound.level_v < wider_v if over else bound.level_v > wider_v)]
+    ends = [replace(bound, level_v=wider_v) if bound in moved else bound for bound in facts.bounds]
+    names = ", ".join(dict.fromkeys(bound.element for bound in moved))
+    change = f"{show(first.level_v, _V)} to {show(wider_v, _V)}"
+    step = show(_STEP_V, _V)
+    what = f"{names} working from {step} less" if facts.role == "power_on" else f"{names} signed off {step} wider"
+    yield what, change, first.fact, replace(facts, bounds=tuple(ends))
     if facts.under_voltage:
         after = facts.under_voltage[0]
         higher = replace(after, level_v=after.level_v + _STEP_V)

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
+from functools import partial
 from typing import Final
 
-import msgspec
-
 from tidegate.lint.case import Case
+from tidegate.lint.derived.at_code import at_code
 from tidegate.lint.derived.follower_supplies import follower_supplies
 from tidegate.lint.derived.guarded_loads import Bound, greatest_supplies, least_supplies
 from tidegate.lint.derived.level_spread import LevelSpread, LevelSpreads, level_spreads
@@ -56,58 +57,70 @@ def placement_facts(case: Case, comparator: Comparator) -> PlacementFacts:
     shipped = as_shipped(case, comparator)
     rail = case.description.rails[comparator.watches]
     over, power_on = comparator.role == "over_voltage", comparator.role == "power_on"
+    facts = case.of(rail)
+    delivered_v = facts.most("delivered") if over else facts.least("delivered")
+    ripple_v = facts.most("ripple.peak_to_peak")
+    load_step_a = 0.0 if over else facts.most("load_step")
+    source_ohm = 0.0 if over else facts.most("source_impedance")
     levels, bounds, answer, under_voltage = case.gather(
         lambda: level_spreads(case, shipped),
         lambda: _bounds(case, comparator, rail),
         lambda: None if power_on else response(case, comparator),
         lambda: _under_voltage(case, rail) if power_on else (),
     )
-    facts = case.of(rail)
-    delivered_v = facts.most("delivered") if over else facts.least("delivered")
-    found = PlacementFacts(
+    return PlacementFacts(
         role=comparator.role,
         levels=levels,
         bounds=bounds,
         response=answer,
         delivered=Bound(delivered_v, rail.id, facts.path("delivered"), ()),
         nominal_v=None if rail.nominal is None else rail.nominal.middle,
-        ripple_v=facts.most("ripple.peak_to_peak"),
-        load_step_a=0.0 if over else facts.most("load_step"),
-        source_ohm=0.0 if over else facts.most("source_impedance"),
+        ripple_v=ripple_v,
+        load_step_a=load_step_a,
+        source_ohm=source_ohm,
         under_voltage=under_voltage,
     )
-    case.settle()
-    return found
 
 
 def as_shipped(case: Case, comparator: Comparator) -> Comparator:
     """The detector with the levels of the code it ships with, where they are chosen by code."""
     if not comparator.codes or comparator.trip is not None:
         return comparator
-    return msgspec.structs.replace(comparator, trip=comparator.codes[case.of(comparator).must("ships_with")])
+    return at_code(comparator, case.of(comparator).must("ships_with"))
 
 
 def limits(facts: PlacementFacts) -> tuple[Limit, ...]:
     """The limits on the levels themselves, no error taken off."""
-    sides = {
-        "falling_error": _NO_ERROR, "rising_error": _NO_ERROR, "ripple_v": facts.ripple_v,
-    }  # fmt: skip
     guarantee_v, delivered_v = facts.bounds[0].level_v, facts.delivered.level_v
     if facts.role == "over_voltage":
         assert facts.response is not None
         return placement.over_voltage_limits(
-            load_most_v=guarantee_v, rise_v=facts.response.moved_v, delivered_most_v=delivered_v, **sides
+            falling_error=_NO_ERROR,
+            rising_error=_NO_ERROR,
+            load_most_v=guarantee_v,
+            rise_v=facts.response.moved_v,
+            delivered_most_v=delivered_v,
+            ripple_v=facts.ripple_v,
         )
     # The lowest supply at which the chip must start is the lowest that is delivered.
-    sides |= {
-        "delivered_least_v": delivered_v, "start_least_v": delivered_v,
-        "load_step_v": facts.load_step_a * facts.source_ohm,
-    }  # fmt: skip
-    if facts.role == "under_voltage":
-        assert facts.response is not None
-        return placement.under_voltage_limits(load_least_v=guarantee_v, droop_v=facts.response.moved_v, **sides)
-    first_v = facts.under_voltage[0].level_v if facts.under_voltage else None
-    return placement.power_on_limits(working_least_v=guarantee_v, under_voltage_rising_least_v=first_v, **sides)
+    return _below_service(facts)(
+        falling_error=_NO_ERROR,
+        rising_error=_NO_ERROR,
+        delivered_least_v=delivered_v,
+        start_least_v=delivered_v,
+        ripple_v=facts.ripple_v,
+        load_step_v=facts.load_step_a * facts.source_ohm,
+    )
+
+
+def _below_service(facts: PlacementFacts) -> Callable[..., tuple[Limit, ...]]:
+    """The limits of a detector whose levels lie below the supply in service, its guarantee filled in."""
+    guarantee_v = facts.bounds[0].level_v
+    if facts.role == "power_on":
+        first_v = facts.under_voltage[0].level_v if facts.under_voltage else None
+        return partial(placement.power_on_limits, working_least_v=guarantee_v, under_voltage_rising_least_v=first_v)
+    assert facts.response is not None
+    return partial(placement.under_voltage_limits, load_least_v=guarantee_v, droop_v=facts.response.moved_v)
 
 
 def nominal_limits(facts: PlacementFacts) -> tuple[Limit, ...]:

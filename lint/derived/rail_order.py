@@ -1,4 +1,8 @@
-"""Which of two rails comes up first, as far as the description says."""
+"""The rails that feed a rail or come up before it.
+
+Only supply counts here, not control: a regulator that waits for a reset net proves nothing about the rails behind that
+net, because a net whose stages are dead may let it go.
+"""
 
 from __future__ import annotations
 

@@ -110,15 +110,32 @@ def _sections_are_whole(data: Mapping[str, Any]) -> bool:
 
 
 def _explained(sources: Sources) -> Sequence[Fault]:
-    """What is wrong with data that the validator refused; never empty."""
+    """What is wrong with data that the schema, or reading its numbers, refused; never empty."""
     # Loaded here alone: a description without faults does not pay for the library that explains them.
     from tidegate.lint.description.schema_faults import schema_faults
 
-    faults = schema_faults(sources.data, description_schema(), sources)
+    paths = [tuple(error.instance_path) for error in _validator().iter_errors(sources.data)]
+    part = _part_with(paths, sources.data) if paths else sources.data
+    faults = schema_faults(part, description_schema(), sources)
     if faults:
         return faults
-    path = next((tuple(error.instance_path) for error in _validator().iter_errors(sources.data)), ())
+    path = paths[0] if paths else ()
     return [Fault(sources.place(path), dotted(path), "a value that does not fit", "write it as the schema says")]
+
+
+def _part_with(paths: Sequence[tuple[Any, ...]], data: Mapping[str, Any]) -> Mapping[str, Any]:
+    """The part of the data in which these paths lie; other sections and entries need no explaining."""
+    part: dict[str, Any] = {}
+    for path in paths:
+        section = path[0] if path else None
+        if section is None:
+            known = description_schema()["properties"]
+            part.update((key, value) for key, value in data.items() if key not in known)
+        elif len(path) == 1 or not isinstance(data[section], dict):
+            part[section] = data[section]
+        elif part.get(section) is not data[section]:
+            part.setdefault(section, {})[path[1]] = data[section][path[1]]
+    return part
 
 
 def _with_kit(sources: Sources, parser: type[Parser]) -> Sources:

@@ -72,7 +72,7 @@ class PlainFile:
                 key = self._odd_key(key_node)
                 if key is None:
                     continue
-                if not key_node.style and key != key_node.value:  # the value stands in the key
+                if key != key_node.value:  # the value stands in the key
                     data[key] = key_node.value.partition(":")[2]
                     continue
             if key in first:
@@ -95,7 +95,7 @@ class PlainFile:
             return None
         text: str = node.value
         if node.style:
-            return self._checked(node, text)
+            return text if self._checked(node, text) == text else None
         if text == "<<":
             self._fault(node, None, "a merge key (<<)", "write the values out, or use include")
             return None

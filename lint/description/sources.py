@@ -115,7 +115,7 @@ class _Gatherer:
         self.files.append(file)
         names = file.data.get("include", [])
         for index, name in enumerate(names if isinstance(names, list) else []):
-            if isinstance(name, str):
+            if isinstance(name, str) and dotted(("include", index)) not in file.spoiled:
                 self._include(file, path, name, index, (*above, real))
 
     def _include(self, file: YamlFile, path: FilePath, name: str, index: int, above: tuple[FilePath, ...]) -> None:

@@ -59,6 +59,10 @@ _SAYINGS: Final = (
 _OTHERWISE: Final = _Saying("", "the text cannot be read as YAML from here on", "compare it with the lines above")
 
 
+MOST_LINES_AT_ONCE: Final = 2000
+"""Longer texts are read again from the section with the fault on, in lines."""
+
+
 def syntax_fault(name: str, error: yaml.YAMLError, text: str) -> Fault:
     """The fault of the file of this name whose text the pure Python parser refuses with this error."""
     mark = error.problem_mark or error.context_mark if isinstance(error, yaml.MarkedYAMLError) else None
@@ -83,6 +87,26 @@ def syntax_fault(name: str, error: yaml.YAMLError, text: str) -> Fault:
     sign = quoted(lines[mark.line][mark.column : mark.column + 1])
     problem = saying.problem.replace("{sign}", sign).replace("{line}", str(context.line + 1))
     return Fault(Place(name, mark.line + 1, mark.column + 1), "", problem, saying.advice)
+
+
+def earliest_line(error: Exception) -> int | None:
+    """The line where the trouble begins, counted from 0; None where the error has no place."""
+    marks = (getattr(error, "context_mark", None), getattr(error, "problem_mark", None))
+    return min((mark.line for mark in marks if mark is not None), default=None)
+
+
+def section_alone(text: str, line: int | None) -> str | None:
+    """The text with the lines before the section of this line left empty; None where that could change its meaning."""
+    lines = text.splitlines(keepends=True)
+    if line is None or len(lines) < MOST_LINES_AT_ONCE:
+        return None
+    first = next((number for number in range(min(line, len(lines) - 1), 0, -1) if _is_section(lines[number])), 0)
+    before = "".join(lines[:first])
+    return None if "&" in before else "\n" * first + "".join(lines[first:])
+
+
+def _is_section(line: str) -> bool:
+    return re.match(r"[A-Za-z_][\w-]*:\s", line, re.ASCII) is not None
 
 
 def _tab(mark: yaml.Mark, lines: Sequence[str]) -> int | None:

@@ -14,5 +14,8 @@ def unknown_key(place: Place, path: str, key: str, above: Schema) -> Fault:
 
     known = list(above.get("properties", {}))
     near = nearest(key, known)
-    advice = f"did you mean {near[0]}?" if near else f"known here: {', '.join(known)}; your own keys begin with x-"
+    if key[:1].isdecimal() and not near:
+        advice = "write a point in a decimal number: a comma parts entries"
+    else:
+        advice = f"did you mean {near[0]}?" if near else f"known here: {', '.join(known)}; your own keys begin with x-"
     return Fault(place, path, f"unknown key {quoted(key)}", advice)

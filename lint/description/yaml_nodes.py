@@ -116,23 +116,43 @@ def node_tree(name: str, content: bytes, parser: type[Parser] = PARSER) -> yaml.
     Raises: DescriptionError: where the content is no text, or no YAML.
     """
     text = _decoded(name, content)
-    # The two parsers read tabs differently; what both must refuse, the pure one does.
     tabs = "\t" in text
     if tabs and text.lstrip().startswith("{"):
         text, tabs = text.replace("\t", " "), False  # JSON: its quoted texts hold no bare tab
     try:
-        return _composed(text, PureParser if tabs else parser)
-    except (yaml.YAMLError, TooDeepError):
-        pass
-    try:
-        return _composed(text, PureParser)
-    except TooDeepError as error:
-        raise DescriptionError([error.fault(name)]) from None
-    except yaml.YAMLError as error:
-        # Loaded here alone: a file without faults does not pay for the wording of faults.
-        from tidegate.lint.description.syntax_faults import syntax_fault
+        root = _composed(text, parser)
+    except (yaml.YAMLError, TooDeepError) as error:
+        root = _composed_or_explained(name, text, error)
+    if tabs:
+        # Loaded here alone: few files hold tabs.
+        from tidegate.lint.description.tabs import tab_fault
 
-        raise DescriptionError([syntax_fault(name, error, text)]) from None
+        fault = tab_fault(name, text, root)
+        if fault is not None:
+            raise DescriptionError([fault])
+    return root
+
+
+def _composed_or_explained(name: str, text: str, first: Exception) -> yaml.Node | None:
+    """What the pure Python parser makes of a text that a parser refused: a tree after all, or the fault.
+
+    It is slow, so that it is given the section with the fault alone where that leads to the same line.
+    """
+    from tidegate.lint.description.syntax_faults import earliest_line, section_alone, syntax_fault
+
+    line = earliest_line(first)
+    shorter = section_alone(text, line)
+    for given in (shorter, text) if shorter is not None else (text,):
+        try:
+            root = _composed(given, PureParser)
+        except (yaml.YAMLError, TooDeepError) as error:
+            if given is text or earliest_line(error) == line:
+                fault = error.fault(name) if isinstance(error, TooDeepError) else syntax_fault(name, error, text)
+                raise DescriptionError([fault]) from None
+        else:
+            if given is text:
+                return root
+    raise AssertionError("the whole text is the last to be tried")
 
 
 def _composed(text: str, parser: type[Any]) -> yaml.Node | None:

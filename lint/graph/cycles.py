@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from typing import Final
 
 _TIE: Final = 1e-12
-"""Share of the greatest weight below which two ways count as equally good; a float keeps about 1e-16."""
+"""Share of what the ways are worth below which two count as equally good; a float keeps about 1e-16."""
 
 
 def strong_components(successors: Mapping[str, Sequence[str]]) -> list[list[str]]:
@@ -106,11 +106,13 @@ def _improved_to_the_end(weights: Mapping[str, Mapping[str, float]]) -> MeanCycl
     gain then is rounding.
     """
     policy = {node: max(heads, key=heads.__getitem__) for node, heads in weights.items()}
-    value = {node: weights[node][head] for node, head in policy.items()}
-    tie = _TIE * max(abs(weight) for heads in weights.values() for weight in heads.values())
+    into: dict[str, list[str]] = {node: [] for node in weights}
+    for node, heads in weights.items():
+        for head in heads:
+            into[head].append(node)
     best = _best_policy_cycle(policy, weights)
     left = len(weights)
-    while left and _take_better_edges(policy, value, weights, best, tie):
+    while left and _take_better_edges(policy, weights, _values(policy, into, weights, best), best.mean):
         left -= 1
         found = _best_policy_cycle(policy, weights)
         if found.mean > best.mean:
@@ -119,18 +121,18 @@ def _improved_to_the_end(weights: Mapping[str, Mapping[str, float]]) -> MeanCycl
 
 
 def _take_better_edges(
-    policy: dict[str, str], value: dict[str, float], weights: Mapping[str, Mapping[str, float]], best: MeanCycle,
-    tie: float,
-) -> bool:  # fmt: skip
-    """Let each node take the edge that gains most over the best mean; whether one of them changed."""
-    _revalue(value, policy, weights, best)
-    better = False
+    policy: dict[str, str], weights: Mapping[str, Mapping[str, float]], value: dict[str, float], mean: float
+) -> bool:
+    """Let each node take the edge that gains most over a mean; whether one of them changed."""
+    heaviest = max(abs(weight) for heads in weights.values() for weight in heads.values())
+    tie = _TIE * max(heaviest, *map(abs, value.values()))
+    changed = False
     for node, heads in weights.items():
         for head, weight in heads.items():
-            gained = value[head] + weight - best.mean
-            if gained > value[node] + tie:
-                value[node], policy[node], better = gained, head, True
-    return better
+            gained = value[head] + weight - mean
+            if gained > value[node] + tie and head != policy[node]:
+                value[node], policy[node], changed = gained, head, True
+    return changed
 
 
 def _best_policy_cycle(policy: Mapping[str, str], weights: Mapping[str, Mapping[str, float]]) -> MeanCycle:
@@ -154,18 +156,21 @@ def _best_policy_cycle(policy: Mapping[str, str], weights: Mapping[str, Mapping[
     return best
 
 
-def _revalue(
-    value: dict[str, float], policy: Mapping[str, str], weights: Mapping[str, Mapping[str, float]], best: MeanCycle
-) -> None:
-    """Give every node that the policy leads to the best cycle what it gains over the mean on its way there."""
-    into: dict[str, list[str]] = {}
-    for node, head in policy.items():
-        into.setdefault(head, []).append(node)
-    goal = best.nodes[0]
-    waiting = [goal]
-    while waiting:
-        head = waiting.pop()
-        for node in into.get(head, ()):
-            if node != goal:
-                value[node] = value[head] + weights[node][head] - best.mean
-                waiting.append(node)
+def _values(
+    policy: dict[str, str], into: Mapping[str, Sequence[str]], weights: Mapping[str, Mapping[str, float]],
+    best: MeanCycle,
+) -> dict[str, float]:  # fmt: skip
+    """What every node gains over the mean of the best cycle on its way there.
+
+    A node whose policy leads to another cycle is turned towards the best one.
+    """
+    value = {best.nodes[0]: 0.0}
+    reached = [best.nodes[0]]
+    for turning in (False, True):
+        for head in reached:  # grows while it is walked
+            for node in into[head]:
+                if node not in value and (turning or policy[node] == head):
+                    policy[node] = head
+                    value[node] = value[head] + weights[node][head] - best.mean
+                    reached.append(node)
+    return value

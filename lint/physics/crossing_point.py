@@ -20,6 +20,10 @@ _TRIVIAL: Final = 1e-9
 """Part of the thermal voltage below which a level is the trivial crossing at 0 V, missed by a rounding."""
 
 
+class NoCrossingError(DomainError):
+    """The device never gets ahead of the divided supply, so that nothing holds reset at any supply."""
+
+
 class Device(Protocol):
     """What a crossing asks of a device that carries a current."""
 
@@ -196,8 +200,8 @@ def divider_crossing_v(device: Device, *, series_ohm: float, divider_ratio: floa
     Valid: ideal divider that does not load the branch; a MOS device at more than about 0.1 V.
     Source: Newton's method on F(V_dev) = V_dev - V_dev(I(V_dev)). F is convex, since V_dev(I) is concave, so that from
         a start right of its last root the method falls on that root without passing it.
-    Raises: DomainError: R not above 0; a not in (0, 1); V_os not finite; no crossing, so that nothing holds reset at
-        any supply.
+    Raises: DomainError: R not above 0; a not in (0, 1); V_os not finite. NoCrossingError: nothing holds reset at any
+        supply.
     """
     require_positive(series_ohm=series_ohm, divider_ratio=divider_ratio)
     require_within(least=0.0, most=1.0 - 1e-12, divider_ratio=divider_ratio)
@@ -228,7 +232,7 @@ def divider_crossing_v(device: Device, *, series_ohm: float, divider_ratio: floa
             if trip_v > device.least_v:
                 return trip_v
             break
-    raise DomainError("the device never gets ahead of the divided supply: no crossing")
+    raise NoCrossingError("no crossing: the device never gets ahead of the divided supply")
 
 
 def branch_level_v(device: Device, *, series_ohm: float, current_a: float) -> float:

@@ -13,6 +13,7 @@ from tidegate.lint.description.place import Fault
 from tidegate.lint.engine import Review
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind, Level
+from tidegate.lint.reports.ladder import ladder_lines, ladders
 from tidegate.lint.reports.order import CAUTION, by_element, described, missing_facts, verdict
 from tidegate.lint.reports.plain_text import plain
 
@@ -59,6 +60,9 @@ def review_lines(review: Review, width: int, *, all_kinds: bool = False) -> Iter
                 yield from _judgement_lines(review, judgement, width)
     yield from _rule_faults(review, width)
     yield from _missing(review, width)
+    for ladder in ladders(review.loaded.description, review.graph):
+        yield _blank()
+        yield from map(_plain_line, ladder_lines(ladder, width=width))
     yield _blank()
     yield from _table(review)
     yield _blank()

@@ -21,7 +21,7 @@ DEEP = 50_000
 
 
 @given(graphs(most=9))
-@settings(max_examples=150, deadline=None)
+@settings(max_examples=80, deadline=None)
 def test_strong_components_are_those_of_networkx(successors: Successors) -> None:
     found = strong_components(successors)
     expected = {frozenset(component) for component in nx.strongly_connected_components(as_networkx(successors))}
@@ -34,7 +34,7 @@ def test_strong_components_are_those_of_networkx(successors: Successors) -> None
 
 
 @given(graphs(most=9))
-@settings(max_examples=100, deadline=None)
+@settings(max_examples=60, deadline=None)
 def test_loops_hold_every_node_on_a_cycle(successors: Successors) -> None:
     on_cycles = {node for cycle in nx.simple_cycles(as_networkx(successors)) for node in cycle}
     assert {node for loop in loops(successors) for node in loop} == on_cycles
@@ -66,7 +66,7 @@ def mean_of(cycle: tuple[str, ...], weights: Weights) -> float:
 
 
 @given(weighted())
-@settings(max_examples=200, deadline=None)
+@settings(max_examples=120, deadline=None)
 def test_greatest_mean_cycle_is_the_best_of_all_simple_cycles(weights: Weights) -> None:
     cycles = list(nx.simple_cycles(as_networkx({tail: list(heads) for tail, heads in weights.items()})))
     found = greatest_mean_cycle(weights)

@@ -34,7 +34,7 @@ def holds_together(path: tuple[Hop, ...], successors: Successors) -> bool:
 
 
 @given(graphs())
-@settings(max_examples=150, deadline=None)
+@settings(max_examples=80, deadline=None)
 def test_reach_is_that_of_networkx(successors: Successors) -> None:
     lengths = nx.single_source_shortest_path_length(as_networkx(successors), "n0")
     reach = Reach("n0", along(successors))
@@ -51,7 +51,7 @@ def test_reach_is_that_of_networkx(successors: Successors) -> None:
 
 
 @given(graphs())
-@settings(max_examples=150, deadline=None)
+@settings(max_examples=80, deadline=None)
 def test_loop_through_is_the_shortest_cycle_of_networkx(successors: Successors) -> None:
     cycles = [cycle for cycle in nx.simple_cycles(as_networkx(successors)) if "n0" in cycle]
     path = loop_through("n0", along(successors))
@@ -65,7 +65,7 @@ def test_loop_through_is_the_shortest_cycle_of_networkx(successors: Successors) 
 
 
 @given(graphs())
-@settings(max_examples=100, deadline=None)
+@settings(max_examples=60, deadline=None)
 def test_cut_takes_out_one_node(successors: Successors) -> None:
     for removed in list(successors)[1:]:
         less = as_networkx(successors)

@@ -13,9 +13,11 @@ from typing import Any, Final
 
 import yaml
 
+from tidegate.lint.case import Case
 from tidegate.lint.description.load import Loaded, load
 from tidegate.lint.engine import Catalogue, review
-from tidegate.lint.judgement import Judgement, Kind
+from tidegate.lint.graph.dependency import build
+from tidegate.lint.judgement import Judgement, Kind, Level
 from tidegate.lint.rule import Rule
 
 SOUND: Final = Path(__file__).parents[2] / "examples" / "sound.yaml"
@@ -76,6 +78,29 @@ def changed(patch_yaml: str, family: tuple[Rule, ...]) -> dict[tuple[str, str], 
     return {key: new.kind for key, new in after.items() if key not in before or before[key].kind is not new.kind}
 
 
+def case_of(patch_yaml: str, element: str) -> Case:
+    """A case on one element of the sound example with a patch laid over it, for what rules derive."""
+    description = patched(patch_yaml).description
+    graph = build(description)
+    return Case(subject=graph.elements[element], rule="", level=Level.NOTE, description=description, graph=graph)
+
+
+def both(*patches: str) -> str:
+    """One patch out of several, the later over the earlier; what a patch removes stays removed."""
+    joined: dict[str, Any] = {}
+    for patch in patches:
+        _join(joined, yaml.load(patch, _Loader) or {})
+    return json.dumps(joined)
+
+
+def _join(joined: dict[str, Any], patch: dict[str, Any]) -> None:
+    for key, value in patch.items():
+        if isinstance(value, dict) and isinstance(joined.get(key), dict) and not value.keys() <= _SPAN:
+            _join(joined[key], value)
+        else:
+            joined[key] = value
+
+
 def without(*facts: str) -> str:
     """A patch that removes facts, named by their paths with dots."""
     patch: dict[str, Any] = {}
@@ -95,7 +120,7 @@ def of_kind(judgements: Judgements, *kinds: Kind) -> Sequence[tuple[str, str]]:
 
 def _laid_over(data: Any, patch: Any) -> Any:
     """The data with a patch laid over them; the keys of a patch of a list are its indices."""
-    if not isinstance(patch, dict) or (patch.keys() <= _SPAN and None not in patch.values()):
+    if not isinstance(patch, dict) or (patch and patch.keys() <= _SPAN and None not in patch.values()):
         return patch
     joined = dict(enumerate(data)) if isinstance(data, list) else dict(data) if isinstance(data, dict) else {}
     for name, value in patch.items():

@@ -1,9 +1,499 @@
 from __future__ import annotations
 
-from tests.rules.sound import judged, of_kind
-from tidegate.lint.judgement import Kind
+import json
+import math
+
+import pytest
+
+from tests.rules.sound import both, changed, judged, of_kind, without
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.lint.rule import Rule
 from tidegate.rules.hysteresis import RULES
+
+FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
+NAMES = ("present", "sense", "covers_disturbance", "false_trips", "fits_window", "switches_complementary")
+ALL = (*NAMES, "feedback_in_time")
+
+# One comparator with round numbers: what it must cover is 10 mV of ripple + 30 mA through 0.4 ohm = 12 mV of droop
+# + 3 times 0.5 mV of noise.
+BENCH = """
+conditions: {coverage: 3, service_life: 10 yr, false_trips: 0.001, combine: worst_case}
+rails:
+  avdd:
+    nominal: 1.8 V
+    delivered: {min: 1.71 V, max: 1.89 V}
+    rise: {min: 50 us, max: 20 ms}
+    dip: {depth: 0 V, at: null}
+    ripple: {peak_to_peak: 10 mV, frequency: 1 MHz}
+    load_step: {max: 30 mA}
+    source_impedance: {max: 0.4 ohm}
+comparators:
+  uv:
+    trip: {rising: {min: 1.65 V, max: 1.7 V}, falling: {min: 1.6 V, max: 1.65 V}}
+    hysteresis: {amount: {min: 46 mV, max: 54 mV}, feedback_delay: 0.1 us}
+    noise: {rms: 0.5 mV, bandwidth: 1 MHz}
+    filter: null
+    reference: null
+  ov:
+    trip: {rising: {min: 1.95 V, max: 1.97 V}, falling: {min: 1.9 V, max: 1.92 V}}
+    hysteresis: {amount: {min: 40 mV, max: 48 mV}}
+    noise: {rms: 0.5 mV, bandwidth: 1 MHz}
+    filter: null
+    reference: null
+neighbours: {uv_beside_ov: null, core_return: null, switcher_on_ref: null}
+"""
+NEED_V = 0.010 + 0.030 * 0.4 + 3 * 0.0005
+
+
+def said(rule: str, *patches: str, of: str = "uv") -> Judgement:
+    return judged(both(BENCH, *patches), RULES)[f"hysteresis/{rule}", of]
+
+
+def amount(least: str, most: str, of: str = "uv") -> str:
+    return f"comparators: {{{of}: {{hysteresis: {{amount: {{min: {least}, max: {most}}}}}}}}}"
 
 
 def test_sound_example_keeps_every_rule() -> None:
-    assert of_kind(judged("", RULES), Kind.FAIL, Kind.OPEN, Kind.REVIEW) == []
+    judgements = judged("", RULES)
+    assert of_kind(judgements, FAIL, OPEN, Kind.REVIEW) == []
+    assert of_kind(judgements, NONE) == [("hysteresis/switches_complementary", "por")]
+    assert len(judgements) == len(RULES) * 4
+
+
+# What each example changes on the sound description, beside its own rule.
+ALSO = {
+    "present": dict.fromkeys(ALL[1:], NONE),
+    "covers_disturbance": {"false_trips": NONE},
+}
+
+
+@pytest.mark.parametrize("rule", RULES, ids=lambda rule: str(rule.id))
+def test_examples(rule: Rule) -> None:
+    name = rule.id.partition("/")[2]
+    also = {(f"hysteresis/{other}", "uv"): kind for other, kind in ALSO.get(name, {}).items()}
+    assert changed(rule.example.fails, RULES) == {(rule.id, "uv"): FAIL, **also}
+    assert changed(rule.example.holds, RULES) == {}
+
+
+# present
+
+
+def test_absent_hysteresis_says_how_much_is_needed() -> None:
+    found = said("present", "comparators: {uv: {hysteresis: none}}")
+    assert (found.kind, found.message) == (FAIL, "has no hysteresis")
+    assert found.mend == "add hysteresis of at least 23.5 mV"
+    assert found.at == "comparators.uv.hysteresis"
+    # A dip counts wherever it is: there are no levels yet that it could fall between.
+    deep = said(
+        "present",
+        "{comparators: {uv: {hysteresis: none, trip: null}}, rails: {avdd: {dip: {depth: 15 mV, at: 0.9 V}}}}",
+    )
+    assert deep.mend == "add hysteresis of at least 38.5 mV"
+
+
+def test_absent_hysteresis_is_found_whatever_else_is_missing() -> None:
+    bare = said(
+        "present", "comparators: {uv: {hysteresis: none}}", without("rails.avdd.ripple", "comparators.uv.noise")
+    )
+    assert bare.kind is FAIL
+    assert bare.mend == "add hysteresis that covers ripple, droop at release, neighbours and noise"
+
+
+@pytest.mark.parametrize(
+    "patch",
+    [
+        "comparators: {uv: {hysteresis: {amount: 0 V}}}",
+        "comparators: {uv: {hysteresis: {amount: null}, trip: {rising: 1.62 V, falling: 1.62 V}}}",
+        "comparators: {uv: {hysteresis: null, trip: {rising: 1.62 V, falling: 1.62 V}}}",
+    ],
+    ids=["amount_of_zero", "equal_levels", "equal_levels_alone"],
+)
+def test_hysteresis_of_zero_is_none(patch: str) -> None:
+    kinds = {rule: said(rule, patch).kind for rule in ALL}
+    assert kinds == {"present": FAIL, **dict.fromkeys(ALL[1:], NONE)}
+    assert said("sense", patch).message == "there is no hysteresis to judge (hysteresis/present says so)"
+
+
+def test_small_hysteresis_is_not_missing() -> None:
+    patch = amount("0 mV", "2 mV")
+    assert said("present", patch).kind is PASS
+    assert said("present", patch).message == "has hysteresis, 0 V to 2 mV"
+    assert said("covers_disturbance", patch).kind is FAIL
+
+
+# sense
+
+
+def test_negative_feedback_is_found_without_any_number() -> None:
+    found = said(
+        "sense", "comparators: {uv: {hysteresis: {feedback: negative}}}",
+        without("comparators.uv.hysteresis.amount", "comparators.uv.trip"),
+    )  # fmt: skip
+    assert found.kind is FAIL
+    assert found.message == "the feedback moves the level towards the supply: it oscillates at its level"
+    assert found.mend == "make the feedback positive: swap the two switches, or the two ends of the feedback"
+    assert found.at == "comparators.uv.hysteresis.feedback"
+
+
+def test_swapped_levels() -> None:
+    found = said("sense", "comparators: {uv: {trip: {rising: 1.61 V, falling: 1.66 V}}}")
+    assert found.kind is FAIL
+    assert found.message == "the rising level lies below the falling one (1.61 V rising, 1.66 V falling)"
+    assert found.mend == "place the rising level above the falling one by the hysteresis"
+    assert found.at == "comparators.uv.trip"
+
+
+OVERLAP = """
+comparators:
+  uv: {hysteresis: {amount: null}, trip: {rising: {min: 1.6 V, max: 1.7 V}, falling: {min: 1.54 V, max: 1.66 V}}}
+"""
+
+
+def test_tracked_levels_may_overlap() -> None:
+    # Low with low and high with high: 60 mV and 40 mV apart, although the ranges overlap by 60 mV.
+    assert said("present", OVERLAP).message == "has hysteresis, 40 mV to 60 mV"
+    assert said("sense", OVERLAP).kind is PASS
+    assert said("covers_disturbance", OVERLAP).kind is PASS
+
+
+def test_levels_that_move_apart_may_not_overlap() -> None:
+    patch = both(OVERLAP, "comparators: {uv: {tracked: false}}")
+    found = said("sense", patch)
+    assert found.kind is FAIL
+    assert found.message == "the rising level can lie below the falling one (60 mV below at the worst)"
+    others = {rule: said(rule, patch).kind for rule in ("covers_disturbance", "false_trips", "feedback_in_time")}
+    assert others == dict.fromkeys(others, NONE)
+    assert said("false_trips", patch).message == (
+        "its rising level can lie below its falling one (hysteresis/sense says so)"
+    )
+
+
+def test_overlap_cannot_be_judged_without_knowing_whether_levels_track() -> None:
+    found = said("sense", OVERLAP, without("comparators.uv.tracked"))
+    assert (found.kind, found.missing) == (OPEN, ("comparators.uv.tracked",))
+
+
+# covers_disturbance
+
+
+@pytest.mark.parametrize(("least", "kind"), [("23.4 mV", FAIL), ("23.5 mV", PASS), ("23.6 mV", PASS)])
+def test_covers_disturbance_at_its_limit(least: str, kind: Kind) -> None:
+    found = said("covers_disturbance", amount(least, "54 mV"))
+    assert found.kind is kind
+    assert found.measure is not None
+    assert found.measure.need == pytest.approx(NEED_V, rel=1e-12)
+    assert found.measure.margin == pytest.approx(float(least[:4]) * 1e-3 - NEED_V, abs=1e-12)
+
+
+def test_covers_disturbance_says_why_and_what_would_do() -> None:
+    found = said("covers_disturbance", amount("20 mV", "28 mV"))
+    assert found.message == "hysteresis 20 mV, at least 23.5 mV needed"
+    assert found.why == "10 mV ripple + 12 mV droop at release + 1.5 mV noise"
+    assert found.mend == "at least 23.5 mV of hysteresis; now 20 mV"
+    assert found.at == "comparators.uv.hysteresis.amount"
+    assert found.level == "error"
+
+
+def test_droop_at_release_moves_away_from_an_over_voltage_level() -> None:
+    assert said("covers_disturbance", of="ov").why == "10 mV ripple + 1.5 mV noise"
+
+
+# The levels lie in 1.6 V to 1.7 V; a dip of 15 mV counts where it can touch that band.
+@pytest.mark.parametrize(
+    ("at", "counts"),
+    [
+        ("{min: 1.5 V, max: 1.599 V}", False),
+        ("{min: 1.5 V, max: 1.6 V}", True),
+        ("{min: 1.714 V, max: 1.8 V}", True),
+        ("{min: 1.716 V, max: 1.8 V}", False),
+        ("{min: 0.9 V, max: 1.9 V}", True),
+        ("null", True),
+    ],
+)
+def test_a_dip_counts_where_it_can_fall_between_the_levels(at: str, counts: bool) -> None:
+    found = said("covers_disturbance", f"rails: {{avdd: {{dip: {{depth: 15 mV, at: {at}}}}}}}")
+    assert found.measure is not None
+    assert found.measure.need == pytest.approx(NEED_V + (0.015 if counts else 0.0), rel=1e-12)
+    assert ("15 mV dip of the ramp" in found.why) is counts
+
+
+def test_neighbours_count_all_at_once() -> None:
+    # 1 mA through 3 ohm at the rail, and 0.5 mA through 2 ohm behind a divider of 0.4: 3 mV + 2.5 mV.
+    pairs = """
+    comparators: {uv: {divider: {ratio: 0.4}}}
+    neighbours:
+      one: {kind: supply_impedance, aggressor: ov, victim: uv, at: rail, impedance: 3 ohm, current_step: 1 mA}
+      two: {kind: shared_return, aggressor: ov_out, victim: uv, at: input, impedance: 2 ohm, current_step: 0.5 mA}
+    """
+    found = said("covers_disturbance", pairs)
+    assert found.measure is not None
+    assert found.measure.need == pytest.approx(NEED_V + 0.003 + 0.0025, rel=1e-12)
+    assert found.why == "10 mV ripple + 12 mV droop at release + 5.5 mV neighbours + 1.5 mV noise"
+
+
+# false_trips
+
+
+# nu0 T exp(-k^2/2) trips in the life T at the distance of k sigma, nu0 = B/sqrt(3) (Rice, BSTJ 23 and 24): with k = 8
+# the noise needs 4 mV, beside 22 mV of ripple and droop.
+EIGHT_SIGMA = 1e6 / math.sqrt(3.0) * 10 * 365.25 * 86400 * math.exp(-32.0)
+
+
+@pytest.mark.parametrize(("least", "kind"), [("25.9 mV", FAIL), ("26 mV", PASS), ("26.1 mV", PASS)])
+def test_false_trips_at_its_limit(least: str, kind: Kind) -> None:
+    found = said("false_trips", json.dumps({"conditions": {"false_trips": EIGHT_SIGMA}}), amount(least, "54 mV"))
+    assert found.kind is kind
+    assert found.measure is not None
+    assert found.measure.need == pytest.approx(0.004, rel=1e-9)
+    assert found.measure.have == pytest.approx(float(least.split(maxsplit=1)[0]) * 1e-3 - 0.022, rel=1e-9)
+
+
+def test_false_trips_says_why_and_what_would_do() -> None:
+    found = said("false_trips", json.dumps({"conditions": {"false_trips": EIGHT_SIGMA}}), amount("25 mV", "54 mV"))
+    assert found.message == "the hysteresis leaves noise a distance of 3 mV, at least 4 mV needed"
+    assert found.why == "25 mV less 10 mV ripple + 12 mV droop at release; 500 uV r.m.s. of noise"
+    assert found.mend == "at least 26 mV of hysteresis; now 25 mV"
+
+
+def test_hysteresis_that_is_too_small_anyway_is_one_finding() -> None:
+    found = said("false_trips", amount("23.4 mV", "54 mV"))
+    assert found.kind is NONE
+    assert found.message == "the hysteresis does not cover what disturbs it (hysteresis/covers_disturbance)"
+    # Without the coverage the other rule is open, and this one speaks.
+    assert said("false_trips", amount("23.4 mV", "54 mV"), without("conditions.coverage")).kind is FAIL
+
+
+# fits_window: supply in service down to 1.71 V less half of 20 mV, up to 1.89 V and half of 20 mV
+
+
+RIPPLE = "rails: {avdd: {ripple: {peak_to_peak: 20 mV}}}"
+
+
+@pytest.mark.parametrize(("most", "kind"), [("1.699 V", PASS), ("1.7 V", PASS), ("1.701 V", FAIL)])
+def test_fits_window_at_its_limit(most: str, kind: Kind) -> None:
+    found = said("fits_window", RIPPLE, f"comparators: {{uv: {{trip: {{rising: {{min: 1.65 V, max: {most}}}}}}}}}")
+    assert found.kind is kind
+    assert found.measure is not None
+    assert found.measure.need == pytest.approx(0.054 + 1.7 - float(most[:-2]), rel=1e-9)
+
+
+@pytest.mark.parametrize(("least", "kind"), [("1.899 V", FAIL), ("1.9 V", PASS), ("1.901 V", PASS)])
+def test_fits_window_of_an_over_voltage_detector(least: str, kind: Kind) -> None:
+    patch = f"comparators: {{ov: {{trip: {{falling: {{min: {least}, max: 1.92 V}}}}}}}}"
+    found = said("fits_window", RIPPLE, patch, of="ov")
+    assert found.kind is kind
+    assert found.why == f"falling level down to {least}, supply in service up to 1.9 V"
+
+
+def test_fits_window_says_why_and_what_would_do() -> None:
+    found = said("fits_window", RIPPLE, "comparators: {uv: {trip: {rising: {min: 1.65 V, max: 1.72 V}}}}")
+    assert found.message == "greatest hysteresis 54 mV, at most 34 mV needed"
+    assert found.why == "rising level up to 1.72 V, supply in service down to 1.7 V"
+    assert found.mend == "at most 34 mV of hysteresis; now 54 mV"
+    high = "comparators: {uv: {trip: {rising: {min: 1.75 V, max: 1.77 V}, falling: {min: 1.7 V, max: 1.72 V}}}}"
+    assert said("fits_window", RIPPLE, high).mend == "a lower falling level: with this one none fits below 1.7 V"
+    low = "comparators: {ov: {trip: {rising: {min: 1.87 V, max: 1.9 V}, falling: {min: 1.82 V, max: 1.85 V}}}}"
+    assert (
+        said("fits_window", RIPPLE, low, of="ov").mend == "a higher rising level: with this one none fits above 1.9 V"
+    )
+
+
+def test_a_bounded_release_level_is_not_trip_plus_hysteresis_again() -> None:
+    # Released by 1.69 V at the latest, whatever falling level and hysteresis add up to (1.65 V + 54 mV).
+    found = said("fits_window", RIPPLE, "comparators: {uv: {trip: {rising: {max: 1.69 V}}}}")
+    assert found.kind is PASS
+    assert found.why == "rising level up to 1.69 V, supply in service down to 1.7 V"
+    # Not stated at all, it is their sum.
+    found = said("fits_window", RIPPLE, "comparators: {uv: {trip: {rising: null}}}")
+    assert found.why == "rising level up to 1.704 V, supply in service down to 1.7 V"
+
+
+# switches_complementary
+
+
+def switches(*pairs: str) -> str:
+    entries = ", ".join(f"{{turned_by: {by}, closed_when: {when}}}" for by, when in (pair.split() for pair in pairs))
+    return f"comparators: {{ov: {{hysteresis: {{switches: [{entries}]}}}}}}"
+
+
+MEND = "two switches turned by one output, one closed when it is high and one when it is low"
+
+
+@pytest.mark.parametrize(
+    ("pairs", "message"),
+    [
+        (("ov high", "ov high"), "both switches are closed when ov is high"),
+        (("ov low", "ov low"), "both switches are closed when ov is low"),
+        (("ov high", "uv low"), "its two switches are turned by ov and uv: both can be open, or closed"),
+        (("ov high",), "has 1 switches for two levels"),
+        (("ov high", "ov low", "ov high"), "has 3 switches for two levels"),
+        # ov_out inverts ov: its low is the high of ov.
+        (("ov high", "ov_out low"), "both switches are closed when ov is high"),
+        (("ov_out high", "ov_out high"), "both switches are closed when ov is low"),
+        # A latch remembers: it is not the signal that sets it.
+        (("ov high", "ov_latch low"), "its two switches are turned by ov and ov_latch: both can be open, or closed"),
+        # gather has several drivers.
+        (("uv high", "gather low"), "its two switches are turned by uv and gather: both can be open, or closed"),
+    ],
+)
+def test_switches_that_do_not_take_turns(pairs: tuple[str, ...], message: str) -> None:
+    found = said("switches_complementary", switches(*pairs), of="ov")
+    assert (found.kind, found.message, found.mend) == (FAIL, message, MEND)
+
+
+@pytest.mark.parametrize(
+    ("pairs", "message"),
+    [
+        (("ov low", "ov high"), "its switches take turns with ov"),
+        (("ov high", "ov_out high"), "its switches take turns with ov and ov_out"),
+        (("ov_out low", "ov low"), "its switches take turns with ov_out and ov"),
+    ],
+)
+def test_switches_that_take_turns(pairs: tuple[str, ...], message: str) -> None:
+    found = said("switches_complementary", switches(*pairs), of="ov")
+    assert (found.kind, found.message) == (PASS, message)
+
+
+def test_switches_are_not_asked_for_where_there_are_none() -> None:
+    found = said("switches_complementary", "comparators: {uv: {hysteresis: {made_by: schmitt_stage}}}")
+    assert (found.kind, found.message) == (NONE, "its hysteresis is made by schmitt_stage, without switches")
+
+
+@pytest.mark.parametrize(
+    ("patch", "missing"),
+    [
+        (without("comparators.ov.hysteresis.made_by"), ("comparators.ov.hysteresis.made_by",)),
+        (without("comparators.ov.hysteresis.switches"), ("comparators.ov.hysteresis.switches",)),
+        (
+            without(
+                "comparators.ov.hysteresis.switches.0.turned_by", "comparators.ov.hysteresis.switches.1.closed_when"
+            ),
+            ("comparators.ov.hysteresis.switches.0.turned_by", "comparators.ov.hysteresis.switches.1.closed_when"),
+        ),
+        (
+            both(switches("ov high", "ov_out high"), without("output_stages.ov_out.inverting")),
+            ("output_stages.ov_out.inverting",),
+        ),
+        (
+            both(switches("ov high", "ov_out high"), without("output_stages.ov_out.kind")),
+            ("output_stages.ov_out.kind",),
+        ),
+    ],
+)
+def test_switches_open(patch: str, missing: tuple[str, ...]) -> None:
+    found = said("switches_complementary", patch, of="ov")
+    assert (found.kind, found.missing) == (OPEN, missing)
+
+
+# feedback_in_time: 1.8 V in 50 us is 36 mV/us
+
+
+@pytest.mark.parametrize(("delay", "kind"), [("0.99 us", PASS), ("1 us", PASS), ("1.01 us", FAIL)])
+def test_feedback_in_time_at_its_limit(delay: str, kind: Kind) -> None:
+    found = said(
+        "feedback_in_time", amount("36 mV", "54 mV"),
+        f"comparators: {{uv: {{hysteresis: {{feedback_delay: {delay}}}}}}}",
+    )  # fmt: skip
+    assert found.kind is kind
+    assert found.measure is not None
+    assert found.measure.have == pytest.approx(36e3 * float(delay[:-3]) * 1e-6, rel=1e-12)
+
+
+def test_feedback_in_time_says_why_and_what_would_do() -> None:
+    found = said("feedback_in_time", "comparators: {uv: {hysteresis: {feedback_delay: 2 us}}}")
+    assert found.message == "until the level has moved, the supply travels 72 mV, at most 46 mV needed"
+    assert found.why == "2 us at 36 V/ms, the fastest ramp"
+    assert found.mend == "a feedback delay of at most 1.27 us; now 2 us"  # 46 mV at 36 mV/us, rounded down
+    assert (found.level, found.at) == ("warning", "comparators.uv.hysteresis.feedback_delay")
+
+
+def test_the_steepest_part_of_the_ripple_can_be_faster_than_the_ramp() -> None:
+    # (Vpp/2) sin(2 pi f t) is steepest with pi f Vpp: 10 mV at 10 MHz give 314 mV/us.
+    found = said("feedback_in_time", "rails: {avdd: {ripple: {frequency: 10 MHz}}}")
+    assert found.measure is not None
+    assert found.measure.have == pytest.approx(math.pi * 10e6 * 10e-3 * 0.1e-6, rel=1e-12)
+    assert found.why.endswith("the fastest ripple")
+
+
+def test_no_ripple_has_no_frequency() -> None:
+    found = said(
+        "feedback_in_time", "rails: {avdd: {ripple: {peak_to_peak: 0 V}}}", without("rails.avdd.ripple.frequency")
+    )
+    assert found.kind is PASS
+
+
+# Missing facts: each removed alone, and which rules become open, naming it
+
+
+H, N = "comparators.uv.hysteresis", "comparators.uv.noise"
+R = "rails.avdd"
+TOO_LITTLE: tuple[tuple[str, dict[str, tuple[str, ...]]], ...] = (
+    (f"{R}.ripple", {
+        "covers_disturbance": (f"{R}.ripple.peak_to_peak",), "false_trips": (f"{R}.ripple.peak_to_peak",),
+        "fits_window": (f"{R}.ripple.peak_to_peak",),
+        "feedback_in_time": (f"{R}.ripple.peak_to_peak", f"{R}.ripple.frequency"),
+    }),
+    (f"{R}.ripple.frequency", {"feedback_in_time": (f"{R}.ripple.frequency",)}),
+    (f"{R}.dip", {"covers_disturbance": (f"{R}.dip.depth",), "false_trips": (f"{R}.dip.depth",)}),
+    (f"{R}.load_step", {"covers_disturbance": (f"{R}.load_step",), "false_trips": (f"{R}.load_step",)}),
+    (f"{R}.source_impedance", {
+        "covers_disturbance": (f"{R}.source_impedance",), "false_trips": (f"{R}.source_impedance",),
+    }),
+    (f"{R}.delivered", {"fits_window": (f"{R}.delivered",)}),
+    (f"{R}.nominal", {"feedback_in_time": (f"{R}.nominal",)}),
+    (f"{R}.rise", {"feedback_in_time": (f"{R}.rise",)}),
+    (N, {"covers_disturbance": (f"{N}.rms",), "false_trips": (f"{N}.rms", f"{N}.bandwidth")}),
+    (f"{N}.bandwidth", {"false_trips": (f"{N}.bandwidth",)}),
+    ("conditions.coverage", {"covers_disturbance": ("conditions.coverage",)}),
+    ("conditions.service_life", {"false_trips": ("conditions.service_life",)}),
+    ("conditions.false_trips", {"false_trips": ("conditions.false_trips",)}),
+    (f"{H}.feedback", {"sense": (f"{H}.feedback",)}),
+    (f"{H}.feedback_delay", {"feedback_in_time": (f"{H}.feedback_delay",)}),
+    (f"{H}.made_by", {"switches_complementary": (f"{H}.made_by",)}),
+    (f"{H}.amount", {}),  # both levels are given, and track
+    ("comparators.uv.trip", {"fits_window": ("comparators.uv.trip.rising",)}),
+    ("comparators.uv.trip.rising", {}),  # falling level and hysteresis are given
+    ("comparators.uv.tracked", {}),  # the amount is given
+)  # fmt: skip
+
+
+@pytest.mark.parametrize(("fact", "rules"), TOO_LITTLE, ids=[fact for fact, _ in TOO_LITTLE])
+def test_each_missing_fact_is_named(fact: str, rules: dict[str, tuple[str, ...]]) -> None:
+    before, after = judged(BENCH, RULES), judged(both(BENCH, without(fact)), RULES)
+    opened = {
+        key[0].partition("/")[2]: found.missing for key, found in after.items() if key[1] == "uv" and found.missing
+    }
+    assert opened == rules
+    unmoved = [name for name in ALL if name not in rules and (f"hysteresis/{name}", "uv") in before]
+    assert all(after[f"hysteresis/{name}", "uv"].kind is before[f"hysteresis/{name}", "uv"].kind for name in unmoved)
+
+
+def test_all_that_is_missing_is_named_at_once() -> None:
+    found = said(
+        "covers_disturbance",
+        """
+        neighbours:
+          one: {kind: supply_impedance, aggressor: ov, victim: uv}
+          two: {kind: capacitance, aggressor: ov, victim: uv, at: input}
+        """,
+        without(
+            "rails.avdd.ripple", "rails.avdd.dip", "rails.avdd.load_step", "conditions.coverage",
+            "comparators.uv.noise", "comparators.uv.hysteresis.amount", "comparators.uv.trip", "comparators.uv.divider",
+        ),
+    )  # fmt: skip
+    assert found.kind is OPEN
+    assert found.missing == (
+        "conditions.coverage", "comparators.uv.noise.rms",
+        "rails.avdd.ripple.peak_to_peak", "rails.avdd.dip.depth", "rails.avdd.load_step",
+        "neighbours.one.at", "neighbours.one.current_step", "neighbours.one.impedance",
+        "neighbours.two.step", "neighbours.two.edge", "neighbours.two.node.resistance", "neighbours.two.capacitance",
+        "neighbours.two.node.capacitance", "comparators.uv.hysteresis.amount",
+    )  # fmt: skip
+    assert found.message.startswith("cannot be judged without conditions.coverage, ")
+
+
+def test_one_end_of_a_range_is_not_the_other() -> None:
+    found = said("covers_disturbance", "comparators: {uv: {hysteresis: {amount: {max: 54 mV}}}}")
+    assert (found.kind, found.missing) == (OPEN, ("comparators.uv.hysteresis.amount.min",))
+    found = said("covers_disturbance", "rails: {avdd: {load_step: {typ: 20 mA}}}")
+    assert (found.kind, found.missing) == (OPEN, ("rails.avdd.load_step.max",))

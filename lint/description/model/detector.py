@@ -7,6 +7,7 @@ from typing import ClassVar, Literal
 import msgspec
 
 from tidegate.lint.description.model.part import Element, Part
+from tidegate.lint.description.model.timing import Timing
 from tidegate.lint.quantity import (
     Capacitance,
     Charge,
@@ -51,6 +52,7 @@ class Reference(Element, frozen=True, kw_only=True):
     self_biased: bool | None = None
     start_up: StartUp | Literal["none"] | None = None
     gated_by: str | None = None
+    resistance: Resistance | None = None
     consumes: Current | None = None
     note: str | None = None
 
@@ -69,6 +71,7 @@ class Bias(Element, frozen=True, kw_only=True):
     leans_on: tuple[str, ...] | None = None
     start_up: StartUp | Literal["none"] | None = None
     gated_by: str | None = None
+    resistance: Resistance | None = None
     consumes: Current | None = None
     note: str | None = None
 
@@ -163,6 +166,7 @@ class Comparator(Element, frozen=True, kw_only=True):
     works_to: Voltage | None = None
     delay: Duration | None = None
     filter: Duration | None = None
+    timing: Timing | None = None
     sampling: Duration | None = None
     noise: Noise | None = None
     kick: Charge | None = None
@@ -172,5 +176,6 @@ class Comparator(Element, frozen=True, kw_only=True):
     rearms_below: Voltage | None = None
     output: Literal["level", "pulse"] | None = None
     pulse: Duration | None = None
+    undecided: Literal["asserts", "releases", "undefined"] | None = None
     consumes: Current | None = None
     note: str | None = None

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import ClassVar, Literal
 
 from tidegate.lint.description.model.part import Element, Part
+from tidegate.lint.description.model.timing import Timing
 from tidegate.lint.quantity import (
     Capacitance,
     Charge,
@@ -46,6 +47,14 @@ class OutputLine(Part, frozen=True, kw_only=True):
     note: str | None = None
 
 
+class Discharge(Part, frozen=True, kw_only=True):
+    """Discharge."""
+
+    within: Duration | None = None
+    by: str | None = None
+    note: str | None = None
+
+
 class OutputStage(Element, frozen=True, kw_only=True):
     """Output stage."""
 
@@ -71,6 +80,9 @@ class OutputStage(Element, frozen=True, kw_only=True):
     dwell: Duration | None = None
     edges_per_cycle: float | None = None
     delay: Duration | None = None
+    release_delay: Duration | None = None
+    discharge: Discharge | Literal["none"] | None = None
+    timing: Timing | None = None
     gated_by: str | None = None
     consumes: Current | None = None
     note: str | None = None

@@ -1,0 +1,18 @@
+"""Components that make a time."""
+
+from __future__ import annotations
+
+from tidegate.lint.description.model.part import Part
+from tidegate.lint.quantity import Capacitance, Current, Duration, Resistance, Voltage
+
+
+class Timing(Part, frozen=True, kw_only=True):
+    """Timing."""
+
+    resistance: Resistance | None = None
+    current: Current | None = None
+    capacitance: Capacitance | None = None
+    threshold: Voltage | None = None
+    count: float | None = None
+    period: Duration | None = None
+    note: str | None = None

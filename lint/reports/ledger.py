@@ -1,0 +1,113 @@
+"""The margin ledger: every judgement with a number, least first in terms that can be compared."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import dataclass
+from typing import Final
+
+from tidegate.lint.judgement import Judgement, Kind, Measure
+from tidegate.lint.quantity import show_apart
+from tidegate.lint.reports.plain_text import plain
+
+_BLOCKS: Final = "▁▂▃▄▅▆▇█"
+_ASCII_BLOCKS: Final = ".:-=+*#@"
+_BINS: Final = ((0.0, "below 0"), (0.01, "1 %"), (0.03, "3 %"), (0.1, "10 %"), (0.3, "30 %"), (1.0, "100 %"))
+"""Upper ends of the classes of relative slack; the first holds what is below 0, another one what is above the last."""
+
+_LESS: Final = 1e-12
+
+
+@dataclass(frozen=True, slots=True)
+class Entry:
+    """A judgement with its measure, and the margin as a share of what is needed."""
+
+    judgement: Judgement
+    measure: Measure
+    slack: float
+
+
+def entries(judgements: Iterable[Judgement], *, element: str | None, family: str | None) -> list[Entry]:
+    """The judgements that have a number, least slack first; of one element, of one family, where these are named."""
+    found = [
+        Entry(judgement, judgement.measure, relative_slack(judgement.measure))
+        for judgement in judgements
+        if judgement.measure is not None
+        and element in (None, judgement.subject)
+        and family in (None, judgement.rule.partition("/")[0])
+    ]
+    return sorted(found, key=lambda entry: (entry.slack, entry.judgement.rule, entry.judgement.subject))
+
+
+def relative_slack(measure: Measure) -> float:
+    """The margin as a share of the need; of what is there, where nothing is needed; unlimited where either is."""
+    margin = measure.margin
+    if margin == 0.0:
+        return 0.0
+    scale = abs(measure.need) if measure.need != 0.0 and math.isfinite(measure.need) else abs(measure.have)
+    return margin / scale if math.isfinite(margin) and scale > 0.0 else math.copysign(math.inf, margin)
+
+
+def histogram(found: Sequence[Entry], *, unicode: bool) -> str:
+    """How many judgements have how much slack, in one line."""
+    counts = [0] * (len(_BINS) + 1)
+    for entry in found:
+        counts[_bin(entry.slack)] += 1
+    blocks, most = (_BLOCKS if unicode else _ASCII_BLOCKS), max(counts)
+    words = [f"{'' if number == 0 else '<'}{word}" for number, (_, word) in enumerate(_BINS)] + ["more"]
+    cells = []
+    for word, count in zip(words, counts, strict=True):
+        bar = blocks[math.ceil(count / most * len(blocks)) - 1] if count else ""
+        cells.append(f"{word.replace(' ', '')} {bar}{count}")
+    return f"slack  {'  '.join(cells)}".replace("below0", "<0")
+
+
+def _bin(slack: float) -> int:
+    """The class of a slack; what is exactly 0 is kept, and stands in the class above."""
+    if slack < -_LESS:
+        return 0
+    return next((number for number, (end, _) in enumerate(_BINS) if number and slack < end), len(_BINS))
+
+
+def ledger_lines(found: Sequence[Entry], *, width: int) -> Iterator[str]:
+    """A line for each judgement, its rule on the next one where there is no room."""
+    rows = [_cells(entry) for entry in found]
+    heads = ("slack", "margin", "have", "need")
+    widths = [max(len(head), *(len(row[i]) for row in rows)) for i, head in enumerate(heads)] if rows else []
+    if rows:
+        yield _aligned(heads, widths, "of")
+    for entry, row in zip(found, rows, strict=True):
+        judgement = entry.judgement
+        kind = "waived" if judgement.waiver else "review" if judgement.kind is Kind.REVIEW else ""
+        of = f"{judgement.subject} {judgement.rule}{f' ({kind})' if kind else ''}"
+        line = _aligned(row, widths, plain(of))
+        if len(line) <= width:
+            yield line
+        else:
+            yield _aligned(row, widths, plain(judgement.subject))
+            yield f"{'':{sum(widths) + 2 * len(widths)}}{plain(of.partition(' ')[2])}".rstrip()
+
+
+def _aligned(cells: Sequence[str], widths: Sequence[int], last: str) -> str:
+    slack, margin, have, need = (
+        cell.rjust(size) if number < 3 else cell.ljust(size)
+        for number, (cell, size) in enumerate(zip(cells, widths, strict=True))
+    )
+    return f"{slack}  {margin}  {have}  {need}  {last}".rstrip()
+
+
+def _cells(entry: Entry) -> tuple[str, str, str, str]:
+    measure = entry.measure
+    have, need = show_apart(measure.have, measure.need, measure.dimension)
+    return _percent(entry.slack), measure.margin_text(), have, f"{measure.relation.value} {need}"
+
+
+def _percent(slack: float) -> str:
+    if math.isinf(slack):
+        return "no end" if slack > 0 else "-no end"
+    percent = 100.0 * slack
+    if abs(percent) >= 999.5:
+        return f"{'-' if percent < 0 else '+'}>999 %"
+    digits = 0 if abs(percent) >= 99.5 else 1
+    return f"{percent:+.{digits}f} %".replace("-0.0 %", "-<0.1 %" if percent < 0 else "+0.0 %")

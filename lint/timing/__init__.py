@@ -1,0 +1,1 @@
+"""Start-up, dips and power-down: when each element of the graph is held, unknown, valid, asserting or releasing."""

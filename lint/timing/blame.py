@@ -1,0 +1,86 @@
+"""Which stage is to blame for an unknown level, and what it waits for."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from tidegate.lint.graph.edge import EdgeKind, Hop, Path
+from tidegate.lint.timing.evaluate import LoadState
+from tidegate.lint.timing.interval import FOREVER_S, is_in
+from tidegate.lint.timing.parts import ComparatorPart, ResetPart, SourcePart, StagePart
+from tidegate.lint.timing.state import Decision, On
+from tidegate.lint.timing.supply import Supply
+from tidegate.lint.timing.timeline import Timeline, Timelines
+
+
+@dataclass(frozen=True, slots=True)
+class Blame:
+    """An element that is unknown by itself, why it is, and the way to it from where it was noticed."""
+
+    element: str
+    held_by_nothing: bool
+    """Whether it is a stage that is not alive and has no hold; else a detector that cannot decide."""
+    waits_for: str
+    """What it waits for, in words."""
+    path: Path
+
+
+def blame_for_unknown(lines: Timelines, line: Timeline, start: str, at_s: float) -> Blame:
+    """The element that makes a net unknown at a time: against the flow, the first that is so by itself."""
+    hops = [Hop(start, "")]
+    seen = {start}
+    here = start
+    while True:
+        part = lines.read.parts.get(here)
+        if isinstance(part, ComparatorPart):
+            return Blame(here, False, _waits_for(lines, line, part, at_s), tuple(hops))
+        if isinstance(part, StagePart) and part.hold == "none" and _is_down(lines, line, part, at_s):
+            return Blame(here, True, _waits_for(lines, line, part, at_s), tuple(hops))
+        drivers = part.driven_by if isinstance(part, StagePart | ResetPart) else ()
+        unknown = [name for name in drivers if name not in seen and _is_unknown(line, name, at_s)]
+        if not unknown:
+            return Blame(here, False, "its input", tuple(hops))
+        here = unknown[0]
+        seen.add(here)
+        hops.append(Hop(here, EdgeKind.DRIVES.backwards))
+
+
+def _is_unknown(line: Timeline, name: str, at_s: float) -> bool:
+    """Whether an element may be unknown at a time, or has just been (the time a stage takes lies between)."""
+    state = line.states.get(name)
+    if not isinstance(state, Decision):
+        return False
+    times = state.may_be_unknown
+    return is_in(times, at_s) or any(start <= at_s for start, _ in times)
+
+
+def _is_down(lines: Timelines, line: Timeline, part: StagePart, at_s: float) -> bool:
+    return any(True for _ in _down(lines, line, part, at_s))
+
+
+def _waits_for(lines: Timelines, line: Timeline, part: StagePart | ComparatorPart, at_s: float) -> str:
+    """What an element waits for at a time, in words, the deepest cause first."""
+    return next(iter(_down(lines, line, part, at_s)), "its answer")
+
+
+def _down(
+    lines: Timelines, line: Timeline, part: StagePart | ComparatorPart | SourcePart, at_s: float
+) -> Iterable[str]:
+    """What of the needs of an element may not be up at a time."""
+    supply = line.states.get(part.rail)
+    if isinstance(supply, Supply):
+        level_v = max(part.works_from.most, 1e-9)
+        if level_v < FOREVER_S and is_in(supply.may_be_low(rising_v=level_v, falling_v=level_v), at_s):
+            yield f"{part.rail} at {level_v:.4g} V"
+    for name in (part.domain, *part.needs):
+        state = line.states.get(name)
+        off = None
+        if isinstance(state, On):
+            off = state.may_be_off
+        elif isinstance(state, LoadState):
+            off = state.running.may_be_off
+        elif isinstance(state, Decision):
+            off = state.may_assert
+        if off is not None and is_in(off, at_s):
+            yield name

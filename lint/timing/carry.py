@@ -1,0 +1,98 @@
+"""What an output stage makes of its input over time: delay, release delay, latch, and the hold while it is not alive."""
+
+from __future__ import annotations
+
+from typing import NamedTuple
+
+from tidegate.lint.timing.interval import NEVER, Times, both, delayed, either, joined, outside
+from tidegate.lint.timing.parts import StagePart
+from tidegate.lint.timing.state import Decision, On
+
+
+def output_of(part: StagePart, *, given: Decision, alive: On) -> Decision:
+    """The output of a stage: what it makes of its input while it is alive, else its hold, else nothing known."""
+    driven = _Driven(given.may_assert, given.may_release, given.may_be_unknown)
+    if part.latches:
+        driven = _latched(part, driven, alive)
+    if part.release_delay.most > 0.0:
+        driven = _released_late(part, driven, alive)
+    asserts = _through(driven.asserts, part, alive)
+    releases = _through(driven.releases, part, alive)
+    unknown = _through(driven.unknown, part, alive, least_s=0.0)
+    held: Times = NEVER
+    if alive.may_be_off:
+        if part.hold == "asserts":
+            held = alive.may_be_off
+            asserts = either(asserts, held)
+        elif part.hold == "releases":
+            releases = either(releases, alive.may_be_off)
+        else:
+            unknown = either(unknown, alive.may_be_off)
+    return Decision(asserts, releases, unknown, held)
+
+
+def _through(times: Times, part: StagePart, alive: On, *, least_s: float | None = None) -> Times:
+    """Times of the input at the output; a stage that comes alive takes its input as if it had been so before."""
+    least_s = part.delay.least if least_s is None else least_s
+    seen = both(times, alive.may_be_on)
+    if not seen:
+        return NEVER
+    begins = {start for start, _ in alive.may_be_on}
+    spans = [(start if start in begins else start + least_s, end + part.delay.most) for start, end in seen]
+    return both(joined(spans), alive.may_be_on)
+
+
+class _Driven(NamedTuple):
+    asserts: Times
+    releases: Times
+    unknown: Times
+
+
+def _released_late(part: StagePart, given: _Driven, alive: On) -> _Driven:
+    """The input, released only once it has been free of assertion for the release delay.
+
+    An unknown input may run the delay down or set it back.  After an assertion too short to discharge what makes the
+    delay, any part of it may be left, none at all included.
+    """
+    least_s, most_s = part.release_delay
+    free = both(either(given.releases, given.unknown), alive.may_be_on)
+    through: list[tuple[float, float]] = []
+    before_s = -float("inf")
+    for start, end in free:
+        begins_s = start + (least_s if start - before_s >= part.discharge_s or before_s == -float("inf") else 0.0)
+        if begins_s < end:
+            through.append((begins_s, end))
+        before_s = end
+    run_down = tuple(through)
+    asserts = delayed(either(given.asserts, given.unknown), least_s=0.0, most_s=most_s)
+    not_alive = delayed(alive.may_be_off, least_s=0.0, most_s=most_s)
+    return _Driven(either(asserts, not_alive), both(given.releases, run_down), both(given.unknown, run_down))
+
+
+def _latched(part: StagePart, given: _Driven, alive: On) -> _Driven:
+    """A latch that remembers an assertion until its supply goes.
+
+    One that asserts at power-up lets its drivers release it and remembers from then on as they do: it follows them.
+    """
+    if part.power_up == "asserts":
+        return given
+    asserts: Times = NEVER
+    releases: Times = NEVER
+    unknown: Times = NEVER
+    surely_set = outside(either(given.releases, given.unknown))
+    for start, end in alive.may_be_on:
+        span: Times = ((start, end),)
+        asserts = either(asserts, _from_first(both(given.asserts, span), end))
+        until_set = outside(_from_first(both(surely_set, span), end))
+        at_first = both(span, until_set)
+        if part.power_up == "releases":
+            releases = either(releases, at_first)
+            unknown = either(unknown, both(_from_first(both(given.unknown, span), end), until_set))
+        else:
+            unknown = either(unknown, at_first)
+    return _Driven(asserts, releases, unknown)
+
+
+def _from_first(times: Times, end_s: float) -> Times:
+    """From the first time on, up to an end."""
+    return ((times[0][0], end_s),) if times else NEVER

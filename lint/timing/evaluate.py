@@ -1,0 +1,319 @@
+"""Times every element in one scenario, each after what it leans on."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass, fields, replace
+from typing import Final, NamedTuple, TypeAlias
+
+from tidegate.lint.timing.carry import output_of
+from tidegate.lint.timing.detect import decision_of
+from tidegate.lint.timing.interval import FOREVER_S, NEVER, Times, both, either
+from tidegate.lint.timing.order import in_order
+from tidegate.lint.timing.parts import (
+    Bounds,
+    ComparatorPart,
+    DomainPart,
+    LoadPart,
+    RailPart,
+    ResetPart,
+    SourcePart,
+    StagePart,
+    TimedPart,
+)
+from tidegate.lint.timing.ramps import RailRamp
+from tidegate.lint.timing.scenario import Scenario
+from tidegate.lint.timing.state import (
+    ALWAYS_ON,
+    ANY_DECISION,
+    ANYTHING,
+    ASSERTED,
+    NEVER_ON,
+    RELEASED,
+    Decision,
+    On,
+    all_agree,
+    all_on,
+    any_asserts,
+    lets_go,
+    settled,
+)
+from tidegate.lint.timing.supply import GivenSupply, MadeSupply, Ramp, Supply
+
+_ABOVE_NOTHING_V: Final = 1e-9
+"""A supply of 0 V feeds nothing, not even what may work from 0 V on."""
+
+
+class LoadState(NamedTuple):
+    """What a load may be at each time."""
+
+    fed: On
+    """Every rail is where the load works, whatever its references do."""
+    ready: On
+    """Fed, its references and all else it needs up, and its time to be ready over."""
+    reset: Decision
+    """Reset by any net that guards it."""
+    running: On
+    """Fed, with what it needs up, and released."""
+
+
+State: TypeAlias = Supply | On | Decision | LoadState
+States: TypeAlias = Mapping[str, State]
+
+
+@dataclass(frozen=True, slots=True)
+class Network:
+    """All that can be timed: parts, the order in which they are, and the ramps of rails."""
+
+    parts: Mapping[str, TimedPart]
+    order: Sequence[tuple[Sequence[str], bool]]
+    ramps: Mapping[str, RailRamp]
+
+    def among(self, names: Iterable[str]) -> Network:
+        """The same network, with the order of some elements alone."""
+        wanted = set(names)
+        order = [(kept, loop) for group, loop in self.order if (kept := [name for name in group if name in wanted])]
+        return Network(self.parts, order, self.ramps)
+
+    def pinned(self, ends: Mapping[str, bool]) -> Network:
+        """The same network with the tolerances of some elements at their least (False) or greatest (True) ends."""
+        parts = dict(self.parts)
+        for name, greatest in ends.items():
+            parts[name] = _at_end(parts[name], greatest)
+        return Network(parts, self.order, self.ramps)
+
+    def without_spread_from_nothing(self, names: Iterable[str]) -> Network:
+        """The same network with each least value of some elements that stands at 0 as great as the greatest."""
+        parts = dict(self.parts)
+        for name in names:
+            if name in parts:
+                parts[name] = _without_spread_from_nothing(parts[name])
+        return Network(parts, self.order, self.ramps)
+
+
+def network(parts: Mapping[str, TimedPart], ramps: Mapping[str, RailRamp]) -> Network:
+    """The network of some parts."""
+    return Network(parts, in_order(parts), ramps)
+
+
+def _at_end(part: TimedPart, greatest: bool) -> TimedPart:
+    """A part with each quantity at one end; what is not finite stays as it is."""
+    changes = {}
+    for member in fields(part):
+        value = getattr(part, member.name)
+        if isinstance(value, Bounds):
+            end = value.most if greatest and value.most < FOREVER_S else value.least
+            changes[member.name] = Bounds(end, end)
+    return replace(part, **changes)
+
+
+def _without_spread_from_nothing(part: TimedPart) -> TimedPart:
+    changes = {}
+    for member in fields(part):
+        value = getattr(part, member.name)
+        if isinstance(value, Bounds) and value.least == 0.0 and value.most < FOREVER_S:
+            changes[member.name] = Bounds(value.most, value.most)
+    return replace(part, **changes)
+
+
+def evaluate(net: Network, scenario: Scenario, known: States | None = None) -> dict[str, State]:
+    """The state of every element in a scenario; ``known`` is taken for what the network does not order anew."""
+    states: dict[str, State] = dict(known or {})
+    times = _Timing(net, scenario, states)
+    for group, leans_on_itself in net.order:
+        if not leans_on_itself:
+            name = group[0]
+            states[name] = times.state(net.parts[name])
+        else:
+            times.settle_loop(group)
+    return states
+
+
+class _Timing:
+    """One scenario in the making."""
+
+    def __init__(self, net: Network, scenario: Scenario, states: dict[str, State]) -> None:
+        self.net = net
+        self.scenario = scenario
+        self.states = states
+
+    def settle_loop(self, group: Sequence[str]) -> None:
+        """What leans on itself: nothing is on at first, and what then follows is followed until it stays the same."""
+        for name in group:
+            self.states[name] = _at_rest(self.net.parts[name])
+        for _ in range(2 * len(group) + 2):
+            before = [_comparable(self.states[name]) for name in group]
+            for name in group:
+                self.states[name] = self.state(self.net.parts[name])
+            if before == [_comparable(self.states[name]) for name in group]:
+                return
+        for name in group:
+            self.states[name] = _anything(self.net.parts[name])
+
+    def state(self, part: TimedPart) -> State:
+        """The state of one element, from those of what it leans on."""
+        match part:
+            case RailPart():
+                return self._rail(part)
+            case DomainPart():
+                return self._all_gates(part.switched_by)
+            case SourcePart():
+                return self._source(part)
+            case ComparatorPart():
+                return self._comparator(part)
+            case StagePart():
+                return self._stage(part)
+            case ResetPart():
+                return self._combined(part)
+            case LoadPart():
+                return self._load(part)
+
+    def _rail(self, part: RailPart) -> State:
+        scenario = self.scenario
+        waveform = scenario.waveforms.get(part.id)
+        ramp = self.net.ramps.get(part.id)
+        if waveform is not None:
+            least_s, most_s = scenario.shifts.get(part.id, (0.0, 0.0))
+            if scenario.in_sequence and part.after is not None:
+                up_s = self._up(part.after)
+                least_s, most_s = up_s[0] + part.delay.least, up_s[1] + part.delay.most
+            if most_s == FOREVER_S:
+                return ANYTHING
+            return GivenSupply(waveform, least_s=least_s, most_s=most_s)
+        if part.made_by is None or ramp is None:
+            return ANYTHING
+        maker = self._gate(part.made_by)
+        rise_s = ramp.rise.least if scenario.fast else ramp.rise.most
+        fall_s = ramp.fall.least if scenario.fast else ramp.fall.most
+        return MadeSupply(maker, Ramp(ramp.nominal_v, rise_s, fall_s, part.delay.least, part.delay.most))
+
+    def _up_on(self, rail: str) -> On:
+        """When a rail has come up, to its nominal level."""
+        ramp = self.net.ramps.get(rail)
+        return ANYTHING if ramp is None else self._above(rail, Bounds(ramp.nominal_v, ramp.nominal_v))
+
+    def _up(self, rail: str) -> tuple[float, float]:
+        """The earliest and the latest time at which a rail comes up, in s."""
+        up = self._up_on(rail)
+        least_s = up.may_be_on[0][0] if up.may_be_on else FOREVER_S
+        most_s = up.may_be_off[0][1] if up.may_be_off else -FOREVER_S
+        return max(least_s, 0.0), max(most_s, 0.0)
+
+    def _above(self, rail: str, level: Bounds) -> On:
+        """When a rail may be above a level that lies between two bounds, and when it may not be."""
+        supply = self.states.get(rail, ANYTHING)
+        if isinstance(supply, On):
+            return supply
+        if not isinstance(supply, Supply):
+            return ANYTHING
+        least_v, most_v = max(level.least, _ABOVE_NOTHING_V), max(level.most, _ABOVE_NOTHING_V)
+        return On(
+            supply.may_be_high(rising_v=least_v, falling_v=least_v),
+            supply.may_be_low(rising_v=most_v, falling_v=most_v),
+        )
+
+    def _gate(self, name: str) -> On:
+        """Whether what an element gates is enabled."""
+        match self.states.get(name, ANYTHING):
+            case On() as on:
+                return on
+            case Decision() as decision:
+                return lets_go(decision)
+            case LoadState() as load:
+                return load.running
+            case _:
+                return self._up_on(name)
+
+    def _all_gates(self, names: Iterable[str]) -> On:
+        return all_on(self._gate(name) for name in names) if names else ALWAYS_ON
+
+    def _fed(self, part: SourcePart | ComparatorPart | StagePart) -> On:
+        """Whether an element has its supply, and all that it needs is up."""
+        fed = self._above(part.rail, part.works_from)
+        gate = self.states.get(part.domain, ANYTHING)
+        if gate is ALWAYS_ON and not part.needs:
+            return fed
+        return all_on((fed, self._gate(part.domain), *(self._gate(name) for name in part.needs)))
+
+    def _source(self, part: SourcePart) -> On:
+        return settled(self._fed(part), least_s=part.settling.least, most_s=part.settling.most)
+
+    def _comparator(self, part: ComparatorPart) -> Decision:
+        watched = self.states.get(part.watches)
+        if not isinstance(watched, Supply):
+            return ANY_DECISION
+        return decision_of(part, watched=watched, valid=self._fed(part), armed=self._all_gates(part.armed_by))
+
+    def _stage(self, part: StagePart) -> Decision:
+        return output_of(part, given=self._combined(part), alive=self._fed(part))
+
+    def _combined(self, part: StagePart | ResetPart) -> Decision:
+        drivers = [self._decision(name) for name in part.driven_by]
+        return all_agree(drivers) if part.all_agree else any_asserts(drivers)
+
+    def _decision(self, name: str) -> Decision:
+        state = self.states.get(name, ANY_DECISION)
+        return state if isinstance(state, Decision) else ANY_DECISION
+
+    def _load(self, part: LoadPart) -> LoadState:
+        fed = all_on(self._within(rail, works) for rail, works in part.works)
+        up = fed
+        if part.needs or part.domain is not None:
+            gates = () if part.domain is None else (self._gate(part.domain),)
+            up = all_on((fed, *gates, *(self._gate(name) for name in part.needs)))
+        ready = settled(up, least_s=part.ready.least, most_s=part.ready.most)
+        if not part.resets:
+            return LoadState(fed, ready, RELEASED, up)
+        reset = any_asserts([self._decision(name) for name in part.resets])
+        return LoadState(fed, ready, reset, all_on((up, lets_go(reset))))
+
+    def _within(self, rail: str, works: Bounds) -> On:
+        above = self._above(rail, Bounds(works.least, works.least))
+        if works.most == FOREVER_S:
+            return above
+        too_high = self._above(rail, Bounds(works.most * (1 + 1e-12), works.most * (1 + 1e-12)))
+        if not too_high.may_be_on:
+            return above
+        return On(both(above.may_be_on, too_high.may_be_off), either(above.may_be_off, too_high.may_be_on))
+
+
+def _at_rest(part: TimedPart) -> State:
+    """An element that nothing has brought up yet."""
+    match part:
+        case StagePart() | ResetPart() | ComparatorPart():
+            return ASSERTED
+        case LoadPart():
+            return LoadState(NEVER_ON, NEVER_ON, ASSERTED, NEVER_ON)
+        case _:
+            return NEVER_ON
+
+
+def _anything(part: TimedPart) -> State:
+    match part:
+        case StagePart() | ResetPart() | ComparatorPart():
+            return ANY_DECISION
+        case LoadPart():
+            return LoadState(ANYTHING, ANYTHING, ANY_DECISION, ANYTHING)
+        case _:
+            return ANYTHING
+
+
+def _comparable(state: State) -> object:
+    """A state in a form that can be told from another."""
+    if isinstance(state, MadeSupply):
+        return state.maker
+    if isinstance(state, GivenSupply):
+        return state.least_s, state.most_s
+    return state
+
+
+def spans_of(state: State) -> Iterable[Times]:
+    """Every set of times in a state, for those who look for its edges."""
+    match state:
+        case LoadState():
+            for part in (state.fed, state.ready, state.reset, state.running):
+                yield from part
+        case On() | Decision():
+            yield from state
+        case _:
+            yield NEVER

@@ -1,0 +1,109 @@
+"""Scenarios in which a rail goes away, or dips: fastest and slowest, and to every level at which something changes."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from typing import Final
+
+from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.timing.interval import FOREVER_S
+from tidegate.lint.timing.parts import ComparatorPart, LoadPart, SourcePart, StagePart, TimedPart
+from tidegate.lint.timing.ramps import RailRamp
+from tidegate.lint.timing.scenario import Scenario, Scene
+from tidegate.lint.timing.starts import Setting
+from tidegate.lint.timing.waveform import Waveform
+
+_MOST_LEVELS: Final = 12
+"""So many levels of a rail are tried at most; of more, the lowest, the highest, and some between."""
+_JUST: Final = 1e-9
+"""Share of a level by which a supply passes it."""
+
+
+def together(setting: Setting) -> Iterator[Scenario]:
+    """All rails off the chip fall at once."""
+    rails = [rail.id for rail in setting.outer_rails()]
+    for fast, word in ((True, "fastest"), (False, "slowest")):
+        lacking = any(_lacks(setting.ramps[rail], fast=fast) for rail in rails)
+        if rails and not lacking:
+            waveforms = {rail: _down(setting.ramps[rail], fast=fast) for rail in rails}
+            about = f"every rail falls as {'fast' if fast else 'slowly'} as it may"
+            yield Scenario(f"{word} power-down", about, Scene.FALL, waveforms, fast=fast)
+
+
+def _lacks(ramp: RailRamp, *, fast: bool) -> tuple[str, ...]:
+    return ramp.fast_fall_lacks if fast else ramp.slow_fall_lacks
+
+
+def _down(ramp: RailRamp, *, fast: bool) -> Waveform:
+    return Waveform(((0.0, ramp.nominal_v), (ramp.fall.least if fast else ramp.fall.most, 0.0)))
+
+
+def alone(setting: Setting, rail: str) -> Scenario | None:
+    """One rail falls as fast as it may, while the others stay; None where its fall is not known."""
+    ramp = setting.ramps.get(rail)
+    if ramp is None or ramp.fast_fall_lacks:
+        return None
+    about = f"{rail} falls at {show(ramp.fastest_fall_v_per_s, Dimension.SLOPE)}, by {ramp.limited_by}"
+    return Scenario(f"{rail} falls", about, Scene.FALL, {rail: _down(ramp, fast=True)}, rail=rail)
+
+
+def dips(setting: Setting, rail: str) -> Iterator[Scenario]:
+    """One rail dips to each critical level: for long, and for just less than its slowest detector surely sees."""
+    ramp = setting.ramps.get(rail)
+    if ramp is None or ramp.fast_fall_lacks or ramp.start_lacks:
+        return
+    down_v_per_s, up_v_per_s = ramp.fastest_fall_v_per_s, ramp.fastest_rise_v_per_s
+    watching = [p for p in setting.parts.values() if isinstance(p, ComparatorPart) and p.watches == rail]
+    blind_s = max((part.filter.most for part in watching if part.filter.most < FOREVER_S), default=0.0)
+    seen_from_v = min((part.falling.least for part in watching if not part.over), default=0.0)
+    for level_v in critical_levels_v(setting.parts, rail, ramp):
+        down_s = (ramp.nominal_v - level_v) / down_v_per_s
+        up_s = (ramp.nominal_v - level_v) / up_v_per_s
+        below_v = max(seen_from_v - level_v, 0.0)
+        short_s = (blind_s - below_v / down_v_per_s - below_v / up_v_per_s) * (1.0 - _JUST)
+        lengths = [(setting.long_s, "for long")]
+        if blind_s > 0.0 and below_v > 0.0:
+            lengths.append(
+                (short_s, f"for {show(short_s, Dimension.DURATION)}") if short_s > 0.0 else (0.0, "and back")
+            )
+        for rests_s, words in lengths:
+            points = ((0.0, ramp.nominal_v), (down_s, level_v), (down_s + rests_s, level_v),
+                      (down_s + rests_s + up_s, ramp.nominal_v))  # fmt: skip
+            name = f"{rail} dips to {show(level_v, Dimension.VOLTAGE)} {words}"
+            yield Scenario(name, name, Scene.DIP, {rail: Waveform(points)}, rail=rail)
+
+
+def critical_levels_v(parts: Mapping[str, TimedPart], rail: str, ramp: RailRamp) -> list[float]:
+    """The levels of a rail at which something changes, each from its worse side, highest first, in V.
+
+    Just above what a detector surely sees or re-arms below, or as deep as a dip without a bottom can go while its filter
+    may ignore it; just below what a load or a circuit needs.
+    """
+    found: set[float] = set()
+    for part in parts.values():
+        match part:
+            case ComparatorPart():
+                if part.watches == rail and not part.over:
+                    found.update((part.falling.least, part.falling.most * (1.0 - _JUST)))
+                    found.add(_deepest_point_v(part, ramp))
+                if part.rail == rail:
+                    found.add(part.works_from.most * (1.0 - _JUST))
+            case SourcePart() | StagePart():
+                if part.rail == rail:
+                    found.add(part.works_from.most * (1.0 - _JUST))
+            case LoadPart():
+                found.update(works.least * (1.0 - _JUST) for name, works in part.works if name == rail)
+            case _:
+                pass
+    levels = sorted((level for level in found if 0.0 < level < ramp.nominal_v), reverse=True)
+    if len(levels) <= _MOST_LEVELS:
+        return levels
+    return [levels[round(n * (len(levels) - 1) / (_MOST_LEVELS - 1))] for n in range(_MOST_LEVELS)]
+
+
+def _deepest_point_v(part: ComparatorPart, ramp: RailRamp) -> float:
+    """How low a dip that turns round at once can go while a detector may ignore it, in V."""
+    if not 0.0 < part.filter.most < FOREVER_S:
+        return part.falling.least
+    s_per_v = 1.0 / ramp.fastest_fall_v_per_s + 1.0 / ramp.fastest_rise_v_per_s
+    return part.falling.least - part.filter.most * (1.0 - _JUST) / s_per_v

@@ -1,0 +1,142 @@
+"""Sets of times, and intervals in which something arrives: exact, with no time step.
+
+A set of times says when something *may* be so, over everything that tolerances allow.  What is surely so is what may
+not be otherwise.  An arrival is late by every need (the later of two, an intersection) and early by every alternative
+(the earlier of two, a union).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Final, TypeAlias
+
+Times: TypeAlias = tuple[tuple[float, float], ...]
+"""Disjoint spans of time in s, in order, each with its start and without its end; at either end it may be infinite."""
+
+FOREVER_S: Final = float("inf")
+NEVER: Final[Times] = ()
+ALWAYS: Final[Times] = ((-FOREVER_S, FOREVER_S),)
+
+
+@dataclass(frozen=True, slots=True)
+class Arrival:
+    """The interval in which something arrives: never before the earliest time, never after the latest, in s."""
+
+    earliest_s: float
+    latest_s: float
+
+    @property
+    def spread_s(self) -> float:
+        """Time between the earliest and the latest, in s."""
+        return self.latest_s - self.earliest_s
+
+    def after(self, *, least_s: float, most_s: float) -> Arrival:
+        """The arrival of what takes between two times more."""
+        return Arrival(self.earliest_s + least_s, self.latest_s + most_s)
+
+
+def last_of(*needs: Arrival) -> Arrival:
+    """When the last of what is needed arrives."""
+    return Arrival(max(need.earliest_s for need in needs), max(need.latest_s for need in needs))
+
+
+def first_of(*alternatives: Arrival) -> Arrival:
+    """When the first of some alternatives arrives."""
+    return Arrival(min(one.earliest_s for one in alternatives), min(one.latest_s for one in alternatives))
+
+
+def either(first: Times, second: Times) -> Times:
+    """When at least one of two is so."""
+    if not second or first is second or first == ALWAYS:
+        return first
+    if not first or second == ALWAYS:
+        return second
+    return joined(sorted((*first, *second)))
+
+
+def joined(spans: Sequence[tuple[float, float]]) -> Times:
+    """Spans in order of their starts, at least one, those that touch made one."""
+    done: list[tuple[float, float]] = []
+    start, end = spans[0]
+    for next_start, next_end in spans:
+        if next_start <= end:
+            end = max(end, next_end)
+        else:
+            done.append((start, end))
+            start, end = next_start, next_end
+    done.append((start, end))
+    return tuple(done)
+
+
+def both(first: Times, second: Times) -> Times:
+    """When both of two are so."""
+    if not first or first is second or second == ALWAYS:
+        return first
+    if not second or first == ALWAYS:
+        return second
+    done: list[tuple[float, float]] = []
+    one = other = 0
+    while one < len(first) and other < len(second):
+        start = max(first[one][0], second[other][0])
+        end = min(first[one][1], second[other][1])
+        if start < end:
+            done.append((start, end))
+        if first[one][1] < second[other][1]:
+            one += 1
+        else:
+            other += 1
+    return tuple(done)
+
+
+def outside(times: Times) -> Times:
+    """When it is not so."""
+    if not times:
+        return ALWAYS
+    done: list[tuple[float, float]] = []
+    end_s = -FOREVER_S
+    for start, end in times:
+        if start > end_s:
+            done.append((end_s, start))
+        end_s = end
+    if end_s < FOREVER_S:
+        done.append((end_s, FOREVER_S))
+    return tuple(done)
+
+
+def delayed(times: Times, *, least_s: float, most_s: float) -> Times:
+    """When it may be so after a delay that lies between two times: each span starts by the least, ends by the most.
+
+    Either delay may be negative; a span of which nothing is left falls out.
+    """
+    if least_s == 0.0 and most_s == 0.0:
+        return times
+    spans = [(start + least_s, end + most_s) for start, end in times if start + least_s < end + most_s]
+    return joined(spans) if spans else NEVER
+
+
+def filtered(times: Times, *, least_s: float, most_s: float) -> Times:
+    """When it may be so behind a filter that ignores what is shorter than a time between two bounds.
+
+    A gap that the filter may ignore is filled; a span that it surely ignores falls out; the rest comes through late.
+    """
+    if not times or most_s == 0.0:
+        return times
+    whole: list[tuple[float, float]] = [times[0]]
+    for start, end in times[1:]:
+        if start - whole[-1][1] < most_s:
+            whole[-1] = (whole[-1][0], end)
+        else:
+            whole.append((start, end))
+    seen = tuple((start, end) for start, end in whole if end - start >= least_s)
+    return delayed(seen, least_s=least_s, most_s=most_s)
+
+
+def length_s(times: Times) -> float:
+    """How long it is so in all, in s."""
+    return sum(end - start for start, end in times)
+
+
+def is_in(times: Times, at_s: float) -> bool:
+    """Whether a time belongs to the set."""
+    return any(start <= at_s < end for start, end in times)

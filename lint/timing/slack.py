@@ -1,0 +1,120 @@
+"""What the timelines leave between two things that must come in order."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from tidegate.lint.timing.evaluate import LoadState
+from tidegate.lint.timing.interval import FOREVER_S, NEVER, Times, both, either, is_in, outside
+from tidegate.lint.timing.parts import Bounds, LoadPart, ResetPart
+from tidegate.lint.timing.scenario import Scenario
+from tidegate.lint.timing.state import Decision
+from tidegate.lint.timing.supply import Supply
+from tidegate.lint.timing.timeline import Timeline
+
+
+@dataclass(frozen=True, slots=True)
+class Slack:
+    """Time between the latest of what must come first and the earliest of what must come after it, in s.
+
+    Where what must come first may never come, ``first_s`` is infinite.
+    """
+
+    scenario: Scenario
+    first_s: float
+    then_s: float
+
+    @property
+    def slack_s(self) -> float:
+        """How much time is left; below 0, how much is short."""
+        return self.then_s - self.first_s
+
+
+def worst(slacks: Iterable[Slack | None]) -> Slack | None:
+    """The one that leaves least; None where there is none."""
+    return min((slack for slack in slacks if slack is not None), key=lambda slack: slack.slack_s, default=None)
+
+
+def release_slack(line: Timeline, load: str) -> Slack | None:
+    """Between the latest time at which a load is ready and the earliest at which its reset is released.
+
+    Of several releases, the one that leaves least; None where reset is not released in the course of the scenario.
+    """
+    state = line.states[load]
+    assert isinstance(state, LoadState)
+    return worst(
+        Slack(line.scenario, _ready_by_s(state.ready.may_be_off, start_s), start_s)
+        for start_s, _ in state.reset.may_release
+        if start_s > -FOREVER_S
+    )
+
+
+def _ready_by_s(not_ready: Times, release_s: float) -> float:
+    """The end of the last stretch that begins before a release and in which a load may not be ready, in s."""
+    by_s = -FOREVER_S
+    for start_s, end_s in not_ready:
+        if start_s <= release_s:
+            by_s = end_s
+    return by_s
+
+
+def releases(line: Timeline, load: str) -> bool:
+    """Whether the reset of a load may ever be released."""
+    state = line.states[load]
+    assert isinstance(state, LoadState)
+    return bool(state.reset.may_release)
+
+
+def assert_slack(line: Timeline, load: str, *, rail: str, works: Bounds) -> Slack | None:
+    """Between the latest time at which a load is in reset and the one at which a falling rail leaves its range.
+
+    None where the rail does not leave it.  A reset that may stay released, or unknown, never surely asserts.
+    """
+    state, supply = line.states[load], line.states[rail]
+    assert isinstance(state, LoadState)
+    assert isinstance(supply, Supply)
+    low = supply.may_be_low(rising_v=works.least, falling_v=works.least)
+    leaves_s = next((start for start, _ in low if start > -FOREVER_S), None)
+    if leaves_s is None:
+        return None
+    return Slack(line.scenario, _surely_asserts_s(state.reset), leaves_s)
+
+
+def _surely_asserts_s(reset: Decision) -> float:
+    """When a reset that is released in service surely asserts, in s; infinite where it may not."""
+    let_go = either(reset.may_release, reset.may_be_unknown)
+    if not let_go or let_go[0][0] > 0.0:
+        return -FOREVER_S
+    return let_go[0][1]
+
+
+def is_missed(line: Timeline, load: str) -> bool:
+    """Whether a dip may pass without the load being reset at any time."""
+    state = line.states[load]
+    assert isinstance(state, LoadState)
+    asserts = outside(either(state.reset.may_release, state.reset.may_be_unknown))
+    return not any(end > 0.0 for _, end in asserts)
+
+
+def unknown_while_read(line: Timeline, part: ResetPart) -> Times:
+    """When a reset net may be unknown while its receivers have a supply at which they read it."""
+    state, supply = line.states[part.id], line.states.get(part.rail)
+    assert isinstance(state, Decision)
+    if not state.may_be_unknown or not isinstance(supply, Supply):
+        return state.may_be_unknown
+    reads_v = max(part.reads_from_v, 1e-9)
+    return both(state.may_be_unknown, supply.may_be_high(rising_v=reads_v, falling_v=reads_v))
+
+
+def out_of_range(line: Timeline, part: LoadPart) -> Times:
+    """When a load may be outside the range in which it works."""
+    state = line.states[part.id]
+    return state.fed.may_be_off if isinstance(state, LoadState) else NEVER
+
+
+def first_time(times: Times, *, after_s: float = -FOREVER_S) -> float | None:
+    """The first start after a time, or that time where it lies in the set; None where neither is."""
+    if after_s > -FOREVER_S and is_in(times, after_s):
+        return after_s
+    return next((start for start, _ in times if start > after_s), None)

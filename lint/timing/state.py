@@ -1,0 +1,113 @@
+"""What an element may be at each time: on or off; or asserting, releasing, unknown."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from typing import Final, NamedTuple
+
+from tidegate.lint.timing.interval import ALWAYS, NEVER, Times, both, either, outside
+
+
+class On(NamedTuple):
+    """When something (a reference, a bias, a gate, a load) may be on, and when it may be off."""
+
+    may_be_on: Times
+    may_be_off: Times
+
+    @property
+    def surely_on(self) -> Times:
+        """When it is on whatever the tolerances do."""
+        return outside(self.may_be_off)
+
+
+class Decision(NamedTuple):
+    """When something on a reset path may assert reset, release it, or be unknown.
+
+    ``may_be_held`` is the part of ``may_assert`` in which no stage drives and a passive hold keeps reset.
+    """
+
+    may_assert: Times
+    may_release: Times
+    may_be_unknown: Times
+    may_be_held: Times = NEVER
+
+    @property
+    def surely_asserts(self) -> Times:
+        """When it asserts whatever the tolerances do."""
+        return outside(either(self.may_release, self.may_be_unknown))
+
+    @property
+    def surely_releases(self) -> Times:
+        """When it releases whatever the tolerances do."""
+        return outside(either(self.may_assert, self.may_be_unknown))
+
+
+ALWAYS_ON: Final = On(ALWAYS, NEVER)
+NEVER_ON: Final = On(NEVER, ALWAYS)
+ANYTHING: Final = On(ALWAYS, ALWAYS)
+"""What is known of an element whose facts are missing."""
+ANY_DECISION: Final = Decision(ALWAYS, ALWAYS, ALWAYS)
+RELEASED: Final = Decision(NEVER, ALWAYS, NEVER)
+ASSERTED: Final = Decision(ALWAYS, NEVER, NEVER)
+
+
+def all_on(parts: Iterable[On]) -> On:
+    """On when every part is: on with the last of them, off with the first."""
+    on, off = ALWAYS, NEVER
+    for part in parts:
+        on, off = both(on, part.may_be_on), either(off, part.may_be_off)
+    return On(on, off)
+
+
+def settled(part: On, *, least_s: float, most_s: float) -> On:
+    """On when it has been on for a settling time that lies between two bounds."""
+    if most_s == 0.0:
+        return part
+    on = tuple((start + least_s, end) for start, end in part.may_be_on if start + least_s < end)
+    if not part.may_be_off:
+        return On(on, NEVER)
+    off = [part.may_be_off[0]]
+    off[0] = (off[0][0], off[0][1] + most_s)
+    for start, end in part.may_be_off[1:]:
+        if start <= off[-1][1]:
+            off[-1] = (off[-1][0], max(off[-1][1], end + most_s))
+        else:
+            off.append((start, end + most_s))
+    return On(on, tuple(off))
+
+
+def lets_go(decision: Decision) -> On:
+    """What a decision gates: on when it releases, off when it asserts, and what is unknown may be either."""
+    if not decision.may_be_unknown:
+        return On(decision.may_release, decision.may_assert)
+    return On(
+        either(decision.may_release, decision.may_be_unknown), either(decision.may_assert, decision.may_be_unknown)
+    )
+
+
+def any_asserts(drivers: Sequence[Decision]) -> Decision:
+    """Asserts when any driver does, releases when all do, unknown when one is unknown and none asserts."""
+    if len(drivers) == 1:
+        return drivers[0]
+    asserts, releases, unknown, quiet, held = NEVER, ALWAYS, NEVER, ALWAYS, NEVER
+    for driver in drivers:
+        asserts = either(asserts, driver.may_assert)
+        releases = both(releases, driver.may_release)
+        unknown = either(unknown, driver.may_be_unknown)
+        quiet = both(quiet, either(driver.may_release, driver.may_be_unknown))
+        held = either(held, driver.may_be_held)
+    return Decision(asserts, releases, both(unknown, quiet), held)
+
+
+def all_agree(drivers: Sequence[Decision]) -> Decision:
+    """Asserts when all drivers do, releases when any does, unknown when one is unknown and none releases."""
+    if len(drivers) == 1:
+        return drivers[0]
+    asserts, releases, unknown, quiet, held = ALWAYS, NEVER, NEVER, ALWAYS, ALWAYS
+    for driver in drivers:
+        asserts = both(asserts, driver.may_assert)
+        releases = either(releases, driver.may_release)
+        unknown = either(unknown, driver.may_be_unknown)
+        quiet = both(quiet, either(driver.may_assert, driver.may_be_unknown))
+        held = both(held, driver.may_be_held)
+    return Decision(asserts, releases, both(unknown, quiet), held)

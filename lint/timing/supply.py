@@ -1,0 +1,100 @@
+"""A rail in a scenario: a waveform that is given, or one that its maker makes."""
+
+from __future__ import annotations
+
+from abc import ABC, abstractmethod
+from dataclasses import dataclass
+
+from tidegate.lint.timing.interval import NEVER, Times, delayed, outside
+from tidegate.lint.timing.state import On
+from tidegate.lint.timing.waveform import Waveform
+
+
+class Supply(ABC):
+    """A rail over time; what was asked once is kept."""
+
+    def __init__(self) -> None:
+        self._high: dict[tuple[float, float], Times] = {}
+        self._low: dict[tuple[float, float], Times] = {}
+
+    def may_be_high(self, *, rising_v: float, falling_v: float) -> Times:
+        """When a detector with these levels may take the rail for high."""
+        key = (rising_v, falling_v)
+        found = self._high.get(key)
+        if found is None:
+            found = self._high[key] = self._may_be_high(rising_v, falling_v)
+        return found
+
+    def may_be_low(self, *, rising_v: float, falling_v: float) -> Times:
+        """When a detector with these levels may take the rail for low."""
+        key = (rising_v, falling_v)
+        found = self._low.get(key)
+        if found is None:
+            found = self._low[key] = self._may_be_low(rising_v, falling_v)
+        return found
+
+    @abstractmethod
+    def _may_be_high(self, rising_v: float, falling_v: float) -> Times: ...
+
+    @abstractmethod
+    def _may_be_low(self, rising_v: float, falling_v: float) -> Times: ...
+
+
+class GivenSupply(Supply):
+    """A rail with a waveform that comes late by a time between two bounds."""
+
+    def __init__(self, waveform: Waveform, *, least_s: float = 0.0, most_s: float = 0.0) -> None:
+        super().__init__()
+        self.waveform = waveform
+        self.least_s = least_s
+        self.most_s = most_s
+
+    def _may_be_high(self, rising_v: float, falling_v: float) -> Times:
+        high = self.waveform.above(rising_v=rising_v, falling_v=falling_v)
+        return delayed(high, least_s=self.least_s, most_s=self.most_s)
+
+    def _may_be_low(self, rising_v: float, falling_v: float) -> Times:
+        low = outside(self.waveform.above(rising_v=rising_v, falling_v=falling_v))
+        return delayed(low, least_s=self.least_s, most_s=self.most_s)
+
+
+@dataclass(frozen=True, slots=True)
+class Ramp:
+    """How a made rail comes and goes, straight both ways."""
+
+    nominal_v: float
+    rise_s: float
+    fall_s: float
+    delay_least_s: float
+    """From its maker being on until it begins to rise, least and most."""
+    delay_most_s: float
+
+
+class MadeSupply(Supply):
+    """A rail that follows its maker: it rises to its nominal level once the maker is on, and falls once it is off.
+
+    A maker that is on for less than the rise, or off for less than the fall, is taken to have made the whole way.
+    """
+
+    def __init__(self, maker: On, ramp: Ramp) -> None:
+        super().__init__()
+        self.maker = maker
+        self.ramp = ramp
+
+    def _up_s(self, level_v: float) -> float:
+        return max(level_v, 0.0) / self.ramp.nominal_v * self.ramp.rise_s
+
+    def _down_s(self, level_v: float) -> float:
+        return max(self.ramp.nominal_v - level_v, 0.0) / self.ramp.nominal_v * self.ramp.fall_s
+
+    def _may_be_high(self, rising_v: float, falling_v: float) -> Times:
+        if rising_v > self.ramp.nominal_v:
+            return NEVER
+        up_s = self.ramp.delay_least_s + self._up_s(rising_v)
+        return delayed(self.maker.may_be_on, least_s=up_s, most_s=self._down_s(falling_v))
+
+    def _may_be_low(self, rising_v: float, falling_v: float) -> Times:
+        if rising_v > self.ramp.nominal_v:
+            return outside(NEVER)
+        up_s = self.ramp.delay_most_s + self._up_s(rising_v)
+        return delayed(self.maker.may_be_off, least_s=self._down_s(falling_v), most_s=up_s)

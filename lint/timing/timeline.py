@@ -1,0 +1,232 @@
+"""Timelines of a description: every element in every scenario, and the facts that are missing for them.
+
+    lines = timelines(description, graph)
+    for line in lines.starts:                     # fastest and slowest ramp, late rails, residual charge, ...
+        line.scenario.name, line.scenario.about
+        line.states["por_n"]                      # Decision: may_assert, may_release, may_be_unknown, may_be_held
+        line.states["ref_fast"]                   # On: may_be_on, may_be_off
+        line.states["adc"]                        # LoadState: fed, ready, reset, running
+    lines.missing("por_n", latest=True, falls=True)   # paths of facts; () where all are there
+
+Everything is computed when it is first asked for, and kept.  What *may* be is known of each time; what *surely* is, is
+what may not be otherwise.  Intervals are exact where the graph does not reconverge; where two ways share a tolerance,
+they may be wider, and ``pinned`` times the network with that tolerance at one end.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass, fields
+from functools import cached_property, lru_cache
+from typing import Final
+
+from tidegate.lint.description.model.description import Description
+from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.graph.dependency import Graph
+from tidegate.lint.graph.edge import EdgeKind
+from tidegate.lint.timing.evaluate import Network, States, evaluate, network
+from tidegate.lint.timing.falls import alone, dips, together
+from tidegate.lint.timing.interval import FOREVER_S
+from tidegate.lint.timing.order import leans_on, reached
+from tidegate.lint.timing.parts import Bounds, Lacks
+from tidegate.lint.timing.published import published
+from tidegate.lint.timing.ramps import Ramps, read_ramps
+from tidegate.lint.timing.reading import Parts, read_parts
+from tidegate.lint.timing.scenario import Scenario, Scene
+from tidegate.lint.timing.starts import Setting, starts
+from tidegate.lint.timing.waveform import Waveform
+
+_LEAST_LONG_S: Final = 1.0
+_MANY_TIMES: Final = 100.0
+
+
+@dataclass(frozen=True, slots=True)
+class Timeline:
+    """All elements in one scenario."""
+
+    scenario: Scenario
+    states: States
+
+
+class Timelines:
+    """All scenarios of one description."""
+
+    def __init__(self, description: Description, graph: Graph) -> None:
+        self.description = description
+        self.graph = graph
+        self.read: Parts = read_parts(description, graph)
+        self.ramps: Ramps = read_ramps(description)
+        self.network: Network = network(self.read.parts, self.ramps.by_rail)
+        self.setting = Setting(description, self.ramps.by_rail, self.read.parts, self._long_s())
+        self._alone: dict[str, Timeline | None] = {}
+        self._dips: dict[str, Sequence[Timeline]] = {}
+        self._cones: dict[str, Network] = {}
+
+    def _long_s(self) -> float:
+        """A time after which everything has come to rest."""
+        longest_s = 0.0
+        for part in self.read.parts.values():
+            for member in fields(part):
+                value = getattr(part, member.name)
+                if isinstance(value, Bounds) and member.name not in _LEVELS and value.most < FOREVER_S:
+                    longest_s = max(longest_s, value.most)
+        return max(_LEAST_LONG_S, _MANY_TIMES * longest_s)
+
+    @cached_property
+    def starts(self) -> Sequence[Timeline]:
+        """Start-ups, off and on again, and the description's own scenarios."""
+        return [self.at(scenario) for scenario in starts(self.setting)]
+
+    @cached_property
+    def falls(self) -> Sequence[Timeline]:
+        """Power-down of all rails at once, fastest and slowest."""
+        return [self.at(scenario) for scenario in together(self.setting)]
+
+    @cached_property
+    def settled(self) -> States:
+        """Every element with every rail at its nominal level, since long ago."""
+        rails = self.description.rails.values()
+        waveforms = {
+            rail.id: Waveform(((0.0, self.ramps.by_rail[rail.id].nominal_v),))
+            for rail in rails
+            if rail.id in self.ramps.by_rail
+        }
+        return evaluate(self.network, Scenario("in service", "every rail at nominal", Scene.START, waveforms))
+
+    def alone(self, rail: str) -> Timeline | None:
+        """One rail falls while the others stay; None where its fall is not known. Elements it does not reach stay."""
+        if rail not in self._alone:
+            scenario = alone(self.setting, rail)
+            self._alone[rail] = None if scenario is None else self.at(scenario)
+        return self._alone[rail]
+
+    def dips(self, rail: str) -> Sequence[Timeline]:
+        """Dips of one rail to every critical level, for long and for short."""
+        if rail not in self._dips:
+            self._dips[rail] = [self.at(scenario) for scenario in dips(self.setting, rail)]
+        return self._dips[rail]
+
+    @cached_property
+    def published(self) -> Sequence[Timeline]:
+        """Profiles that a standard publishes; no rule judges by them, since no rail says that it sees them."""
+        return [self.at(scenario) for scenario in published(self.setting)]
+
+    def at(self, scenario: Scenario, *, pinned: Mapping[str, bool] | None = None) -> Timeline:
+        """The timeline of any scenario; some elements pinned to their least (False) or greatest (True) tolerances."""
+        net = self._cone(scenario.rail) if scenario.rail else self.network
+        known = self.settled if scenario.rail else None
+        return Timeline(scenario, evaluate(net.pinned(pinned) if pinned else net, scenario, known))
+
+    def as_if_given(self, scenario: Scenario, elements: Iterable[str]) -> Timeline:
+        """The timeline with each least value that is missing as great as the greatest: the best that it can be."""
+        net = self._cone(scenario.rail) if scenario.rail else self.network
+        lacking = [name for name in elements if name in self.read.lacks and self.read.lacks[name].least]
+        known = self.settled if scenario.rail else None
+        return Timeline(scenario, evaluate(net.without_spread_from_nothing(lacking), scenario, known))
+
+    def _cone(self, rail: str) -> Network:
+        """The network of what a rail reaches; in a scenario of that rail the rest stays as it is in service."""
+        if rail not in self._cones:
+            self._cones[rail] = self.network.among(reached(self._leant_on_by, rail))
+        return self._cones[rail]
+
+    @cached_property
+    def _leant_on_by(self) -> Mapping[str, Sequence[str]]:
+        leant: dict[str, list[str]] = {}
+        for name, part in self.read.parts.items():
+            for needed in leans_on(part):
+                leant.setdefault(needed, []).append(name)
+        return leant
+
+    # Missing facts
+
+    def missing(
+        self, element: str, *, latest: bool = False, earliest: bool = False, starts: bool = False, falls: bool = False,
+        readiness: bool = False,
+    ) -> tuple[str, ...]:  # fmt: skip
+        """The facts that are missing for an element and all it leans on, as paths.
+
+        ``latest``: the greatest values too, ``earliest``: the least ones; ``starts`` and ``falls``: those of the
+        ramps up and down; ``readiness``: of what a load needs alone, not of the nets that reset it.
+        Raises: DomainError: where one of them has numbers that cannot be.
+        """
+        if not self._anything_lacks:
+            return ()
+        found: dict[str, None] = {}
+        for name in self.behind(element, readiness=readiness):
+            if name in self.read.refused:
+                raise self.read.refused[name]
+            lacks = self.read.lacks.get(name, _NO_LACKS)
+            for wanted, paths in ((True, lacks.whole), (latest, lacks.most), (earliest, lacks.least)):
+                if wanted:
+                    found.update(dict.fromkeys(paths))
+            if starts or falls:
+                found.update(dict.fromkeys(self._ramp_lacks(name, starts=starts, falls=falls)))
+        return tuple(found)
+
+    def _ramp_lacks(self, name: str, *, starts: bool, falls: bool) -> Sequence[str]:
+        if name in self.ramps.lacks:
+            return self.ramps.lacks[name]
+        ramp = self.ramps.by_rail.get(name)
+        if ramp is None:
+            return ()
+        return (*(ramp.start_lacks if starts else ()), *(ramp.fast_fall_lacks if falls else ()))
+
+    @cached_property
+    def _anything_lacks(self) -> bool:
+        ramps = self.ramps.by_rail.values()
+        return bool(
+            self.read.lacks or self.read.refused or self.ramps.lacks
+            or any(ramp.start_lacks or ramp.fast_fall_lacks or ramp.slow_fall_lacks for ramp in ramps)
+        )  # fmt: skip
+
+    def behind(self, element: str, *, readiness: bool = False) -> Sequence[str]:
+        """An element and all it leans on, watched rails included; ``readiness`` leaves out what resets a load."""
+        found = [element]
+        seen = {element}
+        for name in found:
+            for other in self._needs(name, guards=not (readiness and name == element)):
+                if other not in seen:
+                    seen.add(other)
+                    found.append(other)
+        return found
+
+    def _needs(self, name: str, *, guards: bool) -> Sequence[str]:
+        needed = [other for other, _, edge in self.graph.needs(name) if guards or edge.kind is not EdgeKind.GUARDS]
+        element = self.graph.elements[name]
+        if isinstance(element, Comparator):
+            needed.append(element.watches)
+        after = getattr(element, "after", None)
+        if after is not None:
+            needed.append(after)
+        return needed
+
+
+_NO_LACKS: Final = Lacks()
+_LEVELS: Final = ("works_from", "rising", "falling")
+
+
+class _Same:
+    """Two objects as a key: the same key where both are the same objects."""
+
+    __slots__ = ("description", "graph")
+
+    def __init__(self, description: Description, graph: Graph) -> None:
+        self.description = description
+        self.graph = graph
+
+    def __hash__(self) -> int:
+        return id(self.graph)
+
+    def __eq__(self, other: object) -> bool:
+        return isinstance(other, _Same) and other.graph is self.graph and other.description is self.description
+
+
+def timelines(description: Description, graph: Graph) -> Timelines:
+    """The timelines of a description; those of the last one asked for are kept, so that every rule reads the same."""
+    return _timelines(_Same(description, graph))
+
+
+@lru_cache(maxsize=1)
+def _timelines(of: _Same) -> Timelines:
+    return Timelines(of.description, of.graph)

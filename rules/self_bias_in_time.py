@@ -1,0 +1,205 @@
+"""Self-bias: the bias and the references of a detector are up where it must decide."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+from contextlib import suppress
+from dataclasses import dataclass
+from enum import Enum
+from typing import Final
+
+from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.derived.lowest_decision import LowestDecision, lowest_decision
+from tidegate.lint.derived.lowest_supply import LowestSupply, lowest_supply
+from tidegate.lint.derived.rail_of import rail_of
+from tidegate.lint.derived.rail_sequence import leaning_of_rails, order_text, way_to_earlier
+from tidegate.lint.derived.safe_rounding import show_down, show_up
+from tidegate.lint.derived.sources_of import reach_of_sources, sources_in
+from tidegate.lint.description.model.detector import Bias, Comparator, Reference
+from tidegate.lint.description.model.supply import Rail
+from tidegate.lint.graph.edge import Hop, Path
+from tidegate.lint.graph.paths import Reach
+from tidegate.lint.judgement import Judgement, Level, Measure, Relation
+from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.rule import Example, Rule, rule
+
+_V: Final = Dimension.VOLTAGE
+
+
+@rule(
+    "self_bias/up_in_time",
+    title="what a detector leans on is up where it must decide",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="Every bias and reference that the detector leans on, directly or through others, works from a supply no "
+    "higher than the detector's lowest falling level, where it is fed from the watched rail; else no higher than the "
+    "lowest level delivered on its own rail, which comes up before the watched one. Lowest supplies are taken at the "
+    "worst corner and temperature and held against the lowest trip level, extreme against extreme.",
+    facts=(
+        "comparators.*.trip", "comparators.*.domain", "comparators.*.bias",
+        "comparators.*.reference or comparators.*.crossover", "biases.*.kind", "biases.*.works_from",
+        "references.*.works_from", "conditions.junction_temperature where references.*.works_from_slope is above zero",
+        "the domain of each source, and its rail", "rails.*.delivered and rails.*.after where another rail feeds one",
+    ),
+    mend="a source that works from a lower supply, a higher trip level, or a rail that is surely up first",
+    sources=("a decision is worth what it is made from (derived)",),
+    example=Example(
+        fails="biases: {bias_start: {works_from: {max: 1.3 V}}}",
+        holds="biases: {bias_start: {works_from: {max: 1.18 V}}}",
+    ),
+)  # fmt: skip
+def sources_are_up_in_time(comparator: Comparator, case: Case) -> Judgement:
+    """Compare the lowest supply of each source with the level at which it must work; then look at the order of rails."""
+    reach = reach_of_sources(case, comparator)
+    sources = sources_in(case, reach)
+    off_chip = [source for source in sources if source.kind == "external"]
+    needs = list(_needs(case, comparator, [source for source in sources if source.kind != "external"]))
+    with suppress(MissingFactsError):
+        own_rail = rail_of(case, comparator)
+    case.settle()
+    worst = min(needs, key=lambda need: need.measure.margin, default=None)
+    if worst is not None and not worst.measure.holds:
+        return _measured(case, worst, reach, ())
+    waits = [_wait(case, comparator, part, rail) for part, rail in ((comparator, own_rail), *_fed(needs))]
+    if off_chip and comparator.role != "power_on":
+        return _asks_for_order(case, comparator, _off_chip_wait(off_chip[0]), reach)
+    doubt = next((wait for wait in waits if wait.order in (_Order.LATER, _Order.UNKNOWN)), None)
+    if doubt is not None:
+        return _asks_for_order(case, comparator, doubt, reach)
+    hanging = next((wait for wait in waits if wait.order is _Order.ON_ITSELF), None)
+    if hanging is not None:
+        return case.not_applicable(f"{hanging.rail} hangs on its own output (self_bias/no_loop says so)")
+    if worst is None:
+        return case.not_applicable(f"{off_chip[0].id} comes from off the chip (self_bias/leans_on_nobody says so)")
+    return _measured(case, worst, reach, waits)
+
+
+@dataclass(frozen=True, slots=True)
+class _Need:
+    """The lowest supply of a source against the level at which it must work."""
+
+    source: Bias | Reference
+    rail: Rail
+    least: LowestDecision
+    works: LowestSupply
+
+    @property
+    def measure(self) -> Measure:
+        return Measure(self.least.level_v, self.works.level_v, _V, Relation.AT_MOST)
+
+
+def _needs(case: Case, comparator: Comparator, sources: Iterable[Bias | Reference]) -> Iterator[_Need]:
+    """Each source with its two levels; what is missing for one is noted, and the next one asked."""
+    for source in sources:
+        with suppress(MissingFactsError):
+            yield _need(case, comparator, source)
+
+
+def _need(case: Case, comparator: Comparator, source: Bias | Reference) -> _Need:
+    works, (rail, least) = case.gather(
+        lambda: lowest_supply(case, source), lambda: _at_its_rail(case, comparator, source)
+    )
+    return _Need(source, rail, least, works)
+
+
+def _at_its_rail(case: Case, comparator: Comparator, source: Bias | Reference) -> tuple[Rail, LowestDecision]:
+    rail = rail_of(case, source)
+    return rail, lowest_decision(case, comparator, rail)
+
+
+def _fed(needs: Iterable[_Need]) -> Iterator[tuple[Bias | Reference, Rail]]:
+    return ((need.source, need.rail) for need in needs)
+
+
+def _measured(case: Case, worst: _Need, reach: Reach, waits: Iterable[_Wait]) -> Judgement:
+    """The source with the least margin."""
+    name, least, works = worst.source.id, worst.least, worst.works
+    at = f" {works.at}" if works.at else ""
+    order = dict.fromkeys(wait.says for wait in waits if wait.order is _Order.FIRST)
+    higher = f"; or a lowest falling level of {show_up(works.level_v, _V)} or more" if least.is_trip_level else ""
+    return case.at_most(
+        need=least.level_v,
+        have=works.level_v,
+        dimension=_V,
+        says=f"{name}, which it leans on, works{at} from",
+        why="; ".join((least.why, *order)),
+        mend=f"{name} working from {show_down(least.level_v, _V)} or less{at}; now {show(works.level_v, _V)}{higher}",
+        path=reach.path(name),
+    )
+
+
+class _Order(Enum):
+    """When the rail of something is up, as seen from the rail that the detector watches."""
+
+    SAME = "the watched rail itself"
+    FIRST = "before it"
+    ON_ITSELF = "once the detector itself has let go"
+    LATER = "after it"
+    UNKNOWN = "not said"
+    OFF_CHIP = "not the description's to say"
+
+
+@dataclass(frozen=True, slots=True)
+class _Wait:
+    """Something that a detector leans on, and when its rail is up."""
+
+    part: str
+    rail: str
+    order: _Order
+    says: str = ""
+    onward: Path = ()
+
+
+def _off_chip_wait(source: Bias | Reference) -> _Wait:
+    return _Wait(source.id, "", _Order.OFF_CHIP)
+
+
+def _wait(case: Case, comparator: Comparator, part: Comparator | Bias | Reference, rail: Rail) -> _Wait:
+    watched = case.description.rails[comparator.watches]
+    if rail.id == watched.id:
+        return _Wait(part.id, rail.id, _Order.SAME)
+    if comparator.id in case.graph.once(leaning_of_rails)[rail.id]:
+        return _Wait(part.id, rail.id, _Order.ON_ITSELF)
+    before = way_to_earlier(case, later=watched, earlier=rail)
+    if before:
+        return _Wait(part.id, rail.id, _Order.FIRST, order_text(case, later=watched, way=before))
+    after = way_to_earlier(case, later=rail, earlier=watched)
+    feed = (Hop(part.domain or "", "supplied by"), Hop(rail.id, "supplied by"), *after[1:])
+    if after:
+        return _Wait(part.id, rail.id, _Order.LATER, order_text(case, later=rail, way=after), feed)
+    return _Wait(part.id, rail.id, _Order.UNKNOWN, onward=feed)
+
+
+def _asks_for_order(case: Case, comparator: Comparator, wait: _Wait, reach: Reach) -> Judgement:
+    """A person must look; of a power-on detector it is known to be wrong where the other rail comes later."""
+    watched = comparator.watches
+    itself = wait.part == comparator.id
+    who = "it" if itself else f"{wait.part}, which it leans on,"
+    feed = f"feed {'it' if itself else wait.part} from {watched}"
+    path = (*reach.path(wait.part), *wait.onward)
+    if wait.order is _Order.OFF_CHIP:
+        return case.asks(
+            f"rests on {wait.part} being there before {watched} reaches its trip level",
+            why=f"{wait.part} comes from off the chip, and no rail of the description says when",
+            mend=f"a source on the chip, fed from {watched}",
+            path=path,
+        )
+    if wait.order is _Order.UNKNOWN:
+        return case.asks(
+            f"rests on {wait.rail} being up before {watched}",
+            why=f"{who} is fed from {wait.rail}, and nothing says that {watched} comes up after it",
+            mend=f"give rails.{watched}.after and its delay if it does; else {feed}",
+            path=path,
+        )
+    says = f"{who} is fed from {wait.rail}, which comes up after {watched}"
+    if comparator.role == "power_on":
+        return case.fails(says, why=wait.says, mend=feed, path=path)
+    return case.asks(
+        says,
+        why=f"{wait.says}: until then its decision means nothing, and another detector must hold reset",
+        mend=f"a detector that holds reset until {wait.rail} is up; or {feed}",
+        path=path,
+    )
+
+
+RULES: Final[tuple[Rule, ...]] = (sources_are_up_in_time,)

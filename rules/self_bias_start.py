@@ -1,0 +1,255 @@
+"""Self-bias: what feeds itself, and what waits for itself, has something that starts it."""
+
+from __future__ import annotations
+
+from typing import Any, Final
+
+from tidegate.lint.case import Case
+from tidegate.lint.derived.rail_of import domain_rail
+from tidegate.lint.derived.safe_rounding import show_down
+from tidegate.lint.description.model.detector import Bias, Reference
+from tidegate.lint.description.model.supply import Domain, Rail
+from tidegate.lint.graph.edge import Path, path_text
+from tidegate.lint.graph.leaning_gaps import leaning_gaps
+from tidegate.lint.graph.leaning_loops import LeaningLoop, leaning_loops
+from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.physics.ramp import ramp_slope_v_per_s
+from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.rule import Example, Judge, Rule, rule
+
+_IDLE_STATE: Final = (
+    "P. R. Gray, P. J. Hurst, S. H. Lewis, R. G. Meyer, Analysis and Design of Analog Integrated Circuits: a "
+    "self-biased circuit has a second stable state in which nothing flows, and needs a start-up circuit "
+    "(value from memory)"
+)
+_STARTS_PROVES: Final = (
+    "A source that feeds its own bias has a start-up circuit that takes it out of the state in which nothing flows, "
+    "and that circuit works on the slowest ramp of the rail that feeds it (the lowest nominal level over the longest "
+    "rise time). Where the source is switched on by another element, the ramp it sees is not that of the rail, and a "
+    "person must look."
+)
+_STARTS_MEND: Final = "a start-up circuit that works on any ramp, and is cut off once the output is up"
+
+
+def _start_facts(section: str, what: str) -> tuple[str, ...]:
+    return (
+        f"{section}.*.{what}", f"{section}.*.start_up", f"{section}.*.start_up.least_slope",
+        "the domain, its kind, and its rail's nominal and rise, where that slope is above zero",
+    )  # fmt: skip
+
+
+@rule(
+    "self_bias/reference_starts",
+    title="a self-biased reference has a start-up circuit that works on the slowest ramp",
+    level=Level.ERROR,
+    applies_to="references",
+    proves=_STARTS_PROVES,
+    facts=_start_facts("references", "self_biased"),
+    mend=_STARTS_MEND,
+    sources=(_IDLE_STATE,),
+    example=Example(
+        fails="references: {ref_fast: {start_up: none}}",
+        holds="references: {ref_fast: {start_up: {least_slope: 80 V/s}}}",
+    ),
+    formulas=(ramp_slope_v_per_s,),
+)
+def self_biased_reference_starts(reference: Reference, case: Case) -> Judgement:
+    """Judge the start-up circuit of a self-biased reference."""
+    if reference.self_biased is None and reference.kind in ("divider", "external"):
+        return case.not_applicable(f"a reference of the kind {reference.kind} does not feed itself")
+    if not case.own.must("self_biased"):
+        return case.not_applicable("it is not self-biased")
+    return _starts(reference, case)
+
+
+@rule(
+    "self_bias/bias_starts",
+    title="a self-biased source of bias has a start-up circuit that works on the slowest ramp",
+    level=Level.ERROR,
+    applies_to="biases",
+    proves=_STARTS_PROVES,
+    facts=_start_facts("biases", "kind"),
+    mend=_STARTS_MEND,
+    sources=(_IDLE_STATE,),
+    example=Example(
+        fails="biases: {bias_start: {kind: self_biased, start_up: none}}",
+        holds="biases: {bias_start: {kind: self_biased, start_up: {by: a leak, least_slope: 0 V/s}}}",
+    ),
+    formulas=(ramp_slope_v_per_s,),
+)
+def self_biased_bias_starts(bias: Bias, case: Case) -> Judgement:
+    """Judge the start-up circuit of a self-biased source of bias."""
+    kind = case.own.must("kind")
+    if kind != "self_biased":
+        return case.not_applicable(f"a bias of the kind {kind} does not feed itself")
+    return _starts(bias, case)
+
+
+def _starts(source: Reference | Bias, case: Case) -> Judgement:
+    if case.own.must("start_up") == "none":
+        return case.fails(
+            "feeds itself and has no start-up circuit: it may stay in the state in which nothing flows",
+            mend=_STARTS_MEND,
+            at="start_up",
+        )
+    least_v_per_s = case.own.most("start_up.least_slope")
+    case.settle()
+    if least_v_per_s == 0.0:
+        return case.passes("its start-up circuit works on any ramp", at="start_up.least_slope")
+    domain = case.own.element("domain")
+    assert isinstance(domain, Domain)
+    kind, rail = case.gather(lambda: case.of(domain).must("kind"), lambda: domain_rail(case, domain))
+    switch = source.gated_by or (domain.switched_by if kind == "switched" else None)
+    if switch is not None or kind == "switched":
+        return _asks_for_switched_ramp(case, rail, domain, switch, least_v_per_s)
+    facts = case.of(rail)
+    nominal_v, rise_s = facts.least("nominal"), facts.most("rise")
+    case.settle()
+    slowest_v_per_s = ramp_slope_v_per_s(rise_v=nominal_v, rise_s=rise_s)
+    return case.at_most(
+        need=slowest_v_per_s,
+        have=least_v_per_s,
+        dimension=Dimension.SLOPE,
+        says="its start-up circuit needs a ramp of",
+        why=f"slowest ramp of {rail.id}: {show(nominal_v, Dimension.VOLTAGE)} in {show(rise_s, Dimension.DURATION)}",
+        mend=f"a start-up circuit that works on {show_down(slowest_v_per_s, Dimension.SLOPE)} or less; now "
+        f"{show(least_v_per_s, Dimension.SLOPE)}; or a rise of {rail.id} in "
+        f"{show_down(nominal_v / least_v_per_s, Dimension.DURATION)} or less; now {show(rise_s, Dimension.DURATION)}",
+        at="start_up.least_slope",
+    )
+
+
+def _asks_for_switched_ramp(
+    case: Case, rail: Rail, domain: Domain, switch: str | None, least_v_per_s: float
+) -> Judgement:
+    by = f"by {switch}" if switch else f"with {domain.id}"
+    return case.asks(
+        f"its start-up circuit needs a ramp of {show(least_v_per_s, Dimension.SLOPE)}, and it is switched on {by}",
+        why=f"when it is switched on, {rail.id} may stand still; the ramp it sees is that of the switch, which is not "
+        "described",
+        mend=_STARTS_MEND,
+        at="start_up.least_slope",
+    )
+
+
+def _loop_rule(section: str, word: str, example: Example) -> Rule:
+    """The rule about loops for the elements of one section: the same for each of them."""
+    described: Judge = rule(
+        f"self_bias/{word}_loop_starts",
+        title=f"no {word} waits for itself, unless a start-up circuit breaks the loop",
+        level=Level.ERROR,
+        applies_to=section,
+        proves="Every closed way of elements that lean on each other holds a bias or a reference whose start-up "
+        "circuit stands in for what it is biased by. A start-up circuit stands in for no supply and no enable. "
+        "Each loop is judged once, at its first element in the order of the description. Ways through a detector's "
+        "output are judged by self_bias/no_loop.",
+        facts=(
+            "every fact that says what an element leans on: domain, bias, source, leans_on, gated_by, driven_by, "
+            "made_by, after, switched_by, guards",
+            "references.*.start_up and biases.*.start_up of those in a loop",
+        ),
+        mend="a start-up circuit in the loop, or one step of it taken out",
+        sources=("a closed way in the graph of who leans on whom has no first step (derived)", _IDLE_STATE),
+        example=example,
+    )
+    return described(_loop_starts)
+
+
+_JUDGED: Final = ("rails", "references", "biases", "output_stages", "loads")
+"""Sections of which every loop without a comparator holds an element.
+
+A domain leans on a rail, or on what switches it; a reset net on a stage; nothing leans on an override or on a pair.
+"""
+
+
+def _loop_starts(element: Any, case: Case) -> Judgement:
+    """Judge the loop that an element is in, at the first element of the loop."""
+    loop = case.graph.once(leaning_loops).get(element.id)
+    if loop is None:
+        _note_gaps(case)
+        case.settle()
+        return case.passes("leans on nothing that leans on it")
+    cycle = loop.deadlock or loop.doubtful
+    if not cycle:
+        return case.passes(f"is in a loop that {_starters(loop)}")
+    first = _first(case, loop, cycle)
+    if first != element.id:
+        return case.not_applicable(f"its loop is judged at {first}")
+    if not loop.deadlock:
+        for member in loop.unknown:
+            case.of(case.graph.elements[member]).lacks("start_up")
+        case.settle()
+    return case.fails(
+        f"waits for itself, and nothing starts it: {path_text(cycle)}",
+        why=f"{_starters(loop)} other ways of the loop" if loop.started_by else "",
+        mend="a start-up circuit that stands in for the bias of one of them, or one step of the loop taken out",
+        path=cycle,
+    )
+
+
+def _starters(loop: LeaningLoop) -> str:
+    return f"{' and '.join(loop.started_by)} {'start' if len(loop.started_by) > 1 else 'starts'}"
+
+
+def _first(case: Case, loop: LeaningLoop, cycle: Path) -> str:
+    """The first element of a cycle, in the order of the description, that one of the rules about loops judges."""
+    on_it = {hop.element for hop in cycle}
+    return next(name for name in loop.members if name in on_it and case.graph.elements[name].section in _JUDGED)
+
+
+def _note_gaps(case: Case) -> None:
+    """Note the missing facts of an element and its domain that could hide a loop."""
+    domain = case.description.domains.get(getattr(case.subject, "domain", None) or "")
+    for element in (case.subject, domain):
+        if element is not None:
+            for fact in leaning_gaps(element):
+                case.of(element).lacks(fact)
+
+
+RULES: Final[tuple[Rule, ...]] = (
+    self_biased_reference_starts,
+    self_biased_bias_starts,
+    _loop_rule(
+        "rails",
+        "rail",
+        Example(
+            fails="loads: {core_regulator: {domain: core}}",
+            holds="loads: {core_regulator: {domain: aon}}",
+        ),
+    ),
+    _loop_rule(
+        "references",
+        "reference",
+        Example(
+            fails="{references: {ref_main: {start_up: none}}, biases: {bias_main: {source: ref_main, start_up: none}}}",
+            holds="{references: {ref_main: {start_up: {by: a leak, least_slope: 0 V/s}}}, "
+            "biases: {bias_main: {source: ref_main, start_up: none}}}",
+        ),
+    ),
+    _loop_rule(
+        "biases",
+        "bias",
+        Example(
+            fails="biases: {bias_main: {source: bias_copy, start_up: none}, bias_copy: {kind: from_reference, "
+            "source: bias_main, domain: analog, start_up: none}}",
+            holds="biases: {bias_main: {source: ref_fast}, bias_copy: {kind: from_reference, source: bias_main, "
+            "domain: analog}}",
+        ),
+    ),
+    _loop_rule(
+        "output_stages",
+        "stage",
+        Example(
+            fails="output_stages: {por_out: {gated_by: gather}}",
+            holds="output_stages: {por_out: {gated_by: null}}",
+        ),
+    ),
+    _loop_rule(
+        "loads",
+        "load",
+        Example(
+            fails="loads: {adc: {leans_on: [core_logic]}, core_logic: {leans_on: [adc]}}",
+            holds="loads: {adc: {leans_on: [core_logic]}}",
+        ),
+    ),
+)

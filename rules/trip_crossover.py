@@ -1,0 +1,220 @@
+"""Trip levels made without a reference: what the components make of them, over corners and temperature."""
+
+from __future__ import annotations
+
+from typing import Final
+
+from tidegate.lint.case import Case
+from tidegate.lint.derived.crossover_level import CrossoverLevel, Place, divider_level, second_crossing_level
+from tidegate.lint.derived.follower_supplies import follower_supplies
+from tidegate.lint.derived.guarded_loads import Bound
+from tidegate.lint.derived.placement_facts import as_shipped
+from tidegate.lint.derived.safe_rounding import show_up
+from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window, rising_window
+from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.physics import crossing_point
+from tidegate.lint.physics.crossing_point import NoCrossingError
+from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.rule import Example, Rule, rule
+
+_V: Final = Dimension.VOLTAGE
+_DIVIDERS: Final = ("divider_diode", "divider_mos")
+_FACTS: Final = (
+    "comparators.*.crossover", "process.diodes.*, or process.devices.*", "conditions.junction_temperature",
+)  # fmt: skip
+_SPICE: Final = "saturation-current law of the SPICE junction models (Nagel, Memorandum ERL-M520, 1975)"
+_EKV: Final = "Enz, Krummenacher and Vittoz, Analog Integrated Circuits and Signal Processing 8, 83-114 (1995)"
+_UNITS: Final = {
+    "threshold": Dimension.VOLTAGE, "threshold slope": Dimension.TEMPERATURE_SLOPE, "gain": Dimension.GAIN_FACTOR,
+    "resistance": Dimension.RESISTANCE, "saturation current": Dimension.CURRENT,
+    "reference current": Dimension.CURRENT,
+}  # fmt: skip
+
+
+def _no_divider(comparator: Comparator, case: Case) -> Judgement | None:
+    if comparator.crossover is None:
+        return case.not_applicable("its level comes from a reference, not from a crossover")
+    if case.own.must("crossover.kind") in _DIVIDERS:
+        return None
+    return case.not_applicable(
+        "its level depends on how the reference current comes up; trip_window/second_crossing judges it in service"
+    )
+
+
+@rule(
+    "trip_window/crossover_level",
+    title="the components of a crossover make the level that is stated",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="The level at which the divided supply overtakes a diode or a diode-connected MOS device fed through a "
+    "resistor, solved at every corner of what is given (threshold, its slope, gain, resistance, saturation current and "
+    "offset at the ends of their spans) and over the range of temperature, lies inside the rising level as it is "
+    "stated. At every corner there is such a level; else nothing holds reset.",
+    facts=(*_FACTS, "comparators.*.trip.rising"),
+    mend="state the level that the components make, or change the components",
+    sources=(_SPICE, _EKV),
+    example=Example(
+        fails="comparators: {por: {crossover: {ratio: 0.46}}}",
+        holds="comparators: {por: {crossover: {ratio: 0.5}}}",
+    ),
+    formulas=(
+        crossing_point.divider_crossing_v, crossing_point.junction_at, crossing_point.diode_connected_at,
+        crossing_point.slope_factor_of_swing,
+    ),
+)  # fmt: skip
+def components_make_the_level(comparator: Comparator, case: Case) -> Judgement:
+    """Compare the window worked out with the one stated."""
+    if (other := _no_divider(comparator, case)) is not None:
+        return other
+    shipped = as_shipped(case, comparator)
+    level, stated = case.gather(lambda: divider_level(case, comparator), lambda: rising_window(case, shipped))
+    try:
+        least, most = level.least(), level.most()
+        swings = level.swings_v()
+    except NoCrossingError:
+        return case.fails(
+            "at some corner the divided supply is ahead from the start: nothing holds reset at any supply",
+            mend="a smaller ratio, or a smaller resistance, so that the device is ahead at low supply",
+            at="crossover",
+        )
+    parts = ", ".join(f"{name} {show(width_v, _V)}" for name, width_v in swings if width_v > 0.0)
+    why = (
+        f"components {show(least.level_v, _V)} to {show(most.level_v, _V)}, stated {show(stated.least_v, _V)} to "
+        f"{show(stated.most_v, _V)}; what moves it: {parts}"
+    )
+    mend = f"state {show(least.level_v, _V)} to {show(most.level_v, _V)}, or narrow what moves it most: {swings[0][0]}"
+    if least.level_v - stated.least_v <= stated.most_v - most.level_v:
+        return case.at_least(
+            need=stated.least_v, have=least.level_v, dimension=_V, says="rising level that the components make, lowest",
+            why=f"{why}; lowest {_where(least)}", mend=mend, at="crossover",
+        )  # fmt: skip
+    return case.at_most(
+        need=stated.most_v, have=most.level_v, dimension=_V, says="rising level that the components make, highest",
+        why=f"{why}; highest {_where(most)}", mend=mend, at="crossover",
+    )  # fmt: skip
+
+
+def _where(place: Place) -> str:
+    """The temperature and corner of a level, in words."""
+    words = [
+        f"{name} {show(value, _UNITS.get(name, _V)) if value >= 0.0 else '-' + show(-value, _V)}"
+        for name, value in place.corner.items()
+    ]
+    return f"at {show(place.t_k, Dimension.TEMPERATURE)} with {', '.join(words)}"
+
+
+@rule(
+    "trip_window/crossover_tracks",
+    title="a level made without a reference stays above what must work once it lets go",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="At every corner and every temperature, the level that the components make, less the greatest hysteresis, "
+    "is at least the supply that the most demanding of what must work once the detector lets go needs at that "
+    "temperature (a reference: its lowest supply at the cold end, moved by works_from_slope). Corner by corner, not "
+    "extreme against extreme.",
+    facts=(
+        *_FACTS, "works_from, and works_from_slope of references, of what follows", "comparators.*.hysteresis.amount",
+    ),
+    mend="a higher level, or a reference that works from less",
+    sources=(_SPICE, _EKV, "common practice, no source: both levels fall with temperature, and should do so alike"),
+    example=Example(
+        fails="references: {ref_fast: {works_from: {max: 1.3 V}}}",
+        holds="references: {ref_fast: {works_from: {max: 1.06 V}}}",
+    ),
+    formulas=(crossing_point.divider_crossing_v,),
+)  # fmt: skip
+def level_tracks_followers(comparator: Comparator, case: Case) -> Judgement:
+    """Find the corner and temperature with the least room."""
+    if (other := _no_divider(comparator, case)) is not None:
+        return other
+    if comparator.role != "power_on":
+        return case.not_applicable("only a power-on detector lets go what is not up yet")
+    if case.attempt(lambda: follower_supplies(case, comparator)) == []:
+        return case.not_applicable("nothing follows it on this rail")
+    level, bounds, kept_v = case.gather(
+        lambda: divider_level(case, comparator),
+        lambda: follower_supplies(case, comparator),
+        lambda: 0.0 if has_no_hysteresis(comparator) else hysteresis_window(case, as_shipped(case, comparator)).most_v,
+    )
+    slopes = [_slope_v_per_k(case, bound) for bound in bounds]
+    cold_k = level.temperature_k[0]
+
+    def needs(t_k: float) -> tuple[float, str]:
+        return max(
+            (bound.level_v + slope * (t_k - cold_k), bound.element)
+            for bound, slope in zip(bounds, slopes, strict=True)
+        )  # fmt: skip
+
+    try:
+        worst = level.where_least(lambda place: place.level_v - needs(place.t_k)[0])
+    except NoCrossingError:
+        return case.not_applicable("at some corner there is no level at all (trip_window/crossover_level says so)")
+    need_v, element = needs(worst.t_k)
+    have_v = worst.level_v - kept_v
+    return case.at_least(
+        need=need_v,
+        have=have_v,
+        dimension=_V,
+        says="falling level, where it is closest at equal temperature,",
+        why=f"{_where(worst)}; {element} works from {show(need_v, _V)} there; {_extremes(level, bounds, kept_v)}",
+        mend=f"a level at least {show_up(need_v - have_v, _V)} higher, or {element} working from that much less",
+        at="crossover",
+    )
+
+
+def _slope_v_per_k(case: Case, bound: Bound) -> float:
+    """How the least supply of a follower moves with temperature: what is given, at its end that helps least."""
+    reference = case.description.references.get(bound.element)
+    if reference is None or reference.works_from_slope is None:
+        return 0.0
+    return case.of(reference).most("works_from_slope")
+
+
+def _extremes(level: CrossoverLevel, bounds: list[Bound], kept_v: float) -> str:
+    """What extreme against extreme would say."""
+    apart_v = level.least().level_v - kept_v - bounds[0].level_v
+    return f"extreme against extreme it would be {show(abs(apart_v), _V)} {'above' if apart_v >= 0.0 else 'below'}"
+
+
+@rule(
+    "trip_window/second_crossing",
+    title="a crude current that holds reset does not overtake the reference again in service",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="At every corner and every temperature, the supply at which the mirrored crude current reaches the least "
+    "reference current, I R + V(I) with I the reference current over the mirror ratio, is at least the highest supply "
+    "delivered plus ripple/2; else the chip is reset in service.",
+    facts=(*_FACTS, "rails.*.delivered", "rails.*.ripple.peak_to_peak"),
+    mend="a larger resistance, a larger reference current, or a smaller mirror ratio",
+    sources=(_SPICE, _EKV, "Kirchhoff's voltage law around the branch (derived)"),
+    example=Example(
+        fails="comparators: {por: {crossover: {kind: crude_current, reference_current: 400 nA, mirror: 1}}}",
+        holds="comparators: {por: {crossover: {kind: crude_current, reference_current: 900 nA, mirror: 1}}}",
+    ),
+    formulas=(crossing_point.branch_level_v,),
+)
+def no_second_crossing(comparator: Comparator, case: Case) -> Judgement:
+    """Compare the supply of the second crossing with the highest in service."""
+    if comparator.crossover is None:
+        return case.not_applicable("its level comes from a reference, not from a crossover")
+    if case.own.must("crossover.kind") != "crude_current":
+        return case.not_applicable("its crossover compares voltages: the divided supply stays ahead")
+    facts = case.of(case.description.rails[comparator.watches])
+    delivered_v, half_ripple_v = facts.most("delivered"), facts.most("ripple.peak_to_peak") / 2
+    level = second_crossing_level(case, comparator)
+    case.settle()
+    least = level.least()
+    highest_v = delivered_v + half_ripple_v
+    return case.at_least(
+        need=highest_v,
+        have=least.level_v,
+        dimension=_V,
+        says="supply at which the crude current overtakes the reference again",
+        why=f"lowest {_where(least)}; {comparator.watches} reaches {show(highest_v, _V)} in service",
+        mend="a larger resistance, a larger reference current, or a smaller mirror ratio",
+        at="crossover",
+    )
+
+
+RULES: Final[tuple[Rule, ...]] = (components_make_the_level, level_tracks_followers, no_second_crossing)

@@ -1,0 +1,354 @@
+"""Trip windows: each level protects what it must, is quiet in service and lets go again, at every code."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from functools import partial
+from typing import Final
+
+from tidegate.lint.case import Case
+from tidegate.lint.derived.ask_all import ask_all
+from tidegate.lint.derived.at_code import at_code
+from tidegate.lint.derived.guarded_loads import greatest_supplies, least_supplies
+from tidegate.lint.derived.level_margins import LevelMargin, comes_back, guarantee, protects_nothing, quiet
+from tidegate.lint.derived.placement_facts import PLACED_ROLES, as_shipped
+from tidegate.lint.derived.response import response
+from tidegate.lint.derived.safe_rounding import show_down, show_up
+from tidegate.lint.derived.trip_levels import falling_window, rising_window
+from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.physics import trip_margin, trip_window
+from tidegate.lint.physics.placement import Side
+from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.rule import Example, Rule, rule
+from tidegate.rules import trip_crossover, trip_order
+
+_V: Final = Dimension.VOLTAGE
+_TIE: Final = 1e-9  # what rounding leaves of an exact tie, as a share
+_COMMON_PRACTICE: Final = "common practice, no source: the levels of a supply detector, their errors taken off, keep "
+_LEVELS: Final = (
+    "comparators.*.trip (or codes and ships_with), with errors or ranges",
+    "conditions.combine",
+    "conditions.coverage",
+)
+_RESPONSE: Final = ("comparators.*.delay, filter, sampling", "rails.*.collapse, or overshoot")
+
+
+def _not_placed(comparator: Comparator, case: Case) -> Judgement | None:
+    if comparator.role in PLACED_ROLES:
+        return None
+    return case.not_applicable("watches whether a reference is ready, not the range of a supply")
+
+
+def _nothing_leans(comparator: Comparator, case: Case) -> Judgement:
+    rail = comparator.watches
+    if comparator.role == "power_on":
+        return case.not_applicable(f"nothing on {rail} waits for it that no under-voltage detector looks after")
+    return case.not_applicable(f"guards no load that needs {rail}")
+
+
+def _at(comparator: Comparator, level: str) -> str:
+    return f"trip.{level}" if comparator.trip is not None else f"codes.{comparator.ships_with}.{level}"
+
+
+def _measured(comparator: Comparator, case: Case, found: LevelMargin, mend: str) -> Judgement:
+    """Compare the end of a level with its limit."""
+    answer = case.at_least if found.side is Side.LEAST else case.at_most
+    return answer(
+        need=found.limit_v, have=found.end_v, dimension=_V, says=found.says, why=found.why, mend=mend,
+        at=_at(comparator, found.level.value), path=found.bound.path if found.bound is not None else (),
+    )  # fmt: skip
+
+
+def _move(found: LevelMargin) -> str:
+    """By how much the levels, or their error, must change."""
+    way = "up" if found.side is Side.LEAST else "down"
+    return f"levels {show_up(-found.margin_v, _V)} further {way}, or an error that much smaller"
+
+
+@rule(
+    "trip_window/guarantee",
+    title="what the detector guards is in reset before the supply leaves its range",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="Under-voltage: F_lo - s t >= the least supply of the most demanding load that the detector guards and that "
+    "needs the rail. Over-voltage: R_hi + s t <= the greatest supply of the most demanding load. Power-on: F_lo and "
+    "R_lo >= the least supply of all that must work once it lets go: the detectors that judge the same reset nets "
+    "after it with their references and bias, and loads for which no under-voltage detector stands. F and R are the "
+    "falling and the rising level at the end that is worst, s is the steepest collapse or overshoot of the rail and t "
+    "the longest delay plus filter plus sampling period. A load that does not say from or up to which supply it works "
+    "leaves this open.",
+    facts=(*_LEVELS, *_RESPONSE, "loads.*.needs.*.works", "works_from of what follows a power-on detector"),
+    mend="levels further in, a smaller error, or a faster answer",
+    sources=(_COMMON_PRACTICE + "what they guard inside its working range until the detector has answered",),
+    example=Example(
+        fails="comparators: {uv: {trip: {rising: 1.652 V, falling: 1.602 V}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+    ),
+    formulas=(
+        trip_margin.under_voltage_guarantee_v, trip_margin.over_voltage_guarantee_v, trip_margin.power_on_guarantee_v,
+        trip_window.response_time_s, trip_window.droop_during_response_v,
+    ),
+)  # fmt: skip
+def guarded_before_out_of_range(comparator: Comparator, case: Case) -> Judgement:
+    """Compare the protecting level with the most demanding load, or follower, and the move of the rail."""
+    if (other := _not_placed(comparator, case)) is not None:
+        return other
+    if protects_nothing(case, comparator):
+        return _nothing_leans(comparator, case)
+    found = guarantee(case, as_shipped(case, comparator))
+    assert found is not None and found.bound is not None
+    follower = found.bound.element not in case.description.loads
+    if found.margin_v < 0.0 and comparator.crossover is not None and follower:
+        return case.not_applicable(
+            f"extreme against extreme its {found.level.value} level can lie {show(-found.margin_v, _V)} below what "
+            f"{found.bound.element} works from; both move with temperature, and trip_window/crossover_tracks compares "
+            "them at the same one"
+        )
+    return _measured(comparator, case, found, f"{_move(found)}{_faster(found)}")
+
+
+def _faster(found: LevelMargin) -> str:
+    """The response that would do, where one would."""
+    assert found.bound is not None
+    left_v = abs(found.end_v - found.bound.level_v)
+    ahead = (found.end_v > found.bound.level_v) is (found.side is Side.LEAST)
+    if not ahead or found.slew_v_per_s == 0.0 or left_v == 0.0:
+        return ""
+    return f"; or an answer within {show_down(left_v / found.slew_v_per_s, Dimension.DURATION)}"
+
+
+@rule(
+    "trip_window/nuisance",
+    title="the detector stays quiet in service",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="Under-voltage and power-on: F_hi <= lowest supply delivered - ripple/2 - load step times source impedance. "
+    "Over-voltage: R_lo >= highest supply delivered + ripple/2. F and R are the falling and the rising level at the "
+    "end that is worst.",
+    facts=(
+        *_LEVELS, "rails.*.delivered", "rails.*.ripple.peak_to_peak", "rails.*.load_step", "rails.*.source_impedance",
+    ),
+    mend="levels further out, a smaller error, or a supply that stays in a smaller range",
+    sources=(_COMMON_PRACTICE + "clear of the supply in service",),
+    example=Example(
+        fails="comparators: {uv: {trip: {rising: 1.736 V, falling: 1.686 V}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+    ),
+    formulas=(
+        trip_margin.under_voltage_quiet_v, trip_margin.over_voltage_quiet_v, trip_margin.power_on_quiet_v,
+    ),
+)  # fmt: skip
+def quiet_in_service(comparator: Comparator, case: Case) -> Judgement:
+    """Compare the asserting level with the supply in service."""
+    if (other := _not_placed(comparator, case)) is not None:
+        return other
+    found = quiet(case, as_shipped(case, comparator))
+    return _measured(comparator, case, found, _move(found))
+
+
+@rule(
+    "trip_window/release",
+    title="the detector lets go at the end of the supply's range",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="Under-voltage and power-on: R_hi <= lowest supply delivered - ripple/2, so that the chip starts on the "
+    "lowest supply it may get. Over-voltage: F_lo >= highest supply delivered + ripple/2, so that a report ends once "
+    "the supply is back in service. R and F are the rising and the falling level at the end that is worst.",
+    facts=(*_LEVELS, "rails.*.delivered", "rails.*.ripple.peak_to_peak"),
+    mend="levels further out, less hysteresis, or a smaller error",
+    sources=(_COMMON_PRACTICE + "a way back into service",),
+    example=Example(
+        fails="comparators: {uv: {trip: {rising: 1.696 V, falling: 1.646 V}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+    ),
+    formulas=(
+        trip_margin.under_voltage_comes_back_v, trip_margin.over_voltage_comes_back_v,
+        trip_margin.power_on_comes_back_v,
+    ),
+)  # fmt: skip
+def lets_go_in_range(comparator: Comparator, case: Case) -> Judgement:
+    """Compare the releasing level with the end of the range delivered."""
+    if (other := _not_placed(comparator, case)) is not None:
+        return other
+    found = comes_back(case, as_shipped(case, comparator))
+    return _measured(comparator, case, found, f"{_move(found)}, or less hysteresis")
+
+
+@rule(
+    "trip_window/placement_sense",
+    title="the level that asserts, not the one that lets go, is placed against what is guarded",
+    level=Level.WARNING,
+    applies_to="comparators",
+    proves="Not both: F_hi below the least supply of the most demanding load, and R_hi at or above it. Levels placed "
+    "so that the detector surely has let go above the load's least supply leave it silent below, down to F_lo less the "
+    "move of the rail until the answer. Over-voltage is the mirror image: not R_lo above the load's greatest supply "
+    "with F_lo at or below it.",
+    facts=(*_LEVELS, *_RESPONSE, "loads.*.needs.*.works"),
+    mend="move both levels by what the asserting level is short of",
+    sources=(
+        "common practice, no source: signed off from 1.60 V, error 10 mV, hysteresis 50 mV; placed by its release the "
+        "detector may stay silent down to 1.53 V",
+    ),
+    example=Example(
+        fails="comparators: {uv: {trip: {rising: 1.61 V, falling: 1.56 V}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+    ),
+)
+def asserted_level_is_placed(comparator: Comparator, case: Case) -> Judgement:
+    """Fail if what is guarded lies between the two levels, on the side of the releasing one."""
+    if comparator.role not in ("under_voltage", "over_voltage"):
+        return case.not_applicable("is placed by what must work once it lets go (trip_window/guarantee)")
+    if protects_nothing(case, comparator):
+        return _nothing_leans(comparator, case)
+    over = comparator.role == "over_voltage"
+    shipped = as_shipped(case, comparator)
+    falling, rising, bounds = case.gather(
+        lambda: falling_window(case, shipped),
+        lambda: rising_window(case, shipped),
+        lambda: greatest_supplies(case, comparator) if over else least_supplies(case, comparator),
+    )
+    first = bounds[0]
+    level_v = first.level_v
+    wrong = falling.least_v <= level_v < rising.least_v if over else falling.most_v < level_v <= rising.most_v
+    if wrong:
+        moved_v = case.attempt(lambda: response(case, comparator).moved_v) or 0.0
+        end_v = rising.most_v + moved_v if over else falling.least_v - moved_v
+        side, up_to = ("up", "up to") if over else ("down", "from")
+        short_v = end_v - level_v if over else level_v - end_v
+        return case.fails(
+            f"is placed by the level that lets go: it may stay silent {side} to {show(end_v, _V)}, and {first.element} "
+            f"works {up_to} {show(level_v, _V)}",
+            why=f"falling {_text(falling)}, rising {_text(rising)}",
+            mend=f"both levels {show_up(short_v, _V)} further {'down' if over else 'up'}",
+            at=_at(comparator, "rising" if over else "falling"),
+            path=first.path,
+        )
+    beyond = falling.least_v > level_v if over else rising.most_v < level_v
+    if beyond:
+        return case.not_applicable(
+            f"both levels lie outside what {first.element} works with (trip_window/guarantee says so)"
+        )
+    return case.passes(
+        f"is placed by the level that asserts, against {first.element} at {show(level_v, _V)}",
+        at=_at(comparator, "rising" if over else "falling"),
+    )
+
+
+def _text(window: trip_window.Window) -> str:
+    if window.least_v == window.most_v:
+        return show(window.least_v, _V)
+    return f"{show(window.least_v, _V)} to {show(window.most_v, _V)}"
+
+
+@rule(
+    "trip_window/spread",
+    title="the rail has room for the spread of the levels",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="R_hi - F_lo, which is the hysteresis and the error on either side, is at most the room between the limit "
+    "of trip_window/guarantee and that of trip_window/release. With less room than that no place of the levels keeps "
+    "both.",
+    facts=("the facts of trip_window/guarantee and of trip_window/release",),
+    mend="a smaller error, less hysteresis, a faster answer, or a load that works with more",
+    sources=("the two inequalities added (derived)",),
+    example=Example(
+        fails="comparators: {uv: {errors: {reference: {share: 1.6 %}}}}",
+        holds="comparators: {uv: {errors: {reference: {share: 0.4 %}}}}",
+    ),
+)
+def spread_has_room(comparator: Comparator, case: Case) -> Judgement:
+    """Compare what the levels take with what the rail leaves them."""
+    if (other := _not_placed(comparator, case)) is not None:
+        return other
+    if protects_nothing(case, comparator):
+        return _nothing_leans(comparator, case)
+    shipped = as_shipped(case, comparator)
+    protects, returns = case.gather(lambda: guarantee(case, shipped), lambda: comes_back(case, shipped))
+    assert protects is not None and protects.bound is not None
+    if comparator.crossover is not None and protects.bound.element not in case.description.loads:
+        return case.not_applicable(
+            f"its level and what {protects.bound.element} needs move together with temperature "
+            "(trip_window/crossover_tracks compares them)"
+        )
+    room_v = abs(returns.limit_v - protects.limit_v)
+    if (returns.limit_v > protects.limit_v) is (comparator.role == "over_voltage"):
+        room_v = -room_v
+    spread_v = abs(returns.end_v - protects.end_v)
+    return case.at_most(
+        need=room_v, have=spread_v, dimension=_V, says="from the lowest falling to the highest rising level",
+        why=f"{protects.why}; {returns.why}",
+        mend=f"error and hysteresis {show_up(spread_v - room_v, _V)} smaller together",
+        at="errors" if comparator.errors else "trip",
+    )  # fmt: skip
+
+
+_CHECKS: Final[tuple[tuple[str, Callable[[Case, Comparator], LevelMargin | None]], ...]] = (
+    ("guarantee", guarantee), ("nuisance", quiet), ("release", comes_back),
+)  # fmt: skip
+
+
+@rule(
+    "trip_window/codes",
+    title="every code that can be chosen suits the rail",
+    level=Level.WARNING,
+    applies_to="comparators",
+    proves="trip_window/guarantee, nuisance and release hold at every code, not only at the one the part ships with. "
+    "Codes that do not suit the rail are named with what they are short of: a person must look whether they can be "
+    "chosen here, by a register, a fuse or a strap.",
+    facts=("comparators.*.codes", "comparators.*.ships_with", "and the facts of those three rules"),
+    mend="keep a code that does not suit the rail from being chosen",
+    sources=("common practice, no source: a level that can be selected is judged at every selection",),
+    example=Example(
+        fails="comparators: {uv: {ships_with: high, codes: {low: {rising: 1.6 V, falling: 1.55 V}, "
+        "high: {rising: 1.677 V, falling: 1.627 V}}}}",
+        holds="comparators: {uv: {ships_with: high, codes: {mid: {rising: 1.672 V, falling: 1.622 V}, "
+        "high: {rising: 1.677 V, falling: 1.627 V}}}}",
+    ),
+)
+def every_code_suits(comparator: Comparator, case: Case) -> Judgement:
+    """Judge the three margins at every code."""
+    if (other := _not_placed(comparator, case)) is not None:
+        return other
+    if not comparator.codes:
+        return case.not_applicable("its levels cannot be chosen")
+    case.own.must("ships_with")
+    found = _shortfalls(comparator, case)
+    usable = [code for code, short in found.items() if not short]
+    unusable = [code for code, short in found.items() if short]
+    rail, shipped = comparator.watches, comparator.ships_with
+    if not unusable:
+        return case.passes(f"every code suits {rail}: {', '.join(usable)}", at="codes")
+    why = "; ".join(f"{code}: {found[code]}" for code in unusable)
+    if not usable:
+        return case.fails(f"no code suits {rail}", why=why, mend="a code between the limits", at="codes")
+    ships = f"{shipped}, which it ships with, {'does not' if shipped in unusable else 'does'}"
+    return case.asks(
+        f"these codes suit {rail}: {', '.join(usable)}; these do not: {', '.join(unusable)} ({ships})",
+        why=why,
+        mend=f"ship with one of {', '.join(usable)}" if shipped in unusable else f"lock out {', '.join(unusable)}",
+        at="codes",
+    )
+
+
+def _shortfalls(comparator: Comparator, case: Case) -> dict[str, str]:
+    """What each code is short of; empty where it suits."""
+    asked = [(code, name, check) for code in comparator.codes for name, check in _CHECKS]
+    margins = ask_all(case, [partial(check, case, at_code(comparator, code)) for code, _, check in asked])
+    short: dict[str, list[str]] = {code: [] for code in comparator.codes}
+    for (code, name, _), found in zip(asked, margins, strict=True):
+        if found is not None and found.margin_v < -_TIE * abs(found.limit_v):
+            short[code].append(f"{show(-found.margin_v, _V)} short of trip_window/{name}")
+    return {code: ", ".join(texts) for code, texts in short.items()}
+
+
+RULES: Final[tuple[Rule, ...]] = (
+    guarded_before_out_of_range,
+    quiet_in_service,
+    lets_go_in_range,
+    asserted_level_is_placed,
+    spread_has_room,
+    every_code_suits,
+    *trip_order.RULES,
+    *trip_crossover.RULES,
+)
