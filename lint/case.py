@@ -161,25 +161,35 @@ class Case:
     def gather(self, *asks: Callable[[], Any]) -> tuple[Any, ...]:
         """What each function returns; every one is asked, so that all that is missing is named at once.
 
-        Raises: MissingFactsError: where a fact of any of them is missing.
+        Raises: MissingFactsError: where a fact is missing, with all that is.
         """
-        found = []
+        return tuple(self.gather_all(asks))
+
+    def gather_all(self, asks: Iterable[Callable[[], _A]]) -> list[_A]:
+        """``gather``, for any number of questions of one sort.
+
+        Raises: MissingFactsError: where a fact is missing, with all that is.
+        """
+        noted, found = self.missing, []
         for ask in asks:
-            with suppress(MissingFactsError):  # noted: settle speaks of it below
+            self.missing = []  # what another question lacks must not cut this one short
+            with suppress(MissingFactsError):
                 found.append(ask())
+            noted += self.missing
+        self.missing = noted
         self.settle()
-        return tuple(found)
+        return found
 
     def attempt(self, ask: Callable[[], _A]) -> _A | None:
         """What a function returns, or None where a fact it needs is missing; for what only helps a message."""
-        before = len(self.missing)
+        noted, self.missing = self.missing, []
         try:
             value = ask()
-            return value if len(self.missing) == before else None
+            return None if self.missing else value
         except MissingFactsError:
             return None
         finally:
-            del self.missing[before:]
+            self.missing = noted
 
     # Answers: ``says`` is one sentence, ``why`` the numbers behind it, ``at`` the fact it is about
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from enum import StrEnum
 
 import msgspec
@@ -48,7 +49,8 @@ class Measure(msgspec.Struct, frozen=True):
     def margin(self) -> float:
         """How far on the good side the number is; what rounding leaves of an exact tie counts as none."""
         margin = self.have - self.need if self.relation is Relation.AT_LEAST else self.need - self.have
-        return 0.0 if abs(margin) <= 1e-9 * max(abs(self.need), abs(self.have)) else margin
+        rounding = 1e-9 * max(abs(self.need), abs(self.have))
+        return 0.0 if abs(margin) <= rounding < math.inf else margin
 
     @property
     def holds(self) -> bool:

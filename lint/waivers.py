@@ -108,8 +108,8 @@ def _margin_problem(waiver: Waiver, judgement: Judgement) -> _Problem | None:
     if agreed is None:
         what = f"its margin {waiver.margin} is no {dimension.value.replace('_', ' ')}"
         return _Problem(what, f"write the margin that was agreed, such as {judgement.measure.margin_text()}", "margin")
-    if judgement.measure.margin < agreed - 1e-9 * abs(agreed):
-        now, then = judgement.measure.margin_text(), _signed(agreed, dimension)
+    now, then = judgement.measure.margin_text(), _signed(agreed, dimension)
+    if judgement.measure.margin < agreed and now != then:  # a margin is agreed as the report shows it, rounded
         what = f"the margin of {waiver.rule} on {waiver.element} is {now}, worse than the {then} agreed"
         return _Problem(what, "mend the finding, or agree on it again at this margin", "margin")
     return None

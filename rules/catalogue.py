@@ -6,6 +6,7 @@ from typing import Final
 
 from tidegate.lint.rule import Rule
 from tidegate.rules import (
+    bypass,
     claims,
     coupling,
     description,
@@ -14,6 +15,8 @@ from tidegate.rules import (
     hysteresis,
     own_range,
     passive_default,
+    self_bias,
+    start_up,
     trip_window,
 )
 
@@ -22,7 +25,10 @@ FAMILIES: Final[tuple[tuple[Rule, ...], ...]] = (
     trip_window.RULES,
     own_range.RULES,
     passive_default.RULES,
+    self_bias.RULES,
+    start_up.RULES,
     coupling.RULES,
+    bypass.RULES,
     electromigration.RULES,
     claims.RULES,
     evidence.RULES,

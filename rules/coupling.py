@@ -8,7 +8,6 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.coupling_map import Push, coupling_map
 from tidegate.lint.derived.disturbance import disturbers, kick, pair_bump, sharers
 from tidegate.lint.derived.quieting import quieter_pair, quieter_reference
@@ -74,7 +73,7 @@ def bump_is_kept(pair: Neighbour, case: Case) -> Judgement:
         for victim, aggressor in ways
         if not has_no_hysteresis(victim)
     ]
-    seen = [way for way in ask_all(case, asks) if way.kept_v > 0.0]
+    seen = [way for way in case.gather_all(asks) if way.kept_v > 0.0]
     if not seen:
         return case.not_applicable(_NOTHING_KEPT)
     worst, *others = sorted(seen, key=lambda way: way.spare_v)
@@ -117,7 +116,7 @@ def shared_reference_stays(comparator: Comparator, case: Case) -> Judgement:
         return case.not_applicable(f"no other comparator kicks {comparator.reference}")
     if has_no_hysteresis(comparator):
         return case.not_applicable(_NOTHING_KEPT)
-    seen = ask_all(case, [partial(seen_bump, case, comparator, other.bump) for other in others])
+    seen = case.gather_all([partial(seen_bump, case, comparator, other.bump) for other in others])
     worst = max(seen, key=lambda each: each.seen_v)
     return _kick_judged(case, worst, f"{worst.bump.aggressor} kicks {comparator.reference}, which moves its level by")
 
@@ -191,7 +190,7 @@ def neighbours_together_are_kept(comparator: Comparator, case: Case) -> Judgemen
         return case.not_applicable(f"{'one neighbour' if sources else 'no neighbour'} disturbs it")
     if has_no_hysteresis(comparator):
         return case.not_applicable(_NOTHING_KEPT)
-    seen = ask_all(case, [partial(seen_bump, case, comparator, source.bump) for source in sources])
+    seen = case.gather_all([partial(seen_bump, case, comparator, source.bump) for source in sources])
     seen.sort(key=lambda each: -each.seen_v)
     largest, kept_v = seen[0], seen[0].kept_v
     if kept_v <= 0.0:

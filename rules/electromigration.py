@@ -8,7 +8,6 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.crowbar_peak import Crowbar, crowbar_of
 from tidegate.lint.derived.output_metal import Conductor, line_of, vias_of
 from tidegate.lint.derived.rail_of import rail_of
@@ -150,7 +149,7 @@ def _forwards(path: Path) -> Path:
 
 def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, float]:
     """The detector with the least hysteresis, and how much it is, in V."""
-    windows = ask_all(case, (partial(hysteresis_window, case, detector) for detector in detectors))
+    windows = case.gather_all((partial(hysteresis_window, case, detector) for detector in detectors))
     least = {detector.id: window.least_v for detector, window in zip(detectors, windows, strict=True)}
     return min(least.items(), key=lambda each: each[1])
 

@@ -7,7 +7,6 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.at_code import at_code
 from tidegate.lint.derived.placement_facts import as_shipped
 from tidegate.lint.derived.rail_of import rail_of
@@ -51,7 +50,7 @@ def levels_lie_inside(comparator: Comparator, case: Case) -> Judgement:
         lambda: facts.most("works_from"),
         lambda: facts.least("works_to"),
         lambda: rail_of(case, comparator),
-        lambda: ask_all(case, [partial(_ends, case, at) for at in _at_every_code(comparator, case)]),
+        lambda: case.gather_all([partial(_ends, case, at) for at in _at_every_code(comparator, case)]),
     )
     low, high = min(ends.least_v for ends in found), max(ends.most_v for ends in found)
     range_text = f"works from {show(from_v, _V)} to {show(to_v, _V)}; levels {show(low, _V)} to {show(high, _V)}"

@@ -17,7 +17,7 @@ from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import Edge, EdgeKind, Hop, Path
 from tidegate.lint.graph.leaning_gaps import before_gaps, leaning_gaps
 from tidegate.lint.graph.leaning_loops import in_a_loop
-from tidegate.lint.graph.paths import Neighbours, Reach, drives, loop_through
+from tidegate.lint.graph.paths import Neighbours, Reach, drives, loop_through, step_onto
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
@@ -42,7 +42,7 @@ _V: Final = Dimension.VOLTAGE
     sources=("a decision counts only where the comparator works (derived)",),
     example=Example(
         fails="comparators: {por: {works_from: {max: 1.25 V}}}",
-        holds="comparators: {por: {works_from: {max: 1.18 V}}}",
+        holds="comparators: {por: {works_from: {max: 1.1 V}}}",
     ),
 )  # fmt: skip
 def comparator_works_at_own_trip(comparator: Comparator, case: Case) -> Judgement:
@@ -78,8 +78,8 @@ def comparator_works_at_own_trip(comparator: Comparator, case: Case) -> Judgemen
     mend="let what the detector leans on come up without the detector's output",
     sources=("a closed way in the graph of who leans on whom has no first step (derived)",),
     example=Example(
-        fails="biases: {bias_start: {gated_by: core_out}}",
-        holds="biases: {bias_start: {gated_by: null}}",
+        fails="references: {ref_fast: {gated_by: uv_out}}",
+        holds="references: {ref_main: {gated_by: uv_out}}",
     ),
 )
 def nothing_hangs_on_own_output(comparator: Comparator, case: Case) -> Judgement:
@@ -90,23 +90,16 @@ def nothing_hangs_on_own_output(comparator: Comparator, case: Case) -> Judgement
         _note_gaps(case, comparator)
         case.settle()
         return case.passes("nothing it leans on waits for its own output")
-    waiting, gate, words = _where_it_closes(path, Reach(comparator.id, drives(graph)))
+    waiting, (gate, words) = step_onto(path, Reach(comparator.id, drives(graph)))
     itself = waiting == comparator.id
+    one = waiting if gate == comparator.id else gate
     return case.fails(
         f"its own output comes back to it: {'it is' if itself else f'{waiting} is'} {words} {gate}",
-        why=f"{gate} cannot let go before {comparator.id} decides, and {comparator.id} cannot decide before"
-        if gate != comparator.id
-        else f"{comparator.id} cannot decide before it has decided",
+        why=f"{one} waits for {comparator.id}, and {comparator.id} waits for {one}" if one != comparator.id else "",
         mend=f"let {'it' if itself else waiting} come up without {gate}"
         + ("" if itself else f", or let {comparator.id} lean on something else"),
         path=path,
     )
-
-
-def _where_it_closes(path: Path, driven: Reach) -> tuple[str, str, str]:
-    """The first step of a closed way onto what the detector drives: who waits, for what, and the words between."""
-    step = next(number for number in range(1, len(path)) if path[number].element in driven)
-    return path[step - 1].element, path[step].element, path[step].by
 
 
 def _note_gaps(case: Case, comparator: Comparator) -> None:
@@ -128,8 +121,8 @@ def _note_gaps(case: Case, comparator: Comparator) -> None:
     level=Level.ERROR,
     applies_to="comparators",
     proves="The power-on detector, and every bias and reference in its chain, is awake whenever its supply is: none "
-    "comes from off the chip, is enabled by another element, lives in a switched domain or waits for a load, a stage or "
-    "another detector.",
+    "comes from off the chip, is enabled by another element, lives in a switched domain or waits for a load, a stage "
+    "or another detector.",
     facts=(
         "comparators.*.domain", "comparators.*.bias", "comparators.*.reference or comparators.*.crossover",
         "biases.*.kind", "the domain of each source in the chain, and domains.*.kind",
@@ -137,8 +130,8 @@ def _note_gaps(case: Case, comparator: Comparator) -> None:
     mend="a bias of its own, from the supply that it watches",
     sources=("common practice, no source: the first circuit to wake has nobody to wake it",),
     example=Example(
-        fails="comparators: {por: {gated_by: core_out}}",
-        holds="comparators: {por: {gated_by: null}}",
+        fails="comparators: {por: {gated_by: uv_core}}",
+        holds="comparators: {uv: {gated_by: uv_core}}",
     ),
 )  # fmt: skip
 def power_on_leans_on_nobody(comparator: Comparator, case: Case) -> Judgement:
@@ -146,7 +139,7 @@ def power_on_leans_on_nobody(comparator: Comparator, case: Case) -> Judgement:
     if comparator.role != "power_on":
         return case.not_applicable("it is no power-on detector")
     chain = Reach(comparator.id, _chain(case.graph))
-    others = list(_others(case.graph, chain))
+    others = list(_others(case.graph, chain, comparator.id))
     foreign = [other for other in others if not _hangs_on(case.graph, other, comparator)]
     if foreign:
         more = "; ".join(other.says for other in foreign[1:])
@@ -177,20 +170,25 @@ class _Other:
     """What it waits for, where that is an element of the description."""
 
 
-def _others(graph: Graph, chain: Reach) -> Iterator[_Other]:
+def _others(graph: Graph, chain: Reach, detector: str) -> Iterator[_Other]:
     for name in chain:
+        who = "it" if name == detector else name
         element = graph.elements[name]
         if isinstance(element, Bias | Reference) and element.kind == "external":
-            yield _Other(f"{name} comes from off the chip", f"a source on the chip in place of {name}", chain.path(name), None)
+            yield _Other(
+                f"{name} comes from off the chip", f"a source on the chip in place of {name}", chain.path(name), None
+            )
         if isinstance(element, Domain) and element.kind == "switched" and element.switched_by is None:
-            yield _Other(f"{name} is switched", f"a domain that is always on, in place of {name}", chain.path(name), None)
+            yield _Other(
+                f"{name} is switched", f"a domain that is always on, in place of {name}", chain.path(name), None
+            )
         if isinstance(element, Rail):
             continue
         for there, words, edge in graph.needs(name):
             if not _in_chain(graph, edge):
                 path = (*chain.path(name), Hop(there, words))
-                says = f"{name} {words if words == 'leans on' else f'is {words}'} {there}"
-                yield _Other(says, f"let {name} come up without {there}", path, there)
+                verb = words if edge.kind is EdgeKind.LEANS_ON else f"is {words}"
+                yield _Other(f"{who} {verb} {there}", f"let {who} come up without {there}", path, there)
 
 
 def _chain(graph: Graph) -> Neighbours:
@@ -204,7 +202,9 @@ def _chain(graph: Graph) -> Neighbours:
 
 def _in_chain(graph: Graph, edge: Edge) -> bool:
     """Whether an edge leads on to a supply or a source, and no enable lies between."""
-    return edge.kind is not EdgeKind.GATED_BY and isinstance(graph.elements[edge.head], Rail | Domain | Reference | Bias)
+    return edge.kind is not EdgeKind.GATED_BY and isinstance(
+        graph.elements[edge.head], Rail | Domain | Reference | Bias
+    )
 
 
 def _hangs_on(graph: Graph, other: _Other, comparator: Comparator) -> bool:

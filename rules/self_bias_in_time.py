@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
-from contextlib import suppress
+from collections.abc import Iterable
 from dataclasses import dataclass
 from enum import Enum
+from functools import partial
 from typing import Final
 
-from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.case import Case
 from tidegate.lint.derived.lowest_decision import LowestDecision, lowest_decision
 from tidegate.lint.derived.lowest_supply import LowestSupply, lowest_supply
 from tidegate.lint.derived.rail_of import rail_of
@@ -45,22 +45,24 @@ _V: Final = Dimension.VOLTAGE
     sources=("a decision is worth what it is made from (derived)",),
     example=Example(
         fails="biases: {bias_start: {works_from: {max: 1.3 V}}}",
-        holds="biases: {bias_start: {works_from: {max: 1.18 V}}}",
+        holds="biases: {bias_start: {works_from: {max: 1.1 V}}}",
     ),
 )  # fmt: skip
 def sources_are_up_in_time(comparator: Comparator, case: Case) -> Judgement:
-    """Compare the lowest supply of each source with the level at which it must work; then look at the order of rails."""
+    """Compare each source's lowest supply with the level at which it must work; then look at the order of rails."""
     reach = reach_of_sources(case, comparator)
     sources = sources_in(case, reach)
     off_chip = [source for source in sources if source.kind == "external"]
-    needs = list(_needs(case, comparator, [source for source in sources if source.kind != "external"]))
-    with suppress(MissingFactsError):
-        own_rail = rail_of(case, comparator)
-    case.settle()
+    on_chip = [source for source in sources if source.kind != "external"]
+    needs, own_rail = case.gather(
+        lambda: case.gather_all((partial(_need, case, comparator, source) for source in on_chip)),
+        lambda: rail_of(case, comparator),
+    )
     worst = min(needs, key=lambda need: need.measure.margin, default=None)
     if worst is not None and not worst.measure.holds:
         return _measured(case, worst, reach, ())
-    waits = [_wait(case, comparator, part, rail) for part, rail in ((comparator, own_rail), *_fed(needs))]
+    fed = ((comparator, own_rail), *((need.source, need.rail) for need in needs))
+    waits = [_wait(case, comparator, part, rail) for part, rail in fed]
     if off_chip and comparator.role != "power_on":
         return _asks_for_order(case, comparator, _off_chip_wait(off_chip[0]), reach)
     doubt = next((wait for wait in waits if wait.order in (_Order.LATER, _Order.UNKNOWN)), None)
@@ -88,14 +90,8 @@ class _Need:
         return Measure(self.least.level_v, self.works.level_v, _V, Relation.AT_MOST)
 
 
-def _needs(case: Case, comparator: Comparator, sources: Iterable[Bias | Reference]) -> Iterator[_Need]:
-    """Each source with its two levels; what is missing for one is noted, and the next one asked."""
-    for source in sources:
-        with suppress(MissingFactsError):
-            yield _need(case, comparator, source)
-
-
 def _need(case: Case, comparator: Comparator, source: Bias | Reference) -> _Need:
+    """A source with its two levels."""
     works, (rail, least) = case.gather(
         lambda: lowest_supply(case, source), lambda: _at_its_rail(case, comparator, source)
     )
@@ -107,23 +103,19 @@ def _at_its_rail(case: Case, comparator: Comparator, source: Bias | Reference) -
     return rail, lowest_decision(case, comparator, rail)
 
 
-def _fed(needs: Iterable[_Need]) -> Iterator[tuple[Bias | Reference, Rail]]:
-    return ((need.source, need.rail) for need in needs)
-
-
 def _measured(case: Case, worst: _Need, reach: Reach, waits: Iterable[_Wait]) -> Judgement:
     """The source with the least margin."""
     name, least, works = worst.source.id, worst.least, worst.works
-    at = f" {works.at}" if works.at else ""
+    at = (f"{name} is worst {works.at}",) if works.at else ()
     order = dict.fromkeys(wait.says for wait in waits if wait.order is _Order.FIRST)
     higher = f"; or a lowest falling level of {show_up(works.level_v, _V)} or more" if least.is_trip_level else ""
     return case.at_most(
         need=least.level_v,
         have=works.level_v,
         dimension=_V,
-        says=f"{name}, which it leans on, works{at} from",
-        why="; ".join((least.why, *order)),
-        mend=f"{name} working from {show_down(least.level_v, _V)} or less{at}; now {show(works.level_v, _V)}{higher}",
+        says=f"{name}, which it leans on, works from",
+        why="; ".join((least.why, *at, *order)),
+        mend=f"{name} working from {show_down(least.level_v, _V)} or less; now {show(works.level_v, _V)}{higher}",
         path=reach.path(name),
     )
 

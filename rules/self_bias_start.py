@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
 from typing import Any, Final
 
 from tidegate.lint.case import Case
@@ -11,11 +12,11 @@ from tidegate.lint.description.model.detector import Bias, Reference
 from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.graph.edge import Path, path_text
 from tidegate.lint.graph.leaning_gaps import leaning_gaps
-from tidegate.lint.graph.leaning_loops import LeaningLoop, leaning_loops
+from tidegate.lint.graph.leaning_loops import STARTED_WITHOUT, LeaningLoop, leaning_loops
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
 from tidegate.lint.quantity import Dimension, show
-from tidegate.lint.rule import Example, Judge, Rule, rule
+from tidegate.lint.rule import Example, Rule, rule
 
 _IDLE_STATE: Final = (
     "P. R. Gray, P. J. Hurst, S. H. Lewis, R. G. Meyer, Analysis and Design of Analog Integrated Circuits: a "
@@ -134,7 +135,7 @@ def _asks_for_switched_ramp(
 
 def _loop_rule(section: str, word: str, example: Example) -> Rule:
     """The rule about loops for the elements of one section: the same for each of them."""
-    described: Judge = rule(
+    described = rule(
         f"self_bias/{word}_loop_starts",
         title=f"no {word} waits for itself, unless a start-up circuit breaks the loop",
         level=Level.ERROR,
@@ -182,9 +183,18 @@ def _loop_starts(element: Any, case: Case) -> Judgement:
     return case.fails(
         f"waits for itself, and nothing starts it: {path_text(cycle)}",
         why=f"{_starters(loop)} other ways of the loop" if loop.started_by else "",
-        mend="a start-up circuit that stands in for the bias of one of them, or one step of the loop taken out",
+        mend=_mend(case, cycle),
         path=cycle,
     )
+
+
+def _mend(case: Case, cycle: Path) -> str:
+    """Where a start-up circuit would break a cycle; where none can, a step of it must go."""
+    for here, step in pairwise(cycle):
+        source = isinstance(case.graph.elements[here.element], Reference | Bias)
+        if source and step.by in {kind.forwards for kind in STARTED_WITHOUT}:
+            return f"a start-up circuit in {here.element}, which stands in for {step.element}"
+    return f"one step of the loop taken out, such as: {cycle[-2].element} {cycle[-1].by} {cycle[-1].element}"
 
 
 def _starters(loop: LeaningLoop) -> str:
@@ -241,7 +251,7 @@ RULES: Final[tuple[Rule, ...]] = (
         "stage",
         Example(
             fails="output_stages: {por_out: {gated_by: gather}}",
-            holds="output_stages: {por_out: {gated_by: null}}",
+            holds="output_stages: {gather: {gated_by: por_out}}",
         ),
     ),
     _loop_rule(

@@ -137,14 +137,12 @@ def level_tracks_followers(comparator: Comparator, case: Case) -> Judgement:
         lambda: follower_supplies(case, comparator),
         lambda: 0.0 if has_no_hysteresis(comparator) else hysteresis_window(case, as_shipped(case, comparator)).most_v,
     )
-    slopes = [_slope_v_per_k(case, bound) for bound in bounds]
+    lines = [_line(case, bound) for bound in bounds]
+    case.settle()
     cold_k = level.temperature_k[0]
 
     def needs(t_k: float) -> tuple[float, str]:
-        return max(
-            (bound.level_v + slope * (t_k - cold_k), bound.element)
-            for bound, slope in zip(bounds, slopes, strict=True)
-        )  # fmt: skip
+        return max((at_cold_v + slope * (t_k - cold_k), element) for at_cold_v, slope, element in lines)
 
     try:
         worst = level.where_least(lambda place: place.level_v - needs(place.t_k)[0])
@@ -163,12 +161,13 @@ def level_tracks_followers(comparator: Comparator, case: Case) -> Judgement:
     )
 
 
-def _slope_v_per_k(case: Case, bound: Bound) -> float:
-    """How the least supply of a follower moves with temperature: what is given, at its end that helps least."""
+def _line(case: Case, bound: Bound) -> tuple[float, float, str]:
+    """What a follower works from at the cold end in V, how that moves in V/K where it helps least, and its id."""
     reference = case.description.references.get(bound.element)
     if reference is None or reference.works_from_slope is None:
-        return 0.0
-    return case.of(reference).most("works_from_slope")
+        return bound.level_v, 0.0, bound.element
+    facts = case.of(reference)
+    return facts.most("works_from"), facts.most("works_from_slope"), bound.element
 
 
 def _extremes(level: CrossoverLevel, bounds: list[Bound], kept_v: float) -> str:

@@ -8,7 +8,6 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.placement_facts import PLACED_ROLES, as_shipped
 from tidegate.lint.derived.safe_rounding import show_up
 from tidegate.lint.derived.trip_levels import falling_window, rising_window
@@ -68,7 +67,7 @@ class _Step:
     mend="move the levels apart, or narrow their errors",
     sources=("common practice, no source: power-on, under-voltage, service, over-voltage, damage",),
     example=Example(
-        fails="comparators: {por: {trip: {rising: {min: 1.5 V, max: 1.7 V}, falling: {min: 1.11 V, max: 1.43 V}}}}",
+        fails="comparators: {por: {trip: {rising: {min: 1.17 V, max: 1.68 V}, falling: {min: 1.11 V, max: 1.43 V}}}}",
         holds="comparators: {por: {trip: {rising: {min: 1.17 V, max: 1.49 V}, falling: {min: 1.11 V, max: 1.43 V}}}}",
     ),
     formulas=(trip_margin.power_on_before_under_voltage_v,),
@@ -80,7 +79,7 @@ def detectors_stand_in_order(rail: Rail, case: Case) -> Judgement:
     placed = [comparator for comparator in watching if comparator.role in _PLACE]
     if len({comparator.role for comparator in placed}) < 2:
         return case.not_applicable("fewer than two sorts of detector watch it")
-    found = ask_all(case, [partial(_levels, case, detector) for detector in placed])
+    found = case.gather_all([partial(_levels, case, detector) for detector in placed])
     found.sort(key=lambda levels: _PLACE[levels.detector.role])
     step = min(_steps(found), key=lambda step: step.gap_v)
     ladder = ", ".join(

@@ -7,7 +7,6 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.at_code import at_code
 from tidegate.lint.derived.guarded_loads import greatest_supplies, least_supplies
 from tidegate.lint.derived.level_margins import LevelMargin, comes_back, guarantee, protects_nothing, quiet
@@ -334,7 +333,7 @@ def every_code_suits(comparator: Comparator, case: Case) -> Judgement:
 def _shortfalls(comparator: Comparator, case: Case) -> dict[str, str]:
     """What each code is short of; empty where it suits."""
     asked = [(code, name, check) for code in comparator.codes for name, check in _CHECKS]
-    margins = ask_all(case, [partial(check, case, at_code(comparator, code)) for code, _, check in asked])
+    margins = case.gather_all([partial(check, case, at_code(comparator, code)) for code, _, check in asked])
     short: dict[str, list[str]] = {code: [] for code in comparator.codes}
     for (code, name, _), found in zip(asked, margins, strict=True):
         if found is not None and found.margin_v < -_TIE * abs(found.limit_v):

@@ -22,6 +22,7 @@ FLOORS = (
     ("tidegate.lint.judgement",),
     ("tidegate.lint.case",),
     ("tidegate.lint.derived",),
+    ("tidegate.lint.timing",),
     ("tidegate.lint.rule",),
     ("tidegate.lint.waivers",),
     ("tidegate.lint.engine",),

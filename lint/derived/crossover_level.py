@@ -152,7 +152,8 @@ def _level(
 ) -> CrossoverLevel:  # fmt: skip
     whole = case.whole
     temperature_k = whole.least("conditions.junction_temperature"), whole.most("conditions.junction_temperature")
-    by_diode = crossover.kind == "divider_diode" or (crossover.kind == "crude_current" and crossover.device is None)
+    crude = crossover.kind == "crude_current"
+    by_diode = crossover.diode is not None and crossover.device is None if crude else crossover.kind == "divider_diode"
     device_spans, device_at = (_diode if by_diode else _mos)(case, comparator)
     case.settle()
     return CrossoverLevel(

@@ -8,7 +8,6 @@ from functools import partial
 from math import inf
 
 from tidegate.lint.case import Case, Facts
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.input_share import input_share
 from tidegate.lint.description.model.detector import Comparator, Reference
 from tidegate.lint.description.model.reset_path import Neighbour
@@ -82,7 +81,7 @@ def bumps_on(case: Case, comparator: Comparator) -> list[Bump]:
 
     Raises: MissingFactsError: where a fact of any of them is missing, with all that is.
     """
-    return ask_all(case, (disturber.bump for disturber in disturbers(case, comparator)))
+    return case.gather_all((disturber.bump for disturber in disturbers(case, comparator)))
 
 
 def kick(case: Case, aggressor: Comparator, victim: Comparator) -> Bump:

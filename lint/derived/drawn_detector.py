@@ -39,7 +39,7 @@ def drawn_detector(case: Case, comparator: Comparator, facts: PlacementFacts) ->
         return levels.falling_v + (limit.nominal_v - levels.falling_v) * ratio
 
     demands = tuple(
-        Demand(f"{limit.by.value}, {limit.level.value} level", limit.level, limit.side, limit_v(limit))
+        Demand(f"{limit.by.value} ({limit.level.value})", limit.level, limit.side, limit_v(limit))
         for limit in limits(facts)
     )
     return DrawnDetector(comparator.id, levels.rising_v, levels.falling_v, tuple(up), demands), coverage

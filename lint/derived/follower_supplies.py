@@ -6,7 +6,6 @@ from collections.abc import Iterator
 from functools import partial
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.guarded_loads import Bound, guarded_loads, least_supplies
 from tidegate.lint.derived.lowest_supply import lowest_supply
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
@@ -24,7 +23,7 @@ def follower_supplies(case: Case, power_on: Comparator) -> list[Bound]:
     watched = {load for other in _under_voltage(case, power_on.watches) for load in _loads(case, other)}
     alone = [load for load in _loads(case, power_on) if load not in watched]
     asks = [partial(_works_from, case, element, path) for element, path in _takes_over(case, power_on)]
-    sources, loads = case.gather(lambda: ask_all(case, asks), lambda: least_supplies(case, power_on) if alone else [])
+    sources, loads = case.gather(lambda: case.gather_all(asks), lambda: least_supplies(case, power_on) if alone else [])
     found = [*sources, *(bound for bound in loads if bound.element in alone)]
     return sorted(found, key=lambda bound: -bound.level_v)
 

@@ -6,7 +6,6 @@ from collections.abc import Sequence
 from functools import partial
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.rail_order import rails_before
 from tidegate.lint.description.model.reset_path import OutputStage
@@ -20,7 +19,7 @@ def not_alive(case: Case, stages: Sequence[OutputStage], *, held_rail: Rail) -> 
     up before it.
     Raises: MissingFactsError: where that is not given.
     """
-    whys = ask_all(case, (partial(_why, case, stage, held_rail) for stage in stages))
+    whys = case.gather_all((partial(_why, case, stage, held_rail) for stage in stages))
     return [(stage, why) for stage, why in zip(stages, whys, strict=True) if why]
 
 

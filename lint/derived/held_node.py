@@ -8,7 +8,6 @@ from functools import partial
 from typing import Final, Literal, TypeAlias
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.rail_of import delivered_v, rail_of
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.description.model.reset_path import OutputStage, Reset
@@ -154,7 +153,7 @@ def sure_high(case: Case, stage: OutputStage, *, supply: _End) -> SureLevel:
 
 def _sure(case: Case, stage: OutputStage, level: str, supply: _End) -> list[SureLevel]:
     asks = (partial(_levels, case, stage, reader, level, supply) for reader in reads_it(case, stage))
-    return [sure for levels in ask_all(case, asks) for sure in levels]
+    return [sure for levels in case.gather_all(asks) for sure in levels]
 
 
 def _levels(case: Case, stage: OutputStage, reader: OutputStage | Reset, level: str, supply: _End) -> list[SureLevel]:

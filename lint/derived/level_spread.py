@@ -6,6 +6,7 @@ from dataclasses import dataclass, replace
 from typing import Final
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.asking import NoAnswerError
 from tidegate.lint.derived.trip_levels import falling_window, hysteresis_window, level_errors, rising_window
 from tidegate.lint.description.model.detector import Comparator, Hysteresis
 from tidegate.lint.physics.tolerance import Contributor
@@ -86,11 +87,15 @@ class LevelSpreads:
 def level_spreads(case: Case, comparator: Comparator) -> LevelSpreads:
     """The spreads of both levels, in the form in which the description states them.
 
-    Raises: MissingFactsError: where an error, or what lies between the levels, is not given.
+    Raises:
+        MissingFactsError: where an error, or what lies between the levels, is not given.
+        NoAnswerError: where a crossover makes the level, and the description does not say where.
     """
     trip = comparator.trip
     down, up = (trip.falling, trip.rising) if trip is not None else (None, None)
     if down is None and up is None:
+        if comparator.crossover is not None:
+            raise NoAnswerError("its level is made by a crossover; state as trip where that puts it")
         own, (apart_v, _) = case.gather(lambda: _by_errors(case, comparator), lambda: _apart(case, comparator))
         return LevelSpreads(own, own, apart_v, None, None, ranged=False)
     falling, rising, (apart_v, apart_half_v) = case.gather(

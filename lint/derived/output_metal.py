@@ -8,7 +8,7 @@ from typing import Final
 
 from tidegate.lint.case import Case, Facts
 from tidegate.lint.derived.safe_rounding import width_up_um
-from tidegate.lint.derived.wire_limit import DirectLimit, chosen_entry, direct_limit, entry_at
+from tidegate.lint.derived.wire_limit import DirectLimit, LimitEntry, direct_limit, entry_at, table_limit
 from tidegate.lint.description.model.process import Layer, Process
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.physics.conductor_size import line_limit_a, vias_for_current, width_for_current_m
@@ -66,11 +66,13 @@ def line_of(case: Case, stage: OutputStage) -> Conductor:
     Raises: MissingFactsError: where a fact is missing.
     """
     own = case.of(stage)
-    width_m, (layer, table) = own.least("output.width"), _layer(case, own)
+    (layer, table, entry, per_width), width_m = case.gather(
+        lambda: _layer_limit(case, own), lambda: own.least("output.width")
+    )
     bias_m = 0.0 if layer.width_bias is None else table.most("width_bias")
-    entry = chosen_entry(case, layer.limits, table)
-    per_width = direct_limit(case, entry, entry.facts.least("dc"))
-    heating = {word: entry.facts.least(fact) for fact, word in _HEATING.items() if getattr(entry.entry, fact)}
+    heating = {
+        word: entry.facts.least(fact) for fact, word in _HEATING.items() if getattr(entry.entry, fact) is not None
+    }
     case.settle()
 
     def carries_a(per_width_a_per_m: float) -> float:
@@ -95,10 +97,12 @@ def line_of(case: Case, stage: OutputStage) -> Conductor:
     )
 
 
-def _layer(case: Case, own: Facts) -> tuple[Layer, Facts]:
+def _layer_limit(case: Case, own: Facts) -> tuple[Layer, Facts, LimitEntry, DirectLimit]:
+    """The layer of a line, and the limit of its width."""
     name = own.must("output.layer")
     layer = _process(case).layers[name]
-    return layer, case.part(layer, f"process.layers.{name}")
+    table = case.part(layer, f"process.layers.{name}")
+    return layer, table, *table_limit(case, layer.limits, table)
 
 
 def _process(case: Case) -> Process:
@@ -133,13 +137,16 @@ def vias_of(case: Case, stage: OutputStage) -> Conductor:
     Raises: MissingFactsError: where a fact is missing.
     """
     own = case.of(stage)
-    count, name = own.number("output.vias"), own.must("output.via")
-    via = _process(case).vias[name]
-    table = case.part(via, f"process.vias.{name}")
-    entry = chosen_entry(case, via.limits, table)
-    per_via = direct_limit(case, entry, entry.facts.least("dc"))
+    per_via, count = case.gather(lambda: _via_limit(case, own), lambda: own.number("output.vias"))
 
     def enough(current_a: float) -> str:
         return f"{vias_for_current(current_a=current_a, per_via_a=per_via.here)} vias; now {count:g}"
 
     return Conductor("vias", "output.vias", per_via.of(lambda each_a: count * each_a), {}, enough, None)
+
+
+def _via_limit(case: Case, own: Facts) -> DirectLimit:
+    """The limit of one via."""
+    name = own.must("output.via")
+    via = _process(case).vias[name]
+    return table_limit(case, via.limits, case.part(via, f"process.vias.{name}"))[1]

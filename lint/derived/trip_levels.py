@@ -6,7 +6,6 @@ from functools import partial
 from typing import Final, Literal
 
 from tidegate.lint.case import Case, Facts
-from tidegate.lint.derived.ask_all import ask_all
 from tidegate.lint.derived.input_share import input_share
 from tidegate.lint.description.model.detector import Comparator, Contributor, Hysteresis
 from tidegate.lint.physics import tolerance
@@ -105,7 +104,8 @@ def _from_other_level(case: Case, comparator: Comparator, which: _Level) -> Wind
         if stated is None:
             facts.lacks(f"trip.{which}")
         else:
-            facts.least(f"trip.{which}"), facts.most(f"trip.{which}")
+            facts.least(f"trip.{which}")
+            facts.most(f"trip.{which}")
         case.settle()
     base, apart = case.gather(
         lambda: _level_window(case, comparator, other), lambda: hysteresis_window(case, comparator)
@@ -139,13 +139,14 @@ def level_errors(
         partial(_contributor, case, comparator, name, level_v, tracking_matters=tracking_matters)
         for name in comparator.errors
     ]
-    contributors, method = case.gather(
-        lambda: ask_all(case, sizes), lambda: Combination[whole.must("conditions.combine").upper()]
+    conditions = case.description.conditions
+    squares = conditions is not None and conditions.combine == "root_sum_square"
+    covered = squares or any(error.is_ == "sigma" for error in comparator.errors.values())
+    contributors, method, coverage = case.gather(
+        lambda: case.gather_all(sizes),
+        lambda: Combination[whole.must("conditions.combine").upper()],
+        lambda: whole.number("conditions.coverage") if covered else _PLAIN_SIGMA,
     )
-    random = any(contributor.kind is Kind.SIGMA for contributor in contributors)
-    matters = random or method is Combination.ROOT_SUM_SQUARE
-    coverage = whole.number("conditions.coverage") if matters else _PLAIN_SIGMA
-    case.settle()
     return contributors, coverage, method
 
 

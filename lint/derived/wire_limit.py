@@ -71,6 +71,17 @@ def chosen_entry(case: Case, limits: Sequence[LayerLimit | ViaLimit], table: Fac
     return at[1]
 
 
+def table_limit(case: Case, limits: Sequence[LayerLimit | ViaLimit], table: Facts) -> tuple[LimitEntry, DirectLimit]:
+    """The entry that counts for this chip, and its direct current carried to it.
+
+    Raises: MissingFactsError: where a fact is missing.
+    """
+    entry, _ = case.gather(
+        lambda: chosen_entry(case, limits, table), lambda: case.whole.most("conditions.service_life")
+    )
+    return entry, direct_limit(case, entry, entry.facts.least("dc"))
+
+
 def direct_limit(case: Case, found: LimitEntry, stated: float) -> DirectLimit:
     """A direct current stated for the temperature and life of an entry, carried to those of this chip by Black's law.
 

@@ -93,7 +93,9 @@ def _faults_of_data(sources: Sources) -> list[Fault]:
     if not _validator().is_valid(data):
         faults += _explained(sources)
     if _sections_are_whole(data):
-        faults += name_faults(data, _name_fields(), sources)
+        explained = {fault.place for fault in faults}
+        wrong_names = name_faults(data, _name_fields(), sources)
+        faults += [fault for fault in wrong_names if fault.place not in explained]
         if not faults and not sources.faults and not any(data.get(section) for section in NAMED_SECTIONS):
             place = Place(sources.files[0].name)
             faults.append(Fault(place, "", "the file describes no element", "tidegate start writes a starter"))

@@ -43,10 +43,10 @@ class Sources:
 
     def place(self, path: Sequence[Step], *, key: bool = False) -> Place:
         """Where the value (or key) at a path stands, or the nearest part of the description above it."""
-        files, path = self._own_path(tuple(path))
-        for length in range(len(path), 0, -1):
+        files, own = self._own_path(tuple(path))
+        for length in range(len(own), 0, -1):
             for file in files:
-                place = file.place(path[:length], key=key or length < len(path))
+                place = file.place(own[:length], key=key or length < len(path))
                 if place is not None:
                     return place
         return Place(self.files[0].name, 1, 1)
@@ -145,7 +145,7 @@ class _Gatherer:
             return "a folder", "name the files in it"
         if not real.is_file():
             return "no such file", _near_file(target)
-        if len(above) >= MOST_INCLUDED:
+        if len(above) > MOST_INCLUDED:
             return f"a chain of more than {MOST_INCLUDED} includes", "include the files side by side"
         if len(self._taken) >= MOST_FILES:
             return f"more than {MOST_FILES} files", "join some of them"

@@ -12,7 +12,7 @@ from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import EdgeKind, Path
 from tidegate.lint.graph.paths import Neighbours, adjacency, loop_through
 
-_STARTED_WITHOUT: Final = (EdgeKind.BIASED_BY, EdgeKind.TAKES_REFERENCE_FROM, EdgeKind.LEANS_ON)
+STARTED_WITHOUT: Final = (EdgeKind.BIASED_BY, EdgeKind.TAKES_REFERENCE_FROM, EdgeKind.LEANS_ON)
 """What a start-up circuit replaces until the loop runs; a supply or an enable it does not."""
 
 
@@ -90,5 +90,5 @@ def _left(graph: Graph, members: frozenset[str], started: frozenset[str]) -> Nei
     return lambda element: (
         step
         for step in graph.needs(element)
-        if step[0] in members and not (element in started and step[2].kind in _STARTED_WITHOUT)
+        if step[0] in members and not (element in started and step[2].kind in STARTED_WITHOUT)
     )

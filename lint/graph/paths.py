@@ -68,6 +68,12 @@ def loop_through(start: str, neighbours: Neighbours) -> Path | None:
     return None
 
 
+def step_onto(path: Path, goals: Reach) -> tuple[str, Hop]:
+    """The first step of a path onto an element of some reach, in which it ends: the element before it, and the step."""
+    number = next(number for number in range(1, len(path)) if path[number].element in goals)
+    return path[number - 1].element, path[number]
+
+
 def cut(neighbours: Neighbours, removed: str) -> Neighbours:
     """The same graph without one element."""
     return lambda element: () if element == removed else [step for step in neighbours(element) if step[0] != removed]

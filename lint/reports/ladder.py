@@ -20,7 +20,7 @@ from tidegate.lint.reports.plain_text import plain
 
 _V: Final = Dimension.VOLTAGE
 _MOST_LABEL: Final = 18
-_LEAST_BAR: Final = 16
+_LEAST_BAR: Final = 12
 _MARKS: Final = {"damage": "|", "service": "=", "sign-off": "-"}
 _TRIP_MARK: Final = "#"
 
@@ -69,21 +69,46 @@ def ladder_lines(ladder: Ladder, *, width: int) -> Iterator[str]:
     if len(ladder.rungs) < 2:
         yield plain(f"{ladder.rail}: no ladder, {missing or 'too few levels'}")
         return
-    labels = [_shortened(rung.name) for rung in ladder.rungs]
-    ranges = [_range(rung.window) for rung in ladder.rungs]
+    labels = _even(_shortened(rung.name) for rung in ladder.rungs)
+    ranges = _even(_range(rung.window) for rung in ladder.rungs)
     slacks = [_slack(rung) for rung in ladder.rungs]
-    beside = max(map(len, labels)) + max(map(len, ranges)) + max(map(len, slacks))
-    columns = max(width - beside - 8, _LEAST_BAR)  # two before, two between each
+    columns = width - len(labels[0]) - len(ranges[0]) - max(map(len, slacks)) - 8  # two before, two between each
+    if columns < _LEAST_BAR:
+        yield plain(f"{ladder.rail}, no room to draw it to scale")
+        for cells in zip(labels, ranges, slacks, strict=True):
+            yield from _listed(*cells, width=width)
+    else:
+        yield from _drawn(ladder, labels, ranges, slacks, columns=columns)
+    if missing:
+        yield plain(f"  not drawn, {missing}")
+
+
+def _even(texts: Iterable[str]) -> list[str]:
+    """The texts, all as long as the longest."""
+    found = list(texts)
+    longest = max(map(len, found))
+    return [text.ljust(longest) for text in found]
+
+
+def _listed(label: str, shown: str, slack: str, *, width: int) -> Iterator[str]:
+    line = f"  {label}  {shown}  {slack}".rstrip()
+    if len(line) <= width:
+        yield plain(line)
+        return
+    yield plain(f"  {label}  {shown}".rstrip())
+    yield plain(f"    {slack}")
+
+
+def _drawn(
+    ladder: Ladder, labels: Sequence[str], ranges: Sequence[str], slacks: Sequence[str], *, columns: int
+) -> Iterator[str]:
     low_v = min(rung.window.least_v for rung in ladder.rungs)
     high_v = max(rung.window.most_v for rung in ladder.rungs)
     step_v = (high_v - low_v) / (columns - 1)
     yield plain(f"{ladder.rail}, to scale, {show(step_v, _V, digits=2)} a column")
     for rung, label, shown, slack in zip(ladder.rungs, labels, ranges, slacks, strict=True):
         bar = _bar(rung, low_v=low_v, step_v=step_v).ljust(columns)
-        text = f"  {label:<{max(map(len, labels))}}  {bar}  {shown:<{max(map(len, ranges))}}  {slack}"
-        yield plain(text.rstrip())
-    if missing:
-        yield plain(f"  not drawn, {missing}")
+        yield plain(f"  {label}  {bar}  {shown}  {slack}".rstrip())
 
 
 def _first(facts: tuple[str, ...]) -> str:

@@ -8,7 +8,6 @@ from dataclasses import dataclass
 from typing import Final
 
 from tidegate.lint.judgement import Judgement, Kind, Measure
-from tidegate.lint.quantity import show_apart
 from tidegate.lint.reports.plain_text import plain
 
 _BLOCKS: Final = "▁▂▃▄▅▆▇█"
@@ -31,22 +30,13 @@ class Entry:
 def entries(judgements: Iterable[Judgement], *, element: str | None, family: str | None) -> list[Entry]:
     """The judgements that have a number, least slack first; of one element, of one family, where these are named."""
     found = [
-        Entry(judgement, judgement.measure, relative_slack(judgement.measure))
+        Entry(judgement, judgement.measure, judgement.measure.slack)
         for judgement in judgements
         if judgement.measure is not None
         and element in (None, judgement.subject)
         and family in (None, judgement.rule.partition("/")[0])
     ]
     return sorted(found, key=lambda entry: (entry.slack, entry.judgement.rule, entry.judgement.subject))
-
-
-def relative_slack(measure: Measure) -> float:
-    """The margin as a share of the need; of what is there, where nothing is needed; unlimited where either is."""
-    margin = measure.margin
-    if margin == 0.0:
-        return 0.0
-    scale = abs(measure.need) if measure.need != 0.0 and math.isfinite(measure.need) else abs(measure.have)
-    return margin / scale if math.isfinite(margin) and scale > 0.0 else math.copysign(math.inf, margin)
 
 
 def histogram(found: Sequence[Entry], *, unicode: bool) -> str:
@@ -86,7 +76,8 @@ def ledger_lines(found: Sequence[Entry], *, width: int) -> Iterator[str]:
             yield line
         else:
             yield _aligned(row, widths, plain(judgement.subject))
-            yield f"{'':{sum(widths) + 2 * len(widths)}}{plain(of.partition(' ')[2])}".rstrip()
+            rule = plain(of.partition(" ")[2])
+            yield " " * min(sum(widths) + 2 * len(widths), max(width - len(rule), 2)) + rule
 
 
 def _aligned(cells: Sequence[str], widths: Sequence[int], last: str) -> str:
@@ -99,7 +90,7 @@ def _aligned(cells: Sequence[str], widths: Sequence[int], last: str) -> str:
 
 def _cells(entry: Entry) -> tuple[str, str, str, str]:
     measure = entry.measure
-    have, need = show_apart(measure.have, measure.need, measure.dimension)
+    have, need = measure.texts()
     return _percent(entry.slack), measure.margin_text(), have, f"{measure.relation.value} {need}"
 
 

@@ -1,4 +1,4 @@
-"""What an output stage makes of its input over time: delay, release delay, latch, and the hold while it is not alive."""
+"""What an output stage makes of its input over time: delay, release delay, latch, and its hold while not alive."""
 
 from __future__ import annotations
 

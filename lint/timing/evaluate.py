@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass, fields, replace
+from dataclasses import dataclass
 from typing import Final, NamedTuple, TypeAlias
+
+import msgspec
 
 from tidegate.lint.timing.carry import output_of
 from tidegate.lint.timing.detect import decision_of
@@ -20,6 +22,7 @@ from tidegate.lint.timing.parts import (
     SourcePart,
     StagePart,
     TimedPart,
+    bounds_of,
 )
 from tidegate.lint.timing.ramps import RailRamp
 from tidegate.lint.timing.scenario import Scenario
@@ -99,21 +102,18 @@ def network(parts: Mapping[str, TimedPart], ramps: Mapping[str, RailRamp]) -> Ne
 def _at_end(part: TimedPart, greatest: bool) -> TimedPart:
     """A part with each quantity at one end; what is not finite stays as it is."""
     changes = {}
-    for member in fields(part):
-        value = getattr(part, member.name)
-        if isinstance(value, Bounds):
-            end = value.most if greatest and value.most < FOREVER_S else value.least
-            changes[member.name] = Bounds(end, end)
-    return replace(part, **changes)
+    for name, value in bounds_of(part):
+        end = value.most if greatest and value.most < FOREVER_S else value.least
+        changes[name] = Bounds(end, end)
+    return msgspec.structs.replace(part, **changes)
 
 
 def _without_spread_from_nothing(part: TimedPart) -> TimedPart:
     changes = {}
-    for member in fields(part):
-        value = getattr(part, member.name)
-        if isinstance(value, Bounds) and value.least == 0.0 and value.most < FOREVER_S:
-            changes[member.name] = Bounds(value.most, value.most)
-    return replace(part, **changes)
+    for name, value in bounds_of(part):
+        if value.least == 0.0 and value.most < FOREVER_S:
+            changes[name] = Bounds(value.most, value.most)
+    return msgspec.structs.replace(part, **changes)
 
 
 def evaluate(net: Network, scenario: Scenario, known: States | None = None) -> dict[str, State]:
@@ -173,7 +173,7 @@ class _Timing:
         waveform = scenario.waveforms.get(part.id)
         ramp = self.net.ramps.get(part.id)
         if waveform is not None:
-            least_s, most_s = scenario.shifts.get(part.id, (0.0, 0.0))
+            least_s = most_s = 0.0
             if scenario.in_sequence and part.after is not None:
                 up_s = self._up(part.after)
                 least_s, most_s = up_s[0] + part.delay.least, up_s[1] + part.delay.most
@@ -188,9 +188,9 @@ class _Timing:
         return MadeSupply(maker, Ramp(ramp.nominal_v, rise_s, fall_s, part.delay.least, part.delay.most))
 
     def _up_on(self, rail: str) -> On:
-        """When a rail has come up, to its nominal level."""
+        """When a rail has come up."""
         ramp = self.net.ramps.get(rail)
-        return ANYTHING if ramp is None else self._above(rail, Bounds(ramp.nominal_v, ramp.nominal_v))
+        return ANYTHING if ramp is None else self._above(rail, Bounds(ramp.up_v, ramp.up_v))
 
     def _up(self, rail: str) -> tuple[float, float]:
         """The earliest and the latest time at which a rail comes up, in s."""

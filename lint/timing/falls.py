@@ -17,6 +17,8 @@ _MOST_LEVELS: Final = 12
 """So many levels of a rail are tried at most; of more, the lowest, the highest, and some between."""
 _JUST: Final = 1e-9
 """Share of a level by which a supply passes it."""
+_SHORTEST: Final = 1e-6
+"""Share of the time a detector is blind for; a dip that rests for less turns round at once."""
 
 
 def together(setting: Setting) -> Iterator[Scenario]:
@@ -52,32 +54,41 @@ def dips(setting: Setting, rail: str) -> Iterator[Scenario]:
     ramp = setting.ramps.get(rail)
     if ramp is None or ramp.fast_fall_lacks or ramp.start_lacks:
         return
-    down_v_per_s, up_v_per_s = ramp.fastest_fall_v_per_s, ramp.fastest_rise_v_per_s
-    watching = [p for p in setting.parts.values() if isinstance(p, ComparatorPart) and p.watches == rail]
-    blind_s = max((part.filter.most for part in watching if part.filter.most < FOREVER_S), default=0.0)
-    seen_from_v = min((part.falling.least for part in watching if not part.over), default=0.0)
+    watching = [p for p in setting.parts.values() if isinstance(p, ComparatorPart) and p.watches == rail and not p.over]
+    slowest = max(watching, key=lambda part: part.filter.most, default=None)
     for level_v in critical_levels_v(setting.parts, rail, ramp):
-        down_s = (ramp.nominal_v - level_v) / down_v_per_s
-        up_s = (ramp.nominal_v - level_v) / up_v_per_s
-        below_v = max(seen_from_v - level_v, 0.0)
-        short_s = (blind_s - below_v / down_v_per_s - below_v / up_v_per_s) * (1.0 - _JUST)
-        lengths = [(setting.long_s, "for long")]
-        if blind_s > 0.0 and below_v > 0.0:
-            lengths.append(
-                (short_s, f"for {show(short_s, Dimension.DURATION)}") if short_s > 0.0 else (0.0, "and back")
-            )
-        for rests_s, words in lengths:
-            points = ((0.0, ramp.nominal_v), (down_s, level_v), (down_s + rests_s, level_v),
-                      (down_s + rests_s + up_s, ramp.nominal_v))  # fmt: skip
-            name = f"{rail} dips to {show(level_v, Dimension.VOLTAGE)} {words}"
-            yield Scenario(name, name, Scene.DIP, {rail: Waveform(points)}, rail=rail)
+        yield _dip(ramp, rail, level_v=level_v, rests_s=setting.long_s, words="for long")
+        blind_s = 0.0 if slowest is None or slowest.filter.most == FOREVER_S else slowest.filter.most
+        if slowest is not None and blind_s > 0.0 and level_v < slowest.falling.least:
+            rests_s = (blind_s - _seen_low_s(slowest, ramp, level_v)) * (1.0 - _JUST)
+            if rests_s > _SHORTEST * blind_s:
+                length = show(rests_s, Dimension.DURATION)
+                yield _dip(ramp, rail, level_v=level_v, rests_s=rests_s, words=f"for {length}")
+            else:
+                yield _dip(ramp, rail, level_v=level_v, rests_s=0.0, words="and back")
+
+
+def _dip(ramp: RailRamp, rail: str, *, level_v: float, rests_s: float, words: str) -> Scenario:
+    """A dip from nominal and back, as steep as the rail can be."""
+    low_s = (ramp.nominal_v - level_v) / ramp.fastest_fall_v_per_s
+    rises_s = low_s + rests_s
+    end_s = rises_s + (ramp.nominal_v - level_v) / ramp.fastest_rise_v_per_s
+    points = ((0.0, ramp.nominal_v), (low_s, level_v), (rises_s, level_v), (end_s, ramp.nominal_v))
+    name = f"{rail} dips to {show(level_v, Dimension.VOLTAGE)} {words}"
+    return Scenario(name, name, Scene.DIP, {rail: Waveform(points)}, rail=rail, rises_s=rises_s)
+
+
+def _seen_low_s(part: ComparatorPart, ramp: RailRamp, level_v: float) -> float:
+    """How long a detector at its least levels takes a dip that turns round at once for low, in s."""
+    falls_s = (part.falling.least - level_v) / ramp.fastest_fall_v_per_s
+    return falls_s + (part.rising.least - level_v) / ramp.fastest_rise_v_per_s
 
 
 def critical_levels_v(parts: Mapping[str, TimedPart], rail: str, ramp: RailRamp) -> list[float]:
     """The levels of a rail at which something changes, each from its worse side, highest first, in V.
 
-    Just above what a detector surely sees or re-arms below, or as deep as a dip without a bottom can go while its filter
-    may ignore it; just below what a load or a circuit needs.
+    Just above what a detector surely sees or re-arms below, or as deep as a dip without a bottom can go while its
+    filter may ignore it; just below what a load or a circuit needs.
     """
     found: set[float] = set()
     for part in parts.values():
@@ -103,7 +114,8 @@ def critical_levels_v(parts: Mapping[str, TimedPart], rail: str, ramp: RailRamp)
 
 def _deepest_point_v(part: ComparatorPart, ramp: RailRamp) -> float:
     """How low a dip that turns round at once can go while a detector may ignore it, in V."""
-    if not 0.0 < part.filter.most < FOREVER_S:
+    blind_s = part.filter.most * (1.0 - _JUST) - _seen_low_s(part, ramp, part.falling.least)
+    if not 0.0 < blind_s < FOREVER_S:
         return part.falling.least
     s_per_v = 1.0 / ramp.fastest_fall_v_per_s + 1.0 / ramp.fastest_rise_v_per_s
-    return part.falling.least - part.filter.most * (1.0 - _JUST) / s_per_v
+    return part.falling.least - blind_s / s_per_v

@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
-from typing import Literal, NamedTuple
+from collections.abc import Iterator
+from typing import Final, Literal, NamedTuple
+
+import msgspec
 
 
 class Bounds(NamedTuple):
@@ -17,20 +19,18 @@ NOTHING = Bounds(0.0, 0.0)
 """No time at all: of what the description says there is none."""
 
 
-@dataclass(slots=True)
-class Lacks:
+class Lacks(msgspec.Struct):
     """The facts of one element that are missing."""
 
-    whole: list[str] = field(default_factory=list)
+    whole: list[str] = []
     """Without these the element cannot be timed at all."""
-    least: list[str] = field(default_factory=list)
+    least: list[str] = []
     """Least values that stand at 0."""
-    most: list[str] = field(default_factory=list)
+    most: list[str] = []
     """Greatest values that stand at infinity."""
 
 
-@dataclass(frozen=True, slots=True)
-class RailPart:
+class RailPart(msgspec.Struct, frozen=True):
     """A rail."""
 
     id: str
@@ -39,8 +39,7 @@ class RailPart:
     delay: Bounds
 
 
-@dataclass(frozen=True, slots=True)
-class DomainPart:
+class DomainPart(msgspec.Struct, frozen=True):
     """A domain; the names of what switches it, none where it is always on."""
 
     id: str
@@ -48,8 +47,7 @@ class DomainPart:
     switched_by: tuple[str, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class SourcePart:
+class SourcePart(msgspec.Struct, frozen=True):
     """A reference or a bias."""
 
     id: str
@@ -62,8 +60,7 @@ class SourcePart:
     """Whether a start-up circuit starts it, so that a loop of bias through it does not keep it down."""
 
 
-@dataclass(frozen=True, slots=True)
-class ComparatorPart:
+class ComparatorPart(msgspec.Struct, frozen=True):
     """A detector."""
 
     id: str
@@ -85,8 +82,7 @@ class ComparatorPart:
     undecided: Literal["asserts", "releases", "undefined"]
 
 
-@dataclass(frozen=True, slots=True)
-class StagePart:
+class StagePart(msgspec.Struct, frozen=True):
     """An output stage."""
 
     id: str
@@ -105,8 +101,7 @@ class StagePart:
     """How long reset must be asserted for the release delay to begin anew; infinite where nothing discharges it."""
 
 
-@dataclass(frozen=True, slots=True)
-class ResetPart:
+class ResetPart(msgspec.Struct, frozen=True):
     """A reset net."""
 
     id: str
@@ -118,8 +113,7 @@ class ResetPart:
     """Supply of its receivers below which none of them tells released from asserted."""
 
 
-@dataclass(frozen=True, slots=True)
-class LoadPart:
+class LoadPart(msgspec.Struct, frozen=True):
     """A guarded load."""
 
     id: str
@@ -133,3 +127,19 @@ class LoadPart:
 
 
 TimedPart = RailPart | DomainPart | SourcePart | ComparatorPart | StagePart | ResetPart | LoadPart
+
+
+def bounds_of(part: TimedPart) -> Iterator[tuple[str, Bounds]]:
+    """Every quantity of a part, by its name."""
+    for name in part.__struct_fields__:
+        value = getattr(part, name)
+        if isinstance(value, Bounds):
+            yield name, value
+
+
+def times_of(part: TimedPart) -> Iterator[Bounds]:
+    """Every time of a part, levels left out."""
+    return (value for name, value in bounds_of(part) if name not in _LEVELS)
+
+
+_LEVELS: Final = ("works_from", "rising", "falling")

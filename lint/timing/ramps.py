@@ -22,6 +22,8 @@ class RailRamp:
     """
 
     nominal_v: float
+    up_v: float
+    """From here on it is up: the least level it is guaranteed for, else the least delivered, else nominal."""
     rise: Bounds
     fall: Bounds
     limited_by: str
@@ -60,8 +62,15 @@ def read_ramps(description: Description) -> Ramps:
             continue
         rise, lacks = _bounds(rail, rail.rise, "rise")
         fall, fast, slow, limited_by = _fall(rail, nominal_v, drawn.get(rail.id))
-        found.by_rail[rail.id] = RailRamp(nominal_v, rise, fall, limited_by, lacks, fast, slow)
+        found.by_rail[rail.id] = RailRamp(nominal_v, _up_v(rail, nominal_v), rise, fall, limited_by, lacks, fast, slow)
     return found
+
+
+def _up_v(rail: Rail, nominal_v: float) -> float:
+    for span in (rail.guaranteed, rail.delivered):
+        if span is not None and span.least is not None:
+            return min(span.least, nominal_v)
+    return nominal_v
 
 
 def _bounds(rail: Rail, span: Span | None, fact: str) -> tuple[Bounds, tuple[str, ...]]:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import Any, Final
 
 from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.derived.at_code import at_code
 from tidegate.lint.derived.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference, StartUp
@@ -120,7 +121,14 @@ class _Reader:
         return domain.rail
 
     def window(self, ask: Callable[[Case, Comparator], Window], comparator: Comparator) -> Bounds:
-        """A trip level between its ends."""
+        """A trip level between its ends, at the code the part ships with."""
+        if comparator.codes and comparator.trip is None:
+            code = comparator.ships_with
+            if code is None:
+                if self.path("ships_with") not in self.lacks.whole:
+                    self.must(None, "ships_with")
+                return NOTHING
+            comparator = at_code(comparator, code)
         case = Case(subject=comparator, rule="", level=Level.NOTE, description=self.description, graph=self.graph)
         try:
             found = ask(case, comparator)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from enum import Enum
 
 from tidegate.lint.timing.waveform import Waveform
@@ -36,5 +36,5 @@ class Scenario:
     """Whether a rail that comes after another waits for it."""
     rail: str = ""
     """The one rail that it is about; empty where it is about all."""
-    shifts: Mapping[str, tuple[float, float]] = field(default_factory=dict)
-    """Of a rail, the least and the greatest time by which its waveform comes late."""
+    rises_s: float = 0.0
+    """When the last of the supplies begins to rise."""

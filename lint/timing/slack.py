@@ -4,14 +4,18 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from typing import Final
 
 from tidegate.lint.timing.evaluate import LoadState
-from tidegate.lint.timing.interval import FOREVER_S, NEVER, Times, both, either, is_in, outside
-from tidegate.lint.timing.parts import Bounds, LoadPart, ResetPart
+from tidegate.lint.timing.interval import FOREVER_S, Times, both, either, outside
+from tidegate.lint.timing.parts import Bounds, ResetPart
 from tidegate.lint.timing.scenario import Scenario
 from tidegate.lint.timing.state import Decision
 from tidegate.lint.timing.supply import Supply
 from tidegate.lint.timing.timeline import Timeline
+
+_NEXT_TO_NOTHING_V: Final = 1e-9
+"""A supply that has begun to rise."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,6 +28,12 @@ class Slack:
     scenario: Scenario
     first_s: float
     then_s: float
+
+    @property
+    def from_s(self) -> float:
+        """The time from which both are best counted: where the supply last begins to rise, if both come after that."""
+        rises_s = self.scenario.rises_s
+        return rises_s if min(self.first_s, self.then_s) >= rises_s else 0.0
 
     @property
     def slack_s(self) -> float:
@@ -57,13 +67,6 @@ def _ready_by_s(not_ready: Times, release_s: float) -> float:
         if start_s <= release_s:
             by_s = end_s
     return by_s
-
-
-def releases(line: Timeline, load: str) -> bool:
-    """Whether the reset of a load may ever be released."""
-    state = line.states[load]
-    assert isinstance(state, LoadState)
-    return bool(state.reset.may_release)
 
 
 def assert_slack(line: Timeline, load: str, *, rail: str, works: Bounds) -> Slack | None:
@@ -103,18 +106,20 @@ def unknown_while_read(line: Timeline, part: ResetPart) -> Times:
     assert isinstance(state, Decision)
     if not state.may_be_unknown or not isinstance(supply, Supply):
         return state.may_be_unknown
-    reads_v = max(part.reads_from_v, 1e-9)
+    reads_v = max(part.reads_from_v, _NEXT_TO_NOTHING_V)
     return both(state.may_be_unknown, supply.may_be_high(rising_v=reads_v, falling_v=reads_v))
 
 
-def out_of_range(line: Timeline, part: LoadPart) -> Times:
-    """When a load may be outside the range in which it works."""
-    state = line.states[part.id]
-    return state.fed.may_be_off if isinstance(state, LoadState) else NEVER
+def begin_slack(line: Timeline, *, rail: str, after: str, up_v: float) -> Slack | None:
+    """Between the latest time at which a rail is up and the earliest at which another begins to rise.
 
-
-def first_time(times: Times, *, after_s: float = -FOREVER_S) -> float | None:
-    """The first start after a time, or that time where it lies in the set; None where neither is."""
-    if after_s > -FOREVER_S and is_in(times, after_s):
-        return after_s
-    return next((start for start, _ in times if start > after_s), None)
+    None where the other does not rise in the course of the scenario.
+    """
+    first, then = line.states[after], line.states[rail]
+    if not isinstance(first, Supply) or not isinstance(then, Supply):
+        return None
+    begins = then.may_be_high(rising_v=_NEXT_TO_NOTHING_V, falling_v=_NEXT_TO_NOTHING_V)
+    not_up = first.may_be_low(rising_v=up_v, falling_v=up_v)
+    if not begins:
+        return None
+    return Slack(line.scenario, not_up[0][1] if not_up else -FOREVER_S, begins[0][0])

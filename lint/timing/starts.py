@@ -118,7 +118,9 @@ def _late(setting: Setting, name: str, about: str, late: set[str]) -> Scenario:
         rail.id: _up(setting.ramps[rail.id], fast=True, at_s=longest_s + setting.long_s if rail.id in late else 0.0)
         for rail in rails
     }
-    return Scenario(name, about, Scene.START, waveforms, in_sequence=True)
+    return Scenario(
+        name, about, Scene.START, waveforms, in_sequence=True, rises_s=longest_s + setting.long_s if late else 0.0
+    )
 
 
 def _not_from_nothing(setting: Setting, rails: Sequence[Rail]) -> Iterator[Scenario]:
@@ -140,7 +142,7 @@ def _not_from_nothing(setting: Setting, rails: Sequence[Rail]) -> Iterator[Scena
         }
         yield Scenario(
             "off and on again", "every rail falls as fast as it may, stays off for its least time, and rises",
-            Scene.CYCLE, waveforms,
+            Scene.CYCLE, waveforms, rises_s=longest_s + rests_s,
         )  # fmt: skip
 
 

@@ -16,7 +16,7 @@ they may be wider, and ``pinned`` times the network with that tolerance at one e
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass, fields
+from dataclasses import dataclass
 from functools import cached_property, lru_cache
 from typing import Final
 
@@ -28,7 +28,7 @@ from tidegate.lint.timing.evaluate import Network, States, evaluate, network
 from tidegate.lint.timing.falls import alone, dips, together
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.order import leans_on, reached
-from tidegate.lint.timing.parts import Bounds, Lacks
+from tidegate.lint.timing.parts import Lacks, times_of
 from tidegate.lint.timing.published import published
 from tidegate.lint.timing.ramps import Ramps, read_ramps
 from tidegate.lint.timing.reading import Parts, read_parts
@@ -64,12 +64,8 @@ class Timelines:
 
     def _long_s(self) -> float:
         """A time after which everything has come to rest."""
-        longest_s = 0.0
-        for part in self.read.parts.values():
-            for member in fields(part):
-                value = getattr(part, member.name)
-                if isinstance(value, Bounds) and member.name not in _LEVELS and value.most < FOREVER_S:
-                    longest_s = max(longest_s, value.most)
+        times = (time for part in self.read.parts.values() for time in times_of(part))
+        longest_s = max((time.most for time in times if time.most < FOREVER_S), default=0.0)
         return max(_LEAST_LONG_S, _MANY_TIMES * longest_s)
 
     @cached_property
@@ -138,6 +134,10 @@ class Timelines:
                 leant.setdefault(needed, []).append(name)
         return leant
 
+    def up_v(self, rail: str) -> float:
+        """The level from which on a rail is up, in V; of one that has a nominal level."""
+        return self.ramps.by_rail[rail].up_v
+
     # Missing facts
 
     def missing(
@@ -150,7 +150,7 @@ class Timelines:
         ramps up and down; ``readiness``: of what a load needs alone, not of the nets that reset it.
         Raises: DomainError: where one of them has numbers that cannot be.
         """
-        if not self._anything_lacks:
+        if not (self._anything_lacks(latest=latest, earliest=earliest) or ((starts or falls) and self._any_ramp_lacks)):
             return ()
         found: dict[str, None] = {}
         for name in self.behind(element, readiness=readiness):
@@ -172,13 +172,17 @@ class Timelines:
             return ()
         return (*(ramp.start_lacks if starts else ()), *(ramp.fast_fall_lacks if falls else ()))
 
+    def _anything_lacks(self, *, latest: bool, earliest: bool) -> bool:
+        """Whether any element at all lacks what is asked for: mostly none does, and nobody need look behind any."""
+        every = self.read.lacks.values()
+        return bool(self.read.refused) or any(
+            lacks.whole or (latest and lacks.most) or (earliest and lacks.least) for lacks in every
+        )
+
     @cached_property
-    def _anything_lacks(self) -> bool:
+    def _any_ramp_lacks(self) -> bool:
         ramps = self.ramps.by_rail.values()
-        return bool(
-            self.read.lacks or self.read.refused or self.ramps.lacks
-            or any(ramp.start_lacks or ramp.fast_fall_lacks or ramp.slow_fall_lacks for ramp in ramps)
-        )  # fmt: skip
+        return bool(self.ramps.lacks) or any(ramp.start_lacks or ramp.fast_fall_lacks for ramp in ramps)
 
     def behind(self, element: str, *, readiness: bool = False) -> Sequence[str]:
         """An element and all it leans on, watched rails included; ``readiness`` leaves out what resets a load."""
@@ -203,7 +207,6 @@ class Timelines:
 
 
 _NO_LACKS: Final = Lacks()
-_LEVELS: Final = ("works_from", "rising", "falling")
 
 
 class _Same:

@@ -47,8 +47,8 @@ def test_each_demand_against_the_normal_integral() -> None:
     shares = {name: share for (_, name), share in estimate(NEAR).by_demand.items()}
     # The same limits, written out: 1.6 V and 7 mV of fall; 1.71 V less 5 mV.
     expected = {
-        "guarantee, falling level": norm.cdf(-(1.6125 - 1.607) / sigma_v(1.6125)),
-        "comes back, rising level": norm.cdf(-(1.705 - 1.6975) / sigma_v(1.6975)),
+        "guarantee (falling)": norm.cdf(-(1.6125 - 1.607) / sigma_v(1.6125)),
+        "comes back (rising)": norm.cdf(-(1.705 - 1.6975) / sigma_v(1.6975)),
     }
     for name, share in expected.items():
         assert shares[name].normal_ppm == pytest.approx(1e6 * share, rel=1e-6)

@@ -68,6 +68,23 @@ def test_a_range_is_placed_without_changing_its_width() -> None:
     assert answer.falling.least_v == pytest.approx(1.29 - answer.margins_v[Requirement.GUARANTEE], abs=1e-12)
 
 
+def test_power_on_lets_go_before_the_under_voltage_detector() -> None:
+    trip = "rising: {min: 1.24 V, max: 1.46 V}, falling: {min: 1.18 V, max: 1.4 V}"
+    uv = f"uv: {{trip: {{falling: 1.63 V, rising: 1.68 V}}, errors: {{{ONE_ERROR}}}}}"
+    answer = found(f"comparators: {{por: {{trip: {{{trip}}}}}, {uv}}}", "por")
+    # The under-voltage detector releases from 1.68 V - 10 mV on; half the range is 110 mV, the hysteresis 60 mV.
+    assert answer.falling.most_v == pytest.approx(1.67 - 0.11 - 0.06, abs=1e-12)
+    assert answer.above.by is Requirement.BEFORE_UNDER_VOLTAGE
+    assert answer.margins_v[Requirement.BEFORE_UNDER_VOLTAGE] == pytest.approx(1.67 - 1.46, abs=1e-12)
+    assert answer.margins_v[Requirement.RELEASE] == pytest.approx(1.71 - 1.46, abs=1e-12)
+
+
+def test_a_crossover_that_does_not_say_where_its_level_lies() -> None:
+    answer = placed("comparators: {por: {trip: null}}", "por").found
+    assert isinstance(answer, Unknown)
+    assert answer.text() == "its level is made by a crossover; state as trip where that puts it"
+
+
 def test_a_level_stated_as_the_other_and_the_hysteresis_takes_its_tolerance() -> None:
     patch = SIGN_OFF.replace("rising: 1.66 V", "rising: null")
     answer = found(patch, "uv")

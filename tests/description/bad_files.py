@@ -220,7 +220,7 @@ SYNTAX: Final = (
     ),
     Bad(
         "a merge that was not settled",
-        "<<<<<<< HEAD\nrails:\n  avdd:\n    nominal: 1.8 V\n=======\nrails:\n  avdd:\n    nominal: 1.8 V\n>>>>>>> theirs\n",
+        "<<<<<<< HEAD\n" + RAIL + "=======\n" + RAIL + ">>>>>>> theirs\n",
         "main.yaml:1:1: a mark of a merge that was not settled; settle it",
     ),
     Bad(
@@ -238,7 +238,8 @@ SYNTAX: Final = (
 TOGETHER: Final = (
     Bad(
         "all faults at once, sorted by place",
-        "rails:\n  avdd:\n    nominal: 1.8\n    delivered: on\n    nominal: 2 V\n    dammage: 3 V\n    after: bvdd\ndomains:\n  aon: {rail: avd}\n",
+        "rails:\n  avdd:\n    nominal: 1.8\n    delivered: on\n    nominal: 2 V\n    dammage: 3 V\n"
+        "    after: bvdd\ndomains:\n  aon: {rail: avd}\n",
         "main.yaml:3:14: rails.avdd.nominal: 1.8 has no unit; write its unit, such as 1.8 V\n"
         "main.yaml:4:16: rails.avdd.delivered: on is read as true or false by some and as a word by "
         'others; write true or false, or put it in quotes: "on"\n'

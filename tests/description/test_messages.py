@@ -16,14 +16,14 @@ from tidegate.lint.description.place import DescriptionError, Fault
 from tidegate.lint.description.yaml_nodes import PARSER, Parser, PureParser
 
 BAD = KEYS + NAMES + QUANTITIES + WORDS + FILES + SYNTAX + TOGETHER
-PARSERS = tuple({PARSER, PureParser})
+PARSERS = tuple(dict.fromkeys((PARSER, PureParser)))
 
 
-def faults_of(folder: Path, text: str, parser: type[Parser] = PARSER) -> tuple[Fault, ...]:
+def faults_of(folder: Path, text: str | bytes, parser: type[Parser] = PARSER) -> tuple[Fault, ...]:
     """The faults of a description beside which a file of process data lies."""
     (folder / "process.yaml").write_text("process: {}\n", "utf-8")
     file = folder / "main.yaml"
-    file.write_text(text, "utf-8")
+    file.write_bytes(text.encode() if isinstance(text, str) else text)
     with pytest.raises(DescriptionError) as caught:
         load(file, shown="main.yaml", parser=parser)
     assert str(caught.value) == "\n".join(map(str, caught.value.faults))

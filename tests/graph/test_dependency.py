@@ -57,11 +57,13 @@ rst_out | supplied by | aon
 gather | drives | rst_out
 core_out | supplied by | aon
 uv_core | drives | core_out
+gather | drives | core_out
 rst_out | drives | por_n
 por_n | guards | adc
 por_n | guards | core_regulator
 core_out | drives | core_rst_n
 core_rst_n | guards | core_logic
+core_rst_n | guards | adc
 core_regulator | supplied by | aon
 core_regulator | supplied by | avdd
 core_regulator | takes its reference from | ref_fast
@@ -128,7 +130,7 @@ def test_heads_and_tails_are_those_of_one_kind() -> None:
         ("uv_core", {"aon", "bias_start", "ref_fast"}),  # watching vcore is no leaning on it
         ("vcore", {"core_regulator", "avdd"}),
         ("gather", {"aon", "por_out", "uv_out", "ov_latch"}),
-        ("adc", {"analog", "avdd", "vcore", "ref_main", "por_n"}),
+        ("adc", {"analog", "avdd", "vcore", "ref_main", "por_n", "core_rst_n"}),
         ("skip_core", {"aon"}),  # nor is overriding
         ("ov", {"aon", "bias_start", "ref_fast"}),  # nor coupling
     ],

@@ -15,7 +15,7 @@ from tests.published.reading import HERE, NAMES, ROUNDING_V, as_published, judge
 from tidegate.lint.description.model.part import Part
 from tidegate.lint.judgement import Kind
 from tidegate.lint.quantity import Span
-from tidegate.rules import passive_default
+from tidegate.rules import claims, own_range, passive_default, self_bias, trip_window
 from tidegate.rules.catalogue import FAMILIES
 
 # What holds for all of them
@@ -122,7 +122,7 @@ def rail_facts(rail: str, *facts: str) -> set[str]:
         ("rp2350_core_supply", "present", "vout_ok", {"tracked"}),
         ("rp2350_core_supply", "sense", "bod", {"tracked", "hysteresis.feedback"}),
         ("mspm0l1306_por_bor", "present", "bor", {"tracked"}),
-        # How the hysteresis is made is nobody's business but the designer's.
+        # How the hysteresis is made is not published.
         ("mspm0l1306_por_bor", "sense", "por", {"hysteresis.feedback"}),
         ("mspm0l1306_por_bor", "switches_complementary", "por", {"hysteresis.made_by"}),
     ],
@@ -163,6 +163,38 @@ def test_reset_logic_that_is_not_published_is_asked_for_its_hold() -> None:
     answer = answers["passive_default/held", "chip_level"]
     assert answer.kind is Kind.OPEN
     assert set(answer.missing) == {"output_stages.reset_logic.hold"}
+
+
+# Rules of other families that published numbers alone decide
+
+
+def measured(name: str, rule: str, subject: str) -> tuple[Kind, float, float]:
+    """Kind, what is needed and what is there."""
+    families = (trip_window.RULES, own_range.RULES, self_bias.RULES, claims.RULES)
+    answer = judged(as_published(name), families)[rule, subject]
+    assert answer.measure is not None
+    return answer.kind, answer.measure.need, answer.measure.have
+
+
+@pytest.mark.parametrize(
+    ("name", "rule", "subject", "expected"),
+    [
+        # DocID025743, Table 20: falls at 1.80 V at the least, and the product behaves down to just that (footnote 2)
+        ("stm32f031_por_pdr", "trip_window/guarantee", "por_pdr", (Kind.PASS, 1.80, 1.80)),
+        # SLASEX0D, 7.6.1: POR+ up to 1.51 V, BOR0+ from 1.55 V ("always higher than the POR threshold", says SLAU847D)
+        ("mspm0l1306_por_bor", "trip_window/order", "vdd", (Kind.PASS, 1.51, 1.55)),
+        # sky130_ajc_ip__brownout: the pin table begins at 3.0 V, the level of code 100 lies down to 2.60509 V
+        ("sky130_brownout", "self_bias/works_at_own_trip", "out", (Kind.FAIL, 2.60509, 3.0)),
+        ("sky130_brownout", "own_range/levels_inside", "out", (Kind.FAIL, 3.0, 2.60509)),
+        # The typical levels lie as far apart as the typical hysteresis says, within the last digit that is printed.
+        ("stm32f031_por_pdr", "claims/hysteresis", "por_pdr", (Kind.PASS, 0.030, 0.040)),
+        ("stm1403_supervisor", "claims/hysteresis", "reset_t", (Kind.PASS, 0.011, 0.010)),
+    ],
+)
+def test_published_numbers_decide(name: str, rule: str, subject: str, expected: tuple[Kind, float, float]) -> None:
+    kind, need_v, have_v = measured(name, rule, subject)
+    assert kind is expected[0]
+    assert (need_v, have_v) == pytest.approx(expected[1:], abs=ROUNDING_V)
 
 
 # Numbers worked out from published ones

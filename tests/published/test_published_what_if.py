@@ -13,6 +13,7 @@ import pytest
 
 from tests.published.reading import ROUNDING_V, Patch, judged, plain, supposed
 from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules import trip_window
 
 STILL: Final = {"dip": {"depth": "0 V"}, "load_step": "0 A", "source_impedance": "0 ohm"}
 """Suppose that nothing but ripple disturbs the rail."""
@@ -129,6 +130,21 @@ def test_a_typical_ripple_is_no_bound(tmp_path: Path) -> None:
     answer = fits("mspm0l1306_por_bor", "por", tmp_path, source)
     assert answer.kind is Kind.OPEN
     assert set(answer.missing) == {"rails.vdd.ripple.peak_to_peak.max", "rails.vdd.delivered"}
+
+
+# A level that must protect
+
+
+def test_the_least_supply_of_the_core_lies_above_the_level_of_its_brownout_detector(tmp_path: Path) -> None:
+    """RP2350: DVDD from 1.05 V (Table 1441), brownout at 96.5 % of 0.946 V at the least (Table 539).
+
+    Suppose that the supply falls without end and without haste: between the two the core is out of its range, unreset.
+    """
+    calm = {"rails": {"dvdd": {"collapse": "0 V/s"}}}
+    answers = judged(supposed("rp2350_core_supply", tmp_path, calm), (trip_window.RULES,))
+    answer = answers["trip_window/guarantee", "bod"]
+    assert answer.kind is Kind.FAIL
+    assert margin_v(answer) == pytest.approx(0.965 * 0.946 - 1.05, abs=ROUNDING_V)
 
 
 # A release level that must be reached

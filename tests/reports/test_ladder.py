@@ -48,7 +48,7 @@ def test_levels_out_of_order_have_a_slack_below_zero() -> None:
     assert rungs["por rising"] == pytest.approx(-0.03)
 
 
-@pytest.mark.parametrize("width", [60, 80, 110])
+@pytest.mark.parametrize("width", [68, 80, 110])
 def test_to_scale(width: int) -> None:
     head, *lines = ladder_lines(ladder_of(PATCH), width=width)
     assert max(map(len, lines)) <= width
@@ -65,9 +65,28 @@ def test_to_scale(width: int) -> None:
 
 def test_as_it_is_shown() -> None:
     assert list(ladder_lines(ladder_of(PATCH), width=80)) == [
-        "avdd, to scale, 47 mV a column",
-        "  damage                                     |  2.5 V           +530 mV to ov rising",
-    ] or list(ladder_lines(ladder_of(PATCH), width=80))[1].endswith("2.5 V           +530 mV to ov rising")
+        "avdd, to scale, 52 mV a column",
+        "  damage                                 |  2.5 V           +530 mV to ov rising",
+        "  ov rising                   ##            1.95 to 1.97 V  +10 mV to sign-off",
+        "  ov falling                  #             1.9 to 1.92 V   +10 mV to service",
+        "  service                 [==]              1.71 to 1.89 V",
+        "  sign-off              [------]            1.6 to 1.98 V",
+        "  uv rising              ##                 1.67 to 1.69 V  +20 mV to service",
+        "  uv falling            ##                  1.62 to 1.64 V  +20 mV to sign-off",
+        "  por rising    #######                     1.2 to 1.5 V    +170 mV to uv rising",
+        "  por falling  #######                      1.14 to 1.44 V",
+    ]
+
+
+def test_a_narrow_terminal_gets_a_list() -> None:
+    lines = list(ladder_lines(ladder_of(PATCH), width=40))
+    assert max(map(len, lines)) <= 40
+    assert lines[:4] == [
+        "avdd, no room to draw it to scale",
+        "  damage       2.5 V",
+        "    +530 mV to ov rising",
+        "  ov rising    1.95 to 1.97 V",
+    ]
 
 
 def test_what_is_not_known_is_said_in_one_line() -> None:

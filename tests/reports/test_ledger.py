@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
+import msgspec
 import pytest
 
 from tidegate.lint.judgement import Judgement, Kind, Level, Measure, Relation
 from tidegate.lint.quantity import Dimension
-from tidegate.lint.reports.ledger import Entry, entries, histogram, ledger_lines, relative_slack
+from tidegate.lint.reports.ledger import Entry, entries, histogram, ledger_lines
 
 INF = float("inf")
 
@@ -17,26 +18,6 @@ def judgement(need: float, have: float, *, rule: str = "trip_window/guarantee", 
     return Judgement(
         rule=rule, subject=subject, kind=kind, level=Level.ERROR, message="", at="comparators.uv", measure=measure
     )
-
-
-@pytest.mark.parametrize(
-    ("need", "have", "relation", "slack"),
-    [
-        (2.0, 3.0, Relation.AT_LEAST, 0.5),
-        (2.0, 1.0, Relation.AT_LEAST, -0.5),
-        (2.0, 1.0, Relation.AT_MOST, 0.5),
-        (2.0, 2.0, Relation.AT_MOST, 0.0),
-        (-2.0, -1.0, Relation.AT_LEAST, 0.5),
-        (0.0, 3.0, Relation.AT_LEAST, 1.0),
-        (0.0, 3.0, Relation.AT_MOST, -1.0),
-        (0.0, 0.0, Relation.AT_MOST, 0.0),
-        (2.0, INF, Relation.AT_LEAST, INF),
-        (INF, 3.0, Relation.AT_MOST, INF),
-        (2.0, INF, Relation.AT_MOST, -INF),
-    ],
-)
-def test_slack(need: float, have: float, relation: Relation, slack: float) -> None:
-    assert relative_slack(Measure(need, have, Dimension.VOLTAGE, relation)) == slack
 
 
 def test_least_slack_first_whatever_the_sizes() -> None:
@@ -67,30 +48,23 @@ def test_histogram_on_one_line() -> None:
     found = slacks(-0.2, 0.0, 0.005, 0.02, 0.1, 0.2, 0.2, 0.25, 5.0, INF)
     expected = "slack  <0 ▂1  <1% ▄2  <3% ▂1  <10% 0  <30% █4  <100% 0  more ▄2"
     assert histogram(found, unicode=True) == expected
-    assert histogram(found, unicode=False) == "slack  <0 :1  <1% -2  <3% :1  <10% 0  <30% @4  <100% 0  more -2"
+    assert histogram(found, unicode=False) == "slack  <0 :1  <1% =2  <3% :1  <10% 0  <30% @4  <100% 0  more =2"
 
 
 def test_lines_fit_and_say_need_have_and_margin() -> None:
     long = judgement(0.0380, 0.0376, rule="hysteresis/covers_the_disturbance_of_all", subject="uv_of_the_analog_rail")
     lines = list(ledger_lines(entries([judgement(1.6, 1.605), long], element=None, family=None), width=80))
-    assert (
-        lines
-        == [
-            " slack   margin     have  need              of",
-            "-1.1 %  -400 uV  37.6 mV  at least 38 mV    uv_of_the_analog_rail",
-            "                                            hysteresis/covers_the_disturbance_of_all",
-            "+0.3 %    +5 mV  1.605 V  at least 1.6 V    uv trip_window/guarantee",
-        ]
-        or max(map(len, lines)) <= 80
-    )
-    assert [line.split()[0] for line in lines[1:]] == ["-1.1", "hysteresis/covers_the_disturbance_of_all", "+0.3"]
+    assert lines == [
+        " slack   margin     have  need            of",
+        "-1.1 %  -400 uV  37.6 mV  at least 38 mV  uv_of_the_analog_rail",
+        "                                        hysteresis/covers_the_disturbance_of_all",
+        "+0.3 %    +5 mV  1.605 V  at least 1.6 V  uv trip_window/guarantee",
+    ]
 
 
 def test_what_is_waived_is_said() -> None:
     given = judgement(1.6, 1.5)
-    import msgspec
-
     waived = msgspec.structs.replace(given, waiver="agreed")
-    (_, line) = ledger_lines(entries([waived], element=None, family=None), width=80)
+    _, line = ledger_lines(entries([waived], element=None, family=None), width=80)
     assert line.endswith("uv trip_window/guarantee (waived)")
     assert list(ledger_lines([], width=80)) == []

@@ -243,6 +243,22 @@ def test_mends_of_the_other_kinds() -> None:
     assert path_text(found.path) == "core_regulator kicks ref_fast is the reference of ov"
 
 
+@pytest.mark.parametrize("filtered", ["null", "{min: 0.1 us, max: 0.3 us}"])
+def test_what_is_advised_is_just_enough(filtered: str) -> None:
+    # For both of a mutual pair, with a filter and without: the capacitance that is named does, 2 fF less does not.
+    pair = both(
+        COUPLED, "neighbours: {beside: {mutual: true}}",
+        f"comparators: {{ov: {{filter: {filtered}}}, uv: {{filter: {filtered}, hysteresis: {{amount: 8 mV}}}}}}",
+    )  # fmt: skip
+    found = said("bump", "beside", pair)
+    assert found.kind is FAIL
+    advised_ff = int(found.mend.split(" ")[2])
+    assert found.mend.split(" ")[3] == "fF"
+    for capacitance_ff, kind in ((advised_ff, PASS), (advised_ff - 2, FAIL)):
+        mended = f"neighbours: {{beside: {{node: {{capacitance: {capacitance_ff} fF}}}}}}"
+        assert said("bump", "beside", pair, mended).kind is kind
+
+
 def test_a_victim_that_keeps_nothing_is_left_to_the_hysteresis_rules() -> None:
     for amount in ("0 V", "{min: 0 V, max: 9 mV}"):
         found = said("bump", "p0", pushes("uv ov 1"), f"comparators: {{ov: {{hysteresis: {{amount: {amount}}}}}}}")

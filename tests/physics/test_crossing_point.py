@@ -1,0 +1,197 @@
+from __future__ import annotations
+
+import math
+
+import numpy as np
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+from scipy.optimize import brentq
+
+from tidegate.lint.physics import crossover, fed_branch, mos_threshold, silicon
+from tidegate.lint.physics.crossing_point import (
+    DiodeConnected,
+    Junction,
+    NoCrossingError,
+    branch_level_v,
+    diode_connected_at,
+    divider_crossing_v,
+    junction_at,
+    slope_factor_of_swing,
+)
+from tidegate.lint.physics.domain import DomainError
+
+RANDOM = np.random.default_rng(20260101)
+SAME = 1e-9
+"""Relative: both solutions settle to some roundings, and the level divides by a ratio of 0.3 or more."""
+
+
+def draws(count: int, low: float, high: float) -> list[float]:
+    return [float(x) for x in RANDOM.uniform(low, high, count)]
+
+
+MOS_CORNERS = list(
+    zip(
+        draws(200, 233.15, 398.15), draws(200, 0.3, 0.7), draws(200, 0.2e-3, 2e-3), draws(200, 1.1, 1.6),
+        draws(200, 1e-6, 1e-4), draws(200, 1e6, 5e6), draws(200, 0.35, 0.6), draws(200, -5e-3, 5e-3), strict=True,
+    )
+)  # fmt: skip
+
+
+@pytest.mark.parametrize("corner", MOS_CORNERS[:20], ids=lambda corner: f"{corner[0]:.0f}K")
+def test_mos_crossing_against_scipy_root_finder(corner: tuple[float, ...]) -> None:
+    """SciPy's brentq on the balance of currents at a supply: device law at a V - V_os against the resistor."""
+    t_k, threshold_v, fall, n, beta, r_ohm, ratio, offset_v = corner
+    thermal_v = 8.617333262e-5 * t_k
+    vth_v = threshold_v - fall * (t_k - 298.15)
+
+    def surplus(supply_v: float) -> float:
+        gate_v = ratio * supply_v - offset_v
+        inversion = math.log1p(math.exp((gate_v - vth_v) / (2 * n * thermal_v)))
+        return 2 * n * beta * thermal_v**2 * inversion**2 - (supply_v - gate_v) / r_ohm
+
+    device = diode_connected_at(
+        t_k=t_k, threshold_ref_v=threshold_v, t_ref_k=298.15, fall_v_per_k=fall, slope_factor=n, gain_a_per_v2=beta
+    )
+    found_v = divider_crossing_v(device, series_ohm=r_ohm, divider_ratio=ratio, offset_v=offset_v)
+    assert found_v == pytest.approx(brentq(surplus, 0.9 * found_v, 1.1 * found_v + 0.1, xtol=1e-13), rel=SAME)
+    assert surplus(found_v * 1.001) > 0.0 > surplus(found_v * 0.999)
+
+
+def test_mos_crossing_is_that_of_the_solver_for_arrays() -> None:
+    for t_k, threshold_v, fall, n, beta, r_ohm, ratio, offset_v in MOS_CORNERS:
+        branch = fed_branch.MosBranch(
+            series_ohm=r_ohm,
+            threshold_v=mos_threshold.threshold_linear_v(
+                t_k=t_k, threshold_ref_v=threshold_v, t_ref_k=298.15, fall_v_per_k=fall
+            ),
+            slope_factor=n,
+            specific_a=mos_threshold.specific_current_a(t_k=t_k, gain=beta, slope_factor=n),
+            thermal_v=silicon.thermal_voltage_v(t_k=t_k),
+        )
+        device = diode_connected_at(
+            t_k=t_k, threshold_ref_v=threshold_v, t_ref_k=298.15, fall_v_per_k=fall, slope_factor=n, gain_a_per_v2=beta
+        )
+        expected_v = float(crossover.divider_mos_trip_v(branch, divider_ratio=ratio, offset_v=offset_v))
+        found_v = divider_crossing_v(device, series_ohm=r_ohm, divider_ratio=ratio, offset_v=offset_v)
+        assert found_v == pytest.approx(expected_v, rel=SAME)
+        current_a = 1e-7
+        expected_v = float(branch.level_v(current_a))
+        assert branch_level_v(device, series_ohm=r_ohm, current_a=current_a) == pytest.approx(expected_v, rel=SAME)
+
+
+def test_diode_crossing_is_that_of_the_solver_for_arrays() -> None:
+    corners = zip(
+        draws(200, 233.15, 398.15), draws(200, 1e-18, 1e-15), draws(200, 1.0, 1.3), draws(200, 1e5, 5e6),
+        draws(200, 0.3, 0.6), draws(200, -3e-3, 3e-3), strict=True,
+    )  # fmt: skip
+    for t_k, saturation_a, emission, r_ohm, ratio, offset_v in corners:
+        branch = fed_branch.DiodeBranch(
+            series_ohm=r_ohm,
+            saturation_a=silicon.saturation_current_a(
+                t_k=t_k, is_ref_a=saturation_a, t_ref_k=298.15, xti=3.0 / emission, gap_ev=1.17 / emission
+            ),
+            emission_v=emission * silicon.thermal_voltage_v(t_k=t_k),
+        )
+        device = junction_at(
+            t_k=t_k, saturation_ref_a=saturation_a, t_ref_k=298.15, temperature_exponent=3.0, gap_ev=1.17,
+            emission=emission,
+        )  # fmt: skip
+        expected_v = float(crossover.divider_diode_trip_v(branch, divider_ratio=ratio, offset_v=offset_v))
+        found_v = divider_crossing_v(device, series_ohm=r_ohm, divider_ratio=ratio, offset_v=offset_v)
+        assert found_v == pytest.approx(expected_v, rel=SAME)
+
+
+def test_diode_behind_a_resistor_against_the_published_lambert_w_example() -> None:
+    """Boost C++ libraries, example lambert_w_diode: 25 fA, 249.3 ohm, 0.9 V, k and q rounded as there: 1.08485 mA."""
+    device = Junction(saturation_a=25e-15, emission_v=1.38e-23 * 298.0 / 1.6e-19)
+    assert branch_level_v(device, series_ohm=249.3, current_a=1.0848517e-3) == pytest.approx(0.9, abs=1e-7)
+
+
+def test_slope_factor_against_the_ideal_swing() -> None:
+    """59.16 mV per decade at 298.15 K is n = 1: k T/q ln 10 with the constants of the SI."""
+    assert slope_factor_of_swing(swing_v_per_decade=0.0591597, t_k=298.15) == pytest.approx(1.0, abs=1e-5)
+
+
+@given(
+    ratio=st.floats(0.3, 0.6), r_ohm=st.floats(1e5, 1e7), more=st.floats(1.01, 2.0), threshold_v=st.floats(0.35, 0.7)
+)
+@settings(max_examples=60, deadline=None)
+def test_level_moves_with_each_parameter_as_it_must(
+    ratio: float, r_ohm: float, more: float, threshold_v: float
+) -> None:
+    """A higher threshold or offset raises the level; a larger resistance or ratio lowers it."""
+
+    def level_v(*, ratio: float = ratio, r_ohm: float = r_ohm, up_v: float = 0.0, offset_v: float = 0.0) -> float:
+        device = DiodeConnected(threshold_v=threshold_v + up_v, scale_v=0.07, specific_a=70e-9)
+        return divider_crossing_v(device, series_ohm=r_ohm, divider_ratio=ratio, offset_v=offset_v)
+
+    here_v = level_v()
+    assert level_v(up_v=0.01) > here_v
+    assert level_v(offset_v=0.002) > here_v
+    assert level_v(r_ohm=r_ohm * more) < here_v
+    assert level_v(ratio=ratio * 1.01) < here_v
+
+
+def test_no_crossing_is_never_filled_in() -> None:
+    weak = Junction(saturation_a=1e-3, emission_v=0.0257)
+    with pytest.raises(NoCrossingError, match="no crossing: the device never gets ahead of the divided supply"):
+        divider_crossing_v(weak, series_ohm=1e6, divider_ratio=0.5, offset_v=0.0)
+
+
+@pytest.mark.parametrize(
+    ("change", "message"),
+    [
+        ({"series_ohm": 0.0}, "series_ohm must be greater than 0 (found 0.0)"),
+        ({"divider_ratio": 0.0}, "divider_ratio must be greater than 0 (found 0.0)"),
+        ({"divider_ratio": 1.0}, "divider_ratio must lie in 0.0 to 0.999999999999 (found 1.0)"),
+        ({"offset_v": math.inf}, "offset_v must be a finite number (found inf)"),
+    ],
+    ids=["resistance", "ratio_0", "ratio_1", "offset"],
+)
+def test_divider_refuses(change: dict[str, float], message: str) -> None:
+    device = Junction(saturation_a=1e-17, emission_v=0.0257)
+    with pytest.raises(DomainError) as refused:
+        divider_crossing_v(device, **({"series_ohm": 1e6, "divider_ratio": 0.5, "offset_v": 0.0} | change))
+    assert str(refused.value) == message
+
+
+JUNCTION = {
+    "t_k": 300.0, "saturation_ref_a": 1e-17, "t_ref_k": 300.0, "temperature_exponent": 3.0, "gap_ev": 1.17,
+    "emission": 1.0,
+}  # fmt: skip
+MOS = {
+    "t_k": 300.0, "threshold_ref_v": 0.5, "t_ref_k": 300.0, "fall_v_per_k": 1e-3, "slope_factor": 1.3,
+    "gain_a_per_v2": 1e-5,
+}  # fmt: skip
+
+
+@pytest.mark.parametrize("symbol", sorted(set(JUNCTION) - {"temperature_exponent"}))
+def test_junction_refuses(symbol: str) -> None:
+    with pytest.raises(DomainError, match=f"^{symbol} must be greater than 0"):
+        junction_at(**(JUNCTION | {symbol: 0.0}))
+
+
+@pytest.mark.parametrize("symbol", sorted(set(MOS) - {"threshold_ref_v", "fall_v_per_k"}))
+def test_mos_refuses(symbol: str) -> None:
+    with pytest.raises(DomainError, match=f"^{symbol} must be greater than 0"):
+        diode_connected_at(**(MOS | {symbol: 0.0}))
+
+
+@pytest.mark.parametrize("symbol", ["threshold_ref_v", "fall_v_per_k"])
+def test_mos_refuses_what_is_not_finite(symbol: str) -> None:
+    with pytest.raises(DomainError, match=f"^{symbol} must be a finite number"):
+        diode_connected_at(**(MOS | {symbol: math.nan}))
+
+
+def test_the_rest_refuses() -> None:
+    with pytest.raises(DomainError, match=r"^temperature_exponent must be a finite number"):
+        junction_at(**(JUNCTION | {"temperature_exponent": math.inf}))
+    with pytest.raises(DomainError, match=r"^saturation_a must be greater than 0"):
+        Junction(saturation_a=0.0, emission_v=0.0257)
+    with pytest.raises(DomainError, match=r"^scale_v must be greater than 0"):
+        DiodeConnected(threshold_v=0.5, scale_v=0.0, specific_a=1e-7)
+    with pytest.raises(DomainError, match=r"^current_a must be greater than 0"):
+        branch_level_v(Junction(saturation_a=1e-17, emission_v=0.0257), series_ohm=1.0, current_a=0.0)
+    with pytest.raises(DomainError, match=r"^swing_v_per_decade must be greater than 0"):
+        slope_factor_of_swing(swing_v_per_decade=0.0, t_k=300.0)

@@ -1,0 +1,238 @@
+"""Levels made without a reference, as judged."""
+
+from __future__ import annotations
+
+import math
+
+import pytest
+from scipy.optimize import brentq
+
+from tests.rules.sound import both, judged, without
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules.trip_crossover import RULES
+
+FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
+
+
+def said(rule: str, *patches: str, of: str = "por") -> Judgement:
+    return judged(both(*patches) if patches else "", RULES)[f"trip_window/{rule}", of]
+
+
+def corner_v(*, t_k: float, threshold_v: float, r_ohm: float, offset_v: float) -> float:
+    """The level of the sound example's power-on detector at one corner: SciPy's root of the current balance.
+
+    nmos_long: 0.35 mV/K, 68 mV per decade at 25 degC; 26 uA/V^2; half of the supply is compared.
+    """
+    thermal_v = 8.617333262e-5 * t_k
+    n = 0.068 / (8.617333262e-5 * 298.15 * math.log(10))
+    vth_v = threshold_v - 0.35e-3 * (t_k - 298.15)
+
+    def surplus(supply_v: float) -> float:
+        gate_v = 0.5 * supply_v - offset_v
+        inversion = math.log1p(math.exp((gate_v - vth_v) / (2 * n * thermal_v)))
+        return 2 * n * 26e-6 * thermal_v**2 * inversion**2 - (supply_v - gate_v) / r_ohm
+
+    root_v: float = brentq(surplus, 0.5, 3.0, xtol=1e-13)
+    return root_v
+
+
+LOWEST_V = corner_v(t_k=398.15, threshold_v=0.485, r_ohm=2.2e6, offset_v=-3e-3)
+HIGHEST_V = corner_v(t_k=233.15, threshold_v=0.515, r_ohm=1.8e6, offset_v=3e-3)
+
+
+def test_window_against_scipy() -> None:
+    answer = said("crossover_level")
+    assert answer.kind is PASS
+    assert answer.measure is not None
+    assert answer.measure.have == pytest.approx(LOWEST_V, abs=1e-8)
+    high = said("crossover_level", "comparators: {por: {trip: {rising: {min: 1 V, max: 1.46 V}}}}")
+    assert high.measure is not None
+    assert high.measure.have == pytest.approx(HIGHEST_V, abs=1e-8)
+
+
+@pytest.mark.parametrize("side", ["lowest", "highest"])
+def test_a_stated_range_narrower_than_the_components_make_contradicts_them(side: str) -> None:
+    """One tenth of a millivolt either way of the window's end."""
+    for away_v, kind in ((-1e-4, PASS), (1e-4, FAIL)):
+        ends = (LOWEST_V + away_v, 1.6) if side == "lowest" else (1.0, HIGHEST_V - away_v)
+        patch = f"comparators: {{por: {{trip: {{rising: {{min: {ends[0]:.9f} V, max: {ends[1]:.9f} V}}}}}}}}"
+        answer = said("crossover_level", patch)
+        assert (answer.kind, side in answer.message) == (kind, True)
+
+
+def test_words_of_a_contradiction() -> None:
+    answer = said("crossover_level", "comparators: {por: {trip: {rising: {min: 1.2 V, max: 1.49 V}}}}")
+    assert answer.message == (
+        f"rising level that the components make, lowest {LOWEST_V:.3f} V, at least 1.2 V needed"
+    )  # fmt: skip
+    assert answer.why.startswith(
+        f"components {LOWEST_V:.3f} V to {HIGHEST_V:.3f} V, stated 1.2 V to 1.49 V; what moves it: temperature "
+    )
+    assert answer.why.endswith(
+        "lowest at 125 degC with threshold 485 mV, threshold slope 350 uV/K, gain 26 uA/V^2, resistance 2.2 Mohm, "
+        "offset -3 mV"
+    )
+    assert answer.mend == (
+        f"state {LOWEST_V:.3f} V to {HIGHEST_V:.3f} V, or narrow what moves it most: temperature"
+    )  # fmt: skip
+    assert answer.at == "comparators.por.crossover"
+
+
+def test_a_device_that_is_never_ahead_holds_nothing() -> None:
+    """A junction that carries 1 mA at no voltage to speak of: half of any supply is ahead of it from the start."""
+    patch = """
+    comparators: {por: {crossover: {kind: divider_diode, diode: pnp}}}
+    process: {diodes: {pnp: {saturation: 1 mA}}}
+    """
+    answer = said("crossover_level", patch)
+    assert (answer.kind, answer.message) == (
+        FAIL, "at some corner the divided supply is ahead from the start: nothing holds reset at any supply",
+    )  # fmt: skip
+    tracks = said("crossover_tracks", patch)
+    assert (tracks.kind, tracks.message) == (
+        NONE, "at some corner there is no level at all (trip_window/crossover_level says so)",
+    )  # fmt: skip
+
+
+def test_tracking_at_equal_temperature_and_not_extreme_against_extreme() -> None:
+    """A reference that works from 1.2 V at -40 degC and 1.7 mV/K less above: extreme against extreme it is short.
+
+    At the cold end the lowest level is that of a low threshold there, less 70 mV of hysteresis.
+    """
+    patch = "references: {ref_fast: {works_from: {max: 1.2 V}, works_from_slope: -1.7 mV/K}}"
+    early = "{works_from: {max: 0.9 V}}"
+    calmer = f"comparators: {{uv: {early}, ov: {early}, uv_core: {early}}}"
+    calmest = "biases: {bias_start: {works_from: {max: 0.5 V}}}"
+    answer = said("crossover_tracks", patch, calmer, calmest)
+    gaps_v = {
+        t_k: corner_v(t_k=t_k, threshold_v=0.485, r_ohm=2.2e6, offset_v=-3e-3) - 0.07 - (1.2 - 1.7e-3 * (t_k - 233.15))
+        for t_k in (233.15, 240.0, 260.0, 298.15, 398.15)
+    }
+    assert min(gaps_v, key=lambda t_k: gaps_v[t_k]) == 233.15
+    assert answer.kind is PASS
+    assert answer.measure is not None
+    assert answer.measure.margin == pytest.approx(gaps_v[233.15], abs=1e-8)
+    assert LOWEST_V - 0.07 < 1.2  # extreme against extreme, 125 degC against -40 degC
+    assert answer.why.endswith(f"extreme against extreme it would be {(1.2 - LOWEST_V + 0.07) * 1e3:.2f} mV below")
+
+
+def test_without_a_slope_the_reference_needs_the_same_at_every_temperature() -> None:
+    answer = said(
+        "crossover_tracks", without("references.ref_fast.works_from_slope"),
+        "references: {ref_fast: {works_from: {max: 1.2 V}}}",
+    )  # fmt: skip
+    assert answer.kind is FAIL
+    assert answer.measure is not None
+    assert answer.measure.have == pytest.approx(LOWEST_V - 0.07, abs=1e-8)
+    assert answer.measure.need == pytest.approx(1.2)
+    short_v = 1.2 - (LOWEST_V - 0.07)
+    assert answer.mend.startswith("a level at least ")
+    assert float(answer.mend.split()[4]) == pytest.approx(short_v * 1e3, abs=0.1)
+
+
+def test_a_slope_that_rises_counts_at_the_hot_end() -> None:
+    answer = said(
+        "crossover_tracks", "references: {ref_fast: {works_from: {max: 1 V}, works_from_slope: 1 mV/K}}"
+    )  # fmt: skip
+    assert answer.measure is not None
+    assert answer.measure.need == pytest.approx(1.0 + 1e-3 * 165.0, abs=1e-9)
+
+
+def test_second_crossing_at_its_limit() -> None:
+    """1.89 V + 5 mV in service; the least reference current, the least resistance, the device at 125 degC."""
+    n = 0.068 / (8.617333262e-5 * 298.15 * math.log(10))
+    thermal_v = 8.617333262e-5 * 398.15
+    specific_a = 2 * n * 26e-6 * thermal_v**2
+
+    def level_v(current_a: float) -> float:
+        device_v = 0.485 - 0.35e-3 * 100.0
+        return (
+            current_a * 1.8e6 + device_v + 2 * n * thermal_v * math.log(math.expm1(math.sqrt(current_a / specific_a)))
+        )
+
+    limit_a = brentq(lambda current_a: level_v(current_a) - 1.895, 1e-8, 2e-6, xtol=1e-18)
+    for share, kind in ((0.999, FAIL), (1.001, PASS)):
+        current = f"reference_current: {2 * share * limit_a:.12e} A"
+        patch = f"comparators: {{por: {{crossover: {{kind: crude_current, mirror: 2, {current}}}}}}}"
+        answer = said("second_crossing", patch)
+        assert answer.kind is kind
+        assert answer.measure is not None
+        assert answer.measure.have == pytest.approx(level_v(share * limit_a), abs=1e-8)
+        assert answer.measure.need == pytest.approx(1.895)
+
+
+@pytest.mark.parametrize(
+    ("rule", "of", "words"),
+    [
+        ("crossover_level", "uv", "its level comes from a reference, not from a crossover"),
+        ("crossover_tracks", "uv", "its level comes from a reference, not from a crossover"),
+        ("second_crossing", "uv", "its level comes from a reference, not from a crossover"),
+        ("second_crossing", "por", "its crossover compares voltages: the divided supply stays ahead"),
+    ],
+)
+def test_not_applicable(rule: str, of: str, words: str) -> None:
+    answer = said(rule, of=of)
+    assert (answer.kind, answer.message) == (NONE, words)
+
+
+def test_a_crude_current_has_no_level_of_its_own() -> None:
+    patch = "comparators: {por: {crossover: {kind: crude_current, reference_current: 900 nA, mirror: 1}}}"
+    for rule in ("crossover_level", "crossover_tracks"):
+        answer = said(rule, patch)
+        assert (answer.kind, answer.message) == (
+            NONE,
+            "its level depends on how the reference current comes up; trip_window/second_crossing judges it in service",
+        )
+
+
+@pytest.mark.parametrize(
+    "fact",
+    [
+        "comparators.por.crossover.kind", "comparators.por.crossover.ratio", "comparators.por.crossover.resistance",
+        "comparators.por.crossover.offset", "comparators.por.crossover.gain", "comparators.por.crossover.device",
+        "process.devices.nmos_long.threshold", "process.devices.nmos_long.swing", "conditions.junction_temperature",
+    ],
+)  # fmt: skip
+def test_open_names_the_fact_that_is_missing(fact: str) -> None:
+    for rule in ("crossover_level", "crossover_tracks"):
+        answer = said(rule, without(fact))
+        assert (answer.kind, answer.missing) == (OPEN, (fact,))
+
+
+@pytest.mark.parametrize(
+    "fact",
+    [
+        "references.ref_fast.works_from", "comparators.por.hysteresis.amount.max", "biases.bias_start.works_from",
+        "comparators.ov.works_from",
+    ],
+)  # fmt: skip
+def test_tracking_needs_what_follows(fact: str) -> None:
+    answer = said("crossover_tracks", without(fact))
+    assert (answer.kind, answer.missing) == (OPEN, (fact,))
+
+
+def test_level_needs_what_is_stated() -> None:
+    answer = said("crossover_level", without("comparators.por.trip"))
+    assert (answer.kind, answer.missing) == (OPEN, ("comparators.por.trip.rising",))
+
+
+@pytest.mark.parametrize("fact", ["reference_current", "mirror", "resistance", "gain", "device"])
+def test_second_crossing_needs_its_components(fact: str) -> None:
+    crude = "comparators: {por: {crossover: {kind: crude_current, reference_current: 900 nA, mirror: 1}}}"
+    answer = said("second_crossing", crude, f"comparators: {{por: {{crossover: {{{fact}: null}}}}}}")
+    assert (answer.kind, answer.missing) == (OPEN, (f"comparators.por.crossover.{fact}",))
+
+
+def test_a_crude_current_through_a_junction() -> None:
+    """1 Mohm at 1 uA drops 1 V, and the junction adds what its law says, least when hot."""
+    patch = """
+    comparators:
+      por:
+        crossover:
+          {kind: crude_current, reference_current: 1 uA, mirror: 1, resistance: 1 Mohm, diode: pnp, device: null}
+    """
+    answer = said("second_crossing", patch)
+    saturation_a = 8e-19 * (398.15 / 298.15) ** 3 * math.exp(1.17 / 8.617333262e-5 * (1 / 298.15 - 1 / 398.15))
+    junction_v = 8.617333262e-5 * 398.15 * math.log1p(1e-6 / saturation_a)
+    assert answer.measure is not None
+    assert answer.measure.have == pytest.approx(1.0 + junction_v, abs=1e-8)

@@ -1,0 +1,124 @@
+"""The typed description is the schema, field by field: names, order, kinds, choices, and what must be given."""
+
+from __future__ import annotations
+
+import types
+import typing
+from collections.abc import Mapping
+from typing import Any, Literal, get_args, get_origin
+
+import msgspec
+import pytest
+
+from tidegate.lint.description.load import description_schema
+from tidegate.lint.description.model.description import Description
+from tidegate.lint.description.model.part import Element, Part
+from tidegate.lint.quantity import Basis, Span
+
+SCHEMA = description_schema()
+DEFS = SCHEMA["$defs"]
+PLAIN = {"string": str, "number": float, "integer": int, "boolean": bool}
+
+
+def structs(kind: type[msgspec.Struct], known: dict[str, type[msgspec.Struct]]) -> dict[str, type[msgspec.Struct]]:
+    """Every struct that a struct is made of, by name."""
+    known[kind.__name__] = kind
+    for field in msgspec.structs.fields(kind):
+        for part in parts(field.type):
+            if isinstance(part, type) and issubclass(part, msgspec.Struct) and part.__name__ not in known:
+                structs(part, known)
+    return known
+
+
+def parts(kind: Any) -> list[Any]:
+    return [kind, *(inner for part in get_args(kind) for inner in parts(part))]
+
+
+STRUCTS = structs(Description, {})
+MADE = {name: node for name, node in DEFS.items() if "properties" in node and name != "basis"}
+
+
+def struct_of(name: str) -> type[msgspec.Struct]:
+    """The struct of a definition: ``output_stage`` is ``OutputStage``."""
+    return STRUCTS["".join(word.capitalize() for word in name.split("_"))]
+
+
+def without_none(kind: Any) -> tuple[Any, ...]:
+    """The members of a union, None left out."""
+    members = get_args(kind) if get_origin(kind) in (types.UnionType, typing.Union) else (kind,)
+    return tuple(member for member in members if member is not types.NoneType)
+
+
+def agrees(kind: Any, node: Mapping[str, Any]) -> bool:
+    """Whether a type of the model is what the schema says."""
+    members = without_none(kind)
+    if "anyOf" in node and "x-quantity" not in node:
+        const, inner = node["anyOf"]
+        return set(members) == {Literal[const["const"]], struct_of(inner["$ref"].rpartition("/")[2])}
+    (member,) = members
+    if "$ref" in node:
+        name = node["$ref"].rpartition("/")[2]
+        if name == "id":
+            return member is str
+        if "x-quantity" in DEFS[name]:
+            return bool(issubclass(member, Span) and member.dimension.value == name)
+        return member is struct_of(name)
+    if "enum" in node:
+        return get_origin(member) is Literal and list(get_args(member)) == node["enum"]
+    if node["type"] == "array":
+        item, more = get_args(member)
+        return get_origin(member) is tuple and more is Ellipsis and agrees(item, node["items"])
+    if node["type"] == "object":
+        key, value = get_args(member)
+        return get_origin(member) in (dict, Mapping) and key is str and agrees(value, node["additionalProperties"])
+    return member is PLAIN[node["type"]]
+
+
+def check(kind: type[msgspec.Struct], node: Mapping[str, Any]) -> None:
+    """Compare a struct with the object of the schema that it stands for."""
+    fields = {field.encode_name: field for field in msgspec.structs.fields(kind)}
+    if issubclass(kind, Element):
+        assert fields.pop("id").required
+    assert list(fields) == list(node["properties"])
+    for name, field in fields.items():
+        assert agrees(field.type, node["properties"][name]), name
+        assert field.required == (name in node.get("required", ())), name
+        if not field.required:
+            lists_or_sections = without_none(field.type) == (field.type,)
+            assert lists_or_sections or field.default is None, name
+
+
+def test_the_whole_description_is_the_schema() -> None:
+    check(Description, SCHEMA)
+
+
+@pytest.mark.parametrize("name", MADE)
+def test_a_part_of_the_description_is_its_definition(name: str) -> None:
+    kind = struct_of(name)
+    assert issubclass(kind, Part)
+    check(kind, MADE[name])
+
+
+def test_the_basis_of_a_number_is_its_definition() -> None:
+    check(Basis, DEFS["basis"])
+
+
+def test_no_part_stands_alone() -> None:
+    assert len(STRUCTS) == len(MADE) + 1
+
+
+@pytest.mark.parametrize("kind", STRUCTS.values(), ids=STRUCTS)
+def test_every_part_is_frozen(kind: type[msgspec.Struct]) -> None:
+    assert kind.__struct_config__.frozen
+
+
+def test_an_element_knows_its_section() -> None:
+    elements = {kind for kind in STRUCTS.values() if issubclass(kind, Element)}
+    by_section = {kind.section: kind for kind in elements}
+    assert len(by_section) == len(elements)
+    for section, kind in by_section.items():
+        (member,) = without_none({f.name: f.type for f in msgspec.structs.fields(Description)}[section])
+        assert get_args(member) == (str, kind)
+    uv = struct_of("comparator")
+    assert issubclass(uv, Element)
+    assert msgspec.convert({"id": "uv", "role": "power_on", "watches": "a"}, uv).fact("trip") == "comparators.uv.trip"

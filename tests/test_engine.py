@@ -1,0 +1,186 @@
+from __future__ import annotations
+
+import datetime
+from collections.abc import Callable
+from pathlib import Path
+
+import pytest
+
+from tidegate.lint.case import Case
+from tidegate.lint.description.load import Loaded, load
+from tidegate.lint.description.model.description import Conditions
+from tidegate.lint.description.place import DescriptionError
+from tidegate.lint.engine import Catalogue, review
+from tidegate.lint.judgement import Judgement, Kind, Level
+from tidegate.lint.physics.domain import require_positive
+from tidegate.lint.quantity import Dimension
+from tidegate.lint.rule import Example, Rule, rule
+from tidegate.lint.settings import Settings
+
+TODAY = datetime.date(2026, 1, 1)
+DESCRIPTION = """
+rails:
+  avdd: {nominal: 1.8 V}
+  vcore: {nominal: 1.2 V}
+domains:
+  aon: {rail: avdd}
+waivers:
+  - {rule: supply/high_enough, element: vcore, why: low on purpose, agreed_by: design review, until: "2026-12-31"}
+"""
+
+
+def made(id: str, judge: Callable[[object, Case], object], applies_to: str = "rails") -> Rule:
+    return rule(
+        id, title="a rule", level=Level.ERROR, applies_to=applies_to, proves="", facts=(), mend="", sources=(),
+        example=Example("", ""),
+    )(judge)  # type: ignore[arg-type]  # fmt: skip
+
+
+def high_enough(_: object, case: Case) -> Judgement:
+    have_v = case.own.most("nominal")
+    case.settle()
+    return case.at_least(need=1.5, have=have_v, dimension=Dimension.VOLTAGE, says="nominal", at="nominal")
+
+
+HIGH = made("supply/high_enough", high_enough)
+
+
+@pytest.fixture
+def loaded(tmp_path: Path) -> Loaded:
+    file = tmp_path / "chip.yaml"
+    file.write_text(DESCRIPTION, "utf-8")
+    return load(file, shown="chip.yaml")
+
+
+def answers(loaded: Loaded, *rules: Rule, settings: Settings | None = None) -> dict[tuple[str, str], Judgement]:
+    found = review(loaded, Catalogue([rules]), today=TODAY, settings=settings)
+    assert found.faults == ()
+    return {(judgement.rule, judgement.subject): judgement for judgement in found.judgements}
+
+
+def test_every_rule_judges_every_element_of_its_section_in_order(loaded: Loaded) -> None:
+    second = made("supply/second", lambda _, case: case.passes("well"))
+    third = made("domain/third", lambda _, case: case.not_applicable("no"), "domains")
+    found = review(loaded, Catalogue([(HIGH, second), (third,)]), today=TODAY)
+    assert [(judgement.rule, judgement.subject) for judgement in found.judgements] == [
+        ("supply/high_enough", "avdd"), ("supply/second", "avdd"), ("supply/high_enough", "vcore"),
+        ("supply/second", "vcore"), ("domain/third", "aon"), ("waiver/still_right", "waivers[0]"),
+    ]  # fmt: skip
+    assert found.counts == {Kind.PASS: 4, Kind.FAIL: 1, Kind.NOT_APPLICABLE: 1}
+
+
+def test_a_catalogue_refuses_a_rule_twice_and_a_section_that_is_none() -> None:
+    with pytest.raises(ValueError, match=r"^two rules are called supply/high_enough$"):
+        Catalogue([(HIGH,), (HIGH,)])
+    with pytest.raises(ValueError, match=r"^two rules are called waiver/still_right$"):
+        Catalogue([(made("waiver/still_right", high_enough),)])
+    with pytest.raises(ValueError, match=r"^supply/odd applies to scenarios, which is no section of elements$"):
+        Catalogue([(made("supply/odd", high_enough, "scenarios"),)])
+
+
+def test_missing_facts_make_a_judgement_open(loaded: Loaded) -> None:
+    def needs_both(_: object, case: Case) -> Judgement:
+        case.own.most("rise"), case.own.least("fall")
+        case.settle()
+        return case.passes("well")
+
+    found = answers(loaded, made("supply/both", needs_both))["supply/both", "avdd"]
+    assert (found.kind, found.missing) == (Kind.OPEN, ("rails.avdd.rise", "rails.avdd.fall"))
+
+
+def test_a_number_outside_its_formula_makes_a_judgement_open(loaded: Loaded) -> None:
+    def refused(_: object, case: Case) -> Judgement:
+        require_positive(r_ohm=0.0)
+        return case.passes("well")
+
+    found = answers(loaded, made("supply/refused", refused))["supply/refused", "avdd"]
+    assert (found.kind, found.missing, found.mend) == (Kind.OPEN, (), "")
+    assert found.message == (
+        "the numbers given lie outside the range of the formula: r_ohm must be greater than 0 (found 0.0)"
+    )
+
+
+def test_a_rule_that_raises_is_at_fault_and_hides_no_finding(loaded: Loaded) -> None:
+    def careless(element: object, case: Case) -> object:
+        if case.subject.id == "avdd":
+            raise ZeroDivisionError("division by zero")
+        return "well"
+
+    def hasty(_: object, case: Case) -> Judgement:
+        case.own.most("rise")
+        return case.passes("well")
+
+    rules = (made("supply/careless", careless), made("supply/hasty", hasty), HIGH)
+    found = review(loaded, Catalogue([rules]), today=TODAY)
+    assert [(fault.rule, fault.subject, fault.error) for fault in found.faults] == [
+        ("supply/careless", "avdd", "ZeroDivisionError: division by zero"),
+        ("supply/hasty", "avdd", "UnsettledError: answered although facts are missing: rails.avdd.rise"),
+        ("supply/careless", "vcore", "answered str, not a judgement"),
+        ("supply/hasty", "vcore", "UnsettledError: answered although facts are missing: rails.vcore.rise"),
+    ]
+    judged = [(judgement.rule, judgement.subject, judgement.kind) for judgement in found.judgements]
+    assert judged == [
+        ("supply/high_enough", "avdd", Kind.PASS), ("supply/high_enough", "vcore", Kind.FAIL),
+        ("waiver/still_right", "waivers[0]", Kind.PASS),
+    ]  # fmt: skip
+
+
+def test_findings_are_what_counts_and_is_not_waived(loaded: Loaded) -> None:
+    low = made("supply/low", lambda _, case: case.fails("low", mend="raise it"))
+    asks = made("supply/asks", lambda _, case: case.asks("look", why="assumed", mend="say so"))
+    opens = made("supply/opens", lambda _, case: case.open(["rails.avdd.rise"]))
+    found = review(loaded, Catalogue([(HIGH, low, asks, opens)]), today=TODAY)
+
+    def names(fail_at: Level, *also: str) -> list[str]:
+        return sorted({judgement.rule for judgement in found.findings(fail_at, also)})
+
+    # The failure of high_enough on vcore is waived.
+    assert names(Level.ERROR) == ["supply/low"]
+    assert names(Level.NOTE, "open", "review") == ["supply/asks", "supply/low", "supply/opens"]
+    milder = Settings(levels={"supply/low": Level.NOTE})
+    found = review(loaded, Catalogue([(HIGH, low, asks, opens)]), today=TODAY, settings=milder)
+    assert names(Level.WARNING) == []
+    assert names(Level.NOTE) == ["supply/low"]
+
+
+def test_settings_are_in_force(loaded: Loaded) -> None:
+    other = made("domain/other", lambda _, case: case.passes("well"), "domains")
+    by_family = answers(loaded, HIGH, other, settings=Settings(levels={"supply": Level.NOTE, "domain": Level.WARNING}))
+    assert by_family["supply/high_enough", "avdd"].level is Level.NOTE
+    assert by_family["domain/other", "aon"].level is Level.WARNING
+    left_out = answers(loaded, HIGH, other, settings=Settings(leave_out=("supply", "waiver/still_right")))
+    assert list(left_out) == [("domain/other", "aon")]
+    asked = Settings(least_margins={"supply/high_enough": "0.4 V"})
+    short = answers(loaded, HIGH, settings=asked)["supply/high_enough", "avdd"]
+    assert short.kind is Kind.FAIL
+    assert short.message.endswith("the margin of +300 mV is less than the 0.4 V that the settings ask for")
+
+
+def test_settings_fill_in_conditions_and_take_none_away(loaded: Loaded) -> None:
+    def coverage(_: object, case: Case) -> Judgement:
+        value = case.whole.number("conditions.coverage")
+        case.settle()
+        return case.passes(f"coverage {value:g}")
+
+    covers = made("supply/coverage", coverage)
+    assert answers(loaded, covers)["supply/coverage", "avdd"].kind is Kind.OPEN
+    offered = Settings(conditions=Conditions(coverage=2.0))
+    assert answers(loaded, covers, settings=offered)["supply/coverage", "avdd"].message == "coverage 2"
+
+
+def test_settings_that_name_what_nobody_has(loaded: Loaded) -> None:
+    with pytest.raises(DescriptionError) as refused:
+        review(loaded, Catalogue([(HIGH,)]), today=TODAY, settings=Settings(file="s.yaml", leave_out=("suply",)))
+    assert [(fault.path, fault.problem) for fault in refused.value.faults] == [
+        ("leave_out", "no rule or family is called 'suply'")
+    ]
+    wrong = Settings(file="s.yaml", least_margins={"supply/high_enough": "4 ohm"})
+    with pytest.raises(DescriptionError, match="supply/high_enough"):
+        review(loaded, Catalogue([(HIGH,)]), today=TODAY, settings=wrong)
+
+
+def test_a_judgement_knows_its_place(loaded: Loaded) -> None:
+    found = review(loaded, Catalogue([(HIGH,)]), today=TODAY)
+    assert [str(found.place(judgement)) for judgement in found.judgements] == [
+        "chip.yaml:3:19", "chip.yaml:4:20", "chip.yaml:8:5",
+    ]  # fmt: skip
