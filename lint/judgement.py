@@ -60,10 +60,10 @@ class Measure(msgspec.Struct, frozen=True):
     @property
     def slack(self) -> float:
         """The margin as a share of the need (of the number found where that is 0): margins of all kinds compare."""
-        scale = abs(self.need) or abs(self.have)
-        if self.margin == 0.0:
-            return 0.0
-        return self.margin / scale if scale else 0.0
+        margin = self.margin
+        if margin == 0.0 or math.isinf(margin):
+            return margin
+        return margin / (abs(self.need) or abs(self.have))
 
     def texts(self) -> tuple[str, str]:
         """The number found and its limit, with digits enough to tell them apart."""

@@ -135,8 +135,8 @@ def _ends(facts: Facts, fact: str) -> tuple[float, float]:
     mend="correct the levels, the ratio or the reference",
     sources=("a V = V_ref (derived)",),
     example=Example(
-        fails="references: {ref_fast: {voltage: 0.5 V}}",
-        holds="references: {ref_fast: {voltage: 0.6 V}}",
+        fails="comparators: {uv: {trip: {rising: 1.577 V, falling: 1.527 V}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
     ),
 )
 def levels_come_from_reference(comparator: Comparator, case: Case) -> Judgement:

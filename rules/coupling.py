@@ -9,11 +9,11 @@ from typing import Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.coupling_map import Push, coupling_map
-from tidegate.lint.derived.disturbance import disturbers, kick, pair_bump, sharers
+from tidegate.lint.derived.disturbance import disturbers, own_kick, pair_bump, sharers
 from tidegate.lint.derived.quieting import quieter_pair, quieter_reference
 from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.seen_bump import SeenBump, seen_bump
+from tidegate.lint.derived.seen_bump import SeenBump, seen_bumps
 from tidegate.lint.derived.toggle_chain import chain_on, comes_round, joined, two_pushes
 from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window
 from tidegate.lint.description.model.detector import Comparator
@@ -69,11 +69,11 @@ def bump_is_kept(pair: Neighbour, case: Case) -> Judgement:
     if pair.mutual and pair.aggressor in comparators:
         ways.append((comparators[pair.aggressor], pair.victim))
     asks = [
-        partial(seen_bump, case, victim, partial(pair_bump, case, pair, victim, aggressor))
+        partial(seen_bumps, case, victim, [partial(pair_bump, case, pair, victim, aggressor)])
         for victim, aggressor in ways
         if not has_no_hysteresis(victim)
     ]
-    seen = [way for way in case.gather_all(asks) if way.kept_v > 0.0]
+    seen = [way for ways_seen in case.gather_all(asks) for way in ways_seen if way.kept_v > 0.0]
     if not seen:
         return case.not_applicable(_NOTHING_KEPT)
     worst, *others = sorted(seen, key=lambda way: way.spare_v)
@@ -116,7 +116,7 @@ def shared_reference_stays(comparator: Comparator, case: Case) -> Judgement:
         return case.not_applicable(f"no other comparator kicks {comparator.reference}")
     if has_no_hysteresis(comparator):
         return case.not_applicable(_NOTHING_KEPT)
-    seen = case.gather_all([partial(seen_bump, case, comparator, other.bump) for other in others])
+    seen = seen_bumps(case, comparator, [other.bump for other in others])
     worst = max(seen, key=lambda each: each.seen_v)
     return _kick_judged(case, worst, f"{worst.bump.aggressor} kicks {comparator.reference}, which moves its level by")
 
@@ -163,7 +163,7 @@ def own_kick_is_kept(comparator: Comparator, case: Case) -> Judgement:
         return case.not_applicable("it takes no reference")
     if has_no_hysteresis(comparator):
         return case.not_applicable(_NOTHING_KEPT)
-    seen = seen_bump(case, comparator, partial(kick, case, comparator, comparator))
+    (seen,) = seen_bumps(case, comparator, [partial(own_kick, case, comparator)])
     return _kick_judged(case, seen, f"its own decision kicks {comparator.reference}, which moves its level by")
 
 
@@ -190,7 +190,7 @@ def neighbours_together_are_kept(comparator: Comparator, case: Case) -> Judgemen
         return case.not_applicable(f"{'one neighbour' if sources else 'no neighbour'} disturbs it")
     if has_no_hysteresis(comparator):
         return case.not_applicable(_NOTHING_KEPT)
-    seen = case.gather_all([partial(seen_bump, case, comparator, source.bump) for source in sources])
+    seen = seen_bumps(case, comparator, [source.bump for source in sources])
     seen.sort(key=lambda each: -each.seen_v)
     largest, kept_v = seen[0], seen[0].kept_v
     if kept_v <= 0.0:

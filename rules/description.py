@@ -85,7 +85,7 @@ def rail_ranges_nest(rail: Rail, case: Case) -> Judgement:
     nominal = _middle(rail.nominal)
     low, high = _least(rail.delivered), _most(rail.delivered)
     signed_high, damage = _most(rail.guaranteed), _least(rail.damage)
-    top = "the highest supply delivered," if high is not None else "nominal,"
+    top = "the highest supply delivered" if high is not None else "nominal"
     orders = [
         _Order(_least(rail.guaranteed), "the lowest supply signed off for", low, "the lowest delivered", "guaranteed"),
         _Order(low, "the lowest supply delivered", nominal, "nominal", "delivered"),
@@ -173,7 +173,7 @@ def detector_facts_agree(comparator: Comparator, case: Case) -> Judgement:
     """Hold its range, its levels, its codes and its re-arming level against each other."""
     trip = comparator.trip
     orders = [
-        _Order(_least(comparator.works_from), "works_from", _most(comparator.works_to), "works_to", "works_from"),
+        _Order(_most(comparator.works_from), "works_from", _least(comparator.works_to), "works_to", "works_from"),
     ]  # fmt: skip
     if comparator.role != "over_voltage":
         falling = _most(trip.falling) if trip is not None else None
@@ -184,7 +184,7 @@ def detector_facts_agree(comparator: Comparator, case: Case) -> Judgement:
         code = comparator.codes[comparator.ships_with]
         for level in ("rising", "falling"):
             pair = _middle(getattr(trip, level)), _middle(getattr(code, level))
-            names = f"the {level} level of trip", f"that of {comparator.ships_with}, which it ships with,"
+            names = f"the {level} level of trip", f"that of {comparator.ships_with}, which it ships with"
             at = f"codes.{comparator.ships_with}.{level}"
             orders.append(_Order(pair[0], names[0], pair[1], names[1], at))
             orders.append(_Order(pair[1], names[1], pair[0], names[0], at))

@@ -149,7 +149,7 @@ def _forwards(path: Path) -> Path:
 
 def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, float]:
     """The detector with the least hysteresis, and how much it is, in V."""
-    windows = case.gather_all((partial(hysteresis_window, case, detector) for detector in detectors))
+    windows = case.gather_all(partial(hysteresis_window, case, detector) for detector in detectors)
     least = {detector.id: window.least_v for detector, window in zip(detectors, windows, strict=True)}
     return min(least.items(), key=lambda each: each[1])
 

@@ -55,7 +55,7 @@ def sources_are_up_in_time(comparator: Comparator, case: Case) -> Judgement:
     off_chip = [source for source in sources if source.kind == "external"]
     on_chip = [source for source in sources if source.kind != "external"]
     needs, own_rail = case.gather(
-        lambda: case.gather_all((partial(_need, case, comparator, source) for source in on_chip)),
+        lambda: case.gather_all(partial(_need, case, comparator, source) for source in on_chip),
         lambda: rail_of(case, comparator),
     )
     worst = min(needs, key=lambda need: need.measure.margin, default=None)

@@ -15,7 +15,7 @@ ROOT = Path(__file__).resolve().parents[1]
 FLOORS = (
     ("tidegate.lint.version", "tidegate.schema"),
     ("tidegate.lint.physics",),
-    ("tidegate.lint.found",),
+    ("tidegate.lint.found", "tidegate.lint.units"),
     ("tidegate.lint.quantity", "tidegate.lint.quantity_faults"),
     ("tidegate.lint.description",),
     ("tidegate.lint.graph",),
@@ -24,8 +24,9 @@ FLOORS = (
     ("tidegate.lint.derived",),
     ("tidegate.lint.timing",),
     ("tidegate.lint.rule",),
-    ("tidegate.lint.waivers",),
+    ("tidegate.lint.waivers", "tidegate.lint.settings", "tidegate.lint.packs"),
     ("tidegate.lint.engine",),
+    ("tidegate.lint.batch", "tidegate.lint.comparison", "tidegate.lint.pack_testing"),
     ("tidegate.lint.reports",),
     ("tidegate.lint.commands",),
     ("tidegate.rules",),
@@ -56,7 +57,9 @@ def _floor(module: str) -> int:
 def _imports(path: Path) -> list[str]:
     names = []
     for node in ast.walk(ast.parse(path.read_text("utf-8"))):
-        if isinstance(node, ast.ImportFrom) and node.module and node.module.startswith("tidegate"):
+        if isinstance(node, ast.ImportFrom) and node.module == "tidegate.lint":
+            names += [f"tidegate.lint.{alias.name}" for alias in node.names]
+        elif isinstance(node, ast.ImportFrom) and node.module and node.module.startswith("tidegate"):
             names.append(node.module)
         elif isinstance(node, ast.Import):
             names += [alias.name for alias in node.names if alias.name.startswith("tidegate")]

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import datetime
+import os
+import shutil
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from enum import IntEnum
@@ -35,13 +37,14 @@ class Streams:
 
     @property
     def colour(self) -> bool:
-        """Whether the output takes colour: a terminal, unless the environment asks for none."""
-        return self.console().color_system is not None
+        """Whether the output takes colour: a terminal that is not dumb, unless the environment asks for none."""
+        asked_for_none = os.environ.get("NO_COLOR") or os.environ.get("TERM") == "dumb"
+        return self.out.isatty() and not asked_for_none
 
     @property
     def width(self) -> int:
         """Columns of the output; 80 where it has none of its own."""
-        return self.console().width
+        return shutil.get_terminal_size((80, 24)).columns
 
     def console(self, *, error: bool = False) -> Console:
         """A console on the output or the error stream that takes text as it is: no markup, no emoji."""

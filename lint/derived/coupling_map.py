@@ -5,11 +5,11 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from functools import partial
 from itertools import pairwise
+from typing import Generic, TypeVar
 
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.disturbance import Disturber, disturbers, ignored_s
+from tidegate.lint.derived.disturbance import disturbers, ignored_s
 from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.graph.cycles import greatest_mean_cycle, loops
@@ -19,6 +19,8 @@ from tidegate.lint.graph.paths import Reach, driven_by
 from tidegate.lint.judgement import Measure, Relation
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.quantity import Dimension
+
+_A = TypeVar("_A")
 
 
 @dataclass(frozen=True, slots=True)
@@ -143,26 +145,26 @@ class _Drivers:
 
 
 @dataclass(frozen=True, slots=True)
-class _Answer:
+class _Answer(Generic[_A]):
     """What a question about facts gave, or what it lacked."""
 
-    value: float = math.nan
-    missing: tuple[str, ...] = ()
-    refused: str = ""
+    value: _A | None
+    missing: tuple[str, ...]
+    refused: str
 
 
-def _asked(case: Case, ask: Callable[[], float]) -> _Answer:
-    """The answer to a question; what is missing is noted in it, and not held against the element that is judged."""
-    before, refused, value = len(case.missing), "", math.nan
+def _asked(case: Case, ask: Callable[[], _A]) -> _Answer[_A]:
+    """The answer to a question; what is missing is told in it, and not held against the element that is judged."""
+    noted, case.missing = case.missing, []
+    value, refused = None, ""
     try:
         value = ask()
     except MissingFactsError:
         pass  # noted in the case
     except DomainError as error:
         refused = str(error)
-    missing = tuple(dict.fromkeys(case.missing[before:]))
-    del case.missing[before:]
-    return _Answer(value, missing, refused)
+    missing, case.missing = tuple(dict.fromkeys(case.missing)), noted
+    return _Answer(None if missing or refused else value, missing, refused)
 
 
 def _pushes_onto(case: Case, victim: Comparator, drivers: _Drivers) -> Iterator[Push]:
@@ -170,21 +172,21 @@ def _pushes_onto(case: Case, victim: Comparator, drivers: _Drivers) -> Iterator[
     if has_no_hysteresis(victim):
         return
     kept = _asked(case, lambda: hysteresis_window(case, victim).least_v)
-    if kept.value <= 0.0:
+    if kept.value is not None and kept.value <= 0.0:
         return
+    ignored = _asked(case, lambda: ignored_s(case, victim))
     for disturber in disturbers(case, victim):
-        bump = _asked(case, partial(_seen_by, case, victim, disturber))
-        missing = (*bump.missing, *(fact for fact in kept.missing if fact not in bump.missing))
+        bump = _asked(case, disturber.bump)
+        seen_v = math.nan
+        if bump.value is not None and ignored.value is not None:
+            seen_v = bump.value.lasting_v(ignored.value)
         for way in drivers.ways_to(disturber.aggressor):
             yield Push(
-                by=way[0].element, victim=victim.id, bump_v=bump.value, kept_v=kept.value, missing=missing,
-                refused=bump.refused or kept.refused, path=(*way, *disturber.path[1:]),
+                by=way[0].element, victim=victim.id, bump_v=seen_v,
+                kept_v=math.nan if kept.value is None else kept.value,
+                missing=(*bump.missing, *ignored.missing, *kept.missing),
+                refused=bump.refused or ignored.refused or kept.refused, path=(*way, *disturber.path[1:]),
             )  # fmt: skip
-
-
-def _seen_by(case: Case, victim: Comparator, disturber: Disturber) -> float:
-    bump, lasts_s = case.gather(disturber.bump, lambda: ignored_s(case, victim))
-    return bump.lasting_v(lasts_s)
 
 
 def _rings(out: Mapping[str, Sequence[Push]], comparators: Iterable[str]) -> dict[str, Ring]:

@@ -5,15 +5,13 @@ from __future__ import annotations
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from functools import partial
-from math import inf
 
-from tidegate.lint.case import Case, Facts
-from tidegate.lint.derived.input_share import input_share
+from tidegate.lint.case import Case
+from tidegate.lint.derived.disturbed_node import ReferenceNode, coupled_edge, rail_share, reference_node
 from tidegate.lint.description.model.detector import Comparator, Reference
 from tidegate.lint.description.model.reset_path import Neighbour
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.physics import coupling
-from tidegate.lint.physics.lasting_bump import decayed_kick_v, lasting_bump_v
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,15 +63,13 @@ def sharers(case: Case, comparator: Comparator) -> list[Disturber]:
         for pair, aggressor in _pairs(case, comparator)
         if pair.kind == "shared_reference" and pair.reference == reference
     }
+    node = _OnceNode(case, case.description.references[reference], comparator)
     others = (
         case.description.comparators[other]
         for other in case.graph.tails(reference, EdgeKind.TAKES_REFERENCE_FROM)
         if other in case.description.comparators and other != comparator.id and other not in described
     )
-    return [
-        Disturber(other.id, _kick_path(other.id, reference, comparator), partial(kick, case, other, comparator))
-        for other in others
-    ]
+    return [Disturber(other.id, node.path_from(other.id), partial(_kick, case, other, node)) for other in others]
 
 
 def bumps_on(case: Case, comparator: Comparator) -> list[Bump]:
@@ -81,17 +77,19 @@ def bumps_on(case: Case, comparator: Comparator) -> list[Bump]:
 
     Raises: MissingFactsError: where a fact of any of them is missing, with all that is.
     """
-    return case.gather_all((disturber.bump for disturber in disturbers(case, comparator)))
+    return case.gather_all(disturber.bump for disturber in disturbers(case, comparator))
 
 
-def kick(case: Case, aggressor: Comparator, victim: Comparator) -> Bump:
-    """The bump that one comparator's decision leaves on another's reference (or on its own)."""
-    assert victim.reference is not None
-    reference = case.description.references[victim.reference]
-    charge_c, fact = case.of(aggressor).most("kick"), case.of(aggressor).path("kick")
-    return _on_reference(
-        case, reference, victim, charge_c=charge_c, aggressor=aggressor.id, via=reference.id, fact=fact
-    )
+def own_kick(case: Case, comparator: Comparator) -> Bump:
+    """The bump that a comparator's decision leaves on the reference that its own level is taken from."""
+    assert comparator.reference is not None
+    return _kick(case, comparator, _OnceNode(case, case.description.references[comparator.reference], comparator))
+
+
+def _kick(case: Case, aggressor: Comparator, node: _OnceNode) -> Bump:
+    facts = case.of(aggressor)
+    charge_c = facts.most("kick")
+    return node.bump(charge_c, aggressor=aggressor.id, via=node.reference.id, fact=facts.path("kick"))
 
 
 def pair_bump(case: Case, pair: Neighbour, victim: Comparator, aggressor: str) -> Bump:
@@ -99,9 +97,8 @@ def pair_bump(case: Case, pair: Neighbour, victim: Comparator, aggressor: str) -
     facts = case.of(pair)
     if pair.kind == "shared_reference":
         charge_c, reference = case.gather(lambda: facts.most("charge"), lambda: facts.element("reference"))
-        return _on_reference(
-            case, reference, victim, charge_c=charge_c, aggressor=aggressor, via=pair.id, fact=facts.path("charge")
-        )
+        node = _OnceNode(case, reference, victim)
+        return node.bump(charge_c, aggressor=aggressor, via=pair.id, fact=facts.path("charge"))
     path = pair_path(pair, victim, aggressor)
     if pair.kind == "capacitance":
         scale, edge = case.gather(lambda: rail_share(case, facts, victim), lambda: coupled_edge(case, pair))
@@ -118,12 +115,8 @@ def pair_bump(case: Case, pair: Neighbour, victim: Comparator, aggressor: str) -
 def pair_path(pair: Neighbour, victim: Comparator, aggressor: str) -> Path:
     """The way on which one of a described pair disturbs the other."""
     if pair.kind == "shared_reference" and pair.reference is not None:
-        return _kick_path(aggressor, pair.reference, victim)
+        return Hop(aggressor, ""), Hop(pair.reference, "kicks"), Hop(victim.id, "is the reference of")
     return Hop(aggressor, ""), Hop(victim.id, f"couples through {pair.id} to")
-
-
-def _kick_path(aggressor: str, reference: str, victim: Comparator) -> Path:
-    return Hop(aggressor, ""), Hop(reference, "kicks"), Hop(victim.id, "is the reference of")
 
 
 def _pairs(case: Case, comparator: Comparator) -> Iterator[tuple[Neighbour, str]]:
@@ -134,90 +127,26 @@ def _pairs(case: Case, comparator: Comparator) -> Iterator[tuple[Neighbour, str]
             yield case.description.neighbours[pair], edge.tail
 
 
-@dataclass(frozen=True, slots=True)
-class CoupledEdge:
-    """The worst edge of a neighbour, and the node that it couples into."""
+class _OnceNode:
+    """The reference of a victim, worked out once for all that kick it."""
 
-    step_v: float
-    least_edge_s: float
-    most_edge_s: float
-    """Infinite where it is not said how slow the edge can be."""
-    r_ohm: float
-    coupling_c_f: float
-    least_c_f: float
-    most_c_f: float
-    """Infinite where it is not said how much capacitance the node can have."""
+    def __init__(self, case: Case, reference: Reference, victim: Comparator) -> None:
+        self.reference = reference
+        self._case = case
+        self._victim = victim
+        self._node: ReferenceNode | None = None
+        self._onward = Hop(reference.id, "kicks"), Hop(victim.id, "is the reference of")
 
-    @property
-    def peak_v(self) -> float:
-        """Its peak at the node, V."""
-        return coupling.bump_peak_v(
-            step_v=self.step_v, edge_s=self.least_edge_s, r_ohm=self.r_ohm, coupling_c_f=self.coupling_c_f,
-            ground_c_f=self.least_c_f,
-        )  # fmt: skip
+    def path_from(self, aggressor: str) -> Path:
+        return Hop(aggressor, ""), *self._onward
 
-    def lasting_v(self, lasts_s: float) -> float:
-        """What no edge of this neighbour holds the node above for a time, V at the node: the least of three bounds."""
-        held_v = lasting_bump_v(
-            lasts_s=lasts_s, step_v=self.step_v, r_ohm=self.r_ohm, coupling_c_f=self.coupling_c_f,
-            ground_c_f=self.least_c_f,
-        )  # fmt: skip
-        bound_v = min(self.peak_v, held_v)
-        least_c_f = self.coupling_c_f + self.least_c_f
-        if self.most_edge_s >= lasts_s or least_c_f == 0.0:
-            return bound_v
-        after_edge_v = decayed_kick_v(
-            lasts_s=lasts_s - self.most_edge_s, charge_c=self.step_v * self.coupling_c_f, r_ohm=self.r_ohm,
-            least_c_f=least_c_f, most_c_f=self.coupling_c_f + self.most_c_f,
-        )  # fmt: skip
-        return min(bound_v, after_edge_v)
-
-
-def coupled_edge(case: Case, pair: Neighbour) -> CoupledEdge:
-    """The edge and the node of a pair that couples through a capacitance."""
-    facts = case.of(pair)
-    node_c = pair.node.capacitance if pair.node is not None else None
-    slowest_s = pair.edge.most if pair.edge is not None else None
-    edge = CoupledEdge(
-        step_v=facts.most("step"),
-        least_edge_s=facts.least("edge"),
-        most_edge_s=inf if slowest_s is None else slowest_s,
-        r_ohm=facts.most("node.resistance"),
-        coupling_c_f=facts.most("capacitance"),
-        least_c_f=facts.least("node.capacitance"),
-        most_c_f=inf if node_c is None or node_c.most is None else node_c.most,
-    )
-    case.settle()
-    return edge
-
-
-def rail_share(case: Case, facts: Facts, victim: Comparator) -> float:
-    """The part of a change at the rail that shows where a pair of neighbours meets its victim."""
-    return 1.0 if facts.must("at") == "rail" else input_share(case, victim)
-
-
-def _on_reference(
-    case: Case, reference: Reference, victim: Comparator, *, charge_c: float, aggressor: str, via: str, fact: str
-) -> Bump:
-    """A charge thrown onto a decoupled reference, which gives it back through its source resistance."""
-    facts = case.of(reference)
-    needs_decay = victim.filter is not None  # without a filter, the peak is all there is to see
-    c_f, r_ohm, share = case.gather(
-        lambda: facts.least("decoupling"),
-        lambda: facts.most("source_resistance") if needs_decay else inf,
-        lambda: input_share(case, victim),
-    )
-    peak_v = coupling.charge_kick_v(charge_c=charge_c, c_f=c_f) / share
-    greatest_f = reference.decoupling.most if reference.decoupling is not None else None
-
-    def lasting_v(lasts_s: float) -> float:
-        if lasts_s == 0.0:
-            return peak_v
-        most_c_f = inf if greatest_f is None else greatest_f
-        return decayed_kick_v(lasts_s=lasts_s, charge_c=charge_c, r_ohm=r_ohm, least_c_f=c_f, most_c_f=most_c_f) / share
-
-    path = _kick_path(aggressor, reference.id, victim)
-    return Bump(aggressor, victim.id, via, peak_v, lasting_v, path, fact)
+    def bump(self, charge_c: float, *, aggressor: str, via: str, fact: str) -> Bump:
+        """The bump of a charge; what is missing is noted anew each time, for whoever asks."""
+        if self._node is None:
+            self._node = reference_node(self._case, self.reference, self._victim)
+        self._case.settle()
+        lasting_v = partial(self._node.lasting_v, charge_c)
+        return Bump(aggressor, self._victim.id, via, lasting_v(0.0), lasting_v, self.path_from(aggressor), fact)
 
 
 def seen_v(case: Case, comparator: Comparator, bump: Bump) -> float:

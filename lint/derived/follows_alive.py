@@ -19,7 +19,7 @@ def not_alive(case: Case, stages: Sequence[OutputStage], *, held_rail: Rail) -> 
     up before it.
     Raises: MissingFactsError: where that is not given.
     """
-    whys = case.gather_all((partial(_why, case, stage, held_rail) for stage in stages))
+    whys = case.gather_all(partial(_why, case, stage, held_rail) for stage in stages)
     return [(stage, why) for stage, why in zip(stages, whys, strict=True) if why]
 
 

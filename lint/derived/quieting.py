@@ -6,7 +6,8 @@ from collections.abc import Iterable, Sequence
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.disturbance import coupled_edge, ignored_s, rail_share
+from tidegate.lint.derived.disturbance import ignored_s
+from tidegate.lint.derived.disturbed_node import coupled_edge, rail_share
 from tidegate.lint.derived.input_share import input_share
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.description.model.detector import Comparator, Reference

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 
 from tidegate.lint.case import Case
@@ -44,12 +44,14 @@ class SeenBump:
         return f"{peak}, {seen} after the {ignored} that the filter ignores"
 
 
-def seen_bump(case: Case, victim: Comparator, ask: Callable[[], Bump]) -> SeenBump:
-    """Work out a bump, what its victim sees of it and the distance that the victim's level keeps.
+def seen_bumps(case: Case, victim: Comparator, asks: Iterable[Callable[[], Bump]]) -> list[SeenBump]:
+    """Work out bumps on one victim, what it sees of each and the distance that its level keeps.
 
     Raises: MissingFactsError: where a fact of any of them is missing, with all that is.
     """
-    bump, lasts_s, kept_v = case.gather(
-        ask, lambda: ignored_s(case, victim), lambda: hysteresis_window(case, victim).least_v
+    bumps, lasts_s, kept_v = case.gather(
+        lambda: case.gather_all(asks),
+        lambda: ignored_s(case, victim),
+        lambda: hysteresis_window(case, victim).least_v,
     )
-    return SeenBump(victim, bump, bump.lasting_v(lasts_s), kept_v)
+    return [SeenBump(victim, bump, bump.lasting_v(lasts_s), kept_v) for bump in bumps]

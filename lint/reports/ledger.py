@@ -30,13 +30,20 @@ class Entry:
 def entries(judgements: Iterable[Judgement], *, element: str | None, family: str | None) -> list[Entry]:
     """The judgements that have a number, least slack first; of one element, of one family, where these are named."""
     found = [
-        Entry(judgement, judgement.measure, judgement.measure.slack)
+        Entry(judgement, judgement.measure, _slack(judgement.measure))
         for judgement in judgements
         if judgement.measure is not None
         and element in (None, judgement.subject)
         and family in (None, judgement.rule.partition("/")[0])
     ]
     return sorted(found, key=lambda entry: (entry.slack, entry.judgement.rule, entry.judgement.subject))
+
+
+def _slack(measure: Measure) -> float:
+    """The slack; without end, on the side on which the number lies, where need or number is unlimited."""
+    if math.isinf(measure.need) or math.isinf(measure.have):
+        return math.inf if measure.holds else -math.inf
+    return measure.slack
 
 
 def histogram(found: Sequence[Entry], *, unicode: bool) -> str:

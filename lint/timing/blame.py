@@ -48,7 +48,7 @@ def blame_for_unknown(lines: Timelines, line: Timeline, start: str, at_s: float)
 
 def _is_unknown(line: Timeline, name: str, at_s: float) -> bool:
     """Whether an element may be unknown at a time, or has just been (the time a stage takes lies between)."""
-    state = line.states.get(name)
+    state = line.states[name]
     if not isinstance(state, Decision):
         return False
     times = state.may_be_unknown
@@ -68,13 +68,13 @@ def _down(
     lines: Timelines, line: Timeline, part: StagePart | ComparatorPart | SourcePart, at_s: float
 ) -> Iterable[str]:
     """What of the needs of an element may not be up at a time."""
-    supply = line.states.get(part.rail)
+    supply = line.states[part.rail]
     if isinstance(supply, Supply):
         level_v = max(part.works_from.most, 1e-9)
         if level_v < FOREVER_S and is_in(supply.may_be_low(rising_v=level_v, falling_v=level_v), at_s):
             yield f"{part.rail} at {level_v:.4g} V"
     for name in (part.domain, *part.needs):
-        state = line.states.get(name)
+        state = line.states[name]
         off = None
         if isinstance(state, On):
             off = state.may_be_off

@@ -71,19 +71,20 @@ class Network:
     parts: Mapping[str, TimedPart]
     order: Sequence[tuple[Sequence[str], bool]]
     ramps: Mapping[str, RailRamp]
+    place: Mapping[str, int]
+    """Where each element comes in the order."""
 
     def among(self, names: Iterable[str]) -> Network:
-        """The same network, with the order of some elements alone."""
-        wanted = set(names)
-        order = [(kept, loop) for group, loop in self.order if (kept := [name for name in group if name in wanted])]
-        return Network(self.parts, order, self.ramps)
+        """The same network, with the order of some elements alone; of what leans on itself, all."""
+        order = [self.order[place] for place in sorted({self.place[name] for name in names if name in self.place})]
+        return Network(self.parts, order, self.ramps, self.place)
 
     def pinned(self, ends: Mapping[str, bool]) -> Network:
         """The same network with the tolerances of some elements at their least (False) or greatest (True) ends."""
         parts = dict(self.parts)
         for name, greatest in ends.items():
             parts[name] = _at_end(parts[name], greatest)
-        return Network(parts, self.order, self.ramps)
+        return Network(parts, self.order, self.ramps, self.place)
 
     def without_spread_from_nothing(self, names: Iterable[str]) -> Network:
         """The same network with each least value of some elements that stands at 0 as great as the greatest."""
@@ -91,12 +92,14 @@ class Network:
         for name in names:
             if name in parts:
                 parts[name] = _without_spread_from_nothing(parts[name])
-        return Network(parts, self.order, self.ramps)
+        return Network(parts, self.order, self.ramps, self.place)
 
 
 def network(parts: Mapping[str, TimedPart], ramps: Mapping[str, RailRamp]) -> Network:
     """The network of some parts."""
-    return Network(parts, in_order(parts), ramps)
+    order = in_order(parts)
+    place = {name: number for number, (group, _) in enumerate(order) for name in group}
+    return Network(parts, order, ramps, place)
 
 
 def _at_end(part: TimedPart, greatest: bool) -> TimedPart:
@@ -118,7 +121,7 @@ def _without_spread_from_nothing(part: TimedPart) -> TimedPart:
 
 def evaluate(net: Network, scenario: Scenario, known: States | None = None) -> dict[str, State]:
     """The state of every element in a scenario; ``known`` is taken for what the network does not order anew."""
-    states: dict[str, State] = dict(known or {})
+    states = _States(known or {})
     times = _Timing(net, scenario, states)
     for group, leans_on_itself in net.order:
         if not leans_on_itself:
@@ -127,6 +130,21 @@ def evaluate(net: Network, scenario: Scenario, known: States | None = None) -> d
         else:
             times.settle_loop(group)
     return states
+
+
+class _States(dict[str, State]):
+    """States as they are found; what is not timed anew is as it was known, and of what is not known at all, anything
+    may be so."""
+
+    def __init__(self, known: States) -> None:
+        super().__init__()
+        self.known = known
+
+    def __missing__(self, name: str) -> State:
+        try:
+            return self.known[name]
+        except KeyError:
+            return ANYTHING
 
 
 class _Timing:
@@ -201,7 +219,7 @@ class _Timing:
 
     def _above(self, rail: str, level: Bounds) -> On:
         """When a rail may be above a level that lies between two bounds, and when it may not be."""
-        supply = self.states.get(rail, ANYTHING)
+        supply = self.states[rail]
         if isinstance(supply, On):
             return supply
         if not isinstance(supply, Supply):
@@ -214,7 +232,7 @@ class _Timing:
 
     def _gate(self, name: str) -> On:
         """Whether what an element gates is enabled."""
-        match self.states.get(name, ANYTHING):
+        match self.states[name]:
             case On() as on:
                 return on
             case Decision() as decision:
@@ -230,7 +248,7 @@ class _Timing:
     def _fed(self, part: SourcePart | ComparatorPart | StagePart) -> On:
         """Whether an element has its supply, and all that it needs is up."""
         fed = self._above(part.rail, part.works_from)
-        gate = self.states.get(part.domain, ANYTHING)
+        gate = self.states[part.domain]
         if gate is ALWAYS_ON and not part.needs:
             return fed
         return all_on((fed, self._gate(part.domain), *(self._gate(name) for name in part.needs)))
@@ -239,7 +257,7 @@ class _Timing:
         return settled(self._fed(part), least_s=part.settling.least, most_s=part.settling.most)
 
     def _comparator(self, part: ComparatorPart) -> Decision:
-        watched = self.states.get(part.watches)
+        watched = self.states[part.watches]
         if not isinstance(watched, Supply):
             return ANY_DECISION
         return decision_of(part, watched=watched, valid=self._fed(part), armed=self._all_gates(part.armed_by))
@@ -252,7 +270,7 @@ class _Timing:
         return all_agree(drivers) if part.all_agree else any_asserts(drivers)
 
     def _decision(self, name: str) -> Decision:
-        state = self.states.get(name, ANY_DECISION)
+        state = self.states[name]
         return state if isinstance(state, Decision) else ANY_DECISION
 
     def _load(self, part: LoadPart) -> LoadState:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Iterator
 from typing import Final
 
 from tidegate.lint.quantity import Dimension, show
@@ -54,9 +54,11 @@ def dips(setting: Setting, rail: str) -> Iterator[Scenario]:
     ramp = setting.ramps.get(rail)
     if ramp is None or ramp.fast_fall_lacks or ramp.start_lacks:
         return
-    watching = [p for p in setting.parts.values() if isinstance(p, ComparatorPart) and p.watches == rail and not p.over]
+    watching = [
+        p for p in setting.by_rail.get(rail, ()) if isinstance(p, ComparatorPart) and p.watches == rail and not p.over
+    ]
     slowest = max(watching, key=lambda part: part.filter.most, default=None)
-    for level_v in critical_levels_v(setting.parts, rail, ramp):
+    for level_v in critical_levels_v(setting.by_rail.get(rail, ()), rail, ramp):
         yield _dip(ramp, rail, level_v=level_v, rests_s=setting.long_s, words="for long")
         blind_s = 0.0 if slowest is None or slowest.filter.most == FOREVER_S else slowest.filter.most
         if slowest is not None and blind_s > 0.0 and level_v < slowest.falling.least:
@@ -84,14 +86,14 @@ def _seen_low_s(part: ComparatorPart, ramp: RailRamp, level_v: float) -> float:
     return falls_s + (part.rising.least - level_v) / ramp.fastest_rise_v_per_s
 
 
-def critical_levels_v(parts: Mapping[str, TimedPart], rail: str, ramp: RailRamp) -> list[float]:
+def critical_levels_v(parts: Iterable[TimedPart], rail: str, ramp: RailRamp) -> list[float]:
     """The levels of a rail at which something changes, each from its worse side, highest first, in V.
 
     Just above what a detector surely sees or re-arms below, or as deep as a dip without a bottom can go while its
     filter may ignore it; just below what a load or a circuit needs.
     """
     found: set[float] = set()
-    for part in parts.values():
+    for part in parts:
         match part:
             case ComparatorPart():
                 if part.watches == rail and not part.over:

@@ -36,6 +36,19 @@ def leans_on(part: TimedPart) -> tuple[str, ...]:
             return (*readiness_of(part), *part.resets)
 
 
+def rails_of(part: TimedPart) -> set[str]:
+    """The rails that feed an element, that it watches or needs."""
+    match part:
+        case ComparatorPart():
+            return {part.rail, part.watches}
+        case SourcePart() | StagePart():
+            return {part.rail}
+        case LoadPart():
+            return {rail for rail, _ in part.works}
+        case _:
+            return set()
+
+
 def readiness_of(load: LoadPart) -> tuple[str, ...]:
     """What a load needs before it is ready."""
     rails = tuple(rail for rail, _ in load.works)

@@ -102,7 +102,7 @@ def is_missed(line: Timeline, load: str) -> bool:
 
 def unknown_while_read(line: Timeline, part: ResetPart) -> Times:
     """When a reset net may be unknown while its receivers have a supply at which they read it."""
-    state, supply = line.states[part.id], line.states.get(part.rail)
+    state, supply = line.states[part.id], line.states[part.rail]
     assert isinstance(state, Decision)
     if not state.may_be_unknown or not isinstance(supply, Supply):
         return state.may_be_unknown

@@ -24,7 +24,8 @@ class Setting:
 
     description: Description
     ramps: Mapping[str, RailRamp]
-    parts: Mapping[str, TimedPart]
+    by_rail: Mapping[str, Sequence[TimedPart]]
+    """What each rail feeds, what watches it and what needs it."""
     long_s: float
 
     def outer_rails(self) -> list[Rail]:
@@ -73,7 +74,7 @@ def _going_back(setting: Setting, rail: Rail) -> Waveform | None:
     ramp = setting.ramps[rail.id]
     levels = [
         part.rising.least
-        for part in setting.parts.values()
+        for part in setting.by_rail.get(rail.id, ())
         if isinstance(part, ComparatorPart) and part.watches == rail.id and not part.over
     ]
     at_v = max(levels, default=ramp.nominal_v / 2)

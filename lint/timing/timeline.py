@@ -27,8 +27,8 @@ from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.timing.evaluate import Network, States, evaluate, network
 from tidegate.lint.timing.falls import alone, dips, together
 from tidegate.lint.timing.interval import FOREVER_S
-from tidegate.lint.timing.order import leans_on, reached
-from tidegate.lint.timing.parts import Lacks, times_of
+from tidegate.lint.timing.order import leans_on, rails_of, reached
+from tidegate.lint.timing.parts import Lacks, TimedPart, times_of
 from tidegate.lint.timing.published import published
 from tidegate.lint.timing.ramps import Ramps, read_ramps
 from tidegate.lint.timing.reading import Parts, read_parts
@@ -57,10 +57,17 @@ class Timelines:
         self.read: Parts = read_parts(description, graph)
         self.ramps: Ramps = read_ramps(description)
         self.network: Network = network(self.read.parts, self.ramps.by_rail)
-        self.setting = Setting(description, self.ramps.by_rail, self.read.parts, self._long_s())
+        self.setting = Setting(description, self.ramps.by_rail, self._by_rail(), self._long_s())
         self._alone: dict[str, Timeline | None] = {}
         self._dips: dict[str, Sequence[Timeline]] = {}
         self._cones: dict[str, Network] = {}
+
+    def _by_rail(self) -> Mapping[str, Sequence[TimedPart]]:
+        found: dict[str, list[TimedPart]] = {}
+        for part in self.read.parts.values():
+            for rail in rails_of(part):
+                found.setdefault(rail, []).append(part)
+        return found
 
     def _long_s(self) -> float:
         """A time after which everything has come to rest."""

@@ -9,7 +9,8 @@ from hypothesis import strategies as st
 
 from tests.rules.sound import both, case_of
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.disturbance import CoupledEdge, bumps_on, disturbers, kick, seen_v, sharers
+from tidegate.lint.derived.disturbance import bumps_on, disturbers, own_kick, seen_v, sharers
+from tidegate.lint.derived.disturbed_node import CoupledEdge
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.graph.edge import path_text
 
@@ -39,7 +40,7 @@ def test_sharers_of_a_reference_kick_each_other() -> None:
     assert bumps[0].fact == "comparators.ov.kick"
     assert path_text(bumps[0].path) == "ov kicks ref_fast is the reference of uv"
     case, comparator = asked("uv")
-    assert kick(case, comparator, comparator).peak_v == pytest.approx(1e-3, rel=1e-12)
+    assert own_kick(case, comparator).peak_v == pytest.approx(1e-3, rel=1e-12)
 
 
 def test_who_takes_no_reference_is_kicked_by_nobody() -> None:

@@ -27,6 +27,15 @@ def test_least_slack_first_whatever_the_sizes() -> None:
     assert [entry.slack for entry in found] == pytest.approx([-0.0005, 0.0, 0.05, 0.1])
 
 
+def test_what_is_unlimited_stands_at_the_ends() -> None:
+    given = [judgement(1.0, INF), judgement(1.0, 2.0), judgement(INF, 1.0), judgement(1.0, -INF)]
+    found = entries(given, element=None, family=None)
+    assert [entry.slack for entry in found] == [-INF, -INF, 1.0, INF]
+    assert [line.split("  ")[0].strip() for line in ledger_lines(found, width=80)][1:] == [
+        "-no end", "-no end", "+100 %", "no end",
+    ]  # fmt: skip
+
+
 def test_filters_and_judgements_without_a_number() -> None:
     bare = Judgement(
         rule="hysteresis/sense", subject="uv", kind=Kind.PASS, level=Level.ERROR, message="", at="comparators.uv"

@@ -14,8 +14,8 @@ FAIL, PASS, OPEN, NONE, REVIEW = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLI
 BY_ID = {rule.id: rule for rule in RULES}
 
 # Ranges with round numbers. uv: 1.6 V of the load and 2 V/ms for 2 us + 1.5 us = 7 mV; service from 1.71 V less half of
-# 10 mV of ripple, and less 30 mA through 0.4 ohm = 12 mV. ov: 1.98 V of the load, 1 V/ms for 3.5 us = 3.5 mV; service up
-# to 1.89 V and half of 10 mV.
+# 10 mV of ripple, and less 30 mA through 0.4 ohm = 12 mV. ov: 1.98 V of the load, 1 V/ms for 3.5 us = 3.5 mV; service
+# up to 1.89 V and half of 10 mV.
 BENCH = """
 comparators:
   uv:
@@ -41,8 +41,8 @@ def trip(level: str, least: str, most: str, of: str = "uv") -> str:
 
 def works(*ends: str) -> str:
     """The same working range for every load on avdd."""
-    text = ", ".join(ends)
-    return f"loads: {{core_regulator: {{needs: {{0: {{works: {{{text}}}}}}}}}, adc: {{needs: {{0: {{works: {{{text}}}}}}}}}}}"
+    needs = f"{{needs: {{0: {{works: {{{', '.join(ends)}}}}}}}}}"
+    return f"loads: {{core_regulator: {needs}, adc: {needs}}}"
 
 
 def test_sound_example_keeps_every_rule() -> None:
@@ -213,7 +213,7 @@ def test_the_most_demanding_load_counts_and_not_the_range_of_the_rail() -> None:
 
 
 def test_a_load_good_down_to_the_detectors_own_minimum_is_protected() -> None:
-    """The trap: the load is declared good down to the lowest falling level, 1.61 V; a rail that falls slowly is kept."""
+    """The trap: the load is declared good down to the lowest falling level, 1.61 V, and is kept."""
     answer = said("guarantee", works("min: 1.61 V", "max: 1.98 V"), "rails: {avdd: {collapse: 0 V/s}}")
     assert (answer.kind, measure(answer).margin) == (PASS, 0.0)
 

@@ -64,7 +64,8 @@ def agrees(kind: Any, node: Mapping[str, Any]) -> bool:
             return bool(issubclass(member, Span) and member.dimension.value == name)
         return member is struct_of(name)
     if "enum" in node:
-        return get_origin(member) is Literal and list(get_args(member)) == node["enum"]
+        # Types that differ in the order of their choices alone are one type to Python.
+        return get_origin(member) is Literal and set(get_args(member)) == set(node["enum"])
     if node["type"] == "array":
         item, more = get_args(member)
         return get_origin(member) is tuple and more is Ellipsis and agrees(item, node["items"])

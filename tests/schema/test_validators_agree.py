@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import json
 from collections.abc import Mapping
-from typing import Any
+from functools import cache
+from typing import Any, Final
 
 import jsonschema_rs
 import pytest
@@ -28,77 +29,101 @@ def quantities(dimension: Dimension) -> st.SearchStrategy[str]:
     return st.builds("{} {}".format, NUMBERS, st.sampled_from(dimension.units))
 
 
-def fitting(node: Mapping[str, Any], depth: int = 0) -> st.SearchStrategy[Any]:
+@cache
+def defined(name: str) -> st.SearchStrategy[Any]:
+    """Data that fit one of the definitions."""
+    return fitting(DEFS[name])
+
+
+def fitting(node: Mapping[str, Any]) -> st.SearchStrategy[Any]:
     """Data that fit a schema, made from the schema alone."""
     if "x-quantity" in node:
         texts = quantities(Dimension(node["x-quantity"]))
-        return st.one_of(texts, st.fixed_dictionaries({"typ": texts}), fitting(node["anyOf"][1], depth))
+        return texts | st.fixed_dictionaries({"typ": texts}, optional={"basis": defined("basis")})
     if "anyOf" in node:
-        return st.one_of([fitting(branch, depth) for branch in node["anyOf"]])
+        return st.one_of([fitting(branch) for branch in node["anyOf"]])
     if "$ref" in node:
-        name = node["$ref"].rpartition("/")[2]
-        return st.deferred(lambda: fitting(DEFS[name], depth + 1))
-    if "const" in node:
-        return st.just(node["const"])
-    if "enum" in node:
-        return st.sampled_from(node["enum"])
-    match node["type"]:
-        case "string":
-            examples = node.get("examples", ["1.62 V"])
-            return st.sampled_from(examples) if "pattern" in node else st.text("abc é.", min_size=1, max_size=5)
-        case "number":
-            return st.sampled_from([0.25, 0.5, 1, 1.0])
-        case "integer":
-            return st.integers(1, 9)
-        case "boolean":
-            return st.booleans()
-        case "array":
-            return st.lists(fitting(node["items"], depth), max_size=2, unique_by=json.dumps)
-        case _ if "properties" in node:
-            return objects(node, depth)
-        case _:
-            names = st.sampled_from(["avdd", "uv_core", "_a-1", "x-own", "n" * 64])
-            return st.dictionaries(names, fitting(node["additionalProperties"], depth), max_size=2)
+        return defined(node["$ref"].rpartition("/")[2])
+    if "const" in node or "enum" in node:
+        return st.sampled_from(node.get("enum", [node.get("const")]))
+    if node["type"] == "array":
+        return st.lists(fitting(node["items"]), max_size=2, unique_by=json.dumps)
+    if node["type"] == "object":
+        return mappings(node) if "properties" in node else sections(fitting(node["additionalProperties"]))
+    if node["type"] == "string" and "pattern" in node:
+        return st.sampled_from(node["examples"])
+    return PLAIN[node["type"]]
+
+
+PLAIN: Final = {
+    "string": st.text("abc é.", min_size=1, max_size=5),
+    "number": st.sampled_from([0.25, 0.5, 1, 1.0]),
+    "integer": st.integers(1, 9),
+    "boolean": st.booleans(),
+}
+
+
+def sections(entries: st.SearchStrategy[Any]) -> st.SearchStrategy[dict[str, Any]]:
+    """A section with a few entries."""
+    return st.dictionaries(st.sampled_from(["avdd", "uv_core", "_a-1", "n" * 64]), entries, max_size=2)
 
 
 @st.composite
-def objects(draw: st.DrawFn, node: Mapping[str, Any], depth: int) -> dict[str, Any]:
+def mappings(draw: st.DrawFn, node: Mapping[str, Any]) -> dict[str, Any]:
     """A mapping with what it needs and a few of the other keys."""
     needed = node.get("required", [])
     others = [key for key in node["properties"] if key not in needed]
-    most = 0 if depth > 6 else 3
-    keys = [*needed, *draw(st.lists(st.sampled_from(others), max_size=most, unique=True) if others else st.just([]))]
-    data = {key: draw(fitting(node["properties"][key], depth)) for key in keys}
+    keys = [*needed, *(draw(st.lists(st.sampled_from(others), max_size=3, unique=True)) if others else [])]
+    data = {key: draw(of_property(node["properties"], key)) for key in keys}
     if draw(st.integers(0, 9)) == 0:
-        data["x-own"] = draw(ODD)
+        data["x-own"] = draw(odd())
     return data
 
 
-ODD = st.sampled_from(
-    ["", "x", "none", "1 V", "1.8", "1 V\u00a0", "-1 V", "5 %", 0, 1, -1, 2.5, 1e300, True, False, [], {}, [1], ["a", "a"],
-     {"min": "1 V"}, {"min": 1}, {"zzz": 1}, {"x-a": {}}, "a" * 200, "é", {"": 1}]
-)  # fmt: skip
+STRATEGIES: Final[dict[int, st.SearchStrategy[Any]]] = {}
+
+
+def of_property(properties: Mapping[str, Any], key: str) -> st.SearchStrategy[Any]:
+    """Data that fit a property; each strategy is made once."""
+    node = properties[key]
+    if id(node) not in STRATEGIES:
+        STRATEGIES[id(node)] = fitting(node)
+    return STRATEGIES[id(node)]
+
+
+def odd() -> st.SearchStrategy[Any]:
+    """A value that fits few places."""
+    return st.sampled_from(ODD).map(json.loads)
+
+
+ODD: Final = [
+    json.dumps(value)
+    for value in (
+        "", "x", "none", "1 V", "1.8", "1 V\u00a0", "-1 V", "5 %", 0, 1, -1, 2.5, 1e300, True, False, [], {}, [1],
+        ["a", "a"], {"min": "1 V"}, {"min": 1}, {"zzz": 1}, {"x-a": {}}, "a" * 200, "é", {"": 1},
+    )
+]  # fmt: skip
 
 
 @st.composite
 def changed(draw: st.DrawFn) -> Any:
     """Data that fit, with a few values exchanged, keys added or taken away."""
-    data = draw(fitting(SCHEMA))
+    data = json.loads(json.dumps(draw(fitting(SCHEMA))))
     for _ in range(draw(st.integers(0, 3))):
-        node, steps = data, draw(st.integers(1, 5))
-        for _ in range(steps):
-            keys = list(node) if isinstance(node, dict) else list(range(len(node)))
-            key = draw(st.sampled_from([*keys, "zzz"] if isinstance(node, dict) else keys)) if keys else "zzz"
-            inner = node.get(key) if isinstance(node, dict) else node[key] if keys else None
-            if isinstance(inner, dict) or (isinstance(inner, list) and inner):
+        node = data
+        for _ in range(draw(st.integers(1, 5))):
+            keys = [*node, "zzz"] if isinstance(node, dict) else list(range(len(node)))
+            key = draw(st.sampled_from(keys))
+            inner = None if key == "zzz" else node[key]
+            if inner and isinstance(inner, dict | list):
                 node = inner
                 continue
-            if isinstance(node, dict) and key in node and draw(st.booleans()):
+            if inner is not None and isinstance(node, dict) and draw(st.booleans()):
                 del node[key]
-            elif isinstance(node, dict) or keys:
-                node[key] = draw(ODD)
+            else:
+                node[key] = draw(odd())
             break
-    return json.loads(json.dumps(data))
+    return data
 
 
 @given(fitting(SCHEMA))

@@ -1,0 +1,143 @@
+"""Whether a detector is good where it decides, and stands what it reports."""
+
+from __future__ import annotations
+
+import pytest
+
+from tests.rules.sound import both, changed, judged, of_kind, without
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules.own_range import RULES
+
+FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
+
+# 1 V/ms for 2 us + 1.5 us carries avdd on by 3.5 mV, to 1.9735 V.
+BENCH = """
+comparators:
+  por: {trip: {rising: {min: 1.2 V, max: 1.5 V}, falling: {min: 1.1 V, max: 1.4 V}}}
+  ov: {trip: {rising: {min: 1.95 V, max: 1.97 V}, falling: {min: 1.9 V, max: 1.93 V}}}
+"""
+
+
+def said(rule: str, *patches: str, of: str = "por") -> Judgement:
+    return judged(both(BENCH, *patches), RULES)[f"own_range/{rule}", of]
+
+
+def test_sound_example_keeps_every_rule() -> None:
+    judgements = judged("", RULES)
+    assert of_kind(judgements, FAIL, OPEN, Kind.REVIEW) == []
+    assert of_kind(judgements, NONE) == [
+        ("own_range/survives", "por"), ("own_range/survives", "uv"), ("own_range/levels_inside", "uv_core"),
+        ("own_range/survives", "uv_core"),
+    ]  # fmt: skip
+
+
+@pytest.mark.parametrize(
+    ("rule", "of"), [(RULES[0], "por"), (RULES[1], "ov")], ids=[rule.id for rule in RULES]
+)  # fmt: skip
+def test_example_is_one_fault(rule: object, of: str) -> None:
+    assert hasattr(rule, "id") and hasattr(rule, "example")
+    assert changed(rule.example.fails, RULES) == {(rule.id, of): FAIL}
+    assert judged(rule.example.holds, RULES)[rule.id, of].kind is PASS
+
+
+@pytest.mark.parametrize(
+    ("fact", "limit", "beyond"),
+    [("works_from", "{max: 1.1 V}", "{max: 1.1001 V}"), ("works_to", "{min: 1.5 V}", "{min: 1.4999 V}")],
+)
+def test_limit_belongs_to_the_good_side(fact: str, limit: str, beyond: str) -> None:
+    wide = "comparators: {por: {works_from: {max: 1 V}, works_to: {min: 3 V}}}"
+    at_limit = said("levels_inside", wide, f"comparators: {{por: {{{fact}: {limit}}}}}")
+    assert at_limit.kind is PASS
+    assert at_limit.measure is not None and at_limit.measure.margin == 0.0
+    assert said("levels_inside", wide, f"comparators: {{por: {{{fact}: {beyond}}}}}").kind is FAIL
+
+
+def test_words() -> None:
+    answer = said("levels_inside", "comparators: {por: {works_from: {max: 1.2 V}}}")
+    assert answer.message == "its lowest level 1.1 V, at least 1.2 V needed"
+    assert answer.why == "works from 1.2 V to 2.75 V; levels 1.1 V to 1.5 V"
+    assert answer.mend == "a detector that works from 1.1 V or less; now 1.2 V"
+    answer = said("levels_inside", "comparators: {por: {works_to: {min: 1.45 V}}}")
+    assert answer.message == "its highest level 1.5 V, at most 1.45 V needed"
+    assert answer.mend == "a detector that works to 1.5 V or more; now 1.45 V"
+
+
+def test_every_code_counts() -> None:
+    patch = """
+    comparators:
+      por:
+        trip: null
+        ships_with: high
+        codes:
+          low: {rising: {min: 0.95 V, max: 1.1 V}, falling: {min: 0.9 V, max: 1 V}}
+          high: {rising: {min: 1.2 V, max: 1.5 V}, falling: {min: 1.1 V, max: 1.4 V}}
+    """
+    answer = said("levels_inside", patch)
+    assert (answer.kind, answer.message) == (FAIL, "its lowest level 900 mV, at least 950 mV needed")
+    assert answer.why == "works from 950 mV to 2.75 V; levels 900 mV to 1.5 V, over 2 codes"
+
+
+def test_another_rail_feeds_it() -> None:
+    answer = said("levels_inside", of="uv_core")
+    assert (answer.kind, answer.message) == (NONE, "avdd feeds it, and not vcore")
+
+
+@pytest.mark.parametrize(
+    ("damage", "works_to", "kind"),
+    [("1.9735 V", "2.75 V", PASS), ("1.9734 V", "2.75 V", FAIL), ("2.5 V", "1.9735 V", PASS), ("2.5 V", "1.9734 V", FAIL)],
+)
+def test_survives_at_its_limit(damage: str, works_to: str, kind: Kind) -> None:
+    answer = said(
+        "survives", f"rails: {{avdd: {{damage: {damage}}}}}", f"comparators: {{ov: {{works_to: {works_to}}}}}", of="ov"
+    )
+    assert answer.kind is kind
+    assert answer.measure is not None
+    assert answer.measure.have == pytest.approx(1.97 + 1000 * 3.5e-6, abs=1e-12)
+
+
+def test_words_of_survival() -> None:
+    answer = said("survives", "rails: {avdd: {damage: 1.95 V}}", of="ov")
+    assert answer.message == "until the answer avdd reaches 1.974 V, at most 1.95 V needed"
+    assert answer.why == "rising level up to 1.97 V, 3.5 mV more in 3.5 us; avdd damages above 1.95 V"
+    assert answer.mend == "a level 23.5 mV lower, or a faster answer"
+
+
+def test_a_level_above_the_own_range_is_said_once() -> None:
+    patch = "comparators: {ov: {works_to: 1.96 V}}"
+    assert said("levels_inside", patch, of="ov").kind is FAIL
+    answer = said("survives", patch, of="ov")
+    assert (answer.kind, answer.message) == (
+        NONE, "its level lies above its own range (own_range/levels_inside says so)",
+    )  # fmt: skip
+
+
+def test_a_detector_fed_from_elsewhere_must_still_report_below_the_damage() -> None:
+    patch = "comparators: {ov: {domain: core, works_to: null}}"
+    answer = said("survives", patch, of="ov")
+    assert (answer.kind, answer.measure is not None and answer.measure.need) == (PASS, 2.5)
+    assert said("survives", of="uv").message == "reports no over-voltage"
+
+
+@pytest.mark.parametrize(
+    ("rule", "of", "fact"),
+    [
+        ("levels_inside", "por", "comparators.por.works_from"),
+        ("levels_inside", "por", "comparators.por.works_to"),
+        ("levels_inside", "por", "comparators.por.domain"),
+        ("levels_inside", "por", "domains.aon.rail"),
+        ("survives", "ov", "rails.avdd.damage"),
+        ("survives", "ov", "rails.avdd.overshoot"),
+        ("survives", "ov", "comparators.ov.delay"),
+        ("survives", "ov", "comparators.ov.works_to"),
+        ("survives", "ov", "comparators.ov.domain"),
+    ],
+)
+def test_open_names_the_fact_that_is_missing(rule: str, of: str, fact: str) -> None:
+    answer = judged(without(fact), RULES)[f"own_range/{rule}", of]
+    assert (answer.kind, answer.missing) == (OPEN, (fact,))
+
+
+def test_open_names_all_at_once() -> None:
+    facts = ("comparators.por.domain", "comparators.por.works_from", "comparators.por.works_to")
+    answer = judged(without(*facts), RULES)["own_range/levels_inside", "por"]
+    assert set(answer.missing) == set(facts)
