@@ -19,6 +19,7 @@ _COMMANDS: Final = {
     "review": "judge descriptions: the main job",
     "margins": "every judgement with a number, least margin first",
     "place": "where trip levels may lie, what limits them, and what buys room",
+    "ramp": "timelines of start-up, power-down and dips, earliest and latest",
     "rules": "the catalogue of rules, or one rule in full",
     "trace": "what an element leans on, and what leans on it",
     "start": "write a starter description",

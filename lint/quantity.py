@@ -15,11 +15,11 @@ from typing import Any, ClassVar, Final, Literal, NoReturn, Self
 
 import msgspec
 
-from tidegate.lint import units
 from tidegate.lint.found import found
 from tidegate.lint.units import POWERS, SCALED
+from tidegate.lint.units import Dimension as _Dimension
 
-Dimension = units.Dimension
+Dimension = _Dimension
 """What a quantity measures; here for those who read and show quantities and need no table of units."""
 
 MOST_TEXT: Final = 64

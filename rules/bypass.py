@@ -71,8 +71,10 @@ def detector_has_override(comparator: Comparator, case: Case) -> Judgement:
     _note_unsaid_overrides(case, comparator, reach, overrides)
     case.settle()
     asserting = [override.id for override in overrides if override.forces == "asserted"]
-    between = on_every_way({name: graph.heads(name, EdgeKind.DRIVES) for name in reach}, comparator.id, kept[0])
-    stage = f", or on {between[0]}, which every way to {kept[0]} passes" if between else ""
+    inside = {name: graph.heads(name, EdgeKind.DRIVES) for name in reach}
+    ways = [on_every_way(inside, comparator.id, net) for net in kept]
+    shared = next((name for name in ways[0] if all(name in way for way in ways)), None)
+    stage = f", or on {shared}, which every way passes" if shared else ""
     return case.fails(
         f"no override takes it out of the way to {_and(kept)}",
         why=f"{_and(asserting)} can only force the reset, not lift it" if asserting else "",
@@ -237,7 +239,7 @@ def over_voltage_stays_in_force(bypass: Bypass, case: Case) -> Judgement:
     graph, element = case.graph, case.own.must("overrides")
     reach = behind(graph, element)
     over = [detector for detector in detectors_in(graph, reach) if detector.role == "over_voltage"]
-    lost = _lost(graph, over, lifted(graph, (element,), unsaid_agree=False))
+    lost = _lost(graph, over, element, unsaid_agree=False)
     if lost:
         case.own.must("forces")
         return _asks_for_limit(case, lost, reach)
@@ -245,7 +247,7 @@ def over_voltage_stays_in_force(bypass: Bypass, case: Case) -> Judgement:
         for fact in leaning_gaps(graph.elements[name]):
             if fact == "driven_by":
                 case.of(graph.elements[name]).lacks(fact)
-    if _lost(graph, over, lifted(graph, (element,), unsaid_agree=True)):
+    if _lost(graph, over, element, unsaid_agree=True):
         for detector in over:
             for unsaid in unsaid_combinations(graph, Reach(detector.id, drives(graph))):
                 case.of(unsaid).lacks("combine")
@@ -255,9 +257,12 @@ def over_voltage_stays_in_force(bypass: Bypass, case: Case) -> Judgement:
     return case.passes("lifts the reset of no over-voltage detector")
 
 
-def _lost(graph: Graph, over: Iterable[Comparator], out: frozenset[str]) -> list[tuple[Comparator, list[str]]]:
-    """The detectors that reset nets are lost to, with those nets."""
+def _lost(
+    graph: Graph, over: Sequence[Comparator], element: str, *, unsaid_agree: bool
+) -> list[tuple[Comparator, list[str]]]:
+    """The detectors that cannot assert some reset nets once an element is forced released, with those nets."""
     found = []
+    out = lifted(graph, (element,), unsaid_agree=unsaid_agree) if over else frozenset[str]()
     for detector in over:
         left = ways_left(graph, detector.id, out)
         nets = [net for net in resets_in(graph, Reach(detector.id, drives(graph))) if net not in left]

@@ -86,7 +86,7 @@ def bump_is_kept(pair: Neighbour, case: Case) -> Judgement:
         says=f"{worst.bump.aggressor} moves the level of {worst.victim.id} by",
         why=worst.text() + also,
         mend=quieter_pair(case, pair, loud) if loud else "",
-        at={"capacitance": "capacitance", "shared_reference": "charge"}.get(pair.kind, "impedance"),
+        at=worst.bump.fact.rpartition(".")[2],
         path=worst.bump.path,
     )
 

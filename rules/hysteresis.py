@@ -267,8 +267,12 @@ def hysteresis_fits_window(comparator: Comparator, case: Case) -> Judgement:
     level=Level.ERROR,
     applies_to="comparators",
     proves="A level that is switched between two taps or references is chosen by exactly two switches that the same "
-    "output turns, one when it is high and one when it is low.",
-    facts=("comparators.*.hysteresis.made_by", "comparators.*.hysteresis.switches"),
+    "output turns, as it is or inverted by stages, one when it is high and one when it is low.",
+    facts=(
+        "comparators.*.hysteresis.made_by",
+        "comparators.*.hysteresis.switches",
+        "output_stages.*.kind and inverting of stages between output and switch",
+    ),
     mend="turn both switches from the same output, one when it is high and one when it is low",
     sources=("common practice, no source: a level with no switch closed floats, one with both closed shorts two taps",),
     example=Example(

@@ -1,6 +1,7 @@
 from __future__ import annotations
 
 import datetime
+from collections.abc import Mapping
 
 import pytest
 
@@ -21,11 +22,13 @@ def judgement(kind: Kind = Kind.FAIL, *, need: float = 0.038, have: float = 0.02
     )  # fmt: skip
 
 
-def waived(found: Judgement, *, today: datetime.date = DAY, **changes: str) -> tuple[Judgement, Judgement]:
+def waived(
+    found: Judgement, changes: Mapping[str, str] | None = None, *, today: datetime.date = DAY
+) -> tuple[Judgement, Judgement]:
     """The judgement, and what is said about the waiver on it."""
     words = {
         "rule": found.rule, "element": found.subject, "why": "clamped on the board", "agreed_by": "design review",
-        "until": "2026-06-30", **changes,
+        "until": "2026-06-30", **(changes or {}),
     }  # fmt: skip
     placed = PlacedWaiver(Waiver(**words), "waivers[0]", Place("chip.yaml", 7, 5))
     marked, on_waiver = apply_waivers(
@@ -68,14 +71,14 @@ def test_a_waiver_holds_until_its_last_day() -> None:
     ],
 )
 def test_a_waiver_that_does_not_hold_covers_nothing(changes: dict[str, str], message: str) -> None:
-    marked, on_waiver = waived(judgement(), **changes)
+    marked, on_waiver = waived(judgement(), changes)
     assert marked.waiver == ""
     assert (on_waiver.kind, on_waiver.message) == (Kind.FAIL, message)
 
 
 @pytest.mark.parametrize("margin", ["-13 mV", "-13.1 mV", "-1 V"])
 def test_a_waiver_covers_the_margin_agreed_and_better_ones(margin: str) -> None:
-    assert waived(judgement(), margin=margin)[1].kind is Kind.PASS
+    assert waived(judgement(), {"margin": margin})[1].kind is Kind.PASS
 
 
 def test_a_margin_is_agreed_as_the_report_shows_it() -> None:
@@ -83,8 +86,8 @@ def test_a_margin_is_agreed_as_the_report_shows_it() -> None:
     found = judgement(need=0.040, have=0.03722358)
     assert found.measure is not None
     assert found.measure.margin_text() == "-2.776 mV"
-    assert waived(found, margin="-2.776 mV")[1].kind is Kind.PASS
-    assert waived(found, margin="-2.775 mV")[1].kind is Kind.FAIL
+    assert waived(found, {"margin": "-2.776 mV"})[1].kind is Kind.PASS
+    assert waived(found, {"margin": "-2.775 mV"})[1].kind is Kind.FAIL
 
 
 @pytest.mark.parametrize("kind", [Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE])

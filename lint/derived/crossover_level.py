@@ -19,8 +19,10 @@ from tidegate.lint.physics.crossing_point import (
     slope_factor_of_swing,
 )
 
-_POINTS: Final = 9
+_POINTS: Final = 5
+_FINER_POINTS: Final = 9
 _REFINEMENTS: Final = 2
+"""A level is all but straight over temperature: few points find the corner, finer ones the place of the extreme."""
 
 Corner = Mapping[str, float]
 DeviceAt = Callable[[Corner, float], Device]
@@ -59,7 +61,7 @@ class CrossoverLevel:
     def _grid(self) -> tuple[Place, ...]:
         """Every corner at temperatures over the whole range."""
         corners = [dict(zip(self.spans, values, strict=True)) for values in itertools.product(*self.spans.values())]
-        return tuple(self._solved(corners, *self.temperature_k))
+        return tuple(self._solved(corners, *self.temperature_k, _POINTS))
 
     def least(self) -> Place:
         """The lowest level over all corners and temperatures.
@@ -84,15 +86,15 @@ class CrossoverLevel:
         (low_k, high_k), step_k = self.temperature_k, (self.temperature_k[1] - self.temperature_k[0]) / (_POINTS - 1)
         for _ in range(_REFINEMENTS):
             from_k, to_k = max(low_k, best.t_k - step_k), min(high_k, best.t_k + step_k)
-            best = min(best, *self._solved([best.corner], from_k, to_k), key=of)
-            step_k = (to_k - from_k) / (_POINTS - 1)
+            best = min(best, *self._solved([best.corner], from_k, to_k, _FINER_POINTS), key=of)
+            step_k = (to_k - from_k) / (_FINER_POINTS - 1)
         return best
 
     def swings_v(self) -> list[tuple[str, float]]:
         """How far each parameter alone moves the level, all others in the middle of their spans; widest first."""
         middle = {name: (values[0] + values[-1]) / 2 for name, values in self.spans.items()}
         middle_k = sum(self.temperature_k) / 2
-        alone = [place.level_v for place in self._solved([middle], *self.temperature_k)]
+        alone = [place.level_v for place in self._solved([middle], *self.temperature_k, _POINTS)]
         found = [("temperature", max(alone) - min(alone))]
         for name, values in self.spans.items():
             if len(values) > 1:
@@ -100,8 +102,8 @@ class CrossoverLevel:
                 found.append((name, max(ends_v) - min(ends_v)))
         return sorted(found, key=lambda swing: -swing[1])
 
-    def _solved(self, corners: Sequence[Corner], low_k: float, high_k: float) -> Iterator[Place]:
-        count = _POINTS if high_k > low_k else 1
+    def _solved(self, corners: Sequence[Corner], low_k: float, high_k: float, points: int) -> Iterator[Place]:
+        count = points if high_k > low_k else 1
         temperatures_k = [low_k + (high_k - low_k) * index / max(count - 1, 1) for index in range(count)]
         for corner in corners:
             for t_k in temperatures_k:

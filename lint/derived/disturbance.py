@@ -149,14 +149,6 @@ class _OnceNode:
         return Bump(aggressor, self._victim.id, via, lasting_v(0.0), lasting_v, self.path_from(aggressor), fact)
 
 
-def seen_v(case: Case, comparator: Comparator, bump: Bump) -> float:
-    """The part of a bump that a comparator can act on, in V at the rail.
-
-    Its peak where there is no filter; else the highest level above which it can stay as long as the filter may need.
-    """
-    return bump.lasting_v(ignored_s(case, comparator))
-
-
 def ignored_s(case: Case, comparator: Comparator) -> float:
     """For how long a crossing may last and is surely not seen, in s: what the filter keeps off; 0 without one."""
     if comparator.filter is None:

@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import partial
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.at_code import at_code
 from tidegate.lint.derived.trip_levels import falling_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.supply import Rail
@@ -22,13 +24,23 @@ class LowestDecision:
 
 
 def lowest_decision(case: Case, comparator: Comparator, rail: Rail) -> LowestDecision:
-    """On the watched rail down to the lowest falling level; on another as far down as that rail is delivered.
+    """On the watched rail the lowest falling level, at any code; on another the lowest level at which it is delivered.
 
     Raises: MissingFactsError: where a fact is not given.
     """
     if rail.id == comparator.watches:
-        level_v = falling_window(case, comparator).least_v
-        return LowestDecision(level_v, f"decides on {rail.id} down to {show(level_v, Dimension.VOLTAGE)}", True)
+        level_v, at = min(case.gather_all(partial(_falling, case, *each) for each in _at_every_code(comparator)))
+        return LowestDecision(level_v, f"decides on {rail.id} down to {show(level_v, Dimension.VOLTAGE)}{at}", True)
     level_v = case.of(rail).least("delivered")
     case.settle()
     return LowestDecision(level_v, f"{rail.id} is delivered down to {show(level_v, Dimension.VOLTAGE)}", False)
+
+
+def _at_every_code(comparator: Comparator) -> list[tuple[Comparator, str]]:
+    """The detector with each set of levels it may have, and words that say at which code."""
+    plain = [(comparator, "")] if comparator.trip is not None or not comparator.codes else []
+    return [*plain, *((at_code(comparator, code), f" at {code}") for code in comparator.codes)]
+
+
+def _falling(case: Case, comparator: Comparator, at: str) -> tuple[float, str]:
+    return falling_window(case, comparator).least_v, at

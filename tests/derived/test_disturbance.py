@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 
 from tests.rules.sound import both, case_of
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.disturbance import bumps_on, disturbers, own_kick, seen_v, sharers
+from tidegate.lint.derived.disturbance import bumps_on, disturbers, ignored_s, own_kick, sharers
 from tidegate.lint.derived.disturbed_node import CoupledEdge
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.graph.edge import path_text
@@ -86,13 +86,14 @@ def test_a_described_charge_stands_in_place_of_the_kick() -> None:
 def test_seen_is_the_peak_without_a_filter_and_less_with_one() -> None:
     case, uv = asked("uv")
     bump = bumps_on(case, uv)[0]
-    assert seen_v(case, uv, bump) == bump.peak_v
+    assert ignored_s(case, uv) == 0.0
+    assert bump.lasting_v(0.0) == bump.peak_v
     case, uv = asked("uv", "comparators: {uv: {filter: {min: 0.8 us, max: 3 us}}}")
     # 200 kohm and 8 pF are 1.6 us: exp(-0.5) of 2 mV is left after 0.8 us.
-    assert seen_v(case, uv, bumps_on(case, uv)[0]) == pytest.approx(2e-3 * math.exp(-0.5), rel=1e-12)
+    assert bumps_on(case, uv)[0].lasting_v(ignored_s(case, uv)) == pytest.approx(2e-3 * math.exp(-0.5), rel=1e-12)
     case, uv = asked("uv", "comparators: {uv: {filter: {max: 3 us}}}")
     with pytest.raises(MissingFactsError, match=r"^comparators\.uv\.filter\.min$"):
-        seen_v(case, uv, bump)
+        ignored_s(case, uv)
 
 
 EDGE = CoupledEdge(

@@ -10,7 +10,7 @@ from hypothesis import given, settings
 
 from tests.graph.random_graphs import Successors, as_networkx, chain, graphs
 from tidegate.lint.graph.edge import Edge, EdgeKind, Hop, path_text
-from tidegate.lint.graph.paths import Neighbours, Reach, cut, loop_through
+from tidegate.lint.graph.paths import Neighbours, Reach, cut, loop_through, step_onto
 
 DEEP = 50_000
 
@@ -87,6 +87,12 @@ def test_deep_chain_and_deep_ring() -> None:
     ring = loop_through("n0", along(successors))
     assert ring is not None
     assert len(ring) == DEEP + 1
+
+
+def test_the_step_onto_a_reach_is_the_first_one() -> None:
+    way = along({"a": ["b"], "b": ["c"], "c": ["d"], "d": []})
+    path = Reach("a", way).path("d")
+    assert step_onto(path, Reach("c", way)) == ("b", Hop("c", "b>c"))
 
 
 def test_path_reads_as_a_sentence() -> None:

@@ -84,7 +84,12 @@ def test_another_rail_feeds_it() -> None:
 
 @pytest.mark.parametrize(
     ("damage", "works_to", "kind"),
-    [("1.9735 V", "2.75 V", PASS), ("1.9734 V", "2.75 V", FAIL), ("2.5 V", "1.9735 V", PASS), ("2.5 V", "1.9734 V", FAIL)],
+    [
+        ("1.9735 V", "2.75 V", PASS),
+        ("1.9734 V", "2.75 V", FAIL),
+        ("2.5 V", "1.9735 V", PASS),
+        ("2.5 V", "1.9734 V", FAIL),
+    ],
 )
 def test_survives_at_its_limit(damage: str, works_to: str, kind: Kind) -> None:
     answer = said(

@@ -270,7 +270,10 @@ def test_budget_that_is_exceeded() -> None:
 
 
 def test_what_a_stage_is_said_to_take_counts() -> None:
-    said = one("output_stages: {por_out: {consumes: {typ: 0.1 uA, max: 0.3 uA}}}", BUDGET, "aon")
+    said = one(
+        "{domains: {aon: {budget: 9 uA}}, output_stages: {por_out: {consumes: {typ: 0.1 uA, max: 0.3 uA}}}}",
+        BUDGET, "aon",
+    )  # fmt: skip
     assert said.measure is not None
     assert said.measure.have == pytest.approx(TAKEN_A + 0.3e-6, rel=1e-12)
     assert said.kind is Kind.FAIL

@@ -66,6 +66,7 @@ class Bias(Element, frozen=True, kw_only=True):
     source: str | None = None
     domain: str | None = None
     current: Current | None = None
+    leakage: Current | None = None
     works_from: Voltage | None = None
     settling: Duration | None = None
     leans_on: tuple[str, ...] | None = None

@@ -62,6 +62,7 @@ class OutputStage(Element, frozen=True, kw_only=True):
 
     driven_by: tuple[str, ...] | None = None
     combine: Literal["any_asserts", "all_agree"] | None = None
+    combined_against: Literal["false_reset", "missed_reset"] | None = None
     domain: str | None = None
     kind: Literal["gain", "inverter", "buffer", "schmitt", "latch", "level_shifter", "filter", "delay"] | None = None
     inverting: bool | None = None
@@ -105,6 +106,7 @@ class Reset(Element, frozen=True, kw_only=True):
 
     driven_by: tuple[str, ...] | None = None
     combine: Literal["any_asserts", "all_agree"] | None = None
+    combined_against: Literal["false_reset", "missed_reset"] | None = None
     active: Literal["low", "high"] | None = None
     guards: tuple[str, ...] | None = None
     domain: str | None = None
@@ -129,6 +131,8 @@ class Load(Element, frozen=True, kw_only=True):
     domain: str | None = None
     ready: Duration | None = None
     start: Duration | None = None
+    clocked: bool | None = None
+    synchronised: bool | None = None
     consumes: Current | None = None
     leans_on: tuple[str, ...] | None = None
     gated_by: str | None = None

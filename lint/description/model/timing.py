@@ -11,6 +11,7 @@ class Timing(Part, frozen=True, kw_only=True):
 
     resistance: Resistance | None = None
     current: Current | None = None
+    leakage: Current | None = None
     capacitance: Capacitance | None = None
     threshold: Voltage | None = None
     count: float | None = None

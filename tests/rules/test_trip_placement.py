@@ -1,0 +1,165 @@
+"""Levels placed the wrong way round, levels chosen by code, and the placement that keeps every margin."""
+
+from __future__ import annotations
+
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from tests.derived.placing import found
+from tests.rules.sound import both, judged
+from tidegate.lint.judgement import Judgement, Kind, Measure
+from tidegate.rules.trip_window import RULES
+
+FAIL, PASS, OPEN, NONE, REVIEW = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE, Kind.REVIEW
+BENCH = """
+comparators:
+  uv:
+    trip: {rising: {min: 1.66 V, max: 1.7 V}, falling: {min: 1.61 V, max: 1.65 V}}
+    hysteresis: {amount: {min: 46 mV, max: 54 mV}}
+  ov:
+    trip: {rising: {min: 1.94 V, max: 1.97 V}, falling: {min: 1.9 V, max: 1.93 V}}
+"""
+
+
+def said(rule: str, *patches: str, of: str = "uv") -> Judgement:
+    return judged(both(BENCH, *patches), RULES)[f"trip_window/{rule}", of]
+
+
+def measure(answer: Judgement) -> Measure:
+    assert answer.measure is not None
+    return answer.measure
+
+
+def trip(level: str, least: str, most: str, of: str = "uv") -> str:
+    return f"comparators: {{{of}: {{trip: {{{level}: {{min: {least}, max: {most}}}}}}}}}"
+
+
+# The other way round
+
+
+def test_placed_by_its_release_the_detector_is_silent_down_to_1_53_v() -> None:
+    """Common practice (no source): signed off from 1.60 V, +-10 mV, 50 mV of hysteresis, surely released at 1.60 V."""
+    patch = both(
+        trip("falling", "1.53 V", "1.55 V"), trip("rising", "1.58 V", "1.6 V"), "rails: {avdd: {collapse: 0 V/s}}"
+    )
+    answer = said("placement_sense", patch)
+    assert (answer.kind, answer.message) == (
+        FAIL,
+        "is placed by the level that lets go: it may stay silent down to 1.53 V, and adc works from 1.6 V",
+    )
+    assert answer.why == "falling 1.53 V to 1.55 V, rising 1.58 V to 1.6 V"
+    assert answer.mend == "both levels 70 mV further up"
+    assert measure(said("guarantee", patch)).margin == pytest.approx(-0.07, abs=1e-12)
+
+
+def test_placed_to_guarantee_the_same_detector_keeps_both() -> None:
+    """Falling 1.60 V to 1.62 V, rising 1.65 V to 1.67 V."""
+    patch = both(
+        trip("falling", "1.6 V", "1.62 V"), trip("rising", "1.65 V", "1.67 V"), "rails: {avdd: {collapse: 0 V/s}}"
+    )
+    answer = said("placement_sense", patch)
+    assert (answer.kind, answer.message) == (PASS, "is placed by the level that asserts, against adc at 1.6 V")
+    assert (said("guarantee", patch).kind, measure(said("guarantee", patch)).margin) == (PASS, 0.0)
+
+
+def test_levels_below_the_load_altogether_are_not_called_the_wrong_way_round() -> None:
+    answer = said("placement_sense", trip("falling", "1.4 V", "1.45 V"), trip("rising", "1.46 V", "1.5 V"))
+    assert (answer.kind, answer.message) == (
+        NONE, "both levels lie outside what adc works with (trip_window/guarantee says so)",
+    )  # fmt: skip
+
+
+def test_over_voltage_the_wrong_way_round() -> None:
+    patch = both(trip("falling", "1.97 V", "1.98 V", of="ov"), trip("rising", "2 V", "2.0205 V", of="ov"))
+    answer = said("placement_sense", patch, of="ov")
+    assert answer.message == (
+        "is placed by the level that lets go: it may stay silent up to 2.024 V, and adc works up to 1.98 V"
+    )
+    assert answer.mend == "both levels 44 mV further down"
+
+
+# Codes
+
+CODES = """
+comparators:
+  uv:
+    trip: null
+    ships_with: mid
+    codes:
+      low: {rising: 1.6 V, falling: 1.55 V}
+      mid: {rising: 1.677 V, falling: 1.627 V}
+      high: {rising: 1.72 V, falling: 1.67 V}
+"""
+
+
+def test_levels_are_those_of_the_code_the_part_ships_with() -> None:
+    as_stated, by_code = judged("", RULES), judged(CODES, RULES)
+    for rule in ("guarantee", "nuisance", "release", "spread"):
+        assert by_code[f"trip_window/{rule}", "uv"].measure == as_stated[f"trip_window/{rule}", "uv"].measure
+    assert by_code["trip_window/guarantee", "uv"].at == "comparators.uv.codes.mid.falling"
+
+
+def test_every_code_is_judged_and_the_usable_ones_are_named() -> None:
+    """low: 1.55 V less its error and 1.6 V + 7 mV; high: 1.72 V with its error and 1.71 V - 5 mV."""
+    answer = judged(CODES, RULES)["trip_window/codes", "uv"]
+    assert (answer.kind, answer.message) == (
+        REVIEW, "these codes suit avdd: mid; these do not: low, high (mid, which it ships with, does)",
+    )  # fmt: skip
+    low_v = 1.607 - (1.55 - 0.005 * 1.55 - 3 * 0.0004 / 0.367)
+    high_v = 1.72 + 0.005 * 1.72 + 3 * 0.0004 / 0.367 - 1.705
+    assert answer.why == (
+        f"low: {low_v * 1000:.2f} mV short of trip_window/guarantee; "
+        f"high: {high_v * 1000:.2f} mV short of trip_window/release"
+    )
+    assert answer.mend == "lock out low, high"
+
+
+def test_a_part_that_ships_with_a_code_that_does_not_suit() -> None:
+    answer = judged(both(CODES, "comparators: {uv: {ships_with: low}}"), RULES)["trip_window/codes", "uv"]
+    assert answer.message.endswith("(low, which it ships with, does not)")
+    assert answer.mend == "ship with one of mid"
+    assert (
+        judged(both(CODES, "comparators: {uv: {ships_with: low}}"), RULES)["trip_window/guarantee", "uv"].kind is FAIL
+    )
+
+
+def test_no_code_suits() -> None:
+    patch = "comparators: {uv: {codes: {mid: {rising: 1.8 V, falling: 1.75 V}}}}"
+    answer = judged(both(CODES, patch), RULES)["trip_window/codes", "uv"]
+    assert (answer.kind, answer.message, answer.mend) == (FAIL, "no code suits avdd", "a code between the limits")
+
+
+def test_a_code_that_is_not_named_leaves_it_open() -> None:
+    answers = judged(both(CODES, "comparators: {uv: {ships_with: null}}"), RULES)
+    for rule in ("guarantee", "nuisance", "release", "spread", "codes"):
+        answer = answers[f"trip_window/{rule}", "uv"]
+        assert (answer.kind, answer.missing) == (OPEN, ("comparators.uv.ships_with",))
+
+
+# The placement
+
+PLACED = {"uv": ("guarantee", "release", 50e-3), "ov": ("release", "guarantee", 44e-3)}
+"""What limits each detector of the sound example from below and from above, and its hysteresis."""
+
+
+@pytest.mark.parametrize("of", PLACED)
+@given(share=st.floats(0.0, 1.0))
+@settings(max_examples=15, deadline=None)
+def test_a_level_inside_the_placement_keeps_every_margin_and_one_step_outside_fails_what_it_names(
+    of: str, share: float
+) -> None:
+    below, above, apart_v = PLACED[of]
+    place = found("", of).falling
+    step_v = 1e-6
+
+    def kinds(falling_v: float) -> dict[str, Kind]:
+        patch = f"comparators: {{{of}: {{trip: {{rising: {falling_v + apart_v:.9f} V, falling: {falling_v:.9f} V}}}}}}"
+        answers = judged(patch, RULES)
+        return {rule: answers[f"trip_window/{rule}", of].kind for rule in ("guarantee", "nuisance", "release")}
+
+    kept = {"guarantee": PASS, "nuisance": PASS, "release": PASS}
+    inside_v = place.least_v + step_v + share * (place.most_v - place.least_v - 2 * step_v)
+    assert kinds(inside_v) == kept
+    assert kinds(place.least_v - step_v) == {**kept, below: FAIL}
+    assert kinds(place.most_v + step_v) == {**kept, above: FAIL}
