@@ -5,6 +5,8 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Final
 
+from tidegate.lint.description.model.detector import Comparator, Hysteresis
+from tidegate.lint.description.model.reset_path import Reset
 from tidegate.lint.graph.dependency import Element, Graph
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.graph.leaning_gaps import leaning_gaps
@@ -30,7 +32,18 @@ def is_used(graph: Graph, element: Element) -> bool:
     name = element.id
     if any(edge.kind not in (*_NO_USE, *_FORWARDS) for edge in graph.into(name) if edge.tail != name):
         return True
-    return any(edge.kind in _FORWARDS for edge in graph.out(name))
+    return any(edge.kind in _FORWARDS for edge in graph.out(name)) or name in graph.once(used_besides)
+
+
+def used_besides(graph: Graph) -> frozenset[str]:
+    """What is used without an edge: what turns a switch of another's levels, and domains in which receivers live."""
+    found: set[str] = set()
+    for element in graph.elements.values():
+        if isinstance(element, Comparator) and isinstance(element.hysteresis, Hysteresis):
+            found.update(each.turned_by for each in element.hysteresis.switches if each.turned_by not in (None, element.id))
+        elif isinstance(element, Reset) and element.domain is not None:
+            found.add(element.domain)
+    return frozenset(found)
 
 
 def unsaid_uses(graph: Graph) -> Mapping[str, tuple[str, ...]]:

@@ -52,17 +52,19 @@ def _released_late(part: StagePart, given: _Driven, alive: On) -> _Driven:
     """The input, released only once it has been free of assertion for the release delay.
 
     An unknown input may run the delay down or set it back.  After an assertion too short to discharge what makes the
-    delay, any part of it may be left, none at all included.
+    delay, all that it had run before may still count.
     """
     least_s, most_s = part.release_delay
     free = both(either(given.releases, given.unknown), alive.may_be_on)
     through: list[tuple[float, float]] = []
-    before_s = -float("inf")
+    ended_s, run_s = -float("inf"), 0.0
     for start, end in free:
-        begins_s = start + (least_s if start - before_s >= part.discharge_s or before_s == -float("inf") else 0.0)
+        if start - ended_s >= part.discharge_s:
+            run_s = 0.0
+        begins_s = start + least_s - run_s
         if begins_s < end:
             through.append((begins_s, end))
-        before_s = end
+        ended_s, run_s = end, min(run_s + (end - start), least_s)
     run_down = tuple(through)
     asserts = delayed(either(given.asserts, given.unknown), least_s=0.0, most_s=most_s)
     not_alive = delayed(alive.may_be_off, least_s=0.0, most_s=most_s)
@@ -70,7 +72,7 @@ def _released_late(part: StagePart, given: _Driven, alive: On) -> _Driven:
 
 
 def _latched(part: StagePart, given: _Driven, alive: On) -> _Driven:
-    """A latch that remembers an assertion until its supply goes.
+    """A latch that remembers an assertion until its supply goes; an unknown input may set it.
 
     One that asserts at power-up lets its drivers release it and remembers from then on as they do: it follows them.
     """
@@ -82,7 +84,7 @@ def _latched(part: StagePart, given: _Driven, alive: On) -> _Driven:
     surely_set = outside(either(given.releases, given.unknown))
     for start, end in alive.may_be_on:
         span: Times = ((start, end),)
-        asserts = either(asserts, _from_first(both(given.asserts, span), end))
+        asserts = either(asserts, _from_first(both(either(given.asserts, given.unknown), span), end))
         until_set = outside(_from_first(both(surely_set, span), end))
         at_first = both(span, until_set)
         if part.power_up == "releases":

@@ -144,6 +144,11 @@ SYNTAX: Final = (
         "main.yaml:4:11: a quoted text without its end; close the quote",
     ),
     Bad(
+        "a second value",
+        RAIL + "    delivered: {min: 1.7 V}{max: 1.9 V}\n",
+        "main.yaml:4:28: '{' after the end of a value, or indented as no line above; write one value for each key",
+    ),
+    Bad(
         "text after a quote",
         RAIL + '    note: "see" review\n',
         "main.yaml:4:17: a text after the end of a value; put the whole value in one pair of quotes",

@@ -59,6 +59,7 @@ class Waiver(Part, frozen=True, kw_only=True):
 
     rule: str
     element: str
+    subsystem: str | None = None
     why: str
     agreed_by: str
     until: str

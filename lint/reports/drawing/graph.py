@@ -115,6 +115,7 @@ class _Layout:
         self.orders: list[list[Key]] = [[] for _ in range(max(self.layer.values()) + 1)]
         for box in picture.boxes:
             self.orders[self.layer[box.id]].append((box.id, "", 0, 0))
+        self._passed: set[Key] = set()
         self.courses = {number: self._course(link) for number, link in enumerate(picture.links)}
         pairs = dict.fromkeys(
             pair for course in self.courses.values() for pair in zip(course, course[1:], strict=False)
@@ -139,7 +140,8 @@ class _Layout:
         course: list[Key] = [(upper, "", 0, 0)]
         for layer in range(self.layer[upper] + 1, self.layer[lower]):
             key = (link.source, link.style, self.lane[lower], layer)
-            if key not in self.orders[layer]:
+            if key not in self._passed:
+                self._passed.add(key)
                 self.orders[layer].append(key)
             course.append(key)
         course.append((lower, "", 0, 0))
