@@ -7,7 +7,6 @@ is one, and the judgement is then ``open`` and names them all.  A fact that is n
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
-from contextlib import suppress
 from typing import Any, Final, TypeVar, overload
 
 from tidegate.lint.description.model.description import Description
@@ -15,6 +14,7 @@ from tidegate.lint.description.model.part import Part
 from tidegate.lint.graph.dependency import Element, Graph
 from tidegate.lint.graph.edge import Path
 from tidegate.lint.judgement import Judgement, Kind, Level, Measure, Relation
+from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.quantity import Dimension, Span
 
 _NAN: Final = float("nan")
@@ -168,17 +168,36 @@ class Case:
     def gather_all(self, asks: Iterable[Callable[[], _A]]) -> list[_A]:
         """``gather``, for any number of questions of one sort.
 
-        Raises: MissingFactsError: where a fact is missing, with all that is.
+        Raises:
+            MissingFactsError: where a fact is missing, with all that is.
+            DomainError: where none is, and a formula refused its numbers.
         """
-        noted, found = self.missing, []
+        noted, found, refused = self.missing, [], []
         for ask in asks:
             self.missing = []  # what another question lacks must not cut this one short
-            with suppress(MissingFactsError):
+            try:
                 found.append(ask())
+            except MissingFactsError:
+                pass  # noted
+            except DomainError as error:
+                refused.append(error)  # what is missing elsewhere is told first
             noted += self.missing
         self.missing = noted
         self.settle()
+        if refused:
+            raise refused[0]
         return found
+
+    def lacking(self, ask: Callable[[], object]) -> tuple[str, ...]:
+        """The facts that a function lacks; they are not held against the element that is judged."""
+        noted, self.missing = self.missing, []
+        try:
+            ask()
+        except MissingFactsError:
+            pass  # noted
+        finally:
+            lacking, self.missing = tuple(dict.fromkeys(self.missing)), noted
+        return lacking
 
     def attempt(self, ask: Callable[[], _A]) -> _A | None:
         """What a function returns, or None where a fact it needs is missing; for what only helps a message."""

@@ -147,6 +147,8 @@ def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings:
     except MissingFactsError as error:
         return case.open(error.missing)
     except DomainError as error:
+        if case.missing:  # a number that is not there yet may be what the formula refused
+            return case.open(dict.fromkeys(case.missing))
         return case.open((), f"the numbers given lie outside the range of the formula: {error}")
     except Exception as error:  # whatever a rule does wrong is reported as its fault, and hides no finding
         return RuleFault(rule.id, element.id, f"{type(error).__name__}: {error}")

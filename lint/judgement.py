@@ -77,11 +77,11 @@ class Measure(msgspec.Struct, frozen=True):
     def margin_text(self) -> str:
         """The margin, with its sign."""
         margin = self.margin
-        text = show(abs(margin), _difference(self.dimension))
+        text = show(abs(margin), difference(self.dimension))
         return f"-{text}" if margin < 0 else f"+{text}"
 
 
-def _difference(dimension: Dimension) -> Dimension:
+def difference(dimension: Dimension) -> Dimension:
     """The dimension of a difference: kelvins on the Celsius scale have no zero of their own."""
     return Dimension.COUNT if dimension is Dimension.TEMPERATURE else dimension
 
@@ -118,12 +118,12 @@ def least_margin(judgement: Judgement, asked: str) -> Judgement:
     least = (
         parse(asked, Dimension.RATIO) * abs(measure.need)
         if asked.endswith(("%", "ppm"))
-        else parse(asked, _difference(measure.dimension))
+        else parse(asked, difference(measure.dimension))
     )
     if measure.margin >= least * (1 - 1e-9):
         return judgement
     message = (
         f"{judgement.message}; the margin of {measure.margin_text()} is less than the {asked} that the settings ask for"
     )
-    mend = f"another {show(least - measure.margin, _difference(measure.dimension))} of margin"
+    mend = f"another {show(least - measure.margin, difference(measure.dimension))} of margin"
     return msgspec.structs.replace(judgement, kind=Kind.FAIL, message=message, mend=mend)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import Final
 
 from tidegate.lint.case import Case, Facts
-from tidegate.lint.derived.placement_facts import as_shipped
+from tidegate.lint.derived.at_code import as_shipped
 from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.stated_and_made import ROUNDING, Made, held_against
 from tidegate.lint.derived.trip_levels import falling_window, rising_window

@@ -7,8 +7,7 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import at_code
-from tidegate.lint.derived.placement_facts import as_shipped
+from tidegate.lint.derived.at_code import as_shipped, at_code
 from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.response import response
 from tidegate.lint.derived.safe_rounding import show_down, show_up

@@ -8,7 +8,7 @@ from tidegate.lint.case import Case
 from tidegate.lint.derived.crossover_level import CrossoverLevel, Place, divider_level, second_crossing_level
 from tidegate.lint.derived.follower_supplies import follower_supplies
 from tidegate.lint.derived.guarded_loads import Bound
-from tidegate.lint.derived.placement_facts import as_shipped
+from tidegate.lint.derived.at_code import as_shipped
 from tidegate.lint.derived.safe_rounding import show_up
 from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window, rising_window
 from tidegate.lint.description.model.detector import Comparator

@@ -8,7 +8,8 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.placement_facts import PLACED_ROLES, as_shipped
+from tidegate.lint.derived.at_code import as_shipped
+from tidegate.lint.derived.placement_facts import PLACED_ROLES
 from tidegate.lint.derived.safe_rounding import show_up
 from tidegate.lint.derived.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.detector import Comparator

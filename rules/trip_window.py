@@ -7,10 +7,10 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import at_code
+from tidegate.lint.derived.at_code import as_shipped, at_code
 from tidegate.lint.derived.guarded_loads import greatest_supplies, least_supplies
 from tidegate.lint.derived.level_margins import LevelMargin, comes_back, guarantee, protects_nothing, quiet
-from tidegate.lint.derived.placement_facts import PLACED_ROLES, as_shipped
+from tidegate.lint.derived.placement_facts import PLACED_ROLES
 from tidegate.lint.derived.response import response
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.derived.trip_levels import falling_window, rising_window

@@ -7,12 +7,12 @@ from dataclasses import dataclass, replace
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import Unknown, ask
-from tidegate.lint.derived.at_code import at_code
+from tidegate.lint.derived.at_code import as_shipped, at_code
 from tidegate.lint.derived.least_hysteresis import least_hysteresis_v
 from tidegate.lint.derived.level_placement import LevelPlacement, place_levels
 from tidegate.lint.derived.level_spread import level_spreads
 from tidegate.lint.derived.levers import Lever, levers
-from tidegate.lint.derived.placement_facts import PlacementFacts, as_shipped, placement_facts
+from tidegate.lint.derived.placement_facts import PlacementFacts, placement_facts
 from tidegate.lint.derived.trip_levels import hysteresis_window
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator

@@ -6,7 +6,8 @@ import math
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import NoAnswerError
-from tidegate.lint.derived.placement_facts import PlacementFacts, as_shipped, limits
+from tidegate.lint.derived.at_code import as_shipped
+from tidegate.lint.derived.placement_facts import PlacementFacts, limits
 from tidegate.lint.derived.trip_levels import level_errors
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.physics.placement import Level, Limit

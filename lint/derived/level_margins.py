@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Final
 
 from tidegate.lint.case import Case
@@ -64,23 +64,43 @@ def guarantee(case: Case, comparator: Comparator) -> LevelMargin | None:
         return None
     if comparator.role == "power_on":
         return _power_on_guarantee(case, comparator)
+    level, answer = case.gather(lambda: _against_load(case, comparator), lambda: response(case, comparator))
+    over = level.side is Side.MOST
+    why = (
+        f"{level.why}; until the answer, {show(answer.time_s, Dimension.DURATION)} later, {comparator.watches} "
+        f"{'rises' if over else 'falls'} {show(answer.moved_v, _V)}"
+    )
+    limit_v = level.limit_v - answer.moved_v if over else level.limit_v + answer.moved_v
+    return replace(level, limit_v=limit_v, why=why, slew_v_per_s=answer.slew_v_per_s)
+
+
+def short_at_once(case: Case, comparator: Comparator) -> LevelMargin | None:
+    """The level that protects, if it is short of its limit even with an answer that takes no time; else None.
+
+    None too where that is not known. For a detector whose answer, or whose rail's slope, is not given.
+    """
+    unknown = case.lacking(lambda: response(case, comparator))
+    if not unknown or comparator.role == "power_on" or protects_nothing(case, comparator):
+        return None
+    level = case.attempt(lambda: _against_load(case, comparator))
+    if level is None or Measure(level.margin_v, 0.0, _V, Relation.AT_MOST).holds:
+        return None
+    return replace(level, why=f"{level.why}; what the rail does until the answer would only add to it, and is not "
+                   f"known without {' and '.join(unknown)}")  # fmt: skip
+
+
+def _against_load(case: Case, comparator: Comparator) -> LevelMargin:
+    """The level that protects, against the most demanding load itself."""
     over = comparator.role == "over_voltage"
-    window, bounds, answer = case.gather(
+    window, bounds = case.gather(
         lambda: rising_window(case, comparator) if over else falling_window(case, comparator),
         lambda: greatest_supplies(case, comparator) if over else least_supplies(case, comparator),
-        lambda: response(case, comparator),
     )
-    first, moved_v = bounds[0], answer.moved_v
-    why = (
-        f"{first.element} works {'up to' if over else 'from'} {show(first.level_v, _V)}; until the answer, "
-        f"{show(answer.time_s, Dimension.DURATION)} later, {comparator.watches} {'rises' if over else 'falls'} "
-        f"{show(moved_v, _V)}"
-    )
+    first = bounds[0]
+    why = f"{first.element} works {'up to' if over else 'from'} {show(first.level_v, _V)}"
     if over:
-        limit_v = first.level_v - moved_v
-        return LevelMargin(Level.RISING, Side.MOST, window.most_v, limit_v, why, first, answer.slew_v_per_s)
-    limit_v = first.level_v + moved_v
-    return LevelMargin(Level.FALLING, Side.LEAST, window.least_v, limit_v, why, first, answer.slew_v_per_s)
+        return LevelMargin(Level.RISING, Side.MOST, window.most_v, first.level_v, why, first)
+    return LevelMargin(Level.FALLING, Side.LEAST, window.least_v, first.level_v, why, first)
 
 
 def _power_on_guarantee(case: Case, comparator: Comparator) -> LevelMargin:

@@ -8,7 +8,7 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import at_code
+from tidegate.lint.derived.at_code import as_shipped
 from tidegate.lint.derived.follower_supplies import follower_supplies
 from tidegate.lint.derived.guarded_loads import Bound, greatest_supplies, least_supplies
 from tidegate.lint.derived.level_spread import LevelSpread, LevelSpreads, level_spreads
@@ -80,13 +80,6 @@ def placement_facts(case: Case, comparator: Comparator) -> PlacementFacts:
         source_ohm=source_ohm,
         under_voltage=under_voltage,
     )
-
-
-def as_shipped(case: Case, comparator: Comparator) -> Comparator:
-    """The detector with the levels of the code it ships with, where they are chosen by code."""
-    if not comparator.codes or comparator.trip is not None:
-        return comparator
-    return at_code(comparator, case.of(comparator).must("ships_with"))
 
 
 def limits(facts: PlacementFacts) -> tuple[Limit, ...]:

@@ -1,4 +1,4 @@
-"""Where a comparator's trip levels and its hysteresis lie."""
+"""Where a comparator's trip levels and its hysteresis lie: at the code it ships with, where they are chosen by code."""
 
 from __future__ import annotations
 
@@ -6,6 +6,7 @@ from functools import partial
 from typing import Final, Literal
 
 from tidegate.lint.case import Case, Facts
+from tidegate.lint.derived.at_code import as_far_as_said, as_shipped
 from tidegate.lint.derived.input_share import input_share
 from tidegate.lint.description.model.detector import Comparator, Contributor, Hysteresis
 from tidegate.lint.physics import tolerance
@@ -27,12 +28,12 @@ _Level = Literal["rising", "falling"]
 
 def falling_window(case: Case, comparator: Comparator) -> Window:
     """Where the falling level lies, in V at the rail."""
-    return _level_window(case, comparator, "falling")
+    return _level_window(case, as_shipped(case, comparator), "falling")
 
 
 def rising_window(case: Case, comparator: Comparator) -> Window:
     """Where the rising level lies, in V at the rail."""
-    return _level_window(case, comparator, "rising")
+    return _level_window(case, as_shipped(case, comparator), "rising")
 
 
 def hysteresis_window(case: Case, comparator: Comparator) -> Window:
@@ -45,6 +46,7 @@ def hysteresis_window(case: Case, comparator: Comparator) -> Window:
         least_v, most_v = facts.least("hysteresis.amount"), facts.most("hysteresis.amount")
         case.settle()
         return Window(least_v, most_v)
+    comparator = as_shipped(case, comparator)
     rising, falling = _span(comparator, "rising"), _span(comparator, "falling")
     if rising is None or falling is None:
         facts.lacks("hysteresis.amount")
@@ -64,6 +66,27 @@ def hysteresis_window(case: Case, comparator: Comparator) -> Window:
     return window_from_ranges(rising=up, falling=down, hysteresis=None, tracked=tracked).hysteresis
 
 
+def typical_hysteresis_v(comparator: Comparator) -> float | None:
+    """Hysteresis as far as it is said at all, in V: what is stated of it, or how far apart the levels typically are.
+
+    None where it is not said, or not at which code the comparator ships.
+    """
+    amount = _amount(comparator)
+    if amount is not None:
+        return next((size_v for size_v in (amount.middle, amount.least, amount.most) if size_v is not None), None)
+    shipped = as_far_as_said(comparator)
+    rising, falling = _span(shipped, "rising"), _span(shipped, "falling")
+    if rising is None or falling is None or rising.middle is None or falling.middle is None:
+        return None
+    return rising.middle - falling.middle
+
+
+def bounds_itself(comparator: Comparator, which: Literal["rising", "falling"], end: Literal["least", "most"]) -> bool:
+    """Whether an end of a level is stated as a bound, and so is not the other level and the hysteresis once more."""
+    span = _span(as_far_as_said(comparator), which)
+    return span is not None and _nominal_v(span) is None and getattr(span, end) is not None
+
+
 def has_no_hysteresis(comparator: Comparator) -> bool:
     """Whether the description says that there is none: outright, as an amount of 0 V, or as two equal levels."""
     if comparator.hysteresis == "none":
@@ -71,7 +94,8 @@ def has_no_hysteresis(comparator: Comparator) -> bool:
     amount = _amount(comparator)
     if amount is not None:
         return amount.most == 0.0
-    rising, falling = _span(comparator, "rising"), _span(comparator, "falling")
+    shipped = as_far_as_said(comparator)
+    rising, falling = _span(shipped, "rising"), _span(shipped, "falling")
     return rising is not None and falling is not None and rising.middle is not None and rising.middle == falling.middle
 
 

@@ -53,7 +53,7 @@ _SAYINGS: Final = (
     _Saying(r"but found '<scalar>'", "a text after the end of a value", "put the whole value in one pair of quotes"),
     _Saying(r"but found '(<block mapping start>|<block sequence start>|-|\?|<block entry>)'",
             "the indentation does not fit the lines above", "align it with its neighbours"),
-    _Saying(r"but found '([{[]|<anchor>|<alias>|<tag>)'", "{sign} after the end of a value, or indented as no line above",
+    _Saying(r"but found '([{[]|<anchor>|<alias>|<tag>)'", "{sign} after a value, or indented as no line above",
             "write one value for each key"),
     _Saying(r"document start", "text after the end of the description", "keep one description in a file; remove it"),
 )  # fmt: skip

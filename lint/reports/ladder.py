@@ -8,7 +8,7 @@ from typing import Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import Unknown, ask
-from tidegate.lint.derived.placement_facts import as_shipped
+from tidegate.lint.derived.at_code import as_shipped
 from tidegate.lint.derived.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator

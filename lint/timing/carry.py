@@ -78,21 +78,20 @@ def _latched(part: StagePart, given: _Driven, alive: On) -> _Driven:
     """
     if part.power_up == "asserts":
         return given
+    surely_set: Times = NEVER
+    sets = outside(either(given.releases, given.unknown))
+    for start, end in outside(alive.may_be_off):
+        surely_set = either(surely_set, _from_first(both(sets, ((start, end),)), end))
+    until_set = both(alive.may_be_on, outside(surely_set))
     asserts: Times = NEVER
-    releases: Times = NEVER
     unknown: Times = NEVER
-    surely_set = outside(either(given.releases, given.unknown))
     for start, end in alive.may_be_on:
         span: Times = ((start, end),)
         asserts = either(asserts, _from_first(both(either(given.asserts, given.unknown), span), end))
-        until_set = outside(_from_first(both(surely_set, span), end))
-        at_first = both(span, until_set)
-        if part.power_up == "releases":
-            releases = either(releases, at_first)
-            unknown = either(unknown, both(_from_first(both(given.unknown, span), end), until_set))
-        else:
-            unknown = either(unknown, at_first)
-    return _Driven(asserts, releases, unknown)
+        unknown = either(unknown, _from_first(both(given.unknown, span), end))
+    if part.power_up == "releases":
+        return _Driven(asserts, until_set, both(unknown, until_set))
+    return _Driven(asserts, NEVER, until_set)
 
 
 def _from_first(times: Times, end_s: float) -> Times:

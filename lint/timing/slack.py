@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from typing import Final
 
 from tidegate.lint.timing.evaluate import LoadState
 from tidegate.lint.timing.interval import FOREVER_S, Times, both, either, outside
 from tidegate.lint.timing.parts import Bounds, ResetPart
-from tidegate.lint.timing.scenario import Scenario
+from tidegate.lint.timing.scenario import Scenario, Scene
 from tidegate.lint.timing.state import Decision
 from tidegate.lint.timing.supply import Supply
 from tidegate.lint.timing.timeline import Timeline
@@ -54,10 +54,20 @@ def release_slack(line: Timeline, load: str) -> Slack | None:
     state = line.states[load]
     assert isinstance(state, LoadState)
     return worst(
-        Slack(line.scenario, _ready_by_s(state.ready.may_be_off, start_s), start_s)
-        for start_s, _ in state.reset.may_release
-        if start_s > -FOREVER_S
+        Slack(line.scenario, _ready_by_s(state.ready.may_be_off, at_s), at_s) for at_s in _let_go_at_s(line, state)
     )
+
+
+def _let_go_at_s(line: Timeline, state: LoadState) -> Iterator[float]:
+    """Each earliest time at which reset is released, of stretches in which the load may have its supply."""
+    for start_s, end_s in state.reset.may_release:
+        fed = both(((start_s, end_s),), state.fed.may_be_on)
+        if not fed:
+            continue
+        if start_s > -FOREVER_S:
+            yield start_s
+        elif line.scenario.scene is Scene.START:
+            yield fed[0][0]  # never in reset before its supply comes
 
 
 def _ready_by_s(not_ready: Times, release_s: float) -> float:

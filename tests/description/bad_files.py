@@ -146,7 +146,7 @@ SYNTAX: Final = (
     Bad(
         "a second value",
         RAIL + "    delivered: {min: 1.7 V}{max: 1.9 V}\n",
-        "main.yaml:4:28: '{' after the end of a value, or indented as no line above; write one value for each key",
+        "main.yaml:4:28: '{' after a value, or indented as no line above; write one value for each key",
     ),
     Bad(
         "text after a quote",

@@ -47,7 +47,7 @@ def fitting(node: Mapping[str, Any]) -> st.SearchStrategy[Any]:
     if "const" in node or "enum" in node:
         return st.sampled_from(node.get("enum", [node.get("const")]))
     if node["type"] == "array":
-        return st.lists(fitting(node["items"]), max_size=2, unique_by=json.dumps)
+        return st.lists(fitting(node["items"]), min_size=node.get("minItems", 0), max_size=2, unique_by=json.dumps)
     if node["type"] == "object":
         return mappings(node) if "properties" in node else sections(fitting(node["additionalProperties"]))
     if node["type"] == "string" and "pattern" in node:

@@ -116,4 +116,4 @@ def with_supply(parts: dict[str, TimedPart]) -> Network:
 
 
 def supplied_with(waveform: Waveform) -> Scenario:
-    return Scenario("tried", "tried", Scene.OWN, {"vdd": waveform})
+    return Scenario("tried", "tried", Scene.START, {"vdd": waveform})
