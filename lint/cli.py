@@ -21,6 +21,7 @@ _COMMANDS: Final = {
     "place": "where trip levels may lie, what limits them, and what buys room",
     "ramp": "timelines of start-up, power-down and dips, earliest and latest",
     "rules": "the catalogue of rules, or one rule in full",
+    "draw": "one picture alone: ladder, timeline or graph",
     "trace": "what an element leans on, and what leans on it",
     "start": "write a starter description",
     "compare": "what changed between two revisions of a description",

@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 import datetime
+import math
 from collections import Counter
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
 from typing import Final
 
 import msgspec
 
 from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.description.load import Loaded
-from tidegate.lint.description.model.description import Conditions
+from tidegate.lint.description.model.description import Conditions, Description, Waiver
 from tidegate.lint.description.place import DescriptionError, Fault, Place
 from tidegate.lint.graph.dependency import SECTIONS, Element, Graph, build
 from tidegate.lint.judgement import Judgement, Kind, Level, least_margin
@@ -19,7 +20,7 @@ from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.quantity import QuantityError
 from tidegate.lint.rule import Rule
 from tidegate.lint.settings import Settings, name_faults
-from tidegate.lint.waivers import STILL_RIGHT, PlacedWaiver, apply_waivers, placed_waivers
+from tidegate.lint.waivers import STILL_RIGHT, PlacedWaiver, Surroundings, apply_waivers, placed_waivers
 
 
 class Catalogue:
@@ -48,7 +49,7 @@ class Catalogue:
 
 
 class RuleFault(msgspec.Struct, frozen=True):
-    """A rule that raised instead of answering: its own fault, which fails the run."""
+    """A rule that raised instead of answering, or gave no proper answer: its own fault, which fails the run."""
 
     rule: str
     subject: str
@@ -108,11 +109,15 @@ def review(loaded: Loaded, catalogue: Catalogue, *, today: datetime.date, settin
                     judgements.append(answer)
                 else:
                     rule_faults.append(answer)
+    around = Surroundings(
+        today=today, rules=catalogue.rules, elements=graph.elements, subsystem=loaded.description.subsystem,
+        left_out={rule.id for rule in catalogue.rules.values() if settings.leaves_out(rule)},
+    )  # fmt: skip
+    judgements, on_waivers = apply_waivers(
+        judgements, _waivers(loaded, settings), around, settings.level_of(STILL_RIGHT)
+    )
     if not settings.leaves_out(STILL_RIGHT):
-        judgements = apply_waivers(
-            judgements, _waivers(loaded, settings), today=today, rules=catalogue.rules, elements=graph.elements,
-            level=settings.level_of(STILL_RIGHT),
-        )  # fmt: skip
+        judgements += on_waivers
     return Review(loaded, graph, settings, tuple(judgements), tuple(rule_faults))
 
 
@@ -136,7 +141,14 @@ def _waivers(loaded: Loaded, settings: Settings) -> list[PlacedWaiver]:
         lambda index: loaded.sources.place(("waivers", index)),
     )
     elements = {element for section in SECTIONS for element in getattr(loaded.description, section)}
-    return [*own, *(placed for placed in settings.waived if placed.waiver.element in elements)]
+    return [*own, *(placed for placed in settings.waived if _meant(placed.waiver, loaded.description, elements))]
+
+
+def _meant(waiver: Waiver, description: Description, elements: Container[str]) -> bool:
+    """Whether a waiver from a file for several descriptions is for this one: its subsystem says so, or its element."""
+    if waiver.subsystem is not None:
+        return waiver.subsystem == description.subsystem
+    return waiver.element in elements
 
 
 def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings: Settings) -> Judgement | RuleFault:
@@ -150,10 +162,15 @@ def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings:
         if case.missing:  # a number that is not there yet may be what the formula refused
             return case.open(dict.fromkeys(case.missing))
         return case.open((), f"the numbers given lie outside the range of the formula: {error}")
-    except Exception as error:  # whatever a rule does wrong is reported as its fault, and hides no finding
+    except KeyboardInterrupt:
+        raise
+    except BaseException as error:  # whatever a rule does wrong is its fault and hides no finding, nor ends the run
         return RuleFault(rule.id, element.id, f"{type(error).__name__}: {error}")
     if not isinstance(answer, Judgement):
         return RuleFault(rule.id, element.id, f"answered {type(answer).__name__}, not a judgement")
+    problem = _improper(answer, case)
+    if problem:
+        return RuleFault(rule.id, element.id, problem)
     asked = settings.least_margin_of(rule)
     if asked is None or answer.kind is not Kind.PASS or answer.measure is None:
         return answer
@@ -162,3 +179,14 @@ def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings:
     except QuantityError as error:
         place = Place(settings.file)
         raise DescriptionError([Fault(place, "least_margins", f"{rule.id}: {error}", "")]) from None
+
+
+def _improper(answer: Judgement, case: Case) -> str:
+    """Why a judgement cannot be what the rule says about the element; empty where it can."""
+    if (answer.rule, answer.subject) != (case.rule, case.subject.id):
+        return f"answered for {answer.rule} on {answer.subject}"
+    if answer.waiver:
+        return "waived its own finding"
+    if answer.measure is not None and (math.isnan(answer.measure.need) or math.isnan(answer.measure.have)):
+        return "answered with a number that is none"
+    return ""

@@ -32,12 +32,12 @@ _DROWNS: Final = "common practice, no source: a current that is to be trusted is
     title="everything in a domain together stays within its budget at rest",
     level=Level.ERROR,
     applies_to="domains",
-    proves="With every stage driven against its least hold, at the greatest supply delivered and the hottest corner, the "
-    "holds, the input dividers at their least resistance, what the references, biases and comparators of the domain "
-    "take at most, and what its stages are said to take and to leak stay within the budget. All of it is taken to be "
-    "on at once; what is off in a mode makes that mode take less, which the numbers tell. A divider that hangs on "
-    "another rail than its detector counts in each always-on domain of that rail; the branch of a crossover counts in "
-    "what its detector takes. Loads are not counted. Where the holds and circuits alone pass the budget, "
+    proves="With every stage driven against its least hold, at the greatest supply delivered and the hottest corner, "
+    "the holds, the input dividers at their least resistance, what the references, biases and comparators of the "
+    "domain take at most, and what its stages are said to take and to leak stay within the budget. All of it is taken "
+    "to be on at once; what is off in a mode makes that mode take less, which the numbers tell. A divider that hangs "
+    "on another rail than its detector counts in each always-on domain of that rail; the branch of a crossover counts "
+    "in what its detector takes. Loads are not counted. Where the holds and circuits alone pass the budget, "
     "passive_default/holds_within_budget says so.",
     facts=(
         "domains.*.budget", "domains.*.rail", "rails.*.delivered", "references.*.consumes", "biases.*.consumes",
@@ -160,7 +160,9 @@ def _judge_timing(element: Any, case: Case) -> Judgement:
             case, max(supply_v - threshold_v, 0.0) / ohm, current="timing.resistance", leakage="timing.leakage",
             what="the current through its resistance, at the threshold,",
         )  # fmt: skip
-    return _leakage_judgement(case, current="timing.current", leakage="timing.leakage", what="the current that times it")
+    return _leakage_judgement(
+        case, current="timing.current", leakage="timing.leakage", what="the current that times it"
+    )
 
 
 RULES: Final[tuple[Rule, ...]] = (

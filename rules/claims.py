@@ -36,8 +36,8 @@ _HALF_A_PER_CENT: Final = "Half a per cent is taken for the rounding of the numb
     mend="correct the hysteresis or a level",
     sources=("definition: hysteresis is the rising less the falling level",),
     example=Example(
-        fails="comparators: {uv: {trip: {rising: 1.697 V, falling: 1.627 V}}}",
-        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+        fails="comparators: {uv: {hysteresis: {amount: {min: 56 mV, max: 64 mV}}}}",
+        holds="comparators: {uv: {hysteresis: {amount: {min: 46 mV, max: 54 mV}}}}",
     ),
 )
 def hysteresis_is_between_levels(comparator: Comparator, case: Case) -> Judgement:
@@ -135,8 +135,8 @@ def _ends(facts: Facts, fact: str) -> tuple[float, float]:
     mend="correct the levels, the ratio or the reference",
     sources=("a V = V_ref (derived)",),
     example=Example(
-        fails="comparators: {uv: {trip: {rising: 1.577 V, falling: 1.527 V}}}",
-        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+        fails="comparators: {uv: {divider: {ratio: 0.38, top: 3.72 Mohm, bottom: 2.28 Mohm}}}",
+        holds="comparators: {uv: {divider: {ratio: 0.367, top: 3.8 Mohm, bottom: 2.2 Mohm}}}",
     ),
 )
 def levels_come_from_reference(comparator: Comparator, case: Case) -> Judgement:
@@ -198,10 +198,8 @@ def filter_is_made_by_components(comparator: Comparator, case: Case) -> Judgemen
     mend="correct the time or a component",
     sources=("charge of a capacitor through a resistance or by a current; counted periods (derived)",),
     example=Example(
-        fails="output_stages: {gather: {release_delay: {min: 0.8 ms, max: 1.1 ms}, "
-        "timing: {count: 100, period: {min: 9 us, max: 12 us}}}}",
-        holds="output_stages: {gather: {release_delay: {min: 0.8 ms, max: 1.3 ms}, "
-        "timing: {count: 100, period: {min: 9 us, max: 12 us}}}}",
+        fails="output_stages: {core_out: {timing: {count: 100, period: {min: 9 us, max: 12 us}}}}",
+        holds="output_stages: {core_out: {timing: {count: 100, period: {min: 12 us, max: 18 us}}}}",
     ),
     formulas=(timer.charge_time_s, timer.current_charge_time_s, timer.counted_time_s),
 )  # fmt: skip

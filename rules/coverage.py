@@ -6,7 +6,7 @@ from typing import Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.guarding_nets import LOW_ROLES, detectors_behind_nets, note_undriven, watching
-from tidegate.lint.derived.override import behind, lifted, lifted_by_overrides, overrides_of
+from tidegate.lint.derived.override import lifted, lifted_by_overrides, overrides_of
 from tidegate.lint.derived.supply_limit import supply_limit
 from tidegate.lint.derived.used_by import NAMED_BY, is_used, unsaid_uses
 from tidegate.lint.description.model.reset_path import Bypass, Load, OutputStage, Reset
@@ -14,7 +14,7 @@ from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.graph.dependency import Element, Graph
 from tidegate.lint.graph.dominators import on_every_way
 from tidegate.lint.graph.edge import EdgeKind
-from tidegate.lint.graph.paths import Reach, drives, driven_by
+from tidegate.lint.graph.paths import Reach, driven_by, drives
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
@@ -33,8 +33,9 @@ def _and(names: list[str]) -> str:
     title="every rail that a load needs is watched for too low a supply",
     level=Level.ERROR,
     applies_to="rails",
-    proves="An under-voltage or power-on detector watches the rail. Whether its decision reaches the reset of each load "
-    "is judged by reach/every_rail, whether its level protects the loads by trip_window/guarantee.",
+    proves="An under-voltage or power-on detector watches the rail, or only loads need it that make rails which are "
+    "watched. Whether its decision reaches the reset of each load is judged by reach/every_rail, whether its level "
+    "protects the loads by trip_window/guarantee.",
     facts=("comparators.*.watches and role", "loads.*.needs"),
     mend="an under-voltage detector on the rail",
     sources=("common practice, no source: what nobody watches may fail unnoticed",),
@@ -49,13 +50,23 @@ def rail_is_watched_from_below(rail: Rail, case: Case) -> Judgement:
     loads = [name for name in case.graph.tails(rail.id, EdgeKind.SUPPLIED_BY) if name in case.description.loads]
     if not loads:
         return case.not_applicable("no load needs it")
+    makers = [name for name in loads if _shows_downstream(case, name)]
     found = [detector.id for detector in watching(case.graph, rail.id, LOW_ROLES)]
     if found:
         return case.passes(f"watched by {_and(found)}")
+    if makers == loads:
+        return case.passes(f"only {_and(loads)} needs it, and what that makes is watched")
+    loads = [name for name in loads if name not in makers]
     return case.fails(
         f"no under-voltage detector watches it, and {_and(loads)} {'need' if len(loads) > 1 else 'needs'} it",
         mend=f"an under-voltage detector on {rail.id} that resets {_and(loads)}",
     )
+
+
+def _shows_downstream(case: Case, load: str) -> bool:
+    """Whether a load makes rails, and each of them is watched: what it lacks then shows there."""
+    made = case.graph.tails(load, EdgeKind.MADE_BY)
+    return bool(made) and all(watching(case.graph, rail, LOW_ROLES) for rail in made)
 
 
 @rule(
@@ -103,7 +114,7 @@ def rail_is_watched_from_above(rail: Rail, case: Case) -> Judgement:
             at="damage",
         )
     return case.at_least(
-        need=limit.level_v, have=damage_v, dimension=_V, says="no over-voltage detector watches it; it is damaged above",
+        need=limit.level_v, have=damage_v, dimension=_V, says="not watched from above; it is damaged at",
         why=f"a failing {rail.made_by} can pass on no more than {limit.rail}, which is guaranteed up to "
         f"{show(limit.level_v, _V)}",
         mend=mend, at="damage",
@@ -135,9 +146,12 @@ def reset_guards_something(reset: Reset, case: Case) -> Judgement:
     if gated:
         return case.passes(f"switches {_and(gated)} on", at="guards")
     if guards:
-        for element in (*case.description.loads.values(), *case.description.bypasses.values()):
-            if element.domain is None:
-                case.of(element).lacks("domain")
+        for load in case.description.loads.values():
+            if load.domain is None:
+                case.of(load).lacks("domain")
+        for bypass in case.description.bypasses.values():
+            if bypass.domain is None:
+                case.of(bypass).lacks("domain")
         case.settle()
     return case.fails(
         f"guards {_and(list(guards))}, in which no load lives" if guards else "guards nothing",
@@ -156,9 +170,9 @@ def _holds_anything(graph: Graph, domain: Domain) -> bool:
     title="an override reaches past every single point that a reset net hangs on",
     level=Level.WARNING,
     applies_to="resets",
-    proves="Each stage that stands on every way from the detectors to the net, other than the one that drives it, can be "
-    "passed by an override on itself or behind it: if that stage is stuck, the chip can still be brought up. The stage "
-    "that drives the net is where such an override acts. Whether every detector has an override is judged by "
+    proves="Each stage that stands on every way from the detectors to the net, other than the one that drives it, can "
+    "be passed by an override on itself or behind it: if that stage is stuck, the chip can still be brought up. The "
+    "stage that drives the net is where such an override acts. Whether every detector has an override is judged by "
     "bypass/present.",
     facts=("resets.*.driven_by", "output_stages.*.driven_by", "bypasses.*.overrides and forces"),
     mend="move the override to the single point, or behind it",
@@ -181,7 +195,9 @@ def single_points_can_be_passed(reset: Reset, case: Case) -> Judgement:
     backwards = {name: [driver for driver, _, _ in driven_by(graph)(name)] for name in reach}
     for detector in detectors:
         backwards[detector.id] = [_DETECTORS]
-    points = [name for name in on_every_way(backwards, reset.id, _DETECTORS) if isinstance(graph.elements[name], OutputStage)]
+    points = [
+        name for name in on_every_way(backwards, reset.id, _DETECTORS) if isinstance(graph.elements[name], OutputStage)
+    ]
     last = set(graph.tails(reset.id, EdgeKind.DRIVES))
     inner = [name for name in points if name not in last]
     if not inner:
@@ -236,8 +252,8 @@ def _used_rule(section: str) -> Rule:
         title=f"no {word} is there for nobody",
         level=Level.NOTE,
         applies_to=section,
-        proves=f"Somebody is supplied, biased, driven or enabled by the {word}, compares with it, or leans on it. To be "
-        "watched, overridden or disturbed is no use.",
+        proves=f"Somebody is supplied, biased, driven or enabled by the {word}, compares with it, or leans on it. To "
+        "be overridden or disturbed is no use; to be watched is, for a rail.",
         facts=(f"every fact by which another element names a {word}",),
         mend="connect it, or take it out of the description",
         sources=("common practice, no source: what nobody uses is a slip of the pen, or a part that was forgotten",),

@@ -59,8 +59,8 @@ def _shifted_rule(section: str, word: str, example: Example) -> Rule:
         title=f"a signal that comes to a {word.replace('_', ' ')} from another supply passes a level shifter",
         level=Level.ERROR,
         applies_to=section,
-        proves="Where the domain of a driver is fed by another rail than that of its receiver, and the nominal levels of "
-        "the two rails differ, one of the two is a level shifter.",
+        proves="Where the domain of a driver is fed by another rail than that of its receiver, and the nominal levels "
+        "of the two rails differ, one of the two is a level shifter.",
         facts=("output_stages.*.domain", "resets.*.domain", "comparators.*.domain", "domains.*.rail", "rails.*.nominal",
                "output_stages.*.kind"),
         mend="a level shifter, at the driver or at the receiver",
@@ -188,9 +188,10 @@ def _always_on_rule(section: str, word: str, example: Example) -> Rule:
         title=f"a {word} that is always on leans on nothing that is switched off",
         level=Level.ERROR,
         applies_to=section,
-        proves="What the element in an always-on domain is biased by, compares with, leans on or is enabled by does not "
-        "live in a switched domain; an enable that is held counts as defined, and a detector that is said to assert "
-        "while it cannot decide is safe. What the detector's own output switches on is judged by self_bias/no_loop.",
+        proves="What the element in an always-on domain is biased by, compares with, leans on or is enabled by does "
+        "not live in a switched domain; an enable that is held counts as defined, and a detector that is said to "
+        "assert while it cannot decide is safe. What the detector's own output switches on is judged by "
+        "self_bias/no_loop.",
         facts=(f"{section}.*.domain", "domains.*.kind", "the domain of everything it leans on directly"),
         mend="something in an always-on domain to lean on",
         sources=("common practice, no source: what must stay awake leans on nothing that sleeps",),

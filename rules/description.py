@@ -76,8 +76,8 @@ def _middle(span: Span | None) -> float | None:
     mend="correct the range that is wrong",
     sources=(_COMMON_PRACTICE,),
     example=Example(
-        fails="rails: {avdd: {guaranteed: {min: 1.73 V, max: 1.98 V}}}",
-        holds="rails: {avdd: {guaranteed: {min: 1.6 V, max: 1.98 V}}}",
+        fails="rails: {vcore: {guaranteed: {min: 1.08 V, max: 1.25 V}}}",
+        holds="rails: {vcore: {guaranteed: {min: 1.08 V, max: 1.32 V}}}",
     ),
 )
 def rail_ranges_nest(rail: Rail, case: Case) -> Judgement:
@@ -110,8 +110,8 @@ def rail_ranges_nest(rail: Rail, case: Case) -> Judgement:
     mend="correct the range of the load or that of the rail",
     sources=(_COMMON_PRACTICE,),
     example=Example(
-        fails="loads: {adc: {needs: {0: {works: {min: 1.74 V, max: 1.98 V}}}}}",
-        holds="loads: {adc: {needs: {0: {works: {min: 1.6 V, max: 1.98 V}}}}}",
+        fails="loads: {core_logic: {needs: {0: {works: {min: 1.08 V, max: 1.25 V}}}}}",
+        holds="loads: {core_logic: {needs: {0: {works: {min: 1.08 V, max: 1.32 V}}}}}",
     ),
 )
 def load_works_in_service(load: Load, case: Case) -> Judgement:
@@ -165,7 +165,7 @@ def reference_below_its_supply(reference: Reference, case: Case) -> Judgement:
     mend="correct one of the two facts",
     sources=(_COMMON_PRACTICE,),
     example=Example(
-        fails="comparators: {uv: {ships_with: one, codes: {one: {rising: 1.697 V, falling: 1.647 V}}}}",
+        fails="comparators: {uv: {ships_with: one, codes: {one: {rising: 1.682 V, falling: 1.632 V}}}}",
         holds="comparators: {uv: {ships_with: one, codes: {one: {rising: 1.677 V, falling: 1.627 V}}}}",
     ),
 )  # fmt: skip

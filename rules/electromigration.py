@@ -45,6 +45,9 @@ _WEAR_FACTS: Final = (
 )  # fmt: skip
 
 
+_ONE: Final = {"inverter": "an"}
+
+
 def _edge(case: Case) -> Measure:
     """The input edge against the slowest one that a plain stage is good for."""
     edge_s, plain_s = case.own.most("input_edge"), case.whole.least("process.plain_edge")
@@ -79,13 +82,13 @@ def slow_edge_meets_schmitt(stage: OutputStage, case: Case) -> Judgement:
     if stage.kind == "schmitt":
         return case.passes("a Schmitt stage is good for any edge", at="kind")
     edge = _edge(case)
-    kind = "" if edge.holds else case.own.must("kind").replace("_", " ")
+    kind = "" if edge.holds else case.own.must("kind").replace("_", "-")
     return case.at_most(
         need=edge.need,
         have=edge.have,
         dimension=_TIME,
         says="input edge",
-        why=f"a {kind} stage has no hysteresis" if kind else "",
+        why=f"{_ONE.get(kind, 'a')} {kind} stage has no hysteresis" if kind else "",
         mend=f"make it a Schmitt stage, or an edge of at most {show(edge.need, _TIME)}",
         at="input_edge",
     )
@@ -102,8 +105,10 @@ def slow_edge_meets_schmitt(stage: OutputStage, case: Case) -> Judgement:
     mend="a faster edge, smaller transistors, or a stiffer supply",
     sources=(_VEENDRICK, "Ohm's law"),
     example=Example(
-        fails="rails: {avdd: {source_impedance: {max: 200 ohm}}}\noutput_stages: {por_out: {crowbar_peak: 0.28 mA}}",
-        holds="rails: {avdd: {source_impedance: {max: 150 ohm}}}\noutput_stages: {por_out: {crowbar_peak: 0.28 mA}}",
+        fails="{rails: {avdd: {source_impedance: {max: 200 ohm}, load_step: {max: 0 A}}}, "
+        "output_stages: {por_out: {crowbar_peak: 0.28 mA}}}",
+        holds="{rails: {avdd: {source_impedance: {max: 150 ohm}, load_step: {max: 0 A}}}, "
+        "output_stages: {por_out: {crowbar_peak: 0.28 mA}}}",
     ),
     formulas=(crowbar.peak_current_a, coupling.shared_impedance_bump_v),
 )

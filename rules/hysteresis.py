@@ -6,10 +6,13 @@ import math
 from typing import Final
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.at_code import as_far_as_said
 from tidegate.lint.derived.hysteresis_need import disturbance, noise_v
+from tidegate.lint.derived.level_room import NEVER_APART, level_room
 from tidegate.lint.derived.logic_signal import origin
+from tidegate.lint.derived.placement_facts import PLACED_ROLES
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.trip_levels import falling_window, has_no_hysteresis, hysteresis_window, rising_window
+from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window, typical_hysteresis_v
 from tidegate.lint.description.model.detector import Comparator, Hysteresis, Switch
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.judgement import Judgement, Level, Measure, Relation
@@ -35,8 +38,9 @@ def _rail(case: Case, comparator: Comparator) -> Rail:
     title="every comparator has hysteresis",
     level=Level.ERROR,
     applies_to="comparators",
-    proves="The rising level lies above the falling one, so that a supply resting at the level gives one decision.",
-    facts=("comparators.*.hysteresis", "or both of comparators.*.trip.rising and comparators.*.trip.falling"),
+    proves="The two levels differ, typically at least, so that a supply resting at the level gives one decision. In "
+    "which sense, and whether by enough, other rules of the family judge.",
+    facts=("comparators.*.hysteresis", "or both levels of comparators.*.trip (or codes and ships_with)"),
     mend="give the comparator a hysteresis that covers what disturbs it",
     sources=(_COMMON_PRACTICE,),
     example=Example(
@@ -47,6 +51,10 @@ def _rail(case: Case, comparator: Comparator) -> Rail:
 def hysteresis_present(comparator: Comparator, case: Case) -> Judgement:
     """Pass if there is some; its sign and its size are for other rules to judge."""
     if not has_no_hysteresis(comparator):
+        window = case.attempt(lambda: hysteresis_window(case, comparator))
+        size_v = typical_hysteresis_v(comparator)
+        if window is None and size_v is not None:
+            return case.passes(f"has hysteresis, about {show(abs(size_v), _V)}", at="hysteresis")
         window = hysteresis_window(case, comparator)
         return case.passes(f"has hysteresis, {_window_text(window.least_v, window.most_v)}", at="hysteresis")
     needed_v = case.attempt(
@@ -105,7 +113,8 @@ def hysteresis_moves_away(comparator: Comparator, case: Case) -> Judgement:
 
 
 def _middle_v(comparator: Comparator, which: str) -> float | None:
-    span: Voltage | None = getattr(comparator.trip, which) if comparator.trip is not None else None
+    trip = as_far_as_said(comparator).trip
+    span: Voltage | None = getattr(trip, which) if trip is not None else None
     return None if span is None else span.middle
 
 
@@ -130,8 +139,8 @@ def _middle_v(comparator: Comparator, which: str) -> float | None:
         "JCGM 100:2008, 6.2.1: a coverage factor times a standard deviation",
     ),
     example=Example(
-        fails="comparators: {uv: {hysteresis: {amount: {min: 20 mV, max: 28 mV}}}}",
-        holds="comparators: {uv: {hysteresis: {amount: {min: 46 mV, max: 54 mV}}}}",
+        fails="comparators: {uv: {trip: {rising: 1.651 V}, hysteresis: {amount: {min: 20 mV, max: 28 mV}}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V}, hysteresis: {amount: {min: 46 mV, max: 54 mV}}}}",
     ),
     formulas=(hysteresis.disturbance_v, hysteresis.release_droop_v),
 )  # fmt: skip
@@ -211,52 +220,47 @@ def _covers(have_v: float, need_v: float) -> bool:
 
 @rule(
     "hysteresis/fits_window",
-    title="the hysteresis fits between the levels that bound it",
+    title="the hysteresis fits into the room that the rail leaves it",
     level=Level.ERROR,
     applies_to="comparators",
-    proves="With the greatest hysteresis, the level at which the detector lets go is still reached in service: below "
-    "the lowest supply delivered less half the ripple for a rising level, above the highest supply delivered plus "
-    "half the ripple for the falling level of an over-voltage detector.",
+    proves="The greatest hysteresis is at most what the error of the level that protects leaves of the room between "
+    "the limit of trip_window/guarantee and that of trip_window/release; with more, no place of the levels keeps both. "
+    "Where the end of the level that lets go is stated as a bound, the hysteresis takes no more than up to there. "
+    "Where nothing is guarded on the rail there is no such room, and trip_window/release alone judges the levels.",
     facts=(
-        "comparators.*.trip", "comparators.*.hysteresis.amount", "rails.*.delivered", "rails.*.ripple.peak_to_peak",
+        "the facts of trip_window/guarantee and of trip_window/release",
+        "comparators.*.hysteresis.amount, or both trip levels",
     ),
-    mend="less hysteresis, or a level that leaves it more room",
-    sources=("levels against the range delivered (derived): F + H <= delivered least - ripple/2",),
+    mend="less hysteresis, a smaller error, or what leaves it more room",
+    sources=("the two inequalities added (derived): F_hi - F_lo + H <= the room between their limits",),
     example=Example(
-        fails="comparators: {uv: {trip: {rising: 1.732 V}, hysteresis: {amount: {min: 116 mV, max: 124 mV}}}}",
-        holds="comparators: {uv: {trip: {rising: 1.662 V}, hysteresis: {amount: {min: 46 mV, max: 54 mV}}}}",
+        fails="comparators: {uv: {trip: {rising: 1.734 V}, hysteresis: {amount: {min: 98 mV, max: 116 mV}}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V}, hysteresis: {amount: {min: 46 mV, max: 54 mV}}}}",
     ),
-)  # fmt: skip
+)
 def hysteresis_fits_window(comparator: Comparator, case: Case) -> Judgement:
-    """Compare the greatest hysteresis with the room between the deciding level and the supply in service."""
+    """Compare the greatest hysteresis with what the spread leaves of the room."""
     if has_no_hysteresis(comparator):
         return case.not_applicable(_NO_HYSTERESIS)
-    facts = case.of(_rail(case, comparator))
-    half_ripple_v = facts.most("ripple.peak_to_peak") / 2
-    over = comparator.role == "over_voltage"
-    edge_v = facts.most("delivered") if over else facts.least("delivered")
-    level, window = case.gather(
-        lambda: falling_window(case, comparator) if over else rising_window(case, comparator),
-        lambda: hysteresis_window(case, comparator),
-    )
-    service_v = edge_v + half_ripple_v if over else edge_v - half_ripple_v
-    spare_v = level.least_v - service_v if over else service_v - level.most_v
-    room_v = window.most_v + spare_v
-    which, value_v, way = ("falling", level.least_v, "down") if over else ("rising", level.most_v, "up")
-    fits = f"at most {show_down(room_v, _V)} of hysteresis; now {show(window.most_v, _V)}"
-    fits_none = (
-        f"a higher rising level: with this one none fits above {show(service_v, _V)}"
-        if over
-        else f"a lower falling level: with this one none fits below {show(service_v, _V)}"
-    )
+    if comparator.role not in PLACED_ROLES:
+        return case.not_applicable("watches whether a reference is ready, not the range of a supply")
+    room = level_room(case, comparator)
+    if room is None:
+        return case.not_applicable("nothing that it guards sets it a limit (trip_window/release judges its levels)")
+    if room.apart_by_description:
+        return case.not_applicable(NEVER_APART)
+    if not room.spread_fits:
+        return case.not_applicable("its error alone takes more room than there is (trip_window/spread says so)")
+    if room.hysteresis_v < 0.0:
+        return case.not_applicable(_WRONG_SENSE)
     return case.at_most(
-        need=room_v,
-        have=window.most_v,
+        need=room.left_v,
+        have=room.hysteresis_v,
         dimension=_V,
         says="greatest hysteresis",
-        why=f"{which} level {way} to {show(value_v, _V)}, supply in service "
-        f"{'up' if over else 'down'} to {show(service_v, _V)}",
-        mend=fits if room_v > 0.0 else fits_none,
+        why=f"room of {show(room.room_v, _V)}, of which the {room.protects.level.value} level takes "
+        f"{show(room.spread_v, _V)}: {room.protects.why}; {room.returns.why}",
+        mend=f"at most {show_down(room.left_v, _V)} of hysteresis; now {show(room.hysteresis_v, _V)}",
         at="hysteresis.amount",
     )
 
@@ -344,7 +348,7 @@ def feedback_comes_in_time(comparator: Comparator, case: Case) -> Judgement:
         return case.not_applicable(_NO_HYSTERESIS)
     facts = case.of(_rail(case, comparator))
     delay_s = case.own.most("hysteresis.feedback_delay")
-    nominal_v, rise_s = facts.most("nominal"), facts.least("rise")
+    nominal_v, rise_s = facts.middle("nominal"), facts.least("rise")
     ripple_v = facts.most("ripple.peak_to_peak")
     frequency_hz = None if ripple_v == 0.0 else facts.most("ripple.frequency")
     kept_v = hysteresis_window(case, comparator).least_v

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import dataclass
 from functools import partial
 from typing import Final
 
@@ -13,9 +14,8 @@ from tidegate.lint.derived.response import response
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.derived.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
-from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.judgement import Judgement, Level, Measure, Relation
 from tidegate.lint.physics import trip_window
-from tidegate.lint.physics.trip_window import Window
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 
@@ -30,13 +30,14 @@ _COMMON_PRACTICE: Final = "common practice, no source: a detector is characteris
     applies_to="comparators",
     proves="Where the rail that a detector watches also feeds it: works_from (its greatest value) <= the lowest of the "
     "falling and rising levels, and the highest of them <= works_to (its least value), at every code that can be "
-    "chosen. A detector fed by another rail is not judged here.",
+    "chosen. A detector fed by another rail is not judged here; a falling level below works_from is left to "
+    "self_bias/works_at_own_trip.",
     facts=("comparators.*.domain", "domains.*.rail", "comparators.*.works_from, works_to", "comparators.*.trip, codes"),
     mend="a detector that works over a wider range, levels further in, or another rail to feed it",
     sources=(_COMMON_PRACTICE,),
     example=Example(
-        fails="comparators: {por: {works_from: {max: 1.2 V}}}",
-        holds="comparators: {por: {works_from: {max: 0.95 V}}}",
+        fails="comparators: {ov: {works_to: 1.95 V}}",
+        holds="comparators: {ov: {works_to: 2.75 V}}",
     ),
 )
 def levels_lie_inside(comparator: Comparator, case: Case) -> Judgement:
@@ -52,6 +53,8 @@ def levels_lie_inside(comparator: Comparator, case: Case) -> Judgement:
         lambda: case.gather_all([partial(_ends, case, at) for at in _at_every_code(comparator, case)]),
     )
     low, high = min(ends.least_v for ends in found), max(ends.most_v for ends in found)
+    if not Measure(from_v, low, _V, Relation.AT_LEAST).holds and low == min(ends.falling_v for ends in found):
+        return case.not_applicable("its falling level lies below its own range (self_bias/works_at_own_trip says so)")
     range_text = f"works from {show(from_v, _V)} to {show(to_v, _V)}; levels {show(low, _V)} to {show(high, _V)}"
     codes = f", over {len(comparator.codes)} codes" if comparator.codes else ""
     if low - from_v <= to_v - high:
@@ -72,9 +75,19 @@ def _at_every_code(comparator: Comparator, case: Case) -> Iterator[Comparator]:
         yield at_code(comparator, code)
 
 
-def _ends(case: Case, comparator: Comparator) -> Window:
+@dataclass(frozen=True, slots=True)
+class _Ends:
+    """The lowest and the highest of both levels, and the lowest falling one, in V."""
+
+    least_v: float
+    most_v: float
+    falling_v: float
+
+
+def _ends(case: Case, comparator: Comparator) -> _Ends:
     falling, rising = case.gather(lambda: falling_window(case, comparator), lambda: rising_window(case, comparator))
-    return Window(min(falling.least_v, rising.least_v), max(falling.most_v, rising.most_v))
+    least_v, most_v = min(falling.least_v, rising.least_v), max(falling.most_v, rising.most_v)
+    return _Ends(least_v, most_v, falling.least_v)
 
 
 @rule(
@@ -91,8 +104,8 @@ def _ends(case: Case, comparator: Comparator) -> Window:
     mend="a lower level, a faster answer, or a detector that stands more",
     sources=("common practice, no source: what reports a voltage must stand it",),
     example=Example(
-        fails="rails: {avdd: {damage: 1.97 V}}",
-        holds="rails: {avdd: {damage: 2.5 V}}",
+        fails="comparators: {ov: {works_to: 1.973 V}}",
+        holds="comparators: {ov: {works_to: 2.75 V}}",
     ),
     formulas=(trip_window.response_time_s, trip_window.droop_during_response_v),
 )  # fmt: skip

@@ -1,4 +1,4 @@
-"""Reach: each load is reset by what judges its rails, sharply enough, in step with its clock, by safely joined sources."""
+"""Reach: each load is reset by what judges its rails, sharply, in step with its clock, by safely joined sources."""
 
 from __future__ import annotations
 
@@ -48,7 +48,7 @@ def _and(names: Sequence[str]) -> str:
     sources=("common practice, no source: what must not run outside its range is reset there",),
     example=Example(
         fails="resets: {core_rst_n: {guards: [adc]}}",
-        holds="resets: {core_rst_n: {guards: [core]}}",
+        holds="resets: {core_rst_n: {guards: [core, adc]}}",
     ),
 )
 def load_has_a_reset(load: Load, case: Case) -> Judgement:
@@ -67,7 +67,9 @@ def load_has_a_reset(load: Load, case: Case) -> Judgement:
 
 
 def _guards_a_domain(graph: Graph) -> bool:
-    return any(edge.kind is EdgeKind.GUARDS and graph.elements[edge.head].section == "domains" for edge in graph.edges())
+    return any(
+        edge.kind is EdgeKind.GUARDS and graph.elements[edge.head].section == "domains" for edge in graph.edges()
+    )
 
 
 @rule(

@@ -130,8 +130,8 @@ def _note_gaps(case: Case, comparator: Comparator) -> None:
     mend="a bias of its own, from the supply that it watches",
     sources=("common practice, no source: the first circuit to wake has nobody to wake it",),
     example=Example(
-        fails="comparators: {por: {gated_by: uv_core}}",
-        holds="comparators: {uv: {gated_by: uv_core}}",
+        fails="comparators: {por: {gated_by: uv}}",
+        holds="comparators: {por: {bias: bias_start}}",
     ),
 )  # fmt: skip
 def power_on_leans_on_nobody(comparator: Comparator, case: Case) -> Judgement:

@@ -25,8 +25,8 @@ _IDLE_STATE: Final = (
 )
 _STARTS_PROVES: Final = (
     "A source that feeds its own bias has a start-up circuit that takes it out of the state in which nothing flows, "
-    "and that circuit works on the slowest ramp of the rail that feeds it (the lowest nominal level over the longest "
-    "rise time). Where the source is switched on by another element, the ramp it sees is not that of the rail, and a "
+    "and that circuit works on the slowest ramp of the rail that feeds it (the nominal level over the longest rise "
+    "time). Where the source is switched on by another element, the ramp it sees is not that of the rail, and a "
     "person must look."
 )
 _STARTS_MEND: Final = "a start-up circuit that works on any ramp, and is cut off once the output is up"
@@ -104,7 +104,7 @@ def _starts(source: Reference | Bias, case: Case) -> Judgement:
     if switch is not None or kind == "switched":
         return _asks_for_switched_ramp(case, rail, domain, switch, least_v_per_s)
     facts = case.of(rail)
-    nominal_v, rise_s = facts.least("nominal"), facts.most("rise")
+    nominal_v, rise_s = facts.middle("nominal"), facts.most("rise")
     case.settle()
     slowest_v_per_s = ramp_slope_v_per_s(rise_v=nominal_v, rise_s=rise_s)
     return case.at_most(
@@ -231,8 +231,9 @@ RULES: Final[tuple[Rule, ...]] = (
         "references",
         "reference",
         Example(
-            fails="{references: {ref_main: {start_up: none}}, biases: {bias_main: {source: ref_main, start_up: none}}}",
-            holds="{references: {ref_main: {start_up: {by: a leak, least_slope: 0 V/s}}}, "
+            fails="{references: {ref_main: {voltage: 0.6 V, start_up: none}}, "
+            "biases: {bias_main: {source: ref_main, start_up: none}}}",
+            holds="{references: {ref_main: {voltage: 0.6 V, start_up: {by: a leak, least_slope: 0 V/s}}}, "
             "biases: {bias_main: {source: ref_main, start_up: none}}}",
         ),
     ),
@@ -241,9 +242,9 @@ RULES: Final[tuple[Rule, ...]] = (
         "bias",
         Example(
             fails="biases: {bias_main: {source: bias_copy, start_up: none}, bias_copy: {kind: from_reference, "
-            "source: bias_main, domain: analog, start_up: none}}",
+            "source: bias_main, domain: analog, works_from: 1.2 V, settling: 20 us, start_up: none}}",
             holds="biases: {bias_main: {source: ref_fast}, bias_copy: {kind: from_reference, source: bias_main, "
-            "domain: analog}}",
+            "domain: analog, works_from: 1.2 V, settling: 20 us}}",
         ),
     ),
     _loop_rule(
@@ -259,7 +260,7 @@ RULES: Final[tuple[Rule, ...]] = (
         "load",
         Example(
             fails="loads: {adc: {leans_on: [core_logic]}, core_logic: {leans_on: [adc]}}",
-            holds="loads: {adc: {leans_on: [core_logic]}}",
+            holds="loads: {adc: {leans_on: [core_regulator]}}",
         ),
     ),
 )

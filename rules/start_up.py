@@ -5,21 +5,22 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from typing import Final
 
-from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.case import Case
+from tidegate.lint.derived.never_known import decides_too_late, unless_told
 from tidegate.lint.derived.rail_order import rails_before
-from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.description.model.detector import StartUp
+from tidegate.lint.derived.safe_rounding import show_up
 from tidegate.lint.description.model.reset_path import Load, Reset
 from tidegate.lint.description.model.supply import Rail
-from tidegate.lint.graph.edge import EdgeKind, Hop, Path
+from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.judgement import Judgement, Level
-from tidegate.lint.physics import hold_up, ramp
+from tidegate.lint.physics import hold_up
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
-from tidegate.lint.timing.blame import blame_for_unknown
+from tidegate.lint.timing.blame import Why, blame_for_unknown
 from tidegate.lint.timing.common_cause import release_slack_apart
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.parts import LoadPart, ResetPart
+from tidegate.lint.timing.scenario import Scenario
 from tidegate.lint.timing.slack import (
     Slack,
     assert_slack,
@@ -33,7 +34,6 @@ from tidegate.lint.timing.timeline import Timeline, Timelines, timelines
 
 _T: Final = Dimension.DURATION
 _V: Final = Dimension.VOLTAGE
-_SLOPE: Final = Dimension.SLOPE
 _DERIVED: Final = "arrival times over the dependency graph, each the last of what is needed (derived)"
 _NO_NET: Final = "no reset net guards it"
 _RESET_PATH: Final = (
@@ -74,6 +74,7 @@ def _load_part(lines: Timelines, load: Load) -> LoadPart:
         holds="output_stages: {rst_out: {release_delay: {min: 200 us, max: 400 us}}}",
     ),
 )  # fmt: skip
+@unless_told
 def release_comes_after_ready(load: Load, case: Case) -> Judgement:
     """Compare the earliest release with the latest time at which the load is ready, in the worst scenario."""
     lines = timelines(case.description, case.graph)
@@ -91,8 +92,9 @@ def release_comes_after_ready(load: Load, case: Case) -> Judgement:
     shared: Sequence[str] = ()
     if least.slack_s < 0.0:
         least, shared = release_slack_apart(lines, load.id, courses)
-    if least.slack_s < 0.0 and (lacking := _least_times_to_give(lines, load, least)):
-        raise MissingFactsError(lacking)
+    if least.slack_s < 0.0:
+        _ask(case, lines.missing(load.id, latest=True))
+        _ask(case, _least_times_to_give(lines, load, least))
     return _release_judgement(load, case, least, shared)
 
 
@@ -123,6 +125,13 @@ def _release_judgement(load: Load, case: Case, least: Slack, shared: Sequence[st
             mend="release it by a net that waits for all that it needs",
             at="ready",
         )
+    if least.then_s < least.scenario.rises_s <= least.first_s:
+        return case.fails(
+            f"may be released before the last of its supplies rises ({where})",
+            why=f"{least.scenario.about}; released from {show(least.then_s, _T)} on",
+            mend="let its reset wait for every rail that it needs",
+            at="needs",
+        )
     return case.at_least(
         need=least.first_s - least.from_s, have=least.then_s - least.from_s, dimension=_T,
         says=f"earliest release ({where})",
@@ -148,6 +157,7 @@ def _release_judgement(load: Load, case: Case, least: Slack, shared: Sequence[st
         holds="comparators: {por: {undecided: asserts}}",
     ),
 )  # fmt: skip
+@unless_told
 def no_unknown_interval(reset: Reset, case: Case) -> Judgement:
     """Pass if the net is known at every time at which it is read."""
     lines = timelines(case.description, case.graph)
@@ -170,11 +180,14 @@ def no_unknown_interval(reset: Reset, case: Case) -> Judgement:
 def _unknown(reset: Reset, case: Case, lines: Timelines, longest: tuple[float, float, Timeline]) -> Judgement:
     length_s, start_s, line = longest
     blame = blame_for_unknown(lines, line, reset.id, start_s)
-    where = f"{line.scenario.name}, from {show(start_s, _T)} on"
+    where = f"{line.scenario.name}, {_since(line.scenario, start_s)}"
     lasts = "for good" if length_s == FOREVER_S else f"for {show(length_s, _T)}"
-    if blame.held_by_nothing:
+    if blame.why is Why.NOT_HELD:
         what = f"{blame.element} is not alive and nothing holds it"
         mend = f"hold the output of {blame.element} at the level at which {reset.id} resets"
+    elif blame.why is Why.INPUT:
+        what = f"{blame.element} is alive before its input is known"
+        mend = f"hold the output of {blame.element}, or let what drives it be alive no later than it is itself"
     else:
         what = f"{blame.element} cannot decide yet"
         mend = (
@@ -190,6 +203,15 @@ def _unknown(reset: Reset, case: Case, lines: Timelines, longest: tuple[float, f
     )
 
 
+def _since(scenario: Scenario, start_s: float) -> str:
+    """From when on, in words."""
+    if start_s == -FOREVER_S:
+        return "all along"
+    if start_s >= scenario.rises_s > 0.0:
+        return f"from {show(start_s - scenario.rises_s, _T)} after the supply begins to rise again"
+    return f"from {show(start_s, _T)} on"
+
+
 @rule(
     "start_up/asserts_in_time",
     title="reset is asserted before a falling rail leaves the range of the load",
@@ -202,18 +224,19 @@ def _unknown(reset: Reset, case: Case, lines: Timelines, longest: tuple[float, f
     mend="a higher falling level, a faster answer, or more hold-up",
     sources=(_DERIVED, "C dV = I dt for a constant current"),
     example=Example(
-        fails="comparators: {uv: {delay: {min: 0.3 us, max: 20 us}}}",
-        holds="comparators: {uv: {delay: {min: 0.3 us, max: 2 us}}}",
+        fails="output_stages: {rst_out: {delay: {min: 10 ns, max: 20 us}}}",
+        holds="output_stages: {rst_out: {delay: {min: 10 ns, max: 100 ns}}}",
     ),
     formulas=(hold_up.hold_up_time_s,),
 )  # fmt: skip
+@unless_told
 def reset_is_asserted_in_time(load: Load, case: Case) -> Judgement:
     """Compare the time at which each rail leaves the range of the load with the latest assertion."""
     lines = timelines(case.description, case.graph)
     nets = _nets(case, load)
     if not nets:
         return case.not_applicable(_NO_NET)
-    _ask(case, (path for net in nets for path in lines.missing(net, latest=True)))
+    _ask(case, (path for net in nets for path in lines.missing(net, latest=True, rails_forced=True)))
     _ask(case, lines.missing(load.id, falls=True))
     found: list[tuple[str, Slack]] = []
     for rail, works in _load_part(lines, load).works:
@@ -224,7 +247,12 @@ def reset_is_asserted_in_time(load: Load, case: Case) -> Judgement:
     if not found:
         return case.not_applicable("it works down to 0 V")
     rail, least = min(found, key=lambda one: one[1].slack_s)
+    if least.slack_s < 0.0 and (late := decides_too_late(case, load, rail)):
+        return case.not_applicable(late)
     works_v = dict(_load_part(lines, load).works)[rail].least
+    missed = _deepest_missed(lines, load, rail)
+    if least.first_s < FOREVER_S and missed is not None and _depth_v(missed) < works_v:
+        return case.not_applicable(f"a dip of {rail} may be missed altogether (start_up/dip_is_caught says so)")
     if least.first_s == FOREVER_S:
         return case.fails(
             f"its reset may never be asserted when {rail} falls",
@@ -256,17 +284,18 @@ def reset_is_asserted_in_time(load: Load, case: Case) -> Judgement:
     mend="a higher falling level, a shorter filter, or an output that is a level for every supply below the threshold",
     sources=(_DERIVED,),
     example=Example(
-        fails="comparators: {uv: {trip: {rising: 1.64 V, falling: 1.59 V}}}",
-        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+        fails="comparators: {uv: {output: pulse, pulse: {min: 20 us, max: 30 us}}}",
+        holds="comparators: {uv: {output: level}}",
     ),
 )  # fmt: skip
+@unless_told
 def dip_is_caught(load: Load, case: Case) -> Judgement:
     """Compare the deepest dip that may be missed with the least supply at which the load works."""
     lines = timelines(case.description, case.graph)
     nets = _nets(case, load)
     if not nets:
         return case.not_applicable(_NO_NET)
-    _ask(case, (path for net in nets for path in lines.missing(net, latest=True)))
+    _ask(case, (path for net in nets for path in lines.missing(net, latest=True, rails_forced=True)))
     _ask(case, lines.missing(load.id, starts=True, falls=True))
     margins: list[tuple[float, float, float, str, Timeline]] = []
     unseen: list[str] = []
@@ -276,15 +305,17 @@ def dip_is_caught(load: Load, case: Case) -> Judgement:
         if slack is None or slack.first_s == FOREVER_S:
             unseen.append(rail)
             continue
-        missed = [line for line in lines.dips(rail) if is_missed(line, load.id)]
-        if missed:
-            deepest = min(missed, key=_depth_v)
-            margins.append((_depth_v(deepest) - works.least, works.least, _depth_v(deepest), rail, deepest))
+        deepest = _deepest_missed(lines, load, rail)
+        if deepest is not None:
+            depth_v = _depth_v(deepest)
+            margins.append((depth_v - works.least, works.least, depth_v, rail, deepest))
     if not margins:
         rails = " and ".join(unseen)
         said = f"its reset is not asserted even when {rails} falls (start_up/asserts_in_time says so)"
         return case.not_applicable(said if unseen else "no dip can be missed")
-    _, need_v, have_v, rail, line = min(margins, key=lambda margin: margin[0])
+    margin_v, need_v, have_v, rail, line = min(margins, key=lambda margin: margin[0])
+    if margin_v < 0.0 and (late := decides_too_late(case, load, rail)):
+        return case.not_applicable(late)
     return case.at_least(
         need=need_v, have=have_v, dimension=_V, says=f"the deepest dip of {rail} that may be missed goes down to",
         why=f"{line.scenario.about}; the load works down to {show(need_v, _V)}",
@@ -292,50 +323,14 @@ def dip_is_caught(load: Load, case: Case) -> Judgement:
     )  # fmt: skip
 
 
+def _deepest_missed(lines: Timelines, load: Load, rail: str) -> Timeline | None:
+    """The deepest dip of a rail that may pass without the load being reset; None where every one is caught."""
+    return min((line for line in lines.dips(rail) if is_missed(line, load.id)), key=_depth_v, default=None)
+
+
 def _depth_v(line: Timeline) -> float:
     """The lowest level of a dip, in V."""
     return min(level_v for _, level_v in line.scenario.waveforms[line.scenario.rail].points)
-
-
-@rule(
-    "start_up/ramp_within_declared",
-    title="the slowest ramp is steep enough for every start-up circuit",
-    level=Level.ERROR,
-    applies_to="rails",
-    proves="The slowest ramp of the rail is no slower than the least slope at which the start-up circuit of any "
-    "reference or bias fed from it still works.",
-    facts=("rails.*.nominal and rise", "references.*.start_up.least_slope", "biases.*.start_up.least_slope"),
-    mend="a start-up circuit that any ramp will start, or a supply that rises faster",
-    sources=("slope is height over time (derived)",),
-    example=Example(
-        fails="references: {ref_fast: {start_up: {least_slope: 1 V/ms}}}",
-        holds="references: {ref_fast: {start_up: {least_slope: 0 V/s}}}",
-    ),
-    formulas=(ramp.ramp_slope_v_per_s,),
-)
-def ramp_is_steep_enough(rail: Rail, case: Case) -> Judgement:
-    """Compare the slope of the slowest ramp with the largest that a start-up circuit on the rail needs."""
-    started = [
-        element
-        for domain in case.graph.tails(rail.id, EdgeKind.SUPPLIED_BY)
-        for name in case.graph.tails(domain, EdgeKind.SUPPLIED_BY)
-        if isinstance(getattr(element := case.graph.elements[name], "start_up", None), StartUp)
-    ]
-    if not started:
-        return case.not_applicable("no start-up circuit is fed from it")
-    slopes = {element.id: case.of(element).most("start_up.least_slope") for element in started}
-    nominal_v, rise_s = case.own.middle("nominal"), case.own.most("rise")
-    case.settle()
-    slope_v_per_s = ramp.ramp_slope_v_per_s(rise_v=nominal_v, rise_s=rise_s)
-    neediest = max(slopes, key=slopes.__getitem__)
-    need = slopes[neediest]
-    path: Path = (Hop(neediest, ""), Hop(rail.id, "is started by a ramp of"))
-    return case.at_least(
-        need=need, have=slope_v_per_s, dimension=_SLOPE, says=f"slowest ramp, for the start-up circuit of {neediest},",
-        why=f"{show(nominal_v, _V)} in {show(rise_s, _T)}",
-        mend=f"a rise within {show_down(nominal_v / need if need > 0.0 else FOREVER_S, _T)}, or a start-up circuit "
-        f"that works at {show_down(slope_v_per_s, _SLOPE)}", at="rise", path=path,
-    )  # fmt: skip
 
 
 @rule(
@@ -354,6 +349,7 @@ def ramp_is_steep_enough(rail: Rail, case: Case) -> Judgement:
         holds="resets: {por_n: {guards: [adc, core_regulator]}}",
     ),
 )
+@unless_told
 def rails_keep_their_order(rail: Rail, case: Case) -> Judgement:
     """Compare the earliest begin of the rail with the latest time at which the one before it is up."""
     if rail.id in rails_before(case, rail):
@@ -382,6 +378,5 @@ RULES: Final[tuple[Rule, ...]] = (
     no_unknown_interval,
     reset_is_asserted_in_time,
     dip_is_caught,
-    ramp_is_steep_enough,
     rails_keep_their_order,
 )

@@ -5,41 +5,34 @@ from __future__ import annotations
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.crossover_level import CrossoverLevel, Place, divider_level, second_crossing_level
+from tidegate.lint.derived.at_code import as_shipped
+from tidegate.lint.derived.crossover_facts import Crossing
+from tidegate.lint.derived.crossover_level import CrossoverLevel, Place, release_level, second_crossing_level
+from tidegate.lint.derived.crossover_words import NO_LEVEL, corner_text
+from tidegate.lint.derived.follower_lines import follower_lines, most_demanding
 from tidegate.lint.derived.follower_supplies import follower_supplies
 from tidegate.lint.derived.guarded_loads import Bound
-from tidegate.lint.derived.at_code import as_shipped
 from tidegate.lint.derived.safe_rounding import show_up
 from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.judgement import Judgement, Level
-from tidegate.lint.physics import crossing_point
+from tidegate.lint.physics import crossing_point, device_at_corner
 from tidegate.lint.physics.crossing_point import NoCrossingError
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 
 _V: Final = Dimension.VOLTAGE
-_DIVIDERS: Final = ("divider_diode", "divider_mos")
 _FACTS: Final = (
-    "comparators.*.crossover", "process.diodes.*, or process.devices.*", "conditions.junction_temperature",
+    "comparators.*.crossover", "process.diodes.*, or process.devices.*", "process.resistors.*, where one is named",
+    "conditions.junction_temperature",
 )  # fmt: skip
 _SPICE: Final = "saturation-current law of the SPICE junction models (Nagel, Memorandum ERL-M520, 1975)"
 _EKV: Final = "Enz, Krummenacher and Vittoz, Analog Integrated Circuits and Signal Processing 8, 83-114 (1995)"
-_UNITS: Final = {
-    "threshold": Dimension.VOLTAGE, "threshold slope": Dimension.TEMPERATURE_SLOPE, "gain": Dimension.GAIN_FACTOR,
-    "resistance": Dimension.RESISTANCE, "saturation current": Dimension.CURRENT,
-    "reference current": Dimension.CURRENT,
-}  # fmt: skip
-
-
-def _no_divider(comparator: Comparator, case: Case) -> Judgement | None:
-    if comparator.crossover is None:
-        return case.not_applicable("its level comes from a reference, not from a crossover")
-    if case.own.must("crossover.kind") in _DIVIDERS:
-        return None
-    return case.not_applicable(
-        "its level depends on how the reference current comes up; trip_window/second_crossing judges it in service"
-    )
+_NO_CROSSOVER: Final = "its level comes from a reference, not from a crossover"
+_MORE_HOLD: Final = {
+    Crossing.DIVIDER: "a smaller ratio, or a smaller resistance, so that the device is ahead at low supply",
+    Crossing.REFERENCE: "a larger reference current, a smaller rise, a larger resistance, or a smaller mirror ratio",
+}
 
 
 @rule(
@@ -48,9 +41,12 @@ def _no_divider(comparator: Comparator, case: Case) -> Judgement | None:
     level=Level.ERROR,
     applies_to="comparators",
     proves="The level at which the divided supply overtakes a diode or a diode-connected MOS device fed through a "
-    "resistor, solved at every corner of what is given (threshold, its slope, gain, resistance, saturation current and "
-    "offset at the ends of their spans) and over the range of temperature, lies inside the rising level as it is "
-    "stated. At every corner there is such a level; else nothing holds reset.",
+    "resistor, or at which a reference current, as it comes up in a straight line, overtakes the mirrored current of "
+    "such a branch, lies inside the rising level as it is stated. It is solved at every corner of what is given "
+    "(threshold, its slope, gain, resistance, saturation current, offset, and the reference's current, start and rise "
+    "at the ends of their spans) and over the range of temperature. Where the resistor's kind is named, its resistance "
+    "follows tc1 and tc2; else it is taken as stated at every temperature. At every corner there is such a level; else "
+    "nothing holds reset, or nothing lets go.",
     facts=(*_FACTS, "comparators.*.trip.rising"),
     mend="state the level that the components make, or change the components",
     sources=(_SPICE, _EKV),
@@ -59,25 +55,22 @@ def _no_divider(comparator: Comparator, case: Case) -> Judgement | None:
         holds="comparators: {por: {crossover: {ratio: 0.5}}}",
     ),
     formulas=(
-        crossing_point.divider_crossing_v, crossing_point.junction_at, crossing_point.diode_connected_at,
-        crossing_point.slope_factor_of_swing,
+        crossing_point.divider_crossing_v, crossing_point.reference_crossing_v, device_at_corner.junction_at,
+        device_at_corner.diode_connected_at, device_at_corner.slope_factor_of_swing, device_at_corner.series_ohm_at,
     ),
 )  # fmt: skip
 def components_make_the_level(comparator: Comparator, case: Case) -> Judgement:
     """Compare the window worked out with the one stated."""
-    if (other := _no_divider(comparator, case)) is not None:
-        return other
+    if comparator.crossover is None:
+        return case.not_applicable(_NO_CROSSOVER)
     shipped = as_shipped(case, comparator)
-    level, stated = case.gather(lambda: divider_level(case, comparator), lambda: rising_window(case, shipped))
+    level, stated = case.gather(lambda: release_level(case, comparator), lambda: rising_window(case, shipped))
     try:
         least, most = level.least(), level.most()
         swings = level.swings_v()
     except NoCrossingError:
-        return case.fails(
-            "at some corner the divided supply is ahead from the start: nothing holds reset at any supply",
-            mend="a smaller ratio, or a smaller resistance, so that the device is ahead at low supply",
-            at="crossover",
-        )
+        crossing = Crossing.REFERENCE if comparator.crossover.kind == "crude_current" else Crossing.DIVIDER
+        return case.fails(NO_LEVEL[crossing], mend=_MORE_HOLD[crossing], at="crossover")
     parts = ", ".join(f"{name} {show(width_v, _V)}" for name, width_v in swings if width_v > 0.0)
     why = (
         f"components {show(least.level_v, _V)} to {show(most.level_v, _V)}, stated {show(stated.least_v, _V)} to "
@@ -97,11 +90,7 @@ def components_make_the_level(comparator: Comparator, case: Case) -> Judgement:
 
 def _where(place: Place) -> str:
     """The temperature and corner of a level, in words."""
-    words = [
-        f"{name} {show(value, _UNITS.get(name, _V)) if value >= 0.0 else '-' + show(-value, _V)}"
-        for name, value in place.corner.items()
-    ]
-    return f"at {show(place.t_k, Dimension.TEMPERATURE)} with {', '.join(words)}"
+    return corner_text(place.corner, place.t_k)
 
 
 @rule(
@@ -122,33 +111,30 @@ def _where(place: Place) -> str:
         fails="references: {ref_fast: {works_from: {max: 1.3 V}}}",
         holds="references: {ref_fast: {works_from: {max: 1.06 V}}}",
     ),
-    formulas=(crossing_point.divider_crossing_v,),
+    formulas=(crossing_point.divider_crossing_v, crossing_point.reference_crossing_v),
 )  # fmt: skip
 def level_tracks_followers(comparator: Comparator, case: Case) -> Judgement:
     """Find the corner and temperature with the least room."""
-    if (other := _no_divider(comparator, case)) is not None:
-        return other
+    if comparator.crossover is None:
+        return case.not_applicable(_NO_CROSSOVER)
     if comparator.role != "power_on":
         return case.not_applicable("only a power-on detector lets go what is not up yet")
     if case.attempt(lambda: follower_supplies(case, comparator)) == []:
         return case.not_applicable("nothing follows it on this rail")
     level, bounds, kept_v = case.gather(
-        lambda: divider_level(case, comparator),
+        lambda: release_level(case, comparator),
         lambda: follower_supplies(case, comparator),
         lambda: 0.0 if has_no_hysteresis(comparator) else hysteresis_window(case, as_shipped(case, comparator)).most_v,
     )
-    lines = [_line(case, bound) for bound in bounds]
-    case.settle()
-    cold_k = level.temperature_k[0]
-
-    def needs(t_k: float) -> tuple[float, str]:
-        return max((at_cold_v + slope * (t_k - cold_k), element) for at_cold_v, slope, element in lines)
-
+    lines, cold_k = follower_lines(case, bounds), level.temperature_k[0]
     try:
-        worst = level.where_least(lambda place: place.level_v - needs(place.t_k)[0])
+        worst = level.where_least(
+            lambda place: place.level_v - most_demanding(lines, place.t_k, cold_k).needs_v(place.t_k, cold_k)
+        )
     except NoCrossingError:
         return case.not_applicable("at some corner there is no level at all (trip_window/crossover_level says so)")
-    need_v, element = needs(worst.t_k)
+    demanding = most_demanding(lines, worst.t_k, cold_k)
+    element, need_v = demanding.element, demanding.needs_v(worst.t_k, cold_k)
     have_v = worst.level_v - kept_v
     return case.at_least(
         need=need_v,
@@ -159,15 +145,6 @@ def level_tracks_followers(comparator: Comparator, case: Case) -> Judgement:
         mend=f"a level at least {show_up(need_v - have_v, _V)} higher, or {element} working from that much less",
         at="crossover",
     )
-
-
-def _line(case: Case, bound: Bound) -> tuple[float, float, str]:
-    """What a follower works from at the cold end in V, how that moves in V/K where it helps least, and its id."""
-    reference = case.description.references.get(bound.element)
-    if reference is None or reference.works_from_slope is None:
-        return bound.level_v, 0.0, bound.element
-    facts = case.of(reference)
-    return facts.most("works_from"), facts.most("works_from_slope"), bound.element
 
 
 def _extremes(level: CrossoverLevel, bounds: list[Bound], kept_v: float) -> str:
@@ -196,7 +173,7 @@ def _extremes(level: CrossoverLevel, bounds: list[Bound], kept_v: float) -> str:
 def no_second_crossing(comparator: Comparator, case: Case) -> Judgement:
     """Compare the supply of the second crossing with the highest in service."""
     if comparator.crossover is None:
-        return case.not_applicable("its level comes from a reference, not from a crossover")
+        return case.not_applicable(_NO_CROSSOVER)
     if case.own.must("crossover.kind") != "crude_current":
         return case.not_applicable("its crossover compares voltages: the divided supply stays ahead")
     facts = case.of(case.description.rails[comparator.watches])

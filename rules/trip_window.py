@@ -8,8 +8,16 @@ from typing import Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import as_shipped, at_code
-from tidegate.lint.derived.guarded_loads import greatest_supplies, least_supplies
-from tidegate.lint.derived.level_margins import LevelMargin, comes_back, guarantee, protects_nothing, quiet
+from tidegate.lint.derived.guarded_loads import Bound, greatest_supplies, least_supplies
+from tidegate.lint.derived.level_margins import (
+    LevelMargin,
+    comes_back,
+    guarantee,
+    protects_nothing,
+    quiet,
+    short_at_once,
+)
+from tidegate.lint.derived.level_room import NEVER_APART, level_room, tracks_its_bound
 from tidegate.lint.derived.placement_facts import PLACED_ROLES
 from tidegate.lint.derived.response import response
 from tidegate.lint.derived.safe_rounding import show_down, show_up
@@ -23,7 +31,6 @@ from tidegate.lint.rule import Example, Rule, rule
 from tidegate.rules import trip_crossover, trip_order
 
 _V: Final = Dimension.VOLTAGE
-_TIE: Final = 1e-9  # what rounding leaves of an exact tie, as a share
 _COMMON_PRACTICE: Final = "common practice, no source: the levels of a supply detector, their errors taken off, keep "
 _LEVELS: Final = (
     "comparators.*.trip (or codes and ships_with), with errors or ranges",
@@ -76,7 +83,7 @@ def _move(found: LevelMargin) -> str:
     "after it with their references and bias, and loads for which no under-voltage detector stands. F and R are the "
     "falling and the rising level at the end that is worst, s is the steepest collapse or overshoot of the rail and t "
     "the longest delay plus filter plus sampling period. A load that does not say from or up to which supply it works "
-    "leaves this open.",
+    "leaves this open. Levels that were placed the wrong way round are left to trip_window/placement_sense.",
     facts=(*_LEVELS, *_RESPONSE, "loads.*.needs.*.works", "works_from of what follows a power-on detector"),
     mend="levels further in, a smaller error, or a faster answer",
     sources=(_COMMON_PRACTICE + "what they guard inside its working range until the detector has answered",),
@@ -95,10 +102,15 @@ def guarded_before_out_of_range(comparator: Comparator, case: Case) -> Judgement
         return other
     if protects_nothing(case, comparator):
         return _nothing_leans(comparator, case)
-    found = guarantee(case, as_shipped(case, comparator))
+    shipped = as_shipped(case, comparator)
+    if case.attempt(lambda: _placed_by_release(case, comparator)) is not None:
+        return case.not_applicable("is placed by the level that lets go (trip_window/placement_sense says so)")
+    short = short_at_once(case, shipped)
+    if short is not None:
+        return _measured(comparator, case, short, _move(short))
+    found = guarantee(case, shipped)
     assert found is not None and found.bound is not None
-    follower = found.bound.element not in case.description.loads
-    if found.margin_v < 0.0 and comparator.crossover is not None and follower:
+    if not found.is_kept and tracks_its_bound(case, comparator, found):
         return case.not_applicable(
             f"extreme against extreme its {found.level.value} level can lie {show(-found.margin_v, _V)} below what "
             f"{found.bound.element} works from; both move with temperature, and trip_window/crossover_tracks compares "
@@ -131,8 +143,10 @@ def _faster(found: LevelMargin) -> str:
     mend="levels further out, a smaller error, or a supply that stays in a smaller range",
     sources=(_COMMON_PRACTICE + "clear of the supply in service",),
     example=Example(
-        fails="comparators: {uv: {trip: {rising: 1.736 V, falling: 1.686 V}}}",
-        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+        fails="comparators: {uv: {trip: {rising: 1.736 V, falling: 1.686 V}, "
+        "divider: {ratio: 0.351, top: 3.88 Mohm, bottom: 2.1 Mohm}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}, "
+        "divider: {ratio: 0.367, top: 3.8 Mohm, bottom: 2.2 Mohm}}}",
     ),
     formulas=(
         trip_margin.under_voltage_quiet_v, trip_margin.over_voltage_quiet_v, trip_margin.power_on_quiet_v,
@@ -142,8 +156,12 @@ def quiet_in_service(comparator: Comparator, case: Case) -> Judgement:
     """Compare the asserting level with the supply in service."""
     if (other := _not_placed(comparator, case)) is not None:
         return other
-    found = quiet(case, as_shipped(case, comparator))
-    return _measured(comparator, case, found, _move(found))
+    shipped = as_shipped(case, comparator)
+    found = quiet(case, shipped)
+    returns = case.attempt(lambda: comes_back(case, shipped))
+    furthest = found if returns is None else min(found, returns, key=lambda level: level.margin_v)
+    also = "" if furthest is found else " (so that it lets go in service too)"
+    return _measured(comparator, case, found, f"{_move(furthest)}{also}")
 
 
 @rule(
@@ -153,7 +171,9 @@ def quiet_in_service(comparator: Comparator, case: Case) -> Judgement:
     applies_to="comparators",
     proves="Under-voltage and power-on: R_hi <= lowest supply delivered - ripple/2, so that the chip starts on the "
     "lowest supply it may get. Over-voltage: F_lo >= highest supply delivered + ripple/2, so that a report ends once "
-    "the supply is back in service. R and F are the rising and the falling level at the end that is worst.",
+    "the supply is back in service. R and F are the rising and the falling level at the end that is worst. Where no "
+    "place of the levels would keep this and trip_window/guarantee, trip_window/spread or hysteresis/fits_window says "
+    "so instead; where the detector trips in service already, trip_window/nuisance does.",
     facts=(*_LEVELS, "rails.*.delivered", "rails.*.ripple.peak_to_peak"),
     mend="levels further out, less hysteresis, or a smaller error",
     sources=(_COMMON_PRACTICE + "a way back into service",),
@@ -171,13 +191,19 @@ def lets_go_in_range(comparator: Comparator, case: Case) -> Judgement:
     if (other := _not_placed(comparator, case)) is not None:
         return other
     found = comes_back(case, as_shipped(case, comparator))
+    room = None if found.is_kept else case.attempt(lambda: level_room(case, comparator))
+    if room is not None and not room.apart_by_description and not (room.spread_fits and room.hysteresis_fits):
+        judge = "hysteresis/fits_window" if room.spread_fits else "trip_window/spread"
+        return case.not_applicable(f"no place of its levels keeps this and trip_window/guarantee ({judge} says so)")
+    if not found.is_kept and not quiet(case, as_shipped(case, comparator)).is_kept:
+        return case.not_applicable("it trips in service already (trip_window/nuisance says so)")
     return _measured(comparator, case, found, f"{_move(found)}, or less hysteresis")
 
 
 @rule(
     "trip_window/placement_sense",
     title="the level that asserts, not the one that lets go, is placed against what is guarded",
-    level=Level.WARNING,
+    level=Level.ERROR,
     applies_to="comparators",
     proves="Not both: F_hi below the least supply of the most demanding load, and R_hi at or above it. Levels placed "
     "so that the detector surely has let go above the load's least supply leave it silent below, down to F_lo less the "
@@ -190,8 +216,10 @@ def lets_go_in_range(comparator: Comparator, case: Case) -> Judgement:
         "detector may stay silent down to 1.53 V",
     ),
     example=Example(
-        fails="comparators: {uv: {trip: {rising: 1.61 V, falling: 1.56 V}}}",
-        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
+        fails="comparators: {uv: {trip: {rising: 1.61 V, falling: 1.56 V}, "
+        "divider: {ratio: 0.378, top: 3.73 Mohm, bottom: 2.27 Mohm}}}",
+        holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}, "
+        "divider: {ratio: 0.367, top: 3.8 Mohm, bottom: 2.2 Mohm}}}",
     ),
 )
 def asserted_level_is_placed(comparator: Comparator, case: Case) -> Judgement:
@@ -200,37 +228,53 @@ def asserted_level_is_placed(comparator: Comparator, case: Case) -> Judgement:
         return case.not_applicable("is placed by what must work once it lets go (trip_window/guarantee)")
     if protects_nothing(case, comparator):
         return _nothing_leans(comparator, case)
+    wrong = _placed_by_release(case, comparator)
+    if wrong is not None:
+        return wrong
     over = comparator.role == "over_voltage"
-    shipped = as_shipped(case, comparator)
-    falling, rising, bounds = case.gather(
-        lambda: falling_window(case, shipped),
-        lambda: rising_window(case, shipped),
-        lambda: greatest_supplies(case, comparator) if over else least_supplies(case, comparator),
-    )
-    first = bounds[0]
-    level_v = first.level_v
-    wrong = falling.least_v <= level_v < rising.least_v if over else falling.most_v < level_v <= rising.most_v
-    if wrong:
-        moved_v = case.attempt(lambda: response(case, comparator).moved_v) or 0.0
-        end_v = rising.most_v + moved_v if over else falling.least_v - moved_v
-        side, up_to = ("up", "up to") if over else ("down", "from")
-        short_v = end_v - level_v if over else level_v - end_v
-        return case.fails(
-            f"is placed by the level that lets go: it may stay silent {side} to {show(end_v, _V)}, and {first.element} "
-            f"works {up_to} {show(level_v, _V)}",
-            why=f"falling {_text(falling)}, rising {_text(rising)}",
-            mend=f"both levels {show_up(short_v, _V)} further {'down' if over else 'up'}",
-            at=_at(comparator, "rising" if over else "falling"),
-            path=first.path,
-        )
-    beyond = falling.least_v > level_v if over else rising.most_v < level_v
+    falling, rising, first = _levels_and_load(case, comparator)
+    beyond = falling.least_v > first.level_v if over else rising.most_v < first.level_v
     if beyond:
         return case.not_applicable(
             f"both levels lie outside what {first.element} works with (trip_window/guarantee says so)"
         )
     return case.passes(
-        f"is placed by the level that asserts, against {first.element} at {show(level_v, _V)}",
+        f"is placed by the level that asserts, against {first.element} at {show(first.level_v, _V)}",
         at=_at(comparator, "rising" if over else "falling"),
+    )
+
+
+def _levels_and_load(case: Case, comparator: Comparator) -> tuple[trip_window.Window, trip_window.Window, Bound]:
+    """The falling and the rising level, and the most demanding load."""
+    over, shipped = comparator.role == "over_voltage", as_shipped(case, comparator)
+    falling, rising, bounds = case.gather(
+        lambda: falling_window(case, shipped),
+        lambda: rising_window(case, shipped),
+        lambda: greatest_supplies(case, comparator) if over else least_supplies(case, comparator),
+    )
+    return falling, rising, bounds[0]
+
+
+def _placed_by_release(case: Case, comparator: Comparator) -> Judgement | None:
+    """The finding, where what is guarded lies between the two levels; None where it does not."""
+    if comparator.role == "power_on":
+        return None
+    over = comparator.role == "over_voltage"
+    falling, rising, first = _levels_and_load(case, comparator)
+    level_v = first.level_v
+    if not (falling.least_v <= level_v < rising.least_v if over else falling.most_v < level_v <= rising.most_v):
+        return None
+    moved_v = case.attempt(lambda: response(case, comparator).moved_v) or 0.0
+    end_v = rising.most_v + moved_v if over else falling.least_v - moved_v
+    side, up_to = ("up", "up to") if over else ("down", "from")
+    short_v = end_v - level_v if over else level_v - end_v
+    return case.fails(
+        f"is placed by the level that lets go: it may stay silent {side} to {show(end_v, _V)}, and {first.element} "
+        f"works {up_to} {show(level_v, _V)}",
+        why=f"falling {_text(falling)}, rising {_text(rising)}",
+        mend=f"both levels {show_up(short_v, _V)} further {'down' if over else 'up'}",
+        at=_at(comparator, "rising" if over else "falling"),
+        path=first.path,
     )
 
 
@@ -245,39 +289,38 @@ def _text(window: trip_window.Window) -> str:
     title="the rail has room for the spread of the levels",
     level=Level.ERROR,
     applies_to="comparators",
-    proves="R_hi - F_lo, which is the hysteresis and the error on either side, is at most the room between the limit "
-    "of trip_window/guarantee and that of trip_window/release. With less room than that no place of the levels keeps "
-    "both.",
+    proves="F_hi - F_lo (over-voltage: R_hi - R_lo), the error of the level that protects either way, is at most the "
+    "room between the limit of trip_window/guarantee and that of trip_window/release. With less room than that no "
+    "place of the levels keeps both, with the least hysteresis. What is left must hold the hysteresis: "
+    "hysteresis/fits_window judges it.",
     facts=("the facts of trip_window/guarantee and of trip_window/release",),
-    mend="a smaller error, less hysteresis, a faster answer, or a load that works with more",
+    mend="a smaller error, a faster answer, or a load that works with more",
     sources=("the two inequalities added (derived)",),
     example=Example(
-        fails="comparators: {uv: {errors: {reference: {share: 1.6 %}}}}",
+        fails="comparators: {uv: {errors: {reference: {share: 3 %}}}}",
         holds="comparators: {uv: {errors: {reference: {share: 0.4 %}}}}",
     ),
 )
 def spread_has_room(comparator: Comparator, case: Case) -> Judgement:
-    """Compare what the levels take with what the rail leaves them."""
+    """Compare the spread of the level that protects with what the rail leaves between its limits."""
     if (other := _not_placed(comparator, case)) is not None:
         return other
     if protects_nothing(case, comparator):
         return _nothing_leans(comparator, case)
-    shipped = as_shipped(case, comparator)
-    protects, returns = case.gather(lambda: guarantee(case, shipped), lambda: comes_back(case, shipped))
-    assert protects is not None and protects.bound is not None
-    if comparator.crossover is not None and protects.bound.element not in case.description.loads:
+    room = level_room(case, comparator)
+    if room is None:
         return case.not_applicable(
-            f"its level and what {protects.bound.element} needs move together with temperature "
-            "(trip_window/crossover_tracks compares them)"
+            "its level and what follows it move together with temperature (trip_window/crossover_tracks compares them)"
         )
-    room_v = abs(returns.limit_v - protects.limit_v)
-    if (returns.limit_v > protects.limit_v) is (comparator.role == "over_voltage"):
-        room_v = -room_v
-    spread_v = abs(returns.end_v - protects.end_v)
+    if room.apart_by_description:
+        return case.not_applicable(NEVER_APART)
     return case.at_most(
-        need=room_v, have=spread_v, dimension=_V, says="from the lowest falling to the highest rising level",
-        why=f"{protects.why}; {returns.why}",
-        mend=f"error and hysteresis {show_up(spread_v - room_v, _V)} smaller together",
+        need=room.room_v, have=room.spread_v, dimension=_V,
+        says=f"spread of its {room.protects.level.value} level",
+        why=f"{room.protects.why}; {room.returns.why}",
+        mend=f"an error {show_up((room.spread_v - room.room_v) / 2, _V)} smaller either way, and room for hysteresis"
+        if room.room_v > 0.0
+        else "a faster answer, or a load that works with more: as it is, no level keeps both limits",
         at="errors" if comparator.errors else "trip",
     )  # fmt: skip
 
@@ -336,7 +379,7 @@ def _shortfalls(comparator: Comparator, case: Case) -> dict[str, str]:
     margins = case.gather_all([partial(check, case, at_code(comparator, code)) for code, _, check in asked])
     short: dict[str, list[str]] = {code: [] for code in comparator.codes}
     for (code, name, _), found in zip(asked, margins, strict=True):
-        if found is not None and found.margin_v < -_TIE * abs(found.limit_v):
+        if found is not None and not found.is_kept:
             short[code].append(f"{show(-found.margin_v, _V)} short of trip_window/{name}")
     return {code: ", ".join(texts) for code, texts in short.items()}
 

@@ -39,6 +39,8 @@ def ask(description: Description, graph: Graph, element: Element, question: Call
     except MissingFactsError as error:
         return Unknown(error.missing, "")
     except DomainError as error:
+        if case.missing:  # a number that is not there yet may be what the formula refused
+            return Unknown(tuple(dict.fromkeys(case.missing)), "")
         return Unknown((), f"the numbers given lie outside the range of the formula: {error}")
     except NoAnswerError as error:
         return Unknown((), str(error))

@@ -5,27 +5,27 @@ from __future__ import annotations
 import itertools
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from functools import cached_property
+from functools import cached_property, partial
 from typing import Final
 
-from tidegate.lint.case import Case, Facts
-from tidegate.lint.description.model.detector import Comparator, Crossover
-from tidegate.lint.physics.crossing_point import (
-    Device,
-    branch_level_v,
-    diode_connected_at,
-    divider_crossing_v,
-    junction_at,
-    slope_factor_of_swing,
+from tidegate.lint.case import Case
+from tidegate.lint.derived.crossover_facts import (
+    Crossing,
+    CrossoverFacts,
+    JunctionFacts,
+    release_facts,
+    second_crossing_facts,
 )
+from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.physics.crossing_point import branch_level_v, divider_crossing_v, reference_crossing_v
+from tidegate.lint.physics.device_at_corner import Device, diode_connected_at, junction_at, series_ohm_at
 
 _POINTS: Final = 5
 _FINER_POINTS: Final = 9
-_REFINEMENTS: Final = 2
+_REFINEMENTS: Final = 3
 """A level is all but straight over temperature: few points find the corner, finer ones the place of the extreme."""
 
 Corner = Mapping[str, float]
-DeviceAt = Callable[[Corner, float], Device]
 
 
 @dataclass(frozen=True, slots=True)
@@ -110,22 +110,13 @@ class CrossoverLevel:
                 yield Place(self.at_v(corner, t_k), t_k, corner)
 
 
-def divider_level(case: Case, comparator: Comparator) -> CrossoverLevel:
-    """The level of a divider against a diode or a MOS device, which is the rising one.
+def release_level(case: Case, comparator: Comparator) -> CrossoverLevel:
+    """The level at which a detector lets go: of a divider, or of a reference current as it comes up.
 
     Every span is taken at its ends, at every temperature.
     Raises: MissingFactsError: where a fact is missing.
     """
-    own, crossover = case.of(comparator), comparator.crossover
-    assert crossover is not None
-    ratio, offset_v = own.number("crossover.ratio"), own.most("crossover.offset")
-    spans = {"resistance": _ends(own, "crossover.resistance"), "offset": (-offset_v, offset_v)}
-    return _level(
-        case, comparator, crossover, spans,
-        lambda device, corner: divider_crossing_v(
-            device, series_ohm=corner["resistance"], divider_ratio=ratio, offset_v=corner["offset"]
-        ),
-    )  # fmt: skip
+    return level_of(release_facts(case, comparator))
 
 
 def second_crossing_level(case: Case, comparator: Comparator) -> CrossoverLevel:
@@ -133,73 +124,59 @@ def second_crossing_level(case: Case, comparator: Comparator) -> CrossoverLevel:
 
     Raises: MissingFactsError: where a fact is missing.
     """
-    own, crossover = case.of(comparator), comparator.crossover
-    assert crossover is not None
-    mirror = own.number("crossover.mirror")
-    spans = {
-        "resistance": _ends(own, "crossover.resistance"),
-        "reference current": _ends(own, "crossover.reference_current"),
-    }
-    return _level(
-        case, comparator, crossover, spans,
-        lambda device, corner: branch_level_v(
-            device, series_ohm=corner["resistance"], current_a=corner["reference current"] / mirror
-        ),
-    )  # fmt: skip
+    return level_of(second_crossing_facts(case, comparator))
 
 
-def _level(
-    case: Case, comparator: Comparator, crossover: Crossover, spans: dict[str, tuple[float, ...]],
-    level_v: Callable[[Device, Corner], float],
-) -> CrossoverLevel:  # fmt: skip
-    whole = case.whole
-    temperature_k = whole.least("conditions.junction_temperature"), whole.most("conditions.junction_temperature")
-    crude = crossover.kind == "crude_current"
-    by_diode = crossover.diode is not None and crossover.device is None if crude else crossover.kind == "divider_diode"
-    device_spans, device_at = (_diode if by_diode else _mos)(case, comparator)
-    case.settle()
-    return CrossoverLevel(
-        spans={**device_spans, **spans},
-        temperature_k=temperature_k,
-        at_v=lambda corner, t_k: level_v(device_at(corner, t_k), corner),
+def level_of(facts: CrossoverFacts) -> CrossoverLevel:
+    """The level of a crossing, solved corner by corner; ``crossover_sweep`` solves all corners at once."""
+    return CrossoverLevel(spans=facts.spans, temperature_k=facts.temperature_k, at_v=partial(_at_v, facts))
+
+
+def _at_v(facts: CrossoverFacts, corner: Corner, t_k: float) -> float:
+    device, series_ohm = _device_at(facts, corner, t_k), _series_ohm(facts, corner, t_k)
+    if facts.crossing is Crossing.DIVIDER:
+        return divider_crossing_v(device, series_ohm=series_ohm, divider_ratio=facts.ratio, offset_v=corner["offset"])
+    current_a = corner["reference current"]
+    if facts.crossing is Crossing.CRUDE:
+        return branch_level_v(device, series_ohm=series_ohm, current_a=current_a / facts.ratio)
+    return reference_crossing_v(
+        device,
+        series_ohm=series_ohm,
+        mirror_ratio=facts.ratio,
+        start_v=corner["reference start"],
+        rise_v=corner["reference rise"],
+        regulated_a=current_a,
     )
 
 
-def _diode(case: Case, comparator: Comparator) -> tuple[dict[str, tuple[float, ...]], DeviceAt]:
-    name = case.of(comparator).must("crossover.diode")
-    process = case.description.process
-    assert process is not None  # the loader refuses a name that points nowhere
-    facts = case.part(process.diodes[name], f"process.diodes.{name}")
-    spans = {"saturation current": _ends(facts, "saturation")}
-    t_ref_k, gap_ev = facts.middle("reference_temperature"), facts.middle("band_gap")
-    exponent, emission = facts.number("temperature_exponent"), facts.number("emission")
-    return spans, lambda corner, t_k: junction_at(
-        t_k=t_k, saturation_ref_a=corner["saturation current"], t_ref_k=t_ref_k, temperature_exponent=exponent,
-        gap_ev=gap_ev, emission=emission,
-    )  # fmt: skip
+def _device_at(facts: CrossoverFacts, corner: Corner, t_k: float) -> Device:
+    device = facts.device
+    if isinstance(device, JunctionFacts):
+        return junction_at(
+            t_k=t_k,
+            saturation_ref_a=corner["saturation current"],
+            t_ref_k=device.t_ref_k,
+            temperature_exponent=device.temperature_exponent,
+            gap_ev=device.gap_ev,
+            emission=device.emission,
+        )
+    return diode_connected_at(
+        t_k=t_k,
+        threshold_ref_v=corner["threshold"],
+        t_ref_k=device.t_ref_k,
+        fall_v_per_k=corner["threshold slope"],
+        slope_factor=device.slope_factor,
+        gain_a_per_v2=corner["gain"],
+    )
 
 
-def _mos(case: Case, comparator: Comparator) -> tuple[dict[str, tuple[float, ...]], DeviceAt]:
-    own = case.of(comparator)
-    name = own.must("crossover.device")
-    process = case.description.process
-    assert process is not None  # the loader refuses a name that points nowhere
-    facts = case.part(process.devices[name], f"process.devices.{name}")
-    spans = {
-        "threshold": _ends(facts, "threshold"),
-        "threshold slope": _ends(facts, "threshold_slope"),
-        "gain": _ends(own, "crossover.gain"),
-    }
-    t_ref_k, swing_v = facts.middle("reference_temperature"), facts.middle("swing")
-    case.settle()
-    slope_factor = slope_factor_of_swing(swing_v_per_decade=swing_v, t_k=t_ref_k)
-    return spans, lambda corner, t_k: diode_connected_at(
-        t_k=t_k, threshold_ref_v=corner["threshold"], t_ref_k=t_ref_k, fall_v_per_k=corner["threshold slope"],
-        slope_factor=slope_factor, gain_a_per_v2=corner["gain"],
-    )  # fmt: skip
-
-
-def _ends(facts: Facts, fact: str) -> tuple[float, ...]:
-    """Least and greatest value; one where they are the same."""
-    least, most = facts.least(fact), facts.most(fact)
-    return (least,) if least == most else (least, most)
+def _series_ohm(facts: CrossoverFacts, corner: Corner, t_k: float) -> float:
+    if facts.resistor_ref_k is None:
+        return corner["resistance"]
+    return series_ohm_at(
+        t_k=t_k,
+        r_ref_ohm=corner["resistance"],
+        t_ref_k=facts.resistor_ref_k,
+        tc1_per_k=corner["tc1"],
+        tc2_per_k2=corner["tc2"],
+    )

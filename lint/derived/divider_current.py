@@ -31,9 +31,7 @@ def divider_takers(case: Case, domain: Domain) -> list[Taker]:
             supply_v = case.of(rail).most("delivered")
         takers.append((comparator.id, ohm))
     case.settle()
-    return [
-        Taker(f"divider of {name}", hold_current_a(supply_v=supply_v or 0.0, hold_ohm=ohm)) for name, ohm in takers
-    ]
+    return [Taker(f"divider of {name}", hold_current_a(supply_v=supply_v or 0.0, hold_ohm=ohm)) for name, ohm in takers]
 
 
 def _counting(case: Case, domain: Domain, rail: str) -> Iterator[Comparator]:

@@ -117,7 +117,7 @@ def held_node(case: Case, stage: OutputStage) -> HeldNode:
         return HeldNode(hold_ohm, leakage_a, 0.0, 0.0, 0.0, 0.0)
     load_f = own.least("load") if low else coupling_f
     rise_v, rise_s = case.gather(
-        lambda: case.of(rail_of(case, stage)).most("nominal"), lambda: case.of(rail_of(case, stage)).least("rise")
+        lambda: case.of(rail_of(case, stage)).middle("nominal"), lambda: case.of(rail_of(case, stage)).least("rise")
     )
     slope_v_per_s = ramp_slope_v_per_s(rise_v=rise_v, rise_s=rise_s)
     return HeldNode(hold_ohm, leakage_a, coupling_f, load_f, slope_v_per_s, rise_s)

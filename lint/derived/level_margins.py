@@ -11,6 +11,7 @@ from tidegate.lint.derived.guarded_loads import Bound, greatest_supplies, guarde
 from tidegate.lint.derived.response import response
 from tidegate.lint.derived.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.judgement import Measure, Relation
 from tidegate.lint.physics.hysteresis import release_droop_v
 from tidegate.lint.physics.placement import Level, Side
 from tidegate.lint.quantity import Dimension, show
@@ -37,6 +38,12 @@ class LevelMargin:
     def margin_v(self) -> float:
         """How far the level keeps its limit, in V; below 0 it does not."""
         return self.end_v - self.limit_v if self.side is Side.LEAST else self.limit_v - self.end_v
+
+    @property
+    def is_kept(self) -> bool:
+        """Whether the level keeps its limit; at the limit, it does."""
+        relation = Relation.AT_LEAST if self.side is Side.LEAST else Relation.AT_MOST
+        return Measure(self.limit_v, self.end_v, _V, relation).holds
 
     @property
     def says(self) -> str:
@@ -83,7 +90,7 @@ def short_at_once(case: Case, comparator: Comparator) -> LevelMargin | None:
     if not unknown or comparator.role == "power_on" or protects_nothing(case, comparator):
         return None
     level = case.attempt(lambda: _against_load(case, comparator))
-    if level is None or Measure(level.margin_v, 0.0, _V, Relation.AT_MOST).holds:
+    if level is None or level.is_kept:
         return None
     return replace(level, why=f"{level.why}; what the rail does until the answer would only add to it, and is not "
                    f"known without {' and '.join(unknown)}")  # fmt: skip

@@ -81,10 +81,14 @@ def typical_hysteresis_v(comparator: Comparator) -> float | None:
     return rising.middle - falling.middle
 
 
-def bounds_itself(comparator: Comparator, which: Literal["rising", "falling"], end: Literal["least", "most"]) -> bool:
-    """Whether an end of a level is stated as a bound, and so is not the other level and the hysteresis once more."""
+def levels_bound_hysteresis(comparator: Comparator, which: _Level, end: Literal["least", "most"]) -> bool:
+    """Whether the levels say how far apart they can be: no amount is stated, or this end of this level is a bound.
+
+    A level that is bounded is not the other one and the hysteresis once more.
+    """
     span = _span(as_far_as_said(comparator), which)
-    return span is not None and _nominal_v(span) is None and getattr(span, end) is not None
+    bounded = span is not None and _nominal_v(span) is None and getattr(span, end) is not None
+    return bounded or _amount(comparator) is None
 
 
 def has_no_hysteresis(comparator: Comparator) -> bool:

@@ -11,7 +11,7 @@ from tidegate.lint.graph.dependency import Element, Graph
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.graph.leaning_gaps import leaning_gaps
 
-_NO_USE: Final = (EdgeKind.OVERRIDES, EdgeKind.COUPLES_TO, EdgeKind.WATCHES, EdgeKind.COMES_AFTER)
+_NO_USE: Final = (EdgeKind.OVERRIDES, EdgeKind.COUPLES_TO, EdgeKind.COMES_AFTER)
 """What somebody has to do with an element without needing it."""
 
 _FORWARDS: Final = (EdgeKind.DRIVES, EdgeKind.GUARDS)
@@ -40,7 +40,9 @@ def used_besides(graph: Graph) -> frozenset[str]:
     found: set[str] = set()
     for element in graph.elements.values():
         if isinstance(element, Comparator) and isinstance(element.hysteresis, Hysteresis):
-            found.update(each.turned_by for each in element.hysteresis.switches if each.turned_by not in (None, element.id))
+            found.update(
+                each.turned_by for each in element.hysteresis.switches if each.turned_by not in (None, element.id)
+            )
         elif isinstance(element, Reset) and element.domain is not None:
             found.add(element.domain)
     return frozenset(found)

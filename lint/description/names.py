@@ -29,11 +29,12 @@ _PROCESS_NAMES: Final = {
     ("output_stages", "pmos", "family"): "devices",
     ("comparators", "crossover", "diode"): "diodes",
     ("comparators", "crossover", "device"): "devices",
+    ("comparators", "crossover", "resistor"): "resistors",
 }
 
 _KINDS: Final = {
     "layers": "layer of the process", "vias": "via of the process", "devices": "transistor family of the process",
-    "diodes": "diode of the process",
+    "diodes": "diode of the process", "resistors": "resistor of the process",
 }  # fmt: skip
 
 _SINGULAR: Final = {
@@ -168,7 +169,7 @@ def _nearest_or_some(name: str, choices: Sequence[str]) -> str:
 
 
 def _names_of_parts(data: Mapping[str, Any]) -> Iterator[tuple[Path, str, str, Mapping[str, Any]]]:
-    """Names of layers, vias, transistor families, junctions and codes, with what they may name."""
+    """Names of layers, vias, transistor families, junctions, resistors and codes, with what they may name."""
     process = _mapping(data.get("process"))
     for (section, *inner), kind in _PROCESS_NAMES.items():
         for path, name in _values(data, (section, "*", *inner), ()):

@@ -52,7 +52,7 @@ class Spread:
         least_at            parameters at the lowest level, temperature included
         most_at             parameters at the highest level, temperature included
         swings              one for each parameter, widest first
-        slope_v_per_k  V/K  mean slope over the temperature range, all else nominal
+        slope_v_per_k  V/K  mean slope over the temperature range, all else nominal; None where that is one point
     """
 
     least_v: float
@@ -61,7 +61,7 @@ class Spread:
     least_at: Mapping[str, float]
     most_at: Mapping[str, float]
     swings: tuple[Swing, ...]
-    slope_v_per_k: float
+    slope_v_per_k: float | None
 
 
 def factorial_corners(spans: Mapping[str, Sequence[float]]) -> dict[str, FloatArray]:
@@ -103,18 +103,18 @@ def spread_over_corners(
         level_v                     gives the level in V for arrays of the parameters and of t_k, which broadcast
         nominal                     nominal value of every parameter, t_k among them
         spans                       values each parameter takes at its corners; t_k not among them
-        temperature_k       T1, T2  K  lowest and highest temperature, > 0
+        temperature_k       T1, T2  K  lowest and highest temperature, > 0; they may be equal
         temperature_points          points of the first grid, at least 3
     Returns: the window in V, where its ends lie, and what each parameter does on its own.
     Valid: a level that is monotonic between the values of each span, the temperature excepted, and that has at most one
         turn within two steps of the first grid.
     Source: exhaustive search.
-    Raises: DomainError: names that differ; fewer than 3 points; T2 not above T1; what level_v raises.
+    Raises: DomainError: names that differ; fewer than 3 points; T2 below T1; what level_v raises.
     """
     least_k, most_k = temperature_k
     require_positive(least_k=least_k, most_k=most_k)
-    if most_k <= least_k:
-        raise DomainError(f"most_k must be above least_k, {least_k!r} (found {most_k!r})")
+    if most_k < least_k:
+        raise DomainError(f"most_k must be at least least_k, {least_k!r} (found {most_k!r})")
     if temperature_points < 3:
         raise DomainError(f"temperature_points must be at least 3 (found {temperature_points!r})")
     if set(nominal) != {*spans, TEMPERATURE}:
@@ -136,7 +136,7 @@ def spread_over_corners(
         least_at=whole.least_at,
         most_at=whole.most_at,
         swings=tuple(sorted(swings, key=lambda swing: -swing.width_v)),
-        slope_v_per_k=float((ends_v[1] - ends_v[0]) / (most_k - least_k)),
+        slope_v_per_k=float((ends_v[1] - ends_v[0]) / (most_k - least_k)) if most_k > least_k else None,
     )
 
 

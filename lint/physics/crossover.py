@@ -1,12 +1,11 @@
 """Trip level made without a reference: where something that grows with the supply overtakes something that does not.
 
-Every function takes numbers or arrays over the corners and solves them all at once. A corner with no crossing is never
-filled in: NoCrossingError says which corners have none.
+Every function takes numbers or arrays over the corners and solves them all at once; ``crossing_point`` solves one
+corner without NumPy. A corner with no crossing is never filled in: NoCrossingError says which corners have none.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Final
 
 import numpy as np
@@ -99,58 +98,32 @@ def divider_mos_trip_v(branch: MosBranch, *, divider_ratio: Reals, offset_v: Rea
     return _where_it_exists(trip_v, root.exists & (trip_v > _ROUNDING * branch.scale_v))
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class RisingReference:
-    """Current of a reference against the supply: nothing, then a rise, then its own value.
-
-    Each symbol is a number or an array over the corners; their shapes broadcast.
-
-    Formula: I_ref(V) = 0 up to V_s, then g (V - V_s), never more than I_0
-    Symbols:
-        start_v       V_s  V    supply at which the current sets in, >= 0
-        rise_a_per_v  g    A/V  rise of the current with the supply until it regulates, > 0
-        regulated_a   I_0  A    current in regulation, > 0
-    Raises: DomainError: V_s below 0; g or I_0 not above 0.
-    """
-
-    start_v: Reals
-    rise_a_per_v: Reals
-    regulated_a: Reals
-
-    def __post_init__(self) -> None:
-        not_negative("start_v", self.start_v)
-        positive("rise_a_per_v", self.rise_a_per_v)
-        positive("regulated_a", self.regulated_a)
-
-    def current_a(self, supply_v: Reals) -> FloatArray:
-        """Current at a supply, A."""
-        above_v = np.maximum(finite("supply_v", supply_v) - self.start_v, 0.0)
-        return np.asarray(np.minimum(above_v * self.rise_a_per_v, self.regulated_a))
-
-
-def reference_overtakes_v(branch: Branch, *, mirror_ratio: Reals, reference: RisingReference) -> FloatArray:
+def reference_overtakes_v(
+    branch: Branch, *, mirror_ratio: Reals, start_v: Reals, rise_v: Reals, regulated_a: Reals
+) -> FloatArray:
     """Supply at which the current of a starting reference overtakes a crude current, mirrored: the trip level.
 
-    Formula: m I_c(V) = g (V - V_s), V = I_c R + V_dev(I_c); so I_c is the current from a source V_s through the same
-             device behind R - m/g, and V = V_s + m I_c/g
+    Formula: m I_c(V) = I_0 (V - V_s)/V_r, V = I_c R + V_dev(I_c); so I_c is the current from a source V_s through the
+             same device behind R - m V_r/I_0, and V = V_s + I_c m V_r/I_0
     Symbols:
-        branch        R, device        what makes the crude current from the supply
-        mirror_ratio  m             -  crude current at the comparison over that in the branch, > 0
-        reference     V_s, g, I_0      the reference's own current
+        branch        R, device     what makes the crude current from the supply
+        mirror_ratio  m          -  crude current at the comparison over that in the branch, > 0
+        start_v       V_s        V  supply at which the reference's current sets in, > 0
+        rise_v        V_r        V  how much further the supply rises until it regulates, >= 0
+        regulated_a   I_0        A  current in regulation, > 0
     Returns: V, in V, of the common shape of the inputs.
-    Valid: a reference that rises faster than the crude current at full conduction, g > m/R; quasi-static.
+    Valid: the reference's current rises in a straight line; quasi-static.
     Source: the two lines above, V eliminated.
-    Raises: DomainError: m not above 0; g not above m/R. NoCrossingError: corners where the reference regulates at a
-        current below the crude one, and so never overtakes it.
+    Raises: DomainError: m, V_s or I_0 not above 0; V_r below 0. NoCrossingError: corners where the reference rises
+        slower than the crude current, or regulates below it.
     """
-    m = positive("mirror_ratio", mirror_ratio)
-    share_ohm = np.asarray(m / reference.rise_a_per_v)
+    m, regulated_a = positive("mirror_ratio", mirror_ratio), positive("regulated_a", regulated_a)
+    start_v = positive("start_v", start_v)
+    share_ohm = m * not_negative("rise_v", rise_v) / regulated_a
     left_ohm = np.asarray(branch.series_ohm - share_ohm)
-    if np.any(left_ohm <= 0.0):
-        raise DomainError("rise_a_per_v must be greater than mirror_ratio / series_ohm")
-    crude_a = branch.with_series_ohm(left_ohm).current_a(reference.start_v)
-    trip_v = np.asarray(reference.start_v + share_ohm * crude_a)
-    return _where_it_exists(trip_v, np.asarray(m * crude_a <= reference.regulated_a))
+    faster = left_ohm > 0.0
+    crude_a = branch.with_series_ohm(np.where(faster, left_ohm, branch.series_ohm)).current_a(start_v)
+    return _where_it_exists(np.asarray(start_v + share_ohm * crude_a), faster & (m * crude_a <= regulated_a))
 
 
 def crude_overtakes_v(branch: Branch, *, mirror_ratio: Reals, regulated_a: Reals) -> FloatArray:
@@ -170,38 +143,6 @@ def crude_overtakes_v(branch: Branch, *, mirror_ratio: Reals, regulated_a: Reals
     Raises: DomainError: m or I_0 not above 0.
     """
     return branch.level_v(positive("regulated_a", regulated_a) / positive("mirror_ratio", mirror_ratio))
-
-
-def least_reference_ratio(
-    branch: Branch,
-    *,
-    mirror_ratio: Reals,
-    reference: RisingReference,
-    supply_least_v: Reals,
-    supply_most_v: Reals,
-) -> FloatArray:
-    """Least of the reference's current over the mirrored crude current, over a range of the supply.
-
-    Formula: min over V of I_ref(V)/(m I_c(V)), which lies at an end of the range
-    Symbols:
-        branch          R, device        what makes the crude current from the supply
-        mirror_ratio    m             -  crude current at the comparison over that in the branch, > 0
-        reference       V_s, g, I_0      the reference's own current
-        supply_least_v  V_1           V  lowest supply in service, > 0
-        supply_most_v   V_2           V  highest supply, >= V_1
-    Returns: the ratio, dimensionless, of the common shape of the inputs; below 1 the chip is reset in service.
-    Valid: quasi-static.
-    Source: I_c is convex in V (V = I R + V_dev(I) is concave in I), so that while I_ref rises in a line the ratio has
-        at most a greatest value inside, and once I_ref is constant the ratio falls.
-    Raises: DomainError: m or V_1 not above 0; V_2 below V_1.
-    """
-    m = positive("mirror_ratio", mirror_ratio)
-    least_v, most_v = positive("supply_least_v", supply_least_v), positive("supply_most_v", supply_most_v)
-    if np.any(most_v < least_v):
-        raise DomainError("supply_most_v must be at least supply_least_v")
-    at_least = reference.current_a(least_v) / (m * branch.current_a(least_v))
-    at_most = reference.current_a(most_v) / (m * branch.current_a(most_v))
-    return np.asarray(np.minimum(at_least, at_most))
 
 
 def _where_it_exists(trip_v: FloatArray, exists: BoolArray) -> FloatArray:

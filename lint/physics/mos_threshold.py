@@ -1,12 +1,14 @@
 """MOS threshold over temperature, and one smooth law from weak to strong inversion with its inverse.
 
-Voltages are magnitudes, so that the same functions serve both polarities.
+Voltages are magnitudes, so that the same functions serve both polarities. Arrays of corners at once;
+``device_at_corner`` has the forms for one number, and both evaluate the laws of ``device_laws``.
 """
 
 from __future__ import annotations
 
 import numpy as np
 
+from tidegate.lint.physics import device_laws
 from tidegate.lint.physics.array_domain import FloatArray, Reals, finite, not_negative, positive
 from tidegate.lint.physics.silicon import thermal_voltage_v
 
@@ -26,8 +28,13 @@ def threshold_linear_v(*, t_k: Reals, threshold_ref_v: Reals, t_ref_k: Reals, fa
         memory).
     Raises: DomainError: T or T0 not above 0; V_TH0 or kappa not finite.
     """
-    above_k = positive("t_k", t_k) - positive("t_ref_k", t_ref_k)
-    return np.asarray(finite("threshold_ref_v", threshold_ref_v) - finite("fall_v_per_k", fall_v_per_k) * above_k)
+    found_v = device_laws.threshold_v(
+        t_k=positive("t_k", t_k),
+        threshold_ref_v=finite("threshold_ref_v", threshold_ref_v),
+        t_ref_k=positive("t_ref_k", t_ref_k),
+        fall_v_per_k=finite("fall_v_per_k", fall_v_per_k),
+    )
+    return np.asarray(found_v)
 
 
 def threshold_bsim_v(
@@ -96,8 +103,12 @@ def specific_current_a(*, t_k: Reals, gain: Reals, slope_factor: Reals) -> Float
         (1995).
     Raises: DomainError: a symbol not above 0.
     """
-    squared = thermal_voltage_v(t_k=t_k) ** 2
-    return np.asarray(2.0 * positive("slope_factor", slope_factor) * positive("gain", gain) * squared)
+    found_a = device_laws.specific_current_a(
+        thermal_v=thermal_voltage_v(t_k=t_k),
+        slope_factor=positive("slope_factor", slope_factor),
+        gain_a_per_v2=positive("gain", gain),
+    )
+    return np.asarray(found_a)
 
 
 def saturated_current_a(
@@ -140,10 +151,14 @@ def diode_connected_v(
     Source: saturated_current_a solved for V_GS.
     Raises: DomainError: I, n, I_S or V_T not above 0; V_TH not finite.
     """
-    root = np.sqrt(positive("current_a", current_a) / positive("specific_a", specific_a))
-    scale_v = 2.0 * positive("slope_factor", slope_factor) * positive("thermal_v", thermal_v)
-    # ln(e^s - 1) = s + ln(1 - e^-s): neither overflows in strong nor cancels in weak inversion.
-    return np.asarray(finite("threshold_v", threshold_v) + scale_v * (root + np.log(-np.expm1(-root))))
+    found_v = device_laws.diode_connected_v(
+        np,
+        current_a=positive("current_a", current_a),
+        threshold_v=finite("threshold_v", threshold_v),
+        scale_v=2.0 * positive("slope_factor", slope_factor) * positive("thermal_v", thermal_v),
+        specific_a=positive("specific_a", specific_a),
+    )
+    return np.asarray(found_v)
 
 
 def subthreshold_swing_v_per_decade(*, slope_factor: Reals, thermal_v: Reals) -> FloatArray:

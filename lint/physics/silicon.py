@@ -1,4 +1,7 @@
-"""Junction voltages over temperature: band gap, saturation current, base-emitter voltage."""
+"""Junction voltages over temperature: band gap, saturation current, base-emitter voltage; arrays of corners at once.
+
+``device_at_corner`` has the forms for one number; both evaluate the laws of ``device_laws``.
+"""
 
 from __future__ import annotations
 
@@ -7,8 +10,8 @@ from typing import Final
 
 import numpy as np
 
+from tidegate.lint.physics import device_laws
 from tidegate.lint.physics.array_domain import FloatArray, Reals, finite, not_negative, positive
-from tidegate.lint.physics.constants import BOLTZMANN_EV_PER_K
 from tidegate.lint.physics.domain import require_not_negative, require_positive
 
 
@@ -69,7 +72,7 @@ def thermal_voltage_v(*, t_k: Reals) -> FloatArray:
     Source: definition; k and q from the SI.
     Raises: DomainError: T not above 0.
     """
-    return np.asarray(BOLTZMANN_EV_PER_K * positive("t_k", t_k))
+    return np.asarray(device_laws.thermal_voltage_v(positive("t_k", t_k)))
 
 
 def saturation_current_a(*, t_k: Reals, is_ref_a: Reals, t_ref_k: Reals, xti: Reals, gap_ev: Reals) -> FloatArray:
@@ -88,11 +91,15 @@ def saturation_current_a(*, t_k: Reals, is_ref_a: Reals, t_ref_k: Reals, xti: Re
         California, Berkeley, 1975).
     Raises: DomainError: T, T0, IS0 or Eg not above 0; XTI not finite.
     """
-    t_k, t_ref_k = positive("t_k", t_k), positive("t_ref_k", t_ref_k)
-    is_ref_a, gap_ev = positive("is_ref_a", is_ref_a), positive("gap_ev", gap_ev)
-    exponent = finite("xti", xti) * np.log(t_k / t_ref_k)
-    exponent = exponent + gap_ev / BOLTZMANN_EV_PER_K * (1.0 / t_ref_k - 1.0 / t_k)
-    return np.asarray(is_ref_a * np.exp(exponent))
+    found_a = device_laws.saturation_current_a(
+        np,
+        t_k=positive("t_k", t_k),
+        saturation_ref_a=positive("is_ref_a", is_ref_a),
+        t_ref_k=positive("t_ref_k", t_ref_k),
+        temperature_exponent=finite("xti", xti),
+        gap_ev=positive("gap_ev", gap_ev),
+    )
+    return np.asarray(found_a)
 
 
 def saturation_current_varshni_a(
@@ -133,8 +140,13 @@ def junction_voltage_v(*, current_a: Reals, saturation_a: Reals, emission_v: Rea
     Source: W. Shockley, Bell System Technical Journal 28, 435-489 (1949), solved for V.
     Raises: DomainError: I below 0; IS or n V_T not above 0.
     """
-    ratio = not_negative("current_a", current_a) / positive("saturation_a", saturation_a)
-    return np.asarray(positive("emission_v", emission_v) * np.log1p(ratio))
+    found_v = device_laws.junction_voltage_v(
+        np,
+        current_a=not_negative("current_a", current_a),
+        saturation_a=positive("saturation_a", saturation_a),
+        emission_v=positive("emission_v", emission_v),
+    )
+    return np.asarray(found_v)
 
 
 def base_emitter_slope_v_per_k(*, t_k: Reals, base_emitter_v: Reals, gap_v: Reals, xti: Reals) -> FloatArray:

@@ -20,10 +20,12 @@ class Form(StrEnum):
     JSON = "json"
     SARIF = "sarif"
     MARKDOWN = "markdown"
+    HTML = "html"
 
 
 ENDINGS: Final = {
     ".txt": Form.TERMINAL, ".json": Form.JSON, ".sarif": Form.SARIF, ".md": Form.MARKDOWN,
+    ".html": Form.HTML,
 }  # fmt: skip
 """The form that the ending of a file's name asks for."""
 
@@ -56,6 +58,10 @@ def part(form: Form, judged: Judged, look: Look) -> Any:
         return (
             unusable_markdown(judged.file, judged.faults) if judged.review is None else review_markdown(judged.review)
         )
+    if form is Form.HTML:
+        from tidegate.lint.reports.page.gather import gather
+
+        return gather(judged)
     from tidegate.lint.reports import sarif
 
     if judged.review is None:
@@ -90,6 +96,10 @@ def whole(form: Form, parts: Sequence[Any], rules: Iterable[Rule], *, status: in
         from tidegate.lint.reports.json_report import json_text
 
         return json_text(parts, settings=settings, fail_at=fail_at)
+    if form is Form.HTML:
+        from tidegate.lint.reports.page.render import page
+
+        return page(parts, rules)
     from tidegate.lint.reports import sarif
 
     notifications = [note for _, notes in parts for note in notes]

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from enum import Enum
 
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.timing.evaluate import LoadState
@@ -14,13 +15,20 @@ from tidegate.lint.timing.supply import Supply
 from tidegate.lint.timing.timeline import Timeline, Timelines
 
 
+class Why(Enum):
+    """Why an element is unknown by itself."""
+
+    NOT_HELD = "a stage that is not alive, and has no hold"
+    UNDECIDED = "a detector that cannot decide"
+    INPUT = "a stage that is alive before its input is known"
+
+
 @dataclass(frozen=True, slots=True)
 class Blame:
     """An element that is unknown by itself, why it is, and the way to it from where it was noticed."""
 
     element: str
-    held_by_nothing: bool
-    """Whether it is a stage that is not alive and has no hold; else a detector that cannot decide."""
+    why: Why
     waits_for: str
     """What it waits for, in words."""
     path: Path
@@ -34,25 +42,25 @@ def blame_for_unknown(lines: Timelines, line: Timeline, start: str, at_s: float)
     while True:
         part = lines.read.parts.get(here)
         if isinstance(part, ComparatorPart):
-            return Blame(here, False, _waits_for(lines, line, part, at_s), tuple(hops))
+            return Blame(here, Why.UNDECIDED, _waits_for(lines, line, part, at_s), tuple(hops))
         if isinstance(part, StagePart) and part.hold == "none" and _is_down(lines, line, part, at_s):
-            return Blame(here, True, _waits_for(lines, line, part, at_s), tuple(hops))
+            return Blame(here, Why.NOT_HELD, _waits_for(lines, line, part, at_s), tuple(hops))
         drivers = part.driven_by if isinstance(part, StagePart | ResetPart) else ()
-        unknown = [name for name in drivers if name not in seen and _is_unknown(line, name, at_s)]
+        unknown = [(since, name) for name in drivers if name not in seen and (since := _unknown_at(line, name, at_s))]
         if not unknown:
-            return Blame(here, False, "its input", tuple(hops))
-        here = unknown[0]
+            return Blame(here, Why.INPUT, "its input", tuple(hops))
+        (at_s, _), here = max(unknown)
         seen.add(here)
         hops.append(Hop(here, EdgeKind.DRIVES.backwards))
 
 
-def _is_unknown(line: Timeline, name: str, at_s: float) -> bool:
-    """Whether an element may be unknown at a time, or has just been (the time a stage takes lies between)."""
+def _unknown_at(line: Timeline, name: str, at_s: float) -> tuple[float, float] | None:
+    """The last time up to another at which an element may be unknown (a stage passes it on later), and since when."""
     state = line.states[name]
     if not isinstance(state, Decision):
-        return False
-    times = state.may_be_unknown
-    return is_in(times, at_s) or any(start <= at_s for start, _ in times)
+        return None
+    spans = [(min(end, at_s), start) for start, end in state.may_be_unknown if start <= at_s]
+    return max(spans, default=None)
 
 
 def _is_down(lines: Timelines, line: Timeline, part: StagePart, at_s: float) -> bool:

@@ -61,7 +61,7 @@ def _released_late(part: StagePart, given: _Driven, alive: On) -> _Driven:
     for start, end in free:
         if start - ended_s >= part.discharge_s:
             run_s = 0.0
-        begins_s = start + least_s - run_s
+        begins_s = start + (least_s - run_s)
         if begins_s < end:
             through.append((begins_s, end))
         ended_s, run_s = end, min(run_s + (end - start), least_s)

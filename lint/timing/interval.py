@@ -16,6 +16,8 @@ Times: TypeAlias = tuple[tuple[float, float], ...]
 
 FOREVER_S: Final = float("inf")
 NEVER: Final[Times] = ()
+_TOUCHING: Final = 1e-12
+"""Share of a time up to which two spans touch."""
 ALWAYS: Final[Times] = ((-FOREVER_S, FOREVER_S),)
 
 
@@ -56,11 +58,11 @@ def either(first: Times, second: Times) -> Times:
 
 
 def joined(spans: Sequence[tuple[float, float]]) -> Times:
-    """Spans in order of their starts, at least one, those that touch made one."""
+    """Spans in order of their starts, at least one, those that touch made one; what rounding leaves between, too."""
     done: list[tuple[float, float]] = []
     start, end = spans[0]
     for next_start, next_end in spans:
-        if next_start <= end:
+        if next_start <= end or next_start - end <= _TOUCHING * abs(end):
             end = max(end, next_end)
         else:
             done.append((start, end))

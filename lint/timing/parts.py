@@ -28,6 +28,8 @@ class Lacks(msgspec.Struct):
     """Least values that stand at 0."""
     most: list[str] = []
     """Greatest values that stand at infinity."""
+    ready: list[str] = []
+    """Of a load, what its own readiness alone needs."""
 
 
 class RailPart(msgspec.Struct, frozen=True):

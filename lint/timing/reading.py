@@ -66,7 +66,7 @@ def read_parts(description: Description, graph: Graph) -> Parts:
                 reader.lacks.whole.extend(error.missing)
             except DomainError as error:
                 refused[element.id] = error
-            if reader.lacks.whole or reader.lacks.least or reader.lacks.most:
+            if any((reader.lacks.whole, reader.lacks.least, reader.lacks.most, reader.lacks.ready)):
                 lacks[element.id] = reader.lacks
     return Parts(parts, lacks, refused)
 
@@ -293,9 +293,13 @@ def _load(reader: _Reader, load: Load) -> LoadPart:
         works.append((need.rail, Bounds(least, _INFINITE if most is None else most)))
     if not load.needs:
         reader.must(None, "needs")
+    before = len(reader.lacks.most), len(reader.lacks.least)
+    ready = reader.bounds("ready")
+    reader.lacks.ready, reader.lacks.most = reader.lacks.most[before[0] :], reader.lacks.most[: before[0]]
+    del reader.lacks.least[before[1] :]
     return LoadPart(
         id=load.id, works=tuple(works), domain=load.domain,
-        needs=_names(load.references, load.leans_on, load.gated_by), ready=reader.bounds("ready"),
+        needs=_names(load.references, load.leans_on, load.gated_by), ready=ready,
         start=reader.if_given("start"), resets=_guards_of(reader.graph, load),
     )  # fmt: skip
 

@@ -15,13 +15,14 @@ they may be wider, and ``pinned`` times the network with that tolerance at one e
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property, lru_cache
 from typing import Final
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.timing.evaluate import Network, States, evaluate, network
@@ -149,24 +150,29 @@ class Timelines:
 
     def missing(
         self, element: str, *, latest: bool = False, earliest: bool = False, starts: bool = False, falls: bool = False,
-        readiness: bool = False,
+        readiness: bool = False, rails_forced: bool = False,
     ) -> tuple[str, ...]:  # fmt: skip
         """The facts that are missing for an element and all it leans on, as paths.
 
         ``latest``: the greatest values too, ``earliest``: the least ones; ``starts`` and ``falls``: those of the
-        ramps up and down; ``readiness``: of what a load needs alone, not of the nets that reset it.
+        ramps up and down; ``readiness``: of what a load needs alone, not of the nets that reset it, and of its time
+        to be ready; ``rails_forced``: of what makes a rail, no greatest or least values.
         Raises: DomainError: where one of them has numbers that cannot be.
         """
-        if not (self._anything_lacks(latest=latest, earliest=earliest) or ((starts or falls) and self._any_ramp_lacks)):
+        ramps = (starts or falls) and self._any_ramp_lacks
+        if not (ramps or self._anything_lacks(latest=latest, earliest=earliest, readiness=readiness)):
             return ()
         found: dict[str, None] = {}
-        for name in self.behind(element, readiness=readiness):
+        near = self._behind(element, readiness=readiness, through_rails=False) if rails_forced else None
+        for name in self._behind(element, readiness=readiness, through_rails=True):
             if name in self.read.refused:
                 raise self.read.refused[name]
             lacks = self.read.lacks.get(name, _NO_LACKS)
-            for wanted, paths in ((True, lacks.whole), (latest, lacks.most), (earliest, lacks.least)):
-                if wanted:
-                    found.update(dict.fromkeys(paths))
+            counts = near is None or name in near
+            wanted = (True, latest and counts, earliest and counts, readiness and name == element)
+            groups = (lacks.whole, lacks.most, lacks.least, lacks.ready)
+            for paths in (group for group, is_wanted in zip(groups, wanted, strict=True) if is_wanted):
+                found.update(dict.fromkeys(paths))
             if starts or falls:
                 found.update(dict.fromkeys(self._ramp_lacks(name, starts=starts, falls=falls)))
         return tuple(found)
@@ -179,11 +185,11 @@ class Timelines:
             return ()
         return (*(ramp.start_lacks if starts else ()), *(ramp.fast_fall_lacks if falls else ()))
 
-    def _anything_lacks(self, *, latest: bool, earliest: bool) -> bool:
+    def _anything_lacks(self, *, latest: bool, earliest: bool, readiness: bool) -> bool:
         """Whether any element at all lacks what is asked for: mostly none does, and nobody need look behind any."""
-        every = self.read.lacks.values()
         return bool(self.read.refused) or any(
-            lacks.whole or (latest and lacks.most) or (earliest and lacks.least) for lacks in every
+            lacks.whole or (latest and lacks.most) or (earliest and lacks.least) or (readiness and lacks.ready)
+            for lacks in self.read.lacks.values()
         )
 
     @cached_property
@@ -191,25 +197,29 @@ class Timelines:
         ramps = self.ramps.by_rail.values()
         return bool(self.ramps.lacks) or any(ramp.start_lacks or ramp.fast_fall_lacks for ramp in ramps)
 
-    def behind(self, element: str, *, readiness: bool = False) -> Sequence[str]:
+    def behind(self, element: str, *, readiness: bool = False) -> Collection[str]:
         """An element and all it leans on, watched rails included; ``readiness`` leaves out what resets a load."""
-        found = [element]
-        seen = {element}
-        for name in found:
+        return self._behind(element, readiness=readiness, through_rails=True)
+
+    def _behind(self, element: str, *, readiness: bool, through_rails: bool) -> Collection[str]:
+        found = {element: None}
+        waiting = [element]
+        for name in waiting:
+            if not through_rails and name in self.description.rails:
+                continue
             for other in self._needs(name, guards=not (readiness and name == element)):
-                if other not in seen:
-                    seen.add(other)
-                    found.append(other)
-        return found
+                if other not in found:
+                    found[other] = None
+                    waiting.append(other)
+        return found.keys()
 
     def _needs(self, name: str, *, guards: bool) -> Sequence[str]:
         needed = [other for other, _, edge in self.graph.needs(name) if guards or edge.kind is not EdgeKind.GUARDS]
         element = self.graph.elements[name]
         if isinstance(element, Comparator):
             needed.append(element.watches)
-        after = getattr(element, "after", None)
-        if after is not None:
-            needed.append(after)
+        elif isinstance(element, Rail) and element.after is not None:
+            needed.append(element.after)
         return needed
 
 

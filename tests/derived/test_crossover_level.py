@@ -7,7 +7,7 @@ import pytest
 
 from tests.rules.sound import case_of
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.crossover_level import CrossoverLevel, divider_level, second_crossing_level
+from tidegate.lint.derived.crossover_level import CrossoverLevel, release_level, second_crossing_level
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.physics import crossover, mos_threshold, silicon
 from tidegate.lint.physics.array_domain import FloatArray
@@ -40,7 +40,7 @@ def mos_level_v(corner: Corner) -> FloatArray:
 def level(patch: str = "", element: str = "por") -> CrossoverLevel:
     case = case_of(patch, element)
     assert isinstance(case.subject, Comparator)
-    return divider_level(case, case.subject)
+    return release_level(case, case.subject)
 
 
 def test_both_ends_of_the_window_are_reached_by_the_vectorised_sweep() -> None:
@@ -145,5 +145,5 @@ def test_a_fact_that_is_missing_is_named(fact: str) -> None:
     case: Case = case_of(without(fact), "por")
     assert isinstance(case.subject, Comparator)
     with pytest.raises(MissingFactsError) as missing:
-        divider_level(case, case.subject)
+        release_level(case, case.subject)
     assert set(missing.value.missing) == {fact}

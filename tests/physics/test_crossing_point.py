@@ -10,13 +10,18 @@ from scipy.optimize import brentq
 
 from tidegate.lint.physics import crossover, fed_branch, mos_threshold, silicon
 from tidegate.lint.physics.crossing_point import (
-    DiodeConnected,
-    Junction,
     NoCrossingError,
     branch_level_v,
-    diode_connected_at,
     divider_crossing_v,
+    reference_crossing_v,
+)
+from tidegate.lint.physics.device_at_corner import (
+    Device,
+    DiodeConnected,
+    Junction,
+    diode_connected_at,
     junction_at,
+    series_ohm_at,
     slope_factor_of_swing,
 )
 from tidegate.lint.physics.domain import DomainError

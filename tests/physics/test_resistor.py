@@ -5,14 +5,11 @@ from __future__ import annotations
 import math
 from collections.abc import Callable
 
-import numpy as np
 import pytest
-from hypothesis import given, settings
-from hypothesis import strategies as st
 from scipy.optimize import minimize_scalar
 
 from tidegate.lint.physics.domain import DomainError
-from tidegate.lint.physics.resistor import resistance_ohm, resistance_range
+from tidegate.lint.physics.resistor import resistance_ohm
 
 # google/globalfoundries-pdk-libs-gf180mcu_fd_pr at 9f992d5a, models/ngspice/sm141064.ngspice L38606-07: p+ poly,
 # unsalicided, 25 degC.
@@ -33,14 +30,14 @@ def test_sheet_resistance_of_gf180_table(t_degc: float, ohm: float) -> None:
     assert float(found) == pytest.approx(ohm, rel=1e-3)
 
 
-def test_minimum_inside_the_range_is_found() -> None:
+def test_minimum_of_gf180_p_poly_lies_inside_the_range() -> None:
     # Derived: 25 + 9e-5/(2 * 7e-7) = 89.3 degC; the table above is lowest at 95 degC, the nearest it lists.
-    found = resistance_range(least_k=233.15, most_k=398.15, r_ref_ohm=PPOLYF_U_OHM, **PPOLYF_U)
-    assert found.least_at_k - 273.15 == pytest.approx(89.3, abs=0.05)
-    assert found.most_at_k == 233.15
-    ends_ohm = resistance_ohm(t_k=np.array([233.15, 398.15]), r_ref_ohm=PPOLYF_U_OHM, **PPOLYF_U)
-    assert found.least_ohm < np.min(ends_ohm)
-    assert found.most_ohm == np.max(ends_ohm)
+    least = minimize_scalar(
+        lambda t: float(resistance_ohm(t_k=t, r_ref_ohm=PPOLYF_U_OHM, **PPOLYF_U)),
+        bounds=(233.15, 398.15),
+        method="bounded",
+    )
+    assert least.x - 273.15 == pytest.approx(89.3, abs=0.05)
 
 
 def test_negative_coefficient_of_ihp_rhigh() -> None:
@@ -48,29 +45,6 @@ def test_negative_coefficient_of_ihp_rhigh() -> None:
     # hand at 400 K: 1360 (1 - 0.23 + 0.021).
     found = resistance_ohm(t_k=400.0, r_ref_ohm=1360.0, t_ref_k=300.0, tc1_per_k=-2300e-6, tc2_per_k2=2.1e-6)
     assert float(found) == pytest.approx(1360.0 * 0.791, rel=1e-12)
-
-
-@settings(max_examples=50, deadline=None)
-@given(
-    tc1=st.floats(-3e-3, 3e-3), tc2=st.floats(-2e-6, 4e-6), least=st.floats(230.0, 290.0), width=st.floats(1.0, 160.0)
-)
-def test_extremes_against_scipy(tc1: float, tc2: float, least: float, width: float) -> None:
-    law = {"r_ref_ohm": 1000.0, "t_ref_k": 298.15, "tc1_per_k": tc1, "tc2_per_k2": tc2}
-    found = resistance_range(least_k=least, most_k=least + width, **law)
-    ends = [float(resistance_ohm(t_k=t, **law)) for t in (least, least + width)]
-    for sign, extreme in ((1.0, found.least_ohm), (-1.0, found.most_ohm)):
-        inner = minimize_scalar(
-            lambda t, sign=sign: sign * float(resistance_ohm(t_k=float(t), **law)),
-            bounds=(least, least + width),
-            method="bounded",
-        )
-        assert sign * extreme == pytest.approx(min(inner.fun, *(sign * e for e in ends)), rel=1e-9)
-
-
-def test_a_flat_resistance_names_the_lower_end() -> None:
-    found = resistance_range(least_k=250.0, most_k=350.0, r_ref_ohm=100.0, t_ref_k=300.0, tc1_per_k=0.0, tc2_per_k2=0.0)
-    assert (found.least_ohm, found.most_ohm) == (100.0, 100.0)
-    assert (found.least_at_k, found.most_at_k) == (250.0, 250.0)
 
 
 def law(**changed: float) -> dict[str, float]:
@@ -86,12 +60,6 @@ REFUSALS: tuple[tuple[Callable[[], object], str], ...] = (
     (
         lambda: resistance_ohm(**law(t_k=400.0, tc1_per_k=-0.02)),
         "resistance_ohm must be greater than 0 (found -1000.0)",
-    ),
-    (
-        lambda: resistance_range(
-            least_k=300.0, most_k=299.0, r_ref_ohm=1.0, t_ref_k=300.0, tc1_per_k=0.0, tc2_per_k2=0.0
-        ),
-        "most_k must be at least least_k, 300.0 (found 299.0)",
     ),
 )
 

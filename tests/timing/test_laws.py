@@ -32,7 +32,7 @@ def _slack_s(states: States, waveform: Waveform) -> float:
     return float("inf") if slack is None else slack.slack_s
 
 
-@settings(max_examples=1500, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(SEEDS, st.floats(0.0, 5.0))
 def test_a_load_that_is_ready_later_never_has_more_slack(seed: int, later_s: float) -> None:
     chance = random.Random(seed)
@@ -44,7 +44,7 @@ def test_a_load_that_is_ready_later_never_has_more_slack(seed: int, later_s: flo
     assert _slack_s(evaluate(with_supply(parts), supplied_with(waveform)), waveform) <= before_s + 1e-9
 
 
-@settings(max_examples=1500, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(SEEDS, st.floats(0.0, 5.0))
 def test_a_reference_that_may_settle_later_never_has_more_slack(seed: int, later_s: float) -> None:
     chance = random.Random(seed)
@@ -63,7 +63,7 @@ def _unknown(states: States) -> Times:
     return state.may_be_unknown
 
 
-@settings(max_examples=1500, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(SEEDS, st.sampled_from(["first", "gather", "last"]))
 def test_a_hold_never_adds_an_unknown_interval(seed: int, name: str) -> None:
     chance = random.Random(seed)
@@ -78,7 +78,7 @@ def test_a_hold_never_adds_an_unknown_interval(seed: int, name: str) -> None:
     assert length_s(tuple((max(start, -LONG), min(end, LONG)) for start, end in added)) == pytest.approx(0.0, abs=1e-9)
 
 
-@settings(max_examples=1500, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(SEEDS, st.floats(-50.0, 50.0))
 def test_a_shift_in_time_shifts_every_edge_and_changes_nothing_else(seed: int, by_s: float) -> None:
     chance = random.Random(seed)
@@ -104,7 +104,7 @@ def _sets(states: States, name: str) -> tuple[Times, ...]:
     return tuple(state)
 
 
-@settings(max_examples=1500, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(SEEDS)
 def test_at_every_time_something_may_be(seed: int) -> None:
     """No time at which an element could be nothing at all."""

@@ -136,11 +136,14 @@ class Crossover(Part, frozen=True, kw_only=True):
     kind: Literal["divider_diode", "divider_mos", "crude_current"] | None = None
     ratio: float | None = None
     resistance: Resistance | None = None
+    resistor: str | None = None
     diode: str | None = None
     device: str | None = None
     gain: GainFactor | None = None
     offset: Voltage | None = None
     reference_current: Current | None = None
+    reference_start: Voltage | None = None
+    reference_rise: Voltage | None = None
     mirror: float | None = None
     note: str | None = None
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Final
 
 from tidegate.lint.reports.drawing.layers import layer_of_each, neighbours_of, ordered, spread
@@ -12,7 +13,11 @@ from tidegate.lint.reports.drawing.scale import shortened, text_width
 
 LEAST_WIDTH: Final = 960.0
 MOST_IN_A_LAYER: Final = 7
-_BOX_W: Final = 112.0
+_LEAST_W: Final = 78.0
+_MOST_W: Final = 148.0
+_LABEL: Final = 12.0
+_BESIDE_LABEL: Final = 36.0
+"""Room of a box beside its label: its glyph, and the space round both."""
 _BOX_H: Final = 32.0
 _PITCH: Final = 70.0
 _GAP: Final = 16.0
@@ -111,20 +116,34 @@ class _Layout:
     def __init__(self, picture: PictureGraph) -> None:
         self.picture = picture
         self.lane = {box.id: box.lane for box in picture.boxes}
+        self.box_width = {box.id: _box_width(box) for box in picture.boxes}
         self.layer = layer_of_each([box.id for box in picture.boxes], picture.needs, self.lane, most=MOST_IN_A_LAYER)
         self.orders: list[list[Key]] = [[] for _ in range(max(self.layer.values()) + 1)]
         for box in picture.boxes:
             self.orders[self.layer[box.id]].append((box.id, "", 0, 0))
         self._passed: set[Key] = set()
         self.courses = {number: self._course(link) for number, link in enumerate(picture.links)}
-        pairs = dict.fromkeys(
-            pair for course in self.courses.values() for pair in zip(course, course[1:], strict=False)
-        )
+        pairs = dict.fromkeys(pair for course in self.courses.values() for pair in pairwise(course))
         self.pairs = [pair for pair in pairs if self._layer_of(pair[0]) != self._layer_of(pair[1])]
         self.orders = ordered(self.orders, self.pairs, self._lane_of)
+        self._put_overrides_beside()
         self.edges = self._lane_edges()
         self.width = self.edges[-1][1]
         self.x = self._places()
+
+    def _width(self, key: Key) -> float:
+        return _PASS_W if key[1] else self.box_width[key[0]]
+
+    def _put_overrides_beside(self) -> None:
+        """Move each override next to what it overrides, where both have one layer and one lane."""
+        for link in self.picture.links:
+            source, sink = (link.source, "", 0, 0), (link.sink, "", 0, 0)
+            same = self.lane[link.source] == self.lane[link.sink] and self.layer[link.source] == self.layer[link.sink]
+            if link.style == "overrides" and same and link.source != link.sink:
+                order = self.orders[self.layer[link.source]]
+                after = order.index(source) > order.index(sink)
+                order.remove(source)
+                order.insert(order.index(sink) + after, source)
 
     def _lane_of(self, key: Key) -> int:
         return key[2] if key[1] else self.lane[key[0]]
@@ -152,7 +171,7 @@ class _Layout:
         rooms = []
         for number in range(len(self.picture.lanes)):
             widest = max(self._room([key for key in layer if self._lane_of(key) == number]) for layer in self.orders)
-            rooms.append(max(widest, _BOX_W) + 2 * _PAD)
+            rooms.append(max(widest, _MOST_W) + 2 * _PAD)
         spare = LEAST_WIDTH - sum(rooms) - _BETWEEN * (len(rooms) - 1)
         if spare > 0:
             whole = sum(rooms)
@@ -164,7 +183,7 @@ class _Layout:
         return edges
 
     def _room(self, keys: Sequence[Key]) -> float:
-        return sum(map(_width, keys)) + _GAP * max(len(keys) - 1, 0)
+        return sum(map(self._width, keys)) + _GAP * max(len(keys) - 1, 0)
 
     def _places(self) -> dict[Key, float]:
         """Middles: each near the mean of what it is linked with, in the order and the lane it has."""
@@ -180,8 +199,8 @@ class _Layout:
             left, right = self.edges[self._lane_of(group[0])]
             x = (left + right - self._room(group)) / 2
             for key in group:
-                place[key] = x + _width(key) / 2
-                x += _width(key) + _GAP
+                place[key] = x + self._width(key) / 2
+                x += self._width(key) + _GAP
         for number in range(_ROUNDS):
             for group in groups if number % 2 == 0 else reversed(groups):
                 self._settle(group, near, place)
@@ -191,10 +210,12 @@ class _Layout:
         left, right = self.edges[self._lane_of(group[0])]
         wanted = []
         for key in group:
-            others = [place[other] for other in near.get(key, ())]
+            linked = near.get(key, ())
+            passed = [other for other in linked if other[1]] if key[1] else []  # a long line is to be straight
+            others = [place[other] for other in passed or linked]
             wanted.append(sum(others) / len(others) if others else place[key])
-        distances = [(_width(a) + _width(b)) / 2 + _GAP for a, b in zip(group, group[1:], strict=False)]
-        low, high = left + _PAD + _width(group[0]) / 2, right - _PAD - _width(group[-1]) / 2
+        distances = [(self._width(a) + self._width(b)) / 2 + _GAP for a, b in pairwise(group)]
+        low, high = left + _PAD + self._width(group[0]) / 2, right - _PAD - self._width(group[-1]) / 2
         place.update(zip(group, spread(wanted, distances, low=low, high=high), strict=True))
 
     def regions(self) -> list[Region]:
@@ -210,10 +231,11 @@ class _Layout:
         """The boxes."""
         return [
             PlacedBox(
-                box, round(self.x[box.id, "", 0, 0] - _BOX_W / 2, 2), self._top(self.layer[box.id]), _BOX_W, _BOX_H,
-                shortened(box.label, width=_BOX_W - 32.0, size=12.0),
+                box, round(self.x[box.id, "", 0, 0] - width / 2, 2), self._top(self.layer[box.id]), width, _BOX_H,
+                shortened(box.label, width=width - _BESIDE_LABEL, size=_LABEL),
             )
             for box in self.picture.boxes
+            for width in (self.box_width[box.id],)
         ]  # fmt: skip
 
     def _top(self, layer: int) -> float:
@@ -222,9 +244,7 @@ class _Layout:
     def links(self) -> list[PlacedLink]:
         """The links, those on failing paths last, so that they lie on top."""
         ports = self._ports()
-        placed = [
-            PlacedLink(link, self._path(number, link, ports)) for number, link in enumerate(self.picture.links)
-        ]
+        placed = [PlacedLink(link, self._path(number, link, ports)) for number, link in enumerate(self.picture.links)]
         return sorted(placed, key=lambda one: one.link.failing)
 
     def _ports(self) -> dict[tuple[int, str], float]:
@@ -238,7 +258,7 @@ class _Layout:
             ends.setdefault((lower, False), []).append((self.x[course[-2]], number))
         ports: dict[tuple[int, str], float] = {}
         for (box, _), found in ends.items():
-            room = _BOX_W * _PORTS
+            room = self.box_width[box] * _PORTS
             for at, (_, number) in enumerate(sorted(found)):
                 ports[number, box] = room * ((at + 0.5) / len(found) - 0.5)
         return ports
@@ -264,16 +284,19 @@ class _Layout:
         y = self._top(self.layer[link.source])
         sign = 1.0 if self.x[sink] > self.x[source] else -1.0
         if abs(order.index(source) - order.index(sink)) == 1:
-            start, end = self.x[source] + sign * _BOX_W / 2, self.x[sink] - sign * _BOX_W / 2
+            start = self.x[source] + sign * self._width(source) / 2
+            end = self.x[sink] - sign * self._width(sink) / 2
             level = y + _BOX_H * (0.3 if sign > 0 else 0.7)
             return f"M{start:.1f} {level:.1f}L{end:.1f} {level:.1f}"
-        start, end = self.x[source] + sign * _BOX_W * 0.42, self.x[sink] - sign * _BOX_W * 0.42
+        start = self.x[source] + sign * self._width(source) * 0.42
+        end = self.x[sink] - sign * self._width(sink) * 0.42
         low, bow = y + _BOX_H, y + _BOX_H + 26.0
         return f"M{start:.1f} {low:.1f}C{start:.1f} {bow:.1f} {end:.1f} {bow:.1f} {end:.1f} {low:.1f}"
 
 
-def _width(key: Key) -> float:
-    return _PASS_W if key[1] else _BOX_W
+def _box_width(box: Box) -> float:
+    wanted = text_width(box.label, _LABEL) + _BESIDE_LABEL + 1.0
+    return round(min(max(wanted, _LEAST_W), _MOST_W), 2)
 
 
 def _curve(points: Sequence[tuple[float, float]]) -> str:

@@ -34,7 +34,7 @@ def _quoted(text: str) -> str:
 def graphml_text(graph: Graph, *, name: str) -> str:
     """The graph in GraphML: each node with its section, each edge with its relation and the fact that says it."""
     # Loaded here alone: only this text needs the library.
-    import networkx
+    import networkx  # type: ignore[import-untyped]
 
     made: Any = networkx.MultiDiGraph(name=plain(name))
     for element in graph.elements.values():

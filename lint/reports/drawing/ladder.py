@@ -104,7 +104,7 @@ def draw_ladder(ladder: Ladder) -> LadderDrawing | None:
     """The picture of a ladder; None where there are too few levels to draw any."""
     if len(ladder.rungs) < 2:
         return None
-    whole = Linear(0.0, 1.02 * max(rung.window.most_v for rung in ladder.rungs), _LEFT, _RIGHT)
+    whole = Linear(0.0, 1.06 * max(rung.window.most_v for rung in ladder.rungs), _LEFT, _RIGHT)
     close = _crowded(ladder.rungs, whole)
     main = close or whole
     staff_bottom = _STAFF_TOP + _STAFF_ROW * len(ladder.rungs) if close else 0.0

@@ -73,9 +73,7 @@ def crossings(orders: Orders[Node], links: Sequence[tuple[Node, Node]]) -> int:
     return count
 
 
-def ordered(
-    orders: Orders[Node], links: Sequence[tuple[Node, Node]], lane: Callable[[Node], int]
-) -> Orders[Node]:
+def ordered(orders: Orders[Node], links: Sequence[tuple[Node, Node]], lane: Callable[[Node], int]) -> Orders[Node]:
     """The layers, each ordered by lane and within it so that few links between neighbouring layers cross."""
     above: dict[Node, list[Node]] = {}
     below: dict[Node, list[Node]] = {}
@@ -109,9 +107,7 @@ def _by_barycentre(
     return [node for _, node in sorted(enumerate(layer), key=key)]
 
 
-def spread(
-    wanted: Sequence[float], distances: Sequence[float], *, low: float, high: float
-) -> list[float]:
+def spread(wanted: Sequence[float], distances: Sequence[float], *, low: float, high: float) -> list[float]:
     """Places in order, as near to the wanted ones as their least distances allow, in the sense of least squares.
 
     ``distances`` has one entry for each pair of neighbours.  All lie between ``low`` and ``high`` where they fit.

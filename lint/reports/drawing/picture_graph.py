@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Final
 
 from tidegate.lint.description.model.description import Description
@@ -99,6 +100,11 @@ def picture_graph(
     return whole if len(boxes) <= most else _grouped(whole)
 
 
+def elements_shown(graph: Graph) -> int:
+    """How many elements are boxes; what couples two of them is a line."""
+    return sum(1 for element in graph.elements.values() if element.section != "neighbours")
+
+
 def _needed(graph: Graph, name: str) -> list[str]:
     """What must stand above an element; an override stands beside what it overrides."""
     found = [other for other, _, _ in graph.needs(name)]
@@ -112,7 +118,7 @@ def _lanes(description: Description, graph: Graph, names: Sequence[str]) -> tupl
     order = {"always_on": 0, "switched": 1, None: 2}
     domains = sorted(description.domains.values(), key=lambda domain: order[domain.kind])
     home = {name: _home(graph.elements[name]) for name in names}
-    lanes = [Lane("", "supplies, and what stands in no domain", "outside")] if "" in home.values() else []
+    lanes = [Lane("", "in no domain", "outside")] if "" in home.values() else []
     words = {"always_on": "always on", "switched": "switched", None: "kind not given"}
     for domain in domains:
         feed = f", from {domain.rail}" if domain.rail else ""
@@ -142,7 +148,7 @@ def _judged(judgements: Iterable[Judgement]) -> tuple[dict[str, str], set[str], 
         if kind is Kind.FAIL:
             hops = [hop.element for hop in judgement.path]
             on_path.update((judgement.subject, *hops))
-            for one, other in zip(hops, hops[1:], strict=False):
+            for one, other in pairwise(hops):
                 steps.update(((one, other), (other, one)))
     return {subject: kind.value for subject, kind in worst.items()}, on_path, steps
 

@@ -6,9 +6,10 @@ import math
 from bisect import bisect_right
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Final
 
-_WIDE: Final = 0.64
+_WIDE: Final = 0.61
 """Width of a character as a share of the size of its type: that of a wide plain face, so that no label is too short
 of room in any."""
 
@@ -59,7 +60,7 @@ class Stretched:
 def stretched(values: Iterable[float], *, start: float, end: float, power: float) -> Stretched:
     """A scale with a knot at each value; a stretch has room in proportion to a power, below 1, of its length."""
     knots = sorted(set(values))
-    weights = [(high - low) ** power for low, high in zip(knots, knots[1:], strict=False)]
+    weights = [(high - low) ** power for low, high in pairwise(knots)]
     whole = sum(weights) or 1.0
     places = [start]
     for weight in weights:

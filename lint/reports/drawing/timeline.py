@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass
-from itertools import chain
+from itertools import chain, pairwise
 from typing import Final
 
 from tidegate.lint.quantity import Dimension, show
@@ -28,7 +28,7 @@ _RAIL_ROW: Final = 40.0
 _GROUP: Final = 20.0
 _POWER: Final = 0.4
 _SMALL: Final = 12.0
-_T: Final = Dimension.TIME
+_T: Final = Dimension.DURATION
 
 _GROUPS: Final = (
     ("rails", "rails"), ("references", "references"), ("biases", "bias"), ("comparators", "detectors"),
@@ -42,7 +42,7 @@ class Piece:
     """A stretch of time in which an element may be the same things."""
 
     kind: str
-    """asserted, held, released, either, unknown; or on, off, maybe."""
+    """asserted, held, released, either, unclear, unknown (a reset net alone); or on, off, maybe."""
     x: float
     width: float
 
@@ -130,7 +130,7 @@ def draw_timeline(line: Timeline, lines: Timelines) -> TimelineDrawing | None:
             y += _GROUP
         for name in names:
             height = _RAIL_ROW if section == "rails" else _ROW
-            rows.append(_row(name, NOUNS[section], line, scale, y, height))
+            rows.append(_row(name, NOUNS[section], line, scale, y=y, height=height))
             y += height
     return TimelineDrawing(
         name=line.scenario.name, about=line.scenario.about, scene=line.scenario.scene.value, height=y + 34.0,
@@ -206,7 +206,7 @@ def _made(on: Times, *, delay_s: float, supply: MadeSupply) -> list[tuple[float,
     return sorted(points, key=lambda point: point[0])
 
 
-def _row(name: str, noun: str, line: Timeline, scale: Stretched, y: float, height: float) -> Row:
+def _row(name: str, noun: str, line: Timeline, scale: Stretched, *, y: float, height: float) -> Row:
     state = line.states[name]
     lanes: tuple[Lane, ...] = ()
     waves: tuple[Wave, ...] = ()
@@ -214,7 +214,11 @@ def _row(name: str, noun: str, line: Timeline, scale: Stretched, y: float, heigh
     if isinstance(state, Supply):
         waves = tuple(_wave(points, scale, y, height, late=bool(n)) for n, points in enumerate(_waves_of(state)))
     elif isinstance(state, Decision):
-        lanes = (Lane("", y + 4.0, height - 8.0, _decided(state, scale)),)
+        lanes = (
+            Lane(
+                "", y + 4.0, height - 8.0, _decided(state, scale, "unknown" if noun == NOUNS["resets"] else "unclear")
+            ),
+        )
     elif isinstance(state, On):
         lanes = (Lane("", y + 4.0, height - 8.0, _is_on(state, scale)),)
     elif isinstance(state, LoadState):
@@ -239,7 +243,7 @@ def _wave(points: Sequence[tuple[float, float]], scale: Stretched, y: float, hei
     knots = [knot for knot in scale.knots if points[0][0] < knot < points[-1][0]]
     times = sorted({*knots, *(at_s for at_s, _ in points if abs(at_s) < FOREVER_S)})
     times = [scale.knots[0], *times, scale.knots[-1]]
-    shown = []
+    shown: list[str] = []
     for at_s in times:
         for level_v in _levels_v(points, at_s):
             place = f"{scale.at(at_s):g},{round(low_y - room * level_v / most_v, 2):g}"
@@ -263,10 +267,10 @@ def _levels_v(points: Sequence[tuple[float, float]], at_s: float) -> Sequence[fl
     return (from_v + (to_v - from_v) * (at_s - from_s) / (to_s - from_s),)
 
 
-def _decided(state: Decision, scale: Stretched) -> tuple[Piece, ...]:
+def _decided(state: Decision, scale: Stretched, unknown: str) -> tuple[Piece, ...]:
     def kind(at_s: float) -> str:
         if is_in(state.may_be_unknown, at_s):
-            return "unknown"
+            return unknown
         asserts, releases = is_in(state.may_assert, at_s), is_in(state.may_release, at_s)
         if asserts and releases:
             return "either"
@@ -285,13 +289,13 @@ def _is_on(state: On, scale: Stretched) -> tuple[Piece, ...]:
     return _pieces((state.may_be_on, state.may_be_off), kind, scale)
 
 
-def _pieces(sets: Iterable[Times], kind, scale: Stretched) -> tuple[Piece, ...]:  # type: ignore[no-untyped-def]
+def _pieces(sets: Iterable[Times], kind: Callable[[float], str], scale: Stretched) -> tuple[Piece, ...]:
     """Stretches between the times at which anything changes, those alike made one, those too short to see left out."""
     first_s, last_s = scale.knots[0], scale.knots[-1]
     inner = {at_s for times in sets for span in times for at_s in span if first_s < at_s < last_s}
     ends = sorted({first_s, last_s, *inner})
     found: list[tuple[str, float, float]] = []
-    for start_s, end_s in zip(ends, ends[1:], strict=False):
+    for start_s, end_s in pairwise(ends):
         what = kind((start_s + end_s) / 2)
         if found and found[-1][0] == what:
             found[-1] = (what, found[-1][1], scale.at(end_s))

@@ -194,6 +194,9 @@ class DescriptionPart:
     waived: int
     closest: LedgerRow | None
     closest_says: str
+    closest_mend: str
+    next_closest: tuple[LedgerRow, ...]
+    """The margins that come after the closest."""
     todo: tuple[Todo, ...]
     more_todo: int
     families: tuple[FamilyRow, ...]

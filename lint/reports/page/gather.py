@@ -13,7 +13,7 @@ from tidegate.lint.engine import WEIGHT, Review
 from tidegate.lint.judgement import Judgement, Kind, Level
 from tidegate.lint.reports.drawing.graph import draw_graph
 from tidegate.lint.reports.drawing.ladder import draw_ladder
-from tidegate.lint.reports.drawing.picture_graph import picture_graph
+from tidegate.lint.reports.drawing.picture_graph import elements_shown, picture_graph
 from tidegate.lint.reports.drawing.timeline import draw_timeline
 from tidegate.lint.reports.ladder import ladders
 from tidegate.lint.reports.order import by_element, closest_first, described, kind_word, missing_facts, verdict
@@ -38,6 +38,7 @@ from tidegate.lint.waivers import STILL_RIGHT
 
 MOST_TIMELINES: Final = 16
 MOST_TODO: Final = 4
+NEXT_CLOSEST: Final = 3
 _COUNTED: Final = (Kind.PASS, Kind.FAIL, Kind.REVIEW, Kind.OPEN, Kind.NOT_APPLICABLE)
 _FINDINGS: Final = (Kind.FAIL, Kind.REVIEW, Kind.OPEN)
 _UNFIT: Final = re.compile(r"[^A-Za-z0-9_.-]+")
@@ -50,7 +51,8 @@ def gather(judged: Judged) -> DescriptionPart | UnusablePart:
     review = judged.review
     description = review.loaded.description
     measured = closest_first(review.judgements)
-    closest = next((judgement for judgement in measured if not judgement.waiver), None)
+    live = [judgement for judgement in measured if not judgement.waiver]
+    closest = live[0] if live else None
     todo = _todo(review)
     said = verdict(review)
     return DescriptionPart(
@@ -65,6 +67,8 @@ def gather(judged: Judged) -> DescriptionPart | UnusablePart:
         waived=sum(1 for judgement in review.judgements if judgement.waiver),
         closest=None if closest is None else _ledger_row(closest),
         closest_says="" if closest is None else closest.message,
+        closest_mend="" if closest is None else closest.mend,
+        next_closest=tuple(_ledger_row(judgement) for judgement in live[1 : 1 + NEXT_CLOSEST]),
         todo=tuple(todo[:MOST_TODO]),
         more_todo=max(len(todo) - MOST_TODO, 0),
         families=tuple(_families(review)),
@@ -219,23 +223,24 @@ def _pictures(review: Review) -> Pictures:
         timelines=tuple(drawing for drawing in timed if drawing is not None),
         no_timeline="" if courses else "no rail says how it rises (rails.*.nominal, rails.*.rise)",
         more_timelines=max(len(courses) - MOST_TIMELINES, 0),
-        graph=draw_graph(picture, elements=sum(e.section != "neighbours" for e in graph.elements.values())),
+        graph=draw_graph(picture, elements=elements_shown(graph)),
         edges=tuple((edge.tail, edge.kind.forwards, edge.head) for edge in graph.edges()),
     )
 
 
 def _waivers(review: Review) -> Iterable[WaiverRow]:
     """Each waiver, with what the rule that judges waivers says of it."""
-    judged = {judgement.subject: judgement for judgement in review.judgements if judgement.rule == STILL_RIGHT.id}
+    judged = {review.place(judgement): judgement for judgement in review.judgements if judgement.rule == STILL_RIGHT.id}
     covered = {(judgement.rule, judgement.subject): anchor(judgement) for judgement in review.judgements}
-    named = [(f"waivers[{number}]", waiver) for number, waiver in enumerate(review.loaded.description.waivers)]
-    named += [(placed.name, placed.waiver) for placed in review.settings.waived if placed.name in judged]
-    for name, waiver in named:
-        judgement = judged.get(name)
+    own = review.loaded.description.waivers
+    placed = [(review.loaded.sources.place(("waivers", number)), waiver) for number, waiver in enumerate(own)]
+    placed += [(one.place, one.waiver) for one in review.settings.waived if one.place in judged]
+    for place, waiver in placed:
+        judgement = judged.get(place)
         yield WaiverRow(
             rule=waiver.rule, element=waiver.element, why=waiver.why, agreed_by=waiver.agreed_by, until=waiver.until,
             margin=waiver.margin or "", stands=judgement is not None and judgement.kind is Kind.PASS,
             says="not judged" if judgement is None else judgement.message,
-            place="" if judgement is None else str(review.place(judgement)),
+            place=str(place),
             finding=covered.get((waiver.rule, waiver.element), ""),
         )  # fmt: skip

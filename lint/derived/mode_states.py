@@ -1,0 +1,105 @@
+"""Which elements are awake in each operating mode, and which detectors still reset what."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from functools import lru_cache
+
+from tidegate.lint.description.model.description import Description, Mode
+from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.description.model.reset_path import Load
+from tidegate.lint.graph.dependency import Graph
+from tidegate.lint.graph.edge import Edge, EdgeKind
+from tidegate.lint.graph.paths import Reach, driven_by
+
+_SLEEPS_WITH = frozenset(
+    {EdgeKind.SUPPLIED_BY, EdgeKind.BIASED_BY, EdgeKind.TAKES_REFERENCE_FROM, EdgeKind.LEANS_ON, EdgeKind.GATED_BY}
+)
+"""What an element that leans on a sleeping one cannot do without."""
+
+
+@dataclass(frozen=True, slots=True)
+class Asleep:
+    """Why an element does nothing in a mode: what is off, or itself where it is masked."""
+
+    because: str
+    masked: bool = False
+
+    def text(self, element: str) -> str:
+        """``uv is off``, ``uv is masked``, ``uv leans on ref_fast, which is off``."""
+        if self.masked:
+            return f"{element} is masked"
+        return f"{element} is off" if self.because == element else f"{element} leans on {self.because}, which is off"
+
+
+class ModeState:
+    """One mode."""
+
+    def __init__(self, name: str, mode: Mode, graph: Graph) -> None:
+        self.name = name
+        self.mode = mode
+        self.graph = graph
+        self.asleep: Mapping[str, Asleep] = self._asleep()
+        self._heard: dict[str, frozenset[str]] = {}
+
+    def _asleep(self) -> dict[str, Asleep]:
+        """What is off, and all that cannot do without it."""
+        found = {name: Asleep(name) for name in self.mode.off or ()}
+        waiting = list(found)
+        while waiting:
+            here = waiting.pop()
+            for edge in self.graph.into(here):
+                if edge.kind in _SLEEPS_WITH and edge.tail not in found:
+                    found[edge.tail] = Asleep(found[here].because)
+                    waiting.append(edge.tail)
+        return found
+
+    def why_deaf(self, detector: str) -> Asleep | None:
+        """Why a detector decides nothing; None where it does."""
+        if detector in (self.mode.masked or ()):
+            return Asleep(detector, masked=True)
+        return self.asleep.get(detector)
+
+    def heard_by(self, net: str) -> frozenset[str]:
+        """The detectors that decide and whose decision reaches a net through stages that are awake."""
+        if net not in self._heard:
+            back = driven_by(self.graph)
+
+            def awake(name: str) -> Iterator[tuple[str, str, Edge]]:
+                return (step for step in back(name) if self.why_deaf(step[0]) is None)
+
+            reach = Reach(net, awake)
+            self._heard[net] = frozenset(name for name in reach if isinstance(self.graph.elements[name], Comparator))
+        return self._heard[net]
+
+    def is_off(self, load: Load) -> bool:
+        """Whether a load is off, by itself, with its domain or with a rail it needs."""
+        whole = (load.id, load.domain, *(need.rail for need in load.needs))
+        return load.domain in self.asleep or any(name in (self.mode.off or ()) for name in whole)
+
+
+class _Same:
+    """Two objects as a key: the same key where both are the same objects."""
+
+    __slots__ = ("description", "graph")
+
+    def __init__(self, description: Description, graph: Graph) -> None:
+        self.description = description
+        self.graph = graph
+
+    def __hash__(self) -> int:
+        return id(self.graph)
+
+    def __eq__(self, other: object) -> bool:
+        return isinstance(other, _Same) and other.graph is self.graph and other.description is self.description
+
+
+def mode_states(description: Description, graph: Graph) -> tuple[ModeState, ...]:
+    """Every mode; those of the last description asked for are kept."""
+    return _mode_states(_Same(description, graph))
+
+
+@lru_cache(maxsize=1)
+def _mode_states(of: _Same) -> tuple[ModeState, ...]:
+    return tuple(ModeState(name, mode, of.graph) for name, mode in of.description.modes.items())

@@ -1,0 +1,150 @@
+"""Budget: currents of a domain, and small currents beside their leakage."""
+
+from __future__ import annotations
+
+from typing import Any, Final
+
+import pytest
+
+from tests.rules.sound import both, changed, judged, of_kind, without
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules.budget import RULES
+
+FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
+WITHIN: Final = "budget/within"
+BIAS: Final = "budget/bias_above_leakage"
+DETECTOR: Final = "budget/detector_timing_above_leakage"
+STAGE: Final = "budget/stage_timing_above_leakage"
+EXAMPLES: Final = {
+    WITHIN: {(WITHIN, "aon")},
+    BIAS: {(BIAS, "bias_start")},
+    DETECTOR: {(DETECTOR, "uv")},
+    STAGE: {(STAGE, "core_out")},
+}
+
+HOLDS_A: Final = 1.89 / 1.6e6 + 1.89 / 0.8e6 + 1.89 / 0.8e6  # gather, rst_out, core_out
+CIRCUITS_A: Final = 1.2e-6 + 0.2e-6 + 0.4e-6 + 3 * 0.35e-6 + 10e-9 + 20e-9 + 20e-9
+DIVIDERS_A: Final = 1.89 / (3.8e6 + 2.2e6) + 1.89 / (4.14e6 + 1.86e6)  # uv and ov; that of uv_core hangs on vcore
+TAKEN_A: Final = HOLDS_A + CIRCUITS_A + DIVIDERS_A
+
+
+def one(patch: str, rule: str, subject: str) -> Judgement:
+    return judged(patch, RULES)[rule, subject]
+
+
+def test_the_sound_example_keeps_every_rule() -> None:
+    assert of_kind(judged("", RULES), FAIL, OPEN, Kind.REVIEW) == []
+
+
+@pytest.mark.parametrize("rule", RULES, ids=lambda rule: str(rule.id))
+def test_each_example_fails_in_one_place_and_holds(rule: Any) -> None:
+    bad = {key for key, kind in changed(rule.example.fails, RULES).items() if kind not in (PASS, NONE)}
+    assert bad == EXAMPLES[rule.id]
+    assert {said.kind for key, said in judged(rule.example.holds, RULES).items() if key[0] == rule.id} <= {PASS, NONE}
+
+
+# budget/within
+
+
+def test_all_that_a_domain_takes_is_added_up() -> None:
+    assert pytest.approx(9.43625e-6, rel=1e-12) == TAKEN_A
+    said = one("domains: {aon: {budget: 9 uA}}", WITHIN, "aon")
+    assert said.measure is not None
+    assert said.measure.have == pytest.approx(TAKEN_A, rel=1e-12)
+    assert said.message == "takes at rest 9.436 uA, at most 9 uA needed"
+    assert said.why == (
+        "hold of rst_out 2.362 uA, hold of core_out 2.362 uA, ref_fast 1.2 uA, hold of gather 1.181 uA, por 400 nA, "
+        "9 more 1.93 uA"
+    )
+    assert said.mend == "take 437 nA less, or a budget of at least 9.44 uA"
+
+
+@pytest.mark.parametrize(("budget", "kind"), [("9.43624", FAIL), ("9.43625", PASS), ("9.43626", PASS)])
+def test_budget_at_its_limit(budget: str, kind: Kind) -> None:
+    assert one(f"domains: {{aon: {{budget: {budget} uA}}}}", WITHIN, "aon").kind is kind
+
+
+def test_divider_from_another_rail_counts_where_it_hangs() -> None:
+    """uv_core lives in aon, and its divider of 2.3 Mohm and 2.72 Mohm hangs on vcore, at most 1.26 V."""
+    said = one("", WITHIN, "core")
+    assert said.measure is not None
+    assert said.measure.have == pytest.approx(1.26 / 5.02e6, rel=1e-12)
+    assert said.why == "divider of uv_core 251 nA"
+
+
+def test_holds_and_circuits_that_pass_it_alone_are_the_matter_of_another_rule() -> None:
+    said = one("domains: {aon: {budget: 8 uA}}", WITHIN, "aon")
+    assert (said.kind, said.message) == (
+        NONE, "its holds and circuits alone pass it (passive_default/holds_within_budget says so)",
+    )  # fmt: skip
+
+
+def test_what_is_off_in_a_mode_takes_nothing_there() -> None:
+    """Without uv and its divider: 9.43625 uA - 0.35 uA - 0.315 uA."""
+    said = one("modes: {drift: {off: [ref_main, adc, uv]}}", WITHIN, "aon")
+    assert said.why.endswith("; 8.771 uA in drift")
+    assert one("modes: {drift: {off: [analog]}}", WITHIN, "analog").why.endswith("; 0 A in drift; 1.2 uA in self_test")
+
+
+@pytest.mark.parametrize(
+    "fact",
+    [
+        "domains.aon.budget", "domains.aon.rail", "rails.avdd.delivered", "comparators.uv.divider.top",
+        "comparators.uv.divider.bottom", "references.ref_fast.consumes", "output_stages.rst_out.hold",
+        "output_stages.rst_out.hold.resistance", "biases.bias_start.consumes", "comparators.por.consumes",
+    ],
+)  # fmt: skip
+def test_within_is_open_without(fact: str) -> None:
+    said = one(without(fact), WITHIN, "aon")
+    assert (said.kind, said.missing) == (OPEN, (fact,))
+
+
+def test_everything_that_is_missing_is_named_at_once() -> None:
+    gone = ("domains.aon.budget", "comparators.uv.divider.top", "references.ref_fast.consumes")
+    assert set(one(without(*gone), WITHIN, "aon").missing) == set(gone)
+
+
+def test_switched_domain_needs_no_budget() -> None:
+    assert one(without("domains.analog.budget"), WITHIN, "analog").kind is NONE
+
+
+# leakage
+
+
+@pytest.mark.parametrize(("leakage", "kind"), [("3.999 nA", PASS), ("4 nA", PASS), ("4.001 nA", FAIL)])
+def test_bias_current_is_ten_times_its_leakage(leakage: str, kind: Kind) -> None:
+    """40 nA at its least, and ten times 4 nA."""
+    assert one(f"biases: {{bias_start: {{leakage: {{max: {leakage}}}}}}}", BIAS, "bias_start").kind is kind
+
+
+def test_bias_that_drowns() -> None:
+    said = one("biases: {bias_start: {leakage: {max: 6 nA}}}", BIAS, "bias_start")
+    assert said.message == "its current at its least 40 nA, at least 60 nA needed"
+    assert said.why == "10 times 6 nA, which leaks on its node at the hottest corner"
+    assert said.mend == "a current of at least 60 nA, or leakage of at most 4 nA"
+
+
+@pytest.mark.parametrize("fact", ["biases.bias_start.current", "biases.bias_start.leakage"])
+def test_bias_is_open_without(fact: str) -> None:
+    assert one(without(fact), BIAS, "bias_start").missing == (fact,)
+
+
+def test_timing_through_a_resistance() -> None:
+    """(1.71 V - 0.5 V) through 20 Mohm are 60.5 nA: ten times 6.05 nA."""
+    timing = "comparators: {uv: {timing: {current: null, resistance: {max: 20 Mohm}, threshold: {max: 0.5 V}, LEAK}}}"
+    for leakage, kind in (("6.05 nA", PASS), ("6.06 nA", FAIL)):
+        patch = timing.replace("LEAK", f"leakage: {{max: {leakage}}}")
+        said = one(patch, DETECTOR, "uv")
+        assert said.measure is not None
+        assert (said.kind, said.measure.have) == (kind, pytest.approx(60.5e-9, rel=1e-12))
+
+
+def test_counted_time_does_not_leak() -> None:
+    patch = "output_stages: {core_out: {timing: {count: 100, period: {min: 9 us, max: 12 us}}}}"
+    assert one(patch, STAGE, "core_out").kind is NONE
+    assert one("", STAGE, "core_out").message == "does not say what makes a time of it (timing)"
+
+
+def test_timing_is_open_without_its_leakage() -> None:
+    gone = both(without("comparators.uv.timing.leakage"))
+    assert one(gone, DETECTOR, "uv").missing == ("comparators.uv.timing.leakage",)

@@ -1,0 +1,171 @@
+"""Crossing: signals between supplies, and what is always on and leans on what is not."""
+
+from __future__ import annotations
+
+from typing import Any, Final
+
+import pytest
+
+from tests.rules.sound import both, changed, judged, of_kind, without
+from tidegate.lint.graph.edge import path_text
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules.crossing import RULES
+
+FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
+STAGE: Final = "crossing/stage_shifted"
+NET: Final = "crossing/reset_net_shifted"
+HELD: Final = "crossing/input_held"
+DETECTOR: Final = "crossing/detector_stays_on"
+STAYS: Final = "crossing/output_stage_stays_on"
+
+EXAMPLES: Final = {
+    STAGE: {(STAGE, "gather"), (STAGE, "rst_out")},  # into vcore, and back out of it
+    NET: {(NET, "core_rst_n")},
+    HELD: {(HELD, "gather")},
+    DETECTOR: {(DETECTOR, "uv_core")},
+    "crossing/reference_stays_on": {("crossing/reference_stays_on", "ref_spare")},
+    "crossing/bias_stays_on": {("crossing/bias_stays_on", "bias_copy")},
+    STAYS: {(STAYS, "core_out")},
+}
+
+
+def one(patch: str, rule: str, subject: str) -> Judgement:
+    return judged(patch, RULES)[rule, subject]
+
+
+def test_the_sound_example_keeps_every_rule() -> None:
+    assert of_kind(judged("", RULES), FAIL, OPEN, Kind.REVIEW) == []
+
+
+@pytest.mark.parametrize("rule", RULES, ids=lambda rule: str(rule.id))
+def test_each_example_fails_where_it_should_and_holds(rule: Any) -> None:
+    bad = {key for key, kind in changed(rule.example.fails, RULES).items() if kind not in (PASS, NONE)}
+    assert bad == EXAMPLES[rule.id]
+    assert {said.kind for key, said in judged(rule.example.holds, RULES).items() if key[0] == rule.id} <= {PASS, NONE}
+
+
+# level shifters
+
+
+def test_net_read_on_another_supply() -> None:
+    said = one("output_stages: {core_out: {kind: buffer}}", NET, "core_rst_n")
+    assert said.message == "core_out drives it from avdd, and it is read on vcore, with no level shifter between"
+    assert (said.why, said.mend) == ("avdd is 1.8 V, vcore 1.2 V", "a level shifter from avdd to vcore")
+    assert path_text(said.path) == "core_out drives core_rst_n"
+    assert one("", NET, "core_rst_n").message == "shifted from core_out"
+
+
+def test_level_shifter_at_either_end_will_do() -> None:
+    assert one("output_stages: {rst_out: {domain: core, kind: level_shifter}}", STAGE, "rst_out").kind is PASS
+    assert one("output_stages: {rst_out: {domain: core, kind: level_shifter}}", NET, "por_n").kind is PASS
+
+
+def test_rails_of_one_nominal_level_need_no_shifter() -> None:
+    patch = "{rails: {vcore: {nominal: 1.8 V}}, output_stages: {core_out: {kind: buffer}}}"
+    said = one(patch, NET, "core_rst_n")
+    assert (said.kind, said.message) == (PASS, "from core_out at the same nominal level")
+
+
+@pytest.mark.parametrize(
+    ("gone", "missing"),
+    [
+        ("resets.core_rst_n.domain", {"resets.core_rst_n.domain"}),
+        ("output_stages.core_out.domain", {"output_stages.core_out.domain"}),
+        ("output_stages.core_out.kind", {"output_stages.core_out.kind"}),
+        ("domains.core.rail", {"domains.core.rail"}),
+        ("resets.core_rst_n.driven_by", {"resets.core_rst_n.driven_by"}),
+    ],
+)
+def test_net_is_open_without(gone: str, missing: set[str]) -> None:
+    said = one(without(gone), NET, "core_rst_n")
+    assert (said.kind, set(said.missing)) == (OPEN, missing)
+
+
+def test_nominal_levels_are_asked_for_where_no_shifter_stands() -> None:
+    patch = both("output_stages: {core_out: {kind: buffer}}", without("rails.avdd.nominal", "rails.vcore.nominal"))
+    assert set(one(patch, NET, "core_rst_n").missing) == {"rails.avdd.nominal", "rails.vcore.nominal"}
+    assert one(without("rails.avdd.nominal"), NET, "core_rst_n").kind is PASS
+
+
+# holds
+
+
+def test_driver_in_a_switched_domain() -> None:
+    said = one("output_stages: {uv_out: {domain: analog}}", HELD, "gather")
+    assert said.message == "uv_out drives it, is not held, and lives in analog, which is switched"
+    assert said.mend == "hold the output of uv_out, or move uv_out to the domain of gather"
+    assert path_text(said.path) == "uv_out drives gather"
+
+
+def test_driver_on_a_later_rail() -> None:
+    said = one("output_stages: {uv_out: {domain: core}}", HELD, "gather")
+    assert said.message.endswith("and lives on vcore, which is not among the rails that are up before avdd")
+
+
+def test_driver_on_an_earlier_rail_is_alive() -> None:
+    assert one("output_stages: {core_out: {domain: core}}", HELD, "core_out").kind is NONE
+
+
+def test_detector_as_a_driver_says_what_its_output_does() -> None:
+    moved = "comparators: {uv_core: {domain: core}}"
+    said = one(moved, HELD, "core_out")
+    assert said.kind is PASS  # core_out is a level shifter, and held
+    bare = both(moved, "output_stages: {core_out: {kind: buffer}}")
+    assert one(bare, HELD, "core_out").missing == ("comparators.uv_core.undecided",)
+    undefined = both(bare, "comparators: {uv_core: {undecided: undefined}}")
+    said = one(undefined, HELD, "core_out")
+    assert said.message == (
+        "uv_core drives it, what its output does while it cannot decide is not defined, and it lives on vcore, which "
+        "is not among the rails that are up before avdd"
+    )
+    assert one(both(bare, "comparators: {uv_core: {undecided: asserts}}"), HELD, "core_out").kind is PASS
+
+
+@pytest.mark.parametrize("fact", ["output_stages.uv_out.domain", "output_stages.gather.driven_by"])
+def test_hold_is_open_without(fact: str) -> None:
+    said = one(without(fact), HELD, "gather")
+    assert (said.kind, said.missing) == (OPEN, (fact,))
+
+
+def test_hold_that_is_not_said_is_asked_for() -> None:
+    patch = both("output_stages: {uv_out: {domain: analog}}", without("output_stages.uv_out.hold"))
+    assert one(patch, HELD, "gather").missing == ("output_stages.uv_out.hold",)
+
+
+# what is always on
+
+
+def test_detector_that_compares_with_a_switched_reference() -> None:
+    said = one("comparators: {uv_core: {reference: ref_main}}", DETECTOR, "uv_core")
+    assert said.message == (
+        "it is always on and takes its reference from ref_main, which lives in analog, which is switched"
+    )
+    assert said.why == "while analog is off, uv_core has no source"
+    assert path_text(said.path) == "uv_core takes its reference from ref_main supplied by analog"
+
+
+def test_detector_that_asserts_meanwhile_is_safe() -> None:
+    patch = "comparators: {uv_core: {reference: ref_main, undecided: asserts}}"
+    said = one(patch, DETECTOR, "uv_core")
+    assert (said.kind, said.message) == (PASS, "asserts while analog is off, in which ref_main lives")
+
+
+def test_what_a_detector_switches_on_itself_is_the_matter_of_another_rule() -> None:
+    """uv asserts por_n, which switches analog, in which ref_main lives."""
+    assert one("comparators: {uv: {reference: ref_main}}", DETECTOR, "uv").kind is NONE
+
+
+def test_stage_enabled_from_the_domain_that_is_switched() -> None:
+    stage = "enable: {driven_by: [uv], domain: analog, kind: buffer, HOLD}, core_out: {gated_by: enable}"
+    bare = "output_stages: {" + stage.replace("HOLD", "hold: none") + "}"
+    held = "output_stages: {" + stage.replace("HOLD", "hold: {to: low, through: resistor, resistance: 1 Mohm}") + "}"
+    assert one(bare, STAYS, "core_out").message == (
+        "it is always on and is gated by enable, which lives in analog, which is switched"
+    )
+    assert one(held, STAYS, "core_out").kind is PASS
+
+
+@pytest.mark.parametrize("fact", ["domains.aon.kind", "comparators.uv.domain", "references.ref_fast.domain"])
+def test_always_on_is_open_without(fact: str) -> None:
+    said = one(without(fact), DETECTOR, "uv")
+    assert (said.kind, said.missing) == (OPEN, (fact,))
