@@ -6,7 +6,7 @@ from typing import Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.guarding_nets import LOW_ROLES, detectors_behind_nets, note_undriven, watching
-from tidegate.lint.derived.override import lifted, lifted_by_overrides, overrides_of
+from tidegate.lint.derived.override import aimless_overrides, lifted, lifted_by_overrides, overrides_of
 from tidegate.lint.derived.supply_limit import supply_limit
 from tidegate.lint.derived.used_by import NAMED_BY, is_used, unsaid_uses
 from tidegate.lint.description.model.reset_path import Bypass, Load, OutputStage, Reset
@@ -202,9 +202,8 @@ def single_points_can_be_passed(reset: Reset, case: Case) -> Judgement:
     inner = [name for name in points if name not in last]
     if not inner:
         return case.passes("no stage but the one that drives it stands on every way to it")
-    for bypass in case.description.bypasses.values():
-        if bypass.overrides is None:
-            case.of(bypass).lacks("overrides")
+    for bypass in graph.once(aimless_overrides):
+        case.of(bypass).lacks("overrides")
     case.settle()
     if reset.id not in graph.once(lifted_by_overrides):
         return case.not_applicable("a detector of it has no override (bypass/present says so)")

@@ -82,7 +82,7 @@ def slow_edge_meets_schmitt(stage: OutputStage, case: Case) -> Judgement:
     if stage.kind == "schmitt":
         return case.passes("a Schmitt stage is good for any edge", at="kind")
     edge = _edge(case)
-    kind = "" if edge.holds else case.own.must("kind").replace("_", "-")
+    kind = "" if edge.holds else case.own.must("kind").replace("_", " ")
     return case.at_most(
         need=edge.need,
         have=edge.have,

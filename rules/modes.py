@@ -36,10 +36,10 @@ def _and(names: Iterable[str]) -> str:
     title="in every mode, each load that is not off has a live detector on every rail it needs",
     level=Level.ERROR,
     applies_to="loads",
-    proves="In each mode in which the load is not off (by itself, with its domain or with a rail it needs), at least "
-    "one of the detectors that protect it in service (the under-voltage detectors of the rail that reset it; where it "
-    "has none, the power-on detectors) is neither off nor masked, leans on nothing that is off, and reaches a net that "
-    "guards the load through stages that are awake.",
+    proves="In each mode in which the load is not off (by itself, with its domain or with the maker of a rail it "
+    "needs), at least one of the detectors that protect it in service (the under-voltage detectors of the rail that "
+    "reset it; where it has none, the power-on detectors) is neither off nor masked, leans on nothing that is off, and "
+    "reaches a net that guards the load through stages that are awake.",
     facts=("modes.*.off", "modes.*.masked", "what each of the detectors leans on", "resets.*.guards and driven_by"),
     mend="keep a detector awake in the mode, or let the load be off too",
     sources=(_COMMON_PRACTICE,),
@@ -114,8 +114,8 @@ def _note_gaps(case: Case, detectors: Iterable[Comparator], modes: Iterable[Mode
     title="a rail that is watched for too high a supply is watched so in every mode",
     level=Level.WARNING,
     applies_to="rails",
-    proves="In each mode in which the rail is not off, at least one of its over-voltage detectors is neither off nor "
-    "masked and leans on nothing that is off.",
+    proves="In each mode in which the maker of the rail is not off, at least one of its over-voltage detectors is "
+    "neither off nor masked and leans on nothing that is off.",
     facts=("modes.*.off", "modes.*.masked", "what each over-voltage detector leans on"),
     mend="keep an over-voltage detector awake in the mode",
     sources=(_COMMON_PRACTICE,),

@@ -12,7 +12,7 @@ from tidegate.lint.derived.safe_rounding import show_up
 from tidegate.lint.description.model.reset_path import Load, Reset
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.edge import EdgeKind
-from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.judgement import Judgement, Level, Measure, Relation
 from tidegate.lint.physics import hold_up
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
@@ -95,7 +95,7 @@ def release_comes_after_ready(load: Load, case: Case) -> Judgement:
     if least.slack_s < 0.0:
         _ask(case, lines.missing(load.id, latest=True))
         _ask(case, _least_times_to_give(lines, load, least))
-    return _release_judgement(load, case, least, shared)
+    return _release_judgement(case, lines, least, shared)
 
 
 def _nets(case: Case, load: Load) -> list[str]:
@@ -115,7 +115,14 @@ def _least_times_to_give(lines: Timelines, load: Load, least: Slack) -> tuple[st
     return lacking if best is not None and best.slack_s >= 0.0 else ()
 
 
-def _release_judgement(load: Load, case: Case, least: Slack, shared: Sequence[str]) -> Judgement:
+def _not_tried(lines: Timelines) -> str:
+    """What was not tried for want of facts, in words; empty where everything was."""
+    if not lines.untried:
+        return ""
+    return f"; not tried: {', '.join(f'{name} (no {fact})' for name, fact in lines.untried)}"
+
+
+def _release_judgement(case: Case, lines: Timelines, least: Slack, shared: Sequence[str]) -> Judgement:
     where = least.scenario.name
     both_ends = f"; {', '.join(shared)} at either end, for both times alike" if shared else ""
     if least.first_s == FOREVER_S:
@@ -136,7 +143,7 @@ def _release_judgement(load: Load, case: Case, least: Slack, shared: Sequence[st
         need=least.first_s - least.from_s, have=least.then_s - least.from_s, dimension=_T,
         says=f"earliest release ({where})",
         why=f"{least.scenario.about}; ready at the latest {show(least.first_s - least.from_s, _T)} after the supply "
-        f"begins to rise{both_ends}",
+        f"begins to rise{both_ends}{_not_tried(lines)}",
         mend=f"release it {show_up(-least.slack_s, _T)} later, or let it be ready that much sooner", at="ready",
     )  # fmt: skip
 
@@ -161,7 +168,7 @@ def _release_judgement(load: Load, case: Case, least: Slack, shared: Sequence[st
 def no_unknown_interval(reset: Reset, case: Case) -> Judgement:
     """Pass if the net is known at every time at which it is read."""
     lines = timelines(case.description, case.graph)
-    _ask(case, lines.missing(reset.id, latest=True, starts=True, falls=True))
+    _ask(case, lines.missing(reset.id, latest=True, starts=True, falls=True, slow_falls=True))
     part = lines.read.parts[reset.id]
     assert isinstance(part, ResetPart)
     rails = [name for name in lines.behind(reset.id) if name in case.description.rails]
@@ -172,9 +179,14 @@ def no_unknown_interval(reset: Reset, case: Case) -> Judgement:
             (end_s - start_s, start_s, line) for line in courses for start_s, end_s in unknown_while_read(line, part)
         ]
         if spans:
-            return _unknown(reset, case, lines, max(spans, key=lambda span: span[0]))
+            return _unknown(reset, case, lines, max(spans, key=_length))
     tried = len(lines.starts) + len(lines.falls) + len(alone) + len(dipping)
     return case.passes(f"known in {tried} start-ups, falls and dips", at="driven_by")
+
+
+def _length(span: tuple[float, float, Timeline]) -> float:
+    """How long it is, to the digits that differ for another reason than rounding."""
+    return float(f"{span[0]:.9g}")
 
 
 def _unknown(reset: Reset, case: Case, lines: Timelines, longest: tuple[float, float, Timeline]) -> Judgement:
@@ -251,7 +263,7 @@ def reset_is_asserted_in_time(load: Load, case: Case) -> Judgement:
         return case.not_applicable(late)
     works_v = dict(_load_part(lines, load).works)[rail].least
     missed = _deepest_missed(lines, load, rail)
-    if least.first_s < FOREVER_S and missed is not None and _depth_v(missed) < works_v:
+    if least.first_s < FOREVER_S and missed is not None and not _reaches(_depth_v(missed), works_v):
         return case.not_applicable(f"a dip of {rail} may be missed altogether (start_up/dip_is_caught says so)")
     if least.first_s == FOREVER_S:
         return case.fails(
@@ -321,6 +333,10 @@ def dip_is_caught(load: Load, case: Case) -> Judgement:
         why=f"{line.scenario.about}; the load works down to {show(need_v, _V)}",
         mend=f"see dips {show_up(need_v - have_v, _V)} sooner: a higher falling level, or a shorter filter", at="needs",
     )  # fmt: skip
+
+
+def _reaches(level_v: float, needed_v: float) -> bool:
+    return Measure(needed_v, level_v, _V, Relation.AT_LEAST).holds
 
 
 def _deepest_missed(lines: Timelines, load: Load, rail: str) -> Timeline | None:

@@ -195,7 +195,8 @@ def lets_go_in_range(comparator: Comparator, case: Case) -> Judgement:
     if room is not None and not room.apart_by_description and not (room.spread_fits and room.hysteresis_fits):
         judge = "hysteresis/fits_window" if room.spread_fits else "trip_window/spread"
         return case.not_applicable(f"no place of its levels keeps this and trip_window/guarantee ({judge} says so)")
-    if not found.is_kept and not quiet(case, as_shipped(case, comparator)).is_kept:
+    in_service = None if found.is_kept else case.attempt(lambda: quiet(case, as_shipped(case, comparator)))
+    if in_service is not None and not in_service.is_kept:
         return case.not_applicable("it trips in service already (trip_window/nuisance says so)")
     return _measured(comparator, case, found, f"{_move(found)}, or less hysteresis")
 
@@ -268,14 +269,14 @@ def _placed_by_release(case: Case, comparator: Comparator) -> Judgement | None:
     end_v = rising.most_v + moved_v if over else falling.least_v - moved_v
     side, up_to = ("up", "up to") if over else ("down", "from")
     short_v = end_v - level_v if over else level_v - end_v
-    return case.fails(
-        f"is placed by the level that lets go: it may stay silent {side} to {show(end_v, _V)}, and {first.element} "
-        f"works {up_to} {show(level_v, _V)}",
-        why=f"falling {_text(falling)}, rising {_text(rising)}",
+    answer = case.at_most if over else case.at_least
+    return answer(
+        need=level_v, have=end_v, dimension=_V,
+        says=f"is placed by the level that lets go: until the answer {comparator.watches} may come {side} to",
+        why=f"{first.element} works {up_to} {show(level_v, _V)}; falling {_text(falling)}, rising {_text(rising)}",
         mend=f"both levels {show_up(short_v, _V)} further {'down' if over else 'up'}",
-        at=_at(comparator, "rising" if over else "falling"),
-        path=first.path,
-    )
+        at=_at(comparator, "rising" if over else "falling"), path=first.path,
+    )  # fmt: skip
 
 
 def _text(window: trip_window.Window) -> str:

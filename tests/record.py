@@ -63,6 +63,7 @@ def recorded() -> Mapping[str, Callable[[], str]]:
         "tests/golden/starter.txt": lambda: command("review", "examples/starter.yaml"),
         "tests/golden/place.txt": lambda: command("place", "examples/sound.yaml"),
         "tests/golden/place_uv.txt": lambda: command("place", "examples/sound.yaml", "uv"),
+        "tests/golden/place_por.txt": lambda: command("place", "examples/sound.yaml", "por"),
         "tests/golden/place_uv.json": lambda: command("place", "examples/sound.yaml", "uv", "--as", "json"),
         "tests/golden/margins.txt": lambda: command("margins", "examples/sound.yaml"),
         "rules/README.md": _documents().rule_catalogue,

@@ -102,6 +102,8 @@ def test_attempt_leaves_no_trace(case: Case) -> None:
     assert case.attempt(lambda: 5) == 5
     assert case.attempt(lambda: case.own.most("delay")) is None
     assert case.attempt(lambda: case.own.must("bias")) is None
+    assert case.lacking(lambda: case.own.must("bias")) == ("comparators.uv.bias",)
+    assert case.lacking(lambda: 5) == ()
     assert case.missing == []
     case.own.most("delay")
     assert case.attempt(lambda: case.own.number("divider.ratio")) == 0.4

@@ -100,6 +100,24 @@ def test_a_number_outside_its_formula_makes_a_judgement_open(loaded: Loaded) -> 
     )
 
 
+def test_a_number_that_is_missing_is_told_before_what_the_formula_refused(loaded: Loaded) -> None:
+    """Nobody needs to hear that not a number lies outside the range, and least of all without the name of the fact."""
+
+    def refused(_: object, case: Case) -> Judgement:
+        rise_s = case.own.most("rise")
+        require_positive(rise_s=rise_s)
+        return case.passes("well")
+
+    def gathered(_: object, case: Case) -> Judgement:
+        case.gather(lambda: require_positive(r_ohm=0.0), lambda: case.own.most("fall"))
+        return case.passes("well")
+
+    for name, judge, fact in (("supply/refused", refused, "rise"), ("supply/gathered", gathered, "fall")):
+        found = answers(loaded, made(name, judge))[name, "avdd"]
+        assert (found.kind, found.missing) == (Kind.OPEN, (f"rails.avdd.{fact}",))
+        assert found.message == f"cannot be judged without rails.avdd.{fact}"
+
+
 def test_a_rule_that_raises_is_at_fault_and_hides_no_finding(loaded: Loaded) -> None:
     def careless(element: object, case: Case) -> object:
         if case.subject.id == "avdd":

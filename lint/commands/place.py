@@ -20,6 +20,7 @@ from tidegate.lint.reports.placement_text import all_levers, placement_lines, ro
 from tidegate.lint.reports.plain_text import plain
 
 if TYPE_CHECKING:
+    from tidegate.lint.derived.crossover_sweep import CrossoverSweep
     from tidegate.lint.physics.yield_estimate import YieldEstimate
 
 _SAMPLES: Final = 1_000_000
@@ -67,7 +68,9 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
             return Exit.UNUSABLE
         placed = _placed(review, [review.loaded.description.comparators[each.id] for each in detectors])
     estimates = _estimates(review, placed, options, streams) if options.estimate else None
-    streams.out.write(_answer(review, placed, estimates, written, options))
+    streams.out.write(
+        _answer(review, placed, estimates, _components(review, placed, options), written=written, options=options)
+    )
     outside = any(each.stands is False or _nothing_fits(each) for each in placed)
     return max(status, Exit.FINDINGS if outside else Exit.KEPT)
 
@@ -121,10 +124,23 @@ def _apply(
     return Exit.UNUSABLE if failed else Exit.KEPT, written
 
 
+def _components(
+    review: Review, placed: Sequence[DetectorPlacement], options: argparse.Namespace
+) -> CrossoverSweep | None:
+    """What the components of a crossover make, where one detector is asked for: NumPy is loaded for it alone."""
+    if options.detector is None or placed[0].comparator.crossover is None:
+        return None
+    from tidegate.lint.derived.crossover_sweep import crossover_sweep
+
+    return crossover_sweep(review.loaded.description, review.graph, placed[0].comparator)
+
+
 def _answer(
     review: Review,
     placed: Sequence[DetectorPlacement],
     estimates: Sequence[YieldEstimate | Unknown] | None,
+    components: CrossoverSweep | None,
+    *,
     written: Sequence[str],
     options: argparse.Namespace,
 ) -> str:
@@ -134,10 +150,18 @@ def _answer(
         from tidegate.lint.reports.placement_json import placement_entry, placement_text_json
 
         entries = [placement_entry(*each) for each in zip(placed, places, drawn, strict=True)]
+        if components is not None:
+            from tidegate.lint.reports.crossover_json import crossover_entry
+
+            entries[0]["components"] = crossover_entry(components)
         return placement_text_json(options.file, written, entries)
     blocks = ["".join(plain(text) + "\n" for text in written)] if written else []
     for each, place, estimate in zip(placed, places, drawn, strict=True):
         lines = list(placement_lines(each, f"{place.file}:{place.line}", most_levers=all_levers(placed)))
+        if components is not None:
+            from tidegate.lint.reports.crossover_text import crossover_rows
+
+            lines += crossover_rows(components)
         if estimate is not None:
             from tidegate.lint.reports.yield_text import yield_rows
 

@@ -13,6 +13,7 @@ import numpy as np
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import NoAnswerError, Unknown, ask
+from tidegate.lint.derived.at_code import as_shipped
 from tidegate.lint.derived.crossover_facts import (
     Crossing,
     CrossoverFacts,
@@ -118,7 +119,7 @@ def _spread(facts: CrossoverFacts, level_v: LevelOf) -> Spread:
 def _tracking(case: Case, comparator: Comparator, facts: CrossoverFacts) -> Tracking | None:
     bounds, kept_v = case.gather(
         lambda: follower_supplies(case, comparator),
-        lambda: 0.0 if has_no_hysteresis(comparator) else hysteresis_window(case, comparator).most_v,
+        lambda: 0.0 if has_no_hysteresis(comparator) else hysteresis_window(case, as_shipped(case, comparator)).most_v,
     )
     if not bounds:
         return None

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from functools import lru_cache
+from typing import Final
 
 from tidegate.lint.description.model.description import Description, Mode
 from tidegate.lint.description.model.detector import Comparator
@@ -13,7 +14,8 @@ from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import Edge, EdgeKind
 from tidegate.lint.graph.paths import Reach, driven_by
 
-_SLEEPS_WITH = frozenset(
+_OFF_WITH: Final = frozenset({EdgeKind.SUPPLIED_BY, EdgeKind.MADE_BY})
+_SLEEPS_WITH: Final = frozenset(
     {EdgeKind.SUPPLIED_BY, EdgeKind.BIASED_BY, EdgeKind.TAKES_REFERENCE_FROM, EdgeKind.LEANS_ON, EdgeKind.GATED_BY}
 )
 """What an element that leans on a sleeping one cannot do without."""
@@ -46,14 +48,20 @@ class ModeState:
     def _asleep(self) -> dict[str, Asleep]:
         """What is off, and all that cannot do without it."""
         found = {name: Asleep(name) for name in self.mode.off or ()}
+        # A maker that is off makes no rail; one that merely lacks its reference is not said to be off.
+        self._spread(found, _OFF_WITH)
+        self._spread(found, _SLEEPS_WITH)
+        return found
+
+    def _spread(self, found: dict[str, Asleep], kinds: frozenset[EdgeKind]) -> None:
+        """Add to what sleeps all that leans on it in some ways."""
         waiting = list(found)
         while waiting:
             here = waiting.pop()
             for edge in self.graph.into(here):
-                if edge.kind in _SLEEPS_WITH and edge.tail not in found:
+                if edge.kind in kinds and edge.tail not in found:
                     found[edge.tail] = Asleep(found[here].because)
                     waiting.append(edge.tail)
-        return found
 
     def why_deaf(self, detector: str) -> Asleep | None:
         """Why a detector decides nothing; None where it does."""
@@ -74,9 +82,9 @@ class ModeState:
         return self._heard[net]
 
     def is_off(self, load: Load) -> bool:
-        """Whether a load is off, by itself, with its domain or with a rail it needs."""
-        whole = (load.id, load.domain, *(need.rail for need in load.needs))
-        return load.domain in self.asleep or any(name in (self.mode.off or ()) for name in whole)
+        """Whether a load is off, by itself, with its domain or with a rail whose maker is off."""
+        own = load.id in (self.mode.off or ()) or load.domain in self.asleep
+        return own or any(need.rail in self.asleep for need in load.needs)
 
 
 class _Same:

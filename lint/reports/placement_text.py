@@ -43,7 +43,7 @@ def placement_lines(placed: DetectorPlacement, place: str, *, most_levers: int) 
         yield from row(label, f"{limit.by.value}: {limit_text(found.facts, limit)}")
     yield from row("hysteresis", _hysteresis(placed, found))
     if found.margins_v:
-        yield from row("margins", ", ".join(f"{by.value} {_signed(v)}" for by, v in found.margins_v.items()))
+        yield from row("margins", ", ".join(f"{by.value} {signed(v)}" for by, v in found.margins_v.items()))
     if placed.usable:
         yield from row("codes", _codes(placed))
     yield from _levers(placed, most_levers)
@@ -156,14 +156,15 @@ def _levers(placed: DetectorPlacement, most: int) -> Iterator[str]:
     for number, lever in enumerate(placed.levers[:most]):
         change = f", {lever.change}" if lever.change else ""
         label = "buys room" if number == 0 else ""
-        first, *others = row(label, f"{_signed(lever.gain_v):<9} {lever.what}{change}")
+        first, *others = row(label, f"{signed(lever.gain_v):<9} {lever.what}{change}")
         yield first
         yield from (f"{'':{2 + _LABEL + 10}}{line.strip()}" for line in others)
     if not placed.levers:
         yield from row("buys room", "nothing that is known here")
 
 
-def _signed(value_v: float) -> str:
+def signed(value_v: float) -> str:
+    """A margin or gain, to a tenth of a millivolt: ``+12.4 mV``."""
     return f"{'-' if value_v < -5e-8 else '+'}{millivolts(abs(value_v))}"
 
 

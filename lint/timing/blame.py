@@ -49,7 +49,7 @@ def blame_for_unknown(lines: Timelines, line: Timeline, start: str, at_s: float)
         unknown = [(since, name) for name in drivers if name not in seen and (since := _unknown_at(line, name, at_s))]
         if not unknown:
             return Blame(here, Why.INPUT, "its input", tuple(hops))
-        (at_s, _), here = max(unknown)
+        (at_s, _), here = max(unknown, key=lambda one: one[0][0])  # of several at once, the first that is named
         seen.add(here)
         hops.append(Hop(here, EdgeKind.DRIVES.backwards))
 

@@ -7,7 +7,7 @@ from itertools import product
 from typing import Final
 
 from tidegate.lint.timing.interval import FOREVER_S
-from tidegate.lint.timing.parts import LoadPart, times_of
+from tidegate.lint.timing.parts import ComparatorPart, LoadPart, times_of
 from tidegate.lint.timing.slack import Slack, release_slack, worst
 from tidegate.lint.timing.timeline import Timeline, Timelines
 
@@ -52,7 +52,14 @@ def _shared(lines: Timelines, load: str) -> list[str]:
 
 
 def _width_s(lines: Timelines, name: str) -> float:
-    """How far apart the ends of an element's times are, in s; what is not bounded does not count."""
+    """How far apart the ends of an element's times are, in s; of its levels, on the slowest ramp of their rail.
+
+    What is not bounded does not count.
+    """
     part = lines.read.parts.get(name)
-    widths = [time.most - time.least for time in (times_of(part) if part is not None else ())]
+    if part is None:
+        return 0.0
+    widths = [time.most - time.least for time in times_of(part)]
+    if isinstance(part, ComparatorPart) and (ramp := lines.ramps.by_rail.get(part.watches)) is not None:
+        widths.append((part.rising.most - part.rising.least) / ramp.nominal_v * ramp.rise.most)
     return max((width for width in widths if width < FOREVER_S), default=0.0)

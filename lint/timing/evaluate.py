@@ -11,7 +11,7 @@ import msgspec
 from tidegate.lint.timing.carry import output_of
 from tidegate.lint.timing.detect import decision_of
 from tidegate.lint.timing.interval import FOREVER_S, NEVER, Times, both, either
-from tidegate.lint.timing.order import in_order
+from tidegate.lint.timing.order import in_order, without_started_loops
 from tidegate.lint.timing.parts import (
     Bounds,
     ComparatorPart,
@@ -97,6 +97,7 @@ class Network:
 
 def network(parts: Mapping[str, TimedPart], ramps: Mapping[str, RailRamp]) -> Network:
     """The network of some parts."""
+    parts = without_started_loops(parts)
     order = in_order(parts)
     place = {name: number for number, (group, _) in enumerate(order) for name in group}
     return Network(parts, order, ramps, place)

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
 
+import msgspec
+
 from tidegate.lint.graph.cycles import strong_components
 from tidegate.lint.timing.parts import (
     ComparatorPart,
@@ -55,18 +57,23 @@ def readiness_of(load: LoadPart) -> tuple[str, ...]:
     return (*rails, *load.needs) if load.domain is None else (*rails, load.domain, *load.needs)
 
 
-def in_order(parts: Mapping[str, TimedPart]) -> list[tuple[list[str], bool]]:
-    """Groups of elements, each after what it needs; with each, whether it leans on itself.
-
-    A source with a start-up circuit does not wait for what leans on it.
-    """
+def without_started_loops(parts: Mapping[str, TimedPart]) -> dict[str, TimedPart]:
+    """The parts, with each source that a start-up circuit starts no longer waiting for what leans on it."""
     needs = {name: leans_on(part) for name, part in parts.items()}
+    freed = dict(parts)
     for group in strong_components(needs):
         inside = set(group)
-        for name in group if len(group) > 1 else ():
+        for name in group:
             part = parts[name]
-            if isinstance(part, SourcePart) and part.starts_itself:
-                needs[name] = tuple(needed for needed in needs[name] if needed not in inside)
+            if isinstance(part, SourcePart) and part.starts_itself and inside.intersection(part.needs):
+                kept = tuple(needed for needed in part.needs if needed not in inside)
+                freed[name] = msgspec.structs.replace(part, needs=kept)
+    return freed
+
+
+def in_order(parts: Mapping[str, TimedPart]) -> list[tuple[list[str], bool]]:
+    """Groups of elements, each after what it needs; with each, whether it leans on itself."""
+    needs = {name: leans_on(part) for name, part in parts.items()}
     groups = strong_components(needs)
     return [(group, len(group) > 1 or group[0] in needs[group[0]]) for group in groups]
 

@@ -128,7 +128,9 @@ def begin_slack(line: Timeline, *, rail: str, after: str, up_v: float) -> Slack 
     first, then = line.states[after], line.states[rail]
     if not isinstance(first, Supply) or not isinstance(then, Supply):
         return None
-    begins = then.may_be_high(rising_v=_NEXT_TO_NOTHING_V, falling_v=_NEXT_TO_NOTHING_V)
+    forced = line.scenario.waveforms.get(rail)
+    begun_v = _NEXT_TO_NOTHING_V + (forced.points[0][1] if forced is not None else 0.0)  # what is left is no beginning
+    begins = then.may_be_high(rising_v=begun_v, falling_v=begun_v)
     not_up = first.may_be_low(rising_v=up_v, falling_v=up_v)
     if not begins:
         return None

@@ -46,6 +46,17 @@ def starts(setting: Setting) -> Iterator[Scenario]:
     yield from _described(setting)
 
 
+def untried(setting: Setting) -> Iterator[tuple[str, str]]:
+    """Scenarios that are not tried because a rail off the chip does not give a fact: the name, and the fact."""
+    for rail in setting.outer_rails():
+        if rail.dip is None or rail.dip.depth is None:
+            yield "a ramp that goes back", rail.fact("dip.depth")
+        if rail.residual is None:
+            yield "residual charge", rail.fact("residual")
+        if rail.off_time is None or rail.off_time.least is None:
+            yield "off and on again", rail.fact("off_time")
+
+
 def _up(ramp: RailRamp, *, fast: bool, from_v: float = 0.0, at_s: float = 0.0) -> Waveform:
     """A straight ramp from a level to nominal, with the slope of the whole one."""
     rise_s = (ramp.rise.least if fast else ramp.rise.most) * (1.0 - from_v / ramp.nominal_v)

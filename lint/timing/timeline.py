@@ -34,7 +34,7 @@ from tidegate.lint.timing.published import published
 from tidegate.lint.timing.ramps import Ramps, read_ramps
 from tidegate.lint.timing.reading import Parts, read_parts
 from tidegate.lint.timing.scenario import Scenario, Scene
-from tidegate.lint.timing.starts import Setting, starts
+from tidegate.lint.timing.starts import Setting, starts, untried
 from tidegate.lint.timing.waveform import Waveform
 
 _LEAST_LONG_S: Final = 1.0
@@ -148,18 +148,23 @@ class Timelines:
 
     # Missing facts
 
+    @cached_property
+    def untried(self) -> Sequence[tuple[str, str]]:
+        """Scenarios that are not tried for want of a fact: the name, and the fact."""
+        return list(untried(self.setting))
+
     def missing(
-        self, element: str, *, latest: bool = False, earliest: bool = False, starts: bool = False, falls: bool = False,
-        readiness: bool = False, rails_forced: bool = False,
+        self, element: str, *, latest: bool = False, earliest: bool = False, starts: bool = False,
+        falls: bool = False, slow_falls: bool = False, readiness: bool = False, rails_forced: bool = False,
     ) -> tuple[str, ...]:  # fmt: skip
         """The facts that are missing for an element and all it leans on, as paths.
 
-        ``latest``: the greatest values too, ``earliest``: the least ones; ``starts`` and ``falls``: those of the
-        ramps up and down; ``readiness``: of what a load needs alone, not of the nets that reset it, and of its time
-        to be ready; ``rails_forced``: of what makes a rail, no greatest or least values.
+        ``latest``: the greatest values too, ``earliest``: the least ones; ``starts``, ``falls`` and ``slow_falls``:
+        those of the ramps up and down; ``readiness``: of what a load needs alone, not of the nets that reset it, and
+        of its time to be ready; ``rails_forced``: of what makes a rail, no greatest or least values.
         Raises: DomainError: where one of them has numbers that cannot be.
         """
-        ramps = (starts or falls) and self._any_ramp_lacks
+        ramps = (starts or falls or slow_falls) and self._any_ramp_lacks
         if not (ramps or self._anything_lacks(latest=latest, earliest=earliest, readiness=readiness)):
             return ()
         found: dict[str, None] = {}
@@ -173,17 +178,18 @@ class Timelines:
             groups = (lacks.whole, lacks.most, lacks.least, lacks.ready)
             for paths in (group for group, is_wanted in zip(groups, wanted, strict=True) if is_wanted):
                 found.update(dict.fromkeys(paths))
-            if starts or falls:
-                found.update(dict.fromkeys(self._ramp_lacks(name, starts=starts, falls=falls)))
+            if ramps:
+                found.update(dict.fromkeys(self._ramp_lacks(name, starts=starts, falls=falls, slow_falls=slow_falls)))
         return tuple(found)
 
-    def _ramp_lacks(self, name: str, *, starts: bool, falls: bool) -> Sequence[str]:
+    def _ramp_lacks(self, name: str, *, starts: bool, falls: bool, slow_falls: bool) -> Sequence[str]:
         if name in self.ramps.lacks:
             return self.ramps.lacks[name]
         ramp = self.ramps.by_rail.get(name)
         if ramp is None:
             return ()
-        return (*(ramp.start_lacks if starts else ()), *(ramp.fast_fall_lacks if falls else ()))
+        groups = ((starts, ramp.start_lacks), (falls, ramp.fast_fall_lacks), (slow_falls, ramp.slow_fall_lacks))
+        return [path for wanted, paths in groups if wanted for path in paths]
 
     def _anything_lacks(self, *, latest: bool, earliest: bool, readiness: bool) -> bool:
         """Whether any element at all lacks what is asked for: mostly none does, and nobody need look behind any."""
@@ -195,7 +201,9 @@ class Timelines:
     @cached_property
     def _any_ramp_lacks(self) -> bool:
         ramps = self.ramps.by_rail.values()
-        return bool(self.ramps.lacks) or any(ramp.start_lacks or ramp.fast_fall_lacks for ramp in ramps)
+        return bool(self.ramps.lacks) or any(
+            ramp.start_lacks or ramp.fast_fall_lacks or ramp.slow_fall_lacks for ramp in ramps
+        )
 
     def behind(self, element: str, *, readiness: bool = False) -> Collection[str]:
         """An element and all it leans on, watched rails included; ``readiness`` leaves out what resets a load."""

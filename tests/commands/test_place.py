@@ -16,6 +16,7 @@ from tidegate.lint.cli import main
 from tidegate.lint.commands.applied_levels import chosen_levels_mv
 from tidegate.lint.derived.asking import Unknown
 from tidegate.lint.judgement import Kind
+from tidegate.rules.trip_crossover import RULES as CROSSOVER_RULES
 from tidegate.rules.trip_window import RULES
 
 REQUIREMENT_RULES = {
@@ -235,12 +236,52 @@ def test_yield(chip: Path, capsys: pytest.CaptureFixture[str]) -> None:
     assert found["detector"]["failures"] >= demand["failures"] > 0
 
 
-def test_numpy_is_loaded_for_yield_alone(chip: Path) -> None:
+def test_numpy_is_loaded_for_yield_and_for_the_crossover_asked_for_alone(chip: Path) -> None:
     import subprocess
     import sys
 
     script = (
         "import sys\nfrom tidegate.lint.cli import main\n"
-        f"main(['place', {str(chip)!r}]); main(['margins', {str(chip)!r}])\nassert 'numpy' not in sys.modules"
+        f"main(['place', {str(chip)!r}]); main(['place', {str(chip)!r}, 'uv']); main(['margins', {str(chip)!r}])\n"
+        f"assert 'numpy' not in sys.modules\nmain(['place', {str(chip)!r}, 'por'])\nassert 'numpy' in sys.modules"
     )
     subprocess.run([sys.executable, "-c", script], check=True, capture_output=True)
+
+
+def test_components_of_a_crossover(chip: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """The window is that of the rule; the widest contribution comes first; the room to follow is that of the rule."""
+    found = answer(capsys, str(chip), "por")["detectors"][0]["components"]
+    said = judged("", CROSSOVER_RULES)
+    level, tracking = found["level"], found["tracking"]
+    have = said["trip_window/crossover_level", "por"].measure
+    room = said["trip_window/crossover_tracks", "por"].measure
+    assert have is not None and room is not None
+    assert level["least"]["value"] == pytest.approx(have.have, abs=1e-9)
+    assert level["least_at"]["temperature"] == {"value": pytest.approx(398.15), "unit": "K"}
+    assert level["down"]["value"] == pytest.approx(100 * (1 - level["least"]["value"] / level["nominal"]["value"]))
+    assert [part["parameter"] for part in level["moved_by"]] == ["temperature", "threshold", "resistance", "offset"]
+    assert tracking["margin"]["value"] == pytest.approx(room.have - room.need, abs=1e-9)
+    assert found["second_crossing"] is None
+
+
+def test_components_of_others_are_not_asked_for(chip: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    assert all("components" not in entry for entry in answer(capsys, str(chip))["detectors"])
+    assert "components" not in answer(capsys, str(chip), "uv")["detectors"][0]
+
+
+def test_components_of_a_crude_current(chip: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    edit(
+        chip, "{kind: divider_mos, ratio: 0.5,",
+        "{kind: crude_current, mirror: 1, reference_current: 900 nA, reference_start: 1 V, reference_rise: 0.4 V,",
+    )  # fmt: skip
+    main(["place", str(chip), "por"])
+    text = capsys.readouterr().out
+    second = answer(capsys, str(chip), "por")["detectors"][0]["components"]["second_crossing"]
+    assert second["in_service"] == {"value": pytest.approx(1.895), "unit": "V"}
+    assert second["least"]["value"] > 1.895
+    assert f"  crosses    the crude current overtakes again from {second['least']['value']:.4g} V, at 125 degC" in text
+    edit(chip, "reference_rise: 0.4 V,", "")
+    main(["place", str(chip), "por"])
+    text = capsys.readouterr().out
+    assert "  components not given: comparators.por.crossover.reference_rise\n" in text
+    assert "  crosses    the crude current overtakes again from " in text

@@ -171,6 +171,12 @@ NAMES: Final = (
         "describe it, or correct the name",
     ),
     Bad(
+        "a resistor of another name",
+        UV + "crossover: {resistor: poly_hi}}\nprocess:\n  resistors:\n    poly_high: {tc1: 1 ppm/K}\n",
+        "main.yaml:5:66: comparators.uv.crossover.resistor: no resistor of the process is called 'poly_hi'; did you "
+        "mean poly_high?",
+    ),
+    Bad(
         "a diode of another name",
         UV + "crossover: {diode: pnq}}\nprocess:\n  diodes:\n    pnp: {emission: 1}\n",
         "main.yaml:5:63: comparators.uv.crossover.diode: no diode of the process is called 'pnq'; did you mean pnp?",

@@ -75,6 +75,7 @@ def test_contributions_are_ranked_and_are_what_each_does_alone() -> None:
     assert (found.swings[2].least_v, found.swings[2].most_v) == pytest.approx(tuple(alone))
     assert found.nominal_v == pytest.approx(float(trip_v(nominal)))
     ends = [float(trip_v({**nominal, "t_k": np.array(t)})) for t in RANGE_K]
+    assert found.slope_v_per_k is not None
     assert found.slope_v_per_k == pytest.approx((ends[1] - ends[0]) / 165.0)
     # A diode's 1.7 mV/K behind 0.45.
     assert found.slope_v_per_k == pytest.approx(-1.7e-3 / 0.45, rel=0.2)
@@ -122,6 +123,15 @@ def test_a_level_without_parameters_has_a_temperature_only() -> None:
     assert [s.name for s in found.swings] == ["t_k"]
 
 
+def test_one_temperature_has_no_slope() -> None:
+    found = spread_over_corners(
+        trip_v, nominal=NOMINAL, spans=SPANS, temperature_k=(298.15, 298.15), temperature_points=3
+    )
+    assert found.slope_v_per_k is None
+    corners = trip_v(factorial_corners({**SPANS, "t_k": (298.15,)}))
+    assert (found.least_v, found.most_v) == (corners.min(), corners.max())
+
+
 def test_a_corner_with_no_crossing_is_not_passed_over() -> None:
     with pytest.raises(NoCrossingError):
         spread_over_corners(
@@ -148,7 +158,7 @@ REFUSALS: tuple[tuple[Callable[[], object], str], ...] = (
     (lambda: factorial_corners({"a": ()}), "a must have at least one value"),
     (lambda: factorial_corners({"a": (1.0, float("nan"))}), "a must be a finite number (found nan)"),
     (lambda: call(temperature_k=(0.0, 300.0)), "least_k must be greater than 0 (found 0.0)"),
-    (lambda: call(temperature_k=(300.0, 300.0)), "most_k must be above least_k, 300.0 (found 300.0)"),
+    (lambda: call(temperature_k=(300.0, 299.0)), "most_k must be at least least_k, 300.0 (found 299.0)"),
     (lambda: call(temperature_points=2), "temperature_points must be at least 3 (found 2)"),
     (
         lambda: call(nominal={"t_k": 300.0}),

@@ -8,7 +8,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.optimize import brentq
 
-from tidegate.lint.physics import crossover, fed_branch, mos_threshold, silicon
+from tidegate.lint.physics import crossover, fed_branch, mos_threshold, resistor, silicon
 from tidegate.lint.physics.crossing_point import (
     NoCrossingError,
     branch_level_v,
@@ -107,6 +107,49 @@ def test_diode_crossing_is_that_of_the_solver_for_arrays() -> None:
         assert found_v == pytest.approx(expected_v, rel=SAME)
 
 
+@pytest.mark.parametrize("polarity", ["junction", "transistor"])
+def test_reference_crossing_is_that_of_the_solver_for_arrays_and_of_scipy(polarity: str) -> None:
+    """SciPy's brentq on the balance of currents: the reference's straight line against m I with V = I R + V_dev(I)."""
+    corners = zip(
+        draws(100, 2e5, 2e6), draws(100, 0.5, 2.0), draws(100, 0.3, 1.2), draws(100, 0.0, 0.4), draws(100, 1e-7, 4e-6),
+        draws(100, 0.02, 0.034), strict=True,
+    )  # fmt: skip
+    crossed = 0
+    for r_ohm, mirror, start_v, rise_v, regulated_a, thermal_v in corners:
+        device: Device
+        branch: fed_branch.Branch
+        if polarity == "junction":
+            device, branch = Junction(1e-17, thermal_v), fed_branch.DiodeBranch(r_ohm, 1e-17, thermal_v)
+        else:
+            device = DiodeConnected(0.5, 2.4 * thermal_v, 5e-8)
+            branch = fed_branch.MosBranch(r_ohm, 0.5, 1.2, 5e-8, thermal_v)
+        reference = {"start_v": start_v, "rise_v": rise_v, "regulated_a": regulated_a}
+        try:
+            expected_v = float(crossover.reference_overtakes_v(branch, mirror_ratio=mirror, **reference))
+        except crossover.NoCrossingError:
+            with pytest.raises(NoCrossingError):
+                reference_crossing_v(device, series_ohm=r_ohm, mirror_ratio=mirror, **reference)
+            continue
+        found_v = reference_crossing_v(device, series_ohm=r_ohm, mirror_ratio=mirror, **reference)
+        assert found_v == pytest.approx(expected_v, rel=SAME)
+
+        def missing_v(log_a: float, r_ohm: float = r_ohm, found_v: float = found_v, device: Device = device) -> float:
+            return math.exp(log_a) * r_ohm + device.voltage_v(math.exp(log_a)) - found_v
+
+        crude_a = mirror * math.exp(brentq(missing_v, -60.0, -5.0, xtol=1e-14))
+        assert crude_a * rise_v == pytest.approx(regulated_a * (found_v - start_v), rel=1e-6, abs=1e-15)
+        crossed += 1
+    assert 30 < crossed < 100
+
+
+def test_resistance_is_that_for_arrays() -> None:
+    """IHP SG13G2 process specification, Rev 1.2, p. 12: 1360 ohm per square, -2300 ppm/K, 2.1 ppm/K^2 from 300 K."""
+    law = {"r_ref_ohm": 1360.0, "t_ref_k": 300.0, "tc1_per_k": -2300e-6, "tc2_per_k2": 2.1e-6}
+    assert series_ohm_at(t_k=400.0, **law) == pytest.approx(1360.0 * 0.791, rel=1e-12)
+    for t_k in draws(50, 233.15, 398.15):
+        assert series_ohm_at(t_k=t_k, **law) == float(resistor.resistance_ohm(t_k=t_k, **law))
+
+
 def test_diode_behind_a_resistor_against_the_published_lambert_w_example() -> None:
     """Boost C++ libraries, example lambert_w_diode: 25 fA, 249.3 ohm, 0.9 V, k and q rounded as there: 1.08485 mA."""
     device = Junction(saturation_a=25e-15, emission_v=1.38e-23 * 298.0 / 1.6e-19)
@@ -187,6 +230,37 @@ def test_mos_refuses(symbol: str) -> None:
 def test_mos_refuses_what_is_not_finite(symbol: str) -> None:
     with pytest.raises(DomainError, match=f"^{symbol} must be a finite number"):
         diode_connected_at(**(MOS | {symbol: math.nan}))
+
+
+@pytest.mark.parametrize(
+    ("change", "message"),
+    [
+        ({"series_ohm": 0.0}, "series_ohm must be greater than 0 (found 0.0)"),
+        ({"mirror_ratio": 0.0}, "mirror_ratio must be greater than 0 (found 0.0)"),
+        ({"start_v": 0.0}, "start_v must be greater than 0 (found 0.0)"),
+        ({"rise_v": -0.1}, "rise_v must be at least 0 (found -0.1)"),
+        ({"regulated_a": 0.0}, "regulated_a must be greater than 0 (found 0.0)"),
+        ({"rise_v": 30.0}, "no crossing: the reference current rises slower than the crude one"),
+        ({"start_v": 30.0}, "no crossing: the reference regulates below the crude current"),
+    ],
+    ids=str,
+)
+def test_reference_crossing_refuses(change: dict[str, float], message: str) -> None:
+    sound = {"series_ohm": 1e6, "mirror_ratio": 1.0, "start_v": 0.9, "rise_v": 0.3, "regulated_a": 1e-5}
+    with pytest.raises(DomainError) as refused:
+        reference_crossing_v(Junction(saturation_a=1e-17, emission_v=0.0257), **(sound | change))
+    assert str(refused.value) == message
+
+
+@pytest.mark.parametrize("symbol", ["t_k", "r_ref_ohm", "t_ref_k"])
+def test_resistance_refuses(symbol: str) -> None:
+    sound = {"t_k": 300.0, "r_ref_ohm": 1e3, "t_ref_k": 300.0, "tc1_per_k": 0.0, "tc2_per_k2": 0.0}
+    with pytest.raises(DomainError, match=f"^{symbol} must be greater than 0"):
+        series_ohm_at(**(sound | {symbol: 0.0}))
+    with pytest.raises(DomainError, match=r"^tc1_per_k must be a finite number"):
+        series_ohm_at(**(sound | {"tc1_per_k": math.nan}))
+    with pytest.raises(DomainError, match=r"^resistance_ohm must be greater than 0"):
+        series_ohm_at(**(sound | {"t_k": 400.0, "tc1_per_k": -0.02}))
 
 
 def test_the_rest_refuses() -> None:

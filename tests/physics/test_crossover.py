@@ -12,11 +12,9 @@ from scipy.optimize import brentq
 from tidegate.lint.physics.corner_spread import factorial_corners
 from tidegate.lint.physics.crossover import (
     NoCrossingError,
-    RisingReference,
     crude_overtakes_v,
     divider_diode_trip_v,
     divider_mos_trip_v,
-    least_reference_ratio,
     reference_overtakes_v,
 )
 from tidegate.lint.physics.domain import DomainError
@@ -205,16 +203,29 @@ def test_crude_current_against_scipy(branch: Branch, supply_v: float) -> None:
     assert branch.current_a(supply_v) == pytest.approx(np.array(expected), rel=1e-9)
 
 
+def reference_a(v: float) -> float:
+    """Nothing up to 0.9 V, then in a straight line over 0.4 V to 8 uA."""
+    return min(max(v - 0.9, 0.0) * 8e-6 / 0.4, 8e-6)
+
+
+REFERENCE = {"start_v": 0.9, "rise_v": 0.4, "regulated_a": 8e-6}
+
+
 @pytest.mark.parametrize("branch", BRANCHES)
 def test_reference_overtakes_where_scipy_says(branch: Branch) -> None:
-    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=8e-6)
-    found = reference_overtakes_v(branch, mirror_ratio=2.0, reference=reference)
+    found = reference_overtakes_v(branch, mirror_ratio=2.0, **REFERENCE)
     for ohm, trip_v in zip(np.asarray(branch.series_ohm), found, strict=True):
 
         def excess_a(v: float, ohm: float = ohm) -> float:
-            return float(reference.current_a(v)) - 2.0 * brentq_crude_a(branch, ohm, v)
+            return reference_a(v) - 2.0 * brentq_crude_a(branch, ohm, v)
 
         assert trip_v == pytest.approx(brentq(excess_a, 0.9, 1.3, xtol=1e-13), abs=1e-10)
+
+
+@pytest.mark.parametrize("branch", BRANCHES)
+def test_a_reference_that_is_there_at_once_overtakes_where_it_sets_in(branch: Branch) -> None:
+    found = reference_overtakes_v(branch, mirror_ratio=2.0, start_v=0.9, rise_v=0.0, regulated_a=8e-6)
+    assert found.tolist() == [0.9, 0.9]
 
 
 @pytest.mark.parametrize("branch", BRANCHES)
@@ -226,43 +237,39 @@ def test_crude_overtakes_where_scipy_says(branch: Branch) -> None:
 
 
 @pytest.mark.parametrize("branch", BRANCHES)
-@pytest.mark.parametrize(("least_v", "most_v"), [(1.1, 3.6), (1.1, 1.25), (2.0, 5.5)])
-def test_least_ratio_is_what_a_dense_sweep_finds(branch: Branch, least_v: float, most_v: float) -> None:
-    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=8e-6)
-    found = least_reference_ratio(
-        branch, mirror_ratio=2.0, reference=reference, supply_least_v=least_v, supply_most_v=most_v
-    )
-    swept_v = np.linspace(least_v, most_v, 400)
-    swept = np.array([reference.current_a(v) / (2.0 * branch.current_a(v)) for v in swept_v])
-    assert found == pytest.approx(swept.min(axis=0), rel=1e-9)
-
-
-@pytest.mark.parametrize("branch", BRANCHES)
-def test_ratio_is_one_at_both_crossings(branch: Branch) -> None:
-    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=8e-6)
-    first = reference_overtakes_v(branch, mirror_ratio=2.0, reference=reference)
+def test_currents_are_equal_at_both_crossings(branch: Branch) -> None:
+    first = reference_overtakes_v(branch, mirror_ratio=2.0, **REFERENCE)
     second = crude_overtakes_v(branch, mirror_ratio=2.0, regulated_a=8e-6)
     assert np.all(first < second)
     for level_v in (first, second):
-        ratio = reference.current_a(level_v) / (2.0 * branch.current_a(level_v))
-        assert ratio == pytest.approx(np.ones(2), rel=1e-9)
+        expected_a = [reference_a(v) for v in level_v]
+        assert 2.0 * branch.current_a(level_v) == pytest.approx(np.array(expected_a), rel=1e-9)
 
 
 def test_a_reference_below_the_crude_current_never_overtakes() -> None:
-    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=np.array([8e-6, 1e-9]))
     with pytest.raises(NoCrossingError) as caught:
-        reference_overtakes_v(DIODE, mirror_ratio=2.0, reference=reference)
+        reference_overtakes_v(DIODE, mirror_ratio=2.0, start_v=0.9, rise_v=1e-4, regulated_a=np.array([8e-6, 1e-9]))
+    assert caught.value.exists.tolist() == [True, False]
+
+
+def test_a_reference_that_rises_slower_than_the_crude_current_never_stays_ahead() -> None:
+    """At full conduction the crude current rises by 2 A/Mohm: over 4.1 V that is 8.2 uA, more than the reference."""
+    branch = DiodeBranch(1e6, 9e-19, 0.0257)
+    with pytest.raises(NoCrossingError) as caught:
+        reference_overtakes_v(
+            branch, mirror_ratio=2.0, start_v=0.9, rise_v=np.array([0.4, 4.1]), regulated_a=np.array([8e-6, 8e-6])
+        )
     assert caught.value.exists.tolist() == [True, False]
 
 
 def test_corners_of_the_reference_alone_broadcast() -> None:
-    reference = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=np.array([8e-6, 9e-6]))
-    found = reference_overtakes_v(DiodeBranch(1e6, 9e-19, 0.0257), mirror_ratio=2.0, reference=reference)
+    found = reference_overtakes_v(
+        DiodeBranch(1e6, 9e-19, 0.0257), mirror_ratio=2.0, start_v=np.array([0.9, 0.9]), rise_v=0.4, regulated_a=8e-6
+    )
     assert found.shape == (2,)
     assert found[0] == found[1]
 
 
-REFERENCE = RisingReference(start_v=0.9, rise_a_per_v=20e-6, regulated_a=8e-6)
 REFUSALS: tuple[tuple[Callable[[], object], str], ...] = (
     (lambda: DiodeBranch(0.0, 1e-18, 0.026), "series_ohm must be greater than 0 (found 0.0)"),
     (lambda: DiodeBranch(1e6, 0.0, 0.026), "saturation_a must be greater than 0 (found 0.0)"),
@@ -283,26 +290,25 @@ REFUSALS: tuple[tuple[Callable[[], object], str], ...] = (
         "offset_v must be a finite number (found nan)",
     ),
     (lambda: MOS.current_a(-0.1), "source_v must be at least 0 (found -0.1)"),
-    (lambda: RisingReference(-0.1, 1e-6, 1e-6), "start_v must be at least 0 (found -0.1)"),
-    (lambda: RisingReference(0.9, 0.0, 1e-6), "rise_a_per_v must be greater than 0 (found 0.0)"),
-    (lambda: RisingReference(0.9, 1e-6, 0.0), "regulated_a must be greater than 0 (found 0.0)"),
     (
-        lambda: reference_overtakes_v(DIODE, mirror_ratio=0.0, reference=REFERENCE),
+        lambda: reference_overtakes_v(DIODE, mirror_ratio=0.0, **REFERENCE),
         "mirror_ratio must be greater than 0 (found 0.0)",
     ),
     (
-        lambda: reference_overtakes_v(DIODE, mirror_ratio=40.0, reference=REFERENCE),
-        "rise_a_per_v must be greater than mirror_ratio / series_ohm",
+        lambda: reference_overtakes_v(DIODE, mirror_ratio=1.0, **{**REFERENCE, "start_v": 0.0}),
+        "start_v must be greater than 0 (found 0.0)",
+    ),
+    (
+        lambda: reference_overtakes_v(DIODE, mirror_ratio=1.0, **{**REFERENCE, "rise_v": -0.1}),
+        "rise_v must be at least 0 (found -0.1)",
+    ),
+    (
+        lambda: reference_overtakes_v(DIODE, mirror_ratio=1.0, **{**REFERENCE, "regulated_a": 0.0}),
+        "regulated_a must be greater than 0 (found 0.0)",
     ),
     (
         lambda: crude_overtakes_v(DIODE, mirror_ratio=1.0, regulated_a=0.0),
         "regulated_a must be greater than 0 (found 0.0)",
-    ),
-    (
-        lambda: least_reference_ratio(
-            DIODE, mirror_ratio=1.0, reference=REFERENCE, supply_least_v=3.0, supply_most_v=2.0
-        ),
-        "supply_most_v must be at least supply_least_v",
     ),
 )
 

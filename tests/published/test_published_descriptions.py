@@ -67,17 +67,20 @@ def test_what_is_said_to_be_missing_is_missing(name: str) -> None:
 
 
 PASSES: Final = {
-    "mspm0l1306_por_bor": {"por"},
+    "mspm0l1306_por_bor": {"por", "bor"},
     "nrf54lm20a_power_fail": {"power_fail"},
+    "rp2350_core_supply": {"bod", "vout_ok"},
     "sky130_brownout": {"out", "vunder"},
+    "stm1403_supervisor": {"reset_t"},
+    "stm32f031_por_pdr": {"por_pdr"},
 }
-"""Detectors whose hysteresis is published with both ends."""
+"""Detectors of which some hysteresis is published: an amount, if only a typical one, or levels that differ."""
 
 
 @pytest.mark.parametrize("name", NAMES)
 def test_a_part_that_works_is_not_failed_for_want_of_data(name: str) -> None:
-    """A hysteresis published with both ends is seen; nothing else can pass, and above all nothing fails."""
-    assert {answer.kind for answer in published(name).values()} <= {Kind.PASS, Kind.OPEN}
+    """That there is some hysteresis is seen; nothing else can pass, and above all nothing fails."""
+    assert Kind.FAIL not in {answer.kind for answer in published(name).values()}
     passed = {key for key, answer in published(name).items() if answer.kind is Kind.PASS}
     assert passed == {("hysteresis/present", subject) for subject in PASSES.get(name, set())}
 
@@ -115,13 +118,20 @@ def rail_facts(rail: str, *facts: str) -> set[str]:
     ("name", "rule", "subject", "facts"),
     [
         # Only the typical hysteresis is published: 40 mV (DocID025743, Table 20), 10 mV (STM1403, Table 6, footnote 9).
-        ("stm32f031_por_pdr", "present", "por_pdr", {"hysteresis.amount.min", "hysteresis.amount.max"}),
-        ("stm1403_supervisor", "present", "reset_t", {"hysteresis.amount.min", "hysteresis.amount.max"}),
+        (
+            "stm32f031_por_pdr",
+            "sense",
+            "por_pdr",
+            {"hysteresis.amount.min", "hysteresis.amount.max", "hysteresis.feedback"},
+        ),
+        (
+            "stm1403_supervisor",
+            "sense",
+            "reset_t",
+            {"hysteresis.amount.min", "hysteresis.amount.max", "hysteresis.feedback"},
+        ),
         # Ranges that overlap, and no word whether the levels move together: neither sound nor swapped.
-        ("rp2350_core_supply", "present", "bod", {"tracked"}),
-        ("rp2350_core_supply", "present", "vout_ok", {"tracked"}),
         ("rp2350_core_supply", "sense", "bod", {"tracked", "hysteresis.feedback"}),
-        ("mspm0l1306_por_bor", "present", "bor", {"tracked"}),
         # How the hysteresis is made is not published.
         ("mspm0l1306_por_bor", "sense", "por", {"hysteresis.feedback"}),
         ("mspm0l1306_por_bor", "switches_complementary", "por", {"hysteresis.made_by"}),
@@ -141,13 +151,16 @@ def test_what_the_document_does_not_say_of_the_supply_is_asked() -> None:
     assert missing(name, "hysteresis/covers_disturbance", subject) == disturbance | noise | {"conditions.coverage"}
     life = {"conditions.service_life", "conditions.false_trips", "comparators.por.noise.bandwidth"}
     assert missing(name, "hysteresis/false_trips", subject) == disturbance | noise | life
-    assert missing(name, "hysteresis/fits_window", subject) == rail_facts("vdd", "ripple.peak_to_peak", "delivered")
+    # It is not said what the detector guards, and so nothing bounds its hysteresis from below.
+    assert published(name)["hysteresis/fits_window", subject].kind is Kind.NOT_APPLICABLE
+    asked = judged(as_published(name), (trip_window.RULES,))["trip_window/release", subject].missing
+    assert set(asked) == rail_facts("vdd", "ripple.peak_to_peak", "delivered")
 
 
 def test_the_regulator_of_the_same_data_sheet_leaves_one_fact_of_its_rail_open() -> None:
     """RP2350, Table 1442: the range delivered is published, its ripple is not."""
-    asked = missing("rp2350_core_supply", "hysteresis/fits_window", "bod")
-    assert asked == {"rails.dvdd.ripple.peak_to_peak", "comparators.bod.tracked"}
+    answers = judged(as_published("rp2350_core_supply"), (trip_window.RULES,))
+    assert set(answers["trip_window/release", "bod"].missing) == {"rails.dvdd.ripple.peak_to_peak"}
 
 
 def test_an_over_voltage_alarm_does_not_ask_for_the_droop_at_release() -> None:
@@ -185,7 +198,6 @@ def measured(name: str, rule: str, subject: str) -> tuple[Kind, float, float]:
         ("mspm0l1306_por_bor", "trip_window/order", "vdd", (Kind.PASS, 1.51, 1.55)),
         # sky130_ajc_ip__brownout: the pin table begins at 3.0 V, the level of code 100 lies down to 2.60509 V
         ("sky130_brownout", "self_bias/works_at_own_trip", "out", (Kind.FAIL, 2.60509, 3.0)),
-        ("sky130_brownout", "own_range/levels_inside", "out", (Kind.FAIL, 3.0, 2.60509)),
         # The typical levels lie as far apart as the typical hysteresis says, within the last digit that is printed.
         ("stm32f031_por_pdr", "claims/hysteresis", "por_pdr", (Kind.PASS, 0.030, 0.040)),
         ("stm1403_supervisor", "claims/hysteresis", "reset_t", (Kind.PASS, 0.011, 0.010)),

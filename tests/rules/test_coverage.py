@@ -119,9 +119,7 @@ def test_maker_that_steps_up_has_no_limit() -> None:
     assert said.why == "core_regulator makes it from a lower supply, or from none that is described: nothing limits it"
 
 
-@pytest.mark.parametrize(
-    "fact", ["rails.vcore.damage", "rails.vcore.nominal", "rails.avdd.guaranteed"]
-)
+@pytest.mark.parametrize("fact", ["rails.vcore.damage", "rails.vcore.nominal", "rails.avdd.guaranteed"])
 def test_over_voltage_is_open_without(fact: str) -> None:
     said = one(without(fact), OVER, "vcore")
     assert (said.kind, said.missing) == (OPEN, (fact,))

@@ -29,7 +29,7 @@ rails:
     source_impedance: {max: 0.4 ohm}
 comparators:
   uv:
-    trip: {rising: {min: 1.65 V, max: 1.7 V}, falling: {min: 1.6 V, max: 1.65 V}}
+    trip: {rising: {min: 1.65 V, max: 1.7 V}, falling: {min: 1.6 V, max: 1.645 V}}
     hysteresis: {amount: {min: 46 mV, max: 54 mV}, feedback_delay: 0.1 us}
     noise: {rms: 0.5 mV, bandwidth: 1 MHz}
     filter: null
@@ -56,7 +56,9 @@ def amount(least: str, most: str, of: str = "uv") -> str:
 def test_sound_example_keeps_every_rule() -> None:
     judgements = judged("", RULES)
     assert of_kind(judgements, FAIL, OPEN, Kind.REVIEW) == []
-    assert of_kind(judgements, NONE) == [("hysteresis/switches_complementary", "por")]
+    assert of_kind(judgements, NONE) == [  # por has no switches, and its level follows what leans on it
+        ("hysteresis/fits_window", "por"), ("hysteresis/switches_complementary", "por"),
+    ]  # fmt: skip
     assert len(judgements) == len(RULES) * 4
 
 
@@ -263,49 +265,129 @@ def test_hysteresis_that_is_too_small_anyway_is_one_finding() -> None:
     assert said("false_trips", amount("23.4 mV", "54 mV"), without("conditions.coverage")).kind is FAIL
 
 
-# fits_window: supply in service down to 1.71 V less half of 20 mV, up to 1.89 V and half of 20 mV
+# fits_window: uv must let go by 1.71 V less half of 10 mV, and assert at 1.6 V of the load and 2 V/ms for 2 us: 101 mV,
+# of which the falling level takes 45 mV. ov: 1.98 V less 1 V/ms for 2 us, down to 1.89 V and half of 10 mV: 83 mV, of
+# which the rising level takes 20 mV.
 
 
-RIPPLE = "rails: {avdd: {ripple: {peak_to_peak: 20 mV}}}"
+NO_RISING = "comparators: {uv: {trip: {rising: null}}}"
+NO_FALLING = "comparators: {ov: {trip: {falling: null}}}"
 
 
-@pytest.mark.parametrize(("most", "kind"), [("1.699 V", PASS), ("1.7 V", PASS), ("1.701 V", FAIL)])
+@pytest.mark.parametrize(("most", "kind"), [("55.9 mV", PASS), ("56 mV", PASS), ("56.1 mV", FAIL)])
 def test_fits_window_at_its_limit(most: str, kind: Kind) -> None:
-    found = said("fits_window", RIPPLE, f"comparators: {{uv: {{trip: {{rising: {{min: 1.65 V, max: {most}}}}}}}}}")
+    found = said("fits_window", NO_RISING, amount("46 mV", most))
     assert found.kind is kind
     assert found.measure is not None
-    assert found.measure.need == pytest.approx(0.054 + 1.7 - float(most[:-2]), rel=1e-9)
+    assert found.measure.need == pytest.approx((1.71 - 0.005) - (1.6 + 2000 * 2e-6) - 0.045, abs=1e-12)
+    assert found.measure.have == pytest.approx(float(most.split(maxsplit=1)[0]) * 1e-3, rel=1e-12)
 
 
-@pytest.mark.parametrize(("least", "kind"), [("1.899 V", FAIL), ("1.9 V", PASS), ("1.901 V", PASS)])
-def test_fits_window_of_an_over_voltage_detector(least: str, kind: Kind) -> None:
-    patch = f"comparators: {{ov: {{trip: {{falling: {{min: {least}, max: 1.92 V}}}}}}}}"
-    found = said("fits_window", RIPPLE, patch, of="ov")
+@pytest.mark.parametrize(("most", "kind"), [("62.9 mV", PASS), ("63 mV", PASS), ("63.1 mV", FAIL)])
+def test_fits_window_of_an_over_voltage_detector(most: str, kind: Kind) -> None:
+    found = said("fits_window", NO_FALLING, amount("40 mV", most, of="ov"), of="ov")
     assert found.kind is kind
-    assert found.why == f"falling level down to {least}, supply in service up to 1.9 V"
+    assert found.measure is not None
+    assert found.measure.need == pytest.approx((1.98 - 1000 * 2e-6) - (1.89 + 0.005) - 0.020, abs=1e-12)
 
 
 def test_fits_window_says_why_and_what_would_do() -> None:
-    found = said("fits_window", RIPPLE, "comparators: {uv: {trip: {rising: {min: 1.65 V, max: 1.72 V}}}}")
-    assert found.message == "greatest hysteresis 54 mV, at most 34 mV needed"
-    assert found.why == "rising level up to 1.72 V, supply in service down to 1.7 V"
-    assert found.mend == "at most 34 mV of hysteresis; now 54 mV"
-    high = "comparators: {uv: {trip: {rising: {min: 1.75 V, max: 1.77 V}, falling: {min: 1.7 V, max: 1.72 V}}}}"
-    assert said("fits_window", RIPPLE, high).mend == "a lower falling level: with this one none fits below 1.7 V"
-    low = "comparators: {ov: {trip: {rising: {min: 1.87 V, max: 1.9 V}, falling: {min: 1.82 V, max: 1.85 V}}}}"
-    assert (
-        said("fits_window", RIPPLE, low, of="ov").mend == "a higher rising level: with this one none fits above 1.9 V"
+    found = said("fits_window", NO_RISING, amount("46 mV", "60 mV"))
+    assert found.message == "greatest hysteresis 60 mV, at most 56 mV needed"
+    assert found.why == (
+        "room of 101 mV, of which the falling level takes 45 mV: adc works from 1.6 V; until the answer, 2 us later, "
+        "avdd falls 4 mV; avdd is delivered down to 1.71 V, less 5 mV (half the ripple)"
     )
+    assert found.mend == "at most 56 mV of hysteresis; now 60 mV"
+    assert found.at == "comparators.uv.hysteresis.amount"
 
 
 def test_a_bounded_release_level_is_not_trip_plus_hysteresis_again() -> None:
-    # Released by 1.69 V at the latest, whatever falling level and hysteresis add up to (1.65 V + 54 mV).
-    found = said("fits_window", RIPPLE, "comparators: {uv: {trip: {rising: {max: 1.69 V}}}}")
+    # Released by 1.69 V at the latest, 45 mV above 1.645 V, whatever the hysteresis would make of it.
+    found = said("fits_window", "comparators: {uv: {trip: {rising: {max: 1.69 V}}}}", amount("46 mV", "60 mV"))
     assert found.kind is PASS
-    assert found.why == "rising level up to 1.69 V, supply in service down to 1.7 V"
-    # Not stated at all, it is their sum.
-    found = said("fits_window", RIPPLE, "comparators: {uv: {trip: {rising: null}}}")
-    assert found.why == "rising level up to 1.704 V, supply in service down to 1.7 V"
+    assert found.measure is not None and found.measure.have == pytest.approx(0.045, abs=1e-12)
+    # An amount that is not stated at all is what lies between the levels.
+    found = said("fits_window", "comparators: {uv: {hysteresis: {amount: null}}}")
+    assert found.measure is not None and found.measure.have == pytest.approx(0.055, abs=1e-12)
+
+
+@pytest.mark.parametrize(
+    ("patch", "message"),
+    [
+        (
+            "resets: {por_n: {guards: [core_logic]}, core_rst_n: {guards: [core_logic]}}",
+            "nothing that it guards sets it a limit (trip_window/release judges its levels)",
+        ),
+        (
+            "comparators: {uv: {trip: {falling: {min: 1.6 V, max: 1.702 V}}}}",
+            "its error alone takes more room than there is (trip_window/spread says so)",
+        ),
+        (
+            "loads: {adc: {needs: {0: {works: {min: 1.72 V, max: 1.98 V}}}}}",
+            "what it guards does not work in all the range delivered (description/loads says so)",
+        ),
+        (
+            "comparators: {uv: {trip: {rising: {min: 1.6 V, max: 1.64 V}}}}",
+            "its rising level can lie below its falling one (hysteresis/sense says so)",
+        ),
+        (
+            "comparators: {uv: {role: reference_ready}}",
+            "watches whether a reference is ready, not the range of a supply",
+        ),
+    ],
+)
+def test_fits_window_leaves_to_others_what_they_say(patch: str, message: str) -> None:
+    found = said("fits_window", patch)
+    assert (found.kind, found.message) == (NONE, message)
+
+
+# Levels chosen by code
+
+
+CODES = """
+comparators:
+  uv:
+    trip: null
+    ships_with: mid
+    codes:
+      low: {rising: {min: 1.5 V, max: 1.55 V}, falling: {min: 1.45 V, max: 1.5 V}}
+      mid: {rising: {min: 1.65 V, max: 1.7 V}, falling: {min: 1.6 V, max: 1.645 V}}
+"""
+
+
+def test_levels_chosen_by_code_are_those_it_ships_with() -> None:
+    for rule in ALL:
+        plain, by_code = said(rule), said(rule, CODES)
+        assert (by_code.kind, by_code.message) == (plain.kind, plain.message)
+    other = said("covers_disturbance", CODES, "rails: {avdd: {dip: {depth: 15 mV, at: 1.5 V}}}")
+    assert other.measure is not None and other.measure.need == pytest.approx(NEED_V, rel=1e-12)  # not at low's levels
+
+
+def test_which_code_it_ships_with_is_asked_for() -> None:
+    derived = both(CODES, "comparators: {uv: {ships_with: null, hysteresis: {amount: null}}}")
+    assert said("present", derived).missing == ("comparators.uv.ships_with",)
+    assert said("fits_window", derived).missing == ("comparators.uv.ships_with",)
+    # With an amount stated, whether there is some does not hang on the code.
+    assert said("present", CODES, "comparators: {uv: {ships_with: null}}").kind is PASS
+
+
+@pytest.mark.parametrize(
+    ("patch", "message"),
+    [
+        ("comparators: {uv: {hysteresis: {amount: {typ: 50 mV}}}}", "has hysteresis, about 50 mV"),
+        ("comparators: {uv: {hysteresis: {amount: {min: 46 mV}}}}", "has hysteresis, about 46 mV"),
+        (
+            "comparators: {uv: {hysteresis: {amount: null}, tracked: null, "
+            "trip: {rising: {typ: 1.68 V, max: 1.7 V}, falling: {typ: 1.63 V, min: 1.6 V}}}}",
+            "has hysteresis, about 50 mV",
+        ),
+    ],
+)
+def test_a_typical_hysteresis_is_some(patch: str, message: str) -> None:
+    found = said("present", patch)
+    assert (found.kind, found.message) == (PASS, message)
+    assert said("covers_disturbance", patch).kind is OPEN
 
 
 # switches_complementary
@@ -451,7 +533,10 @@ TOO_LITTLE: tuple[tuple[str, dict[str, tuple[str, ...]]], ...] = (
     (f"{H}.feedback_delay", {"feedback_in_time": (f"{H}.feedback_delay",)}),
     (f"{H}.made_by", {"switches_complementary": (f"{H}.made_by",)}),
     (f"{H}.amount", {}),  # both levels are given, and track
-    ("comparators.uv.trip", {"fits_window": ("comparators.uv.trip.rising",)}),
+    ("rails.avdd.collapse", {"fits_window": ("rails.avdd.collapse",)}),
+    ("comparators.uv.delay", {"fits_window": ("comparators.uv.delay",)}),
+    ("loads.adc.needs.0.works", {"fits_window": ("loads.adc.needs.0.works",)}),
+    ("comparators.uv.trip", {"fits_window": ("comparators.uv.trip.falling", "comparators.uv.trip.rising")}),
     ("comparators.uv.trip.rising", {}),  # falling level and hysteresis are given
     ("comparators.uv.tracked", {}),  # the amount is given
 )  # fmt: skip

@@ -32,28 +32,36 @@ def test_sound_example_keeps_every_rule() -> None:
 
 
 @pytest.mark.parametrize(
-    ("rule", "of"), [(RULES[0], "por"), (RULES[1], "ov")], ids=[rule.id for rule in RULES]
-)  # fmt: skip
-def test_example_is_one_fault(rule: object, of: str) -> None:
+    ("rule", "of", "also"),
+    [(RULES[0], "ov", {("own_range/survives", "ov"): NONE}), (RULES[1], "ov", {})],
+    ids=[rule.id for rule in RULES],
+)
+def test_example_is_one_fault(rule: object, of: str, also: dict[tuple[str, str], Kind]) -> None:
     assert hasattr(rule, "id") and hasattr(rule, "example")
-    assert changed(rule.example.fails, RULES) == {(rule.id, of): FAIL}
+    assert changed(rule.example.fails, RULES) == {(rule.id, of): FAIL, **also}
     assert judged(rule.example.holds, RULES)[rule.id, of].kind is PASS
 
 
 @pytest.mark.parametrize(
-    ("fact", "limit", "beyond"),
-    [("works_from", "{max: 1.1 V}", "{max: 1.1001 V}"), ("works_to", "{min: 1.5 V}", "{min: 1.4999 V}")],
+    ("fact", "limit", "beyond", "kind"),
+    [
+        ("works_from", "{max: 1.1 V}", "{max: 1.1001 V}", NONE),  # self_bias/works_at_own_trip says so
+        ("works_to", "{min: 1.5 V}", "{min: 1.4999 V}", FAIL),
+    ],
 )
-def test_limit_belongs_to_the_good_side(fact: str, limit: str, beyond: str) -> None:
+def test_limit_belongs_to_the_good_side(fact: str, limit: str, beyond: str, kind: Kind) -> None:
     wide = "comparators: {por: {works_from: {max: 1 V}, works_to: {min: 3 V}}}"
     at_limit = said("levels_inside", wide, f"comparators: {{por: {{{fact}: {limit}}}}}")
     assert at_limit.kind is PASS
     assert at_limit.measure is not None and at_limit.measure.margin == 0.0
-    assert said("levels_inside", wide, f"comparators: {{por: {{{fact}: {beyond}}}}}").kind is FAIL
+    assert said("levels_inside", wide, f"comparators: {{por: {{{fact}: {beyond}}}}}").kind is kind
 
 
 def test_words() -> None:
     answer = said("levels_inside", "comparators: {por: {works_from: {max: 1.2 V}}}")
+    assert answer.message == "its falling level lies below its own range (self_bias/works_at_own_trip says so)"
+    swapped = "comparators: {por: {trip: {rising: {min: 1.1 V, max: 1.4 V}, falling: {min: 1.2 V, max: 1.5 V}}}}"
+    answer = said("levels_inside", swapped, "comparators: {por: {works_from: {max: 1.2 V}}}")
     assert answer.message == "its lowest level 1.1 V, at least 1.2 V needed"
     assert answer.why == "works from 1.2 V to 2.75 V; levels 1.1 V to 1.5 V"
     assert answer.mend == "a detector that works from 1.1 V or less; now 1.2 V"
@@ -70,11 +78,13 @@ def test_every_code_counts() -> None:
         ships_with: high
         codes:
           low: {rising: {min: 0.95 V, max: 1.1 V}, falling: {min: 0.9 V, max: 1 V}}
-          high: {rising: {min: 1.2 V, max: 1.5 V}, falling: {min: 1.1 V, max: 1.4 V}}
+          high: {rising: {min: 2.7 V, max: 2.8 V}, falling: {min: 2.6 V, max: 2.7 V}}
     """
     answer = said("levels_inside", patch)
-    assert (answer.kind, answer.message) == (FAIL, "its lowest level 900 mV, at least 950 mV needed")
-    assert answer.why == "works from 950 mV to 2.75 V; levels 900 mV to 1.5 V, over 2 codes"
+    assert answer.message == "its falling level lies below its own range (self_bias/works_at_own_trip says so)"
+    answer = said("levels_inside", patch, "comparators: {por: {works_from: {max: 0.85 V}}}")
+    assert (answer.kind, answer.message) == (FAIL, "its highest level 2.8 V, at most 2.75 V needed")
+    assert answer.why == "works from 850 mV to 2.75 V; levels 900 mV to 2.8 V, over 2 codes"
 
 
 def test_another_rail_feeds_it() -> None:

@@ -175,14 +175,80 @@ def test_not_applicable(rule: str, of: str, words: str) -> None:
     assert (answer.kind, answer.message) == (NONE, words)
 
 
-def test_a_crude_current_has_no_level_of_its_own() -> None:
-    patch = "comparators: {por: {crossover: {kind: crude_current, reference_current: 900 nA, mirror: 1}}}"
+CRUDE = """
+comparators:
+  por:
+    crossover: {kind: crude_current, reference_current: 900 nA, mirror: 1, reference_start: 1 V, reference_rise: 0.4 V}
+"""
+
+
+def crude_corner_v(*, t_k: float, threshold_v: float, r_ohm: float) -> float:
+    """SciPy's root of 900 nA (V - 1 V)/0.4 V against the current that a diode-connected device draws through R."""
+    thermal_v = 8.617333262e-5 * t_k
+    n = 0.068 / (8.617333262e-5 * 298.15 * math.log(10))
+    vth_v = threshold_v - 0.35e-3 * (t_k - 298.15)
+
+    def missing_v(crude_a: float) -> float:
+        specific_a = 2 * n * 26e-6 * thermal_v**2
+        device_v = vth_v + 2 * n * thermal_v * math.log(math.expm1(math.sqrt(crude_a / specific_a)))
+        return 1.0 + 0.4 * crude_a / 900e-9 - crude_a * r_ohm - device_v
+
+    crude_a = brentq(missing_v, 1e-10, 900e-9, xtol=1e-20)
+    return 1.0 + 0.4 * crude_a / 900e-9
+
+
+def test_the_level_of_a_crude_current_is_where_the_reference_overtakes_it() -> None:
+    """The crude current is largest, and the level highest, with a low threshold and resistance, and hot."""
+    most_v = crude_corner_v(t_k=398.15, threshold_v=0.485, r_ohm=1.8e6)
+    least_v = crude_corner_v(t_k=233.15, threshold_v=0.515, r_ohm=2.2e6)
+    for trip, limit_v in (("{min: 0.5 V, max: 1.2 V}", most_v), ("{min: 1.1 V, max: 1.9 V}", least_v)):
+        answer = said("crossover_level", CRUDE, f"comparators: {{por: {{trip: {{rising: {trip}}}}}}}")
+        assert answer.measure is not None
+        assert answer.measure.have == pytest.approx(limit_v, abs=1e-8)
+    tracks = said("crossover_tracks", CRUDE)
+    assert tracks.measure is not None
+    assert tracks.measure.have == pytest.approx(least_v - 0.07, abs=1e-8)
+
+
+@pytest.mark.parametrize("change", ["reference_rise: 3 V", "reference_start: 8 V"], ids=["slow", "late"])
+def test_a_reference_that_never_stays_ahead_never_lets_go(change: str) -> None:
+    answer = said("crossover_level", CRUDE, f"comparators: {{por: {{crossover: {{{change}}}}}}}")
+    assert (answer.kind, answer.message) == (
+        FAIL,
+        "at some corner the reference current never stays ahead of the crude one as it comes up: the detector never "
+        "lets go",
+    )
+    assert answer.mend == (
+        "a larger reference current, a smaller rise, a larger resistance, or a smaller mirror ratio"
+    )  # fmt: skip
+    assert said("crossover_tracks", CRUDE, f"comparators: {{por: {{crossover: {{{change}}}}}}}").kind is NONE
+
+
+@pytest.mark.parametrize("fact", ["reference_current", "reference_start", "reference_rise", "mirror", "resistance"])
+def test_the_level_of_a_crude_current_needs_how_its_reference_comes_up(fact: str) -> None:
     for rule in ("crossover_level", "crossover_tracks"):
-        answer = said(rule, patch)
-        assert (answer.kind, answer.message) == (
-            NONE,
-            "its level depends on how the reference current comes up; trip_window/second_crossing judges it in service",
-        )
+        answer = said(rule, CRUDE, f"comparators: {{por: {{crossover: {{{fact}: null}}}}}}")
+        assert (answer.kind, answer.missing) == (OPEN, (f"comparators.por.crossover.{fact}",))
+
+
+NAMED = "comparators: {por: {crossover: {resistor: poly_high}}}"
+
+
+def test_a_named_resistor_follows_its_kind() -> None:
+    """poly_high: -900 ppm/K and 2.5 ppm/K^2 from 25 degC, so 0.935 of its resistance at 125 degC."""
+    answer = said("crossover_level", NAMED)
+    hot = 1 - 900e-6 * 100 + 2.5e-6 * 100**2
+    expected_v = corner_v(t_k=398.15, threshold_v=0.485, r_ohm=2.2e6 * hot, offset_v=-3e-3)
+    assert answer.measure is not None
+    assert answer.measure.have == pytest.approx(expected_v, abs=1e-8)
+    assert expected_v > LOWEST_V + 1e-3
+    assert "resistance 2.2 Mohm, tc1 -900 ppm/K, tc2 2.5 ppm/K^2" in answer.why
+
+
+@pytest.mark.parametrize("fact", ["tc1", "tc2", "reference_temperature"])
+def test_a_named_resistor_needs_its_coefficients(fact: str) -> None:
+    answer = said("crossover_level", NAMED, without(f"process.resistors.poly_high.{fact}"))
+    assert (answer.kind, answer.missing) == (OPEN, (f"process.resistors.poly_high.{fact}",))
 
 
 @pytest.mark.parametrize(

@@ -46,11 +46,15 @@ def test_placed_by_its_release_the_detector_is_silent_down_to_1_53_v() -> None:
     answer = said("placement_sense", patch)
     assert (answer.kind, answer.message) == (
         FAIL,
-        "is placed by the level that lets go: it may stay silent down to 1.53 V, and adc works from 1.6 V",
+        "is placed by the level that lets go: until the answer avdd may come down to 1.53 V, at least 1.6 V needed",
     )
-    assert answer.why == "falling 1.53 V to 1.55 V, rising 1.58 V to 1.6 V"
+    assert answer.why == "adc works from 1.6 V; falling 1.53 V to 1.55 V, rising 1.58 V to 1.6 V"
     assert answer.mend == "both levels 70 mV further up"
-    assert measure(said("guarantee", patch)).margin == pytest.approx(-0.07, abs=1e-12)
+    assert measure(answer).margin == pytest.approx(-0.07, abs=1e-12)
+    other = said("guarantee", patch)
+    assert (other.kind, other.message) == (
+        NONE, "is placed by the level that lets go (trip_window/placement_sense says so)",
+    )  # fmt: skip
 
 
 def test_placed_to_guarantee_the_same_detector_keeps_both() -> None:
@@ -74,7 +78,7 @@ def test_over_voltage_the_wrong_way_round() -> None:
     patch = both(trip("falling", "1.97 V", "1.98 V", of="ov"), trip("rising", "2 V", "2.0205 V", of="ov"))
     answer = said("placement_sense", patch, of="ov")
     assert answer.message == (
-        "is placed by the level that lets go: it may stay silent up to 2.024 V, and adc works up to 1.98 V"
+        "is placed by the level that lets go: until the answer avdd may come up to 2.024 V, at most 1.98 V needed"
     )
     assert answer.mend == "both levels 44 mV further down"
 
@@ -119,9 +123,8 @@ def test_a_part_that_ships_with_a_code_that_does_not_suit() -> None:
     answer = judged(both(CODES, "comparators: {uv: {ships_with: low}}"), RULES)["trip_window/codes", "uv"]
     assert answer.message.endswith("(low, which it ships with, does not)")
     assert answer.mend == "ship with one of mid"
-    assert (
-        judged(both(CODES, "comparators: {uv: {ships_with: low}}"), RULES)["trip_window/guarantee", "uv"].kind is FAIL
-    )
+    answers = judged(both(CODES, "comparators: {uv: {ships_with: low}}"), RULES)
+    assert answers["trip_window/placement_sense", "uv"].kind is FAIL
 
 
 def test_no_code_suits() -> None:

@@ -22,10 +22,10 @@ MOST_ROWS: Final = 48
 """Most elements that one scenario shows; of more, detectors and what they lean on are left out first."""
 _LEFT: Final = 172.0
 _RIGHT: Final = 790.0
-_TOP: Final = 34.0
-_ROW: Final = 22.0
-_RAIL_ROW: Final = 40.0
-_GROUP: Final = 20.0
+_TOP: Final = 30.0
+_ROW: Final = 18.0
+_RAIL_ROW: Final = 32.0
+_GROUP: Final = 16.0
 _POWER: Final = 0.4
 _SMALL: Final = 12.0
 _T: Final = Dimension.DURATION
@@ -126,14 +126,14 @@ def draw_timeline(line: Timeline, lines: Timelines) -> TimelineDrawing | None:
     for section, heading in _GROUPS:
         names = [name for name in chosen if lines.graph.elements[name].section == section]
         if names:
-            groups.append(Group(heading, y + 14.0))
+            groups.append(Group(heading, y + 12.0))
             y += _GROUP
         for name in names:
             height = _RAIL_ROW if section == "rails" else _ROW
             rows.append(_row(name, NOUNS[section], line, scale, y=y, height=height))
             y += height
     return TimelineDrawing(
-        name=line.scenario.name, about=line.scenario.about, scene=line.scenario.scene.value, height=y + 34.0,
+        name=line.scenario.name, about=line.scenario.about, scene=line.scenario.scene.value, height=y + 26.0,
         left=_LEFT, right=_RIGHT, top=_TOP, bottom=y + 4.0, rows=tuple(rows), groups=tuple(groups),
         ticks=_ticks(line, chosen, scale), left_out=left_out,
     )  # fmt: skip
@@ -216,16 +216,16 @@ def _row(name: str, noun: str, line: Timeline, scale: Stretched, *, y: float, he
     elif isinstance(state, Decision):
         lanes = (
             Lane(
-                "", y + 4.0, height - 8.0, _decided(state, scale, "unknown" if noun == NOUNS["resets"] else "unclear")
+                "", y + 3.0, height - 6.0, _decided(state, scale, "unknown" if noun == NOUNS["resets"] else "unclear")
             ),
         )
     elif isinstance(state, On):
-        lanes = (Lane("", y + 4.0, height - 8.0, _is_on(state, scale)),)
+        lanes = (Lane("", y + 3.0, height - 6.0, _is_on(state, scale)),)
     elif isinstance(state, LoadState):
-        half = (height - 7.0) / 2
+        half = (height - 5.0) / 2
         lanes = (
-            Lane("ready", y + 3.0, half, _is_on(state.ready, scale)),
-            Lane("running", y + 4.0 + half, half, _is_on(state.running, scale)),
+            Lane("ready", y + 2.0, half, _is_on(state.ready, scale)),
+            Lane("running", y + 3.0 + half, half, _is_on(state.running, scale)),
         )
         slack = release_slack(line, name)
         if slack is not None and abs(slack.slack_s) < FOREVER_S:
@@ -246,7 +246,7 @@ def _wave(points: Sequence[tuple[float, float]], scale: Stretched, y: float, hei
     shown: list[str] = []
     for at_s in times:
         for level_v in _levels_v(points, at_s):
-            place = f"{scale.at(at_s):g},{round(low_y - room * level_v / most_v, 2):g}"
+            place = f"{round(scale.at(at_s), 1):g},{round(low_y - room * level_v / most_v, 1):g}"
             if not shown or shown[-1] != place:
                 shown.append(place)
     return Wave(" ".join(shown), late)
@@ -301,7 +301,7 @@ def _pieces(sets: Iterable[Times], kind: Callable[[float], str], scale: Stretche
             found[-1] = (what, found[-1][1], scale.at(end_s))
         else:
             found.append((what, scale.at(start_s), scale.at(end_s)))
-    return tuple(Piece(what, x, round(end - x, 2)) for what, x, end in found if end - x >= 0.05)
+    return tuple(Piece(what, round(x, 1), round(end - x, 1)) for what, x, end in found if end - x >= 0.05)
 
 
 def _ticks(line: Timeline, chosen: Sequence[str], scale: Stretched) -> tuple[Tick, ...]:

@@ -69,7 +69,7 @@ def gather(judged: Judged) -> DescriptionPart | UnusablePart:
         closest_says="" if closest is None else closest.message,
         closest_mend="" if closest is None else closest.mend,
         next_closest=tuple(_ledger_row(judgement) for judgement in live[1 : 1 + NEXT_CLOSEST]),
-        todo=tuple(todo[:MOST_TODO]),
+        todo=_shown(todo),
         more_todo=max(len(todo) - MOST_TODO, 0),
         families=tuple(_families(review)),
         missing=tuple(_missing(review)),
@@ -174,6 +174,13 @@ def _share(slack: float) -> str:
         return f"{'-' if slack < 0 else '+'}>999 %"
     percent = 100.0 * slack
     return f"{percent:+.{0 if abs(percent) >= 99.5 else 1}f} %"
+
+
+def _shown(todo: Sequence[Todo]) -> tuple[Todo, ...]:
+    """The first of them; what is open keeps its place among them."""
+    if len(todo) <= MOST_TODO or todo[-1].kind != "open":
+        return tuple(todo[:MOST_TODO])
+    return (*todo[: MOST_TODO - 1], todo[-1])
 
 
 def _todo(review: Review) -> list[Todo]:

@@ -1,0 +1,211 @@
+"""Reach: loads and the nets that reset them, edges, clocks, and joined sources."""
+
+from __future__ import annotations
+
+import math
+import random
+from typing import Any, Final
+
+import pytest
+
+from tests.rules.sound import both, changed, judged, of_kind, without
+from tidegate.lint.graph.edge import path_text
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules.reach import RULES
+
+FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
+HAS: Final = "reach/has_reset"
+EVERY: Final = "reach/every_rail"
+EDGE: Final = "reach/edge"
+CLOCK: Final = "reach/synchronised"
+STAGE: Final = "reach/stage_combined_safely"
+NET: Final = "reach/reset_net_combined_safely"
+EXAMPLES: Final = {
+    HAS: {(HAS, "core_logic")},
+    EVERY: {(EVERY, "core_logic")},
+    EDGE: {(EDGE, "por_n")},
+    CLOCK: {(CLOCK, "core_logic")},
+    STAGE: {(STAGE, "gather")},
+    NET: {(NET, "por_n")},
+}
+
+
+def one(patch: str, rule: str, subject: str) -> Judgement:
+    return judged(patch, RULES)[rule, subject]
+
+
+def test_the_sound_example_keeps_every_rule() -> None:
+    assert of_kind(judged("", RULES), FAIL, OPEN, Kind.REVIEW) == []
+
+
+@pytest.mark.parametrize("rule", RULES, ids=lambda rule: str(rule.id))
+def test_each_example_fails_in_one_place_and_holds(rule: Any) -> None:
+    bad = {key for key, kind in changed(rule.example.fails, RULES).items() if kind not in (PASS, NONE)}
+    assert bad == EXAMPLES[rule.id]
+    assert {said.kind for key, said in judged(rule.example.holds, RULES).items() if key[0] == rule.id} <= {PASS, NONE}
+
+
+# reach/has_reset
+
+
+def test_load_without_a_net() -> None:
+    said = one("resets: {core_rst_n: {guards: [adc]}}", HAS, "core_logic")
+    assert (said.message, said.mend) == (
+        "no reset net guards it", "let a reset net guard core_logic, or its domain",
+    )  # fmt: skip
+    assert one("resets: {core_rst_n: {guards: [core, adc]}}", HAS, "core_logic").message == "guarded by core_rst_n"
+
+
+def test_maker_of_a_rail_may_run_without_a_reset() -> None:
+    said = one("resets: {por_n: {guards: [adc]}}", HAS, "core_regulator")
+    assert (said.kind, said.message) == (NONE, "it makes vcore, and may run without a reset")
+
+
+def test_has_reset_is_open_where_a_net_does_not_say_what_it_guards() -> None:
+    assert one(without("resets.core_rst_n.guards"), HAS, "core_logic").missing == ("resets.core_rst_n.guards",)
+    patch = both("resets: {core_rst_n: {guards: [core]}}", without("loads.core_logic.domain"))
+    assert one(patch, HAS, "core_logic").missing == ("loads.core_logic.domain",)
+
+
+# reach/every_rail
+
+
+def test_load_that_no_detector_of_its_rail_resets() -> None:
+    said = one("resets: {por_n: {guards: [adc, core_regulator]}, core_rst_n: {guards: [core_logic]}}", EVERY, "adc")
+    assert said.message == "it needs vcore, and no detector of vcore resets it"
+    assert said.why == "uv_core watches vcore, and does not reach por_n"
+    assert said.mend == "lead the decision of uv_core to por_n"
+    assert path_text(said.path) == "adc supplied by vcore"
+
+
+def test_rail_that_nobody_watches_is_the_matter_of_another_rule() -> None:
+    patch = "comparators: {uv_core: {watches: avdd}}"
+    assert one(patch, EVERY, "core_logic").message == "nobody watches vcore (coverage/under_voltage says so)"
+    assert one(patch, EVERY, "adc").message == "reset for avdd"
+
+
+def test_over_voltage_detector_does_not_judge_for_too_low() -> None:
+    cut = "{comparators: {uv: {role: over_voltage}}, output_stages: {gather: {driven_by: [uv_out, ov_latch]}}}"
+    assert one(cut, EVERY, "core_regulator").kind is FAIL  # por watches avdd, and reaches no net
+
+
+def test_every_rail_is_open_where_a_way_is_not_known() -> None:
+    patch = both("resets: {core_rst_n: {guards: [adc]}}", without("output_stages.uv_out.driven_by"))
+    cut = both(patch, "{resets: {por_n: {guards: [adc, core_regulator, core_logic]}}}")
+    assert one(cut, EVERY, "core_logic").missing == ("output_stages.uv_out.driven_by",)
+    assert one(without("output_stages.uv_out.driven_by"), EVERY, "adc").kind is PASS  # it is reset all the same
+
+
+@pytest.mark.parametrize("seed", range(10))
+def test_every_rail_against_brute_force(seed: int) -> None:
+    """Random stages between detectors and nets: brute force follows every driver back by recursion."""
+    chance = random.Random(seed)
+    sources = ["por", "uv", "uv_core"]
+    drivers: dict[str, list[str]] = {}
+    for name in ("por_out", "uv_out", "gather", "rst_out", "core_out"):
+        earlier = sources + list(drivers)
+        drivers[name] = sorted(chance.sample(earlier, k=chance.choice((1, 2))))
+    nets = {"por_n": ["rst_out"], "core_rst_n": ["core_out"]}
+    stages = ", ".join(f"{name}: {{driven_by: [{', '.join(found)}]}}" for name, found in drivers.items())
+
+    def judges(name: str) -> set[str]:
+        if name in sources:
+            return {"vcore" if name == "uv_core" else "avdd"}
+        return set().union(*(judges(driver) for driver in drivers.get(name, nets.get(name, ()))))
+
+    said = judged(f"output_stages: {{{stages}}}", RULES)
+    for load, needs, guards in (
+        ("adc", {"avdd", "vcore"}, ("por_n", "core_rst_n")),
+        ("core_logic", {"vcore"}, ("core_rst_n",)),
+        ("core_regulator", {"avdd"}, ("por_n",)),
+    ):
+        found: set[str] = set().union(*(judges(net) for net in guards))
+        assert said[EVERY, load].kind is (PASS if needs <= found else FAIL)
+
+
+# reach/edge
+
+
+@pytest.mark.parametrize(("share", "kind"), [(0.999, PASS), (1.0, PASS), (1.001, FAIL)])
+def test_edge_at_its_limit(share: float, kind: Kind) -> None:
+    """ln 9 times 8 kohm times C is 100 ns, the slowest edge of plain inputs."""
+    load_f = share * 100e-9 / (math.log(9) * 8e3)
+    assert one(f"output_stages: {{rst_out: {{load: {load_f * 1e12!r} pF}}}}", EDGE, "por_n").kind is kind
+
+
+def test_net_that_is_too_slow() -> None:
+    """2.1972 times 8 kohm times 8 pF."""
+    said = one("output_stages: {rst_out: {load: 8 pF}}", EDGE, "por_n")
+    assert said.message == "rst_out moves it within 140.6 ns, at most 100 ns needed"
+    assert said.why == "8 kohm of drive on 8 pF, 40 receivers among it"
+    assert said.mend == "a drive of 5.68 kohm or less, or a load of 5.68 pF or less"
+    assert path_text(said.path) == "rst_out drives por_n"
+
+
+@pytest.mark.parametrize(
+    "fact",
+    ["output_stages.rst_out.drive", "output_stages.rst_out.load", "process.plain_edge", "resets.por_n.driven_by"],
+)
+def test_edge_is_open_without(fact: str) -> None:
+    assert one(without(fact), EDGE, "por_n").missing == (fact,)
+
+
+# reach/synchronised
+
+
+def test_clocked_load_that_is_released_at_any_time() -> None:
+    said = one("loads: {core_logic: {synchronised: false}}", CLOCK, "core_logic")
+    assert said.message == "it has a clock, and its reset is released at any time"
+    assert one("loads: {core_logic: {clocked: false, synchronised: null}}", CLOCK, "core_logic").kind is NONE
+
+
+@pytest.mark.parametrize("fact", ["loads.core_logic.clocked", "loads.core_logic.synchronised"])
+def test_synchronised_is_open_without(fact: str) -> None:
+    assert one(without(fact), CLOCK, "core_logic").missing == (fact,)
+
+
+# reach/*_combined_safely
+
+PAIR: Final = """
+comparators:
+  uv_twin: {role: under_voltage, watches: avdd, domain: aon}
+output_stages:
+  twins: {driven_by: [uv, uv_twin], COMBINE, domain: aon, kind: buffer, hold: none}
+"""
+
+
+def test_two_detectors_alike_that_must_agree() -> None:
+    said = one(PAIR.replace("COMBINE", "combine: all_agree"), STAGE, "twins")
+    assert said.kind is FAIL
+    assert said.message == "uv and uv_twin must all agree: one that fails to assert keeps the others from it"
+    assert said.mend == (
+        "combine: any_asserts, which is the safe way against a missed reset; or say combined_against: false_reset"
+    )
+
+
+@pytest.mark.parametrize(
+    ("combine", "kind"),
+    [
+        ("combine: any_asserts", PASS),
+        ("combine: all_agree, combined_against: false_reset", PASS),
+        ("combine: all_agree, combined_against: missed_reset", FAIL),
+        ("note: nothing is said", OPEN),
+    ],
+)
+def test_combination_for_a_fault_that_is_said(combine: str, kind: Kind) -> None:
+    assert one(PAIR.replace("COMBINE", combine), STAGE, "twins").kind is kind
+
+
+def test_unlike_detectors_must_never_agree() -> None:
+    patch = "output_stages: {gather: {combine: all_agree, combined_against: false_reset}}"
+    said = one(patch, STAGE, "gather")
+    assert said.message == "por_out and uv_out and ov_latch must all agree, and uv_out does not judge avdd for power on"
+    assert said.why == "what judges avdd cannot assert it alone"
+    assert path_text(said.path) == "uv_out drives gather"
+
+
+def test_combination_is_open_without() -> None:
+    assert one(without("output_stages.gather.combine"), STAGE, "gather").missing == ("output_stages.gather.combine",)
+    assert one(without("output_stages.gather.driven_by"), STAGE, "gather").missing == (
+        "output_stages.gather.driven_by",
+    )  # fmt: skip

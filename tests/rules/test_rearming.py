@@ -1,0 +1,179 @@
+"""Re-arming: pulses, residual levels, and release delays that begin anew."""
+
+from __future__ import annotations
+
+from typing import Any, Final
+
+import pytest
+
+from tests.rules.sound import both, changed, judged, of_kind, without
+from tidegate.lint.graph.edge import path_text
+from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules.rearming import RULES
+
+FAIL, PASS, OPEN, NONE, REVIEW = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE, Kind.REVIEW
+HELD: Final = "rearming/level_held"
+RESIDUAL: Final = "rearming/residual"
+DISCHARGE: Final = "rearming/discharge"
+EXAMPLES: Final = {
+    HELD: {(HELD, "por")},
+    RESIDUAL: {(RESIDUAL, "por")},
+    DISCHARGE: {(DISCHARGE, "rst_out")},
+}
+
+
+def one(patch: str, rule: str, subject: str) -> Judgement:
+    return judged(patch, RULES)[rule, subject]
+
+
+def test_the_sound_example_keeps_every_rule() -> None:
+    assert of_kind(judged("", RULES), FAIL, OPEN, REVIEW) == []
+
+
+@pytest.mark.parametrize("rule", RULES, ids=lambda rule: str(rule.id))
+def test_each_example_fails_in_one_place_and_holds(rule: Any) -> None:
+    bad = {key for key, kind in changed(rule.example.fails, RULES).items() if kind not in (PASS, NONE)}
+    assert bad == EXAMPLES[rule.id]
+    assert {said.kind for key, said in judged(rule.example.holds, RULES).items() if key[0] == rule.id} <= {PASS, NONE}
+
+
+# rearming/level_held
+
+
+def pulse(of: str, rearms_below: str) -> str:
+    return f"comparators: {{{of}: {{output: pulse, pulse: {{min: 1 ms, max: 3 ms}}, rearms_below: {rearms_below}}}}}"
+
+
+def test_dip_that_ends_above_the_level_of_re_arming() -> None:
+    said = one(pulse("por", "0.4 V"), HELD, "por")
+    assert said.kind is FAIL
+    assert said.message == (
+        "resets by a pulse of 1 ms or more, and again only after avdd has been below 400 mV, at least 1.6 V needed"
+    )
+    assert said.why == "adc works from 1.6 V: a dip that ends between 400 mV and that resets nothing"
+    assert said.mend == (
+        "an output that is a level held for every supply below the threshold; or one that re-arms below 1.6 V at its "
+        "lowest"
+    )
+    assert path_text(said.path).endswith("guards adc")
+
+
+@pytest.mark.parametrize(("level", "kind"), [("1.599 V", FAIL), ("1.6 V", REVIEW), ("1.601 V", REVIEW)])
+def test_level_of_re_arming_at_its_limit(level: str, kind: Kind) -> None:
+    """The loads work from 1.6 V on; a pulse of a detector that is no power-on detector is for a person to look at."""
+    assert one(pulse("uv", level), HELD, "uv").kind is kind
+
+
+def test_pulse_of_a_power_on_detector_fails_whatever_it_re_arms_at() -> None:
+    said = one(pulse("por", "1.65 V"), HELD, "por")
+    assert (said.kind, said.message) == (
+        FAIL,
+        "resets by a pulse of 1 ms or more, which ends however low avdd still is",
+    )
+    assert said.why == "it re-arms below 1.65 V"
+
+
+def test_pulse_of_another_detector_is_asked() -> None:
+    said = one(pulse("uv", "1.62 V"), HELD, "uv")
+    assert said.kind is REVIEW
+    assert said.why == "rests on avdd coming back within the pulse; it re-arms below 1.62 V"
+    over = one(pulse("ov", "1.62 V"), HELD, "ov")
+    assert (over.kind, over.message) == (REVIEW, "reports by a pulse of 1 ms or more")
+
+
+def test_level_output_needs_no_more() -> None:
+    """The trap: a level that re-arms far below its threshold still asserts for every supply below it."""
+    assert one("comparators: {por: {rearms_below: 0.1 V}, uv: {rearms_below: 0.1 V}}", HELD, "uv").kind is PASS
+
+
+@pytest.mark.parametrize(
+    ("patch", "missing"),
+    [
+        (without("comparators.por.output"), "comparators.por.output"),
+        (both(pulse("por", "0.4 V"), without("comparators.por.rearms_below")), "comparators.por.rearms_below"),
+        (both(pulse("por", "1.7 V"), without("loads.adc.needs.0.works")), "loads.adc.needs.0.works"),
+    ],
+)
+def test_level_held_is_open_without(patch: str, missing: str) -> None:
+    said = one(patch, HELD, "por")
+    assert (said.kind, said.missing) == (OPEN, (missing,))
+
+
+# rearming/residual
+
+
+@pytest.mark.parametrize(("level", "kind"), [("0.399 V", PASS), ("0.4 V", PASS), ("0.401 V", FAIL)])
+def test_residual_at_its_limit(level: str, kind: Kind) -> None:
+    assert one(f"rails: {{avdd: {{residual: {level}}}}}", RESIDUAL, "por").kind is kind
+
+
+def test_residual_above_the_level_of_re_arming() -> None:
+    said = one("rails: {avdd: {residual: 0.45 V}}", RESIDUAL, "por")
+    assert said.message == "avdd may come up again from 450 mV, at most 400 mV needed"
+    assert said.why == "ready to work again below 400 mV"
+    assert said.mend == "a detector that re-arms below 450 mV at its lowest, or a residual level of 400 mV or less"
+
+
+@pytest.mark.parametrize("fact", ["comparators.por.rearms_below", "rails.avdd.residual"])
+def test_residual_is_open_without(fact: str) -> None:
+    assert one(without(fact), RESIDUAL, "por").missing == (fact,)
+
+
+def test_detector_that_states_no_level_of_re_arming() -> None:
+    assert one(without("comparators.uv.rearms_below"), RESIDUAL, "uv").kind is NONE
+    assert one("", RESIDUAL, "ov").kind is NONE
+
+
+# rearming/discharge
+
+SHORTEST_S: Final = (1.627 * 0.995 - 3 * 0.4e-3 / 0.367 - 1.6) / 2e3 + (1.677 * 0.995 - 3 * 0.4e-3 / 0.367 - 1.6) / 36e3
+"""A dip to 1.6 V: down from the lowest falling level at 2 V/ms, up to the lowest rising one at 1.8 V in 50 us."""
+
+
+@pytest.mark.parametrize(("share", "kind"), [(0.999, PASS), (1.0, PASS), (1.001, FAIL)])
+def test_discharge_within_the_shortest_assertion(share: float, kind: Kind) -> None:
+    patch = f"output_stages: {{rst_out: {{discharge: {{within: {share * SHORTEST_S * 1e6!r} us}}}}}}"
+    assert one(patch, DISCHARGE, "rst_out").kind is kind
+
+
+def test_discharge_that_is_too_slow_for_a_dip() -> None:
+    said = one("output_stages: {rst_out: {discharge: {within: 1 ms}}}", DISCHARGE, "rst_out")
+    assert said.message == "its release delay is set back within 1 ms, at most 9.613 us needed"
+    assert said.why == "a dip that takes adc out of its range makes uv assert for 9.613 us or more"
+    assert said.mend == "a discharge within 9.61 us"
+
+
+def test_discharge_that_is_too_slow_for_the_time_off() -> None:
+    patch = "{rails: {avdd: {off_time: 5 us}}, output_stages: {rst_out: {discharge: {within: 6 us}}}}"
+    said = one(patch, DISCHARGE, "rst_out")
+    assert said.message == "its release delay is set back within 6 us, at most 5 us needed"
+    assert said.why == "avdd stays off for 5 us or more"
+
+
+def test_nothing_discharges_the_capacitor() -> None:
+    said = one("output_stages: {rst_out: {discharge: none}}", DISCHARGE, "rst_out")
+    assert said.message == "nothing sets its release delay of up to 400 us back: the next one may be over at once"
+    assert said.mend == "a transistor across the capacitor that the assertion turns on"
+
+
+@pytest.mark.parametrize(
+    "fact",
+    [
+        "output_stages.rst_out.discharge", "output_stages.rst_out.discharge.within", "rails.avdd.off_time",
+        "rails.avdd.rise", "rails.avdd.nominal", "loads.adc.needs.0.works",
+    ],
+)  # fmt: skip
+def test_discharge_is_open_without(fact: str) -> None:
+    said = one(without(fact), DISCHARGE, "rst_out")
+    assert (said.kind, set(said.missing)) == (OPEN, {fact})
+
+
+def test_collapse_or_fall_gives_the_steepest_fall() -> None:
+    """Without a collapse the fall of 1.8 V in 1 ms is the steepest."""
+    assert one(without("rails.avdd.collapse"), DISCHARGE, "rst_out").kind is PASS
+    gone = one(without("rails.avdd.collapse", "rails.avdd.fall"), DISCHARGE, "rst_out")
+    assert gone.missing == ("rails.avdd.fall",)
+
+
+def test_stage_without_a_release_delay() -> None:
+    assert one("", DISCHARGE, "gather").kind is NONE
