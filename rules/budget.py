@@ -181,9 +181,9 @@ RULES: Final[tuple[Rule, ...]] = (
         "stage",
         Example(
             fails="output_stages: {core_out: {timing: {current: {min: 10 nA, max: 20 nA}, leakage: 2 nA, "
-            "capacitance: 20 pF, threshold: 0.8 V}}}",
+            "capacitance: 25 pF, threshold: 0.8 V}}}",
             holds="output_stages: {core_out: {timing: {current: {min: 10 nA, max: 20 nA}, leakage: 1 nA, "
-            "capacitance: 20 pF, threshold: 0.8 V}}}",
+            "capacitance: 25 pF, threshold: 0.8 V}}}",
         ),
     ),
 )

@@ -277,8 +277,8 @@ def reference_current_is_made(reference: Reference, case: Case) -> Judgement:
     mend="correct the current or the resistance",
     sources=("Ohm's law",),
     example=Example(
-        fails="biases: {bias_main: {current: {typ: 1.3 uA}}}",
-        holds="biases: {bias_main: {current: {typ: 1 uA}}}",
+        fails="biases: {bias_main: {current: {min: 1.25 uA, typ: 1.3 uA, max: 1.35 uA}}}",
+        holds="biases: {bias_main: {current: {min: 0.9 uA, typ: 1 uA, max: 1.12 uA}}}",
     ),
 )
 def bias_current_is_made(bias: Bias, case: Case) -> Judgement:

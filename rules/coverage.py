@@ -233,14 +233,12 @@ _UNUSED: Final = {
     "output_stages": "output_stages: {spare: {driven_by: [uv], domain: aon, kind: buffer, hold: none}}",
 }
 _USED: Final = {
-    "rails": "{rails: {vspare: {nominal: 1.8 V}}, domains: {spare: {rail: vspare, kind: always_on}}}",
-    "domains": "{domains: {spare: {rail: avdd, kind: always_on}}, comparators: {uv: {domain: spare}}}",
-    "references": "{references: {spare: {kind: external}}, comparators: {uv: {reference: spare}}}",
-    "biases": "{biases: {spare: {kind: external}}, comparators: {uv: {bias: spare}}}",
-    "comparators": "{comparators: {spare: {role: under_voltage, watches: avdd, domain: aon}}, "
-    "output_stages: {gather: {driven_by: [por_out, uv_out, ov_latch, spare]}}}",
-    "output_stages": "{output_stages: {spare: {driven_by: [uv], domain: aon, kind: buffer, hold: none}, "
-    "gather: {driven_by: [por_out, uv_out, ov_latch, spare]}}}",
+    "rails": "domains: {aon: {rail: avdd}}",
+    "domains": "comparators: {uv: {domain: aon}}",
+    "references": "comparators: {uv: {reference: ref_fast}}",
+    "biases": "comparators: {uv: {bias: bias_start}}",
+    "comparators": "output_stages: {uv_out: {driven_by: [uv]}}",
+    "output_stages": "output_stages: {gather: {driven_by: [por_out, uv_out, ov_latch]}}",
 }
 
 

@@ -28,6 +28,21 @@ _LEANS: Final = (
 )  # fmt: skip
 
 
+_LATE: Final = """output_stages:
+  late: {{driven_by: [gather], domain: analog, kind: buffer, inverting: false, hold: {hold}, works_from: 0.7 V,
+    threshold: {{min: 0.4 V, max: 1.25 V}}, input_edge: 60 ns, drive: 8 kohm, leakage: 10 nA, load: 40 fF,
+    delay: {{min: 5 ns, max: 60 ns}}}}
+  onward: {{driven_by: [late], domain: aon, kind: buffer, inverting: false, hold: none, works_from: 0.7 V,
+    threshold: {{min: 0.4 V, max: 1.25 V}}, input_edge: 60 ns, load: 40 fF, delay: {{min: 5 ns, max: 60 ns}}}}
+  core_out: {{driven_by: [uv_core, gather, onward]}}
+"""  # a stage in a switched domain, and one after it that is always on
+_COPY: Final = """biases:
+  bias_copy: {{kind: from_reference, source: {source}, domain: aon, current: 0.1 uA, leakage: 0 A, consumes: 0.1 uA,
+    works_from: 1.2 V, settling: 20 us}}
+loads: {{adc: {{leans_on: [bias_copy]}}}}
+"""
+
+
 @dataclass(frozen=True, slots=True)
 class _Crossing:
     """A signal between two rails."""
@@ -121,8 +136,8 @@ def _judge_shift(receiver: Any, case: Case) -> Judgement:
     mend="hold the output of the driver at the level at which the nets behind it reset",
     sources=(_HELD,),
     example=Example(
-        fails="output_stages: {uv_out: {domain: analog}}",
-        holds="output_stages: {uv_out: {domain: analog, hold: {to: low, through: resistor, resistance: 2 Mohm}}}",
+        fails=_LATE.format(hold="none"),
+        holds=_LATE.format(hold="{to: low, through: resistor, resistance: 1 Mohm, coupling: 1 fF}"),
     ),
 )  # fmt: skip
 def input_is_held(stage: OutputStage, case: Case) -> Judgement:
@@ -254,8 +269,8 @@ RULES: Final[tuple[Rule, ...]] = (
         "output_stages",
         "stage",
         Example(
-            fails="output_stages: {gather: {domain: core}}",
-            holds="output_stages: {gather: {domain: core, kind: level_shifter}}",
+            fails="output_stages: {core_out: {kind: buffer, domain: core}}",
+            holds="output_stages: {core_out: {kind: level_shifter, domain: core}}",
         ),
     ),
     _shifted_rule(
@@ -279,23 +294,24 @@ RULES: Final[tuple[Rule, ...]] = (
         "references",
         "reference",
         Example(
-            fails="references: {ref_spare: {kind: band_gap, domain: aon, leans_on: [bias_main]}}",
-            holds="references: {ref_spare: {kind: band_gap, domain: aon, leans_on: [bias_start]}}",
+            fails="references: {ref_main: {domain: aon, consumes: 0.5 uA}}",
+            holds="{references: {ref_main: {domain: aon, consumes: 0.5 uA}}, biases: {bias_main: {domain: aon}}}",
         ),
     ),
     _always_on_rule(
         "biases",
         "bias",
         Example(
-            fails="biases: {bias_copy: {kind: from_reference, source: ref_main, domain: aon}}",
-            holds="biases: {bias_copy: {kind: from_reference, source: ref_fast, domain: aon}}",
+            fails=_COPY.format(source="ref_main"),
+            holds=_COPY.format(source="ref_fast"),
         ),
     ),
     _always_on_rule(
         "output_stages",
         "output_stage",
         Example(
-            fails="{output_stages: {enable: {driven_by: [uv], domain: analog, kind: buffer, hold: none}, "
+            fails="{output_stages: {enable: {driven_by: [uv], domain: analog, kind: buffer, inverting: false, "
+            "hold: none, works_from: 0.7 V, input_edge: 60 ns, delay: {min: 5 ns, max: 60 ns}}, "
             "core_out: {gated_by: enable}}}",
             holds="output_stages: {core_out: {gated_by: uv_out}}",
         ),

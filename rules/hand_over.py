@@ -127,7 +127,7 @@ def _dwell_s(case: Case, rail: Rail, step: Step) -> float | None:
     sources=("arrival times over the dependency graph, each the last of what is needed (derived)",),
     example=Example(
         fails="comparators: {uv_core: {armed_by: por}}",
-        holds="comparators: {uv: {armed_by: por}}",
+        holds="comparators: {ov: {armed_by: por}}",
     ),
 )  # fmt: skip
 def armed_after_its_rail_is_up(comparator: Comparator, case: Case) -> Judgement:

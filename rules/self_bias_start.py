@@ -242,9 +242,11 @@ RULES: Final[tuple[Rule, ...]] = (
         "bias",
         Example(
             fails="biases: {bias_main: {source: bias_copy, start_up: none}, bias_copy: {kind: from_reference, "
-            "source: bias_main, domain: analog, works_from: 1.2 V, settling: 20 us, start_up: none}}",
-            holds="biases: {bias_main: {source: ref_fast}, bias_copy: {kind: from_reference, source: bias_main, "
-            "domain: analog, works_from: 1.2 V, settling: 20 us}}",
+            "source: bias_main, domain: analog, current: 1 uA, leakage: 10 nA, consumes: 1 uA, works_from: 1.2 V, "
+            "settling: 20 us, start_up: none}}",
+            holds="{references: {ref_main: {bias: bias_copy}}, biases: {bias_copy: {kind: from_reference, "
+            "source: bias_main, domain: analog, current: 1 uA, leakage: 10 nA, consumes: 1 uA, works_from: 1.2 V, "
+            "settling: 20 us}}}",
         ),
     ),
     _loop_rule(

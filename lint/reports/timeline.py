@@ -9,7 +9,7 @@ from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.reports.plain_text import plain
 from tidegate.lint.reports.time_axis import Column, TimeAxis, time_axis
 from tidegate.lint.timing.evaluate import LoadState, State
-from tidegate.lint.timing.interval import FOREVER_S, Times
+from tidegate.lint.timing.interval import FOREVER_S, Times, last_arrival
 from tidegate.lint.timing.parts import LoadPart
 from tidegate.lint.timing.scenario import Scene
 from tidegate.lint.timing.slack import Slack, assert_slack, release_slack, worst
@@ -166,20 +166,19 @@ def _arrival(lines: Timelines, name: str, state: State) -> str:
     """Between which times an element comes up, or lets go, for the last time."""
     match state:
         case Decision():
-            sure, may = state.may_assert, state.may_release
+            may_not, may = state.may_assert, state.may_release
         case LoadState():
-            sure, may = state.ready.may_be_off, state.ready.may_be_on
+            may_not, may = state.ready.may_be_off, state.ready.may_be_on
         case Supply():
-            may, sure = _up(lines, name, state)
+            may, may_not = _up(lines, name, state)
         case _:
-            may, sure = state
-    starts = [start for start, _ in may if start > -FOREVER_S]
-    if not starts:
+            may, may_not = state
+    found = last_arrival(may, may_not)
+    if found is None:
         return ""
-    latest = [end for _, end in sure if end >= starts[-1]]
-    first = show(starts[-1] if abs(starts[-1]) > _NO_TIME_S else 0.0, _T, digits=3)
-    last = show(latest[-1], _T, digits=3) if latest and latest[-1] < FOREVER_S else "never surely" if latest else ""
-    return f"  {first} .. {last}" if last else f"  {first}"
+    first = show(found.earliest_s if abs(found.earliest_s) > _NO_TIME_S else 0.0, _T, digits=3)
+    last = "never surely" if found.latest_s == FOREVER_S else show(found.latest_s, _T, digits=3)
+    return f"  {first}" if first == last else f"  {first} .. {last}"
 
 
 def _slack_rows(lines: Timelines, line: Timeline, load: str, axis: TimeAxis, signs: Signs) -> Iterator[str]:

@@ -8,8 +8,7 @@ not be otherwise.  An arrival is late by every need (the later of two, an inters
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
-from typing import Final, TypeAlias
+from typing import Final, NamedTuple, TypeAlias
 
 Times: TypeAlias = tuple[tuple[float, float], ...]
 """Disjoint spans of time in s, in order, each with its start and without its end; at either end it may be infinite."""
@@ -21,31 +20,24 @@ _TOUCHING: Final = 1e-12
 ALWAYS: Final[Times] = ((-FOREVER_S, FOREVER_S),)
 
 
-@dataclass(frozen=True, slots=True)
-class Arrival:
-    """The interval in which something arrives: never before the earliest time, never after the latest, in s."""
+class Arrival(NamedTuple):
+    """The interval in which something arrives, in s: never before the earliest time, not surely before the latest."""
 
     earliest_s: float
     latest_s: float
 
-    @property
-    def spread_s(self) -> float:
-        """Time between the earliest and the latest, in s."""
-        return self.latest_s - self.earliest_s
 
-    def after(self, *, least_s: float, most_s: float) -> Arrival:
-        """The arrival of what takes between two times more."""
-        return Arrival(self.earliest_s + least_s, self.latest_s + most_s)
+def last_arrival(may_be: Times, may_not_be: Times) -> Arrival | None:
+    """When something last comes to be so: from the first time it may be, to the last at which it may still not be.
 
-
-def last_of(*needs: Arrival) -> Arrival:
-    """When the last of what is needed arrives."""
-    return Arrival(max(need.earliest_s for need in needs), max(need.latest_s for need in needs))
-
-
-def first_of(*alternatives: Arrival) -> Arrival:
-    """When the first of some alternatives arrives."""
-    return Arrival(min(one.earliest_s for one in alternatives), min(one.latest_s for one in alternatives))
+    None where it does not come to be so; the latest is infinite where it may never be.
+    """
+    starts = [start for start, _ in may_be if start > -FOREVER_S]
+    if not starts:
+        return None
+    since_s = starts[-1]
+    latest_s = next((end for start, end in may_not_be if end >= since_s), since_s)
+    return Arrival(since_s, latest_s)
 
 
 def either(first: Times, second: Times) -> Times:
@@ -132,11 +124,6 @@ def filtered(times: Times, *, least_s: float, most_s: float) -> Times:
             whole.append((start, end))
     seen = tuple((start, end) for start, end in whole if end - start >= least_s)
     return delayed(seen, least_s=least_s, most_s=most_s)
-
-
-def length_s(times: Times) -> float:
-    """How long it is so in all, in s."""
-    return sum(end - start for start, end in times)
 
 
 def is_in(times: Times, at_s: float) -> bool:

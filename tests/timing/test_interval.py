@@ -15,11 +15,9 @@ from tidegate.lint.timing.interval import (
     delayed,
     either,
     filtered,
-    first_of,
     is_in,
     joined,
-    last_of,
-    length_s,
+    last_arrival,
     outside,
 )
 
@@ -73,15 +71,23 @@ def test_a_filter_ignores_what_is_surely_too_short_and_fills_gaps_it_may_ignore(
 
 
 def test_the_last_of_needs_and_the_first_of_alternatives() -> None:
-    early, late = Arrival(1.0, 4.0), Arrival(2.0, 3.0)
-    assert last_of(early, late) == Arrival(2.0, 4.0)
-    assert first_of(early, late) == Arrival(1.0, 3.0)
-    assert early.after(least_s=0.5, most_s=2.0) == Arrival(1.5, 6.0)
-    assert early.spread_s == 3.0
+    """Needs meet in an intersection: the later of two, at both ends; alternatives in a union: the sooner of two."""
+    early, late = ((1.0, FOREVER_S),), ((2.0, FOREVER_S),)
+    not_early, not_late = ((-FOREVER_S, 4.0),), ((-FOREVER_S, 3.0),)
+    assert last_arrival(both(early, late), either(not_early, not_late)) == Arrival(2.0, 4.0)
+    assert last_arrival(either(early, late), both(not_early, not_late)) == Arrival(1.0, 3.0)
 
 
-def test_length_and_ends() -> None:
-    assert length_s(((0.0, 1.5), (2.0, 4.0))) == 3.5
+def test_what_never_comes_has_no_arrival_and_what_may_not_come_no_latest() -> None:
+    assert last_arrival(NEVER, ALWAYS) is None
+    assert last_arrival(ALWAYS, NEVER) is None
+    assert last_arrival(((1.0, FOREVER_S),), ALWAYS) == Arrival(1.0, FOREVER_S)
+    assert last_arrival(((1.0, 2.0), (5.0, 9.0)), ((-FOREVER_S, 1.5), (2.0, 6.0), (9.0, FOREVER_S))) == Arrival(
+        5.0, 6.0
+    )
+
+
+def test_ends() -> None:
     assert either(NEVER, ALWAYS) == ALWAYS
     assert both(ALWAYS, NEVER) == NEVER
     assert outside(NEVER) == ALWAYS

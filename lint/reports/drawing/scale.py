@@ -58,7 +58,10 @@ class Stretched:
 
 
 def stretched(values: Iterable[float], *, start: float, end: float, power: float) -> Stretched:
-    """A scale with a knot at each of two values or more; a stretch has room in proportion to a power, below 1, of its length."""
+    """A scale with a knot at each of two values or more.
+
+    A stretch has room in proportion to a power, below 1, of its length.
+    """
     knots = sorted(set(values))
     weights = [(high - low) ** power for low, high in pairwise(knots)]
     whole = sum(weights) or 1.0
