@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import datetime
+import gc
 import os
 import sys
 from collections.abc import Sequence
@@ -28,6 +29,8 @@ _COMMANDS: Final = {
     "schema": "the JSON Schema of a description, for editors",
     "completion": "the completion script of a shell",
 }
+
+_OBJECTS_BETWEEN_COLLECTIONS: Final = 200_000
 
 _ABOUT: Final = """\
 Design-rule linter for a chip's reset and supply-monitor subsystem.
@@ -89,6 +92,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
     given = list(sys.argv[1:] if arguments is None else arguments)
     only = next((word for word in given if not word.startswith("-")), None)
     options = parser(only if only in _COMMANDS else "").parse_args(given)
+    # A run makes many objects and hardly any garbage: the collector would only walk them, again and again.
+    gc.set_threshold(_OBJECTS_BETWEEN_COLLECTIONS, 20, 100)
     try:
         status = _run(options)
         sys.stdout.flush()

@@ -35,6 +35,11 @@ _MORE_HOLD: Final = {
 }
 
 
+_CRUDE: Final = """comparators: {{por: {{crossover: {{kind: crude_current, reference_current: {current}, mirror: 1,
+  reference_start: {{min: 1.26 V, max: 1.34 V}}, reference_rise: 0.1 V}}}}}}
+"""
+
+
 @rule(
     "trip_window/crossover_level",
     title="the components of a crossover make the level that is stated",
@@ -165,8 +170,8 @@ def _extremes(level: CrossoverLevel, bounds: list[Bound], kept_v: float) -> str:
     mend="a larger resistance, a larger reference current, or a smaller mirror ratio",
     sources=(_SPICE, _EKV, "Kirchhoff's voltage law around the branch (derived)"),
     example=Example(
-        fails="comparators: {por: {crossover: {kind: crude_current, reference_current: 400 nA, mirror: 1}}}",
-        holds="comparators: {por: {crossover: {kind: crude_current, reference_current: 900 nA, mirror: 1}}}",
+        fails=_CRUDE.format(current="600 nA"),
+        holds=_CRUDE.format(current="900 nA"),
     ),
     formulas=(crossing_point.branch_level_v,),
 )

@@ -76,7 +76,8 @@ def timeline_lines(lines: Timelines, line: Timeline, *, width: int, signs: Signs
         for name in getattr(lines.description, section):
             if name in lines.read.parts:
                 state = line.states[name]
-                yield f"{_name(name)}{_row(lines, name, state, axis, signs)}{_arrival(lines, name, state)}".rstrip()
+                row, arrival = _row(lines, name, state, axis, signs), arrival_text(lines, name, state)
+                yield f"{_name(name)}{row}  {arrival}".rstrip()
                 if section == "loads":
                     yield from _slack_rows(lines, line, name, axis, signs)
     for name, lacks in lines.read.lacks.items():
@@ -162,7 +163,7 @@ def _touches(times: Times, span: tuple[float, float]) -> bool:
     return any(start < span[1] and end > span[0] for start, end in times)
 
 
-def _arrival(lines: Timelines, name: str, state: State) -> str:
+def arrival_text(lines: Timelines, name: str, state: State) -> str:
     """Between which times an element comes up, or lets go, for the last time."""
     match state:
         case Decision():
@@ -178,7 +179,7 @@ def _arrival(lines: Timelines, name: str, state: State) -> str:
         return ""
     first = show(found.earliest_s if abs(found.earliest_s) > _NO_TIME_S else 0.0, _T, digits=3)
     last = "never surely" if found.latest_s == FOREVER_S else show(found.latest_s, _T, digits=3)
-    return f"  {first}" if first == last else f"  {first} .. {last}"
+    return first if first == last else f"{first} .. {last}"
 
 
 def _slack_rows(lines: Timelines, line: Timeline, load: str, axis: TimeAxis, signs: Signs) -> Iterator[str]:

@@ -198,6 +198,9 @@ def test_control_up_asks_for_every_detector_behind() -> None:
     assert one(without("output_stages.por_out.driven_by"), UP, "skip_resets").missing == (
         "output_stages.por_out.driven_by",
     )
-    patch = "{output_stages: {spare: {driven_by: [], domain: aon}}, bypasses: {skip_core: {overrides: spare}}}"
+    patch = (
+        "{output_stages: {spare: {driven_by: [twin], domain: aon}, twin: {driven_by: [spare], domain: aon}}, "
+        "bypasses: {skip_core: {overrides: spare}}}"
+    )
     judgement = one(patch, UP, "skip_core")
     assert (judgement.kind, judgement.message) == (NONE, "no detector's decision passes through spare")

@@ -19,11 +19,11 @@ DETECTOR: Final = "crossing/detector_stays_on"
 STAYS: Final = "crossing/output_stage_stays_on"
 
 EXAMPLES: Final = {
-    STAGE: {(STAGE, "gather"), (STAGE, "rst_out")},  # into vcore, and back out of it
+    STAGE: {(STAGE, "core_out")},
     NET: {(NET, "core_rst_n")},
-    HELD: {(HELD, "gather")},
+    HELD: {(HELD, "onward")},
     DETECTOR: {(DETECTOR, "uv_core")},
-    "crossing/reference_stays_on": {("crossing/reference_stays_on", "ref_spare")},
+    "crossing/reference_stays_on": {("crossing/reference_stays_on", "ref_main")},
     "crossing/bias_stays_on": {("crossing/bias_stays_on", "bias_copy")},
     STAYS: {(STAYS, "core_out")},
 }

@@ -229,7 +229,7 @@ def test_one_held_driver_of_several_is_not_enough() -> None:
 
 
 def test_net_without_drivers_is_open() -> None:
-    assert one("resets: {por_n: {driven_by: []}}", HELD, "por_n").missing == ("resets.por_n.driven_by",)
+    assert one("resets: {por_n: {driven_by: null}}", HELD, "por_n").missing == ("resets.por_n.driven_by",)
 
 
 def test_unheld_net_fails_although_another_hold_is_not_described() -> None:

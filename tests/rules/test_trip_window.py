@@ -75,9 +75,7 @@ ONE_FAULT = {
     "trip_window/order": {("order", "avdd"): FAIL},
     "trip_window/crossover_level": {("crossover_level", "por"): FAIL},
     "trip_window/crossover_tracks": {("guarantee", "por"): NONE, ("crossover_tracks", "por"): FAIL},
-    "trip_window/second_crossing": {
-        ("second_crossing", "por"): FAIL, ("crossover_level", "por"): NONE, ("crossover_tracks", "por"): NONE,
-    },
+    "trip_window/second_crossing": {("second_crossing", "por"): FAIL},
 }  # fmt: skip
 
 
