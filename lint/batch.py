@@ -3,12 +3,16 @@
 from __future__ import annotations
 
 import datetime
+import os
+import uuid
+from collections import deque
 from collections.abc import Callable, Iterable, Iterator, Sequence
-from concurrent.futures import Executor
+from concurrent.futures import Executor, Future
 from dataclasses import dataclass, field
 from functools import lru_cache
+from itertools import islice
 from pathlib import Path
-from typing import Any, Final, TypeAlias
+from typing import Any, Final, TypeAlias, TypeVar
 
 from tidegate.lint.description.load import load
 from tidegate.lint.description.place import DescriptionError, Fault, Place
@@ -19,8 +23,10 @@ from tidegate.lint.rule import Rule
 from tidegate.lint.settings import Settings, load_settings, nearest_settings
 
 Families: TypeAlias = Sequence[Sequence[Rule]]
-SUFFIXES: Final = (".tidegate.yaml", ".tidegate.yml", ".tidegate.json")
-"""Ends of the names by which descriptions are found in a folder."""
+
+_A = TypeVar("_A")
+_B = TypeVar("_B")
+_AHEAD: Final = 256  # items handed out before their turn: enough to keep a cluster busy, few enough to hold in memory
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,6 +41,12 @@ class Request:
     packs: tuple[str, ...] = ()
     fail_at: str | None = None
     also: tuple[str, ...] | None = None
+    folder: str = field(default_factory=lambda: str(Path.cwd()))
+    """Where names of files count from: a worker may have been started elsewhere."""
+    top: str | None = None
+    """The folder above which no settings are looked for."""
+    run: str = field(default_factory=lambda: uuid.uuid4().hex)
+    """Tells one run from the next: a worker that outlives a run must read settings and packs again."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,11 +65,13 @@ def judge_file(file: str, request: Request) -> Judged:
     try:
         settings = settings_for(file, request)
         rules = catalogue(request, settings)
-        judged = review(load(file), rules, today=request.today, settings=settings)
+        loaded = load(Path(request.folder, file), shown=file)
+        judged = review(loaded, rules, today=request.today, settings=settings)
     except DescriptionError as error:
         return Judged(file, settings, None, error.faults)
     except PackError as error:
-        return Judged(file, settings, None, (Fault(Place(settings.file or file), "packs", str(error), ""),))
+        fault = Fault(Place(settings.file or file), "packs", str(error), "correct the pack, or do not name it")
+        return Judged(file, settings, None, (fault,))
     return Judged(file, settings, judged)
 
 
@@ -66,14 +80,19 @@ def settings_for(file: str, request: Request) -> Settings:
 
     Raises: DescriptionError: if the settings file cannot be used.
     """
-    path = Path(request.settings) if request.settings else nearest_settings(Path(file))
-    return _with_options(Settings() if path is None else _settings(path), request)
+    folder = Path(request.folder)
+    top = None if request.top is None else Path(request.top)
+    path = folder / request.settings if request.settings else nearest_settings(folder / file, top)
+    return _with_options(Settings() if path is None else _settings(path, folder, request.run), request)
 
 
 @lru_cache(maxsize=64)
-def _settings(path: Path) -> Settings:
-    shown = path.relative_to(Path.cwd()) if path.is_relative_to(Path.cwd()) else path
-    return load_settings(path, shown=str(shown))
+def _settings(path: Path, folder: Path, _run: str) -> Settings:
+    try:
+        shown = os.path.relpath(path, folder)
+    except ValueError:  # on another drive
+        shown = str(path)
+    return load_settings(path, shown=shown)
 
 
 def _with_options(settings: Settings, request: Request) -> Settings:
@@ -82,6 +101,8 @@ def _with_options(settings: Settings, request: Request) -> Settings:
         changes["fail_at"] = Level(request.fail_at)
     if request.also is not None:
         changes["also"] = request.also
+    if request.packs:
+        changes["option_packs"] = request.packs
     return settings if not changes else settings.with_changes(**changes)
 
 
@@ -90,40 +111,36 @@ def catalogue(request: Request, settings: Settings) -> Catalogue:
 
     Raises: PackError: if a pack cannot be used.
     """
-    folder = Path(settings.file).parent
-    files = (*(str(folder / pack) for pack in settings.packs), *request.packs)
-    return _catalogue(request.families, files, settings.packs_installed)
+    beside = Path(settings.file).parent
+    files = (*(str(beside / pack) for pack in settings.packs), *request.packs)
+    return _catalogue(request.families, request.folder, files, settings.packs_installed, request.run)
 
 
 @lru_cache(maxsize=16)
-def _catalogue(families: Callable[[], Families], files: tuple[str, ...], installed: tuple[str, ...]) -> Catalogue:
+def _catalogue(
+    families: Callable[[], Families], folder: str, files: tuple[str, ...], installed: tuple[str, ...], _run: str
+) -> Catalogue:
     own = families()
-    names = {rule.family for family in own for rule in family}
-    return Catalogue([*own, *load_packs(map(Path, files), installed, names)])
+    names = {"waiver", *(rule.family for family in own for rule in family)}
+    return Catalogue([*own, *load_packs(files, installed, names, folder=Path(folder))])
 
 
-def run(work: Callable[[str], Any], files: Sequence[str], executor: Executor | None) -> Iterator[Any]:
-    """What comes of each file, in the order of the files whatever finishes first."""
-    return map(work, files) if executor is None else executor.map(work, files)
+def run(work: Callable[[_A], _B], items: Iterable[_A], executor: Executor | None) -> Iterator[_B]:
+    """What comes of each item, in the order of the items whatever finishes first; work begins at once."""
+    if executor is None:
+        return map(work, items)
+    waiting = iter(items)
+    ahead = deque(executor.submit(work, item) for item in islice(waiting, _AHEAD))
+    return _in_turn(work, waiting, ahead, executor)
 
 
-def found_files(names: Iterable[str]) -> tuple[list[str], list[Fault]]:
-    """The files that are meant: files as named, descriptions below folders, what a pattern with ``*`` matches."""
-    files: dict[str, None] = {}
-    faults: list[Fault] = []
-    for name in names:
-        path = Path(name)
-        if path.is_dir():
-            below = sorted(str(p) for p in path.rglob("*") if p.name.endswith(SUFFIXES) and p.is_file())
-            if not below:
-                advice = f"descriptions in a folder have names that end in {', '.join(SUFFIXES)}"
-                faults.append(Fault(Place(name), "", "the folder holds no description", advice))
-            files |= dict.fromkeys(below)
-        elif any(mark in name for mark in "*?[") and not path.exists():
-            matched = sorted(map(str, Path().glob(name))) if not path.is_absolute() else []
-            if not matched:
-                faults.append(Fault(Place(name), "", "no file matches", "check the pattern"))
-            files |= dict.fromkeys(matched)
-        else:
-            files[name] = None
-    return list(files), faults
+def _in_turn(
+    work: Callable[[_A], _B], waiting: Iterator[_A], ahead: deque[Future[_B]], executor: Executor
+) -> Iterator[_B]:
+    try:
+        while ahead:
+            yield ahead.popleft().result()
+            ahead.extend(executor.submit(work, item) for item in islice(waiting, 1))
+    finally:
+        for future in ahead:
+            future.cancel()

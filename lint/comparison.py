@@ -2,14 +2,15 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from enum import IntEnum
 from typing import Any, Final
 
 from tidegate.lint.description.place import dotted
-from tidegate.lint.engine import Review
-from tidegate.lint.judgement import Judgement, Kind
+from tidegate.lint.engine import WEIGHT, Review
+from tidegate.lint.judgement import Judgement, Kind, Measure
 
 
 class Harm(IntEnum):
@@ -46,7 +47,8 @@ class JudgementChange:
         """By how much of its need the margin moved; below zero it shrank."""
         if self.old is None or self.new is None or self.old.measure is None or self.new.measure is None:
             return 0.0
-        return self.new.measure.slack - self.old.measure.slack
+        old, new = self.old.measure.slack, self.new.measure.slack
+        return 0.0 if old == new else new - old
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,7 +65,7 @@ class Comparison:
 
 
 _RANK: Final = {Kind.PASS: 0, Kind.NOT_APPLICABLE: 0, Kind.REVIEW: 1, Kind.OPEN: 2, Kind.FAIL: 3}
-_STILL: Final = 1e-9  # of the need: less is rounding, and no move
+_STILL: Final = 1e-9  # of the numbers: less is rounding, and no move
 
 
 def compare(old: Review, new: Review) -> Comparison:
@@ -75,13 +77,19 @@ def compare(old: Review, new: Review) -> Comparison:
         change = _change(*key, before.get(key), after.get(key))
         if change is not None:
             changes.append(change)
-    changes.sort(key=lambda change: (-change.harm, change.moved))
+    changes.sort(key=lambda change: (-change.harm, -_now(change), change.moved))
     return Comparison(tuple(_facts(old.loaded.sources.data, new.loaded.sources.data)), tuple(changes))
 
 
 def _change(rule: str, subject: str, old: Judgement | None, new: Judgement | None) -> JudgementChange | None:
     harm = _harm(old, new)
     return None if harm is None else JudgementChange(rule, subject, old, new, harm)
+
+
+def _now(change: JudgementChange) -> int:
+    """How much the judgement asks of somebody now, the level of a failure counted."""
+    new = change.new
+    return _rank(new) * 3 + (WEIGHT[new.level] if new is not None and new.kind is Kind.FAIL else 0)
 
 
 def _harm(old: Judgement | None, new: Judgement | None) -> Harm | None:
@@ -95,14 +103,24 @@ def _harm(old: Judgement | None, new: Judgement | None) -> Harm | None:
         return None
     if old.kind is not new.kind or bool(old.waiver) != bool(new.waiver):
         return Harm.OTHER
-    if old.measure is None or new.measure is None:
+    if old.measure is None or new.measure is None or old.measure.dimension is not new.measure.dimension:
+        said_otherwise = (old.measure, old.message) != (new.measure, new.message)
+        return Harm.OTHER if said_otherwise and old.kind is not Kind.PASS else None
+    moved = _moved(old.measure, new.measure)
+    if moved == 0.0:
         return None
-    moved = new.measure.slack - old.measure.slack
-    if abs(moved) <= _STILL:
-        return None
-    if moved > 0:
+    if moved > 0.0:
         return Harm.MARGIN_GREW
     return Harm.WORSE if new.kind is Kind.FAIL and not new.waiver else Harm.MARGIN_SHRANK
+
+
+def _moved(old: Measure, new: Measure) -> float:
+    """By how much the margin moved, in the unit of both; what rounding makes of it counts as nothing."""
+    if old.margin == new.margin:  # two without limit as well
+        return 0.0
+    moved = new.margin - old.margin
+    sizes = (abs(size) for size in (old.need, old.have, new.need, new.have) if math.isfinite(size))
+    return 0.0 if abs(moved) <= _STILL * max(sizes, default=0.0) else moved
 
 
 def _rank(judgement: Judgement | None) -> int:

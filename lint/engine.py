@@ -14,8 +14,9 @@ from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.description.load import Loaded
 from tidegate.lint.description.model.description import Conditions, Description, Waiver
 from tidegate.lint.description.place import DescriptionError, Fault, Place
+from tidegate.lint.found import quoted
 from tidegate.lint.graph.dependency import SECTIONS, Element, Graph, build
-from tidegate.lint.judgement import Judgement, Kind, Level, least_margin
+from tidegate.lint.judgement import Judgement, Kind, Level, difference, least_margin
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.quantity import QuantityError
 from tidegate.lint.rule import Rule
@@ -107,8 +108,12 @@ def review(loaded: Loaded, catalogue: Catalogue, *, today: datetime.date, settin
                 answer = _judge(rule, element, loaded, graph, settings)
                 if isinstance(answer, Judgement):
                     judgements.append(answer)
-                else:
+                elif isinstance(answer, RuleFault):
                     rule_faults.append(answer)
+                else:
+                    faults.append(answer)
+    if faults:
+        raise DescriptionError(faults)
     around = Surroundings(
         today=today, rules=catalogue.rules, elements=graph.elements, subsystem=loaded.description.subsystem,
         left_out={rule.id for rule in catalogue.rules.values() if settings.leaves_out(rule)},
@@ -151,7 +156,10 @@ def _meant(waiver: Waiver, description: Description, elements: Container[str]) -
     return waiver.element in elements
 
 
-def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings: Settings) -> Judgement | RuleFault:
+def _judge(
+    rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings: Settings
+) -> Judgement | RuleFault | Fault:
+    """What a rule says about an element, or whose fault it is that it says nothing: the rule's, or the settings'."""
     level = settings.level_of(rule)
     case = Case(subject=element, rule=rule.id, level=level, description=loaded.description, graph=graph)
     try:
@@ -174,11 +182,14 @@ def _judge(rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings:
     asked = settings.least_margin_of(rule)
     if asked is None or answer.kind is not Kind.PASS or answer.measure is None:
         return answer
+    name, margin = asked
     try:
-        return least_margin(answer, asked)
-    except QuantityError as error:
-        place = Place(settings.file)
-        raise DescriptionError([Fault(place, "least_margins", f"{rule.id}: {error}", "")]) from None
+        return least_margin(answer, margin)
+    except QuantityError:
+        dimension = difference(answer.measure.dimension).value.replace("_", " ")
+        problem = f"the margin of {rule.id} is a {dimension} (found {quoted(margin)})"
+        advice = f"write a {dimension}, such as {answer.measure.margin_text()}, or a share of the need, such as 2 %"
+        return Fault(settings.place("least_margins", name), f"least_margins.{name}", problem, advice)
 
 
 def _improper(answer: Judgement, case: Case) -> str:

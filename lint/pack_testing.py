@@ -21,7 +21,7 @@ from tidegate.lint.description.place import DescriptionError
 from tidegate.lint.description.sources import read_sources
 from tidegate.lint.description.yaml_text import read_yaml
 from tidegate.lint.engine import Catalogue, review
-from tidegate.lint.judgement import Judgement
+from tidegate.lint.judgement import Judgement, Kind
 from tidegate.lint.rule import Rule
 
 _DAY: Final = datetime.date(2026, 1, 1)
@@ -40,9 +40,25 @@ def judged(
         path = Path(folder) / "description.json"
         path.write_text(json.dumps(laid_over(_data(description), _plain(over, "over"))), "utf-8")
         result = review(load(path, shown="description"), Catalogue([tuple(rules)]), today=today)
-    assert not result.faults, result.faults
+    if result.faults:
+        raise AssertionError("; ".join(f"{fault.rule} on {fault.subject}: {fault.error}" for fault in result.faults))
     own = {rule.id for rule in rules}
     return {(said.rule, said.subject): said for said in result.judgements if said.rule in own}
+
+
+def examples_hold(rules: Sequence[Rule], description: str | Path) -> None:
+    """Check that the examples of rules say what they should of a description: fail with the one, hold with the other.
+
+    Raises:
+        AssertionError: naming the rule whose example does not.
+        DescriptionError: if a fragment cannot be laid over the description.
+    """
+    for rule in rules:
+        for fragment, wanted in ((rule.example.fails, Kind.FAIL), (rule.example.holds, Kind.PASS)):
+            kinds = {said.kind for said in judged([rule], description, over=fragment).values()}
+            found = ", ".join(sorted(kind.value for kind in kinds)) or "nothing"
+            if wanted not in kinds:
+                raise AssertionError(f"{rule.id}: with {fragment} it says {found}, and never {wanted.value}")
 
 
 def laid_over(base: Any, patch: Any) -> Any:

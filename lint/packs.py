@@ -6,28 +6,31 @@ loaded, runs under a time limit, and can neither replace a rule that comes with 
 
 from __future__ import annotations
 
+import hashlib
 import importlib.util
 import inspect
 import re
-import signal
-import threading
-from collections.abc import Collection, Iterable, Iterator, Sequence
-from contextlib import contextmanager
+import sys
+from collections.abc import Callable, Collection, Iterable, Iterator, Sequence
+from contextlib import contextmanager, redirect_stdout
 from dataclasses import replace
+from functools import partial, wraps
 from pathlib import Path
 from typing import Any, Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.graph.dependency import SECTIONS
-from tidegate.lint.judgement import Judgement
+from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.rule import Rule
+from tidegate.lint.time_limit import within
 
 GROUP: Final = "tidegate.rules"
 """Entry-point group of installed packs."""
 MOST_SECONDS: Final = 5.0
-"""Longest time that one judgement of a pack may take, in s, where the platform can interrupt it."""
+"""Longest time that loading a pack, or one judgement of it, may take, in s."""
 
 _ID: Final = re.compile(r"[a-z][a-z0-9_]*/[a-z][a-z0-9_]*")
+_HERE: Final = Path()
 _TEXTS: Final = ("title", "proves", "mend")
 
 
@@ -36,32 +39,53 @@ class PackError(Exception):
 
 
 def load_packs(
-    files: Iterable[Path], installed: Iterable[str], own_families: Collection[str]
-) -> list[tuple[Rule, ...]]:
-    """The rules of packs, one tuple each, under their time limit.
+    files: Iterable[str], installed: Iterable[str], taken_families: Collection[str], *, folder: Path = _HERE,
+    most_seconds: float = MOST_SECONDS,
+) -> list[tuple[Rule, ...]]:  # fmt: skip
+    """The rules of packs, one tuple each, under their time limit; names of files count from ``folder``.
 
     Raises: PackError: if a pack cannot be loaded, or its rules are not complete.
     """
     packs: list[tuple[Rule, ...]] = []
-    taken = set(own_families)
-    for name, module in [*((str(f), _from_file(f)) for f in files), *((n, _installed(n)) for n in installed)]:
+    taken = set(taken_families)
+    from_file = partial(_from_file, folder)
+    named: list[tuple[str, Callable[[str], object]]] = [(file, from_file) for file in files]
+    for name, load in [*named, *((name, _installed) for name in installed)]:
+        with _at_fault(name), redirect_stdout(sys.stderr):
+            module = within(most_seconds, "loading it", partial(load, name))
         rules = checked(name, module, taken)
         taken |= {rule.family for rule in rules}
-        packs.append(tuple(replace(rule, judge=_guarded(rule)) for rule in rules))
+        packs.append(tuple(replace(rule, judge=_guarded(rule, most_seconds)) for rule in rules))
     return packs
 
 
-def _from_file(path: Path) -> object:
+@contextmanager
+def _at_fault(name: str) -> Iterator[None]:
+    """Whatever a pack does while it is loaded is said of the pack, and does not end the program."""
+    try:
+        yield
+    except (PackError, KeyboardInterrupt):
+        raise
+    except BaseException as error:
+        raise PackError(f"rule pack {name}: cannot be loaded ({type(error).__name__}: {error})") from error
+
+
+def _from_file(folder: Path, name: str) -> object:
+    path = folder / name
     if not path.is_file():
-        raise PackError(f"rule pack {path}: no such file")
-    spec = importlib.util.spec_from_file_location(f"tidegate_pack_{path.stem}", path)
+        raise PackError(f"rule pack {name}: no such file")
+    # Two packs may have the same file name; dataclasses look their module up where Python keeps the loaded ones.
+    mark = hashlib.sha256(str(path.absolute()).encode("utf-8", "surrogateescape")).hexdigest()[:8]
+    spec = importlib.util.spec_from_file_location(f"tidegate_pack_{path.stem}_{mark}", path)
     if spec is None or spec.loader is None:
-        raise PackError(f"rule pack {path}: not a Python file (its name ends in .py)")
+        raise PackError(f"rule pack {name}: not a Python file (its name ends in .py)")
     module = importlib.util.module_from_spec(spec)
+    sys.modules[spec.name] = module
     try:
         spec.loader.exec_module(module)
-    except Exception as error:  # a pack may do anything while it is loaded; whatever it is, the pack is at fault
-        raise PackError(f"rule pack {path}: cannot be loaded ({type(error).__name__}: {error})") from error
+    except BaseException:
+        del sys.modules[spec.name]
+        raise
     return module
 
 
@@ -72,10 +96,7 @@ def _installed(name: str) -> object:
     if not found:
         known = ", ".join(sorted(entry_points(group=GROUP).names)) or "none"
         raise PackError(f"rule pack {name}: not installed; installed: {known}")
-    try:
-        return next(iter(found)).load()
-    except Exception as error:  # as above
-        raise PackError(f"rule pack {name}: cannot be loaded ({type(error).__name__}: {error})") from error
+    return next(iter(found)).load()
 
 
 def checked(name: str, module: object, taken: Collection[str]) -> Sequence[Rule]:
@@ -95,10 +116,13 @@ def checked(name: str, module: object, taken: Collection[str]) -> Sequence[Rule]
 
 
 def _problems(rule: Rule, taken: Collection[str]) -> Iterator[str]:
-    if not _ID.fullmatch(rule.id):
+    if not _ID.fullmatch(str(rule.id)):
         yield "an id is family/name, in small letters, digits and underscores"
+        return
     if rule.family in taken:
         yield f"the family {rule.family} is taken; a pack has families of its own"
+    if rule.level not in list(Level):
+        yield f"its level is {rule.level!r}; levels are Level.ERROR, Level.WARNING and Level.NOTE"
     if rule.applies_to not in SECTIONS:
         yield f"applies to {rule.applies_to!r}; sections are {', '.join(SECTIONS)}"
     for field in _TEXTS:
@@ -109,36 +133,24 @@ def _problems(rule: Rule, taken: Collection[str]) -> Iterator[str]:
             yield f"its {field} are empty"
     if not rule.example.fails.strip() or not rule.example.holds.strip():
         yield "its example is empty"
-    if not callable(rule.judge) or len(inspect.signature(rule.judge).parameters) != 2:
+    if not _takes_two(rule.judge):
         yield "its function takes the element and the case"
 
 
-class PackTimeError(Exception):
-    """A rule of a pack took too long."""
+def _takes_two(judge: Any) -> bool:
+    try:
+        inspect.signature(judge).bind(None, None)
+    except (TypeError, ValueError):
+        return False
+    return not inspect.iscoroutinefunction(judge) and not inspect.isgeneratorfunction(judge)
 
 
-def _guarded(rule: Rule) -> Any:
+def _guarded(rule: Rule, most_seconds: float) -> Any:
+    """The function of a rule under a time limit; what it prints does not get into a report."""
+
+    @wraps(rule.judge)
     def judge(element: Any, case: Case) -> Judgement:
-        with _time_limit(rule.id):
-            return rule.judge(element, case)
+        with redirect_stdout(sys.stderr):
+            return within(most_seconds, rule.id, lambda: rule.judge(element, case))
 
     return judge
-
-
-@contextmanager
-def _time_limit(rule_id: str) -> Iterator[None]:
-    """Interrupt what takes too long; without effect off the main thread and where there is no such signal."""
-    if not hasattr(signal, "setitimer") or threading.current_thread() is not threading.main_thread():
-        yield
-        return
-
-    def too_long(_signal: int, _frame: object) -> None:
-        raise PackTimeError(f"{rule_id} took more than {MOST_SECONDS:g} s")
-
-    before = signal.signal(signal.SIGALRM, too_long)
-    signal.setitimer(signal.ITIMER_REAL, MOST_SECONDS)
-    try:
-        yield
-    finally:
-        signal.setitimer(signal.ITIMER_REAL, 0)
-        signal.signal(signal.SIGALRM, before)

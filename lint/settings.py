@@ -3,20 +3,23 @@
 from __future__ import annotations
 
 import json
+import os
 from collections.abc import Mapping, Sequence
 from difflib import get_close_matches
-from pathlib import Path
+from pathlib import Path, PurePath
 from typing import Any, Final, Literal
 
 import jsonschema_rs
 import msgspec
 
+from tidegate.lint.description.empty_values import fill_empty
 from tidegate.lint.description.load import schema_text
 from tidegate.lint.description.model.description import Conditions, Waiver
 from tidegate.lint.description.model.part import Part
-from tidegate.lint.description.place import DescriptionError, Fault, Place
+from tidegate.lint.description.place import DescriptionError, Fault, Place, steps
 from tidegate.lint.description.sources import Sources, read_file
 from tidegate.lint.description.yaml_text import read_yaml
+from tidegate.lint.found import quoted
 from tidegate.lint.judgement import Level
 from tidegate.lint.quantity import Span
 from tidegate.lint.rule import Rule
@@ -24,6 +27,8 @@ from tidegate.lint.waivers import PlacedWaiver, placed_waivers
 
 FILE_NAME: Final = "tidegate.settings.yaml"
 """Name of a settings file; the nearest one at or above a description counts."""
+
+_NAMING: Final = ("levels", "least_margins", "leave_out")  # what names rules or families
 
 
 class Settings(Part, frozen=True, kw_only=True):
@@ -42,11 +47,37 @@ class Settings(Part, frozen=True, kw_only=True):
     packs_installed: tuple[str, ...] = ()
     waived: tuple[PlacedWaiver, ...] = ()
     """Waivers of the files that ``waivers`` names."""
+    option_packs: tuple[str, ...] = ()
+    """Rule packs that the command line names."""
+    places: dict[str, Place] = {}
+    """Where each rule or family is named, by key and name."""
 
     @property
     def shown(self) -> str:
-        """The settings in a few words, for a report."""
+        """Where the settings come from, for a report."""
         return self.file or "defaults"
+
+    @property
+    def summary(self) -> str:
+        """The settings in a few words, with what they change; empty where they are the defaults."""
+        words = {
+            "left out": self.leave_out,
+            "levels": [f"{name} {level.value}" for name, level in self.levels.items()],
+            "least margins": [f"{name} {least}" for name, least in self.least_margins.items()],
+            "rule packs": (*self.packs, *self.packs_installed, *self.option_packs),
+            "fails at": () if self.fail_at is Level.WARNING else (self.fail_at.value,),
+            "also fails on": self.also,
+            "conditions": self.conditions_given,
+            "waiver files": self.waivers,
+        }
+        parts = [f"{label} {', '.join(names)}" for label, names in words.items() if names]
+        return "; ".join([*([self.file] if self.file else []), *parts])
+
+    @property
+    def conditions_given(self) -> list[str]:
+        """The conditions that are given, by name."""
+        names = Conditions.__struct_fields__ if self.conditions is not None else ()
+        return [name for name in names if getattr(self.conditions, name) is not None]
 
     def with_changes(self, **changes: Any) -> Settings:
         """The settings with what the command line says."""
@@ -56,19 +87,30 @@ class Settings(Part, frozen=True, kw_only=True):
         """The level of a rule: its own setting, that of its family, or the rule's."""
         return self.levels.get(rule.id) or self.levels.get(rule.family) or rule.level
 
-    def least_margin_of(self, rule: Rule) -> str | None:
-        """The least margin with which a rule must pass; None where it only has to pass."""
-        return self.least_margins.get(rule.id) or self.least_margins.get(rule.family)
+    def least_margin_of(self, rule: Rule) -> tuple[str, str] | None:
+        """The least margin with which a rule must pass, and under which name; None where it only has to pass."""
+        name = rule.id if rule.id in self.least_margins else rule.family
+        asked = self.least_margins.get(name)
+        return None if asked is None else (name, asked)
+
+    def place(self, key: str, name: str) -> Place:
+        """Where a rule or family is named."""
+        return self.places.get(f"{key}.{name}") or Place(self.file)
 
     def leaves_out(self, rule: Rule) -> bool:
         """Whether a rule is not run."""
         return rule.id in self.leave_out or rule.family in self.leave_out
 
 
-def nearest_settings(description: Path) -> Path | None:
-    """The settings file beside a description or in the nearest folder above it; None if there is none."""
-    folder = description.absolute().parent
-    return next((path for above in (folder, *folder.parents) if (path := above / FILE_NAME).is_file()), None)
+def nearest_settings(description: Path, top: Path | None = None) -> Path | None:
+    """The settings file beside a description or in the nearest folder above it, at most ``top``; None without one."""
+    folder = Path(os.path.abspath(description)).parent  # noqa: PTH100 - '..' must not lead through other folders
+    for above in (folder, *folder.parents):
+        if (above / FILE_NAME).is_file():
+            return above / FILE_NAME
+        if above == top:
+            break
+    return None
 
 
 def load_settings(path: Path, *, shown: str | None = None) -> Settings:
@@ -81,16 +123,31 @@ def load_settings(path: Path, *, shown: str | None = None) -> Settings:
     faults = _faults(sources, "settings")
     if faults:
         raise DescriptionError(faults)
-    settings: Settings = _typed({**sources.data, "file": name}, Settings)
+    settings: Settings = _typed({**sources.data, "file": name}, Settings, sources)
     waived: list[PlacedWaiver] = []
     for index, file in enumerate(settings.waivers):
-        waived += _waivers(path.parent / file, file, sources.place(("waivers", index)))
-    return msgspec.structs.replace(settings, waived=tuple(waived))
+        place = sources.place(("waivers", index))
+        if not (path.parent / file).is_file():
+            missing = Fault(place, f"waivers[{index}]", f"no such file (found {quoted(file)})", "name a file")
+            raise DescriptionError([missing])
+        waived += _waivers(path.parent / file, str(PurePath(name).parent / file))
+    return msgspec.structs.replace(settings, waived=tuple(waived), places=_places(sources))
 
 
-def _waivers(path: Path, name: str, place: Place) -> Sequence[PlacedWaiver]:
-    if not path.is_file():
-        raise DescriptionError([Fault(place, "waivers", f"no such file (found {name!r})", "name an existing file")])
+def _places(sources: Sources) -> dict[str, Place]:
+    """Where rules and families are named."""
+    places: dict[str, Place] = {}
+    for key in _NAMING:
+        named = sources.data.get(key, {})
+        assert isinstance(named, (dict, list))
+        for index, name in enumerate(named):
+            in_list = isinstance(named, list)
+            place = sources.place((key, index)) if in_list else sources.place((key, str(name)), key=True)
+            places[f"{key}.{name}"] = place
+    return places
+
+
+def _waivers(path: Path, name: str) -> Sequence[PlacedWaiver]:
     sources = _read(path, name)
     others = [key for key in sources.data if key != "waivers" and not key.startswith("x-")]
     faults = _faults(sources, "description")
@@ -98,8 +155,8 @@ def _waivers(path: Path, name: str, place: Place) -> Sequence[PlacedWaiver]:
         faults.append(Fault(Place(name), "", "holds more than waivers", "keep the section waivers only"))
     if faults:
         raise DescriptionError(faults)
-    waivers = _typed(sources.data.get("waivers", []), tuple[Waiver, ...])
-    return placed_waivers(waivers, lambda i: f"{name}: waivers[{i}]", lambda i: sources.place(("waivers", i)))
+    waivers = _typed(sources.data.get("waivers", []), tuple[Waiver, ...], sources)
+    return placed_waivers(waivers, lambda i: f"waivers[{i}]", lambda i: sources.place(("waivers", i)))
 
 
 def _read(path: Path, name: str) -> Sources:
@@ -112,15 +169,21 @@ def _read(path: Path, name: str) -> Sources:
 
 def _faults(sources: Sources, schema_name: str) -> list[Fault]:
     schema: Mapping[str, Any] = json.loads(schema_text(schema_name))
+    faults = [*sources.faults, *fill_empty(sources, schema)]
     if jsonschema_rs.validator_for(dict(schema)).is_valid(sources.data):
-        return list(sources.faults)
+        return faults
     from tidegate.lint.description.schema_faults import schema_faults
 
-    return [*sources.faults, *schema_faults(sources.data, schema, sources)]
+    return [*faults, *schema_faults(sources.data, schema, sources)]
 
 
-def _typed(data: Any, kind: Any) -> Any:
-    return msgspec.convert(data, kind, dec_hook=_read_span)
+def _typed(data: Any, kind: Any, sources: Sources) -> Any:
+    try:
+        return msgspec.convert(data, kind, dec_hook=_read_span)
+    except msgspec.ValidationError as error:  # a range whose ends are the wrong way round, which no schema can say
+        problem, _, path = str(error).partition(" - at `$.")
+        where = path.removesuffix("`").removesuffix("[...]")
+        raise DescriptionError([Fault(sources.place(steps(where)), where, problem, "correct it")]) from None
 
 
 def _read_span(kind: type[Span], given: object) -> Span:
@@ -131,10 +194,11 @@ def name_faults(settings: Settings, rules: Mapping[str, Rule]) -> list[Fault]:
     """Rules and families that the settings name and nobody has."""
     known = [*rules, *sorted({rule.family for rule in rules.values()})]
     faults = []
-    for key in ("levels", "least_margins", "leave_out"):
+    for key in _NAMING:
         for name in getattr(settings, key):
             if name not in known:
                 near = get_close_matches(name, known, 1)
                 advice = f"did you mean {near[0]}?" if near else "tidegate rules lists them"
-                faults.append(Fault(Place(settings.file), key, f"no rule or family is called {name!r}", advice))
+                problem = f"no rule or family is called {quoted(name)}"
+                faults.append(Fault(settings.place(key, name), key, problem, advice))
     return faults

@@ -8,6 +8,7 @@ from functools import partial
 from typing import Any, Final
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.override import resets_in
 from tidegate.lint.derived.rail_of import rail_of
 from tidegate.lint.derived.rail_sequence import leaning_of_rails
 from tidegate.lint.description.model.detector import Comparator
@@ -15,7 +16,7 @@ from tidegate.lint.description.model.reset_path import Hold, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.graph.edge import EdgeKind, Hop
 from tidegate.lint.graph.leaning_loops import in_a_loop
-from tidegate.lint.graph.paths import Reach
+from tidegate.lint.graph.paths import Reach, driven_by, drives
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
@@ -29,7 +30,7 @@ _LEANS: Final = (
 
 
 _LATE: Final = """output_stages:
-  late: {{driven_by: [gather], domain: analog, kind: buffer, inverting: false, hold: {hold}, works_from: 0.7 V,
+  late: {{driven_by: [uv], domain: analog, kind: buffer, inverting: false, hold: {hold}, works_from: 0.7 V,
     threshold: {{min: 0.4 V, max: 1.25 V}}, input_edge: 60 ns, drive: 8 kohm, leakage: 10 nA, load: 40 fF,
     delay: {{min: 5 ns, max: 60 ns}}}}
   onward: {{driven_by: [late], domain: aon, kind: buffer, inverting: false, hold: none, works_from: 0.7 V,
@@ -128,7 +129,8 @@ def _judge_shift(receiver: Any, case: Case) -> Judgement:
     applies_to="output_stages",
     proves="A driver that lives in a switched domain, or on a rail that is not up before that of the stage, has its "
     "output held, or, for a detector, is said to assert or to release while it cannot decide; or the stage is a level "
-    "shifter whose own output is held. Drivers of reset nets are judged by passive_default/held.",
+    "shifter whose own output is held. Drivers of reset nets are judged by passive_default/held, those that pass on "
+    "the level of a hold by passive_default/chain_alive.",
     facts=(
         "output_stages.*.driven_by and domain", "comparators.*.domain", "domains.*.kind and rail",
         "output_stages.*.hold of each driver", "comparators.*.undecided of each driver",
@@ -160,6 +162,12 @@ def input_is_held(stage: OutputStage, case: Case) -> Judgement:
     case.settle()
     if not loose:
         return case.passes(f"held: {' and '.join(driver.id for driver, _ in dead)}", at="driven_by")
+    told = next((held for driver, _ in loose if (held := _after_a_hold(case, driver))), None)
+    loose = [(driver, why) for driver, why in loose if not _after_a_hold(case, driver)]
+    if not loose:
+        return case.not_applicable(
+            f"a driver comes after the hold of {told}, and may be dead (passive_default/chain_alive says so)"
+        )
     driver, why = loose[0]
     says = f"what its output does while it cannot decide is not defined, and it {why}"
     return case.fails(
@@ -170,6 +178,14 @@ def input_is_held(stage: OutputStage, case: Case) -> Judgement:
         at="driven_by",
         path=(Hop(driver.id, ""), Hop(stage.id, EdgeKind.DRIVES.forwards)),
     )
+
+
+def _after_a_hold(case: Case, driver: Comparator | OutputStage) -> str | None:
+    """The held stage that a driver passes the level of on to a reset net: the driver is judged there."""
+    if not isinstance(driver, OutputStage) or not resets_in(case.graph, Reach(driver.id, drives(case.graph))):
+        return None
+    before = (case.graph.elements[name] for name in Reach(driver.id, driven_by(case.graph)) if name != driver.id)
+    return next((stage.id for stage in before if isinstance(stage, OutputStage) and isinstance(stage.hold, Hold)), None)
 
 
 def _why_dead(case: Case, stage: OutputStage, driver: Comparator | OutputStage) -> str:

@@ -27,6 +27,11 @@ _V: Final = Dimension.VOLTAGE
 _T: Final = Dimension.DURATION
 _WORDS: Final = {"up": "rising", "down": "falling"}
 _WAYS: Final[tuple[Way, ...]] = ("up", "down")
+_LOWER: Final = """comparators: {{por: {{crossover: null, reference: ref_early,
+  trip: {{rising: {{min: {rising}, max: 1.49 V}}, falling: {{min: {falling}, max: 1.43 V}}}}}}}}
+references: {{ref_early: {{kind: threshold, works_from: 0.7 V, settling: 5 us, decoupling: 10 pF, domain: aon,
+  self_biased: false, bias: bias_start, consumes: 0.1 uA}}}}
+"""  # the lower of two detectors, with a reference of its own
 
 
 @rule(
@@ -47,8 +52,8 @@ _WAYS: Final[tuple[Way, ...]] = ("up", "down")
     mend="a higher level of the lower detector, or an upper one that decides from a lower supply",
     sources=("the union of the spans in which detectors hold reset (derived)",),
     example=Example(
-        fails="comparators: {por: {trip: {rising: {min: 1.02 V, max: 1.3 V}, falling: {min: 0.96 V, max: 1.24 V}}}}",
-        holds="comparators: {por: {trip: {rising: {min: 1.17 V, max: 1.49 V}, falling: {min: 1.11 V, max: 1.43 V}}}}",
+        fails=_LOWER.format(rising="1.02 V", falling="0.96 V"),
+        holds=_LOWER.format(rising="1.17 V", falling="1.11 V"),
     ),
 )  # fmt: skip
 def stack_has_no_hole(rail: Rail, case: Case) -> Judgement:
@@ -69,7 +74,12 @@ def stack_has_no_hole(rail: Rail, case: Case) -> Judgement:
     if not handed:
         return case.passes("one detector alone holds reset up to the highest level")
     step = min(handed, key=lambda step: step.overlap_v)
-    upper = members[step.above.detector]
+    lower, upper = members[step.below.detector], members[step.above.detector]
+    if step.overlap_v < 0.0 and lower.role == "power_on" and lower.crossover is not None:
+        return case.not_applicable(
+            f"extreme against extreme {lower.id} can let go {show(-step.overlap_v, _V)} below where {upper.id} "
+            "decides; both move with temperature, and trip_window/crossover_tracks compares them at the same one"
+        )
     return case.at_least(
         need=step.above.from_v, have=step.below.to_v, dimension=_V,
         says=f"{_WORDS[step.way]}, {step.below.detector} surely holds reset up to", why=_why(case, rail, step),

@@ -162,7 +162,7 @@ def rail_is_watched_from_above_in_every_mode(rail: Rail, case: Case) -> Judgemen
     mend="a shorter period, or a level further from what the loads need",
     sources=("a sample sees what came before it (derived)",),
     example=Example(
-        fails="{modes: {drift: {sampled: [uv]}}, comparators: {uv: {sampling: 20 us}}}",
+        fails="{modes: {drift: {sampled: [uv]}}, comparators: {uv: {sampling: 8 us}}}",
         holds="{modes: {drift: {sampled: [uv]}}, comparators: {uv: {sampling: 4 us}}}",
     ),
     formulas=(trip_window.droop_during_response_v,),

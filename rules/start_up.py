@@ -6,7 +6,7 @@ from collections.abc import Iterable, Sequence
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.never_known import decides_too_late, unless_told
+from tidegate.lint.derived.never_known import decides_too_late, nobody_judges, unless_told
 from tidegate.lint.derived.rail_order import rails_before
 from tidegate.lint.derived.safe_rounding import show_up
 from tidegate.lint.description.model.reset_path import Load, Reset
@@ -265,6 +265,8 @@ def reset_is_asserted_in_time(load: Load, case: Case) -> Judgement:
     missed = _deepest_missed(lines, load, rail)
     if least.first_s < FOREVER_S and missed is not None and not _reaches(_depth_v(missed), works_v):
         return case.not_applicable(f"a dip of {rail} may be missed altogether (start_up/dip_is_caught says so)")
+    if least.first_s == FOREVER_S and (unheard := nobody_judges(case, load, rail)):
+        return case.not_applicable(unheard)
     if least.first_s == FOREVER_S:
         return case.fails(
             f"its reset may never be asserted when {rail} falls",

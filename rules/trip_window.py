@@ -15,6 +15,7 @@ from tidegate.lint.derived.level_margins import (
     guarantee,
     protects_nothing,
     quiet,
+    sampled_too_seldom,
     short_at_once,
 )
 from tidegate.lint.derived.level_room import NEVER_APART, level_room, tracks_its_bound
@@ -116,6 +117,8 @@ def guarded_before_out_of_range(comparator: Comparator, case: Case) -> Judgement
             f"{found.bound.element} works from; both move with temperature, and trip_window/crossover_tracks compares "
             "them at the same one"
         )
+    if not found.is_kept and sampled_too_seldom(case, comparator, found):
+        return case.not_applicable("is sampled too seldom for what it guards (modes/sampling says so)")
     return _measured(comparator, case, found, f"{_move(found)}{_faster(found)}")
 
 

@@ -4,25 +4,38 @@ from __future__ import annotations
 
 import argparse
 import os
-from collections.abc import Iterable, Iterator
-from concurrent.futures import Executor
-from contextlib import AbstractContextManager, contextmanager, nullcontext
+import signal
+from collections import Counter
+from collections.abc import Iterable, Iterator, Sequence
+from concurrent.futures import BrokenExecutor, Executor
+from contextlib import AbstractContextManager, ExitStack, closing, contextmanager, nullcontext
 from dataclasses import dataclass
 from functools import partial
 from pathlib import Path
 from typing import Any, Final
 
-from tidegate.lint.batch import Judged, Request, catalogue, found_files, judge_file
+from tidegate.lint.batch import Judged, Request, catalogue, judge_file
 from tidegate.lint.batch import run as run_batch
 from tidegate.lint.commands.streams import Exit, Streams
+from tidegate.lint.description.place import Fault
+from tidegate.lint.found_files import found_files
 from tidegate.lint.judgement import Level
-from tidegate.lint.reports.forms import ENDINGS, Form, Look, form_of, part, whole
+from tidegate.lint.packs import PackError
+from tidegate.lint.reports.forms import ENDINGS, Form, Look, Part, Ran, View, Whole, form_of, part
 from tidegate.lint.reports.plain_text import plain
 from tidegate.lint.rule import Rule
 from tidegate.lint.settings import Settings
 
 _MANY: Final = 16  # files from which more than one process pays
 _AT_A_TERMINAL: Final = 4  # files from which a progress bar is shown
+_MOST_CONNECTING_S: Final = 10
+
+
+def _count(text: str) -> int:
+    number = int(text)
+    if number < 1:
+        raise argparse.ArgumentTypeError("at least 1")
+    return number
 
 
 def configure(parser: argparse.ArgumentParser) -> None:
@@ -48,17 +61,8 @@ def configure(parser: argparse.ArgumentParser) -> None:
     )  # fmt: skip
     add("--settings", metavar="FILE", help="settings for all files, in place of the nearest tidegate.settings.yaml")
     add("--pack", action="append", default=[], metavar="FILE", help="Python file with rules of your own")
-    add("--workers", type=int, metavar="N", help="processes to work in (default: one, or one a core for many files)")
+    add("--workers", type=_count, metavar="N", help="processes to work in (default: one, or one a core for many files)")
     add("--on", metavar="ADDRESS", help="a running Dask scheduler to work on, such as tcp://host:8786 (needs dask)")
-
-
-@dataclass(frozen=True, slots=True)
-class _Wanted:
-    """What each worker makes of a file."""
-
-    request: Request
-    forms: tuple[Form, ...]
-    look: Look
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,14 +70,17 @@ class _Done:
     """What came of a file, as plain data."""
 
     status: int
-    settings: Settings
-    parts: tuple[Any, ...]
+    settings: Settings | None
+    """The settings in force; None where no description was meant."""
+    parts: tuple[Part, ...]
 
 
-def _work(file: str, wanted: _Wanted) -> _Done:
-    judged = judge_file(file, wanted.request)
-    parts = tuple(part(form, judged, wanted.look) for form in wanted.forms)
-    return _Done(_status(judged), judged.settings, parts)
+def _work(item: str | Fault, request: Request, views: tuple[View, ...]) -> _Done:
+    """Judge a file, in whichever process; what is wrong with a name is told like what is wrong with a file."""
+    fault = item if isinstance(item, Fault) else None
+    judged = judge_file(item, request) if isinstance(item, str) else Judged(item.place.file, Settings(), None, (item,))
+    settings = judged.settings if fault is None else None
+    return _Done(_status(judged), settings, tuple(part(view, judged) for view in views))
 
 
 def _status(judged: Judged) -> int:
@@ -86,107 +93,142 @@ def _status(judged: Judged) -> int:
     return Exit.KEPT if found is None else Exit.FINDINGS
 
 
+class _StoppedError(Exception):
+    """The work cannot be done, or not to its end; the message says why."""
+
+
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Judge every file; the exit status is the worst of all."""
-    saved = _saved(options.save, streams)
-    if saved is None:
-        return Exit.UNUSABLE
-    files, faults = found_files(options.files)
-    for fault in faults:
-        streams.err.write(plain(str(fault)) + "\n")
     form = Form(options.form)
-    forms = tuple(dict.fromkeys((form, *saved.values())))
+    shown = View(form, Look(streams.width, streams.colour, options.every)) if form is Form.TERMINAL else View(form)
+    saved: dict[str, View] = {}
+    for path in options.save:
+        told = form_of(path)
+        if told is None:
+            streams.err.write(f"--save {plain(path)}: the form is told by the ending: {', '.join(ENDINGS)}\n")
+            return Exit.UNUSABLE
+        saved[path] = View(told, Look(every=options.every)) if told is Form.TERMINAL else View(told)
     request = Request(
         streams.today, streams.families, options.settings, tuple(options.pack), options.fail_at,
         None if options.also is None else tuple(options.also),
     )  # fmt: skip
-    wanted = _Wanted(request, forms, Look(streams.width, streams.colour and form is Form.TERMINAL, options.every))
-    done: list[_Done] = []
-    with _executor(options, len(files)) as executor:
-        results = run_batch(partial(_work, wanted=wanted), files, executor)
-        for result in _with_progress(results, len(files), streams):
-            if form is Form.TERMINAL:
-                _print_text(result, number=len(done), streams=streams)
-            done.append(result)
-    status = max([Exit.UNUSABLE if faults else Exit.KEPT, *(result.status for result in done)])
-    if form is Form.TERMINAL and len(files) > 1:
-        streams.out.write(_summary(done))
-    reports = _Reports(done, forms, request, status)
-    if form is not Form.TERMINAL:
-        streams.out.write(reports.text(form))
-    return max(status, _save_all(saved, reports, streams))
+    try:
+        return _judge_all(list(found_files(options.files)), _Order(request, shown, saved), options, streams)
+    except _StoppedError as error:
+        streams.err.write(f"{plain(str(error))}\n")
+        return Exit.UNUSABLE
 
 
-def _saved(paths: Iterable[str], streams: Streams) -> dict[str, Form] | None:
-    """The form of each file to write; None if one cannot be told."""
-    saved: dict[str, Form] = {}
-    for path in paths:
-        form = form_of(path)
-        if form is None:
-            streams.err.write(f"--save {plain(path)}: the form is told by the ending: {', '.join(ENDINGS)}\n")
-            return None
-        saved[path] = form
-    return saved
+@dataclass(frozen=True, slots=True)
+class _Order:
+    """What is wanted: how to judge, what to show on the output, what to save."""
+
+    request: Request
+    shown: View
+    saved: dict[str, View]
 
 
-def _print_text(result: _Done, *, number: int, streams: Streams) -> None:
-    text: str = result.parts[0]
-    if result.status == Exit.UNUSABLE:
-        streams.err.write(text)
-    else:
-        streams.out.write(("\n" if number else "") + text)
+def _judge_all(items: Sequence[str | Fault], order: _Order, options: argparse.Namespace, streams: Streams) -> int:
+    request, shown, saved = order.request, order.shown, order.saved
+    views = tuple(dict.fromkeys((shown, *saved.values())))
+    to_print = shown.form is Form.TERMINAL
+    output = _Output(streams, saves=bool(saved))
+    statuses: Counter[int] = Counter()
+    used: dict[str, Settings] = {}
+    with ExitStack() as stack:
+        wholes = {view: Whole(view.form) for view in views}
+        for whole in wholes.values():
+            stack.enter_context(closing(whole))
+        executor = stack.enter_context(_executor(options, len(items)))
+        results = run_batch(partial(_work, request=request, views=views), items, executor)
+        for result in _with_progress(_unless_stopped(results, executor), len(items), streams, to_print=to_print):
+            if to_print:
+                output.text(result, first=not statuses)
+            for view, new in zip(views, result.parts, strict=True):
+                if not to_print or view in saved.values():
+                    wholes[view].add(new)
+            statuses[result.status] += 1
+            if result.settings is not None:
+                used.setdefault(result.settings.shown, result.settings)
+        summary = _summary(statuses) if len(items) > 1 else ""
+        if to_print:
+            output.write([summary])
+        for view in set(saved.values()):
+            if view.form is Form.TERMINAL and summary:
+                wholes[view].add(Part(summary.removeprefix("\n")))
+        ran = Ran(max(statuses, default=Exit.KEPT), list(used.values()), _rules(request, used.values()))
+        if not to_print:
+            output.write(wholes[shown].pieces(ran))
+        status = max(ran.status, _save_all(saved, wholes, ran, streams))
+    output.end()
+    return status
 
 
-def _summary(done: list[_Done]) -> str:
+class _Output:
+    """What is shown; a reader who has left, as `| head` does, keeps no report from being saved."""
+
+    def __init__(self, streams: Streams, *, saves: bool) -> None:
+        self._streams = streams
+        self._saves = saves
+        self._left: BrokenPipeError | None = None
+
+    def text(self, result: _Done, *, first: bool) -> None:
+        """The text of one description; what is wrong with a file goes to the error stream."""
+        text = result.parts[0].text
+        if result.status == Exit.UNUSABLE:
+            self._streams.err.write(text)
+        else:
+            self.write([text if first else f"\n{text}"])
+
+    def write(self, pieces: Iterable[str]) -> None:
+        """Show a text that comes in pieces."""
+        if self._left is None:
+            try:
+                self._streams.out.writelines(pieces)
+            except BrokenPipeError as error:
+                if not self._saves:
+                    raise
+                self._left = error
+
+    def end(self) -> None:
+        """Say now that the reader has left."""
+        if self._left is not None:
+            raise self._left
+
+
+def _summary(statuses: Counter[int]) -> str:
     words = {
         Exit.KEPT: "kept",
         Exit.FINDINGS: "with findings",
         Exit.UNUSABLE: "unusable",
         Exit.RULE_FAULT: "with rule faults",
     }
-    counts = [(sum(result.status == status for result in done), word) for status, word in words.items()]
-    return f"\n{len(done)} descriptions: {', '.join(f'{count} {word}' for count, word in counts if count)}\n"
+    counts = ", ".join(f"{statuses[status]} {word}" for status, word in words.items() if statuses[status])
+    return f"\n{statuses.total()} descriptions: {counts}\n"
 
 
-class _Reports:
-    """The whole reports, each made when it is asked for."""
-
-    def __init__(self, done: list[_Done], forms: tuple[Form, ...], request: Request, status: int) -> None:
-        self._done, self._forms, self._request, self._status = done, forms, request, status
-
-    def text(self, form: Form) -> str:
-        """The report in one form."""
-        number = self._forms.index(form)
-        used = list(dict.fromkeys(result.settings.shown for result in self._done))
-        levels = {result.settings.fail_at.value for result in self._done} or {Level.WARNING.value}
-        rules: dict[str, Rule] = {}
-        for settings in {result.settings.shown: result.settings for result in self._done}.values():
-            rules |= _rules(self._request, settings)
-        return whole(
-            form, [result.parts[number] for result in self._done], rules.values(), status=self._status,
-            settings=", ".join(used), fail_at=min(levels),
-        )  # fmt: skip
+def _rules(request: Request, used: Iterable[Settings]) -> list[Rule]:
+    """Every rule that was in force for some description."""
+    rules: dict[str, Rule] = {}
+    for settings in used:
+        try:
+            rules |= catalogue(request, settings).rules
+        except PackError:  # said already, as the fault of each file it concerns
+            continue
+    return list(rules.values())
 
 
-def _rules(request: Request, settings: Settings) -> dict[str, Rule]:
-    from tidegate.lint.packs import PackError
-
-    try:
-        return catalogue(request, settings).rules
-    except PackError:  # said already, as the fault of each file it concerns
-        return {}
-
-
-def _save_all(saved: dict[str, Form], reports: _Reports, streams: Streams) -> int:
+def _save_all(saved: dict[str, View], wholes: dict[View, Whole], ran: Ran, streams: Streams) -> int:
     from tidegate.lint.reports.saving import save
 
-    for path, form in saved.items():
+    status = Exit.KEPT
+    for path, view in saved.items():
         try:
-            save(Path(path), reports.text(form))
+            save(Path(path), wholes[view].pieces(ran))
         except OSError as error:
             streams.err.write(f"{plain(path)}: cannot be written ({error.strerror or error})\n")
-            return Exit.UNUSABLE
-    return Exit.KEPT
+            status = Exit.UNUSABLE
+    return status
 
 
 def _executor(options: argparse.Namespace, files: int) -> AbstractContextManager[Executor | None]:
@@ -198,22 +240,45 @@ def _executor(options: argparse.Namespace, files: int) -> AbstractContextManager
         return nullcontext(None)
     from concurrent.futures import ProcessPoolExecutor
 
-    return ProcessPoolExecutor(workers)
+    return ProcessPoolExecutor(min(workers, files), initializer=_leave_interrupts_alone)
+
+
+def _leave_interrupts_alone() -> None:
+    """Ctrl-C reaches every process of a terminal; the first one ends the others."""
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
 
 
 @contextmanager
 def _cluster(address: str) -> Iterator[Executor]:
     """A Dask cluster that runs already, as an executor; a worker that dies has its work done by another."""
-    from distributed import Client
-
+    try:
+        from distributed import Client
+    except ImportError:
+        raise _StoppedError("--on needs Dask: install tidegate[cluster]") from None
     connect: Any = Client
-    with connect(address) as client:
+    try:
+        client = connect(address, timeout=_MOST_CONNECTING_S)
+    except (OSError, ValueError) as error:
+        raise _StoppedError(f"--on {address}: no scheduler answers ({error})") from None
+    with client:
         yield client.get_executor(retries=3)
 
 
-def _with_progress(results: Iterator[_Done], total: int, streams: Streams) -> Iterator[_Done]:
-    """The results, with a bar on a terminal where there are many and the output goes elsewhere."""
-    if total < _AT_A_TERMINAL or not streams.err.isatty() or streams.out.isatty():
+def _unless_stopped(results: Iterator[_Done], executor: Executor | None) -> Iterator[_Done]:
+    """The results, unless the processes that should bring them die."""
+    try:
+        yield from results
+    except BrokenExecutor:
+        raise _StoppedError("a process that judges descriptions died; --workers 1 does without them") from None
+    except Exception as error:
+        if executor is None or not type(error).__module__.startswith("distributed"):
+            raise
+        raise _StoppedError(f"the cluster gave up ({type(error).__name__}: {error})") from None
+
+
+def _with_progress(results: Iterator[_Done], total: int, streams: Streams, *, to_print: bool) -> Iterator[_Done]:
+    """The results, with a bar on a terminal where there are many and no text rolls by on it."""
+    if total < _AT_A_TERMINAL or not streams.err.isatty() or (to_print and streams.out.isatty()):
         yield from results
         return
     from rich.progress import Progress

@@ -9,7 +9,10 @@ from collections.abc import Iterator, Sequence
 from difflib import get_close_matches
 
 from tidegate.lint.commands.streams import Exit, Streams
+from tidegate.lint.packs import PackError, load_packs
+from tidegate.lint.reports.plain_text import plain
 from tidegate.lint.rule import Rule
+from tidegate.lint.waivers import STILL_RIGHT
 
 _WIDTH = 78
 
@@ -17,11 +20,18 @@ _WIDTH = 78
 def configure(parser: argparse.ArgumentParser) -> None:
     """Declare the options."""
     parser.add_argument("id", nargs="?", metavar="ID", help="a rule (family/name) or a family; all of them if left out")
+    parser.add_argument(
+        "--pack", action="append", default=[], metavar="FILE", help="Python file with rules of your own"
+    )
 
 
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Print the catalogue, a family of it, or one rule with formula, facts, sources, example and mend."""
-    rules = [rule for family in streams.families() for rule in family]
+    try:
+        rules = _rules(streams, options.pack)
+    except PackError as error:
+        streams.err.write(f"{plain(str(error))}\n")
+        return Exit.UNUSABLE
     if options.id is None or any(rule.family == options.id for rule in rules):
         shown = [rule for rule in rules if options.id in (None, rule.family)]
         streams.out.write("\n".join(_listed(shown)) + "\n")
@@ -35,6 +45,14 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
         return Exit.UNUSABLE
     streams.out.write("\n".join(_in_full(rule)) + "\n")
     return Exit.KEPT
+
+
+def _rules(streams: Streams, packs: Sequence[str]) -> list[Rule]:
+    """The rules that come with the tool and those of packs."""
+    own = [*(rule for family in streams.families() for rule in family), STILL_RIGHT]
+    if packs:
+        own += [rule for pack in load_packs(packs, (), {rule.family for rule in own}) for rule in pack]
+    return own
 
 
 def _listed(rules: Sequence[Rule]) -> Iterator[str]:
@@ -64,7 +82,7 @@ def _in_full(rule: Rule) -> Iterator[str]:
     source = inspect.getsourcefile(rule.judge)
     module = inspect.getmodule(rule.judge)
     if source and module:
-        yield from _part("code", [f"{module.__name__}.{rule.judge.__name__}"])
+        yield from _part("code", [f"{module.__name__}.{rule.judge.__name__}".partition("._")[0]])
 
 
 def _part(label: str, texts: Sequence[str], *, fill: bool = True) -> Iterator[str]:

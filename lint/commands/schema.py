@@ -11,8 +11,8 @@ from tidegate.lint.description.load import schema_text
 def configure(parser: argparse.ArgumentParser) -> None:
     """Declare the options."""
     parser.add_argument(
-        "which", nargs="?", choices=("description", "report"), default="description",
-        help="schema of the description (default) or of the JSON report",
+        "which", nargs="?", choices=("description", "settings", "report", "comparison"), default="description",
+        help="schema of a description (default), of a settings file, or of the JSON of review or of compare",
     )  # fmt: skip
 
 

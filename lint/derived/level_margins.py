@@ -81,6 +81,20 @@ def guarantee(case: Case, comparator: Comparator) -> LevelMargin | None:
     return replace(level, limit_v=limit_v, why=why, slew_v_per_s=answer.slew_v_per_s)
 
 
+def sampled_too_seldom(case: Case, comparator: Comparator, found: LevelMargin) -> bool:
+    """Whether a mode samples a detector so seldom that its rail moves past what the level keeps between two samples."""
+    sampled = any(comparator.id in (mode.sampled or ()) for mode in case.description.modes.values())
+    if not sampled or comparator.sampling is None or found.bound is None:
+        return False
+    level = replace(found, limit_v=found.bound.level_v)
+    moved_v = response(case, comparator).sampling_s * found.slew_v_per_s
+    return level.is_kept and not replace(level, limit_v=_moved(level, moved_v)).is_kept
+
+
+def _moved(level: LevelMargin, moved_v: float) -> float:
+    return level.limit_v + (moved_v if level.side is Side.LEAST else -moved_v)
+
+
 def short_at_once(case: Case, comparator: Comparator) -> LevelMargin | None:
     """The level that protects, if it is short of its limit even with an answer that takes no time; else None.
 

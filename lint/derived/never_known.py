@@ -9,7 +9,7 @@ from typing import Any, Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import as_shipped
-from tidegate.lint.derived.guarding_nets import detectors_behind_nets, guarding_nets, watching
+from tidegate.lint.derived.guarding_nets import LOW_ROLES, detectors_behind_nets, guarding_nets, watching
 from tidegate.lint.derived.level_margins import LevelMargin, guarantee
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Load, OutputStage
@@ -62,6 +62,18 @@ def decides_too_late(case: Case, load: Load, rail: str) -> str | None:
         found = case.attempt(partial(_guarantee, case, detector)) if detector.id in heard else None
         if found is not None and not found.is_kept:
             return f"{detector.id} decides too late by itself (trip_window/guarantee or placement_sense says so)"
+    return None
+
+
+def nobody_judges(case: Case, load: Load, rail: str) -> str | None:
+    """Why no detector of a rail resets a load when it falls, and which rule says so; else None."""
+    watched = watching(case.graph, rail, LOW_ROLES)
+    if not watched:
+        return f"no detector watches {rail} (coverage/under_voltage says so)"
+    behind = case.graph.once(detectors_behind_nets)
+    heard = {detector.id for net in guarding_nets(case.graph, load) for detector in behind[net]}
+    if not any(detector.id in heard for detector in watched):
+        return f"no detector of {rail} resets it (reach/every_rail says so)"
     return None
 
 

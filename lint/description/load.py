@@ -72,7 +72,7 @@ def description_schema() -> Mapping[str, Any]:
 
 
 def schema_text(name: str) -> str:
-    """The text of one of the schemas that come with the tool: ``description`` or ``report``."""
+    """The text of one of the schemas that come with the tool, such as ``description`` or ``report``."""
     return (Path(next(iter(tidegate.schema.__path__))) / f"{name}.schema.json").read_text("utf-8")
 
 

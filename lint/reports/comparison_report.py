@@ -2,16 +2,20 @@
 
 from __future__ import annotations
 
-import json
 import textwrap
 from collections.abc import Iterator
+from dataclasses import dataclass
 from typing import Any, Final
 
 from tidegate.lint.comparison import Comparison, FactChange, Harm, JudgementChange
 from tidegate.lint.judgement import Judgement
-from tidegate.lint.reports.markdown import code, escaped
+from tidegate.lint.reports.json_form import json_form
+from tidegate.lint.reports.json_report import number_entry, settings_entry
+from tidegate.lint.reports.markdown_text import code, code_in_table, escaped
 from tidegate.lint.reports.order import kind_word
 from tidegate.lint.reports.plain_text import plain
+from tidegate.lint.settings import Settings
+from tidegate.lint.version import VERSION
 
 _TITLES: Final = {
     Harm.WORSE: "worse",
@@ -20,6 +24,19 @@ _TITLES: Final = {
     Harm.MARGIN_GREW: "larger margins",
     Harm.BETTER: "better",
 }
+
+
+COMPARISON_SCHEMA: Final = "urn:tidegate:comparison:1"
+"""The version of the form for machines (``schema/comparison.schema.json``)."""
+
+
+@dataclass(frozen=True, slots=True)
+class Sides:
+    """What was compared, and under which settings both were judged."""
+
+    old: str
+    new: str
+    settings: Settings
 
 
 def _kind(judgement: Judgement | None) -> str:
@@ -46,16 +63,23 @@ def _fact(change: FactChange) -> str:
     return f"{old} -> {new}"
 
 
+def _count(number: int, noun: str) -> str:
+    return f"{number} {noun}" if number == 1 else f"{number} {noun}s"
+
+
 def _verdict(found: Comparison) -> str:
     if found.got_worse:
         return "WORSE"
     return "NOTHING CHANGED" if not found.judgements and not found.facts else "NOTHING GOT WORSE"
 
 
-def terminal_lines(found: Comparison, *, old: str, new: str, width: int) -> Iterator[str]:
+def terminal_lines(found: Comparison, sides: Sides, *, width: int) -> Iterator[str]:
     """For people at a terminal."""
-    yield plain(f"{old} -> {new}")
-    yield f"{_verdict(found)}   {len(found.facts)} facts and {len(found.judgements)} judgements changed"
+    yield plain(f"{sides.old} -> {sides.new}")
+    if sides.settings.summary:
+        yield from textwrap.wrap(plain(f"settings: {sides.settings.summary}"), max(width, 24), break_on_hyphens=False)
+    facts, judgements = _count(len(found.facts), "fact"), _count(len(found.judgements), "judgement")
+    yield f"{_verdict(found)}   {facts} and {judgements} changed"
     for harm, title in _TITLES.items():
         changes = [change for change in found.judgements if change.harm is harm]
         if changes:
@@ -80,9 +104,12 @@ def _block(head: str, text: str, width: int) -> Iterator[str]:
     yield from (f"      {line}" for line in textwrap.wrap(plain(text), max(width - 6, 24), break_on_hyphens=False))
 
 
-def markdown_lines(found: Comparison, *, old: str, new: str, width: int) -> Iterator[str]:
+def markdown_lines(found: Comparison, sides: Sides, *, width: int) -> Iterator[str]:
     """For a change request."""
-    yield f"### {escaped(old)} -> {escaped(new)}: {_verdict(found)}"
+    yield f"### {code(sides.old)} to {code(sides.new)}: {_verdict(found)}"
+    if sides.settings.summary:
+        yield ""
+        yield f"Settings: {escaped(sides.settings.summary)}."
     for harm, title in _TITLES.items():
         changes = [change for change in found.judgements if change.harm is harm]
         if not changes:
@@ -96,10 +123,10 @@ def markdown_lines(found: Comparison, *, old: str, new: str, width: int) -> Iter
             said = _said(change)
             if harm is Harm.WORSE and change.new is not None:
                 said += f": {change.new.message}" + (f"; mend: {change.new.mend}" if change.new.mend else "")
-            yield f"| {escaped(change.subject)} | {code(change.rule)} | {escaped(said)} |"
+            yield f"| {escaped(change.subject)} | {code_in_table(change.rule)} | {escaped(said)} |"
     if found.facts:
         yield ""
-        yield f"<details><summary>{len(found.facts)} facts changed</summary>"
+        yield f"<details><summary>{_count(len(found.facts), 'fact')} changed</summary>"
         yield ""
         for fact in found.facts:
             yield f"- {code(fact.path)}: {escaped(_fact(fact))}"
@@ -107,17 +134,19 @@ def markdown_lines(found: Comparison, *, old: str, new: str, width: int) -> Iter
         yield "</details>"
 
 
-def json_lines(found: Comparison, *, old: str, new: str, width: int) -> Iterator[str]:
+def json_lines(found: Comparison, sides: Sides, *, width: int) -> Iterator[str]:
     """For machines."""
     report = {
-        "schema": "urn:tidegate:comparison:1",
-        "old": old,
-        "new": new,
+        "schema": COMPARISON_SCHEMA,
+        "tool": {"name": "tidegate", "version": VERSION},
+        "old": sides.old,
+        "new": sides.new,
+        "settings": settings_entry(sides.settings),
         "got_worse": found.got_worse,
         "judgements": [_entry(change) for change in found.judgements],
         "facts": [{"path": fact.path, "old": fact.old, "new": fact.new} for fact in found.facts],
     }
-    yield json.dumps(report, indent=2, ensure_ascii=False, allow_nan=False)
+    yield json_form(report)
 
 
 def _entry(change: JudgementChange) -> dict[str, Any]:
@@ -133,12 +162,11 @@ def _entry(change: JudgementChange) -> dict[str, Any]:
 def _side(judgement: Judgement | None) -> dict[str, Any] | None:
     if judgement is None:
         return None
-    margin = judgement.measure.margin if judgement.measure is not None else None
-    finite = margin if margin is not None and abs(margin) != float("inf") else None
     return {
         "kind": judgement.kind.value,
+        "level": judgement.level.value,
         "waived": bool(judgement.waiver),
-        "margin": finite,
+        "margin": number_entry(judgement.measure, "margin"),
         "message": judgement.message,
         "mend": judgement.mend,
     }

@@ -3,14 +3,16 @@
 from __future__ import annotations
 
 import io
-from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, field
 from enum import StrEnum
 from pathlib import PurePath
 from typing import Any, Final
 
 from tidegate.lint.batch import Judged
+from tidegate.lint.reports.spool import Spool
 from tidegate.lint.rule import Rule
+from tidegate.lint.settings import Settings
 
 
 class Form(StrEnum):
@@ -39,34 +41,58 @@ def form_of(path: str) -> Form | None:
 class Look:
     """How a text report looks: its width, whether in colour, whether with what passes."""
 
-    width: int
-    colour: bool
-    every: bool
+    width: int = 80
+    colour: bool = False
+    every: bool = False
 
 
-def part(form: Form, judged: Judged, look: Look) -> Any:
+@dataclass(frozen=True, slots=True)
+class View:
+    """A form and, where it is text for people at a terminal, its look."""
+
+    form: Form
+    look: Look = field(default=Look())
+
+
+@dataclass(frozen=True, slots=True)
+class Part:
     """What one description adds to a report: plain data, which can come from another process."""
-    if form is Form.TERMINAL:
-        return _terminal(judged, look)
-    if form is Form.JSON:
-        from tidegate.lint.reports.json_report import review_entry, unusable_entry
 
-        return unusable_entry(judged.file, judged.faults) if judged.review is None else review_entry(judged.review)
-    if form is Form.MARKDOWN:
-        from tidegate.lint.reports.markdown import review_markdown, unusable_markdown
+    text: str = ""
+    notifications: tuple[dict[str, Any], ...] = ()
+    """What SARIF says of the run and not of a description's elements."""
+    data: Any = None
+    """What the page is made of, which is drawn as a whole."""
 
-        return (
-            unusable_markdown(judged.file, judged.faults) if judged.review is None else review_markdown(judged.review)
-        )
-    if form is Form.HTML:
+
+@dataclass(frozen=True, slots=True)
+class Ran:
+    """What a report says of the run as a whole."""
+
+    status: int
+    settings: Sequence[Settings]
+    """The settings that were in force, each once."""
+    rules: Sequence[Rule]
+
+
+def part(view: View, judged: Judged) -> Part:
+    """What one description adds to a report."""
+    if view.form is Form.TERMINAL:
+        return Part(_terminal(judged, view.look))
+    if view.form is Form.JSON:
+        return Part(_json(judged))
+    if view.form is Form.MARKDOWN:
+        return Part(_markdown(judged))
+    if view.form is Form.HTML:
         from tidegate.lint.reports.page.gather import gather
 
-        return gather(judged)
+        return Part(data=gather(judged))
     from tidegate.lint.reports import sarif
 
     if judged.review is None:
-        return [], sarif.fault_notifications(judged.faults)
-    return sarif.review_results(judged.review), sarif.rule_fault_notifications(judged.review.faults)
+        return Part("", tuple(sarif.fault_notifications(judged.faults)))
+    notes = sarif.rule_fault_notifications(judged.review.faults)
+    return Part(sarif.results_text(sarif.review_results(judged.review)), tuple(notes))
 
 
 def _terminal(judged: Judged, look: Look) -> str:
@@ -86,22 +112,66 @@ def _terminal(judged: Judged, look: Look) -> str:
     return out.getvalue()
 
 
-def whole(form: Form, parts: Sequence[Any], rules: Iterable[Rule], *, status: int, settings: str, fail_at: str) -> str:
-    """A report made of the parts of all descriptions."""
-    if form is Form.TERMINAL:
-        return "\n".join(parts)
-    if form is Form.MARKDOWN:
-        return "\n".join(parts)
-    if form is Form.JSON:
-        from tidegate.lint.reports.json_report import json_text
+def _json(judged: Judged) -> str:
+    from tidegate.lint.reports.json_report import entry_text, review_entry, unusable_entry
 
-        return json_text(parts, settings=settings, fail_at=fail_at)
-    if form is Form.HTML:
-        from tidegate.lint.reports.page.render import page
+    if judged.review is None:
+        return entry_text(unusable_entry(judged.file, judged.faults, judged.settings))
+    return entry_text(review_entry(judged.review))
 
-        return page(parts, rules)
-    from tidegate.lint.reports import sarif
 
-    notifications = [note for _, notes in parts for note in notes]
-    ran = sarif.invocation(successful=status in (0, 1), status=status, notifications=notifications, settings=settings)
-    return sarif.sarif_text([results for results, _ in parts], list(rules), ran=ran)
+def _markdown(judged: Judged) -> str:
+    from tidegate.lint.reports.markdown import review_markdown, unusable_markdown
+
+    if judged.review is None:
+        return unusable_markdown(judged.file, judged.faults)
+    return review_markdown(judged.review)
+
+
+class Whole:
+    """A report in the making: parts come one by one, and the whole is written at the end."""
+
+    def __init__(self, form: Form) -> None:
+        self._form = form
+        self._texts = Spool(",\n" if form in (Form.JSON, Form.SARIF) else "\n")
+        self._notifications: list[dict[str, Any]] = []
+        self._data: list[Any] = []
+
+    def add(self, new: Part) -> None:
+        """Take what one description adds."""
+        if new.text:
+            self._texts.add(new.text)
+        if new.data is not None:
+            self._data.append(new.data)
+        self._notifications += new.notifications
+
+    def pieces(self, ran: Ran) -> Iterator[str]:
+        """The whole report, a piece at a time."""
+        if self._form is Form.JSON:
+            from tidegate.lint.reports.json_report import json_pieces
+
+            files = ", ".join(settings.shown for settings in ran.settings)
+            return json_pieces(self._texts.pieces(), settings=files, fail_at=_least_level(ran.settings))
+        if self._form is Form.SARIF:
+            from tidegate.lint.reports import sarif
+
+            how = sarif.invocation(
+                status=ran.status, notifications=self._notifications, settings=ran.settings, rules=ran.rules
+            )
+            return sarif.sarif_pieces(self._texts.pieces(), ran.rules, ran=how)
+        if self._form is Form.HTML:
+            from tidegate.lint.reports.page.render import page
+
+            return iter([page(self._data, ran.rules)])
+        return self._texts.pieces()
+
+    def close(self) -> None:
+        """Give back what the parts were kept in."""
+        self._texts.close()
+
+
+def _least_level(settings: Sequence[Settings]) -> str:
+    """The least level that makes the exit status 1 under any of the settings."""
+    from tidegate.lint.engine import WEIGHT
+
+    return min((each.fail_at for each in settings), key=WEIGHT.__getitem__, default=Settings().fail_at).value

@@ -2,38 +2,74 @@
 
 from __future__ import annotations
 
-import json
-from collections.abc import Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from typing import Any, Final
 
 from tidegate.lint.description.place import Fault, Place
 from tidegate.lint.engine import Review
 from tidegate.lint.judgement import Judgement, Kind, Measure
 from tidegate.lint.quantity import Dimension
+from tidegate.lint.reports.json_form import json_form
 from tidegate.lint.reports.order import CAUTION, verdict
+from tidegate.lint.settings import Settings
 from tidegate.lint.version import VERSION
 
+SEPARATOR: Final = ",\n"
+"""What stands between the entries."""
 REPORT_SCHEMA: Final = "urn:tidegate:report:1"
 """The version of the report's form."""
 
 
 def json_text(files: Sequence[dict[str, Any]], *, settings: str, fail_at: str) -> str:
-    """The whole report as text, one file entry for each description."""
+    """The whole report as text, one entry for each description."""
+    entries = SEPARATOR.join(map(entry_text, files))
+    return "".join(json_pieces([entries] if files else [], settings=settings, fail_at=fail_at))
+
+
+def entry_text(entry: dict[str, Any]) -> str:
+    """The entry of a description as it stands in the whole."""
+    return json_form(entry, depth=2)
+
+
+def json_pieces(entries: Iterable[str], *, settings: str, fail_at: str) -> Iterator[str]:
+    """The whole report, a piece at a time, around the texts of all entries with separators between them."""
     report = {
         "schema": REPORT_SCHEMA,
         "tool": {"name": "tidegate", "version": VERSION},
         "settings": {"file": settings, "fail_at": fail_at},
         "caution": CAUTION,
-        "files": list(files),
+        "files": [],
     }
-    return json.dumps(report, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+    head, _, foot = json_form(report).rpartition("[]")
+    yield f"{head}["
+    opened = False
+    for text in entries:
+        yield text if opened else f"\n{text}"
+        opened = True
+    yield f"\n  ]{foot}\n" if opened else f"]{foot}\n"
 
 
-def unusable_entry(file: str, faults: Sequence[Fault]) -> dict[str, Any]:
+def settings_entry(settings: Settings) -> dict[str, Any]:
+    """The settings in force: where they come from and what they change."""
+    return {
+        "file": settings.file or None,
+        "fail_at": settings.fail_at.value,
+        "also": list(settings.also),
+        "leave_out": list(settings.leave_out),
+        "levels": {name: level.value for name, level in settings.levels.items()},
+        "least_margins": dict(settings.least_margins),
+        "conditions": settings.conditions_given,
+        "waivers": list(settings.waivers),
+        "packs": [*settings.packs, *settings.packs_installed, *settings.option_packs],
+    }
+
+
+def unusable_entry(file: str, faults: Sequence[Fault], settings: Settings) -> dict[str, Any]:
     """A file that cannot be used, with its faults."""
     return {
         "file": file,
         "verdict": "UNUSABLE",
+        "settings": settings_entry(settings),
         "faults": [
             {"place": _place(f.place), "path": f.path, "problem": f.problem, "advice": f.advice} for f in faults
         ],
@@ -50,6 +86,7 @@ def review_entry(review: Review) -> dict[str, Any]:
         "revision": description.revision,
         "invented": bool(description.invented),
         "verdict": verdict(review),
+        "settings": settings_entry(review.settings),
         "counts": {kind.value: review.counts.get(kind, 0) for kind in Kind},
         "judgements": [_judgement(review, judgement) for judgement in review.judgements],
         "rule_faults": [{"rule": f.rule, "subject": f.subject, "error": f.error} for f in review.faults],
@@ -67,9 +104,9 @@ def _judgement(review: Review, judgement: Judgement) -> dict[str, Any]:
         "why": judgement.why,
         "mend": judgement.mend,
         "relation": measure.relation.value if measure else None,
-        "need": _number(measure, "need"),
-        "have": _number(measure, "have"),
-        "margin": _number(measure, "margin"),
+        "need": number_entry(measure, "need"),
+        "have": number_entry(measure, "have"),
+        "margin": number_entry(measure, "margin"),
         "fact": judgement.at,
         "place": _place(review.place(judgement)),
         "path": [{"element": hop.element, "by": hop.by} for hop in judgement.path],
@@ -78,7 +115,7 @@ def _judgement(review: Review, judgement: Judgement) -> dict[str, Any]:
     }
 
 
-def _number(measure: Measure | None, which: str) -> dict[str, Any] | None:
+def number_entry(measure: Measure | None, which: str) -> dict[str, Any] | None:
     """A value and its unit; an unlimited one has no value."""
     if measure is None:
         return None

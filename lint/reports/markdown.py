@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Iterator, Sequence
 from typing import Final
 
@@ -10,26 +9,11 @@ from tidegate.lint.description.place import Fault
 from tidegate.lint.engine import Review
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind
+from tidegate.lint.reports.markdown_text import code, code_in_table, escaped
 from tidegate.lint.reports.order import CAUTION, by_element, closest_first, kind_word, missing_facts, verdict
-from tidegate.lint.reports.plain_text import plain
 
-_SPECIAL: Final = re.compile(r"([\\`*_\[\]<>|~&@#]|:(?=\S))")
 MOST_MARGINS: Final = 8
 """How many of the least margins the report lists."""
-
-
-def escaped(text: str) -> str:
-    """Text that Markdown, and the code hosts that show it, take for nothing but text."""
-    return _SPECIAL.sub(r"\\\1", plain(text))
-
-
-def code(text: str) -> str:
-    """Text in code marks, whatever is in it."""
-    clean = plain(text).replace("|", "\\|")
-    longest = max((len(run) for run in re.findall("`+", clean)), default=0)
-    marks = "`" * (longest + 1)
-    space = " " if longest else ""
-    return f"{marks}{space}{clean}{space}{marks}"
 
 
 def unusable_markdown(file: str, faults: Sequence[Fault]) -> str:
@@ -55,14 +39,25 @@ def _lines(review: Review) -> Iterator[str]:
     yield f"### {escaped(name + revision)}: {verdict(review)}"
     yield ""
     counts = review.counts
-    yield ", ".join(f"{counts.get(kind, 0)} {kind_word(kind)}" for kind in Kind if counts.get(kind, 0)) + "."
+    said = ", ".join(f"{counts.get(kind, 0)} {kind_word(kind)}" for kind in Kind if counts.get(kind, 0))
+    yield f"{code(review.loaded.sources.files[0].name)}: {said}{_waived(review)}."
+    if review.settings.summary:
+        yield ""
+        yield f"Settings: {escaped(review.settings.summary)}."
     yield from _findings(review)
     yield from _open(review)
     yield from _margins(review)
+    if review.faults:
+        yield ""
     for fault in review.faults:
         yield f"- **rule fault** {code(fault.rule)} on {code(fault.subject)}: {escaped(fault.error)}"
     yield ""
     yield f"<sub>{escaped(CAUTION)}</sub>"
+
+
+def _waived(review: Review) -> str:
+    waived = sum(1 for judgement in review.judgements if judgement.waiver)
+    return f" ({waived} waived)" if waived else ""
 
 
 def _findings(review: Review) -> Iterator[str]:
@@ -111,4 +106,4 @@ def _margins(review: Review) -> Iterator[str]:
         assert judgement.measure is not None
         have, need = judgement.measure.texts()
         cells = (judgement.measure.margin_text(), have, f"{judgement.measure.relation} {need}")
-        yield f"| {code(judgement.rule)} | {escaped(judgement.subject)} | {' | '.join(map(escaped, cells))} |"
+        yield f"| {code_in_table(judgement.rule)} | {escaped(judgement.subject)} | {' | '.join(map(escaped, cells))} |"

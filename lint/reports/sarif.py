@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 import hashlib
-import json
-from collections.abc import Iterable, Sequence
+import os
+from collections.abc import Iterable, Iterator, Sequence
 from pathlib import PurePath
 from typing import Any, Final
 from urllib.parse import quote
@@ -14,42 +14,69 @@ from tidegate.lint.engine import Review, RuleFault
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind
 from tidegate.lint.quantity import Dimension
+from tidegate.lint.reports.json_form import json_form
+from tidegate.lint.reports.json_report import settings_entry
 from tidegate.lint.reports.plain_text import plain
 from tidegate.lint.rule import Rule
+from tidegate.lint.settings import Settings
 from tidegate.lint.version import VERSION
 
 _SCHEMA: Final = "https://docs.oasis-open.org/sarif/sarif/v2.1.0/errata01/os/schemas/sarif-schema-2.1.0.json"
 _FINGERPRINT: Final = "tidegate/1"
+SEPARATOR: Final = ",\n"
+"""What stands between the results."""
 
 
-def sarif_text(results: Iterable[Sequence[dict[str, Any]]], rules: Sequence[Rule], *, ran: dict[str, Any]) -> str:
-    """One run: the results of every file in turn, the rules behind them, and how the tool was called."""
-    joined = [result for part in results for result in part]
-    index = {rule.id: number for number, rule in enumerate(rules)}
-    for result in joined:
-        if result["ruleId"] in index:
-            result["ruleIndex"] = index[result["ruleId"]]
+def results_text(results: Sequence[dict[str, Any]]) -> str:
+    """Results as they stand in the log."""
+    return SEPARATOR.join(json_form(result, depth=4) for result in results)
+
+
+def sarif_pieces(results: Iterable[str], rules: Sequence[Rule], *, ran: dict[str, Any]) -> Iterator[str]:
+    """One run, a piece at a time: how the tool was called, its rules, and the texts of all results between them."""
     run = {
         "tool": {"driver": _driver(rules)},
         "columnKind": "unicodeCodePoints",
         "invocations": [ran],
         "originalUriBaseIds": {"ROOT": {"description": {"text": "The folder in which the tool was called."}}},
-        "results": joined,
+        "results": [],
     }
     log = {"$schema": _SCHEMA, "version": "2.1.0", "runs": [run]}
-    return json.dumps(log, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+    head, _, foot = json_form(log).rpartition("[]")
+    yield f"{head}["
+    opened = False
+    for text in results:
+        yield text if opened else f"\n{text}"
+        opened = True
+    yield f"\n      ]{foot}\n" if opened else f"]{foot}\n"
 
 
 def invocation(
-    *, successful: bool, status: int, notifications: Sequence[dict[str, Any]], settings: str
+    *, status: int, notifications: Sequence[dict[str, Any]], settings: Sequence[Settings], rules: Sequence[Rule]
 ) -> dict[str, Any]:
     """How the run ended; files that could not be used and rules that failed themselves are notifications."""
-    return {
-        "executionSuccessful": successful,
+    ran: dict[str, Any] = {
+        "executionSuccessful": status in (0, 1),
         "exitCode": status,
         "toolExecutionNotifications": list(notifications),
-        "properties": {"settings": settings},
+        "properties": {"settings": [settings_entry(each) for each in settings]},
     }
+    if len(settings) == 1 and (overrides := list(_overrides(settings[0], rules))):
+        ran["ruleConfigurationOverrides"] = overrides
+    return ran
+
+
+def _overrides(settings: Settings, rules: Sequence[Rule]) -> Iterator[dict[str, Any]]:
+    """What the settings change of the rules; where there are several settings, only their properties say it."""
+    for index, rule in enumerate(rules):
+        level = settings.level_of(rule)
+        changes: dict[str, Any] = {}
+        if settings.leaves_out(rule):
+            changes["enabled"] = False
+        if level is not rule.level:
+            changes["level"] = level.value
+        if changes:
+            yield {"descriptor": {"id": rule.id, "index": index}, "configuration": changes}
 
 
 def _driver(rules: Sequence[Rule]) -> dict[str, Any]:
@@ -57,22 +84,27 @@ def _driver(rules: Sequence[Rule]) -> dict[str, Any]:
         "name": "tidegate",
         "version": VERSION,
         "semanticVersion": VERSION,
+        "informationUri": f"urn:tidegate:{VERSION}",
         "rules": [_rule(rule) for rule in rules],
     }
 
 
 def _rule(rule: Rule) -> dict[str, Any]:
     name = "".join(word.capitalize() for word in rule.id.replace("/", "_").split("_"))
-    help_text = f"{rule.proves}\n\nMend: {rule.mend}.\n\nSources: {'; '.join(rule.sources)}."
+    help_text = "\n\n".join(_text(part)["text"] for part in _help(rule))
     return {
         "id": rule.id,
         "name": name,
-        "shortDescription": {"text": _sentence(rule.title)},
-        "fullDescription": {"text": rule.proves},
+        "shortDescription": _text(_sentence(rule.title)),
+        "fullDescription": _text(rule.proves),
         "help": {"text": help_text},
         "defaultConfiguration": {"level": rule.level.value},
         "properties": {"family": rule.family, "appliesTo": rule.applies_to, "facts": list(rule.facts)},
     }
+
+
+def _help(rule: Rule) -> tuple[str, ...]:
+    return rule.proves, f"Mend: {rule.mend}.", f"Sources: {'; '.join(rule.sources)}."
 
 
 def _sentence(text: str) -> str:
@@ -90,15 +122,8 @@ def _result(review: Review, judgement: Judgement) -> dict[str, Any]:
         "ruleId": judgement.rule,
         "kind": judgement.kind.value,
         "level": judgement.level.value if judgement.kind is Kind.FAIL else "none",
-        "message": {"text": _message(judgement)},
-        "locations": [
-            {
-                "physicalLocation": _physical(place),
-                "logicalLocations": [
-                    {"name": judgement.subject, "fullyQualifiedName": judgement.at, "kind": "element"}
-                ],
-            }
-        ],
+        "message": _text(_message(judgement)),
+        "locations": [{"physicalLocation": _physical(place), "logicalLocations": [_logical(judgement)]}],
         "partialFingerprints": {_FINGERPRINT: _fingerprint(review, judgement)},
         "properties": _properties(judgement),
     }
@@ -109,6 +134,10 @@ def _result(review: Review, judgement: Judgement) -> dict[str, Any]:
     return result
 
 
+def _logical(judgement: Judgement) -> dict[str, str]:
+    return {"name": plain(judgement.subject), "fullyQualifiedName": plain(judgement.at), "kind": "element"}
+
+
 def _message(judgement: Judgement) -> str:
     parts = [f"{judgement.subject}: {judgement.message}"]
     if judgement.why:
@@ -117,7 +146,12 @@ def _message(judgement: Judgement) -> str:
         parts.append(f"Path: {path_text(judgement.path)}")
     if judgement.mend:
         parts.append(f"Mend: {judgement.mend}")
-    return ". ".join(plain(part) for part in parts) + "."
+    return ". ".join(parts) + "."
+
+
+def _text(text: str) -> dict[str, str]:
+    """A message that says the text: SARIF gives braces (3.11.5) and links in brackets (3.11.6) a meaning."""
+    return {"text": plain(text).replace("{", "{{").replace("}", "}}").replace("](", "] (")}
 
 
 def _fingerprint(review: Review, judgement: Judgement) -> str:
@@ -151,8 +185,8 @@ def _related(review: Review, judgement: Judgement) -> list[dict[str, Any]]:
         if element is None:
             continue
         place = review.loaded.sources.place((element.section, hop.element), key=True)
-        text = plain(f"{hop.by} {hop.element}".strip())
-        related.append({"id": number, "physicalLocation": _physical(place), "message": {"text": text}})
+        message = _text(f"{hop.by} {hop.element}".strip())
+        related.append({"id": number, "physicalLocation": _physical(place), "message": message})
     return related
 
 
@@ -166,8 +200,8 @@ def _physical(place: Place) -> dict[str, Any]:
 
 
 def _uri(file: str) -> str:
-    path = PurePath(file)
-    return path.as_uri() if path.is_absolute() else quote(path.as_posix())
+    path = PurePath(os.path.normpath(file))
+    return path.as_uri() if path.is_absolute() else quote(os.fsencode(path.as_posix()))
 
 
 def fault_notifications(faults: Sequence[Fault]) -> list[dict[str, Any]]:
@@ -175,7 +209,7 @@ def fault_notifications(faults: Sequence[Fault]) -> list[dict[str, Any]]:
     return [
         {
             "level": "error",
-            "message": {"text": plain(f"{fault}")},
+            "message": _text(str(fault)),
             "locations": [{"physicalLocation": _physical(fault.place)}],
         }
         for fault in faults
@@ -187,7 +221,7 @@ def rule_fault_notifications(faults: Sequence[RuleFault]) -> list[dict[str, Any]
     return [
         {
             "level": "error",
-            "message": {"text": plain(f"rule {fault.rule} failed on {fault.subject}: {fault.error}")},
+            "message": _text(f"rule {fault.rule} failed on {fault.subject}: {fault.error}"),
             "associatedRule": {"id": fault.rule},
         }
         for fault in faults

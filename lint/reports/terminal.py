@@ -106,6 +106,8 @@ def _head(review: Review, width: int) -> Iterator[Line]:
     yield _two_ends(title, file, width, "bold")
     if description.invented:
         yield _plain_line("invented for an example; nothing real stands behind it", "dim")
+    if review.settings.summary:
+        yield from _wrapped("", f"settings: {review.settings.summary}", width, indent=0, style="dim")
     counts = review.counts
     words = [
         _count(counts.get(Kind.FAIL, 0), "failure", "failures"),

@@ -171,11 +171,13 @@ def _grouped(whole: PictureGraph) -> PictureGraph:
         members.setdefault(group[box.id], []).append(box)
     boxes = []
     for name, inside in members.items():
-        noun = inside[0].noun if len(inside) == 1 else inside[0].section.replace("_", " ")
+        one = inside[0]
+        plural = one.section.replace("output_", "").replace("_", " ")
+        label, noun = (one.label, one.noun) if len(inside) == 1 else (f"{len(inside)} {plural}", plural)
         kinds = [kind.value for kind in _WORST if any(box.worst == kind.value for box in inside)]
         boxes.append(
             Box(
-                id=name, label=f"{len(inside)} {noun}", noun=noun, section=inside[0].section, lane=inside[0].lane,
+                id=name, label=label, noun=noun, section=one.section, lane=one.lane,
                 worst=kinds[0] if kinds else "", failing=any(box.failing for box in inside),
             )
         )  # fmt: skip
