@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass
 from typing import Any, TypeAlias
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.judgement import Judgement, Level
@@ -12,8 +13,7 @@ from tidegate.lint.judgement import Judgement, Level
 Judge: TypeAlias = "Callable[[Any, Case], Judgement]"
 
 
-@dataclass(frozen=True, slots=True)
-class Example:
+class Example(msgspec.Struct, frozen=True):
     """Two fragments of a description: with the first the rule fails, with the second it holds.
 
     A fragment is laid over the sound example that comes with the tool; a test does so for every rule.
@@ -23,8 +23,7 @@ class Example:
     holds: str
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Rule:
+class Rule(msgspec.Struct, frozen=True, kw_only=True):
     """What is judged, how, on which facts, and from which sources.
 
     ``judge`` is called once for every element of the section ``applies_to``, so that no element can be forgotten.

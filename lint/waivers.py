@@ -7,7 +7,6 @@ import math
 from collections import Counter
 from collections.abc import Callable, Container, Iterable, Sequence
 from contextlib import suppress
-from dataclasses import dataclass
 from typing import Any, Final, NoReturn
 
 import msgspec
@@ -19,8 +18,7 @@ from tidegate.lint.quantity import Dimension, QuantityError, parse, show
 from tidegate.lint.rule import Example, Rule
 
 
-@dataclass(frozen=True, slots=True)
-class PlacedWaiver:
+class PlacedWaiver(msgspec.Struct, frozen=True):
     """A waiver, its path in its file, and where it stands."""
 
     waiver: Waiver
@@ -28,8 +26,7 @@ class PlacedWaiver:
     place: Place
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Surroundings:
+class Surroundings(msgspec.Struct, frozen=True, kw_only=True):
     """What a waiver is held against."""
 
     today: datetime.date
@@ -84,8 +81,7 @@ def apply_waivers(
     return marked, on_waivers
 
 
-@dataclass(frozen=True, slots=True)
-class _Problem:
+class _Problem(msgspec.Struct, frozen=True):
     says: str
     mend: str
 

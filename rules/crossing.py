@@ -30,7 +30,7 @@ _LEANS: Final = (
 
 
 _LATE: Final = """output_stages:
-  late: {{driven_by: [uv], domain: analog, kind: buffer, inverting: false, hold: {hold}, works_from: 0.7 V,
+  late: {{driven_by: [uv_core], domain: analog, kind: buffer, inverting: false, hold: {hold}, works_from: 0.7 V,
     threshold: {{min: 0.4 V, max: 1.25 V}}, input_edge: 60 ns, drive: 8 kohm, leakage: 10 nA, load: 40 fF,
     delay: {{min: 5 ns, max: 60 ns}}}}
   onward: {{driven_by: [late], domain: aon, kind: buffer, inverting: false, hold: none, works_from: 0.7 V,
@@ -165,9 +165,7 @@ def input_is_held(stage: OutputStage, case: Case) -> Judgement:
     told = next((held for driver, _ in loose if (held := _after_a_hold(case, driver))), None)
     loose = [(driver, why) for driver, why in loose if not _after_a_hold(case, driver)]
     if not loose:
-        return case.not_applicable(
-            f"a driver comes after the hold of {told}, and may be dead (passive_default/chain_alive says so)"
-        )
+        return case.not_applicable(f"its driver comes after the hold of {told} (passive_default/chain_alive judges it)")
     driver, why = loose[0]
     says = f"what its output does while it cannot decide is not defined, and it {why}"
     return case.fails(
@@ -302,8 +300,8 @@ RULES: Final[tuple[Rule, ...]] = (
         "comparators",
         "detector",
         Example(
-            fails="comparators: {uv_core: {reference: ref_main}}",
-            holds="comparators: {uv_core: {reference: ref_fast}}",
+            fails="{comparators: {uv_core: {bias: bias_main}}, biases: {bias_main: {works_from: 1 V}}}",
+            holds="{comparators: {uv_core: {bias: bias_start}}, biases: {bias_main: {works_from: 1 V}}}",
         ),
     ),
     _always_on_rule(

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.detector import Comparator, Reference
@@ -20,8 +21,7 @@ _COMMON_PRACTICE: Final = (
 _ROUNDING: Final = 1e-9
 
 
-@dataclass(frozen=True, slots=True)
-class _Order:
+class _Order(msgspec.Struct, frozen=True):
     """Two levels of which the first must not be higher, in V; None where one is not given."""
 
     less_v: float | None

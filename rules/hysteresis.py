@@ -10,7 +10,7 @@ from tidegate.lint.derived.at_code import as_far_as_said
 from tidegate.lint.derived.hysteresis_need import disturbance, noise_v
 from tidegate.lint.derived.level_room import NEVER_APART, level_room
 from tidegate.lint.derived.logic_signal import origin
-from tidegate.lint.derived.placement_facts import PLACED_ROLES
+from tidegate.lint.derived.placement_facts import NOT_PLACED, PLACED_ROLES
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window, typical_hysteresis_v
 from tidegate.lint.description.model.detector import Comparator, Hysteresis, Switch
@@ -243,7 +243,7 @@ def hysteresis_fits_window(comparator: Comparator, case: Case) -> Judgement:
     if has_no_hysteresis(comparator):
         return case.not_applicable(_NO_HYSTERESIS)
     if comparator.role not in PLACED_ROLES:
-        return case.not_applicable("watches whether a reference is ready, not the range of a supply")
+        return case.not_applicable(NOT_PLACED)
     room = level_room(case, comparator)
     if room is None:
         return case.not_applicable("nothing that it guards sets it a limit (trip_window/release judges its levels)")

@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from functools import partial
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import as_shipped, at_code
@@ -75,8 +76,7 @@ def _at_every_code(comparator: Comparator, case: Case) -> Iterator[Comparator]:
         yield at_code(comparator, code)
 
 
-@dataclass(frozen=True, slots=True)
-class _Ends:
+class _Ends(msgspec.Struct, frozen=True):
     """The lowest and the highest of both levels, and the lowest falling one, in V."""
 
     least_v: float

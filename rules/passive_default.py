@@ -34,6 +34,9 @@ _STRETCH: Final = """output_stages:
     threshold: {{min: 0.4 V, max: 1.25 V}}, input_edge: 60 ns, load: 40 fF, delay: {{min: 5 ns, max: 60 ns}}}}
   core_out: {{driven_by: [uv_core, stretch]}}
 """  # a stage between two that are held
+_FIRM: Final = """output_stages: {{rst_out: {{drive: {{max: {drive}}}, load: 200 fF,
+  hold: {{to: low, through: resistor, resistance: {{min: 0.4 Mohm, max: 0.5 Mohm}}, coupling: 4 fF}}}}}}
+"""
 
 
 def _why_no_hold(case: Case, stage: OutputStage) -> str:
@@ -255,8 +258,8 @@ def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
     mend="a larger hold resistance, or a stronger stage",
     sources=("voltage divider (derived at the formula)", _LEVELS),
     example=Example(
-        fails="output_stages: {rst_out: {drive: {max: 400 kohm}}}",
-        holds="output_stages: {rst_out: {drive: {max: 8 kohm}}}",
+        fails=_FIRM.format(drive="200 kohm"),
+        holds=_FIRM.format(drive="8 kohm"),
     ),
     formulas=(hold.driven_level_v, hold.smallest_hold_for_driver_ohm, logic_levels.input_levels_v),
 )  # fmt: skip

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.lowest_decision import lowest_decision
@@ -159,8 +160,7 @@ def power_on_leans_on_nobody(comparator: Comparator, case: Case) -> Judgement:
     return case.passes(f"leans on nothing but {' and '.join(rails)}")
 
 
-@dataclass(frozen=True, slots=True)
-class _Other:
+class _Other(msgspec.Struct, frozen=True):
     """Something besides a supply that a detector's chain waits for."""
 
     says: str

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
 from enum import Enum
 from functools import partial
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.lowest_decision import LowestDecision, lowest_decision
@@ -76,8 +77,7 @@ def sources_are_up_in_time(comparator: Comparator, case: Case) -> Judgement:
     return _measured(case, worst, reach, waits)
 
 
-@dataclass(frozen=True, slots=True)
-class _Need:
+class _Need(msgspec.Struct, frozen=True):
     """The lowest supply of a source against the level at which it must work."""
 
     source: Bias | Reference
@@ -131,8 +131,7 @@ class _Order(Enum):
     OFF_CHIP = "not the description's to say"
 
 
-@dataclass(frozen=True, slots=True)
-class _Wait:
+class _Wait(msgspec.Struct, frozen=True):
     """Something that a detector leans on, and when its rail is up."""
 
     part: str

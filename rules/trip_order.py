@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from functools import partial
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import as_shipped
@@ -25,15 +26,13 @@ _V: Final = Dimension.VOLTAGE
 _PLACE: Final = {role: place for place, role in enumerate(PLACED_ROLES)}
 
 
-@dataclass(frozen=True, slots=True)
-class _Levels:
+class _Levels(msgspec.Struct, frozen=True):
     detector: Comparator
     falling: Window
     rising: Window
 
 
-@dataclass(frozen=True, slots=True)
-class _Step:
+class _Step(msgspec.Struct, frozen=True):
     """A level of one detector that must stay below a level of the next."""
 
     below: Comparator

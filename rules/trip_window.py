@@ -2,24 +2,23 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import as_shipped, at_code
+from tidegate.lint.derived.at_code import as_shipped
 from tidegate.lint.derived.guarded_loads import Bound, greatest_supplies, least_supplies
 from tidegate.lint.derived.level_margins import (
     LevelMargin,
     comes_back,
     guarantee,
+    hands_over,
     protects_nothing,
     quiet,
     sampled_too_seldom,
     short_at_once,
 )
 from tidegate.lint.derived.level_room import NEVER_APART, level_room, tracks_its_bound
-from tidegate.lint.derived.placement_facts import PLACED_ROLES
+from tidegate.lint.derived.placement_facts import NOT_PLACED, PLACED_ROLES
 from tidegate.lint.derived.response import response
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.derived.trip_levels import falling_window, rising_window
@@ -29,7 +28,7 @@ from tidegate.lint.physics import trip_margin, trip_window
 from tidegate.lint.physics.placement import Side
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
-from tidegate.rules import trip_crossover, trip_order
+from tidegate.rules import trip_codes, trip_crossover, trip_order
 
 _V: Final = Dimension.VOLTAGE
 _COMMON_PRACTICE: Final = "common practice, no source: the levels of a supply detector, their errors taken off, keep "
@@ -44,7 +43,7 @@ _RESPONSE: Final = ("comparators.*.delay, filter, sampling", "rails.*.collapse, 
 def _not_placed(comparator: Comparator, case: Case) -> Judgement | None:
     if comparator.role in PLACED_ROLES:
         return None
-    return case.not_applicable("watches whether a reference is ready, not the range of a supply")
+    return case.not_applicable(NOT_PLACED)
 
 
 def _nothing_leans(comparator: Comparator, case: Case) -> Judgement:
@@ -67,10 +66,14 @@ def _measured(comparator: Comparator, case: Case, found: LevelMargin, mend: str)
     )  # fmt: skip
 
 
-def _move(found: LevelMargin) -> str:
+def _move(case: Case, comparator: Comparator, found: LevelMargin) -> str:
     """By how much the levels, or their error, must change."""
-    way = "up" if found.side is Side.LEAST else "down"
-    return f"levels {show_up(-found.margin_v, _V)} further {way}, or an error that much smaller"
+    by = show_up(-found.margin_v, _V)
+    if not found.is_kept:
+        room = case.attempt(lambda: level_room(case, comparator))
+        if room is not None and not room.apart_by_description and not room.spread_fits:
+            return f"an error {by} smaller; to move the levels will not do (trip_window/spread says so)"
+    return f"levels {by} further {'up' if found.side is Side.LEAST else 'down'}, or an error that much smaller"
 
 
 @rule(
@@ -108,18 +111,25 @@ def guarded_before_out_of_range(comparator: Comparator, case: Case) -> Judgement
         return case.not_applicable("is placed by the level that lets go (trip_window/placement_sense says so)")
     short = short_at_once(case, shipped)
     if short is not None:
-        return _measured(comparator, case, short, _move(short))
+        return _measured(comparator, case, short, _move(case, comparator, short))
     found = guarantee(case, shipped)
     assert found is not None and found.bound is not None
     if not found.is_kept and tracks_its_bound(case, comparator, found):
         return case.not_applicable(
-            f"extreme against extreme its {found.level.value} level can lie {show(-found.margin_v, _V)} below what "
-            f"{found.bound.element} works from; both move with temperature, and trip_window/crossover_tracks compares "
-            "them at the same one"
+            f"extreme against extreme {_below(found)}; both move with temperature, and trip_window/crossover_tracks "
+            "compares them at the same one"
         )
+    if not found.is_kept and hands_over(case, comparator, found):
+        return case.not_applicable(f"{_below(found)} (hand_over/no_hole judges what holds reset there)")
     if not found.is_kept and sampled_too_seldom(case, comparator, found):
         return case.not_applicable("is sampled too seldom for what it guards (modes/sampling says so)")
-    return _measured(comparator, case, found, f"{_move(found)}{_faster(found)}")
+    return _measured(comparator, case, found, f"{_move(case, comparator, found)}{_faster(found)}")
+
+
+def _below(found: LevelMargin) -> str:
+    assert found.bound is not None
+    level, element = found.level.value, found.bound.element
+    return f"its {level} level can lie {show(-found.margin_v, _V)} below what {element} works from"
 
 
 def _faster(found: LevelMargin) -> str:
@@ -164,7 +174,7 @@ def quiet_in_service(comparator: Comparator, case: Case) -> Judgement:
     returns = case.attempt(lambda: comes_back(case, shipped))
     furthest = found if returns is None else min(found, returns, key=lambda level: level.margin_v)
     also = "" if furthest is found else " (so that it lets go in service too)"
-    return _measured(comparator, case, found, f"{_move(furthest)}{also}")
+    return _measured(comparator, case, found, f"{_move(case, comparator, furthest)}{also}")
 
 
 @rule(
@@ -201,7 +211,7 @@ def lets_go_in_range(comparator: Comparator, case: Case) -> Judgement:
     in_service = None if found.is_kept else case.attempt(lambda: quiet(case, as_shipped(case, comparator)))
     if in_service is not None and not in_service.is_kept:
         return case.not_applicable("it trips in service already (trip_window/nuisance says so)")
-    return _measured(comparator, case, found, f"{_move(found)}, or less hysteresis")
+    return _measured(comparator, case, found, f"{_move(case, comparator, found)}, or less hysteresis")
 
 
 @rule(
@@ -329,72 +339,13 @@ def spread_has_room(comparator: Comparator, case: Case) -> Judgement:
     )  # fmt: skip
 
 
-_CHECKS: Final[tuple[tuple[str, Callable[[Case, Comparator], LevelMargin | None]], ...]] = (
-    ("guarantee", guarantee), ("nuisance", quiet), ("release", comes_back),
-)  # fmt: skip
-
-
-@rule(
-    "trip_window/codes",
-    title="every code that can be chosen suits the rail",
-    level=Level.WARNING,
-    applies_to="comparators",
-    proves="trip_window/guarantee, nuisance and release hold at every code, not only at the one the part ships with. "
-    "Codes that do not suit the rail are named with what they are short of: a person must look whether they can be "
-    "chosen here, by a register, a fuse or a strap.",
-    facts=("comparators.*.codes", "comparators.*.ships_with", "and the facts of those three rules"),
-    mend="keep a code that does not suit the rail from being chosen",
-    sources=("common practice, no source: a level that can be selected is judged at every selection",),
-    example=Example(
-        fails="comparators: {uv: {ships_with: high, codes: {low: {rising: 1.6 V, falling: 1.55 V}, "
-        "high: {rising: 1.677 V, falling: 1.627 V}}}}",
-        holds="comparators: {uv: {ships_with: high, codes: {mid: {rising: 1.672 V, falling: 1.622 V}, "
-        "high: {rising: 1.677 V, falling: 1.627 V}}}}",
-    ),
-)
-def every_code_suits(comparator: Comparator, case: Case) -> Judgement:
-    """Judge the three margins at every code."""
-    if (other := _not_placed(comparator, case)) is not None:
-        return other
-    if not comparator.codes:
-        return case.not_applicable("its levels cannot be chosen")
-    case.own.must("ships_with")
-    found = _shortfalls(comparator, case)
-    usable = [code for code, short in found.items() if not short]
-    unusable = [code for code, short in found.items() if short]
-    rail, shipped = comparator.watches, comparator.ships_with
-    if not unusable:
-        return case.passes(f"every code suits {rail}: {', '.join(usable)}", at="codes")
-    why = "; ".join(f"{code}: {found[code]}" for code in unusable)
-    if not usable:
-        return case.fails(f"no code suits {rail}", why=why, mend="a code between the limits", at="codes")
-    ships = f"{shipped}, which it ships with, {'does not' if shipped in unusable else 'does'}"
-    return case.asks(
-        f"these codes suit {rail}: {', '.join(usable)}; these do not: {', '.join(unusable)} ({ships})",
-        why=why,
-        mend=f"ship with one of {', '.join(usable)}" if shipped in unusable else f"lock out {', '.join(unusable)}",
-        at="codes",
-    )
-
-
-def _shortfalls(comparator: Comparator, case: Case) -> dict[str, str]:
-    """What each code is short of; empty where it suits."""
-    asked = [(code, name, check) for code in comparator.codes for name, check in _CHECKS]
-    margins = case.gather_all([partial(check, case, at_code(comparator, code)) for code, _, check in asked])
-    short: dict[str, list[str]] = {code: [] for code in comparator.codes}
-    for (code, name, _), found in zip(asked, margins, strict=True):
-        if found is not None and not found.is_kept:
-            short[code].append(f"{show(-found.margin_v, _V)} short of trip_window/{name}")
-    return {code: ", ".join(texts) for code, texts in short.items()}
-
-
 RULES: Final[tuple[Rule, ...]] = (
     guarded_before_out_of_range,
     quiet_in_service,
     lets_go_in_range,
     asserted_level_is_placed,
     spread_has_room,
-    every_code_suits,
+    *trip_codes.RULES,
     *trip_order.RULES,
     *trip_crossover.RULES,
 )

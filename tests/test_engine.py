@@ -4,6 +4,7 @@ import datetime
 from collections.abc import Callable
 from pathlib import Path
 
+import msgspec
 import pytest
 
 from tidegate.lint.case import Case
@@ -64,7 +65,7 @@ def test_every_rule_judges_every_element_of_its_section_in_order(loaded: Loaded)
     found = review(loaded, Catalogue([(HIGH, second), (third,)]), today=TODAY)
     assert [(judgement.rule, judgement.subject) for judgement in found.judgements] == [
         ("supply/high_enough", "avdd"), ("supply/second", "avdd"), ("supply/high_enough", "vcore"),
-        ("supply/second", "vcore"), ("domain/third", "aon"), ("waiver/still_right", "waivers[0]"),
+        ("supply/second", "vcore"), ("domain/third", "aon"), ("waiver/still_right", "supply/high_enough on vcore"),
     ]  # fmt: skip
     assert found.counts == {Kind.PASS: 4, Kind.FAIL: 1, Kind.NOT_APPLICABLE: 1}
 
@@ -139,7 +140,7 @@ def test_a_rule_that_raises_is_at_fault_and_hides_no_finding(loaded: Loaded) -> 
     judged = [(judgement.rule, judgement.subject, judgement.kind) for judgement in found.judgements]
     assert judged == [
         ("supply/high_enough", "avdd", Kind.PASS), ("supply/high_enough", "vcore", Kind.FAIL),
-        ("waiver/still_right", "waivers[0]", Kind.PASS),
+        ("waiver/still_right", "supply/high_enough on vcore", Kind.PASS),
     ]  # fmt: skip
 
 
@@ -168,6 +169,9 @@ def test_settings_are_in_force(loaded: Loaded) -> None:
     assert by_family["domain/other", "aon"].level is Level.WARNING
     left_out = answers(loaded, HIGH, other, settings=Settings(leave_out=("supply", "waiver/still_right")))
     assert list(left_out) == [("domain/other", "aon")]
+    unjudged = answers(loaded, HIGH, settings=Settings(leave_out=("waiver",)))
+    assert list(unjudged) == [("supply/high_enough", "avdd"), ("supply/high_enough", "vcore")]
+    assert unjudged["supply/high_enough", "vcore"].waiver  # the waiver is in force, only not judged
     asked = Settings(least_margins={"supply/high_enough": "0.4 V"})
     short = answers(loaded, HIGH, settings=asked)["supply/high_enough", "avdd"]
     assert short.kind is Kind.FAIL
@@ -193,8 +197,36 @@ def test_settings_that_name_what_nobody_has(loaded: Loaded) -> None:
         ("leave_out", "no rule or family is called 'suply'")
     ]
     wrong = Settings(file="s.yaml", least_margins={"supply/high_enough": "4 ohm"})
-    with pytest.raises(DescriptionError, match="supply/high_enough"):
+    with pytest.raises(DescriptionError) as refused:
         review(loaded, Catalogue([(HIGH,)]), today=TODAY, settings=wrong)
+    assert [str(fault) for fault in refused.value.faults] == [
+        "s.yaml: least_margins.supply/high_enough: the margin of supply/high_enough is a voltage (found '4 ohm'); "
+        "write a voltage, such as +300 mV, or a share of the need, such as 2 %"
+    ]
+
+
+def test_a_rule_answers_for_itself_alone(loaded: Loaded) -> None:
+    def improper(_: object, case: Case) -> object:
+        answer = case.passes("well")
+        if case.subject.id == "avdd":
+            return msgspec.structs.replace(answer, rule="supply/high_enough", subject="vcore")
+        return msgspec.structs.replace(answer, waiver="agreed with myself")
+
+    def no_number(_: object, case: Case) -> Judgement:
+        return case.at_least(need=1.0, have=float("nan"), dimension=Dimension.VOLTAGE, says="level")
+
+    def leaves(_: object, _case: Case) -> Judgement:
+        raise SystemExit(0)
+
+    rules = (made("a/improper", improper), made("a/no_number", no_number), made("a/leaves", leaves))
+    found = review(loaded, Catalogue([rules]), today=TODAY)
+    assert [(fault.rule, fault.error) for fault in found.faults if fault.subject == "avdd"] == [
+        ("a/improper", "answered for supply/high_enough on vcore"),
+        ("a/no_number", "answered with a number that is none"),
+        ("a/leaves", "SystemExit: 0"),
+    ]
+    assert ("a/improper", "waived its own finding") in [(fault.rule, fault.error) for fault in found.faults]
+    assert [judgement.rule for judgement in found.judgements] == ["waiver/still_right"]
 
 
 def test_a_judgement_knows_its_place(loaded: Loaded) -> None:

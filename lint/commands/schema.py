@@ -3,15 +3,19 @@
 from __future__ import annotations
 
 import argparse
+from typing import Final
 
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.description.load import schema_text
+
+WHICH: Final = ("description", "settings", "report", "comparison")
+"""The schemas that come with the tool."""
 
 
 def configure(parser: argparse.ArgumentParser) -> None:
     """Declare the options."""
     parser.add_argument(
-        "which", nargs="?", choices=("description", "settings", "report", "comparison"), default="description",
+        "which", nargs="?", choices=WHICH, default="description",
         help="schema of a description (default), of a settings file, or of the JSON of review or of compare",
     )  # fmt: skip
 

@@ -5,9 +5,10 @@ from __future__ import annotations
 import argparse
 import textwrap
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass
 from difflib import get_close_matches
 from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.description.load import description_schema
@@ -34,8 +35,7 @@ _LATER: Final = frozenset(
 )  # fmt: skip
 
 
-@dataclass(frozen=True, slots=True)
-class Plan:
+class Plan(msgspec.Struct, frozen=True):
     """Rails with their nominal voltages, and the roles of the detectors wanted on each."""
 
     rails: Mapping[str, str]

@@ -6,9 +6,10 @@ import datetime
 import os
 import shutil
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
 from enum import IntEnum
 from typing import TYPE_CHECKING, TextIO
+
+import msgspec
 
 if TYPE_CHECKING:
     from rich.console import Console
@@ -25,8 +26,7 @@ class Exit(IntEnum):
     RULE_FAULT = 3
 
 
-@dataclass(frozen=True, slots=True)
-class Streams:
+class Streams(msgspec.Struct, frozen=True):
     """Output, errors, the date and the rules; made by the command line, handed to every command."""
 
     out: TextIO

@@ -5,10 +5,14 @@
 #    source ~/.local/share/bash_completion/tidegate
 # See also: https://github.com/scop/bash-completion/blob/main/doc/configuration.md
 
-_shtab_tidegate_subparsers=(review rules trace start compare schema completion)
+_shtab_tidegate_subparsers=(review margins place ramp rules draw trace start compare schema completion)
 
 _shtab_tidegate_review_option_strings=(-h --help --as --save --every --fail-at --also --settings --pack --workers --on)
-_shtab_tidegate_rules_option_strings=(-h --help)
+_shtab_tidegate_margins_option_strings=(-h --help --element --family --as --settings --pack)
+_shtab_tidegate_place_option_strings=(-h --help --as --apply --yield --samples --seed --settings)
+_shtab_tidegate_ramp_option_strings=(-h --help --scenario --as)
+_shtab_tidegate_rules_option_strings=(-h --help --pack)
+_shtab_tidegate_draw_option_strings=(-h --help --of --as --save --settings --pack)
 _shtab_tidegate_trace_option_strings=(-h --help)
 _shtab_tidegate_start_option_strings=(-h --help --rail --watch)
 _shtab_tidegate_compare_option_strings=(-h --help --as --settings --pack)
@@ -18,20 +22,35 @@ _shtab_tidegate_option_strings=(-h --help --version)
 
 
 
-_shtab_tidegate_review___as_choices=(terminal json sarif markdown)
+_shtab_tidegate_review___as_choices=(terminal json sarif markdown html)
 _shtab_tidegate_review___fail_at_choices=(error warning note)
 _shtab_tidegate_review___also_choices=(open review)
+_shtab_tidegate_margins___as_choices=(terminal json)
+_shtab_tidegate_place___as_choices=(terminal json)
+_shtab_tidegate_ramp___as_choices=(terminal json)
+_shtab_tidegate_draw_pos_1_choices=(ladder timeline graph)
+_shtab_tidegate_draw___as_choices=(svg dot graphml)
 _shtab_tidegate_compare___as_choices=(terminal markdown json)
-_shtab_tidegate_schema_pos_0_choices=(description report)
+_shtab_tidegate_schema_pos_0_choices=(description settings report comparison)
 _shtab_tidegate_completion_pos_0_choices=(bash zsh tcsh)
-_shtab_tidegate_pos_0_choices=(review rules trace start compare schema completion)
+_shtab_tidegate_pos_0_choices=(review margins place ramp rules draw trace start compare schema completion)
 
 _shtab_tidegate_review_pos_0_nargs=+
 _shtab_tidegate_review__h_nargs=0
 _shtab_tidegate_review___help_nargs=0
 _shtab_tidegate_review___every_nargs=0
+_shtab_tidegate_margins__h_nargs=0
+_shtab_tidegate_margins___help_nargs=0
+_shtab_tidegate_place__h_nargs=0
+_shtab_tidegate_place___help_nargs=0
+_shtab_tidegate_place___apply_nargs=0
+_shtab_tidegate_place___yield_nargs=0
+_shtab_tidegate_ramp__h_nargs=0
+_shtab_tidegate_ramp___help_nargs=0
 _shtab_tidegate_rules__h_nargs=0
 _shtab_tidegate_rules___help_nargs=0
+_shtab_tidegate_draw__h_nargs=0
+_shtab_tidegate_draw___help_nargs=0
 _shtab_tidegate_trace__h_nargs=0
 _shtab_tidegate_trace___help_nargs=0
 _shtab_tidegate_start__h_nargs=0

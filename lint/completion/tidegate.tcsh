@@ -8,17 +8,22 @@
 
 
 complete tidegate \
-        'c/--as=/(terminal json sarif markdown)/' \
+        'c/--as=/(terminal json sarif markdown html)/' \
         'c/--fail-at=/(error warning note)/' \
         'c/--also=/(open review)/' \
+        'c/--as=/(terminal json)/' \
+        'c/--as=/(svg dot graphml)/' \
         'c/--as=/(terminal markdown json)/' \
-        'c/--/(also as every fail-at help on pack rail save settings version watch workers)/' \
+        'c/--/(also apply as element every fail-at family help of on pack rail samples save scenario seed settings version watch workers yield)/' \
         'c/-/(- h)/' \
-        'n/--as/(terminal json sarif markdown)/' \
+        'n/--as/(terminal json sarif markdown html)/' \
         'n/--fail-at/(error warning note)/' \
         'n/--also/(open review)/' \
+        'n/--as/(terminal json)/' \
+        'n/--as/(svg dot graphml)/' \
         'n/--as/(terminal markdown json)/' \
-        'p/1/(review rules trace start compare schema completion)/' \
-        'n/schema/(description report)/' \
+        'p/1/(review margins place ramp rules draw trace start compare schema completion)/' \
+        'n/schema/(description settings report comparison)/' \
         'n/completion/(bash zsh tcsh)/' \
+        'p@3@`set cmd=($COMMAND_LINE "" "" "" "" "" "" "" "" ""); if ( $#cmd >= 2 && ("$cmd[2]" == "draw") ) echo ladder timeline graph`@' \
         'p/*/()/'

@@ -12,6 +12,10 @@ _shtab_tidegate_commands() {
   local _commands=(
     compare:'What changed between two revisions of a description.'
     completion:'The completion script of a shell.'
+    draw:'One picture alone: ladder, timeline or graph.'
+    margins:'Every judgement with a number, least margin first.'
+    place:'Where trip levels may lie, what limits them, and what buys room.'
+    ramp:'Timelines of start-up, power-down and dips, earliest and latest.'
     review:'Judge descriptions: the main job.'
     rules:'The catalogue of rules, or one rule in full.'
     schema:'The JSON Schema of a description, for editors.'
@@ -49,10 +53,62 @@ _shtab_tidegate_completion_options=(
 # guard to ensure default positional specs are added only once per session
 _shtab_tidegate_completion_defaults_added=0
 
+_shtab_tidegate_draw_options=(
+  "(- : *)"{-h,--help}"[show this help message and exit]"
+  "--of[one rail (of a ladder) or one scenario (of a timeline)\; all of them by default]:NAME:"
+  "--as[svg (usual)\; of a graph also dot or graphml, for other programs]:FORM:(svg dot graphml)"
+  "--save[write to a file instead of the output]:PATH:"
+  "--settings[settings, in place of the nearest tidegate.settings.yaml]:FILE:"
+  "*--pack[Python file with rules of your own]:FILE:"
+  ":description (YAML or JSON):"
+  ":ladder, timeline or graph:(ladder timeline graph)"
+)
+
+# guard to ensure default positional specs are added only once per session
+_shtab_tidegate_draw_defaults_added=0
+
+_shtab_tidegate_margins_options=(
+  "(- : *)"{-h,--help}"[show this help message and exit]"
+  "--element[only the judgements about one element]:ID:"
+  "--family[only the judgements of one family of rules, such as hysteresis]:NAME:"
+  "--as[form of the ledger]:form:(terminal json)"
+  "--settings[settings, in place of the nearest tidegate.settings.yaml]:FILE:"
+  "*--pack[Python file with rules of your own]:FILE:"
+  ":description (YAML or JSON):"
+)
+
+# guard to ensure default positional specs are added only once per session
+_shtab_tidegate_margins_defaults_added=0
+
+_shtab_tidegate_place_options=(
+  "(- : *)"{-h,--help}"[show this help message and exit]"
+  "--as[form of the answer]:form:(terminal json)"
+  "--apply[write the middle of the interval into the file, and nothing else]"
+  "--yield[draw parts, and count those that miss a limit]"
+  "--samples[parts to draw (usual\: 1000000, most\: 10000000)]:N:"
+  "--seed[seed of the draws (usual\: 1)]:N:"
+  "--settings[settings, in place of the nearest tidegate.settings.yaml]:FILE:"
+  ":description (YAML or JSON):"
+  ":id of the detector\; all of them if left out:"
+)
+
+# guard to ensure default positional specs are added only once per session
+_shtab_tidegate_place_defaults_added=0
+
+_shtab_tidegate_ramp_options=(
+  "(- : *)"{-h,--help}"[show this help message and exit]"
+  "--scenario[one scenario\; without it, start-ups and power-downs are drawn, and the others named at the end]:NAME:"
+  "--as[form of the timelines (default\: terminal)]:form:(terminal json)"
+  ":description (YAML or JSON):"
+)
+
+# guard to ensure default positional specs are added only once per session
+_shtab_tidegate_ramp_defaults_added=0
+
 _shtab_tidegate_review_options=(
   "(- : *)"{-h,--help}"[show this help message and exit]"
-  "--as[form of the report on the output (default\: terminal)]:form:(terminal json sarif markdown)"
-  "*--save[write the report to a file too, in the form its ending says (.txt, .json, .sarif, .md)\; may be given again]:PATH:"
+  "--as[form of the report on the output (default\: terminal)]:form:(terminal json sarif markdown html)"
+  "*--save[write the report to a file too, in the form its ending says (.txt, .json, .sarif, .md, .html)\; may be given again]:PATH:"
   "--every[show in text every judgement, those that pass as well]"
   "--fail-at[least level of a failure that makes the exit status 1\: error, warning (usual) or note]:LEVEL:(error warning note)"
   "*--also[let judgements of this kind, open or review, make the exit status 1 too\; may be given twice]:KIND:(open review)"
@@ -68,6 +124,7 @@ _shtab_tidegate_review_defaults_added=0
 
 _shtab_tidegate_rules_options=(
   "(- : *)"{-h,--help}"[show this help message and exit]"
+  "*--pack[Python file with rules of your own]:FILE:"
   ":a rule (family\/name) or a family\; all of them if left out:"
 )
 
@@ -76,7 +133,7 @@ _shtab_tidegate_rules_defaults_added=0
 
 _shtab_tidegate_schema_options=(
   "(- : *)"{-h,--help}"[show this help message and exit]"
-  ":schema of the description (default) or of the JSON report:(description report)"
+  ":schema of a description (default), of a settings file, or of the JSON of review or of compare:(description settings report comparison)"
 )
 
 # guard to ensure default positional specs are added only once per session
@@ -121,6 +178,10 @@ _shtab_tidegate() {
       case $line[1] in
         compare) _arguments -C -s $_shtab_tidegate_compare_options ;;
         completion) _arguments -C -s $_shtab_tidegate_completion_options ;;
+        draw) _arguments -C -s $_shtab_tidegate_draw_options ;;
+        margins) _arguments -C -s $_shtab_tidegate_margins_options ;;
+        place) _arguments -C -s $_shtab_tidegate_place_options ;;
+        ramp) _arguments -C -s $_shtab_tidegate_ramp_options ;;
         review) _arguments -C -s $_shtab_tidegate_review_options ;;
         rules) _arguments -C -s $_shtab_tidegate_rules_options ;;
         schema) _arguments -C -s $_shtab_tidegate_schema_options ;;

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from typing import TypeVar
+
+import msgspec
 
 from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.description.model.description import Description
@@ -15,8 +16,7 @@ from tidegate.lint.physics.domain import DomainError
 _A = TypeVar("_A")
 
 
-@dataclass(frozen=True, slots=True)
-class Unknown:
+class Unknown(msgspec.Struct, frozen=True):
     """Why there is no answer: facts that are missing, or a sentence."""
 
     missing: tuple[str, ...]

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
 from itertools import pairwise
 from typing import Generic, TypeVar
+
+import msgspec
 
 from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.derived.disturbance import disturbers, ignored_s
@@ -23,8 +24,7 @@ from tidegate.lint.quantity import Dimension
 _A = TypeVar("_A")
 
 
-@dataclass(frozen=True, slots=True)
-class Push:
+class Push(msgspec.Struct, frozen=True):
     """One decision moves the level of a comparator."""
 
     by: str
@@ -61,8 +61,7 @@ class Push:
         return self.toggles or not self.known
 
 
-@dataclass(frozen=True, slots=True)
-class Ring:
+class Ring(msgspec.Struct, frozen=True):
     """Comparators that push each other round, and the way round on which they do it most strongly."""
 
     members: tuple[str, ...]
@@ -144,8 +143,7 @@ class _Drivers:
                 yield (Hop(first.element, ""), *(Hop(hop.element, "drives") for hop in rest))
 
 
-@dataclass(frozen=True, slots=True)
-class _Answer(Generic[_A]):
+class _Answer(msgspec.Struct, Generic[_A], frozen=True):
     """What a question about facts gave, or what it lacked."""
 
     value: _A | None

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping
-from dataclasses import dataclass
 from enum import Enum
+
+import msgspec
 
 from tidegate.lint.case import Case, Facts
 from tidegate.lint.description.model.detector import Comparator, Crossover
@@ -23,8 +24,7 @@ class Crossing(Enum):
     CRUDE = "the crude current overtakes the reference current in service"
 
 
-@dataclass(frozen=True, slots=True)
-class JunctionFacts:
+class JunctionFacts(msgspec.Struct, frozen=True):
     """What is the same for a junction at every corner.
 
     Symbols:
@@ -40,8 +40,7 @@ class JunctionFacts:
     emission: float
 
 
-@dataclass(frozen=True, slots=True)
-class TransistorFacts:
+class TransistorFacts(msgspec.Struct, frozen=True):
     """What is the same for a diode-connected MOS device at every corner.
 
     Symbols:
@@ -53,8 +52,7 @@ class TransistorFacts:
     slope_factor: float
 
 
-@dataclass(frozen=True, slots=True)
-class CrossoverFacts:
+class CrossoverFacts(msgspec.Struct, frozen=True):
     """A crossing whose level can be solved at any corner and temperature.
 
     Symbols:

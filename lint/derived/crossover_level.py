@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import itertools
 from collections.abc import Callable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
 from functools import cached_property, partial
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.crossover_facts import (
@@ -28,8 +29,7 @@ _REFINEMENTS: Final = 3
 Corner = Mapping[str, float]
 
 
-@dataclass(frozen=True, slots=True)
-class Place:
+class Place(msgspec.Struct, frozen=True):
     """A level at one corner and temperature.
 
     Symbols:

@@ -6,9 +6,9 @@ A review solves the same corners one by one (``crossover_level``), so that it ne
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from typing import Final, TypeVar
 
+import msgspec
 import numpy as np
 
 from tidegate.lint.case import Case
@@ -42,8 +42,7 @@ _POINTS: Final = 33
 _A = TypeVar("_A")
 
 
-@dataclass(frozen=True, slots=True)
-class Tracking:
+class Tracking(msgspec.Struct, frozen=True):
     """The least room between the level and what must work once it lets go, at equal temperature and corner.
 
     Symbols:
@@ -59,8 +58,7 @@ class Tracking:
     hysteresis_v: float
 
 
-@dataclass(frozen=True, slots=True)
-class SecondCrossing:
+class SecondCrossing(msgspec.Struct, frozen=True):
     """Where a crude current overtakes the reference again, and the highest supply in service.
 
     Symbols:
@@ -72,8 +70,7 @@ class SecondCrossing:
     in_service_v: float
 
 
-@dataclass(frozen=True, slots=True)
-class CrossoverSweep:
+class CrossoverSweep(msgspec.Struct, frozen=True):
     """What the components of a crossover make; None where there is no such question."""
 
     level: Spread | Unknown

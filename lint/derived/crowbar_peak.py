@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.rail_of import rail_of
@@ -11,8 +11,7 @@ from tidegate.lint.physics import crowbar
 from tidegate.lint.quantity import Dimension, show
 
 
-@dataclass(frozen=True, slots=True)
-class Crowbar:
+class Crowbar(msgspec.Struct, frozen=True):
     """The peak, and the inverter it was worked out from; None where the peak is stated."""
 
     peak_a: float

@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, replace
+
+import msgspec
+from msgspec.structs import replace
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import Unknown, ask
@@ -19,8 +21,7 @@ from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.graph.dependency import Graph
 
 
-@dataclass(frozen=True, slots=True)
-class DetectorPlacement:
+class DetectorPlacement(msgspec.Struct, frozen=True):
     """One detector, and what can be said about its levels.
 
     Symbols:

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass
 from functools import partial
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.disturbed_node import ReferenceNode, coupled_edge, rail_share, reference_node
@@ -14,8 +15,7 @@ from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.physics import coupling
 
 
-@dataclass(frozen=True, slots=True)
-class Bump:
+class Bump(msgspec.Struct, frozen=True):
     """A disturbance that one element leaves on the level of another, referred to the rail that the victim watches."""
 
     aggressor: str
@@ -30,8 +30,7 @@ class Bump:
     """Path of the fact that its size rests on most."""
 
 
-@dataclass(frozen=True, slots=True)
-class Disturber:
+class Disturber(msgspec.Struct, frozen=True):
     """What can disturb a comparator, and the way on which it does; its bump is yet to be worked out."""
 
     aggressor: str

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from math import inf
+
+import msgspec
 
 from tidegate.lint.case import Case, Facts
 from tidegate.lint.derived.input_share import input_share
@@ -13,8 +14,7 @@ from tidegate.lint.physics import coupling
 from tidegate.lint.physics.lasting_bump import decayed_kick_v, lasting_bump_v
 
 
-@dataclass(frozen=True, slots=True)
-class CoupledEdge:
+class CoupledEdge(msgspec.Struct, frozen=True):
     """The worst edge of a neighbour, and the node that it couples into."""
 
     step_v: float
@@ -75,8 +75,7 @@ def rail_share(case: Case, facts: Facts, victim: Comparator) -> float:
     return 1.0 if facts.must("at") == "rail" else input_share(case, victim)
 
 
-@dataclass(frozen=True, slots=True)
-class ReferenceNode:
+class ReferenceNode(msgspec.Struct, frozen=True):
     """A decoupled reference, which gives a charge thrown onto it back through its source resistance."""
 
     least_c_f: float

@@ -3,14 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.guarded_loads import Bound
 
 
-@dataclass(frozen=True, slots=True)
-class FollowerLine:
+class FollowerLine(msgspec.Struct, frozen=True):
     """The supply that an element needs: a straight line over temperature.
 
     Symbols:

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.detector import Comparator
@@ -14,8 +15,7 @@ from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.graph.paths import Reach, drives
 
 
-@dataclass(frozen=True, slots=True)
-class Bound:
+class Bound(msgspec.Struct, frozen=True):
     """A supply level that an element sets, in V, with the fact that says so and the way to the element."""
 
     level_v: float

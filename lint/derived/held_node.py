@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from functools import partial
 from typing import Final, Literal, TypeAlias
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.rail_of import delivered_v, rail_of
@@ -39,8 +40,7 @@ def drives_reset(case: Case, stage: OutputStage) -> bool:
     return any(isinstance(reader, Reset) for reader in reads_it(case, stage))
 
 
-@dataclass(frozen=True, slots=True)
-class HeldNode:
+class HeldNode(msgspec.Struct, frozen=True):
     """A node that nothing drives, with the worst of everything that moves it away from its level."""
 
     hold_ohm: float
@@ -123,8 +123,7 @@ def held_node(case: Case, stage: OutputStage) -> HeldNode:
     return HeldNode(hold_ohm, leakage_a, coupling_f, load_f, slope_v_per_s, rise_s)
 
 
-@dataclass(frozen=True, slots=True)
-class SureLevel:
+class SureLevel(msgspec.Struct, frozen=True):
     """A level that one reader surely takes for what is meant, in V from its ground."""
 
     reader: str

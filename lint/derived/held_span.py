@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from functools import partial
 from typing import Literal
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import as_shipped
@@ -18,8 +19,7 @@ from tidegate.lint.description.model.detector import Bias, Comparator, Reference
 Way = Literal["up", "down"]
 
 
-@dataclass(frozen=True, slots=True)
-class HeldSpan:
+class HeldSpan(msgspec.Struct, frozen=True):
     """Where a detector holds reset on the way up or down: from the level at which it decides to the one at which it
     lets go, at the extremes, in V."""
 
@@ -32,8 +32,7 @@ class HeldSpan:
     typical_to_v: float | None
 
 
-@dataclass(frozen=True, slots=True)
-class Step:
+class Step(msgspec.Struct, frozen=True):
     """Where one detector of a stack takes over from another, seen from the lowest supply up."""
 
     below: HeldSpan

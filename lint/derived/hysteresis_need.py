@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.disturbance import bumps_on, ignored_s
@@ -12,8 +12,7 @@ from tidegate.lint.physics import hysteresis
 from tidegate.lint.quantity import Dimension, show
 
 
-@dataclass(frozen=True, slots=True)
-class Disturbance:
+class Disturbance(msgspec.Struct, frozen=True):
     """What the hysteresis must cover besides noise, in V at the rail."""
 
     ripple_v: float

@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
 from typing import Final
+
+import msgspec
+from msgspec.structs import replace
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.follower_supplies import follower_supplies
@@ -19,8 +21,7 @@ from tidegate.lint.quantity import Dimension, show
 _V: Final = Dimension.VOLTAGE
 
 
-@dataclass(frozen=True, slots=True)
-class LevelMargin:
+class LevelMargin(msgspec.Struct, frozen=True):
     """One end of a level against the limit that it must keep."""
 
     level: Level
@@ -135,6 +136,21 @@ def _power_on_guarantee(case: Case, comparator: Comparator) -> LevelMargin:
     end_v = min(rising.least_v, falling.least_v)
     why = f"{first.element} works from {show(first.level_v, _V)}"
     return LevelMargin(level, Side.LEAST, end_v, first.level_v, why, first)
+
+
+def hands_over(case: Case, comparator: Comparator, found: LevelMargin) -> bool:
+    """Whether what a power-on detector must not let go below is an under-voltage detector of its rail, or its source.
+
+    Whether anything holds reset in between hangs on the whole stack of detectors, and on what they do while they
+    cannot decide.
+    """
+    if comparator.role != "power_on" or found.bound is None:
+        return False
+    onward = (case.graph.elements[hop.element] for hop in found.bound.path)
+    return found.bound.element not in case.description.loads and any(
+        isinstance(one, Comparator) and one.role == "under_voltage" and one.watches == comparator.watches
+        for one in onward
+    )
 
 
 def quiet(case: Case, comparator: Comparator) -> LevelMargin:

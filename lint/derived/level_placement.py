@@ -4,8 +4,10 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping
-from dataclasses import dataclass, replace
 from typing import Final
+
+import msgspec
+from msgspec.structs import replace
 
 from tidegate.lint.derived.placement_facts import PlacementFacts, limits, nominal_limits, spread_of
 from tidegate.lint.physics.placement import (
@@ -22,8 +24,7 @@ from tidegate.lint.physics.trip_window import Window
 _MOST_STEPS: Final = 60
 
 
-@dataclass(frozen=True, slots=True)
-class LevelPlacement:
+class LevelPlacement(msgspec.Struct, frozen=True):
     """The answer for one detector.
 
     Symbols:

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import as_shipped
@@ -24,8 +25,7 @@ NEVER_APART: Final = "what it guards does not work in all the range delivered (d
 """Why there is no room to judge, where the description itself leaves none."""
 
 
-@dataclass(frozen=True, slots=True)
-class LevelRoom:
+class LevelRoom(msgspec.Struct, frozen=True):
     """The room between the limit of the level that protects and that of the level that lets go, in V."""
 
     protects: LevelMargin

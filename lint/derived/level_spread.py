@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
 from typing import Final
+
+import msgspec
+from msgspec.structs import replace
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import NoAnswerError
@@ -17,8 +19,7 @@ _MOST_STEPS: Final = 200
 _SETTLED: Final = 1e-15
 
 
-@dataclass(frozen=True, slots=True)
-class PlacedError:
+class PlacedError(msgspec.Struct, frozen=True):
     """An error contributor, for any place of the level: a part that stays, in V, and a share of the level."""
 
     at_zero: Contributor
@@ -34,8 +35,7 @@ class PlacedError:
         return PlacedError(smaller, self.share * factor)
 
 
-@dataclass(frozen=True, slots=True)
-class LevelSpread:
+class LevelSpread(msgspec.Struct, frozen=True):
     """Error of one level either way: a fixed half-width, and contributors that may scale with the level.
 
     The contributors are those of a level ``above_base_v`` further down: that of the other level, where this one is
@@ -71,8 +71,7 @@ class LevelSpread:
         return level_v
 
 
-@dataclass(frozen=True, slots=True)
-class LevelSpreads:
+class LevelSpreads(msgspec.Struct, frozen=True):
     """The spreads of both levels, how far apart they are, and where the description places them today, in V."""
 
     falling: LevelSpread

@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
 from typing import Final
+
+import msgspec
+from msgspec.structs import replace
 
 from tidegate.lint.derived.level_placement import LevelPlacement, place_levels, with_hysteresis
 from tidegate.lint.derived.level_spread import LevelSpread
@@ -21,8 +23,7 @@ _V: Final = Dimension.VOLTAGE
 _S: Final = Dimension.DURATION
 
 
-@dataclass(frozen=True, slots=True)
-class Lever:
+class Lever(msgspec.Struct, frozen=True):
     """One change: what, from which value to which, the fact it changes, and the room it adds, in V."""
 
     what: str

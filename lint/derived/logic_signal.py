@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.reset_path import OutputStage
@@ -11,8 +12,7 @@ from tidegate.lint.description.model.reset_path import OutputStage
 _SAID_BY_KIND: Final = {"inverter": True, "buffer": False}
 
 
-@dataclass(frozen=True, slots=True)
-class Origin:
+class Origin(msgspec.Struct, frozen=True):
     """The element that makes a signal, and whether the signal is its inverse."""
 
     element: str

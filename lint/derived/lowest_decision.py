@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import partial
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import at_code
@@ -13,8 +14,7 @@ from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.quantity import Dimension, show
 
 
-@dataclass(frozen=True, slots=True)
-class LowestDecision:
+class LowestDecision(msgspec.Struct, frozen=True):
     """The lowest level of a rail at which something fed from it must work, and why."""
 
     level_v: float

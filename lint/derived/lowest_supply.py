@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.detector import Bias, Reference
 from tidegate.lint.quantity import Dimension, show
 
 
-@dataclass(frozen=True, slots=True)
-class LowestSupply:
+class LowestSupply(msgspec.Struct, frozen=True):
     """The lowest supply at which something works at the worst temperature, and which that is."""
 
     level_v: float

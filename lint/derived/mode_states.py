@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
 from functools import lru_cache
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.description.model.description import Description, Mode
 from tidegate.lint.description.model.detector import Comparator
@@ -21,8 +22,7 @@ _SLEEPS_WITH: Final = frozenset(
 """What an element that leans on a sleeping one cannot do without."""
 
 
-@dataclass(frozen=True, slots=True)
-class Asleep:
+class Asleep(msgspec.Struct, frozen=True):
     """Why an element does nothing in a mode: what is off, or itself where it is masked."""
 
     because: str

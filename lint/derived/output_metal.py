@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case, Facts
 from tidegate.lint.derived.safe_rounding import width_up_um
@@ -19,8 +20,7 @@ _SAME: Final = 1e-9
 _GRID_M: Final = 1e-8
 
 
-@dataclass(frozen=True, slots=True)
-class ShortLine:
+class ShortLine(msgspec.Struct, frozen=True):
     """What is needed to tell whether a line is too short to fail from electromigration."""
 
     width_m: float
@@ -38,8 +38,7 @@ class ShortLine:
         return self.limit_a_per_m / product_a_per_m
 
 
-@dataclass(frozen=True, slots=True)
-class Conductor:
+class Conductor(msgspec.Struct, frozen=True):
     """A line, or vias side by side."""
 
     name: str

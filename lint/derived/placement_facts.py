@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from functools import partial
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import as_shipped
@@ -23,11 +24,13 @@ from tidegate.lint.physics.trip_window import Combination
 PLACED_ROLES: Final = ("power_on", "under_voltage", "over_voltage")
 """Roles of the detectors whose levels can be placed."""
 
+NOT_PLACED: Final = "watches whether a reference is ready, not the range of a supply"
+"""Why the levels of any other detector cannot."""
+
 _NO_ERROR: Final = LevelError(0.0, share=0.0, method=Combination.WORST_CASE)
 
 
-@dataclass(frozen=True, slots=True)
-class PlacementFacts:
+class PlacementFacts(msgspec.Struct, frozen=True):
     """All that limits the levels of one detector, as numbers; what moves one of them moves the placement.
 
     ``bounds`` and ``under_voltage`` stand with the most demanding first.

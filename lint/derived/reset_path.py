@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from collections import deque
 from collections.abc import Iterator
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.reset_path import OutputStage, Reset
@@ -15,8 +16,7 @@ from tidegate.lint.graph.paths import Reach, driven_by, drives
 _SAID_BY_KIND: Final = {"inverter": True, "buffer": False}
 
 
-@dataclass(frozen=True, slots=True)
-class Onward:
+class Onward(msgspec.Struct, frozen=True):
     """What lies between an output stage and the reset nets behind it, the stage itself left out."""
 
     stages: tuple[OutputStage, ...]
@@ -45,8 +45,7 @@ def onward(case: Case, stage: OutputStage) -> Onward:
     return Onward(between, resets, ahead)
 
 
-@dataclass(frozen=True, slots=True)
-class Arrival:
+class Arrival(msgspec.Struct, frozen=True):
     """A level that reaches a reset net, as it is or inverted, and the shortest way on which it does."""
 
     reset: Reset

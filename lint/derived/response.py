@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.physics.trip_window import droop_during_response_v, response_time_s
 
 
-@dataclass(frozen=True, slots=True)
-class Response:
+class Response(msgspec.Struct, frozen=True):
     """The longest answer of a detector in its parts, and the steepest move of its rail away from service."""
 
     delay_s: float

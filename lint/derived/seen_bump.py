@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.disturbance import Bump, ignored_s
@@ -13,8 +14,7 @@ from tidegate.lint.judgement import Measure, Relation
 from tidegate.lint.quantity import Dimension, show
 
 
-@dataclass(frozen=True, slots=True)
-class SeenBump:
+class SeenBump(msgspec.Struct, frozen=True):
     """In V at the rail that the victim watches."""
 
     victim: Comparator

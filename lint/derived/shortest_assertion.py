@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.at_code import as_shipped
@@ -12,8 +12,7 @@ from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
 
 
-@dataclass(frozen=True, slots=True)
-class ShortestAssertion:
+class ShortestAssertion(msgspec.Struct, frozen=True):
     """The shortest time in s for which a detector asserts, and the load whose range such a dip leaves."""
 
     time_s: float

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.rail_of import domain_rail
@@ -15,8 +16,7 @@ from tidegate.lint.physics.hold import hold_current_a
 from tidegate.lint.quantity import Dimension, show
 
 
-@dataclass(frozen=True, slots=True)
-class Taker:
+class Taker(msgspec.Struct, frozen=True):
     """Something that takes current at rest, and how much, in A."""
 
     name: str

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.judgement import Judgement, Measure, Relation
@@ -14,8 +15,7 @@ ROUNDING: Final = 0.005
 """Share by which two numbers of three digits each may differ: half a unit of the third digit of 1.00."""
 
 
-@dataclass(frozen=True, slots=True)
-class Made:
+class Made(msgspec.Struct, frozen=True):
     """What the components make, at the least and at the most, and how that was worked out."""
 
     least: float

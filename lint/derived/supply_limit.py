@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.reset_path import Load
 from tidegate.lint.description.model.supply import Rail
 
 
-@dataclass(frozen=True, slots=True)
-class SupplyLimit:
+class SupplyLimit(msgspec.Struct, frozen=True):
     """A level in V that a rail cannot pass, and the rail that sets it."""
 
     level_v: float

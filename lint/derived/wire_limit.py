@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case, Facts
 from tidegate.lint.description.model.process import LayerLimit, ViaLimit
@@ -15,8 +16,7 @@ from tidegate.lint.quantity import Dimension, show
 _SAME: Final = 1e-9  # far above what rounding leaves, far below what a process tells apart
 
 
-@dataclass(frozen=True, slots=True)
-class DirectLimit:
+class DirectLimit(msgspec.Struct, frozen=True):
     """Most direct current: as stated, and for the hottest junction and the service life of this chip.
 
     In the unit in which the process states it: A for each via or narrow line, A/m for each width of a line.
@@ -41,8 +41,7 @@ class DirectLimit:
         return f"limit carried from {stated_for} to {show(self.hottest_k, Dimension.TEMPERATURE)} by Black's law"
 
 
-@dataclass(frozen=True, slots=True)
-class LimitEntry:
+class LimitEntry(msgspec.Struct, frozen=True):
     """The entry of a process table that a limit is taken from, and where it stands."""
 
     entry: LayerLimit | ViaLimit

@@ -6,8 +6,9 @@ Which fields name what is read from the schema (``x-names``), so that the schema
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass
 from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.description.place import Fault, Path, dotted
 from tidegate.lint.description.sources import Sources
@@ -44,8 +45,7 @@ _SINGULAR: Final = {
 }  # fmt: skip
 
 
-@dataclass(frozen=True, slots=True)
-class NameField:
+class NameField(msgspec.Struct, frozen=True):
     """A field that names elements: the way to it (``*`` for every entry) and the sections it may point into."""
 
     way: tuple[str, ...]

@@ -4,17 +4,16 @@ from __future__ import annotations
 
 import re
 from collections.abc import Sequence
-from dataclasses import dataclass
 from typing import Final
 
+import msgspec
 import yaml
 
 from tidegate.lint.description.place import Fault, Place
 from tidegate.lint.found import escaped, quoted
 
 
-@dataclass(frozen=True, slots=True)
-class _Saying:
+class _Saying(msgspec.Struct, frozen=True):
     """What the parser says (a pattern over its context and problem), and what an engineer needs to hear.
 
     ``{sign}`` stands for the first character that cannot be read, ``{line}`` for the line where the context begins.

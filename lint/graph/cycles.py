@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 _TIE: Final = 1e-12
 """Share of what the ways are worth below which two count as equally good; a float keeps about 1e-16."""
@@ -69,8 +70,7 @@ def loops(successors: Mapping[str, Sequence[str]]) -> list[list[str]]:
     ]
 
 
-@dataclass(frozen=True, slots=True)
-class MeanCycle:
+class MeanCycle(msgspec.Struct, frozen=True):
     """A cycle and the mean weight of its edges; the first node is not repeated at the end."""
 
     nodes: tuple[str, ...]

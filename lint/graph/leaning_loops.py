@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference, StartUp
 from tidegate.lint.graph.cycles import loops
@@ -16,8 +17,7 @@ STARTED_WITHOUT: Final = (EdgeKind.BIASED_BY, EdgeKind.TAKES_REFERENCE_FROM, Edg
 """What a start-up circuit replaces until the loop runs; a supply or an enable it does not."""
 
 
-@dataclass(frozen=True, slots=True)
-class LeaningLoop:
+class LeaningLoop(msgspec.Struct, frozen=True):
     """Elements of which each leans on each, through no comparator."""
 
     members: tuple[str, ...]

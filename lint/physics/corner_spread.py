@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final, TypeAlias
 
+import msgspec
 import numpy as np
 
 from tidegate.lint.physics.array_domain import FloatArray
@@ -21,8 +21,7 @@ Corner: TypeAlias = Mapping[str, FloatArray]
 LevelOf: TypeAlias = Callable[[Corner], FloatArray]
 
 
-@dataclass(frozen=True, slots=True)
-class Swing:
+class Swing(msgspec.Struct, frozen=True):
     """What one parameter does on its own, all others nominal.
 
     Symbols:
@@ -41,8 +40,7 @@ class Swing:
         return self.most_v - self.least_v
 
 
-@dataclass(frozen=True, slots=True)
-class Spread:
+class Spread(msgspec.Struct, frozen=True):
     """Window of a level over all corners.
 
     Symbols:
@@ -140,8 +138,7 @@ def spread_over_corners(
     )
 
 
-@dataclass(frozen=True, slots=True)
-class _Extremes:
+class _Extremes(msgspec.Struct, frozen=True):
     least_v: float
     most_v: float
     least_at: Mapping[str, float]

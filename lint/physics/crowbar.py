@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.physics.domain import (
     DomainError,
@@ -13,8 +14,7 @@ from tidegate.lint.physics.domain import (
 )
 
 
-@dataclass(frozen=True, slots=True)
-class Inverter:
+class Inverter(msgspec.Struct, frozen=True):
     """A static CMOS inverter of square-law devices.
 
     Symbols:

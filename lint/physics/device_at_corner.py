@@ -7,8 +7,9 @@ laws of ``device_laws``.
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 from typing import Final, Protocol
+
+import msgspec
 
 from tidegate.lint.physics import device_laws
 from tidegate.lint.physics.domain import require_finite, require_positive
@@ -31,8 +32,7 @@ class Device(Protocol):
         """Voltages of the device below this are none: rounding, V."""
 
 
-@dataclass(frozen=True, slots=True)
-class Junction:
+class Junction(msgspec.Struct, frozen=True):
     """A diode, or a diode-connected bipolar transistor, at one corner and temperature.
 
     Formula: V = n V_T ln(1 + I/IS)
@@ -65,8 +65,7 @@ class Junction:
         return _TRIVIAL * self.emission_v
 
 
-@dataclass(frozen=True, slots=True)
-class DiodeConnected:
+class DiodeConnected(msgspec.Struct, frozen=True):
     """A diode-connected MOS device at one corner and temperature; voltages are magnitudes.
 
     Formula: V = V_TH + 2 n V_T ln(exp(sqrt(I/I_S)) - 1)

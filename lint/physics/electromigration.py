@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
 from statistics import NormalDist
+
+import msgspec
 
 from tidegate.lint.physics.constants import BOLTZMANN_EV_PER_K
 from tidegate.lint.physics.domain import (
@@ -22,8 +23,7 @@ _COLDEST_K = 200.0
 _HOTTEST_K = 700.0
 
 
-@dataclass(frozen=True, slots=True)
-class Wear:
+class Wear(msgspec.Struct, frozen=True):
     """How one failure mechanism of one metal depends on temperature and current.
 
     Symbols:
@@ -40,8 +40,7 @@ class Wear:
         require_positive(activation_energy_ev=self.activation_energy_ev, current_exponent=self.current_exponent)
 
 
-@dataclass(frozen=True, slots=True)
-class Exposure:
+class Exposure(msgspec.Struct, frozen=True):
     """A time spent at a steady current.
 
     Symbols:

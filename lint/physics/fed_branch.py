@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
 from typing import Protocol
 
+import msgspec
 import numpy as np
+from msgspec.structs import replace
 
 from tidegate.lint.physics.array_domain import FloatArray, Reals, finite, not_negative, positive
 from tidegate.lint.physics.inversion_root import inversion_root
@@ -31,8 +32,7 @@ class Branch(Protocol):
         """The same device behind another resistance."""
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class DiodeBranch:
+class DiodeBranch(msgspec.Struct, frozen=True, eq=False):
     """A diode, or a diode-connected bipolar transistor, behind a resistor.
 
     Each symbol is a number or an array over the corners; their shapes broadcast.
@@ -72,8 +72,7 @@ class DiodeBranch:
         return replace(self, series_ohm=series_ohm)
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class MosBranch:
+class MosBranch(msgspec.Struct, frozen=True, eq=False):
     """A diode-connected MOS device behind a resistor.
 
     Each symbol is a number or an array over the corners; their shapes broadcast.

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import enum
 import math
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.physics.domain import (
     DomainError,
@@ -21,8 +22,7 @@ class Connection(enum.Enum):
     INVERTING = "inverting"
 
 
-@dataclass(frozen=True, slots=True)
-class Levels:
+class Levels(msgspec.Struct, frozen=True):
     """The two levels of a comparator with hysteresis, as seen by its input signal."""
 
     rising_v: float

@@ -6,23 +6,22 @@ JEDEC hands out the texts to registered readers, so each entry says where its nu
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from types import MappingProxyType
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.physics.domain import DomainError, require_within
 
 
-@dataclass(frozen=True, slots=True)
-class SupplyRange:
+class SupplyRange(msgspec.Struct, frozen=True):
     """Supply voltages for which a standard is written."""
 
     least_v: float
     most_v: float
 
 
-@dataclass(frozen=True, slots=True)
-class InputLevels:
+class InputLevels(msgspec.Struct, frozen=True):
     """What an input surely reads, in V from its ground."""
 
     low_most_v: float
@@ -31,8 +30,7 @@ class InputLevels:
     """Lowest input that is surely read as high, V."""
 
 
-@dataclass(frozen=True, slots=True)
-class InputShares:
+class InputShares(msgspec.Struct, frozen=True):
     """What an input surely reads, as shares of its supply."""
 
     low_most: float
@@ -41,8 +39,7 @@ class InputShares:
     """Lowest input that is surely read as high, as a share of the supply."""
 
 
-@dataclass(frozen=True, slots=True)
-class LogicStandard:
+class LogicStandard(msgspec.Struct, frozen=True):
     """One standard of the family: its name, its supply ranges and its input levels."""
 
     name: str

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final
 
+import msgspec
 import numpy as np
 
 from tidegate.lint.physics.array_domain import FloatArray
@@ -17,8 +17,7 @@ _UNIFORM_WIDTH: Final = math.sqrt(12.0)
 """Width over standard deviation of a rectangular distribution (JCGM 100:2008, 4.3.7)."""
 
 
-@dataclass(frozen=True, slots=True)
-class DrawnError:
+class DrawnError(msgspec.Struct, frozen=True):
     """One error to draw.
 
     Symbols:

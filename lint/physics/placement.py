@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
 from enum import Enum
+
+import msgspec
 
 from tidegate.lint.physics.domain import DomainError, require_finite, require_not_negative
 from tidegate.lint.physics.trip_window import Combination
@@ -35,8 +36,7 @@ class Side(Enum):
     MOST = "most"
 
 
-@dataclass(frozen=True, slots=True)
-class LevelError:
+class LevelError(msgspec.Struct, frozen=True):
     """Error of a level as a function of where the level lies: a fixed part and one that scales with it.
 
     Formula: worst case E(V) = e + p V; root sum square E(V) = sqrt(e^2 + (p V)^2)
@@ -81,8 +81,7 @@ class LevelError:
         return (end_v + side * math.sqrt(radicand)) / rest
 
 
-@dataclass(frozen=True, slots=True)
-class Limit:
+class Limit(msgspec.Struct, frozen=True):
     """One end for one nominal level, error already taken off.
 
     Symbols:
@@ -98,8 +97,7 @@ class Limit:
     nominal_v: float
 
 
-@dataclass(frozen=True, slots=True)
-class Placement:
+class Placement(msgspec.Struct, frozen=True):
     """Where the nominal falling level may lie; the rising one lies the hysteresis above it.
 
     Symbols:

@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.physics.domain import DomainError, require_positive
 
 
-@dataclass(frozen=True, slots=True)
-class ShareInterval:
+class ShareInterval(msgspec.Struct, frozen=True):
     """Interval of a share.
 
     Symbols:

@@ -5,9 +5,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Final
 
+import msgspec
 import numpy as np
 
 from tidegate.lint.physics import device_laws
@@ -15,8 +15,7 @@ from tidegate.lint.physics.array_domain import FloatArray, Reals, finite, not_ne
 from tidegate.lint.physics.domain import require_not_negative, require_positive
 
 
-@dataclass(frozen=True, slots=True)
-class VarshniGap:
+class VarshniGap(msgspec.Struct, frozen=True):
     """Parameters of Varshni's law for a band gap.
 
     Symbols:

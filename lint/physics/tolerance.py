@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
 from enum import Enum
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.physics.domain import (
     DomainError,
@@ -36,8 +37,7 @@ class Kind(Enum):
     SIGMA = "sigma"
 
 
-@dataclass(frozen=True, slots=True)
-class Contributor:
+class Contributor(msgspec.Struct, frozen=True):
     """One error of a trip level, already referred to the rail; it acts either way.
 
     Symbols:

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
 from enum import Enum
+
+import msgspec
 
 from tidegate.lint.physics.domain import DomainError, require_finite, require_not_negative
 from tidegate.lint.physics.tolerance import Contributor, root_sum_square_v, worst_case_v
@@ -18,8 +19,7 @@ class Combination(Enum):
     ROOT_SUM_SQUARE = "root sum square"
 
 
-@dataclass(frozen=True, slots=True)
-class Window:
+class Window(msgspec.Struct, frozen=True):
     """Range of a voltage, ends included.
 
     Raises: DomainError: an end that is not finite; ends the wrong way round.
@@ -34,8 +34,7 @@ class Window:
             raise DomainError(f"least_v must be at most most_v, {self.most_v!r} (found {self.least_v!r})")
 
 
-@dataclass(frozen=True, slots=True)
-class TripWindow:
+class TripWindow(msgspec.Struct, frozen=True):
     """Where both levels lie, and what lies between them.
 
     The hysteresis is a window of its own: where the levels are tracked, their windows may overlap while the

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Collection, Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final
 
+import msgspec
 import numpy as np
 from numpy.typing import NDArray
 
@@ -23,8 +23,7 @@ _CHUNK: Final = 1 << 14
 _MILLION: Final = 1e6
 
 
-@dataclass(frozen=True, slots=True)
-class Demand:
+class Demand(msgspec.Struct, frozen=True):
     """What one level of a detector must keep; a part passes where its margin is 0 V or above.
 
     Symbols:
@@ -44,8 +43,7 @@ class Demand:
         require_finite(limit_v=self.limit_v)
 
 
-@dataclass(frozen=True, slots=True)
-class DrawnDetector:
+class DrawnDetector(msgspec.Struct, frozen=True):
     """A detector as it is drawn: nominal levels, their errors, what they must keep.
 
     Symbols:
@@ -73,8 +71,7 @@ class DrawnDetector:
         return self.rising_v if level is Level.RISING else self.falling_v
 
 
-@dataclass(frozen=True, slots=True)
-class FailureShare:
+class FailureShare(msgspec.Struct, frozen=True):
     """Parts that failed, and what that says of all parts.
 
     Symbols:
@@ -95,8 +92,7 @@ class FailureShare:
     normal_ppm: float | None
 
 
-@dataclass(frozen=True, slots=True)
-class YieldEstimate:
+class YieldEstimate(msgspec.Struct, frozen=True):
     """Failures of each demand, of each detector, and of the whole.
 
     Symbols:
@@ -191,8 +187,7 @@ def _require_distinct(what: str, names: Sequence[str]) -> None:
             raise DomainError(f"{what} must have distinct names (found {name!r} twice)")
 
 
-@dataclass(frozen=True, slots=True)
-class _Plan:
+class _Plan(msgspec.Struct, frozen=True):
     """A detector with its errors sorted by what they act on, and its limits as errors that fail."""
 
     detector: DrawnDetector
@@ -233,8 +228,7 @@ class _Plan:
         return failed
 
 
-@dataclass(frozen=True, slots=True)
-class _Counts:
+class _Counts(msgspec.Struct, frozen=True):
     by_demand: list[NDArray[np.int64]]
     by_detector: list[int]
     whole: int

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import Unknown, ask
@@ -25,8 +26,7 @@ _MARKS: Final = {"damage": "|", "service": "=", "sign-off": "-"}
 _TRIP_MARK: Final = "#"
 
 
-@dataclass(frozen=True, slots=True)
-class Rung:
+class Rung(msgspec.Struct, frozen=True):
     """One level with its spread, in V, and the slack to what it must keep clear of, where both are known."""
 
     name: str
@@ -35,8 +35,7 @@ class Rung:
     slack_to: str = ""
 
 
-@dataclass(frozen=True, slots=True)
-class _TripLevel:
+class _TripLevel(msgspec.Struct, frozen=True):
     """A trip level: its name, the role of its detector with rising or falling, and where it lies."""
 
     name: str
@@ -44,8 +43,7 @@ class _TripLevel:
     window: Window
 
 
-@dataclass(frozen=True, slots=True)
-class Ladder:
+class Ladder(msgspec.Struct, frozen=True):
     """The levels of one rail, highest first, and the facts that keep others from being drawn."""
 
     rail: str

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Iterator, Sequence
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.judgement import Judgement, Kind, Measure
 from tidegate.lint.reports.plain_text import plain
@@ -18,8 +19,7 @@ _BINS: Final = ((0.0, "below 0"), (0.01, "1 %"), (0.03, "3 %"), (0.1, "10 %"), (
 _LESS: Final = 1e-12
 
 
-@dataclass(frozen=True, slots=True)
-class Entry:
+class Entry(msgspec.Struct, frozen=True):
     """A judgement with its measure, and the margin as a share of what is needed."""
 
     judgement: Judgement

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from bisect import bisect_right
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
 from typing import Final, NamedTuple
+
+import msgspec
 
 _STRETCH: Final = 0.6
 """Share of the width that edges divide evenly among them; the rest goes by time alone."""
@@ -21,8 +22,7 @@ class Column(NamedTuple):
     middle_s: float
 
 
-@dataclass(frozen=True, slots=True)
-class TimeAxis:
+class TimeAxis(msgspec.Struct, frozen=True):
     """Columns over time: ``knots`` are times and the column, a fraction included, at which each stands."""
 
     knots: Sequence[tuple[float, float]]

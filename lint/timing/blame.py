@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
 from enum import Enum
+
+import msgspec
 
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.timing.evaluate import LoadState
@@ -23,8 +24,7 @@ class Why(Enum):
     INPUT = "a stage that is alive before its input is known"
 
 
-@dataclass(frozen=True, slots=True)
-class Blame:
+class Blame(msgspec.Struct, frozen=True):
     """An element that is unknown by itself, why it is, and the way to it from where it was noticed."""
 
     element: str

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final, NamedTuple, TypeAlias
 
 import msgspec
@@ -64,8 +63,7 @@ State: TypeAlias = Supply | On | Decision | LoadState
 States: TypeAlias = Mapping[str, State]
 
 
-@dataclass(frozen=True, slots=True)
-class Network:
+class Network(msgspec.Struct, frozen=True):
     """All that can be timed: parts, the order in which they are, and the ramps of rails."""
 
     parts: Mapping[str, TimedPart]

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+
+import msgspec
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.supply import Rail
@@ -14,8 +15,7 @@ from tidegate.lint.timing.parts import Bounds
 _INFINITE = float("inf")
 
 
-@dataclass(frozen=True, slots=True)
-class RailRamp:
+class RailRamp(msgspec.Struct, frozen=True):
     """A rail between 0 V and its nominal level: both times between those of the fastest and the slowest ramp.
 
     An end that is not given stands where none can pass it; ``start_lacks`` and ``fall_lacks`` say which.
@@ -43,12 +43,11 @@ class RailRamp:
         return ramp_slope_v_per_s(rise_v=self.nominal_v, rise_s=self.fall.least)
 
 
-@dataclass(slots=True)
-class Ramps:
+class Ramps(msgspec.Struct):
     """The ramps of all rails that have a nominal level; the facts that the others lack."""
 
-    by_rail: dict[str, RailRamp] = field(default_factory=dict)
-    lacks: dict[str, tuple[str, ...]] = field(default_factory=dict)
+    by_rail: dict[str, RailRamp] = msgspec.field(default_factory=dict)
+    lacks: dict[str, tuple[str, ...]] = msgspec.field(default_factory=dict)
 
 
 def read_ramps(description: Description) -> Ramps:

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Mapping
-from dataclasses import dataclass
 from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.derived.at_code import at_code
@@ -39,8 +40,7 @@ _TIMED: Final = (
 )  # fmt: skip
 
 
-@dataclass(frozen=True, slots=True)
-class Parts:
+class Parts(msgspec.Struct, frozen=True):
     """What could be read: parts by id, what is missing of each, and numbers that cannot be."""
 
     parts: Mapping[str, TimedPart]

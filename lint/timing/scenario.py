@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from enum import Enum
+
+import msgspec
 
 from tidegate.lint.timing.waveform import Waveform
 
@@ -20,8 +21,7 @@ class Scene(Enum):
     PUBLISHED = "published"
 
 
-@dataclass(frozen=True, slots=True)
-class Scenario:
+class Scenario(msgspec.Struct, frozen=True):
     """A named course of the supplies."""
 
     name: str

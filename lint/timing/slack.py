@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.timing.evaluate import LoadState
 from tidegate.lint.timing.interval import FOREVER_S, Times, both, either, outside
@@ -18,8 +19,7 @@ _NEXT_TO_NOTHING_V: Final = 1e-9
 """A supply that has begun to rise."""
 
 
-@dataclass(frozen=True, slots=True)
-class Slack:
+class Slack(msgspec.Struct, frozen=True):
     """Time between the latest of what must come first and the earliest of what must come after it, in s.
 
     Where what must come first may never come, ``first_s`` is infinite.

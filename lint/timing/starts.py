@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.supply import Rail
@@ -18,8 +19,7 @@ _FEW: Final = 4
 """So many rails come late one at a time; more of them, in groups such that every two rails are told apart."""
 
 
-@dataclass(frozen=True, slots=True)
-class Setting:
+class Setting(msgspec.Struct, frozen=True):
     """What scenarios are made from: rails off the chip, their ramps, and a time after which everything rests."""
 
     description: Description

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from abc import ABC, abstractmethod
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.timing.interval import NEVER, Times, delayed, outside
 from tidegate.lint.timing.state import On
@@ -58,8 +59,7 @@ class GivenSupply(Supply):
         return delayed(low, least_s=self.least_s, most_s=self.most_s)
 
 
-@dataclass(frozen=True, slots=True)
-class Ramp:
+class Ramp(msgspec.Struct, frozen=True):
     """How a made rail comes and goes, straight both ways."""
 
     nominal_v: float

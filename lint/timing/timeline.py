@@ -16,9 +16,10 @@ they may be wider, and ``pinned`` times the network with that tolerance at one e
 from __future__ import annotations
 
 from collections.abc import Collection, Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from functools import cached_property, lru_cache
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
@@ -41,8 +42,7 @@ _LEAST_LONG_S: Final = 1.0
 _MANY_TIMES: Final = 100.0
 
 
-@dataclass(frozen=True, slots=True)
-class Timeline:
+class Timeline(msgspec.Struct, frozen=True):
     """All elements in one scenario."""
 
     scenario: Scenario

@@ -4,14 +4,14 @@ from __future__ import annotations
 
 from bisect import bisect_right
 from collections.abc import Iterable
-from dataclasses import dataclass
+
+import msgspec
 
 from tidegate.lint.physics.domain import DomainError, require_finite
 from tidegate.lint.timing.interval import FOREVER_S, Times
 
 
-@dataclass(frozen=True, slots=True)
-class Waveform:
+class Waveform(msgspec.Struct, frozen=True):
     """A supply over time: straight between its points, constant before the first and after the last.
 
     Two points at one time are a step.

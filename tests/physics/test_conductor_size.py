@@ -10,6 +10,7 @@ import pint
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
 from tidegate.lint.physics.conductor_size import line_limit_a, vias_for_current, width_for_current_m
 from tidegate.lint.physics.domain import DomainError
 

@@ -5,15 +5,16 @@ from __future__ import annotations
 import math
 import statistics
 from collections.abc import Callable
-from dataclasses import replace
 from typing import Any
 
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from msgspec.structs import replace
 from scipy import stats
 from scipy.integrate import quad
 from scipy.optimize import brentq
+
 from tidegate.lint.physics.constants import ZERO_CELSIUS_K
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.electromigration import (

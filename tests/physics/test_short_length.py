@@ -10,6 +10,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.integrate import solve_ivp
+
 from tidegate.lint.physics.constants import ELEMENTARY_CHARGE_C
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.short_length import (

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
 from typing import Any, Final
 
+import msgspec
 from markupsafe import Markup
 
 from tidegate.lint.reports.drawing.graph import GraphDrawing
@@ -23,8 +23,7 @@ _SET: Final = re.compile(r"(--[a-z]+):\s*(#[0-9a-f]+);")
 _COMMENT: Final = re.compile(r"/\*.*?\*/", re.DOTALL)
 
 
-@dataclass(frozen=True, slots=True)
-class Part:
+class Part(msgspec.Struct, frozen=True):
     """One picture of the file, with what stands over it."""
 
     title: str

@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from itertools import pairwise
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.reports.drawing.layers import layer_of_each, neighbours_of, ordered, spread
 from tidegate.lint.reports.drawing.picture_graph import STYLE_WORDS, Box, Lane, Link, PictureGraph
@@ -34,8 +35,7 @@ Key = tuple[str, str, int, int]
 """A box (its id, nothing, 0, 0) or where lines of one source and style pass a layer of a lane."""
 
 
-@dataclass(frozen=True, slots=True)
-class PlacedBox:
+class PlacedBox(msgspec.Struct, frozen=True):
     """A box, its upper left corner, and its label as far as it has room."""
 
     box: Box
@@ -46,16 +46,14 @@ class PlacedBox:
     shown: str
 
 
-@dataclass(frozen=True, slots=True)
-class PlacedLink:
+class PlacedLink(msgspec.Struct, frozen=True):
     """A link with its course."""
 
     link: Link
     path: str
 
 
-@dataclass(frozen=True, slots=True)
-class Region:
+class Region(msgspec.Struct, frozen=True):
     """A lane with its extent."""
 
     lane: Lane
@@ -65,8 +63,7 @@ class Region:
     about: str
 
 
-@dataclass(frozen=True, slots=True)
-class LegendEntry:
+class LegendEntry(msgspec.Struct, frozen=True):
     """A style of line and what it says."""
 
     style: str
@@ -75,8 +72,7 @@ class LegendEntry:
     y: float
 
 
-@dataclass(frozen=True, slots=True)
-class GraphDrawing:
+class GraphDrawing(msgspec.Struct, frozen=True):
     """All that is drawn."""
 
     width: float

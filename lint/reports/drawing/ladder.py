@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.physics.trip_window import Window
 from tidegate.lint.quantity import Dimension, show
@@ -27,16 +28,14 @@ _CLOSE_UP_BELOW: Final = 0.7
 _THIN: Final = 3.0
 
 
-@dataclass(frozen=True, slots=True)
-class Tick:
+class Tick(msgspec.Struct, frozen=True):
     """A marked value of the axis."""
 
     x: float
     label: str
 
 
-@dataclass(frozen=True, slots=True)
-class Bar:
+class Bar(msgspec.Struct, frozen=True):
     """A level with its spread; ``off`` tells on which side of the picture it lies, where it lies on none of it."""
 
     x: float
@@ -44,8 +43,7 @@ class Bar:
     off: str = ""
 
 
-@dataclass(frozen=True, slots=True)
-class Gap:
+class Gap(msgspec.Struct, frozen=True):
     """The slack of a level, drawn between the two edges it is measured between."""
 
     x1: float
@@ -54,8 +52,7 @@ class Gap:
     lost: bool
 
 
-@dataclass(frozen=True, slots=True)
-class Row:
+class Row(msgspec.Struct, frozen=True):
     """One rung."""
 
     name: str
@@ -70,8 +67,7 @@ class Row:
     gap: Gap | None
 
 
-@dataclass(frozen=True, slots=True)
-class Band:
+class Band(msgspec.Struct, frozen=True):
     """A range of the rail that lies behind all rows."""
 
     kind: str
@@ -79,8 +75,7 @@ class Band:
     width: float
 
 
-@dataclass(frozen=True, slots=True)
-class LadderDrawing:
+class LadderDrawing(msgspec.Struct, frozen=True):
     """All that is drawn of one rail."""
 
     rail: str

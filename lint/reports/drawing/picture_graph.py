@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from itertools import pairwise
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.reset_path import Bypass
@@ -32,8 +33,7 @@ STYLE_WORDS: Final = {
 _WORST: Final = (Kind.FAIL, Kind.REVIEW, Kind.OPEN)
 
 
-@dataclass(frozen=True, slots=True)
-class Lane:
+class Lane(msgspec.Struct, frozen=True):
     """A region: a domain, or what stands in none."""
 
     id: str
@@ -42,8 +42,7 @@ class Lane:
     """always_on, switched, unsaid (its kind is not given) or outside."""
 
 
-@dataclass(frozen=True, slots=True)
-class Box:
+class Box(msgspec.Struct, frozen=True):
     """An element, or several of one kind in one domain."""
 
     id: str
@@ -57,8 +56,7 @@ class Box:
     """Whether it lies on the path of a failure."""
 
 
-@dataclass(frozen=True, slots=True)
-class Link:
+class Link(msgspec.Struct, frozen=True):
     """A line from one box to another, drawn along the flow."""
 
     source: str
@@ -69,8 +67,7 @@ class Link:
     count: int = 1
 
 
-@dataclass(frozen=True, slots=True)
-class PictureGraph:
+class PictureGraph(msgspec.Struct, frozen=True):
     """Lanes, boxes and links, and who needs whom for the layers."""
 
     lanes: tuple[Lane, ...]

@@ -5,17 +5,17 @@ from __future__ import annotations
 import math
 from bisect import bisect_right
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
 from itertools import pairwise
 from typing import Final
+
+import msgspec
 
 _WIDE: Final = 0.61
 """Width of a character as a share of the size of its type: that of a wide plain face, so that no label is too short
 of room in any."""
 
 
-@dataclass(frozen=True, slots=True)
-class Linear:
+class Linear(msgspec.Struct, frozen=True):
     """A straight scale: ``low`` lies at ``start``, ``high`` at ``end``, both in pixels."""
 
     low: float
@@ -35,8 +35,7 @@ class Linear:
         return self.low <= value <= self.high
 
 
-@dataclass(frozen=True, slots=True)
-class Stretched:
+class Stretched(msgspec.Struct, frozen=True):
     """A scale that is straight between knots and gives short stretches more room than long ones.
 
     ``knots`` are values in order, ``places`` where they lie in pixels.

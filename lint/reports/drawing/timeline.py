@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Sequence
-from dataclasses import dataclass
 from itertools import chain, pairwise
 from typing import Final
+
+import msgspec
 
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.reports.drawing.scale import Stretched, kept_apart, shortened, stretched, text_width
@@ -37,8 +38,7 @@ _GROUPS: Final = (
 _FIRST_SHOWN: Final = ("rails", "resets", "loads", "comparators", "references", "output_stages", "biases")
 
 
-@dataclass(frozen=True, slots=True)
-class Piece:
+class Piece(msgspec.Struct, frozen=True):
     """A stretch of time in which an element may be the same things."""
 
     kind: str
@@ -47,8 +47,7 @@ class Piece:
     width: float
 
 
-@dataclass(frozen=True, slots=True)
-class Lane:
+class Lane(msgspec.Struct, frozen=True):
     """A line of pieces in a row; a load has one for being ready and one for running."""
 
     name: str
@@ -57,16 +56,14 @@ class Lane:
     pieces: tuple[Piece, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Wave:
+class Wave(msgspec.Struct, frozen=True):
     """A rail's course, as the points of a line; the late one where it differs from the early one."""
 
     points: str
     late: bool
 
 
-@dataclass(frozen=True, slots=True)
-class Row:
+class Row(msgspec.Struct, frozen=True):
     """One element."""
 
     element: str
@@ -80,24 +77,21 @@ class Row:
     says: str
 
 
-@dataclass(frozen=True, slots=True)
-class Group:
+class Group(msgspec.Struct, frozen=True):
     """A heading between rows."""
 
     name: str
     y: float
 
 
-@dataclass(frozen=True, slots=True)
-class Tick:
+class Tick(msgspec.Struct, frozen=True):
     """A time on the axis; the label is empty where it has no room."""
 
     x: float
     label: str
 
 
-@dataclass(frozen=True, slots=True)
-class TimelineDrawing:
+class TimelineDrawing(msgspec.Struct, frozen=True):
     """All that is drawn of one scenario."""
 
     name: str

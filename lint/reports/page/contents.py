@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import msgspec
 
 from tidegate.lint.reports.drawing.graph import GraphDrawing
 from tidegate.lint.reports.drawing.ladder import LadderDrawing
 from tidegate.lint.reports.drawing.timeline import TimelineDrawing
 
 
-@dataclass(frozen=True, slots=True)
-class Finding:
+class Finding(msgspec.Struct, frozen=True):
     """A judgement, in words."""
 
     anchor: str
@@ -31,8 +30,7 @@ class Finding:
     waiver: str
 
 
-@dataclass(frozen=True, slots=True)
-class Kept:
+class Kept(msgspec.Struct, frozen=True):
     """A rule that holds."""
 
     anchor: str
@@ -41,8 +39,7 @@ class Kept:
     margin: str
 
 
-@dataclass(frozen=True, slots=True)
-class ElementPart:
+class ElementPart(msgspec.Struct, frozen=True):
     """An element (or a waiver) with what was said about it."""
 
     anchor: str
@@ -55,8 +52,7 @@ class ElementPart:
     not_applicable: int
 
 
-@dataclass(frozen=True, slots=True)
-class LedgerRow:
+class LedgerRow(msgspec.Struct, frozen=True):
     """A judgement with a number."""
 
     finding: str
@@ -76,8 +72,7 @@ class LedgerRow:
     """The same for the eye: from -1 to 1, one half being a margin of a tenth of the need."""
 
 
-@dataclass(frozen=True, slots=True)
-class Missing:
+class Missing(msgspec.Struct, frozen=True):
     """A fact that is missing, and the rules that wait for it."""
 
     fact: str
@@ -85,16 +80,14 @@ class Missing:
     finding: str
 
 
-@dataclass(frozen=True, slots=True)
-class FamilyRow:
+class FamilyRow(msgspec.Struct, frozen=True):
     """How much of a family was judged; in the order pass, fail, review, open, not applicable."""
 
     family: str
     counts: tuple[int, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class WaiverRow:
+class WaiverRow(msgspec.Struct, frozen=True):
     """An accepted finding."""
 
     rule: str
@@ -109,16 +102,14 @@ class WaiverRow:
     finding: str
 
 
-@dataclass(frozen=True, slots=True)
-class BasisRow:
+class BasisRow(msgspec.Struct, frozen=True):
     """How many numbers of each section rest on one kind of evidence."""
 
     basis: str
     counts: tuple[int, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class BasedFact:
+class BasedFact(msgspec.Struct, frozen=True):
     """A number that says where it comes from."""
 
     fact: str
@@ -127,8 +118,7 @@ class BasedFact:
     source: str
 
 
-@dataclass(frozen=True, slots=True)
-class Evidence:
+class Evidence(msgspec.Struct, frozen=True):
     """Facts by the kind of evidence they rest on."""
 
     sections: tuple[str, ...]
@@ -137,16 +127,14 @@ class Evidence:
     left_out: int
 
 
-@dataclass(frozen=True, slots=True)
-class InputFile:
+class InputFile(msgspec.Struct, frozen=True):
     """A file that was read, and the SHA-256 digest of its content; empty where it could not be read again."""
 
     name: str
     sha256: str
 
 
-@dataclass(frozen=True, slots=True)
-class Todo:
+class Todo(msgspec.Struct, frozen=True):
     """One thing to do next."""
 
     kind: str
@@ -155,8 +143,7 @@ class Todo:
     anchor: str
 
 
-@dataclass(frozen=True, slots=True)
-class Pictures:
+class Pictures(msgspec.Struct, frozen=True):
     """What is drawn, and why the rest is not."""
 
     ladders: tuple[LadderDrawing, ...]
@@ -169,8 +156,7 @@ class Pictures:
     """The graph in words: tail, relation, head."""
 
 
-@dataclass(frozen=True, slots=True)
-class Fault:
+class Fault(msgspec.Struct, frozen=True):
     """A rule that failed itself."""
 
     rule: str
@@ -178,8 +164,7 @@ class Fault:
     error: str
 
 
-@dataclass(frozen=True, slots=True)
-class DescriptionPart:
+class DescriptionPart(msgspec.Struct, frozen=True):
     """One description."""
 
     file: str
@@ -212,8 +197,7 @@ class DescriptionPart:
     faults: tuple[Fault, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class UnusablePart:
+class UnusablePart(msgspec.Struct, frozen=True):
     """A file that cannot be used, with its faults: place, and what is wrong."""
 
     file: str
