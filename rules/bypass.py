@@ -279,7 +279,7 @@ def _asks_for_limit(case: Case, lost: Sequence[tuple[Comparator, list[str]]], re
         f"lifts {nets} past {detectors}: while it is active, no reset protects the loads against over-voltage",
         why=f"{detectors} cannot assert {nets} then, however high the supply",
         mend=f"limit the bench supply while it is active: {_and(limits)}",
-        path=path if len(path := reach.path(lost[0][0].id)) > 1 else (),
+        path=reach.path(lost[0][0].id),
     )
 
 

@@ -87,7 +87,9 @@ def _move(case: Case, comparator: Comparator, found: LevelMargin) -> str:
     "after it with their references and bias, and loads for which no under-voltage detector stands. F and R are the "
     "falling and the rising level at the end that is worst, s is the steepest collapse or overshoot of the rail and t "
     "the longest delay plus filter plus sampling period. A load that does not say from or up to which supply it works "
-    "leaves this open. Levels that were placed the wrong way round are left to trip_window/placement_sense.",
+    "leaves this open. Levels that were placed the wrong way round are left to trip_window/placement_sense, "
+    "a detector that a mode samples too seldom to modes/sampling, and what a power-on detector lets go of before an "
+    "under-voltage detector decides to hand_over/no_hole.",
     facts=(*_LEVELS, *_RESPONSE, "loads.*.needs.*.works", "works_from of what follows a power-on detector"),
     mend="levels further in, a smaller error, or a faster answer",
     sources=(_COMMON_PRACTICE + "what they guard inside its working range until the detector has answered",),

@@ -59,7 +59,7 @@ def test_exit_status(arguments: list[str], status: int) -> None:
     assert bool(done.stderr) == (status == 2)
 
 
-@pytest.mark.parametrize("columns", [40, 80, 110, 300])
+@pytest.mark.parametrize("columns", [60, 80, 110, 300])
 def test_no_line_is_wider_than_the_terminal(columns: int) -> None:
     lines = tidegate("review", FAULTY, columns=columns).stdout.splitlines()
     unbroken = [line for line in lines if len(line) > columns and " " in line.strip()[24:]]

@@ -4,13 +4,11 @@ from __future__ import annotations
 
 import datetime
 import json
-import os
-import subprocess
-import sys
 from pathlib import Path
 
 import pytest
 
+from tests.commands.calling import tidegate
 from tidegate.lint.description.load import load
 from tidegate.lint.engine import Catalogue, Review, review
 from tidegate.lint.judgement import Kind
@@ -174,13 +172,6 @@ def test_packs_of_the_same_file_name_and_with_data_classes(tmp_path: Path) -> No
 # Through the command line
 
 
-def tidegate(*arguments: str, cwd: Path, **env: str) -> subprocess.CompletedProcess[str]:
-    command = [sys.executable, "-m", "tidegate.lint.cli", *arguments]
-    return subprocess.run(
-        command, capture_output=True, text=True, cwd=cwd, env={**os.environ, "COLUMNS": "80", **env}, check=False
-    )
-
-
 def test_a_rule_that_leaves_or_prints_spoils_no_report(tmp_path: Path) -> None:
     (tmp_path / "chip.yaml").write_text(CHIP, "utf-8")
     (tmp_path / "pack.py").write_text(PACK.replace("BODY", 'print("here"); raise SystemExit(0)'), "utf-8")
@@ -198,7 +189,7 @@ def test_the_catalogue_shows_the_rules_of_a_pack() -> None:
     assert tidegate("rules", "--pack", "none.py", cwd=ROOT).stderr == "rule pack none.py: no such file\n"
 
 
-def test_an_installed_pack_is_used_when_the_settings_name_it(tmp_path: Path) -> None:
+def test_an_installed_pack_is_used_when_the_settings_name_it(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     site = tmp_path / "site"
     (site / "house_rules").mkdir(parents=True)
     (site / "house_rules" / "__init__.py").write_text(HOUSE, "utf-8")
@@ -206,13 +197,13 @@ def test_an_installed_pack_is_used_when_the_settings_name_it(tmp_path: Path) -> 
     info.mkdir()
     (info / "METADATA").write_text("Metadata-Version: 2.1\nName: house-rules\nVersion: 1.0\n", "utf-8")
     (info / "entry_points.txt").write_text("[tidegate.rules]\nhouse = house_rules\nbroken = house_gone\n", "utf-8")
-    path = os.pathsep.join(part for part in (str(site), os.environ.get("PYTHONPATH", "")) if part)
+    monkeypatch.syspath_prepend(site)
     for name in ("sound.yaml", "process.yaml"):
         (tmp_path / name).write_text((ROOT / "examples" / name).read_text("utf-8"), "utf-8")
 
     def rules(settings: str) -> tuple[int, set[str], str]:
         (tmp_path / "tidegate.settings.yaml").write_text(settings, "utf-8")
-        done = tidegate("review", "--as", "json", "sound.yaml", cwd=tmp_path, PYTHONPATH=path)
+        done = tidegate("review", "--as", "json", "sound.yaml", cwd=tmp_path)
         judgements = json.loads(done.stdout)["files"][0].get("judgements", [])
         return done.returncode, {judgement["rule"] for judgement in judgements}, done.stdout
 

@@ -55,7 +55,7 @@ def review_lines(review: Review, width: int, *, all_kinds: bool = False) -> Iter
         shown = [j for j in judgements if all_kinds or j.kind in (Kind.FAIL, Kind.REVIEW)]
         if shown:
             yield _blank()
-            yield _element_line(review, subject, width)
+            yield from _element_line(review, subject, width)
             for judgement in shown:
                 yield from _judgement_lines(review, judgement, width)
     yield from _rule_faults(review, width)
@@ -77,13 +77,15 @@ def _plain_line(text: str, style: str = "") -> Line:
     return Line(((plain(text), style),))
 
 
-def _two_ends(left: str, right: str, width: int, style: str) -> Line:
-    """Text at both ends of the line; the right one only where there is room."""
+def _two_ends(left: str, right: str, width: int, style: str) -> Iterator[Line]:
+    """Text at both ends of the line; the right one below the left one where there is no room beside it."""
     left, right = plain(left), plain(right)
     gap = width - len(left) - len(right)
-    if gap < 2:
-        return Line(((left, style), ("  ", ""), (right, "dim")))
-    return Line(((left, style), (" " * gap, ""), (right, "dim")))
+    if gap >= 2:
+        yield Line(((left, style), (" " * gap, ""), (right, "dim")))
+        return
+    yield from _wrapped("", left, width, indent=0, style=style)
+    yield Line((("  ", ""), (right, "dim")))
 
 
 def _wrapped(label: str, text: str, width: int, *, indent: int, style: str = "") -> Iterator[Line]:
@@ -103,9 +105,9 @@ def _head(review: Review, width: int) -> Iterator[Line]:
     name = description.subsystem or "unnamed subsystem"
     title = f"{name}, revision {description.revision}" if description.revision else name
     file = review.loaded.sources.files[0].name
-    yield _two_ends(title, file, width, "bold")
+    yield from _two_ends(title, file, width, "bold")
     if description.invented:
-        yield _plain_line("invented for an example; nothing real stands behind it", "dim")
+        yield from _wrapped("", "invented for an example; nothing real stands behind it", width, indent=0, style="dim")
     if review.settings.summary:
         yield from _wrapped("", f"settings: {review.settings.summary}", width, indent=0, style="dim")
     counts = review.counts
@@ -126,7 +128,7 @@ def _count(number: int, one: str, many: str) -> str:
     return f"{number} {one if number == 1 else many}" if number else ""
 
 
-def _element_line(review: Review, subject: str, width: int) -> Line:
+def _element_line(review: Review, subject: str, width: int) -> Iterator[Line]:
     noun, place = described(review, subject)
     return _two_ends(f"{subject}, {noun}", f"{place.file}:{place.line}", width, "bold")
 

@@ -19,8 +19,24 @@ ARMED: Final = "hand_over/armed_when_up"
 EXAMPLES: Final = {HOLE: {(HOLE, "avdd")}, ARMED: {(ARMED, "uv_core")}}
 
 
+# The power-on detector compares with a reference of its own: a level made by a crossover is judged as it tracks.
+EARLY: Final = """
+comparators: {por: {crossover: null, reference: ref_early}}
+references: {ref_early: {kind: threshold, works_from: 0.7 V, settling: 5 us, decoupling: 10 pF, domain: aon,
+  self_biased: false, bias: bias_start}}
+"""
+
+
 def one(patch: str, rule: str = HOLE, subject: str = "avdd") -> Judgement:
-    return judged(patch, RULES)[rule, subject]
+    return judged(both(EARLY, patch), RULES)[rule, subject]
+
+
+def test_a_level_that_tracks_is_compared_at_the_same_temperature() -> None:
+    said = judged("references: {ref_fast: {works_from: {max: 1.12 V}}}", RULES)[HOLE, "avdd"]
+    assert (said.kind, said.message) == (
+        NONE, "extreme against extreme por can let go 10 mV below where uv decides; both move with temperature, and "
+        "trip_window/crossover_tracks compares them at the same one",
+    )  # fmt: skip
 
 
 def por(falling: str) -> str:

@@ -107,7 +107,9 @@ def test_a_load_on_a_rail_whose_order_is_open_is_released_without_it() -> None:
     assert judgement.message == "may be released before the last of its supplies rises (vio late)"
     assert judgement.mend == "let its reset wait for every rail that it needs"
     never = found(late, ASSERTS, "adc")
-    assert never.message == "its reset may never be asserted when vio falls"
+    assert (never.kind, never.message) == (
+        Kind.NOT_APPLICABLE, "no detector watches vio (coverage/under_voltage says so)",
+    )  # fmt: skip
 
 
 def test_a_rail_that_the_reset_itself_lets_come_is_late() -> None:

@@ -132,6 +132,12 @@ def test_limit_belongs_to_the_good_side(
     there = said(rule, no_crossover, trip(level, *at_limit, of=of), of=of)
     assert (there.kind, measure(there).margin) == (PASS, 0.0)
     outside = said(rule, no_crossover, trip(level, *beyond, of=of), of=of)
+    if (rule, of) == ("guarantee", "por"):
+        assert (outside.kind, outside.message) == (
+            NONE, "its falling level can lie 100 uV below what ref_fast works from (hand_over/no_hole judges what "
+            "holds reset there)",
+        )  # fmt: skip
+        return
     assert outside.kind is FAIL
     assert measure(outside).margin == pytest.approx(-0.0001, abs=1e-9)
 
