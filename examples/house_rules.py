@@ -10,9 +10,7 @@ from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.quantity import Dimension
 from tidegate.lint.rule import Example, Rule, rule
 
-QUICK_S: Final = (
-    5e-6  # what the house has agreed on
-)
+QUICK_S: Final = 5e-6  # what the house has agreed on
 
 
 @rule(

@@ -7,10 +7,10 @@ from collections.abc import Sequence
 from typing import Any, Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.divider_current import divider_takers
-from tidegate.lint.derived.rail_of import delivered_v
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.standing_current import Taker, circuit_takers, hold_takers, largest_first
+from tidegate.lint.derived.supply.divider_current import divider_takers
+from tidegate.lint.derived.supply.rail_of import delivered_v
+from tidegate.lint.derived.supply.standing_current import Taker, circuit_takers, hold_takers, largest_first
 from tidegate.lint.description.model.detector import Bias, Comparator
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.description.model.supply import Domain

@@ -6,7 +6,7 @@ from collections.abc import Iterable, Sequence
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.override import (
+from tidegate.lint.derived.reset_path.override import (
     aimless_overrides,
     behind,
     detectors_in,

@@ -6,9 +6,9 @@ from collections.abc import Iterator, Sequence
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.override import behind, detectors_in
-from tidegate.lint.derived.rail_of import domain_rail
-from tidegate.lint.derived.rail_sequence import leaning_of_rails, order_text, way_to_earlier
+from tidegate.lint.derived.reset_path.override import behind, detectors_in
+from tidegate.lint.derived.supply.rail_of import domain_rail
+from tidegate.lint.derived.supply.rail_sequence import leaning_of_rails, order_text, way_to_earlier
 from tidegate.lint.description.model.reset_path import Bypass, Reset
 from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path

@@ -5,10 +5,10 @@ from __future__ import annotations
 from typing import Final
 
 from tidegate.lint.case import Case, Facts
-from tidegate.lint.derived.at_code import as_shipped
-from tidegate.lint.derived.rail_of import rail_of
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.derived.stated_and_made import ROUNDING, Made, held_against
-from tidegate.lint.derived.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.supply.rail_of import rail_of
 from tidegate.lint.description.model.detector import Bias, Comparator, Hysteresis, Reference
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.description.model.timing import Timing

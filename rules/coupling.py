@@ -8,14 +8,14 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.coupling_map import Push, coupling_map
-from tidegate.lint.derived.disturbance import disturbers, own_kick, pair_bump, sharers
-from tidegate.lint.derived.quieting import quieter_pair, quieter_reference
-from tidegate.lint.derived.rail_of import rail_of
+from tidegate.lint.derived.disturbance.coupling_map import Push, coupling_map
+from tidegate.lint.derived.disturbance.disturbance import disturbers, own_kick, pair_bump, sharers
+from tidegate.lint.derived.disturbance.quieting import quieter_pair, quieter_reference
+from tidegate.lint.derived.disturbance.seen_bump import SeenBump, seen_bumps
+from tidegate.lint.derived.disturbance.toggle_chain import chain_on, comes_round, joined, two_pushes
+from tidegate.lint.derived.levels.trip_levels import has_no_hysteresis, hysteresis_window
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.seen_bump import SeenBump, seen_bumps
-from tidegate.lint.derived.toggle_chain import chain_on, comes_round, joined, two_pushes
-from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window
+from tidegate.lint.derived.supply.rail_of import rail_of
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Neighbour
 from tidegate.lint.judgement import Judgement, Level, Measure, Relation

@@ -5,10 +5,10 @@ from __future__ import annotations
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.guarding_nets import LOW_ROLES, detectors_behind_nets, note_undriven, watching
-from tidegate.lint.derived.override import aimless_overrides, lifted, lifted_by_overrides, overrides_of
-from tidegate.lint.derived.supply_limit import supply_limit
-from tidegate.lint.derived.used_by import NAMED_BY, is_used, unsaid_uses
+from tidegate.lint.derived.reset_path.guarding_nets import LOW_ROLES, detectors_behind_nets, note_undriven, watching
+from tidegate.lint.derived.reset_path.override import aimless_overrides, lifted, lifted_by_overrides, overrides_of
+from tidegate.lint.derived.reset_path.used_by import NAMED_BY, is_used, unsaid_uses
+from tidegate.lint.derived.supply.supply_limit import supply_limit
 from tidegate.lint.description.model.reset_path import Bypass, Load, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.graph.dependency import Element, Graph

@@ -8,9 +8,9 @@ from functools import partial
 from typing import Any, Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.override import resets_in
-from tidegate.lint.derived.rail_of import rail_of
-from tidegate.lint.derived.rail_sequence import leaning_of_rails
+from tidegate.lint.derived.reset_path.override import resets_in
+from tidegate.lint.derived.supply.rail_of import rail_of
+from tidegate.lint.derived.supply.rail_sequence import leaning_of_rails
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Hold, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain, Rail

@@ -8,12 +8,12 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.crowbar_peak import Crowbar, crowbar_of
-from tidegate.lint.derived.output_metal import Conductor, line_of, vias_of
-from tidegate.lint.derived.rail_of import rail_of
+from tidegate.lint.derived.levels.trip_levels import has_no_hysteresis, hysteresis_window
+from tidegate.lint.derived.metal.crowbar_peak import Crowbar, crowbar_of
+from tidegate.lint.derived.metal.output_metal import Conductor, line_of, vias_of
+from tidegate.lint.derived.metal.wire_limit import wear_of
 from tidegate.lint.derived.safe_rounding import show_down
-from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window
-from tidegate.lint.derived.wire_limit import wear_of
+from tidegate.lint.derived.supply.rail_of import rail_of
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path

@@ -6,8 +6,8 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.guarding_nets import LOW_ROLES, detectors_behind_nets, nets_of_detectors, watching
-from tidegate.lint.derived.held_span import Step, Way, held_span, steps
+from tidegate.lint.derived.levels.held_span import Step, Way, held_span, steps
+from tidegate.lint.derived.reset_path.guarding_nets import LOW_ROLES, detectors_behind_nets, nets_of_detectors, watching
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.supply import Rail

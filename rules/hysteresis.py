@@ -6,13 +6,13 @@ import math
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import as_far_as_said
-from tidegate.lint.derived.hysteresis_need import disturbance, noise_v
-from tidegate.lint.derived.level_room import NEVER_APART, level_room
-from tidegate.lint.derived.logic_signal import origin
-from tidegate.lint.derived.placement_facts import NOT_PLACED, PLACED_ROLES
+from tidegate.lint.derived.disturbance.hysteresis_need import disturbance, noise_v
+from tidegate.lint.derived.levels.at_code import as_far_as_said
+from tidegate.lint.derived.levels.level_room import NEVER_APART, level_room
+from tidegate.lint.derived.levels.placement_facts import NOT_PLACED, PLACED_ROLES
+from tidegate.lint.derived.levels.trip_levels import has_no_hysteresis, hysteresis_window, typical_hysteresis_v
+from tidegate.lint.derived.reset_path.logic_signal import origin
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window, typical_hysteresis_v
 from tidegate.lint.description.model.detector import Comparator, Hysteresis, Switch
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.judgement import Judgement, Level, Measure, Relation

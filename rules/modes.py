@@ -6,12 +6,12 @@ from collections.abc import Iterable
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import as_shipped
-from tidegate.lint.derived.guarded_loads import greatest_supplies, least_supplies
-from tidegate.lint.derived.guarding_nets import LOW_ROLES, detectors_behind_nets, guarding_nets, watching
-from tidegate.lint.derived.mode_states import ModeState, mode_states
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.guarded_loads import greatest_supplies, least_supplies
+from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.reset_path.guarding_nets import LOW_ROLES, detectors_behind_nets, guarding_nets, watching
+from tidegate.lint.derived.reset_path.mode_states import ModeState, mode_states
 from tidegate.lint.derived.safe_rounding import show_down
-from tidegate.lint.derived.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Load
 from tidegate.lint.description.model.supply import Rail

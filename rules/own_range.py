@@ -9,11 +9,11 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import as_shipped, at_code
-from tidegate.lint.derived.rail_of import rail_of
-from tidegate.lint.derived.response import response
+from tidegate.lint.derived.levels.at_code import as_shipped, at_code
+from tidegate.lint.derived.levels.response import response
+from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.supply.rail_of import rail_of
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.judgement import Judgement, Level, Measure, Relation
 from tidegate.lint.physics import trip_window

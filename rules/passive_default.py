@@ -6,12 +6,19 @@ import math
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.follows_alive import not_alive
-from tidegate.lint.derived.held_node import drives_reset, held_node, larger_hold, reads_it, sure_high, sure_low
-from tidegate.lint.derived.rail_of import delivered_v, rail_of
-from tidegate.lint.derived.reset_path import arrivals, onward
+from tidegate.lint.derived.reset_path.follows_alive import not_alive
+from tidegate.lint.derived.reset_path.held_node import (
+    drives_reset,
+    held_node,
+    larger_hold,
+    reads_it,
+    sure_high,
+    sure_low,
+)
+from tidegate.lint.derived.reset_path.reset_path import arrivals, onward
 from tidegate.lint.derived.safe_rounding import show_up
-from tidegate.lint.derived.standing_current import circuit_takers, hold_takers, largest_first, stages_in
+from tidegate.lint.derived.supply.rail_of import delivered_v, rail_of
+from tidegate.lint.derived.supply.standing_current import circuit_takers, hold_takers, largest_first, stages_in
 from tidegate.lint.description.model.reset_path import Hold, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain
 from tidegate.lint.graph.edge import EdgeKind, Hop

@@ -7,7 +7,7 @@ from functools import partial
 from typing import Any, Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.guarding_nets import (
+from tidegate.lint.derived.reset_path.guarding_nets import (
     LOW_ROLES,
     detectors_behind_nets,
     guarding_nets,

@@ -6,10 +6,10 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.guarded_loads import least_supplies
-from tidegate.lint.derived.guarding_nets import LOW_ROLES
+from tidegate.lint.derived.levels.guarded_loads import least_supplies
+from tidegate.lint.derived.reset_path.guarding_nets import LOW_ROLES
+from tidegate.lint.derived.reset_path.shortest_assertion import shortest_assertion
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.shortest_assertion import shortest_assertion
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Discharge, OutputStage
 from tidegate.lint.graph.paths import Reach, driven_by

@@ -8,9 +8,9 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.lowest_decision import lowest_decision
-from tidegate.lint.derived.rail_of import rail_of
+from tidegate.lint.derived.levels.lowest_decision import lowest_decision
 from tidegate.lint.derived.safe_rounding import show_down, show_up
+from tidegate.lint.derived.supply.rail_of import rail_of
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
 from tidegate.lint.description.model.reset_path import Reset
 from tidegate.lint.description.model.supply import Domain, Rail

@@ -10,12 +10,12 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.lowest_decision import LowestDecision, lowest_decision
-from tidegate.lint.derived.lowest_supply import LowestSupply, lowest_supply
-from tidegate.lint.derived.rail_of import rail_of
-from tidegate.lint.derived.rail_sequence import leaning_of_rails, order_text, way_to_earlier
+from tidegate.lint.derived.levels.lowest_decision import LowestDecision, lowest_decision
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.sources_of import reach_of_sources, sources_in
+from tidegate.lint.derived.supply.lowest_supply import LowestSupply, lowest_supply
+from tidegate.lint.derived.supply.rail_of import rail_of
+from tidegate.lint.derived.supply.rail_sequence import leaning_of_rails, order_text, way_to_earlier
+from tidegate.lint.derived.supply.sources_of import reach_of_sources, sources_in
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.edge import Hop, Path

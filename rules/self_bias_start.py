@@ -6,8 +6,8 @@ from itertools import pairwise
 from typing import Any, Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.rail_of import domain_rail
 from tidegate.lint.derived.safe_rounding import show_down
+from tidegate.lint.derived.supply.rail_of import domain_rail
 from tidegate.lint.description.model.detector import Bias, Reference
 from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.graph.edge import Path, path_text

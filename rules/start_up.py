@@ -7,8 +7,8 @@ from typing import Final
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.never_known import decides_too_late, nobody_judges, unless_told
-from tidegate.lint.derived.rail_order import rails_before
 from tidegate.lint.derived.safe_rounding import show_up
+from tidegate.lint.derived.supply.rail_order import rails_before
 from tidegate.lint.description.model.reset_path import Load, Reset
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.edge import EdgeKind

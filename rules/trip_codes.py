@@ -7,9 +7,9 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import at_code
-from tidegate.lint.derived.level_margins import LevelMargin, comes_back, guarantee, quiet
-from tidegate.lint.derived.placement_facts import NOT_PLACED, PLACED_ROLES
+from tidegate.lint.derived.levels.at_code import at_code
+from tidegate.lint.derived.levels.level_margins import LevelMargin, comes_back, guarantee, quiet
+from tidegate.lint.derived.levels.placement_facts import NOT_PLACED, PLACED_ROLES
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.quantity import Dimension, show

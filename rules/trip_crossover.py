@@ -5,15 +5,15 @@ from __future__ import annotations
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import as_shipped
-from tidegate.lint.derived.crossover_facts import Crossing
-from tidegate.lint.derived.crossover_level import CrossoverLevel, Place, release_level, second_crossing_level
-from tidegate.lint.derived.crossover_words import NO_LEVEL, corner_text
-from tidegate.lint.derived.follower_lines import follower_lines, most_demanding
-from tidegate.lint.derived.follower_supplies import follower_supplies
-from tidegate.lint.derived.guarded_loads import Bound
+from tidegate.lint.derived.crossover.crossover_facts import Crossing
+from tidegate.lint.derived.crossover.crossover_level import CrossoverLevel, Place, release_level, second_crossing_level
+from tidegate.lint.derived.crossover.crossover_words import NO_LEVEL, corner_text
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.follower_lines import follower_lines, most_demanding
+from tidegate.lint.derived.levels.follower_supplies import follower_supplies
+from tidegate.lint.derived.levels.guarded_loads import Bound
+from tidegate.lint.derived.levels.trip_levels import has_no_hysteresis, hysteresis_window, rising_window
 from tidegate.lint.derived.safe_rounding import show_up
-from tidegate.lint.derived.trip_levels import has_no_hysteresis, hysteresis_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.physics import crossing_point, device_at_corner

@@ -9,10 +9,10 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import as_shipped
-from tidegate.lint.derived.placement_facts import PLACED_ROLES
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.placement_facts import PLACED_ROLES
+from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.derived.safe_rounding import show_up
-from tidegate.lint.derived.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.edge import EdgeKind

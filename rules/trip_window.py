@@ -5,9 +5,9 @@ from __future__ import annotations
 from typing import Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import as_shipped
-from tidegate.lint.derived.guarded_loads import Bound, greatest_supplies, least_supplies
-from tidegate.lint.derived.level_margins import (
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.guarded_loads import Bound, greatest_supplies, least_supplies
+from tidegate.lint.derived.levels.level_margins import (
     LevelMargin,
     comes_back,
     guarantee,
@@ -17,11 +17,11 @@ from tidegate.lint.derived.level_margins import (
     sampled_too_seldom,
     short_at_once,
 )
-from tidegate.lint.derived.level_room import NEVER_APART, level_room, tracks_its_bound
-from tidegate.lint.derived.placement_facts import NOT_PLACED, PLACED_ROLES
-from tidegate.lint.derived.response import response
+from tidegate.lint.derived.levels.level_room import NEVER_APART, level_room, tracks_its_bound
+from tidegate.lint.derived.levels.placement_facts import NOT_PLACED, PLACED_ROLES
+from tidegate.lint.derived.levels.response import response
+from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.derived.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.physics import trip_margin, trip_window

@@ -8,9 +8,9 @@ from pathlib import Path as FilePath
 from typing import Final
 
 from tidegate.lint.derived.asking import Unknown
-from tidegate.lint.derived.detector_placement import DetectorPlacement
-from tidegate.lint.derived.level_placement import LevelPlacement, margins_v, windows_at
-from tidegate.lint.derived.level_spread import is_nominal
+from tidegate.lint.derived.levels.detector_placement import DetectorPlacement
+from tidegate.lint.derived.levels.level_placement import LevelPlacement, margins_v, windows_at
+from tidegate.lint.derived.levels.level_spread import is_nominal
 from tidegate.lint.description.load import Loaded
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, dotted
 from tidegate.lint.description.rewrite import replace_file, rewritten

@@ -11,8 +11,8 @@ from typing import TYPE_CHECKING, Final
 from tidegate.lint.batch import Request, judge_file
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.derived.asking import Unknown, ask
-from tidegate.lint.derived.detector_placement import DetectorPlacement, detector_placement
-from tidegate.lint.derived.placement_facts import PLACED_ROLES
+from tidegate.lint.derived.levels.detector_placement import DetectorPlacement, detector_placement
+from tidegate.lint.derived.levels.placement_facts import PLACED_ROLES
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.place import Fault
 from tidegate.lint.engine import Review
@@ -20,7 +20,7 @@ from tidegate.lint.reports.placement_text import all_levers, placement_lines, ro
 from tidegate.lint.reports.plain_text import plain
 
 if TYPE_CHECKING:
-    from tidegate.lint.derived.crossover_sweep import CrossoverSweep
+    from tidegate.lint.derived.crossover.crossover_sweep import CrossoverSweep
     from tidegate.lint.physics.yield_estimate import YieldEstimate
 
 _SAMPLES: Final = 1_000_000
@@ -130,7 +130,7 @@ def _components(
     """What the components of a crossover make, where one detector is asked for: NumPy is loaded for it alone."""
     if options.detector is None or placed[0].comparator.crossover is None:
         return None
-    from tidegate.lint.derived.crossover_sweep import crossover_sweep
+    from tidegate.lint.derived.crossover.crossover_sweep import crossover_sweep
 
     return crossover_sweep(review.loaded.description, review.graph, placed[0].comparator)
 
@@ -187,7 +187,7 @@ def _estimates(
 def _estimate(
     review: Review, placed: DetectorPlacement, *, samples: int, seed: int, advance: Callable[[int], None] | None
 ) -> YieldEstimate | Unknown:
-    from tidegate.lint.derived.drawn_detector import drawn_detector
+    from tidegate.lint.derived.levels.drawn_detector import drawn_detector
     from tidegate.lint.physics.yield_estimate import yield_estimate
 
     if isinstance(placed.found, Unknown):

@@ -8,9 +8,9 @@ from functools import partial
 from typing import Any, Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.at_code import as_shipped
-from tidegate.lint.derived.guarding_nets import LOW_ROLES, detectors_behind_nets, guarding_nets, watching
-from tidegate.lint.derived.level_margins import LevelMargin, guarantee
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.level_margins import LevelMargin, guarantee
+from tidegate.lint.derived.reset_path.guarding_nets import LOW_ROLES, detectors_behind_nets, guarding_nets, watching
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Load, OutputStage
 from tidegate.lint.graph.leaning_loops import in_a_loop, leaning_loops

@@ -6,12 +6,12 @@ from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any
 
 from tidegate.lint.derived.asking import Unknown
-from tidegate.lint.derived.crossover_words import DIMENSION_OF
+from tidegate.lint.derived.crossover.crossover_words import DIMENSION_OF
 from tidegate.lint.quantity import Dimension
 from tidegate.lint.reports.crossover_text import contributions
 
 if TYPE_CHECKING:
-    from tidegate.lint.derived.crossover_sweep import CrossoverSweep, SecondCrossing, Tracking
+    from tidegate.lint.derived.crossover.crossover_sweep import CrossoverSweep, SecondCrossing, Tracking
     from tidegate.lint.physics.corner_spread import Spread
 
 

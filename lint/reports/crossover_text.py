@@ -6,12 +6,12 @@ from collections.abc import Iterator, Mapping
 from typing import TYPE_CHECKING
 
 from tidegate.lint.derived.asking import Unknown
-from tidegate.lint.derived.crossover_words import DIMENSION_OF, corner_text
+from tidegate.lint.derived.crossover.crossover_words import DIMENSION_OF, corner_text
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.reports.placement_text import millivolts, row, signed
 
 if TYPE_CHECKING:
-    from tidegate.lint.derived.crossover_sweep import CrossoverSweep, SecondCrossing, Tracking
+    from tidegate.lint.derived.crossover.crossover_sweep import CrossoverSweep, SecondCrossing, Tracking
     from tidegate.lint.physics.corner_spread import Spread
 
 

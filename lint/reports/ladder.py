@@ -9,8 +9,8 @@ import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import Unknown, ask
-from tidegate.lint.derived.at_code import as_shipped
-from tidegate.lint.derived.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.supply import Rail

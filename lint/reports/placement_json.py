@@ -7,8 +7,8 @@ from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any, Final
 
 from tidegate.lint.derived.asking import Unknown
-from tidegate.lint.derived.detector_placement import DetectorPlacement
-from tidegate.lint.derived.level_placement import LevelPlacement
+from tidegate.lint.derived.levels.detector_placement import DetectorPlacement
+from tidegate.lint.derived.levels.level_placement import LevelPlacement
 from tidegate.lint.description.place import Place
 from tidegate.lint.physics.placement import Limit
 from tidegate.lint.reports.placement_text import limit_fact, limit_text

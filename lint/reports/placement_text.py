@@ -9,10 +9,10 @@ from collections.abc import Iterator, Sequence
 from typing import Final
 
 from tidegate.lint.derived.asking import Unknown
-from tidegate.lint.derived.detector_placement import DetectorPlacement
-from tidegate.lint.derived.guarded_loads import Bound
-from tidegate.lint.derived.level_placement import LevelPlacement
-from tidegate.lint.derived.placement_facts import PlacementFacts, spread_of
+from tidegate.lint.derived.levels.detector_placement import DetectorPlacement
+from tidegate.lint.derived.levels.guarded_loads import Bound
+from tidegate.lint.derived.levels.level_placement import LevelPlacement
+from tidegate.lint.derived.levels.placement_facts import PlacementFacts, spread_of
 from tidegate.lint.physics.placement import Limit, Requirement, Side
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.reports.plain_text import plain

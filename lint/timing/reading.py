@@ -8,8 +8,8 @@ from typing import Any, Final
 import msgspec
 
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.at_code import at_code
-from tidegate.lint.derived.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.levels.at_code import at_code
+from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference, StartUp
 from tidegate.lint.description.model.reset_path import Hold, Load, OutputStage, Reset

@@ -12,8 +12,8 @@ from collections.abc import Callable
 import numpy as np
 from scipy.optimize import brentq
 
-from tidegate.lint.derived.crossover_facts import Crossing, CrossoverFacts, JunctionFacts, TransistorFacts
-from tidegate.lint.derived.crossover_sweep import level_of
+from tidegate.lint.derived.crossover.crossover_facts import Crossing, CrossoverFacts, JunctionFacts, TransistorFacts
+from tidegate.lint.derived.crossover.crossover_sweep import level_of
 from tidegate.lint.physics.array_domain import FloatArray
 from tidegate.lint.physics.corner_spread import TEMPERATURE, factorial_corners
 

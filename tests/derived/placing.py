@@ -6,9 +6,9 @@ from functools import cache
 
 from tests.rules.sound import patched
 from tidegate.lint.derived.asking import ask
-from tidegate.lint.derived.detector_placement import DetectorPlacement, detector_placement
-from tidegate.lint.derived.level_placement import LevelPlacement
-from tidegate.lint.derived.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.levels.detector_placement import DetectorPlacement, detector_placement
+from tidegate.lint.derived.levels.level_placement import LevelPlacement
+from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.graph.dependency import build
 from tidegate.lint.physics.trip_window import Window
 

@@ -7,7 +7,7 @@ import pytest
 
 from tests.rules.sound import case_of
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.crossover_level import CrossoverLevel, release_level, second_crossing_level
+from tidegate.lint.derived.crossover.crossover_level import CrossoverLevel, release_level, second_crossing_level
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.physics import crossover, mos_threshold, silicon
 from tidegate.lint.physics.array_domain import FloatArray

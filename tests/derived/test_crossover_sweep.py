@@ -11,9 +11,9 @@ from scipy.optimize import brentq, minimize_scalar
 
 from tests.rules.sound import both, case_of, patched, without
 from tidegate.lint.derived.asking import Unknown
-from tidegate.lint.derived.crossover_facts import CrossoverFacts, release_facts, second_crossing_facts
-from tidegate.lint.derived.crossover_level import level_of as scalar_level_of
-from tidegate.lint.derived.crossover_sweep import CrossoverSweep, crossover_sweep, level_of
+from tidegate.lint.derived.crossover.crossover_facts import CrossoverFacts, release_facts, second_crossing_facts
+from tidegate.lint.derived.crossover.crossover_level import level_of as scalar_level_of
+from tidegate.lint.derived.crossover.crossover_sweep import CrossoverSweep, crossover_sweep, level_of
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.graph.dependency import build
 from tidegate.lint.physics.corner_spread import TEMPERATURE, Spread, factorial_corners

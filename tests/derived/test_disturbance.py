@@ -9,8 +9,8 @@ from hypothesis import strategies as st
 
 from tests.rules.sound import both, case_of
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.disturbance import bumps_on, disturbers, ignored_s, own_kick, sharers
-from tidegate.lint.derived.disturbed_node import CoupledEdge
+from tidegate.lint.derived.disturbance.disturbance import bumps_on, disturbers, ignored_s, own_kick, sharers
+from tidegate.lint.derived.disturbance.disturbed_node import CoupledEdge
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.graph.edge import path_text
 

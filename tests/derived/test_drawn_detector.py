@@ -10,7 +10,7 @@ from scipy.stats import norm
 from tests.derived.placing import found
 from tests.rules.sound import patched
 from tidegate.lint.derived.asking import Unknown, ask
-from tidegate.lint.derived.drawn_detector import drawn_detector
+from tidegate.lint.derived.levels.drawn_detector import drawn_detector
 from tidegate.lint.graph.dependency import build
 from tidegate.lint.physics.yield_estimate import DrawnDetector, YieldEstimate, yield_estimate
 

@@ -9,8 +9,8 @@ import pytest
 from tests.rules.sound import patched, without
 from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import Unknown, ask
-from tidegate.lint.derived.follower_supplies import follower_supplies
-from tidegate.lint.derived.guarded_loads import Bound, greatest_supplies, guarded_loads, least_supplies
+from tidegate.lint.derived.levels.follower_supplies import follower_supplies
+from tidegate.lint.derived.levels.guarded_loads import Bound, greatest_supplies, guarded_loads, least_supplies
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.graph.dependency import build
 from tidegate.lint.graph.edge import path_text

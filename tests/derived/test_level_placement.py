@@ -13,7 +13,7 @@ from scipy.optimize import brentq
 from tests.derived.placing import found, placed, windows
 from tests.rules.sound import without
 from tidegate.lint.derived.asking import Unknown
-from tidegate.lint.derived.level_placement import place_levels, with_hysteresis
+from tidegate.lint.derived.levels.level_placement import place_levels, with_hysteresis
 from tidegate.lint.physics.placement import Requirement
 
 ONE_ERROR = "reference: null, divider: null, offset: null, all: {amount: 10 mV, is: bound, at: rail}"

@@ -5,7 +5,7 @@ from uncertainties import ufloat
 
 from tests.rules.sound import both, case_of, without
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.trip_levels import falling_window, has_no_hysteresis, hysteresis_window, rising_window
+from tidegate.lint.derived.levels.trip_levels import falling_window, has_no_hysteresis, hysteresis_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.physics.trip_window import Window
 

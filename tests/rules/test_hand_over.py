@@ -8,7 +8,7 @@ from typing import Any, Final
 import pytest
 
 from tests.rules.sound import both, changed, judged, of_kind, without
-from tidegate.lint.derived.held_span import HeldSpan, steps
+from tidegate.lint.derived.levels.held_span import HeldSpan, steps
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind
 from tidegate.rules.hand_over import RULES

@@ -1,0 +1,1 @@
+"""Levels made without a reference: facts, the level corner by corner, and the sweep over all corners."""

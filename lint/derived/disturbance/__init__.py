@@ -1,0 +1,1 @@
+"""What disturbs a comparator: neighbours, shared references, and what its hysteresis must cover."""

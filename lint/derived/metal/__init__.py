@@ -1,0 +1,1 @@
+"""The current of a slow edge, and the metal that carries it."""

@@ -1,0 +1,1 @@
+"""What feeds an element, in which order rails come up, and what is taken from them."""
