@@ -13,10 +13,11 @@ import re
 import sys
 from collections.abc import Callable, Collection, Iterable, Iterator, Sequence
 from contextlib import contextmanager, redirect_stdout
-from dataclasses import replace
 from functools import partial, wraps
 from pathlib import Path
 from typing import Any, Final
+
+from msgspec.structs import replace
 
 from tidegate.lint.case import Case
 from tidegate.lint.graph.dependency import SECTIONS

@@ -3,10 +3,14 @@
 from __future__ import annotations
 
 import json
-import textwrap
-from typing import Any
+import re
+from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.reports.plain_text import UNSAFE
+
+_UNSAFE_IN_JSON: Final = re.compile(UNSAFE.pattern.replace("\x00-\x1f", ""))  # JSON writes those as numbers itself
 
 
 def json_form(data: Any, *, depth: int = 0) -> str:
@@ -15,10 +19,13 @@ def json_form(data: Any, *, depth: int = 0) -> str:
     Control, format and direction characters, and halves of surrogate pairs, are written as their numbers, which JSON
     reads as the same text.
     """
-    text = json.dumps(data, indent=2, ensure_ascii=False, allow_nan=False)
-    return textwrap.indent(UNSAFE.sub(_numbered, text), "  " * depth)
+    try:
+        text = msgspec.json.format(msgspec.json.encode(data), indent=2).decode()
+    except UnicodeEncodeError:  # half a surrogate pair, as in a file name that is no text
+        text = json.dumps(data, indent=2, ensure_ascii=False, allow_nan=False)
+    pad = "  " * depth
+    return f"{pad}{_UNSAFE_IN_JSON.sub(_numbered, text)}".replace("\n", f"\n{pad}")
 
 
-def _numbered(found: Any) -> str:
-    character: str = found[0]
-    return character if character == "\n" else json.dumps(character)[1:-1] if not character.isascii() else "\\u007f"
+def _numbered(found: re.Match[str]) -> str:
+    return "\\u007f" if found[0] == "\x7f" else json.dumps(found[0])[1:-1]
