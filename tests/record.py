@@ -14,6 +14,7 @@ from pathlib import Path
 from typing import Any
 
 ROOT = Path(__file__).resolve().parents[1]
+SAMPLE_LINES = 36
 
 
 @contextlib.contextmanager
@@ -71,7 +72,26 @@ def recorded() -> Mapping[str, Callable[[], str]]:
         "lint/physics/README.md": _documents().formula_sheet,
         "tests/golden/rules.txt": lambda: command("rules"),
         "tests/golden/help.txt": _help,
+        "README.md": _readme,
     }
+
+
+def _readme() -> str:
+    """The README with its sample of a report and its command help as they are today."""
+    text = (ROOT / "README.md").read_text("utf-8")
+    sample = command("review", "examples/faulty.yaml").splitlines()[:SAMPLE_LINES]
+    while sample and sample[-1].strip():  # up to the end of a block
+        sample.pop()
+    text = _filled(text, "sample", ["```text", *sample[:-1], "...", "```"])
+    return _filled(text, "help", ["```text", *_help().rstrip().splitlines(), "```"])
+
+
+def _filled(text: str, name: str, lines: list[str]) -> str:
+    """A text with lines between the marks of a name."""
+    head, begin, rest = text.partition(f"<!-- {name}: python tests/record.py fills this in -->\n")
+    _, end, foot = rest.partition(f"<!-- end of {name} -->\n")
+    assert begin and end, f"README.md has no place for {name}"
+    return head + begin + "\n".join(lines) + "\n" + end + foot
 
 
 def _documents() -> Any:

@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 import argparse
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from difflib import get_close_matches
 from typing import Final
 
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.description.load import load
+from tidegate.lint.description.model.reset_path import Bypass
 from tidegate.lint.description.place import DescriptionError
 from tidegate.lint.graph.dependency import build
 from tidegate.lint.physics.domain import DomainError
@@ -24,6 +25,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
         "--scenario", metavar="NAME",
         help="one scenario; without it, start-ups and power-downs are drawn, and the others named at the end",
     )  # fmt: skip
+    parser.add_argument("--override", metavar="BYPASS", help="draw them with this override active all the time")
     parser.add_argument(
         "--as", dest="form", choices=("terminal", "json"), default="terminal",
         help="form of the timelines (default: terminal)",
@@ -51,6 +53,12 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
         hint = f"did you mean {near[0]!r}?" if near else f"there are {', '.join(others)}"
         streams.err.write(f"{options.file}: no scenario is called {options.scenario!r}; {hint}\n")
         return Exit.UNUSABLE
+    if options.override is not None:
+        bypass = loaded.description.bypasses.get(options.override)
+        if bypass is None or bypass.overrides is None:
+            streams.err.write(f"{options.file}: {_no_override(options.override, loaded.description.bypasses)}\n")
+            return Exit.UNUSABLE
+        shown = [lines.with_override(line, bypass) for line in shown]
     if options.form == "json":
         from tidegate.lint.reports.timeline_json import timelines_text
 
@@ -58,6 +66,15 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
         return Exit.KEPT
     _draw(lines, shown, others, streams)
     return Exit.KEPT
+
+
+def _no_override(name: str, bypasses: Mapping[str, Bypass]) -> str:
+    """Why there is no override to draw with, and which there are."""
+    if name in bypasses:
+        return f"bypasses.{name}.overrides is not given"
+    near = get_close_matches(name, bypasses, 1)
+    hint = f"did you mean {near[0]}?" if near else f"there are {', '.join(bypasses) or 'none'}"
+    return f"no override is called {name!r}; {hint}"
 
 
 def _groups(lines: Timelines) -> Sequence[Callable[[], Sequence[Timeline]]]:

@@ -51,6 +51,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
         help=f"write the report to a file too, in the form its ending says ({', '.join(ENDINGS)}); may be given again",
     )  # fmt: skip
     add("--every", action="store_true", help="show in text every judgement, those that pass as well")
+    add("--findings-only", action="store_true", help="in SARIF, leave out all but failures and questions")
     add(
         "--fail-at", choices=[level.value for level in Level], metavar="LEVEL",
         help="least level of a failure that makes the exit status 1: error, warning (usual) or note",
@@ -100,14 +101,14 @@ class _StoppedError(Exception):
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Judge every file; the exit status is the worst of all."""
     form = Form(options.form)
-    shown = View(form, Look(streams.width, streams.colour, options.every)) if form is Form.TERMINAL else View(form)
+    shown = _view(form, Look(streams.width, streams.colour, options.every), options)
     saved: dict[str, View] = {}
     for path in options.save:
         told = form_of(path)
         if told is None:
             streams.err.write(f"--save {plain(path)}: the form is told by the ending: {', '.join(ENDINGS)}\n")
             return Exit.UNUSABLE
-        saved[path] = View(told, Look(every=options.every)) if told is Form.TERMINAL else View(told)
+        saved[path] = _view(told, Look(every=options.every), options)
     request = Request(
         streams.today, streams.families, options.settings, tuple(options.pack), options.fail_at,
         None if options.also is None else tuple(options.also),
@@ -117,6 +118,13 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     except _StoppedError as error:
         streams.err.write(f"{plain(str(error))}\n")
         return Exit.UNUSABLE
+
+
+def _view(form: Form, look: Look, options: argparse.Namespace) -> View:
+    """A form with what of its looks can make a difference: two that are alike are made once."""
+    if form is Form.TERMINAL:
+        return View(form, look)
+    return View(form, findings_only=options.findings_only and form is Form.SARIF)
 
 
 @dataclass(frozen=True, slots=True)

@@ -7,7 +7,7 @@
 
 _shtab_tidegate_subparsers=(review margins place ramp rules draw trace start compare schema completion)
 
-_shtab_tidegate_review_option_strings=(-h --help --as --save --every --fail-at --also --settings --pack --workers --on)
+_shtab_tidegate_review_option_strings=(-h --help --as --save --every --findings-only --fail-at --also --settings --pack --workers --on)
 _shtab_tidegate_margins_option_strings=(-h --help --element --family --as --settings --pack)
 _shtab_tidegate_place_option_strings=(-h --help --as --apply --yield --samples --seed --settings)
 _shtab_tidegate_ramp_option_strings=(-h --help --scenario --as)
@@ -39,6 +39,7 @@ _shtab_tidegate_review_pos_0_nargs=+
 _shtab_tidegate_review__h_nargs=0
 _shtab_tidegate_review___help_nargs=0
 _shtab_tidegate_review___every_nargs=0
+_shtab_tidegate_review___findings_only_nargs=0
 _shtab_tidegate_margins__h_nargs=0
 _shtab_tidegate_margins___help_nargs=0
 _shtab_tidegate_place__h_nargs=0

@@ -110,6 +110,7 @@ _shtab_tidegate_review_options=(
   "--as[form of the report on the output (default\: terminal)]:form:(terminal json sarif markdown html)"
   "*--save[write the report to a file too, in the form its ending says (.txt, .json, .sarif, .md, .html)\; may be given again]:PATH:"
   "--every[show in text every judgement, those that pass as well]"
+  "--findings-only[in SARIF, leave out all but failures and questions]"
   "--fail-at[least level of a failure that makes the exit status 1\: error, warning (usual) or note]:LEVEL:(error warning note)"
   "*--also[let judgements of this kind, open or review, make the exit status 1 too\; may be given twice]:KIND:(open review)"
   "--settings[settings for all files, in place of the nearest tidegate.settings.yaml]:FILE:"

@@ -52,6 +52,8 @@ class View:
 
     form: Form
     look: Look = field(default=Look())
+    findings_only: bool = False
+    """In SARIF: without the results that ask nothing of anybody."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -92,7 +94,8 @@ def part(view: View, judged: Judged) -> Part:
     if judged.review is None:
         return Part("", tuple(sarif.fault_notifications(judged.faults)))
     notes = sarif.rule_fault_notifications(judged.review.faults)
-    return Part(sarif.results_text(sarif.review_results(judged.review)), tuple(notes))
+    results = sarif.review_results(judged.review, findings_only=view.findings_only)
+    return Part(sarif.results_text(results), tuple(notes))
 
 
 def _terminal(judged: Judged, look: Look) -> str:

@@ -111,9 +111,10 @@ def _sentence(text: str) -> str:
     return f"{text[0].upper()}{text[1:]}."
 
 
-def review_results(review: Review) -> list[dict[str, Any]]:
-    """One result for every judgement on one description."""
-    return [_result(review, judgement) for judgement in review.judgements]
+def review_results(review: Review, *, findings_only: bool = False) -> list[dict[str, Any]]:
+    """One result for every judgement on one description, or for failures and questions alone."""
+    told = (Kind.FAIL, Kind.REVIEW) if findings_only else tuple(Kind)
+    return [_result(review, judgement) for judgement in review.judgements if judgement.kind in told]
 
 
 def _result(review: Review, judgement: Judgement) -> dict[str, Any]:

@@ -118,10 +118,15 @@ def _without_spread_from_nothing(part: TimedPart) -> TimedPart:
     return msgspec.structs.replace(part, **changes)
 
 
-def evaluate(net: Network, scenario: Scenario, known: States | None = None) -> dict[str, State]:
-    """The state of every element in a scenario; ``known`` is taken for what the network does not order anew."""
+def evaluate(
+    net: Network, scenario: Scenario, known: States | None = None, forced: States | None = None
+) -> dict[str, State]:
+    """The state of every element in a scenario; ``known`` is taken for what the network does not order anew.
+
+    What is ``forced`` has that state whatever it leans on, as an override forces it.
+    """
     states = _States(known or {})
-    times = _Timing(net, scenario, states)
+    times = _Timing(net, scenario, states, forced or {})
     for group, leans_on_itself in net.order:
         if not leans_on_itself:
             name = group[0]
@@ -149,10 +154,11 @@ class _States(dict[str, State]):
 class _Timing:
     """One scenario in the making."""
 
-    def __init__(self, net: Network, scenario: Scenario, states: dict[str, State]) -> None:
+    def __init__(self, net: Network, scenario: Scenario, states: dict[str, State], forced: States) -> None:
         self.net = net
         self.scenario = scenario
         self.states = states
+        self.forced = forced
 
     def settle_loop(self, group: Sequence[str]) -> None:
         """What leans on itself: nothing is on at first, and what then follows is followed until it stays the same."""
@@ -169,6 +175,8 @@ class _Timing:
 
     def state(self, part: TimedPart) -> State:
         """The state of one element, from those of what it leans on."""
+        if part.id in self.forced:
+            return self.forced[part.id]
         match part:
             case RailPart():
                 return self._rail(part)

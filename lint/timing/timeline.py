@@ -23,6 +23,7 @@ import msgspec
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.description.model.reset_path import Bypass
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import EdgeKind
@@ -36,6 +37,7 @@ from tidegate.lint.timing.ramps import Ramps, read_ramps
 from tidegate.lint.timing.reading import Parts, read_parts
 from tidegate.lint.timing.scenario import Scenario, Scene
 from tidegate.lint.timing.starts import Setting, starts, untried
+from tidegate.lint.timing.state import ASSERTED, RELEASED
 from tidegate.lint.timing.waveform import Waveform
 
 _LEAST_LONG_S: Final = 1.0
@@ -120,6 +122,13 @@ class Timelines:
         net = self._cone(scenario.rail) if scenario.rail else self.network
         known = self.settled if scenario.rail else None
         return Timeline(scenario, evaluate(net.pinned(pinned) if pinned else net, scenario, known))
+
+    def with_override(self, line: Timeline, bypass: Bypass) -> Timeline:
+        """A timeline with an override active all the time: what it overrides decides as it forces."""
+        assert bypass.overrides is not None
+        forced = {bypass.overrides: ASSERTED if bypass.forces == "asserted" else RELEASED}
+        net = self.network.among({bypass.overrides, *reached(self._leant_on_by, bypass.overrides)})
+        return Timeline(line.scenario, {**line.states, **evaluate(net, line.scenario, line.states, forced)})
 
     def as_if_given(self, scenario: Scenario, elements: Iterable[str]) -> Timeline:
         """The timeline with each least value that is missing as great as the greatest: the best that it can be."""

@@ -9,8 +9,13 @@ from pathlib import Path
 import pytest
 
 from tidegate.lint.cli import main
+from tidegate.lint.description.load import load
+from tidegate.lint.graph.dependency import build
 from tidegate.lint.reports.time_axis import time_axis
 from tidegate.lint.reports.timeline import ASCII, UNICODE, signs_for
+from tidegate.lint.timing.interval import FOREVER_S
+from tidegate.lint.timing.state import Decision
+from tidegate.lint.timing.timeline import timelines
 
 SOUND = str(Path(__file__).parents[2] / "examples" / "sound.yaml")
 
@@ -101,3 +106,34 @@ def test_every_edge_has_a_column_of_its_own_where_there_is_room() -> None:
     assert len(set(columns[2:])) == len(columns[2:])
     for number in range(axis.width):
         assert axis.column(axis.column_at(number).middle_s) == number
+
+
+def test_an_override_lifts_what_its_detectors_hold(tmp_path: Path) -> None:
+    """With uv stuck asserting (its level above the supply), the net stays in reset; with the override it is released."""
+    levels = "trip: {rising: 1.677 V, falling: 1.627 V}"
+    text = Path(SOUND).read_text("utf-8").replace(levels, "trip: {rising: 2.4 V, falling: 2.35 V}")
+    assert "2.4 V" in text
+    chip = tmp_path / "stuck.yaml"
+    chip.write_text(text, "utf-8")
+    (tmp_path / "process.yaml").write_text(Path(SOUND).with_name("process.yaml").read_text("utf-8"), "utf-8")
+    loaded = load(chip)
+    lines = timelines(loaded.description, build(loaded.description))
+    bypass = loaded.description.bypasses["skip_resets"]
+    assert lines.starts
+    for line in lines.starts:
+        held, lifted = line.states["por_n"], lines.with_override(line, bypass).states["por_n"]
+        assert isinstance(held, Decision)
+        assert isinstance(lifted, Decision)
+        assert not held.surely_releases or held.surely_releases[-1][1] < FOREVER_S
+        assert lifted.surely_releases[-1][1] == FOREVER_S
+        assert lifted.may_be_held == held.may_be_held  # the stage behind still has to come alive
+
+
+def test_an_override_that_is_not_there_is_named(capsys: pytest.CaptureFixture[str]) -> None:
+    assert main(["ramp", SOUND, "--override", "skip_reset"]) == 2
+    assert capsys.readouterr().err == f"{SOUND}: no override is called 'skip_reset'; did you mean skip_resets?\n"
+
+
+def test_with_an_override_the_timelines_are_others(capsys: pytest.CaptureFixture[str]) -> None:
+    scenario = ("--scenario", "fastest ramp")
+    assert _drawn(capsys, *scenario, "--override", "skip_resets") != _drawn(capsys, *scenario)
