@@ -109,7 +109,7 @@ def test_every_edge_has_a_column_of_its_own_where_there_is_room() -> None:
 
 
 def test_an_override_lifts_what_its_detectors_hold(tmp_path: Path) -> None:
-    """With uv stuck asserting (its level above the supply), the net stays in reset; with the override it is released."""
+    """With uv stuck asserting, its level above the supply, the net stays in reset; an override lifts it."""
     levels = "trip: {rising: 1.677 V, falling: 1.627 V}"
     text = Path(SOUND).read_text("utf-8").replace(levels, "trip: {rising: 2.4 V, falling: 2.35 V}")
     assert "2.4 V" in text
