@@ -8,11 +8,12 @@ import uuid
 from collections import deque
 from collections.abc import Callable, Iterable, Iterator, Sequence
 from concurrent.futures import Executor, Future
-from dataclasses import dataclass, field
 from functools import lru_cache
 from itertools import islice
 from pathlib import Path
 from typing import Any, Final, TypeAlias, TypeVar
+
+import msgspec
 
 from tidegate.lint.description.load import load
 from tidegate.lint.description.place import DescriptionError, Fault, Place
@@ -29,8 +30,7 @@ _B = TypeVar("_B")
 _AHEAD: Final = 256  # items handed out before their turn: enough to keep a cluster busy, few enough to hold in memory
 
 
-@dataclass(frozen=True, slots=True)
-class Request:
+class Request(msgspec.Struct, frozen=True):
     """How descriptions are to be judged; the same for all of them, and small enough to send to another process."""
 
     today: datetime.date
@@ -41,22 +41,21 @@ class Request:
     packs: tuple[str, ...] = ()
     fail_at: str | None = None
     also: tuple[str, ...] | None = None
-    folder: str = field(default_factory=lambda: str(Path.cwd()))
+    folder: str = msgspec.field(default_factory=lambda: str(Path.cwd()))
     """Where names of files count from: a worker may have been started elsewhere."""
     top: str | None = None
     """The folder above which no settings are looked for."""
-    run: str = field(default_factory=lambda: uuid.uuid4().hex)
+    run: str = msgspec.field(default_factory=lambda: uuid.uuid4().hex)
     """Tells one run from the next: a worker that outlives a run must read settings and packs again."""
 
 
-@dataclass(frozen=True, slots=True)
-class Judged:
+class Judged(msgspec.Struct, frozen=True):
     """What came of one file: a review, or the faults that keep it from being used."""
 
     file: str
     settings: Settings
     review: Review | None
-    faults: tuple[Fault, ...] = field(default=())
+    faults: tuple[Fault, ...] = msgspec.field(default=())
 
 
 def judge_file(file: str, request: Request) -> Judged:

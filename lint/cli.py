@@ -5,6 +5,7 @@ from __future__ import annotations
 import argparse
 import datetime
 import gc
+import io
 import os
 import sys
 from collections.abc import Sequence
@@ -94,16 +95,27 @@ def main(arguments: Sequence[str] | None = None) -> int:
     options = parser(only if only in _COMMANDS else "").parse_args(given)
     # A run makes many objects and hardly any garbage: the collector would only walk them, again and again.
     gc.set_threshold(_OBJECTS_BETWEEN_COLLECTIONS, 20, 100)
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):  # a letter that the terminal cannot show is written as its number
+            stream.reconfigure(errors="backslashreplace")
     try:
         status = _run(options)
         sys.stdout.flush()
-    except BrokenPipeError:
-        # The reader has gone, as `| head` does: what it took was right. Spare the interpreter its own flush.
-        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+    except BrokenPipeError:  # the reader has gone, as `| head` does: what it took was right
+        _drop_output()
         return 0
+    except OSError as error:
+        _drop_output()
+        sys.stderr.write(f"tidegate: the output cannot be written ({error.strerror or error})\n")
+        return 2
     except KeyboardInterrupt:
         return 130
     return status
+
+
+def _drop_output() -> None:
+    """Spare the interpreter its own flush at the end, which would fail again."""
+    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 def _run(options: argparse.Namespace) -> int:

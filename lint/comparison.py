@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
 from enum import IntEnum
 from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.description.place import dotted
 from tidegate.lint.engine import WEIGHT, Review
@@ -23,8 +24,7 @@ class Harm(IntEnum):
     WORSE = 4
 
 
-@dataclass(frozen=True, slots=True)
-class FactChange:
+class FactChange(msgspec.Struct, frozen=True):
     """A fact that was given, taken away or changed; None where it is not given."""
 
     path: str
@@ -32,8 +32,7 @@ class FactChange:
     new: str | None
 
 
-@dataclass(frozen=True, slots=True)
-class JudgementChange:
+class JudgementChange(msgspec.Struct, frozen=True):
     """What a rule says about an element, before and after; None where it says nothing."""
 
     rule: str
@@ -51,8 +50,7 @@ class JudgementChange:
         return 0.0 if old == new else new - old
 
 
-@dataclass(frozen=True, slots=True)
-class Comparison:
+class Comparison(msgspec.Struct, frozen=True):
     """All that changed between two reviews."""
 
     facts: tuple[FactChange, ...]

@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
-from dataclasses import dataclass
 from functools import partial
 from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.reset_path.override import resets_in
@@ -44,8 +45,7 @@ loads: {{adc: {{leans_on: [bias_copy]}}}}
 """
 
 
-@dataclass(frozen=True, slots=True)
-class _Crossing:
+class _Crossing(msgspec.Struct, frozen=True):
     """A signal between two rails."""
 
     driver: Comparator | OutputStage

@@ -146,3 +146,19 @@ def test_completion_scripts_are_sound_shell() -> None:
     script = tidegate("completion", "bash").stdout
     assert subprocess.run(["bash", "-n"], input=script, text=True, check=False).returncode == 0
     assert "review" in script
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="there is no /dev/full on this system")
+def test_a_full_disk_is_said_in_one_line() -> None:
+    command = f"{sys.executable} -m tidegate.lint.cli review {SOUND} > /dev/full"
+    done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, cwd=ROOT, check=False)
+    assert done.returncode == 2
+    assert done.stderr == "tidegate: the output cannot be written (No space left on device)\n"
+
+
+def test_letters_that_the_terminal_cannot_show_are_written_as_numbers(tmp_path: Path) -> None:
+    chip = tmp_path / "chip.yaml"
+    chip.write_text("subsystem: \u00dcberwachung\nrails: {avdd: {nominal: 1.8 V}}\n", "utf-8")
+    done = tidegate("review", str(chip), PYTHONIOENCODING="ascii", PYTHONUTF8="0")
+    assert done.returncode in (0, 1)
+    assert done.stdout.startswith("\\xdcberwachung")

@@ -221,6 +221,6 @@ def _progress(streams: Streams, total: int) -> Iterator[Callable[[int], None] | 
         return
     from rich.progress import Progress
 
-    with Progress(console=streams.console(error=True), transient=True) as bar:
+    with Progress(console=streams.console(), transient=True) as bar:
         task = bar.add_task("drawn", total=total)
         yield lambda parts: bar.advance(task, parts)

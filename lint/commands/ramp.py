@@ -37,9 +37,7 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     try:
         loaded = load(options.file)
     except DescriptionError as error:
-        from tidegate.lint.reports.terminal import show_faults
-
-        show_faults(streams.console(error=True), error.faults)
+        streams.tell(error.faults)
         return Exit.UNUSABLE
     lines = timelines(loaded.description, build(loaded.description))
     groups = _groups(lines)

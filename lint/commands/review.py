@@ -9,10 +9,11 @@ from collections import Counter
 from collections.abc import Iterable, Iterator, Sequence
 from concurrent.futures import BrokenExecutor, Executor
 from contextlib import AbstractContextManager, ExitStack, closing, contextmanager, nullcontext
-from dataclasses import dataclass
 from functools import partial
 from pathlib import Path
 from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.batch import Judged, Request, catalogue, judge_file
 from tidegate.lint.batch import run as run_batch
@@ -66,8 +67,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
     add("--on", metavar="ADDRESS", help="a running Dask scheduler to work on, such as tcp://host:8786 (needs dask)")
 
 
-@dataclass(frozen=True, slots=True)
-class _Done:
+class _Done(msgspec.Struct, frozen=True):
     """What came of a file, as plain data."""
 
     status: int
@@ -127,8 +127,7 @@ def _view(form: Form, look: Look, options: argparse.Namespace) -> View:
     return View(form, findings_only=options.findings_only and form is Form.SARIF)
 
 
-@dataclass(frozen=True, slots=True)
-class _Order:
+class _Order(msgspec.Struct, frozen=True):
     """What is wanted: how to judge, what to show on the output, what to save."""
 
     request: Request
@@ -291,7 +290,7 @@ def _with_progress(results: Iterator[_Done], total: int, streams: Streams, *, to
         return
     from rich.progress import Progress
 
-    with Progress(console=streams.console(error=True), transient=True) as bar:
+    with Progress(console=streams.console(), transient=True) as bar:
         task = bar.add_task("judged", total=total)
         for result in results:
             bar.advance(task)

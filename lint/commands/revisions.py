@@ -10,16 +10,16 @@ import tarfile
 import tempfile
 from collections.abc import Iterator
 from contextlib import contextmanager
-from dataclasses import dataclass
 from pathlib import Path, PurePosixPath
+
+import msgspec
 
 from tidegate.lint.description.place import DescriptionError, Fault, Place
 from tidegate.lint.description.yaml_text import read_yaml
 from tidegate.lint.settings import FILE_NAME
 
 
-@dataclass(frozen=True, slots=True)
-class Held:
+class Held(msgspec.Struct, frozen=True):
     """Where a description can be read."""
 
     folder: Path

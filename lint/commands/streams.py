@@ -14,6 +14,7 @@ import msgspec
 if TYPE_CHECKING:
     from rich.console import Console
 
+    from tidegate.lint.description.place import Fault
     from tidegate.lint.rule import Rule
 
 
@@ -46,9 +47,15 @@ class Streams(msgspec.Struct, frozen=True):
         """Columns of the output; 80 where it has none of its own."""
         return shutil.get_terminal_size((80, 24)).columns
 
-    def console(self, *, error: bool = False) -> Console:
-        """A console on the output or the error stream that takes text as it is: no markup, no emoji."""
+    def tell(self, faults: Sequence[Fault]) -> None:
+        """Say on the error stream why a file cannot be used."""
+        from tidegate.lint.reports.paint import painted
+        from tidegate.lint.reports.terminal import fault_lines
+
+        self.err.write(painted(fault_lines(faults), colour=False))
+
+    def console(self) -> Console:
+        """A console on the error stream, for progress: it takes text as it is, no markup, no emoji."""
         from rich.console import Console
 
-        file = self.err if error else self.out
-        return Console(file=file, markup=False, emoji=False, highlight=False, soft_wrap=True)
+        return Console(file=self.err, markup=False, emoji=False, highlight=False, soft_wrap=True)

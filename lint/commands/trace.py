@@ -35,9 +35,7 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     try:
         loaded = load(options.file)
     except DescriptionError as error:
-        from tidegate.lint.reports.terminal import show_faults
-
-        show_faults(streams.console(error=True), error.faults)
+        streams.tell(error.faults)
         return Exit.UNUSABLE
     graph = build(loaded.description)
     if options.element not in graph.elements:

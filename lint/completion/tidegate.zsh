@@ -98,6 +98,7 @@ _shtab_tidegate_place_defaults_added=0
 _shtab_tidegate_ramp_options=(
   "(- : *)"{-h,--help}"[show this help message and exit]"
   "--scenario[one scenario\; without it, start-ups and power-downs are drawn, and the others named at the end]:NAME:"
+  "--override[draw them with this override active all the time]:BYPASS:"
   "--as[form of the timelines (default\: terminal)]:form:(terminal json)"
   ":description (YAML or JSON):"
 )

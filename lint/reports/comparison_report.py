@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import textwrap
 from collections.abc import Iterator
-from dataclasses import dataclass
 from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.comparison import Comparison, FactChange, Harm, JudgementChange
 from tidegate.lint.judgement import Judgement
@@ -30,8 +31,7 @@ COMPARISON_SCHEMA: Final = "urn:tidegate:comparison:1"
 """The version of the form for machines (``schema/comparison.schema.json``)."""
 
 
-@dataclass(frozen=True, slots=True)
-class Sides:
+class Sides(msgspec.Struct, frozen=True):
     """What was compared, and under which settings both were judged."""
 
     old: str

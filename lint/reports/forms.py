@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-import io
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, field
 from enum import StrEnum
 from pathlib import PurePath
 from typing import Any, Final
+
+import msgspec
 
 from tidegate.lint.batch import Judged
 from tidegate.lint.reports.spool import Spool
@@ -37,8 +37,7 @@ def form_of(path: str) -> Form | None:
     return ENDINGS.get(PurePath(path).suffix.lower())
 
 
-@dataclass(frozen=True, slots=True)
-class Look:
+class Look(msgspec.Struct, frozen=True):
     """How a text report looks: its width, whether in colour, whether with what passes."""
 
     width: int = 80
@@ -46,18 +45,16 @@ class Look:
     every: bool = False
 
 
-@dataclass(frozen=True, slots=True)
-class View:
+class View(msgspec.Struct, frozen=True):
     """A form and, where it is text for people at a terminal, its look."""
 
     form: Form
-    look: Look = field(default=Look())
+    look: Look = msgspec.field(default=Look())
     findings_only: bool = False
     """In SARIF: without the results that ask nothing of anybody."""
 
 
-@dataclass(frozen=True, slots=True)
-class Part:
+class Part(msgspec.Struct, frozen=True):
     """What one description adds to a report: plain data, which can come from another process."""
 
     text: str = ""
@@ -67,8 +64,7 @@ class Part:
     """What the page is made of, which is drawn as a whole."""
 
 
-@dataclass(frozen=True, slots=True)
-class Ran:
+class Ran(msgspec.Struct, frozen=True):
     """What a report says of the run as a whole."""
 
     status: int
@@ -99,20 +95,12 @@ def part(view: View, judged: Judged) -> Part:
 
 
 def _terminal(judged: Judged, look: Look) -> str:
-    from rich.console import Console
+    from tidegate.lint.reports.paint import painted
+    from tidegate.lint.reports.terminal import fault_lines, review_lines
 
-    from tidegate.lint.reports.terminal import show_faults, show_review
-
-    out = io.StringIO()
-    console = Console(
-        file=out, width=look.width, force_terminal=look.colour, color_system="standard" if look.colour else None,
-        markup=False, emoji=False, highlight=False, legacy_windows=False,
-    )  # fmt: skip
     if judged.review is None:
-        show_faults(console, judged.faults)
-    else:
-        show_review(console, judged.review, all_kinds=look.every)
-    return out.getvalue()
+        return painted(fault_lines(judged.faults), colour=look.colour)
+    return painted(review_lines(judged.review, look.width, all_kinds=look.every), colour=look.colour)
 
 
 def _json(judged: Judged) -> str:

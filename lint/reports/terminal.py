@@ -4,10 +4,7 @@ from __future__ import annotations
 
 import textwrap
 from collections.abc import Iterator, Sequence
-from typing import Final, NamedTuple
-
-from rich.console import Console
-from rich.text import Text
+from typing import Final
 
 from tidegate.lint.description.place import Fault
 from tidegate.lint.engine import Review
@@ -15,6 +12,7 @@ from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind, Level
 from tidegate.lint.reports.ladder import ladder_lines, ladders
 from tidegate.lint.reports.order import CAUTION, by_element, described, missing_facts, verdict
+from tidegate.lint.reports.paint import Line
 from tidegate.lint.reports.plain_text import plain
 
 MOST_WIDTH: Final = 110
@@ -27,29 +25,16 @@ _STYLES: Final = {
 }  # fmt: skip
 
 
-class Line(NamedTuple):
-    """One line: pieces of text, each with its style."""
-
-    pieces: tuple[tuple[str, str], ...]
-
-
-def show_review(console: Console, review: Review, *, all_kinds: bool = False) -> None:
-    """Print the report of one description; ``all_kinds`` shows what passes and what does not apply as well."""
-    width = min(console.width, MOST_WIDTH)
-    for line in review_lines(review, width, all_kinds=all_kinds):
-        console.print(Text.assemble(*line.pieces), soft_wrap=True)
-
-
-def show_faults(console: Console, faults: Sequence[Fault]) -> None:
-    """Print why a file cannot be used: one line a fault."""
+def fault_lines(faults: Sequence[Fault]) -> Iterator[Line]:
+    """Why a file cannot be used: one line a fault."""
     for fault in faults:
-        text = Text(plain(f"{fault.place}: "), style="bold")
-        text.append(plain(str(fault).removeprefix(f"{fault.place}: ")), style="")
-        console.print(text, soft_wrap=True)
+        said = str(fault).removeprefix(f"{fault.place}: ")
+        yield Line(((plain(f"{fault.place}: "), "bold"), (plain(said), "")))
 
 
 def review_lines(review: Review, width: int, *, all_kinds: bool = False) -> Iterator[Line]:
-    """The lines of the report."""
+    """The lines of the report; ``all_kinds`` shows what passes and what does not apply as well."""
+    width = min(width, MOST_WIDTH)
     yield from _head(review, width)
     for subject, judgements in by_element(review.judgements):
         shown = [j for j in judgements if all_kinds or j.kind in (Kind.FAIL, Kind.REVIEW)]
