@@ -6,13 +6,14 @@ from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.crossover.crossover_level import level_is_known
 from tidegate.lint.derived.levels.held_span import Step, Way, held_span, steps
 from tidegate.lint.derived.reset_path.guarding_nets import LOW_ROLES, detectors_behind_nets, nets_of_detectors, watching
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.edge import EdgeKind, Hop
-from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.judgement import Judgement, Kind, Level
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 from tidegate.lint.timing.interval import FOREVER_S
@@ -44,7 +45,8 @@ references: {{ref_early: {{kind: threshold, works_from: 0.7 V, settling: 5 us, d
     "the next one decides: the highest of what it, its bias and its references need, as far as the rail feeds them. A "
     "detector that is said to assert while it cannot decide holds from 0 V on. A detector that another one of the "
     "stack arms takes over when that one lets go. Below the lowest of them, the hold of the net is judged by "
-    "passive_default/held. The span of a hole counts with the slowest ramp.",
+    "passive_default/held. The span of a hole counts with the slowest ramp. A lower detector without a reference is "
+    "judged at equal temperature by trip_window/crossover_tracks; without its components, a person must look.",
     facts=(
         "comparators.*.trip", "comparators.*.works_from", "comparators.*.undecided", "references.*.works_from",
         "biases.*.works_from", "domains.*.rail", "rails.*.nominal, rise and fall, for the time in a hole",
@@ -75,7 +77,8 @@ def stack_has_no_hole(rail: Rail, case: Case) -> Judgement:
         return case.passes("one detector alone holds reset up to the highest level")
     step = min(handed, key=lambda step: step.overlap_v)
     lower, upper = members[step.below.detector], members[step.above.detector]
-    if step.overlap_v < 0.0 and lower.role == "power_on" and lower.crossover is not None:
+    made_without_reference = lower.role == "power_on" and lower.crossover is not None
+    if step.overlap_v < 0.0 and made_without_reference and level_is_known(case, lower):
         return case.not_applicable(
             f"extreme against extreme {lower.id} can let go {show(-step.overlap_v, _V)} below where {upper.id} "
             "decides; both move with temperature, and trip_window/crossover_tracks compares them at the same one"
@@ -86,6 +89,8 @@ def stack_has_no_hole(rail: Rail, case: Case) -> Judgement:
         mend=f"a level of {step.below.detector} {show_up(max(-step.overlap_v, 0.0), _V)} higher, or "
         f"{step.above.by or upper.id} working from {show_down(step.below.to_v, _V)} or less",
         path=(Hop(rail.id, ""), Hop(step.below.detector, EdgeKind.WATCHES.backwards)),
+        # Without its components nobody can say whether its level tracks: then a person must look at the extremes.
+        otherwise=Kind.REVIEW if made_without_reference else Kind.FAIL,
     )  # fmt: skip
 
 

@@ -196,3 +196,15 @@ def test_detector_that_is_armed_late_enough() -> None:
 def test_armed_is_open_without(fact: str) -> None:
     said = one(both("comparators: {uv_core: {armed_by: por}}", without(fact)), ARMED, "uv_core")
     assert (said.kind, fact in said.missing) == (OPEN, True)
+
+
+def test_a_level_without_a_reference_and_without_components_is_for_a_person() -> None:
+    """With its components given, trip_window/crossover_tracks compares the two at equal temperature instead."""
+    levels = "trip: {rising: {min: 0.95 V, max: 1.5 V}, falling: {min: 0.9 V, max: 1.4 V}}"
+    known = f"comparators: {{por: {{{levels}}}}}"
+    unknown = f"comparators: {{por: {{{levels}, crossover: {{device: null}}}}}}"
+    assert judged(known, RULES)[HOLE, "avdd"].kind is Kind.NOT_APPLICABLE
+    asked = judged(unknown, RULES)[HOLE, "avdd"]
+    assert asked.kind is Kind.REVIEW
+    assert asked.measure is not None
+    assert asked.measure.have == pytest.approx(0.9, abs=1e-12)

@@ -119,6 +119,11 @@ def release_level(case: Case, comparator: Comparator) -> CrossoverLevel:
     return level_of(release_facts(case, comparator))
 
 
+def level_is_known(case: Case, comparator: Comparator) -> bool:
+    """Whether the components say enough for the level of a crossover to be worked out at each temperature."""
+    return case.attempt(lambda: release_facts(case, comparator)) is not None
+
+
 def second_crossing_level(case: Case, comparator: Comparator) -> CrossoverLevel:
     """The supply at which a crude current, mirrored, overtakes the reference current it is compared with.
 
