@@ -72,6 +72,8 @@ def sources_are_up_in_time(comparator: Comparator, case: Case) -> Judgement:
     hanging = next((wait for wait in waits if wait.order is _Order.ON_ITSELF), None)
     if hanging is not None:
         return case.not_applicable(f"{hanging.rail} hangs on its own output (self_bias/no_loop says so)")
+    if worst is None and not off_chip:
+        return case.not_applicable("needs neither bias nor reference")
     if worst is None:
         return case.not_applicable(f"{off_chip[0].id} comes from off the chip (self_bias/leans_on_nobody says so)")
     return _measured(case, worst, reach, waits)

@@ -50,6 +50,8 @@ class NameField(msgspec.Struct, frozen=True):
 
     way: tuple[str, ...]
     sections: tuple[str, ...]
+    or_none: bool = False
+    """Whether ``none`` says that there is no such element."""
 
 
 def name_fields(schema: Mapping[str, Any]) -> tuple[NameField, ...]:
@@ -59,7 +61,8 @@ def name_fields(schema: Mapping[str, Any]) -> tuple[NameField, ...]:
 
 def _fields_below(node: Mapping[str, Any], defs: Mapping[str, Any], way: tuple[str, ...]) -> Iterator[NameField]:
     if "x-names" in node:
-        yield NameField((*way, "*") if node.get("type") == "array" else way, tuple(node["x-names"]))
+        full_way = (*way, "*") if node.get("type") == "array" else way
+        yield NameField(full_way, tuple(node["x-names"]), or_none="anyOf" in node)
         return
     if "$ref" in node:
         yield from _fields_below(defs[node["$ref"].rpartition("/")[2]], defs, way)
@@ -81,6 +84,8 @@ def name_faults(data: Mapping[str, Any], fields: Sequence[NameField], sources: S
     advice = _Advice()
     for field in fields:
         for path, name in _values(data, field.way, ()):
+            if name == "none" and field.or_none:
+                continue
             if isinstance(name, str) and home.get(name) not in field.sections:
                 problem, choices = _problem(name, field, home)
                 missing = "none is described yet" if name in home else "describe it, or correct the name"

@@ -119,7 +119,8 @@ def _in_words(error: Any, example: str) -> tuple[str, str]:
             return problem, advice
         case "anyOf":
             hint = "did you mean none? " if nearest(str(error.instance), ["none"]) else ""
-            return f"neither none nor a mapping of keys (found {was})", f"{hint}write none, or as in {example}"
+            other = "a name" if "x-names" in error.schema else "a mapping of keys"
+            return f"neither none nor {other} (found {was})", f"{hint}write none, or as in {example}"
         case "type":
             kind = "a name" if _is_name(error.schema) else _TYPE_WORDS[limit]
             return f"{kind} is due (found {was})", _advice_on_type(limit, error, example)

@@ -169,7 +169,8 @@ def _common(element: Reference | Bias | Comparator | OutputStage | Load) -> Iter
 
 
 def _one(element: Element, field: str, head: str | None, kind: EdgeKind) -> Iterator[Edge]:
-    if head is not None:
+    if head not in (None, "none"):  # none: said to lean on nothing there
+        assert head is not None
         yield Edge(element.id, kind, head, element.fact(field))
 
 

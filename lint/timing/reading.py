@@ -139,11 +139,11 @@ class _Reader:
 
 
 def _names(*groups: str | Iterable[str] | None) -> tuple[str, ...]:
-    """Names as they are given, one or many, what is not given left out."""
+    """Names as they are given, one or many; what is not given, or said to be none, is left out."""
     found: list[str] = []
     for group in groups:
         if isinstance(group, str):
-            found.append(group)
+            found += [group] if group != "none" else []
         else:
             found.extend(group or ())
     return tuple(found)

@@ -204,3 +204,12 @@ def test_an_external_bias_of_a_power_on_detector_is_one_finding() -> None:
     judgement = one("biases: {bias_start: {kind: external}}", UP, "por")
     assert judgement.kind is NONE
     assert judgement.message == "bias_start comes from off the chip (self_bias/leans_on_nobody says so)"
+
+
+def test_a_detector_that_needs_no_bias_waits_for_none() -> None:
+    """Bias none: a crossover that carries its own current; every rule can judge it."""
+    found = judged("comparators: {por: {bias: none}}", RULES)
+    of_por = {rule: judgement for (rule, subject), judgement in found.items() if subject == "por"}
+    assert of_por["self_bias/up_in_time"].message == "needs neither bias nor reference"
+    assert of_por["self_bias/leans_on_nobody"].kind is Kind.PASS
+    assert not [rule for rule, judgement in of_por.items() if judgement.kind in (Kind.OPEN, Kind.FAIL)]

@@ -151,5 +151,6 @@ def test_names_lead_into_sections_that_exist() -> None:
 
 def test_every_reference_to_a_name_says_what_it_names() -> None:
     for path, node in PROPERTIES:
-        names = node.get("$ref") == "#/$defs/id" or node.get("items", {}).get("$ref") == "#/$defs/id"
+        branches = (node, node.get("items", {}), *node.get("anyOf", ()))
+        names = any(branch.get("$ref") == "#/$defs/id" for branch in branches)
         assert names == ("x-names" in node), path

@@ -54,6 +54,8 @@ def agrees(kind: Any, node: Mapping[str, Any]) -> bool:
     members = without_none(kind)
     if "anyOf" in node and "x-quantity" not in node:
         const, inner = node["anyOf"]
+        if "x-names" in node:  # a name, or none
+            return members == (str,)
         return set(members) == {Literal[const["const"]], struct_of(inner["$ref"].rpartition("/")[2])}
     (member,) = members
     if "$ref" in node:
