@@ -54,7 +54,7 @@ def test_thermal_voltage() -> None:
     assert float(thermal_voltage_v(t_k=300.0)) * math.log(10.0) == pytest.approx(59.526e-3, abs=5e-7)
 
 
-# B. Razavi, Design of Analog CMOS Integrated Circuits (second-hand, from lecture notes), m = -3/2; the first prints
+# B. Razavi, Design of Analog CMOS Integrated Circuits (second-hand, from course notes), m = -3/2; the first prints
 # -1.88 with V_T taken as 26 mV, the second about -1.5. The last two are the same law, derived.
 SLOPES = (
     ("razavi-second-hand-0.70-V", 0.70, 1.20, -1.88, 0.005),
