@@ -3,13 +3,11 @@
 from __future__ import annotations
 
 import argparse
-import datetime
 import gc
 import io
 import os
 import sys
 from collections.abc import Sequence
-from difflib import get_close_matches
 from typing import TYPE_CHECKING, Final, NoReturn
 
 from tidegate.lint.version import VERSION
@@ -61,6 +59,8 @@ def _nearest(message: str) -> str:
     """A near command for one that is none."""
     if "invalid choice: '" not in message:
         return ""
+    from difflib import get_close_matches
+
     word = message.split("invalid choice: '")[1].split("'", maxsplit=1)[0]
     near = get_close_matches(word, _COMMANDS, 1)
     return f"; did you mean {near[0]}?" if near else ""
@@ -119,6 +119,8 @@ def _drop_output() -> None:
 
 
 def _run(options: argparse.Namespace) -> int:
+    import datetime
+
     from tidegate.lint.commands.streams import Streams
 
     streams = Streams(sys.stdout, sys.stderr, datetime.date.today(), own_families)
