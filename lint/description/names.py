@@ -18,7 +18,7 @@ NAMED_SECTIONS: Final = (
     "rails", "domains", "references", "biases", "comparators", "output_stages", "resets", "loads", "bypasses",
     "neighbours",
 )  # fmt: skip
-"""Sections whose entries share one namespace."""
+"""Sections whose entries share one namespace, in the order in which the supply meets them."""
 
 MOST_SUGGESTIONS: Final = 50
 """How many wrong names of one description are compared with all the right ones."""

@@ -9,14 +9,12 @@ from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
 from tidegate.lint.description.model.reset_path import Bypass, Load, Neighbour, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain, Rail
+from tidegate.lint.description.names import NAMED_SECTIONS
 from tidegate.lint.graph.edge import Edge, EdgeKind
 
 Element: TypeAlias = Rail | Domain | Reference | Bias | Comparator | OutputStage | Reset | Load | Bypass | Neighbour
 
-SECTIONS: Final = (
-    "rails", "domains", "references", "biases", "comparators", "output_stages", "resets", "loads", "bypasses",
-    "neighbours",
-)  # fmt: skip
+SECTIONS: Final = NAMED_SECTIONS
 """Sections whose entries are nodes, in the order in which the supply meets them."""
 
 _NONE: Final[tuple[Edge, ...]] = ()

@@ -9,7 +9,7 @@ import msgspec
 
 from tidegate.lint.timing.carry import output_of
 from tidegate.lint.timing.detect import decision_of
-from tidegate.lint.timing.interval import FOREVER_S, NEVER, Times, both, either
+from tidegate.lint.timing.interval import FOREVER_S, both, either
 from tidegate.lint.timing.order import in_order, without_started_loops
 from tidegate.lint.timing.parts import (
     Bounds,
@@ -330,15 +330,3 @@ def _comparable(state: State) -> object:
     if isinstance(state, GivenSupply):
         return state.least_s, state.most_s
     return state
-
-
-def spans_of(state: State) -> Iterable[Times]:
-    """Every set of times in a state, for those who look for its edges."""
-    match state:
-        case LoadState():
-            for part in (state.fed, state.ready, state.reset, state.running):
-                yield from part
-        case On() | Decision():
-            yield from state
-        case _:
-            yield NEVER

@@ -16,7 +16,7 @@ they may be wider, and ``pinned`` times the network with that tolerance at one e
 from __future__ import annotations
 
 from collections.abc import Collection, Iterable, Mapping, Sequence
-from functools import cached_property, lru_cache
+from functools import cached_property
 from typing import Final
 
 import msgspec
@@ -27,6 +27,7 @@ from tidegate.lint.description.model.reset_path import Bypass
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import EdgeKind
+from tidegate.lint.graph.kept_last import keeps_last
 from tidegate.lint.timing.evaluate import Network, States, evaluate, network
 from tidegate.lint.timing.falls import alone, dips, together
 from tidegate.lint.timing.interval import FOREVER_S
@@ -243,27 +244,7 @@ class Timelines:
 _NO_LACKS: Final = Lacks()
 
 
-class _Same:
-    """Two objects as a key: the same key where both are the same objects."""
-
-    __slots__ = ("description", "graph")
-
-    def __init__(self, description: Description, graph: Graph) -> None:
-        self.description = description
-        self.graph = graph
-
-    def __hash__(self) -> int:
-        return id(self.graph)
-
-    def __eq__(self, other: object) -> bool:
-        return isinstance(other, _Same) and other.graph is self.graph and other.description is self.description
-
-
+@keeps_last
 def timelines(description: Description, graph: Graph) -> Timelines:
     """The timelines of a description; those of the last one asked for are kept, so that every rule reads the same."""
-    return _timelines(_Same(description, graph))
-
-
-@lru_cache(maxsize=1)
-def _timelines(of: _Same) -> Timelines:
-    return Timelines(of.description, of.graph)
+    return Timelines(description, graph)

@@ -2,14 +2,11 @@
 
 from __future__ import annotations
 
-from typing import Final
-
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.reset_path.reset_path import inverts
 from tidegate.lint.description.model.reset_path import OutputStage
-
-_SAID_BY_KIND: Final = {"inverter": True, "buffer": False}
 
 
 class Origin(msgspec.Struct, frozen=True):
@@ -31,13 +28,9 @@ def origin(case: Case, element: str) -> Origin:
         stage = case.graph.elements[element]
         if not isinstance(stage, OutputStage) or stage.driven_by is None or len(stage.driven_by) != 1:
             break
-        facts = case.of(stage)
-        kind = facts.must("kind")
-        if kind == "latch":
+        if case.of(stage).must("kind") == "latch":
             break
-        inverted ^= _SAID_BY_KIND.get(kind, False) if stage.inverting is None else stage.inverting
-        if stage.inverting is None and kind not in _SAID_BY_KIND:
-            facts.lacks("inverting")
+        inverted ^= inverts(case, stage)
         element = stage.driven_by[0]
     case.settle()
     return Origin(element, inverted)

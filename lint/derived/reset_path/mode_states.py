@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from functools import lru_cache
 from typing import Final
 
 import msgspec
@@ -13,6 +12,7 @@ from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Load
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import Edge, EdgeKind
+from tidegate.lint.graph.kept_last import keeps_last
 from tidegate.lint.graph.paths import Reach, driven_by
 
 _OFF_WITH: Final = frozenset({EdgeKind.SUPPLIED_BY, EdgeKind.MADE_BY})
@@ -87,27 +87,7 @@ class ModeState:
         return own or any(need.rail in self.asleep for need in load.needs)
 
 
-class _Same:
-    """Two objects as a key: the same key where both are the same objects."""
-
-    __slots__ = ("description", "graph")
-
-    def __init__(self, description: Description, graph: Graph) -> None:
-        self.description = description
-        self.graph = graph
-
-    def __hash__(self) -> int:
-        return id(self.graph)
-
-    def __eq__(self, other: object) -> bool:
-        return isinstance(other, _Same) and other.graph is self.graph and other.description is self.description
-
-
+@keeps_last
 def mode_states(description: Description, graph: Graph) -> tuple[ModeState, ...]:
     """Every mode; those of the last description asked for are kept."""
-    return _mode_states(_Same(description, graph))
-
-
-@lru_cache(maxsize=1)
-def _mode_states(of: _Same) -> tuple[ModeState, ...]:
-    return tuple(ModeState(name, mode, of.graph) for name, mode in of.description.modes.items())
+    return tuple(ModeState(name, mode, graph) for name, mode in description.modes.items())

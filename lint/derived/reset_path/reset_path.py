@@ -58,15 +58,15 @@ def arrivals(case: Case, stage: OutputStage, behind: Onward) -> tuple[Arrival, .
 
     Raises: MissingFactsError: where it is not given whether a stage on a way inverts.
     """
-    inverts = {after.id: _inverts(case, after) for after in behind.stages}
+    inverted_by = {after.id: inverts(case, after) for after in behind.stages}
     case.settle()
-    return tuple(_walk(case, stage, behind, inverts))
+    return tuple(_walk(case, stage, behind, inverted_by))
 
 
 _State = tuple[str, bool]  # an element, and whether the level at its output is the inverse of where it began
 
 
-def _walk(case: Case, stage: OutputStage, behind: Onward, inverts: dict[str, bool]) -> Iterator[Arrival]:
+def _walk(case: Case, stage: OutputStage, behind: Onward, inverted_by: dict[str, bool]) -> Iterator[Arrival]:
     resets = {reset.id: reset for reset in behind.resets}
     onto = drives(case.graph)
     start: _State = (stage.id, False)
@@ -75,8 +75,8 @@ def _walk(case: Case, stage: OutputStage, behind: Onward, inverts: dict[str, boo
     while waiting:
         here = waiting.popleft()
         for name, words, _ in onto(here[0]):
-            state = (name, here[1] ^ inverts.get(name, False))
-            if state in came or not (name in resets or name in inverts):
+            state = (name, here[1] ^ inverted_by.get(name, False))
+            if state in came or not (name in resets or name in inverted_by):
                 continue
             came[state] = (here, words)
             if name in resets:
@@ -95,7 +95,7 @@ def _path(came: dict[_State, tuple[_State | None, str]], end: _State) -> Path:
     return tuple(reversed(hops))
 
 
-def _inverts(case: Case, stage: OutputStage) -> bool:
+def inverts(case: Case, stage: OutputStage) -> bool:
     """Whether a stage inverts: as stated, or as its kind says; noted where neither does."""
     stated = stage.inverting if stage.inverting is not None else _SAID_BY_KIND.get(stage.kind or "")
     if stated is None:
