@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import NamedTuple
 
-from tidegate.lint.timing.interval import NEVER, Times, both, delayed, either, joined, outside
+from tidegate.lint.timing.interval import ALWAYS, NEVER, Times, both, delayed, either, joined, outside
 from tidegate.lint.timing.parts import StagePart
 from tidegate.lint.timing.state import Decision, On
 
@@ -35,8 +35,10 @@ def _through(times: Times, part: StagePart, alive: On, *, least_s: float | None 
     """Times of the input at the output; a stage that comes alive takes its input as if it had been so before."""
     least_s = part.delay.least if least_s is None else least_s
     seen = both(times, alive.may_be_on)
-    if not seen:
-        return NEVER
+    if not seen or part.delay.most == 0.0:
+        return seen
+    if alive.may_be_on is ALWAYS:
+        return delayed(seen, least_s=least_s, most_s=part.delay.most)
     begins = {start for start, _ in alive.may_be_on}
     spans = [(start if start in begins else start + least_s, end + part.delay.most) for start, end in seen]
     return both(joined(spans), alive.may_be_on)

@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
-from typing import Final, NamedTuple, TypeAlias
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from typing import Any, Final, NamedTuple, TypeAlias
 
 import msgspec
 
 from tidegate.lint.timing.carry import output_of
 from tidegate.lint.timing.detect import decision_of
 from tidegate.lint.timing.interval import FOREVER_S, both, either
-from tidegate.lint.timing.order import in_order, without_started_loops
+from tidegate.lint.timing.order import in_order, leans_on, without_started_loops
 from tidegate.lint.timing.parts import (
     Bounds,
     ComparatorPart,
@@ -71,18 +71,20 @@ class Network(msgspec.Struct, frozen=True):
     ramps: Mapping[str, RailRamp]
     place: Mapping[str, int]
     """Where each element comes in the order."""
+    leans_on: Mapping[str, Sequence[str]]
+    """What the state of each element follows from, beside the scenario."""
 
     def among(self, names: Iterable[str]) -> Network:
         """The same network, with the order of some elements alone; of what leans on itself, all."""
         order = [self.order[place] for place in sorted({self.place[name] for name in names if name in self.place})]
-        return Network(self.parts, order, self.ramps, self.place)
+        return msgspec.structs.replace(self, order=order)
 
     def pinned(self, ends: Mapping[str, bool]) -> Network:
         """The same network with the tolerances of some elements at their least (False) or greatest (True) ends."""
         parts = dict(self.parts)
         for name, greatest in ends.items():
             parts[name] = _at_end(parts[name], greatest)
-        return Network(parts, self.order, self.ramps, self.place)
+        return msgspec.structs.replace(self, parts=parts)
 
     def without_spread_from_nothing(self, names: Iterable[str]) -> Network:
         """The same network with each least value of some elements that stands at 0 as great as the greatest."""
@@ -90,7 +92,7 @@ class Network(msgspec.Struct, frozen=True):
         for name in names:
             if name in parts:
                 parts[name] = _without_spread_from_nothing(parts[name])
-        return Network(parts, self.order, self.ramps, self.place)
+        return msgspec.structs.replace(self, parts=parts)
 
 
 def network(parts: Mapping[str, TimedPart], ramps: Mapping[str, RailRamp]) -> Network:
@@ -98,7 +100,7 @@ def network(parts: Mapping[str, TimedPart], ramps: Mapping[str, RailRamp]) -> Ne
     parts = without_started_loops(parts)
     order = in_order(parts)
     place = {name: number for number, (group, _) in enumerate(order) for name in group}
-    return Network(parts, order, ramps, place)
+    return Network(parts, order, ramps, place, {name: leans_on(part) for name, part in parts.items()})
 
 
 def _at_end(part: TimedPart, greatest: bool) -> TimedPart:
@@ -119,21 +121,54 @@ def _without_spread_from_nothing(part: TimedPart) -> TimedPart:
 
 
 def evaluate(
-    net: Network, scenario: Scenario, known: States | None = None, forced: States | None = None
+    net: Network,
+    scenario: Scenario,
+    known: States | None = None,
+    forced: States | None = None,
+    found: Found | None = None,
 ) -> dict[str, State]:
     """The state of every element in a scenario; ``known`` is taken for what the network does not order anew.
 
-    What is ``forced`` has that state whatever it leans on, as an override forces it.
+    What is ``forced`` has that state whatever it leans on, as an override forces it.  ``found`` holds what was found
+    in other scenarios of the same network: what follows from the same states is not worked out anew.
     """
     states = _States(known or {})
     times = _Timing(net, scenario, states, forced or {})
     for group, leans_on_itself in net.order:
-        if not leans_on_itself:
-            name = group[0]
-            states[name] = times.state(net.parts[name])
-        else:
+        if leans_on_itself:
             times.settle_loop(group)
+            continue
+        part = net.parts[group[0]]
+        states[part.id] = times.state(part) if found is None else found.state(part, times)
     return states
+
+
+class Found:
+    """States that were found in other scenarios, by the states from which they follow.
+
+    In the scenarios of one description most elements see what they have seen in another one; a state that equals one
+    found before is replaced by it, so that what leans on it sees the very same.
+    """
+
+    def __init__(self) -> None:
+        self._same: dict[str, dict[object, State]] = {}
+        self._following: dict[str, dict[tuple[int, ...], tuple[Sequence[State], State]]] = {}
+
+    def state(self, part: TimedPart, times: _Timing) -> State:
+        """The state of an element, from those of what it leans on."""
+        name = part.id
+        same = self._same.setdefault(name, {})
+        if isinstance(part, RailPart):  # it follows from the scenario, too
+            state = times.state(part)
+            return same.setdefault(_comparable(state), state)
+        causes = [times.states[needed] for needed in times.net.leans_on[name]]
+        key = tuple(map(id, causes))
+        following = self._following.setdefault(name, {})
+        followed = following.get(key)
+        if followed is None:
+            state = times.state(part)
+            followed = following[key] = causes, same.setdefault(_comparable(state), state)
+        return followed[1]
 
 
 class _States(dict[str, State]):
@@ -177,21 +212,7 @@ class _Timing:
         """The state of one element, from those of what it leans on."""
         if part.id in self.forced:
             return self.forced[part.id]
-        match part:
-            case RailPart():
-                return self._rail(part)
-            case DomainPart():
-                return self._all_gates(part.switched_by)
-            case SourcePart():
-                return self._source(part)
-            case ComparatorPart():
-                return self._comparator(part)
-            case StagePart():
-                return self._stage(part)
-            case ResetPart():
-                return self._combined(part)
-            case LoadPart():
-                return self._load(part)
+        return _TIMED[type(part)](self, part)
 
     def _rail(self, part: RailPart) -> State:
         scenario = self.scenario
@@ -231,23 +252,20 @@ class _Timing:
             return supply
         if not isinstance(supply, Supply):
             return ANYTHING
-        least_v, most_v = max(level.least, _ABOVE_NOTHING_V), max(level.most, _ABOVE_NOTHING_V)
-        return On(
-            supply.may_be_high(rising_v=least_v, falling_v=least_v),
-            supply.may_be_low(rising_v=most_v, falling_v=most_v),
-        )
+        if level.least < _ABOVE_NOTHING_V:
+            level = Bounds(_ABOVE_NOTHING_V, max(level.most, _ABOVE_NOTHING_V))
+        return supply.above(level)
 
     def _gate(self, name: str) -> On:
         """Whether what an element gates is enabled."""
-        match self.states[name]:
-            case On() as on:
-                return on
-            case Decision() as decision:
-                return lets_go(decision)
-            case LoadState() as load:
-                return load.running
-            case _:
-                return self._up_on(name)
+        state = self.states[name]
+        if isinstance(state, On):
+            return state
+        if isinstance(state, Decision):
+            return lets_go(state)
+        if isinstance(state, LoadState):
+            return state.running
+        return self._up_on(name)
 
     def _all_gates(self, names: Iterable[str]) -> On:
         return all_on(self._gate(name) for name in names) if names else ALWAYS_ON
@@ -302,6 +320,17 @@ class _Timing:
         return On(both(above.may_be_on, too_high.may_be_off), either(above.may_be_off, too_high.may_be_on))
 
 
+_TIMED: Final[Mapping[type, Callable[[_Timing, Any], State]]] = {
+    RailPart: _Timing._rail,
+    DomainPart: lambda times, part: times._all_gates(part.switched_by),
+    SourcePart: _Timing._source,
+    ComparatorPart: _Timing._comparator,
+    StagePart: _Timing._stage,
+    ResetPart: _Timing._combined,
+    LoadPart: _Timing._load,
+}
+
+
 def _at_rest(part: TimedPart) -> State:
     """An element that nothing has brought up yet."""
     match part:
@@ -326,7 +355,7 @@ def _anything(part: TimedPart) -> State:
 def _comparable(state: State) -> object:
     """A state in a form that can be told from another."""
     if isinstance(state, MadeSupply):
-        return state.maker
+        return state.maker, state.ramp
     if isinstance(state, GivenSupply):
-        return state.least_s, state.most_s
+        return state.waveform, state.least_s, state.most_s
     return state

@@ -42,11 +42,23 @@ def last_arrival(may_be: Times, may_not_be: Times) -> Arrival | None:
 
 def either(first: Times, second: Times) -> Times:
     """When at least one of two is so."""
-    if not second or first is second or first == ALWAYS:
+    if not second or first is second or first is ALWAYS:
         return first
-    if not first or second == ALWAYS:
+    if not first or second is ALWAYS:
         return second
+    if len(first) == 1 and len(second) == 1:  # as it mostly is
+        return _either_span(first, second)
     return joined(sorted((*first, *second)))
+
+
+def _either_span(first: Times, second: Times) -> Times:
+    if second[0] < first[0]:
+        first, second = second, first
+    start, end = first[0]
+    next_start, next_end = second[0]
+    if next_start > end and next_start - end > _TOUCHING * abs(end):
+        return (first[0], second[0])
+    return first if next_end <= end else ((start, next_end),)
 
 
 def joined(spans: Sequence[tuple[float, float]]) -> Times:
@@ -54,33 +66,49 @@ def joined(spans: Sequence[tuple[float, float]]) -> Times:
     done: list[tuple[float, float]] = []
     start, end = spans[0]
     for next_start, next_end in spans:
-        if next_start <= end or next_start - end <= _TOUCHING * abs(end):
-            end = max(end, next_end)
-        else:
+        if next_start > end and next_start - end > _TOUCHING * abs(end):
             done.append((start, end))
             start, end = next_start, next_end
+        elif next_end > end:
+            end = next_end
     done.append((start, end))
     return tuple(done)
 
 
 def both(first: Times, second: Times) -> Times:
     """When both of two are so."""
-    if not first or first is second or second == ALWAYS:
+    if not first or first is second or second is ALWAYS:
         return first
-    if not second or first == ALWAYS:
+    if not second or first is ALWAYS:
         return second
+    if len(first) == 1 and len(second) == 1:  # as it mostly is
+        return _both_span(first, second)
     done: list[tuple[float, float]] = []
     one = other = 0
     while one < len(first) and other < len(second):
-        start = max(first[one][0], second[other][0])
-        end = min(first[one][1], second[other][1])
-        if start < end:
-            done.append((start, end))
-        if first[one][1] < second[other][1]:
+        start, end = first[one]
+        other_start, other_end = second[other]
+        start = max(start, other_start)
+        if end < other_end:
             one += 1
         else:
             other += 1
+            end = other_end
+        if start < end:
+            done.append((start, end))
     return tuple(done)
+
+
+def _both_span(first: Times, second: Times) -> Times:
+    start, end = first[0]
+    other_start, other_end = second[0]
+    if other_start <= start:
+        if end <= other_end:
+            return first
+        return ((start, other_end),) if start < other_end else NEVER
+    if other_end <= end:
+        return second
+    return ((other_start, end),) if other_start < end else NEVER
 
 
 def outside(times: Times) -> Times:
@@ -106,7 +134,7 @@ def delayed(times: Times, *, least_s: float, most_s: float) -> Times:
     if least_s == 0.0 and most_s == 0.0:
         return times
     spans = [(start + least_s, end + most_s) for start, end in times if start + least_s < end + most_s]
-    return joined(spans) if spans else NEVER
+    return joined(spans) if len(spans) > 1 else tuple(spans)
 
 
 def filtered(times: Times, *, least_s: float, most_s: float) -> Times:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Collection, Iterator, Mapping, Sequence
 from typing import Final
 
 import msgspec
@@ -105,34 +105,28 @@ def _out_of_order(setting: Setting, free: Sequence[Rail]) -> Iterator[Scenario]:
     """Rails whose order the description does not fix come in other orders: one late, one early, or groups of them."""
     if len(free) < 2:
         return
+    rails = setting.outer_rails()
+    late_s = max(setting.ramps[rail.id].rise.least for rail in rails) + setting.long_s
+    first = {rail.id: _up(setting.ramps[rail.id], fast=True) for rail in rails}
+    last = {rail.id: _up(setting.ramps[rail.id], fast=True, at_s=late_s) for rail in rails}
+
+    def scenario(name: str, about: str, late: Collection[str]) -> Scenario:
+        waveforms = {rail: last[rail] if rail in late else first[rail] for rail in first}
+        return Scenario(name, about, Scene.START, waveforms, in_sequence=True, rises_s=late_s if late else 0.0)
+
     names = [rail.id for rail in free]
     if len(free) <= _FEW:
         for name in names:
-            yield _late(setting, f"{name} late", f"{name} rises when all else has come to rest", {name})
+            yield scenario(f"{name} late", f"{name} rises when all else has come to rest", {name})
         if len(free) > 2:
             for name in names:
-                others = set(names) - {name}
-                yield _late(setting, f"{name} early", f"{name} rises long before the others", others)
+                yield scenario(f"{name} early", f"{name} rises long before the others", set(names) - {name})
         return
     for bit in range((len(names) - 1).bit_length()):
         for late_bit in (1, 0):
             late = {name for number, name in enumerate(names) if number >> bit & 1 == late_bit}
-            yield _late(
-                setting, f"rails late, group {2 * bit + 2 - late_bit}",
-                f"{len(late)} of the rails rise when all else has come to rest", late,
-            )  # fmt: skip
-
-
-def _late(setting: Setting, name: str, about: str, late: set[str]) -> Scenario:
-    rails = setting.outer_rails()
-    longest_s = max(setting.ramps[rail.id].rise.least for rail in rails)
-    waveforms = {
-        rail.id: _up(setting.ramps[rail.id], fast=True, at_s=longest_s + setting.long_s if rail.id in late else 0.0)
-        for rail in rails
-    }
-    return Scenario(
-        name, about, Scene.START, waveforms, in_sequence=True, rises_s=longest_s + setting.long_s if late else 0.0
-    )
+            about = f"{len(late)} of the rails rise when all else has come to rest"
+            yield scenario(f"rails late, group {2 * bit + 2 - late_bit}", about, late)
 
 
 def _not_from_nothing(setting: Setting, rails: Sequence[Rail]) -> Iterator[Scenario]:

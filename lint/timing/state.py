@@ -53,10 +53,13 @@ ASSERTED: Final = Decision(ALWAYS, NEVER, NEVER)
 
 def all_on(parts: Iterable[On]) -> On:
     """On when every part is: on with the last of them, off with the first."""
-    on, off = ALWAYS, NEVER
+    whole = ALWAYS_ON
     for part in parts:
-        on, off = both(on, part.may_be_on), either(off, part.may_be_off)
-    return On(on, off)
+        if whole is ALWAYS_ON or part is whole:
+            whole = part
+        elif part is not ALWAYS_ON:
+            whole = On(both(whole.may_be_on, part.may_be_on), either(whole.may_be_off, part.may_be_off))
+    return whole
 
 
 def settled(part: On, *, least_s: float, most_s: float) -> On:

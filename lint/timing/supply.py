@@ -2,21 +2,31 @@
 
 from __future__ import annotations
 
-from abc import ABC, abstractmethod
-
 import msgspec
 
 from tidegate.lint.timing.interval import NEVER, Times, delayed, outside
+from tidegate.lint.timing.parts import Bounds
 from tidegate.lint.timing.state import On
 from tidegate.lint.timing.waveform import Waveform
 
 
-class Supply(ABC):
+class Supply:
     """A rail over time; what was asked once is kept."""
 
     def __init__(self) -> None:
+        self._above: dict[Bounds, On] = {}
         self._high: dict[tuple[float, float], Times] = {}
         self._low: dict[tuple[float, float], Times] = {}
+
+    def above(self, level: Bounds) -> On:
+        """When the rail may be above a level that lies between two bounds, and when it may not be."""
+        found = self._above.get(level)
+        if found is None:
+            found = self._above[level] = On(
+                self.may_be_high(rising_v=level.least, falling_v=level.least),
+                self.may_be_low(rising_v=level.most, falling_v=level.most),
+            )
+        return found
 
     def may_be_high(self, *, rising_v: float, falling_v: float) -> Times:
         """When a detector with these levels may take the rail for high."""
@@ -34,11 +44,11 @@ class Supply(ABC):
             found = self._low[key] = self._may_be_low(rising_v, falling_v)
         return found
 
-    @abstractmethod
-    def _may_be_high(self, rising_v: float, falling_v: float) -> Times: ...
+    def _may_be_high(self, rising_v: float, falling_v: float) -> Times:
+        raise NotImplementedError
 
-    @abstractmethod
-    def _may_be_low(self, rising_v: float, falling_v: float) -> Times: ...
+    def _may_be_low(self, rising_v: float, falling_v: float) -> Times:
+        raise NotImplementedError
 
 
 class GivenSupply(Supply):

@@ -28,7 +28,7 @@ from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.graph.kept_last import keeps_last
-from tidegate.lint.timing.evaluate import Network, States, evaluate, network
+from tidegate.lint.timing.evaluate import Found, Network, States, evaluate, network
 from tidegate.lint.timing.falls import alone, dips, together
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.order import leans_on, rails_of, reached
@@ -82,12 +82,12 @@ class Timelines:
     @cached_property
     def starts(self) -> Sequence[Timeline]:
         """Start-ups, off and on again, and the description's own scenarios."""
-        return [self.at(scenario) for scenario in starts(self.setting)]
+        return self._all_at(starts(self.setting))
 
     @cached_property
     def falls(self) -> Sequence[Timeline]:
         """Power-down of all rails at once, fastest and slowest."""
-        return [self.at(scenario) for scenario in together(self.setting)]
+        return self._all_at(together(self.setting))
 
     @cached_property
     def settled(self) -> States:
@@ -116,12 +116,20 @@ class Timelines:
     @cached_property
     def published(self) -> Sequence[Timeline]:
         """Profiles that a standard publishes; no rule judges by them, since no rail says that it sees them."""
-        return [self.at(scenario) for scenario in published(self.setting)]
+        return self._all_at(published(self.setting))
+
+    def _all_at(self, scenarios: Iterable[Scenario]) -> Sequence[Timeline]:
+        """The timelines of scenarios of the whole network, in which many elements see what they saw in another."""
+        found = Found()
+        return [Timeline(scenario, evaluate(self.network, scenario, found=found)) for scenario in scenarios]
+
+    def _seen_by(self, scenario: Scenario) -> tuple[Network, States | None]:
+        """What a scenario reaches, and the states of the rest; None where it reaches all."""
+        return (self._cone(scenario.rail), self.settled) if scenario.rail else (self.network, None)
 
     def at(self, scenario: Scenario, *, pinned: Mapping[str, bool] | None = None) -> Timeline:
         """The timeline of any scenario; some elements pinned to their least (False) or greatest (True) tolerances."""
-        net = self._cone(scenario.rail) if scenario.rail else self.network
-        known = self.settled if scenario.rail else None
+        net, known = self._seen_by(scenario)
         return Timeline(scenario, evaluate(net.pinned(pinned) if pinned else net, scenario, known))
 
     def with_override(self, line: Timeline, bypass: Bypass) -> Timeline:
@@ -133,9 +141,8 @@ class Timelines:
 
     def as_if_given(self, scenario: Scenario, elements: Iterable[str]) -> Timeline:
         """The timeline with each least value that is missing as great as the greatest: the best that it can be."""
-        net = self._cone(scenario.rail) if scenario.rail else self.network
+        net, known = self._seen_by(scenario)
         lacking = [name for name in elements if name in self.read.lacks and self.read.lacks[name].least]
-        known = self.settled if scenario.rail else None
         return Timeline(scenario, evaluate(net.without_spread_from_nothing(lacking), scenario, known))
 
     def _cone(self, rail: str) -> Network:
@@ -203,9 +210,23 @@ class Timelines:
 
     def _anything_lacks(self, *, latest: bool, earliest: bool, readiness: bool) -> bool:
         """Whether any element at all lacks what is asked for: mostly none does, and nobody need look behind any."""
-        return bool(self.read.refused) or any(
-            lacks.whole or (latest and lacks.most) or (earliest and lacks.least) or (readiness and lacks.ready)
-            for lacks in self.read.lacks.values()
+        lacks = self._lacks_anywhere
+        return (
+            bool(self.read.refused)
+            or lacks.whole
+            or (latest and lacks.most)
+            or (earliest and lacks.least)
+            or (readiness and lacks.ready)
+        )
+
+    @cached_property
+    def _lacks_anywhere(self) -> _Anywhere:
+        lacks = self.read.lacks.values()
+        return _Anywhere(
+            whole=any(lack.whole for lack in lacks),
+            most=any(lack.most for lack in lacks),
+            least=any(lack.least for lack in lacks),
+            ready=any(lack.ready for lack in lacks),
         )
 
     @cached_property
@@ -242,6 +263,15 @@ class Timelines:
 
 
 _NO_LACKS: Final = Lacks()
+
+
+class _Anywhere(msgspec.Struct, frozen=True):
+    """Which groups of facts any element lacks."""
+
+    whole: bool
+    most: bool
+    least: bool
+    ready: bool
 
 
 @keeps_last

@@ -5,6 +5,7 @@ from __future__ import annotations
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.description.model.detector import Comparator
 
 
@@ -13,6 +14,7 @@ def at_code(comparator: Comparator, code: str) -> Comparator:
     return msgspec.structs.replace(comparator, trip=comparator.codes[code])
 
 
+@answered_once
 def as_shipped(case: Case, comparator: Comparator) -> Comparator:
     """The detector with the levels of the code it ships with, where they are chosen by code.
 

@@ -6,13 +6,16 @@ from collections.abc import Iterator
 from functools import partial
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.derived.levels.guarded_loads import Bound, guarded_loads, least_supplies
+from tidegate.lint.derived.reset_path.guarding_nets import watching
 from tidegate.lint.derived.supply.lowest_supply import lowest_supply
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.graph.paths import Reach, driven_by, drives
 
 
+@answered_once
 def follower_supplies(case: Case, power_on: Comparator) -> list[Bound]:
     """The least working supplies that a power-on detector must not let go below, the most demanding first.
 
@@ -20,7 +23,9 @@ def follower_supplies(case: Case, power_on: Comparator) -> list[Bound]:
     rail feeds them; and those of guarded loads for which no under-voltage detector of that rail stands.
     Raises: MissingFactsError: where one of them does not say from which supply on it works.
     """
-    watched = {load for other in _under_voltage(case, power_on.watches) for load in _loads(case, other)}
+    watched = {
+        load for other in watching(case.graph, power_on.watches, ("under_voltage",)) for load in _loads(case, other)
+    }
     alone = [load for load in _loads(case, power_on) if load not in watched]
     asks = [partial(_works_from, case, element, path) for element, path in _takes_over(case, power_on)]
     sources, loads = case.gather(lambda: case.gather_all(asks), lambda: least_supplies(case, power_on) if alone else [])
@@ -40,12 +45,6 @@ def _works_from(case: Case, element: Comparator | Reference | Bias, path: Path) 
 
 def _loads(case: Case, detector: Comparator) -> list[str]:
     return [load.id for load, _ in guarded_loads(case.graph, detector.id)]
-
-
-def _under_voltage(case: Case, rail: str) -> Iterator[Comparator]:
-    for other in case.description.comparators.values():
-        if other.role == "under_voltage" and other.watches == rail:
-            yield other
 
 
 def _takes_over(case: Case, power_on: Comparator) -> Iterator[tuple[Comparator | Reference | Bias, Path]]:

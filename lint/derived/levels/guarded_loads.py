@@ -7,6 +7,7 @@ from collections.abc import Iterator
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Load
 from tidegate.lint.description.model.supply import Domain
@@ -38,6 +39,7 @@ def guarded_loads(graph: Graph, detector: str) -> Iterator[tuple[Load, Path]]:
                     yield load, (*reach.path(net), Hop(name, EdgeKind.GUARDS.forwards))
 
 
+@answered_once
 def least_supplies(case: Case, comparator: Comparator) -> list[Bound]:
     """The least supply of each guarded load that needs the rail a detector watches, the most demanding load first.
 
@@ -46,6 +48,7 @@ def least_supplies(case: Case, comparator: Comparator) -> list[Bound]:
     return sorted(_supplies(case, comparator, least=True), key=lambda bound: -bound.level_v)
 
 
+@answered_once
 def greatest_supplies(case: Case, comparator: Comparator) -> list[Bound]:
     """The greatest supply of each guarded load that needs the rail a detector watches, the most demanding load first.
 

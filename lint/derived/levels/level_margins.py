@@ -8,6 +8,7 @@ import msgspec
 from msgspec.structs import replace
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.derived.levels.follower_supplies import follower_supplies
 from tidegate.lint.derived.levels.guarded_loads import Bound, greatest_supplies, guarded_loads, least_supplies
 from tidegate.lint.derived.levels.response import response
@@ -52,6 +53,7 @@ class LevelMargin(msgspec.Struct, frozen=True):
         return f"{self.level.value} level at its {'lowest' if self.side is Side.LEAST else 'highest'}"
 
 
+@answered_once
 def protects_nothing(case: Case, comparator: Comparator) -> bool:
     """Whether nothing leans on a detector: no load that needs its rail, nothing that must work once it lets go."""
     if comparator.role == "power_on":
@@ -63,6 +65,7 @@ def protects_nothing(case: Case, comparator: Comparator) -> bool:
     )  # fmt: skip
 
 
+@answered_once
 def guarantee(case: Case, comparator: Comparator) -> LevelMargin | None:
     """The level that protects, against the most demanding of what leans on it; None where nothing does.
 
@@ -153,6 +156,7 @@ def hands_over(case: Case, comparator: Comparator, found: LevelMargin) -> bool:
     )
 
 
+@answered_once
 def quiet(case: Case, comparator: Comparator) -> LevelMargin:
     """The level that asserts, against the supply in service.
 
@@ -175,6 +179,7 @@ def quiet(case: Case, comparator: Comparator) -> LevelMargin:
     return LevelMargin(Level.FALLING, Side.MOST, window.most_v, limit_v, why)
 
 
+@answered_once
 def comes_back(case: Case, comparator: Comparator) -> LevelMargin:
     """The level that lets go, against the supply at which it must.
 

@@ -7,6 +7,7 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.derived.levels.at_code import as_shipped
 from tidegate.lint.derived.levels.level_margins import LevelMargin, comes_back, guarantee, protects_nothing
 from tidegate.lint.derived.levels.trip_levels import (
@@ -61,6 +62,7 @@ def tracks_its_bound(case: Case, comparator: Comparator, protects: LevelMargin) 
     return comparator.crossover is not None and protects.bound.element not in case.description.loads
 
 
+@answered_once
 def level_room(case: Case, comparator: Comparator) -> LevelRoom | None:
     """The room of a detector; None where nothing leans on it, or where its level tracks what does.
 

@@ -7,6 +7,7 @@ from functools import partial
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.derived.levels.at_code import at_code
 from tidegate.lint.derived.levels.trip_levels import falling_window
 from tidegate.lint.description.model.detector import Comparator
@@ -23,6 +24,7 @@ class LowestDecision(msgspec.Struct, frozen=True):
     """Whether it is the detector's own falling level, which the designer may move."""
 
 
+@answered_once
 def lowest_decision(case: Case, comparator: Comparator, rail: Rail) -> LowestDecision:
     """On the watched rail the lowest falling level, at any code; on another the lowest level at which it is delivered.
 

@@ -15,6 +15,7 @@ from tidegate.lint.derived.levels.guarded_loads import Bound, greatest_supplies,
 from tidegate.lint.derived.levels.level_spread import LevelSpread, LevelSpreads, level_spreads
 from tidegate.lint.derived.levels.response import Response, response
 from tidegate.lint.derived.levels.trip_levels import rising_window
+from tidegate.lint.derived.reset_path.guarding_nets import watching
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.supply import Rail
 from tidegate.lint.physics import placement
@@ -157,8 +158,7 @@ def _bounds(case: Case, comparator: Comparator, rail: Rail) -> tuple[Bound, ...]
 
 def _under_voltage(case: Case, rail: Rail) -> tuple[Bound, ...]:
     found = []
-    for other in case.description.comparators.values():
-        if other.role == "under_voltage" and other.watches == rail.id:
-            level_v = rising_window(case, as_shipped(case, other)).least_v
-            found.append(Bound(level_v, other.id, case.of(other).path("trip.rising"), ()))
+    for other in watching(case.graph, rail.id, ("under_voltage",)):
+        level_v = rising_window(case, as_shipped(case, other)).least_v
+        found.append(Bound(level_v, other.id, case.of(other).path("trip.rising"), ()))
     return tuple(sorted(found, key=lambda bound: bound.level_v))

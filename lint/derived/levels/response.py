@@ -5,6 +5,7 @@ from __future__ import annotations
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.physics.trip_window import droop_during_response_v, response_time_s
 
@@ -28,6 +29,7 @@ class Response(msgspec.Struct, frozen=True):
         return droop_during_response_v(slew_v_per_s=self.slew_v_per_s, delay_s=self.time_s)
 
 
+@answered_once
 def response(case: Case, comparator: Comparator) -> Response:
     """The longest answer of a detector; a filter or a sampling period that is left out is not there.
 

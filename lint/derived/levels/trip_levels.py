@@ -6,6 +6,7 @@ from functools import partial
 from typing import Final, Literal
 
 from tidegate.lint.case import Case, Facts
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.derived.disturbance.input_share import input_share
 from tidegate.lint.derived.levels.at_code import as_far_as_said, as_shipped
 from tidegate.lint.description.model.detector import Comparator, Contributor, Hysteresis
@@ -26,16 +27,19 @@ _PLAIN_SIGMA: Final = 1.0
 _Level = Literal["rising", "falling"]
 
 
+@answered_once
 def falling_window(case: Case, comparator: Comparator) -> Window:
     """Where the falling level lies, in V at the rail."""
     return _level_window(case, as_shipped(case, comparator), "falling")
 
 
+@answered_once
 def rising_window(case: Case, comparator: Comparator) -> Window:
     """Where the rising level lies, in V at the rail."""
     return _level_window(case, as_shipped(case, comparator), "rising")
 
 
+@answered_once
 def hysteresis_window(case: Case, comparator: Comparator) -> Window:
     """Where the difference between rising and falling level lies, in V at the rail.
 
