@@ -21,7 +21,7 @@ def answered_once(ask: Callable[Concatenate[Case, _P], _A]) -> Callable[Concaten
     """
 
     @wraps(ask)
-    def answer(case: Case, *about: _P.args, **more: _P.kwargs) -> _A:
+    def answer(case: Case, /, *about: _P.args, **more: _P.kwargs) -> _A:
         kept = case.graph.once(_answers)
         key = (ask, id(case.description), *map(id, about), *more.items())
         found = kept.get(key)

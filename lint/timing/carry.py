@@ -33,15 +33,18 @@ def output_of(part: StagePart, *, given: Decision, alive: On) -> Decision:
 
 def _through(times: Times, part: StagePart, alive: On, *, least_s: float | None = None) -> Times:
     """Times of the input at the output; a stage that comes alive takes its input as if it had been so before."""
-    least_s = part.delay.least if least_s is None else least_s
+    if not times:
+        return NEVER
+    delay = part.delay
     seen = both(times, alive.may_be_on)
-    if not seen or part.delay.most == 0.0:
+    if not seen or delay.most == 0.0:
         return seen
+    least_s = delay.least if least_s is None else least_s
     if alive.may_be_on is ALWAYS:
-        return delayed(seen, least_s=least_s, most_s=part.delay.most)
-    begins = {start for start, _ in alive.may_be_on}
-    spans = [(start if start in begins else start + least_s, end + part.delay.most) for start, end in seen]
-    return both(joined(spans), alive.may_be_on)
+        return delayed(seen, least_s=least_s, most_s=delay.most)
+    begins = [start for start, _ in alive.may_be_on]
+    spans = [(start if start in begins else start + least_s, end + delay.most) for start, end in seen]
+    return both(joined(spans) if len(spans) > 1 else tuple(spans), alive.may_be_on)
 
 
 class _Driven(NamedTuple):

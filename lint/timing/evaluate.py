@@ -268,15 +268,14 @@ class _Timing:
         return self._up_on(name)
 
     def _all_gates(self, names: Iterable[str]) -> On:
-        return all_on(self._gate(name) for name in names) if names else ALWAYS_ON
+        return all_on(map(self._gate, names)) if names else ALWAYS_ON
 
     def _fed(self, part: SourcePart | ComparatorPart | StagePart) -> On:
         """Whether an element has its supply, and all that it needs is up."""
         fed = self._above(part.rail, part.works_from)
-        gate = self.states[part.domain]
-        if gate is ALWAYS_ON and not part.needs:
-            return fed
-        return all_on((fed, self._gate(part.domain), *(self._gate(name) for name in part.needs)))
+        if self.states[part.domain] is not ALWAYS_ON:
+            fed = all_on((fed, self._gate(part.domain)))
+        return all_on((fed, *map(self._gate, part.needs))) if part.needs else fed
 
     def _source(self, part: SourcePart) -> On:
         return settled(self._fed(part), least_s=part.settling.least, most_s=part.settling.most)
@@ -303,7 +302,7 @@ class _Timing:
         up = fed
         if part.needs or part.domain is not None:
             gates = () if part.domain is None else (self._gate(part.domain),)
-            up = all_on((fed, *gates, *(self._gate(name) for name in part.needs)))
+            up = all_on((fed, *gates, *map(self._gate, part.needs)))
         ready = settled(up, least_s=part.ready.least, most_s=part.ready.most)
         if not part.resets:
             return LoadState(fed, ready, RELEASED, up)

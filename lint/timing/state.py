@@ -92,25 +92,27 @@ def any_asserts(drivers: Sequence[Decision]) -> Decision:
     """Asserts when any driver does, releases when all do, unknown when one is unknown and none asserts."""
     if len(drivers) == 1:
         return drivers[0]
-    asserts, releases, unknown, quiet, held = NEVER, ALWAYS, NEVER, ALWAYS, NEVER
+    asserts, releases, unknown, held = NEVER, ALWAYS, NEVER, NEVER
     for driver in drivers:
         asserts = either(asserts, driver.may_assert)
         releases = both(releases, driver.may_release)
         unknown = either(unknown, driver.may_be_unknown)
-        quiet = both(quiet, either(driver.may_release, driver.may_be_unknown))
         held = either(held, driver.may_be_held)
-    return Decision(asserts, releases, both(unknown, quiet), held)
+    for driver in drivers if unknown else ():
+        unknown = both(unknown, either(driver.may_release, driver.may_be_unknown))
+    return Decision(asserts, releases, unknown, held)
 
 
 def all_agree(drivers: Sequence[Decision]) -> Decision:
     """Asserts when all drivers do, releases when any does, unknown when one is unknown and none releases."""
     if len(drivers) == 1:
         return drivers[0]
-    asserts, releases, unknown, quiet, held = ALWAYS, NEVER, NEVER, ALWAYS, ALWAYS
+    asserts, releases, unknown, held = ALWAYS, NEVER, NEVER, ALWAYS
     for driver in drivers:
         asserts = both(asserts, driver.may_assert)
         releases = either(releases, driver.may_release)
         unknown = either(unknown, driver.may_be_unknown)
-        quiet = both(quiet, either(driver.may_assert, driver.may_be_unknown))
         held = both(held, driver.may_be_held)
-    return Decision(asserts, releases, both(unknown, quiet), held)
+    for driver in drivers if unknown else ():
+        unknown = both(unknown, either(driver.may_assert, driver.may_be_unknown))
+    return Decision(asserts, releases, unknown, held)
