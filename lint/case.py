@@ -7,6 +7,7 @@ is one, and the judgement is then ``open`` and names them all.  A fact that is n
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
+from functools import lru_cache
 from typing import Any, Final, TypeVar, overload
 
 from tidegate.lint.description.model.description import Description
@@ -30,6 +31,12 @@ class MissingFactsError(Exception):
     def __init__(self, missing: Iterable[str]) -> None:
         self.missing = tuple(dict.fromkeys(missing))
         super().__init__(", ".join(self.missing))
+
+
+@lru_cache(maxsize=4096)
+def _steps(fact: str) -> list[str]:
+    """The names on the way to a fact."""
+    return fact.split(".")
 
 
 class Facts:
@@ -98,7 +105,7 @@ class Facts:
 
     def _walk(self, fact: str) -> Any:
         value: Any = self._part
-        for step in fact.split("."):
+        for step in _steps(fact):
             if isinstance(value, dict):
                 value = value.get(step)
             elif isinstance(value, tuple):

@@ -102,10 +102,12 @@ def review(loaded: Loaded, catalogue: Catalogue, *, today: datetime.date, settin
     judgements: list[Judgement] = []
     rule_faults: list[RuleFault] = []
     for section in SECTIONS:
-        rules = [rule for rule in catalogue.for_section(section) if not settings.leaves_out(rule)]
+        rules = [
+            _InForce.under(settings, rule) for rule in catalogue.for_section(section) if not settings.leaves_out(rule)
+        ]
         for element in getattr(loaded.description, section).values():
             for rule in rules:
-                answer = _judge(rule, element, loaded, graph, settings)
+                answer = _judge(rule, element, loaded.description, graph)
                 if isinstance(answer, Judgement):
                     judgements.append(answer)
                 elif isinstance(answer, RuleFault):
@@ -156,12 +158,24 @@ def _meant(waiver: Waiver, description: Description, elements: Container[str]) -
     return waiver.element in elements
 
 
-def _judge(
-    rule: Rule, element: Element, loaded: Loaded, graph: Graph, settings: Settings
-) -> Judgement | RuleFault | Fault:
+class _InForce(msgspec.Struct, frozen=True):
+    """A rule as the settings want it."""
+
+    rule: Rule
+    settings: Settings
+    level: Level
+    least_margin: tuple[str, str] | None
+
+    @classmethod
+    def under(cls, settings: Settings, rule: Rule) -> _InForce:
+        """The rule under some settings."""
+        return cls(rule, settings, settings.level_of(rule), settings.least_margin_of(rule))
+
+
+def _judge(asked: _InForce, element: Element, description: Description, graph: Graph) -> Judgement | RuleFault | Fault:
     """What a rule says about an element, or whose fault it is that it says nothing: the rule's, or the settings'."""
-    level = settings.level_of(rule)
-    case = Case(subject=element, rule=rule.id, level=level, description=loaded.description, graph=graph)
+    rule = asked.rule
+    case = Case(subject=element, rule=rule.id, level=asked.level, description=description, graph=graph)
     try:
         answer: object = rule.judge(element, case)
     except MissingFactsError as error:
@@ -179,17 +193,16 @@ def _judge(
     problem = _improper(answer, case)
     if problem:
         return RuleFault(rule.id, element.id, problem)
-    asked = settings.least_margin_of(rule)
-    if asked is None or answer.kind is not Kind.PASS or answer.measure is None:
+    if asked.least_margin is None or answer.kind is not Kind.PASS or answer.measure is None:
         return answer
-    name, margin = asked
+    name, margin = asked.least_margin
     try:
         return least_margin(answer, margin)
     except QuantityError:
         dimension = difference(answer.measure.dimension).value.replace("_", " ")
         problem = f"the margin of {rule.id} is a {dimension} (found {quoted(margin)})"
         advice = f"write a {dimension}, such as {answer.measure.margin_text()}, or a share of the need, such as 2 %"
-        return Fault(settings.place("least_margins", name), f"least_margins.{name}", problem, advice)
+        return Fault(asked.settings.place("least_margins", name), f"least_margins.{name}", problem, advice)
 
 
 def _improper(answer: Judgement, case: Case) -> str:

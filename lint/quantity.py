@@ -109,6 +109,7 @@ _SHOWN_FROM: Final = {"%": 1e-3}
 """Units that are used from another size on than one of them: 0.5 % is easier to read than 5000 ppm."""
 
 
+@lru_cache(maxsize=4096)  # a report tells the same levels again and again
 def show(value: float, dimension: Dimension, *, digits: int = 4) -> str:
     """A value for people: at most ``digits`` significant figures, with the unit that suits its size."""
     if value in (float("inf"), float("-inf")):

@@ -10,6 +10,7 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.derived.crossover.crossover_facts import (
     Crossing,
     CrossoverFacts,
@@ -110,6 +111,7 @@ class CrossoverLevel:
                 yield Place(self.at_v(corner, t_k), t_k, corner)
 
 
+@answered_once
 def release_level(case: Case, comparator: Comparator) -> CrossoverLevel:
     """The level at which a detector lets go: of a divider, or of a reference current as it comes up.
 
@@ -124,6 +126,7 @@ def level_is_known(case: Case, comparator: Comparator) -> bool:
     return case.attempt(lambda: release_facts(case, comparator)) is not None
 
 
+@answered_once
 def second_crossing_level(case: Case, comparator: Comparator) -> CrossoverLevel:
     """The supply at which a crude current, mirrored, overtakes the reference current it is compared with.
 
