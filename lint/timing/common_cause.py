@@ -4,10 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from itertools import product
+from operator import itemgetter
 from typing import Final
 
+from tidegate.lint.timing.evaluate import Network, evaluate
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.parts import ComparatorPart, LoadPart, times_of
+from tidegate.lint.timing.scenario import Scenario
 from tidegate.lint.timing.slack import Slack, release_slack, worst
 from tidegate.lint.timing.timeline import Timeline, Timelines
 
@@ -22,23 +25,44 @@ def release_slack_apart(lines: Timelines, load: str, courses: Iterable[Timeline]
     effect in one direction only, so that the least lies at an end of it.
     """
     shared = _shared(lines, load)
-    found: list[Slack] = []
-    taken = False
-    for line in courses:
-        slack = release_slack(line, load)
-        if slack is None:
-            continue
-        if slack.slack_s < 0.0 and shared:
-            taken = True
-            ends = product((False, True), repeat=len(shared))
-            slack = worst(
-                release_slack(lines.at(line.scenario, pinned=dict(zip(shared, end, strict=True))), load) for end in ends
-            )
-        if slack is not None:
-            found.append(slack)
-    least = worst(found)
+    ends = _Ends(lines, load, shared)
+    slacks = [(release_slack(line, load), number, line) for number, line in enumerate(courses)]
+    found = [(slack.slack_s, number, line, slack) for slack, number, line in slacks if slack is not None]
+    least: tuple[float, int, Slack] | None = None
+    for slack_s, number, line, slack in sorted(found, key=itemgetter(0, 1)):
+        if least is not None and slack_s > least[0]:
+            break  # no end of a tolerance makes a slack less
+        apart = ends.worst_of(line) if slack_s < 0.0 and shared else slack
+        if apart is not None and (least is None or (apart.slack_s, number) < least[:2]):
+            least = apart.slack_s, number, apart
     assert least is not None
-    return least, shared if taken else ()
+    return least[2], shared if min(found, key=itemgetter(0))[0] < 0.0 else ()
+
+
+class _Ends:
+    """The release of a load with every shared element at one end of its tolerances."""
+
+    def __init__(self, lines: Timelines, load: str, shared: Sequence[str]) -> None:
+        self._lines = lines
+        self._load = load
+        self._shared = shared
+        self._networks: dict[str, Sequence[Network]] = {}
+
+    def worst_of(self, line: Timeline) -> Slack | None:
+        """The slack of the combination of ends that leaves least in a scenario."""
+        at_ends = (
+            Timeline(line.scenario, evaluate(net, line.scenario, line.states)) for net in self._at(line.scenario)
+        )
+        return worst(release_slack(at_end, self._load) for at_end in at_ends)
+
+    def _at(self, scenario: Scenario) -> Sequence[Network]:
+        """The network at each combination of ends, less what does not tell on the load."""
+        rail = scenario.rail
+        if rail not in self._networks:
+            net = self._lines.between(self._shared, self._load, rail=rail)
+            ends = product((False, True), repeat=len(self._shared))
+            self._networks[rail] = [net.pinned(dict(zip(self._shared, end, strict=True))) for end in ends]
+        return self._networks[rail]
 
 
 def _shared(lines: Timelines, load: str) -> list[str]:

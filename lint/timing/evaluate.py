@@ -77,13 +77,15 @@ class Network(msgspec.Struct, frozen=True):
     def among(self, names: Iterable[str]) -> Network:
         """The same network, with the order of some elements alone; of what leans on itself, all."""
         order = [self.order[place] for place in sorted({self.place[name] for name in names if name in self.place})]
-        return msgspec.structs.replace(self, order=order)
+        parts = {name: self.parts[name] for group, _ in order for name in group}
+        return msgspec.structs.replace(self, parts=parts, order=order)
 
     def pinned(self, ends: Mapping[str, bool]) -> Network:
         """The same network with the tolerances of some elements at their least (False) or greatest (True) ends."""
         parts = dict(self.parts)
         for name, greatest in ends.items():
-            parts[name] = _at_end(parts[name], greatest)
+            if name in parts:
+                parts[name] = _at_end(parts[name], greatest)
         return msgspec.structs.replace(self, parts=parts)
 
     def without_spread_from_nothing(self, names: Iterable[str]) -> Network:

@@ -127,10 +127,16 @@ class Timelines:
         """What a scenario reaches, and the states of the rest; None where it reaches all."""
         return (self._cone(scenario.rail), self.settled) if scenario.rail else (self.network, None)
 
-    def at(self, scenario: Scenario, *, pinned: Mapping[str, bool] | None = None) -> Timeline:
-        """The timeline of any scenario; some elements pinned to their least (False) or greatest (True) tolerances."""
+    def at(self, scenario: Scenario) -> Timeline:
+        """The timeline of any scenario."""
         net, known = self._seen_by(scenario)
-        return Timeline(scenario, evaluate(net.pinned(pinned) if pinned else net, scenario, known))
+        return Timeline(scenario, evaluate(net, scenario, known))
+
+    def between(self, first: Iterable[str], last: str, *, rail: str) -> Network:
+        """The network of what hangs on some elements and is behind another one; of what a rail reaches, where given."""
+        behind = self.behind(last)
+        names = {name for start in first for name in reached(self._leant_on_by, start) if name in behind}
+        return self.network.among(names & self._cone(rail).parts.keys() if rail else names)
 
     def with_override(self, line: Timeline, bypass: Bypass) -> Timeline:
         """A timeline with an override active all the time: what it overrides decides as it forces."""
