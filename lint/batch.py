@@ -7,11 +7,10 @@ import os
 import uuid
 from collections import deque
 from collections.abc import Callable, Iterable, Iterator, Sequence
-from concurrent.futures import Executor, Future
 from functools import lru_cache
 from itertools import islice
 from pathlib import Path
-from typing import Any, Final, TypeAlias, TypeVar
+from typing import TYPE_CHECKING, Any, Final, TypeAlias, TypeVar
 
 import msgspec
 
@@ -19,9 +18,11 @@ from tidegate.lint.description.load import load
 from tidegate.lint.description.place import DescriptionError, Fault, Place
 from tidegate.lint.engine import Catalogue, Review, review
 from tidegate.lint.judgement import Level
-from tidegate.lint.packs import PackError, load_packs
-from tidegate.lint.rule import Rule
+from tidegate.lint.rule import PackError, Rule
 from tidegate.lint.settings import Settings, load_settings, nearest_settings
+
+if TYPE_CHECKING:
+    from concurrent.futures import Executor, Future
 
 Families: TypeAlias = Sequence[Sequence[Rule]]
 
@@ -69,9 +70,29 @@ def judge_file(file: str, request: Request) -> Judged:
     except DescriptionError as error:
         return Judged(file, settings, None, error.faults)
     except PackError as error:
-        fault = Fault(Place(settings.file or file), "packs", str(error), "correct the pack, or do not name it")
-        return Judged(file, settings, None, (fault,))
+        return Judged(file, settings, None, (pack_fault(str(error), settings, file),))
     return Judged(file, settings, judged)
+
+
+def pack_fault(said: str, settings: Settings, file: str) -> Fault:
+    """What is wrong with a pack, at the place where it is named."""
+    advice = "correct the pack, or do not name it"
+    beside = Path(settings.file).parent
+    for key, packs in (("packs", settings.packs), ("packs_installed", settings.packs_installed)):
+        for index, pack in enumerate(packs):
+            if said.startswith(f"rule pack {beside / pack if key == 'packs' else pack}: "):
+                return Fault(settings.place(key, pack), f"{key}[{index}]", said, advice)
+    return Fault(Place(file), "--pack", said, advice)
+
+
+def files_read(judged: Judged) -> tuple[str, ...]:
+    """The names of the files that a review was made from, as far as they are known."""
+    settings = judged.settings
+    beside = Path(settings.file).parent
+    named = [str(beside / each) for each in (*settings.waivers, *settings.packs)]
+    described = () if judged.review is None else judged.review.loaded.sources.files
+    own = [judged.file, *(file.name for file in described), *([settings.file] if settings.file else [])]
+    return tuple(dict.fromkeys([*own, *named, *settings.option_packs]))
 
 
 def settings_for(file: str, request: Request) -> Settings:
@@ -120,6 +141,10 @@ def _catalogue(
     families: Callable[[], Families], folder: str, files: tuple[str, ...], installed: tuple[str, ...], _run: str
 ) -> Catalogue:
     own = families()
+    if not files and not installed:
+        return Catalogue(own)
+    from tidegate.lint.packs import load_packs
+
     names = {"waiver", *(rule.family for family in own for rule in family)}
     return Catalogue([*own, *load_packs(files, installed, names, folder=Path(folder))])
 
@@ -140,6 +165,7 @@ def _in_turn(
         while ahead:
             yield ahead.popleft().result()
             ahead.extend(executor.submit(work, item) for item in islice(waiting, 1))
-    finally:
+    except (Exception, GeneratorExit):  # a run that is told to stop ends the executor itself
         for future in ahead:
             future.cancel()
+        raise

@@ -7,12 +7,15 @@ import gc
 import io
 import os
 import sys
-from collections.abc import Sequence
-from typing import TYPE_CHECKING, Final, NoReturn
 
 from tidegate.lint.version import VERSION
 
+TYPE_CHECKING = False  # as type checkers know it; the module of that name takes longer to load than a version to tell
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+    from typing import Any, Final, NoReturn
+
+    from tidegate.lint.commands.guarded_stream import GuardedStream
     from tidegate.lint.rule import Rule
 
 _COMMANDS: Final = {
@@ -29,6 +32,8 @@ _COMMANDS: Final = {
     "completion": "the completion script of a shell",
 }
 
+_TOLD_AT_ONCE: Final = (["--version"], ["--help"], ["-h"])
+"""What leaves nothing to put in order when it is stopped."""
 _OBJECTS_BETWEEN_COLLECTIONS: Final = 200_000
 
 _ABOUT: Final = """\
@@ -51,34 +56,93 @@ class _Parser(argparse.ArgumentParser):
     """Says what was meant where an argument is nearly right."""
 
     def error(self, message: str) -> NoReturn:
-        hint = _nearest(message)
-        self.exit(2, f"{self.prog}: {message}{hint}\n{self.prog} --help shows what can be said\n")
+        from tidegate.lint.reports.plain_text import plain
+
+        said = plain(f"{self.prog}: {_in_words(message)}")
+        self.exit(2, f"{said}\n{self.prog} --help shows what can be said\n")
+
+    def _print_message(self, message: str, file: Any = None) -> None:
+        """Write help, version or complaint; that it cannot be written is not kept quiet, as argparse itself does."""
+        stream = file or sys.stderr
+        if stream is not None:
+            try:
+                stream.write(message)
+            except OSError as error:
+                raise _UnwrittenError(error) from error
 
 
-def _nearest(message: str) -> str:
-    """A near command for one that is none."""
-    if "invalid choice: '" not in message:
-        return ""
+class _UnwrittenError(Exception):
+    """Help, version or complaint cannot be written."""
+
+    def __init__(self, error: OSError) -> None:
+        self.error = error
+        super().__init__(error)
+
+
+def _in_words(message: str) -> str:
+    """What argparse complains about; where it is a choice, the same whatever Python says, with the nearest one."""
+    import re
+
+    choice = re.fullmatch(r"argument (.+?): invalid choice: '(.*)' \(choose from (.*)\)", message, re.DOTALL)
+    if choice is None:
+        return message
     from difflib import get_close_matches
 
-    word = message.split("invalid choice: '")[1].split("'", maxsplit=1)[0]
-    near = get_close_matches(word, _COMMANDS, 1)
-    return f"; did you mean {near[0]}?" if near else ""
+    argument, found, listed = choice.groups()
+    choices = [each.strip("' ") for each in listed.split(",")]
+    near = get_close_matches(found, choices, 1)
+    hint = f"did you mean {near[0]}? " if near else ""
+    return f"{argument}: no such choice (found {found!r}); {hint}choices: {', '.join(choices)}"
 
 
-def parser(only: str | None = None) -> argparse.ArgumentParser:
-    """The parser of the command line; with ``only``, the options of one command are all that is declared."""
+class _AsWritten(argparse.RawDescriptionHelpFormatter):
+    """Help with its line breaks kept, as wide as argparse would have it, but without the module it loads for that."""
+
+    def __init__(self, prog: str) -> None:
+        try:
+            columns = int(os.environ.get("COLUMNS", "")) or os.get_terminal_size().columns
+        except (ValueError, OSError):
+            columns = 0
+        super().__init__(prog, width=(columns or 80) - 2)
+
+
+class _Named:
+    """A command of which only the name is known: what is told of all of them at once needs no more."""
+
+    def __init__(self, **about: Any) -> None:
+        self._about = about
+
+    def parse_known_args(self, given: list[str], namespace: argparse.Namespace) -> Any:
+        """Parse after all, where an option of no command stands before the name of one."""
+        return _Parser(**self._about).parse_known_args(given, namespace)
+
+
+def parser(*, with_options: bool = True) -> argparse.ArgumentParser:
+    """The parser of the whole command line; without the options of the commands, it is quickly made."""
     top = _Parser(
-        prog="tidegate", description=_ABOUT, epilog=_FIRST_STEPS, allow_abbrev=False,
-        formatter_class=argparse.RawDescriptionHelpFormatter,
-    )  # fmt: skip
+        prog="tidegate", description=_ABOUT, epilog=_FIRST_STEPS, allow_abbrev=False, formatter_class=_AsWritten
+    )
     top.add_argument("--version", action="version", version=f"tidegate {VERSION}")
-    commands = top.add_subparsers(dest="command", metavar="COMMAND", required=True, parser_class=_Parser)
+    commands = top.add_subparsers(prog=top.prog, dest="command", metavar="COMMAND", required=True, parser_class=_Parser)
     for name, about in _COMMANDS.items():
-        sub = commands.add_parser(name, help=about, description=f"{about[0].upper()}{about[1:]}.", allow_abbrev=False)
-        if only in (None, name):
+        sub = commands.add_parser(name, help=about, description=_sentence(about), allow_abbrev=False)
+        if with_options:
             _module(name).configure(sub)
     return top
+
+
+def _parsed(given: list[str]) -> argparse.Namespace:
+    """The options of the command that is given; the others are not even declared."""
+    name = given[0] if given else ""
+    if name not in _COMMANDS:
+        return parser(with_options=False).parse_args(given)
+    command = _Parser(prog=f"tidegate {name}", description=_sentence(_COMMANDS[name]), allow_abbrev=False)
+    _module(name).configure(command)
+    return command.parse_args(given[1:], argparse.Namespace(command=name))
+
+
+def _sentence(about: str) -> str:
+    return f"{about[0].upper()}{about[1:]}."
 
 
 def _module(name: str):  # type: ignore[no-untyped-def]
@@ -89,42 +153,90 @@ def _module(name: str):  # type: ignore[no-untyped-def]
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
-    """Run one command; returns its exit status."""
-    given = list(sys.argv[1:] if arguments is None else arguments)
-    only = next((word for word in given if not word.startswith("-")), None)
-    options = parser(only if only in _COMMANDS else "").parse_args(given)
+    """Run one command; returns its exit status.
+
+    Without arguments it is the program itself: it takes those of the process, and ends as signals tell it.
+    """
+    try:
+        if arguments is not None:
+            return _answer(list(arguments))
+        if sys.argv[1:] in _TOLD_AT_ONCE:
+            return _answer(sys.argv[1:])
+        from tidegate.lint.commands.interruption import Stopped, heeded
+
+        with heeded() as told:
+            status = _answer(sys.argv[1:])
+            if told.number is not None:  # foreign code has caught what was meant for all
+                raise Stopped(told.number)
+        return status
+    except KeyboardInterrupt as stopped:
+        from tidegate.lint.commands.guarded_stream import GuardedStream
+        from tidegate.lint.commands.interruption import end_by, number_of, words
+
+        number = number_of(stopped)
+        err = GuardedStream(sys.stderr)
+        err.write(f"tidegate: {words(number)}\n")
+        err.flush()
+        if arguments is None:
+            end_by(number)
+        return 128 + number  # as a shell tells a program that a signal ended
+
+
+def _answer(given: list[str]) -> int:
+    """Run one command; what happens to the streams is said in a line at most."""
+    from tidegate.lint.commands.guarded_stream import GuardedStream
+
+    _keep_numbers_taken()
+    out, err = GuardedStream(sys.stdout), GuardedStream(sys.stderr)
+    status = _status(given, out, err)
+    out.flush()
+    if out.failure is not None:
+        out.drop()
+        if not isinstance(out.failure, BrokenPipeError):  # a reader that has gone, as `| head` does, has what it wanted
+            err.write(f"tidegate: the output cannot be written ({out.failure.strerror})\n")
+            status = max(status, 2)
+    err.flush()
+    if err.failure is not None:
+        err.drop()
+    return status
+
+
+def _keep_numbers_taken() -> None:
+    """No file may get the number of a standard stream that was closed before the start."""
+    for stream in (sys.stdin, sys.stdout, sys.stderr):
+        if stream is None:
+            os.open(os.devnull, os.O_RDWR)
+
+
+def _status(given: list[str], out: GuardedStream, err: GuardedStream) -> int:
+    """The exit status of a command."""
     # A run makes many objects and hardly any garbage: the collector would only walk them, again and again.
     gc.set_threshold(_OBJECTS_BETWEEN_COLLECTIONS, 20, 100)
     for stream in (sys.stdout, sys.stderr):
         if isinstance(stream, io.TextIOWrapper):  # a letter that the terminal cannot show is written as its number
             stream.reconfigure(errors="backslashreplace")
     try:
-        status = _run(options)
-        sys.stdout.flush()
-    except BrokenPipeError:  # the reader has gone, as `| head` does: what it took was right
-        _drop_output()
-        return 0
-    except OSError as error:
-        _drop_output()
-        sys.stderr.write(f"tidegate: the output cannot be written ({error.strerror or error})\n")
+        return _run(_parsed(given), out, err)
+    except SystemExit as left:  # the parser has said what there is to say
+        return left.code if isinstance(left.code, int) else 0
+    except _UnwrittenError as unwritten:
+        out.failure = unwritten.error
+        return 0 if isinstance(out.failure, BrokenPipeError) else 2
+    except OSError as error:  # such as no room for what is kept until a report is whole
+        from tidegate.lint.reports.plain_text import plain
+
+        here = "the current folder" if isinstance(error, FileNotFoundError) else ""
+        where = error.filename or here
+        err.write(plain(f"tidegate: {where}{': ' if where else ''}{error.strerror}") + "\n")
         return 2
-    except KeyboardInterrupt:
-        return 130
-    return status
 
 
-def _drop_output() -> None:
-    """Spare the interpreter its own flush at the end, which would fail again."""
-    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-
-
-def _run(options: argparse.Namespace) -> int:
+def _run(options: argparse.Namespace, out: GuardedStream, err: GuardedStream) -> int:
     import datetime
 
     from tidegate.lint.commands.streams import Streams
 
-    streams = Streams(sys.stdout, sys.stderr, datetime.date.today(), own_families)
-    return int(_module(options.command).run(options, streams))
+    return int(_module(options.command).run(options, Streams(out, err, datetime.date.today(), own_families)))
 
 
 def own_families() -> Sequence[Sequence[Rule]]:

@@ -14,8 +14,9 @@ from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.description.load import Loaded
 from tidegate.lint.description.model.description import Conditions, Description, Waiver
 from tidegate.lint.description.place import DescriptionError, Fault, Place
-from tidegate.lint.found import quoted
-from tidegate.lint.graph.dependency import SECTIONS, Element, Graph, build
+from tidegate.lint.found import quoted, raised
+from tidegate.lint.graph.bounded import bounded_graph
+from tidegate.lint.graph.dependency import SECTIONS, Element, Graph
 from tidegate.lint.judgement import Judgement, Kind, Level, difference, least_margin
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.quantity import QuantityError
@@ -91,14 +92,15 @@ WEIGHT: Final = {Level.NOTE: 0, Level.WARNING: 1, Level.ERROR: 2}
 def review(loaded: Loaded, catalogue: Catalogue, *, today: datetime.date, settings: Settings | None = None) -> Review:
     """Judge a description: one judgement for every rule and every element it applies to.
 
-    Raises: DescriptionError: if the settings name a rule that nobody has, or a margin of the wrong dimension.
+    Raises: DescriptionError: if the settings name a rule that nobody has, or a margin of the wrong dimension; if the
+    graph is beyond the limits.
     """
     settings = settings or Settings()
     faults = name_faults(settings, catalogue.rules)
     if faults:
         raise DescriptionError(faults)
     loaded = _with_conditions(loaded, settings.conditions)
-    graph = build(loaded.description)
+    graph = bounded_graph(loaded)
     judgements: list[Judgement] = []
     rule_faults: list[RuleFault] = []
     for section in SECTIONS:
@@ -187,7 +189,7 @@ def _judge(asked: _InForce, element: Element, description: Description, graph: G
     except KeyboardInterrupt:
         raise
     except BaseException as error:  # whatever a rule does wrong is its fault and hides no finding, nor ends the run
-        return RuleFault(rule.id, element.id, f"{type(error).__name__}: {error}")
+        return RuleFault(rule.id, element.id, raised(error))
     if not isinstance(answer, Judgement):
         return RuleFault(rule.id, element.id, f"answered {type(answer).__name__}, not a judgement")
     problem = _improper(answer, case)

@@ -30,3 +30,12 @@ def found(value: object) -> str:
     if isinstance(value, list):
         return "a list" if value else "an empty list"
     return quoted(value) if isinstance(value, str) else str(value)
+
+
+def raised(error: BaseException) -> str:
+    """What foreign code raised: its kind and its words, which it may fail to give."""
+    name = type(error).__name__
+    try:
+        return f"{name}: {error}".removesuffix(": ")
+    except Exception:
+        return f"{name}, which does not say what it is about"

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import glob
 import os
-from collections.abc import Iterable, Iterator
+from collections.abc import Callable, Iterable, Iterator
 from pathlib import Path
 from typing import Final
 
@@ -19,30 +19,38 @@ def found_files(names: Iterable[str]) -> Iterator[str | Fault]:
 
     A file that is meant twice, under whatever name, comes once.
     """
-    met: set[Path] = set()
+    met: set[str] = set()
     for name in names:
         for found in _meant(name):
             if isinstance(found, Fault):
                 yield found
                 continue
-            real = Path(found).resolve()
+            real = os.path.realpath(found)
             if real not in met:
                 met.add(real)
                 yield found
 
 
 def _meant(name: str) -> Iterator[str | Fault]:
-    if Path(name).is_dir():
+    if _is(name, Path.is_dir):
         yield from _or_fault(
             _below(name), name, "the folder holds no description",
             f"descriptions in a folder have names that end in {', '.join(SUFFIXES)}",
         )  # fmt: skip
-    elif any(mark in name for mark in "*?[") and not Path(name).exists():
+    elif any(mark in name for mark in "*?[") and not _is(name, Path.exists):
         found = sorted(glob.glob(name, recursive=True))  # noqa: PTH207 - a pattern may begin at the root
-        matches = (match for match in found if Path(match).is_file())
+        matches = (match for match in found if _is(match, Path.is_file))
         yield from _or_fault(matches, name, "no file matches", "check the pattern")
     else:
         yield name
+
+
+def _is(name: str, what: Callable[[Path], bool]) -> bool:
+    """Whether a name is that of a folder, or of anything; what cannot be one is told where it is read."""
+    try:
+        return what(Path(name))
+    except (OSError, ValueError):
+        return False
 
 
 def _or_fault(found: Iterable[str], name: str, problem: str, advice: str) -> Iterator[str | Fault]:

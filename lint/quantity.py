@@ -11,19 +11,17 @@ import re
 from collections.abc import Mapping
 from decimal import MAX_EMAX, MIN_EMIN, Context, Decimal
 from functools import lru_cache
-from typing import Any, ClassVar, Final, Literal, NoReturn, Self
+from typing import Annotated, Any, ClassVar, Final, Literal, NoReturn, Self
 
 import msgspec
 
 from tidegate.lint.found import found
+from tidegate.lint.limits import MOST_QUANTITY
 from tidegate.lint.units import POWERS, SCALED
 from tidegate.lint.units import Dimension as _Dimension
 
 Dimension = _Dimension
 """What a quantity measures; here for those who read and show quantities and need no table of units."""
-
-MOST_TEXT: Final = 64
-"""Longest text of a quantity that is read, in characters."""
 
 _QUANTITY: Final = re.compile(
     r"([+-]?[0-9]+(?:\.[0-9]+)?)(?:[eE]([+-]?[0-9]+))?( ?)([A-Za-z%1][A-Za-z0-9%/^*]*)", re.ASCII
@@ -61,7 +59,7 @@ def parse(text: str, dimension: Dimension) -> float:
 @lru_cache(maxsize=65536)
 def value_or_none(text: str, dimension: Dimension) -> float | None:
     """The value, or None where the text is not a quantity of this dimension."""
-    match = _QUANTITY.fullmatch(text) if len(text) <= MOST_TEXT else None
+    match = _QUANTITY.fullmatch(text) if len(text) <= MOST_QUANTITY else None
     if match is None:
         return None
     mantissa, exponent, gap, unit = match.groups()
@@ -126,6 +124,8 @@ def show(value: float, dimension: Dimension, *, digits: int = 4) -> str:
     for candidate, name in shown:
         if rounded >= _SHOWN_FROM.get(name, candidate) * (1 - 1e-12):
             size, unit = candidate, name
+    if abs(value) > _LARGEST * size:  # more of the unit than a float can count
+        return f"{Decimal(value) / Decimal(size):.{digits}g} {unit}"
     return f"{_plain(value / size, digits)} {unit}"
 
 
@@ -146,7 +146,7 @@ def show_apart(first: float, second: float, dimension: Dimension) -> tuple[str, 
     return texts
 
 
-class Basis(msgspec.Struct, frozen=True, kw_only=True):
+class Basis(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """Where a number comes from."""
 
     by: Literal["calculated", "simulated", "measured", "published"] | None = None
@@ -154,7 +154,10 @@ class Basis(msgspec.Struct, frozen=True, kw_only=True):
     temperatures: Literal["all", "one"] | None = None
     ramps: Literal["all", "one"] | None = None
     reference: Literal["ideal", "real"] | None = None
-    source: str | None = None
+    source: Annotated[str, msgspec.Meta(min_length=1)] | None = None
+
+
+_OF_A_SPAN: Final = frozenset(("min", "typ", "max", "basis"))
 
 
 class Span:
@@ -210,6 +213,8 @@ class Span:
             return cls(value, value, value)
         if not isinstance(given, dict):
             raise QuantityError(_not_a_text(given, cls.dimension))
+        if not given.keys() <= _OF_A_SPAN:
+            raise QuantityError("a span has min, typ, max and basis")
         least, typical, most = (cls._part(given, key) for key in ("min", "typ", "max"))
         known = [value for value in (least, typical, most) if value is not None]
         if not known:

@@ -3,19 +3,25 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping
 from typing import Final
 
 from tidegate.lint.found import quoted
-from tidegate.lint.quantity import MOST_TEXT, value_or_none
+from tidegate.lint.limits import MOST_QUANTITY
+from tidegate.lint.quantity import value_or_none
 from tidegate.lint.units import Dimension
 
 _NUMBER: Final = r"[+-]?[0-9]+(?:\.[0-9]+)?(?:[eE][+-]?[0-9]+)?"
 _RANGE: Final = re.compile(rf"({_NUMBER})\s*([^\s\d.+-][^\s.-]*)?\s*(?:\.\.+|-|to)\s*({_NUMBER})\s*(\S+)")
+_NOT_YET: Final = frozenset(
+    {"", "?", "??", "???", "-", "--", "none", "tbd", "tba", "tbc", "todo", "n/a", "na", "unknown", "x"}
+)
+"""What is written where a number is to come."""
 _SIGNS: Final = str.maketrans(
     {
         "\u00b5": "u", "\u03bc": "u", "\u03a9": "ohm", "\u2126": "ohm", "\u00b0": "deg", "\u2103": "degC",
-        "\u00b2": "^2", "\u00b7": "*", "\u22c5": "*", "\u25a1": "sq", "\u2212": "-", "\u2013": "-",
+        "\u00b2": "^2", "\u00b7": "*", "\u22c5": "*", "\u25a1": "sq", "\u2212": "-", "\u2013": "-", "\u2026": "..",
+        **dict.fromkeys(("\u00ad", "\u200b", "\u200c", "\u200d", "\u2060", "\ufeff"), ""),
+        **{chr(0xFEE0 + sign): chr(sign) for sign in range(0x21, 0x7F)},
     }
 )  # fmt: skip
 """Signs that look like the plain ones, or stand for them in other texts."""
@@ -34,6 +40,7 @@ _HABITS: Final[tuple[tuple[re.Pattern[str], str], ...]] = tuple(
         (r"^/K", "1/K"),
         (r"/(?:deg ?)?C$", "/K"),
         (r"/deg$", "/K"),
+        (r"^deg$", "degC"),
         (r"^([munp]?)s(?:ec)(?:s|onds?)?$", r"\1s"),
         (r"^minutes?$|^mins$", "min"),
         (r"^h(?:rs?|ours?)$", "h"),
@@ -60,14 +67,14 @@ def _diagnosis(text: str, dimension: Dimension) -> tuple[str, str]:
     due = f"write a number with its unit, such as {dimension.example}"
     if dimension is Dimension.COUNT:
         return "is a text", f"write a plain number, such as {dimension.example}"
-    if len(text) > MOST_TEXT:
-        return f"is longer than {MOST_TEXT} characters", due
+    if len(text) > MOST_QUANTITY:
+        return f"is longer than {MOST_QUANTITY} characters", due
     clean = " ".join(text.translate(_SIGNS).split())
     if re.match(r"[+-]?(?:nan|inf|infinity)\b", clean, re.IGNORECASE):
         return "is not a finite number", due
-    if re.match(r"[+-]?[0-9]+,[0-9]", clean):
-        better = clean.replace(",", ".", 1)
-        return "has a decimal comma", f"write {better}" if _reads(better, dimension) else due
+    other = _other_habit(clean, dimension)
+    if other is not None:
+        return other
     match = re.fullmatch(rf"({_NUMBER}) ?(.*)", clean)
     if match is None:
         return f"is no {noun}", _tidied(clean, dimension) or due
@@ -77,6 +84,31 @@ def _diagnosis(text: str, dimension: Dimension) -> tuple[str, str]:
     if unit in dimension.units:
         return _about_the_number(text, number, unit, dimension)
     return _about_the_unit(clean, number, unit, dimension)
+
+
+def _other_habit(clean: str, dimension: Dimension) -> tuple[str, str] | None:
+    """What is wrong with a text that is written as people write elsewhere; None where it is not."""
+    noun = dimension.noun
+    if clean.casefold() in _NOT_YET:
+        return f"is no {noun}", "leave the key empty where it is not known yet"
+    if clean.startswith("{"):
+        return f"is a text, no {noun}", "write it without quotes"
+    if re.match(r"[+-]?[0-9]+,[0-9]", clean):
+        return _comma(clean, dimension)
+    before, sign, _ = clean.partition("#")
+    if sign and _reads(before.strip(), dimension):
+        return f"is no {noun}", "put a space before the # of a comment"
+    return None
+
+
+def _comma(clean: str, dimension: Dimension) -> tuple[str, str]:
+    """A comma in the number: it parts the decimals, or may part the thousands where three digits follow."""
+    better = clean.replace(",", ".", 1)
+    if not _reads(better, dimension):
+        return "has a decimal comma", f"write a number with its unit, such as {dimension.example}"
+    if re.match(r"[+-]?[1-9][0-9]{0,2},[0-9]{3}(?![0-9])", clean):
+        return "has a comma", f"write {better}, or {clean.replace(',', '', 1)} if thousands are meant"
+    return "has a decimal comma", f"write {better}"
 
 
 def with_unit(number: str, dimension: Dimension) -> str:
@@ -108,13 +140,21 @@ def _about_the_unit(clean: str, number: str, unit: str, dimension: Dimension) ->
         return f"has the unknown unit {quoted(unit)}", f"did you mean {better}?"
     other = next((each for each in Dimension if unit in each.units), None)
     if other is not None:
-        article = "an" if other.noun[0] in "aeiou" else "a"
-        return f"is {article} {other.noun}", f"write a {noun}, such as {dimension.example}"
-    known = f"units of a {noun}: {', '.join(dimension.units)}"
+        return f"is {_one(other.noun)}", f"write {_one(noun)}, such as {dimension.example}"
+    inside = re.fullmatch(r"([A-Za-z]+)([0-9]+)", unit)
+    if inside and number.isdigit():  # 4k7
+        like = f"{number}.{inside[2]} {_meant(inside[1], dimension) or inside[1]}"
+        if _reads(like, dimension):
+            return f"has the unknown unit {quoted(unit)}", f"did you mean {like}?"
+    known = f"units of {_one(noun)}: {', '.join(dimension.units)}"
     if re.fullmatch(r"[A-Za-z%/^*0-9]+", unit):
         return f"has the unknown unit {quoted(unit)}", known
     advice = _tidied(clean, dimension) or f"write one number with its unit, such as {dimension.example}"
     return f"is no {noun}", advice
+
+
+def _one(noun: str) -> str:
+    return f"an {noun}" if noun[0] in "aeiou" else f"a {noun}"
 
 
 def _meant(unit: str, dimension: Dimension) -> str | None:
@@ -134,10 +174,13 @@ def _tidied(clean: str, dimension: Dimension) -> str | None:
     match = _RANGE.fullmatch(clean)
     if match is not None:
         low, unit, high, last = match.groups()
-        bounds: Mapping[str, str] = {"min": f"{low} {unit or last}", "max": f"{high} {last}"}
-        if all(_reads(bound, dimension) for bound in bounds.values()):
-            return f"write a range as {{min: {bounds['min']}, max: {bounds['max']}}}"
-    better = re.sub(r"(?<=[0-9])[ _](?=[0-9]{3}\b)", "", clean)
+        bounds = sorted(
+            (f"{low} {unit or last}", f"{high} {last}"), key=lambda bound: value_or_none(bound, dimension) or 0.0
+        )
+        if all(_reads(bound, dimension) for bound in bounds):
+            return f"write a range as {{min: {bounds[0]}, max: {bounds[1]}}}"
+    better = re.sub(r"(?<=[0-9])[ _'](?=[0-9]{3}\b)", "", clean)
+    better = re.sub(r" (?:/|per) ", "/", better)
     better = re.sub(r"(?<![0-9])\.(?=[0-9])", "0.", better)
     better = re.sub(r"(?<=[0-9])\.(?![0-9])", "", better)
     return f"write {better}" if _reads(better, dimension) else None

@@ -13,6 +13,10 @@ from tidegate.lint.judgement import Judgement, Level
 Judge: TypeAlias = "Callable[[Any, Case], Judgement]"
 
 
+class PackError(Exception):
+    """A pack of rules cannot be used; the message names the pack and everything that is wrong with it."""
+
+
 class Example(msgspec.Struct, frozen=True):
     """Two fragments of a description: with the first the rule fails, with the second it holds.
 
@@ -60,7 +64,13 @@ def rule(
     example: Example,
     formulas: Iterable[Callable[..., object]] = (),
 ) -> Callable[[Judge], Rule]:
-    """Make a rule of the function below: its metadata in the order in which a reader asks."""
+    """Make a rule of the function below: its metadata in the order in which a reader asks.
+
+    Raises: TypeError: where a text stands for a tuple of texts.
+    """
+    for field, given in (("facts", facts), ("sources", sources)):
+        if isinstance(given, str):
+            raise TypeError(f"the {field} of {id} are a tuple of texts, such as ({given!r},)")
 
     def make(judge: Judge) -> Rule:
         return Rule(

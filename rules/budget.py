@@ -14,8 +14,9 @@ from tidegate.lint.derived.supply.standing_current import Taker, circuit_takers,
 from tidegate.lint.description.model.detector import Bias, Comparator
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.description.model.supply import Domain
-from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.judgement import Judgement, Level, Measure, Relation
 from tidegate.lint.physics import hold
+from tidegate.lint.physics.domain import require_positive
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 
@@ -61,13 +62,13 @@ def domain_stays_within_budget(domain: Domain, case: Case) -> Judgement:
     )
     takers = [*holds, *circuits, *dividers]
     total_a = _sum_a(takers)
-    if holds and _sum_a([*holds, *circuits]) > budget_a * (1 + 1e-9):
+    if holds and not Measure(budget_a, _sum_a([*holds, *circuits]), _A, Relation.AT_MOST).holds:
         return case.not_applicable("its holds and circuits alone pass it (passive_default/holds_within_budget says so)")
     modes = _in_modes(case, domain, takers, total_a)
     return case.at_most(
         need=budget_a, have=total_a, dimension=_A, says="takes at rest",
         why="; ".join([largest_first(takers, _TAKERS_SHOWN) or "nothing in it takes current", *modes]),
-        mend=f"take {show_up(max(total_a - budget_a, 0.0), _A)} less, or a budget of at least {show_up(total_a, _A)}",
+        mend=f"take {show_up(total_a - budget_a, _A)} less, or a budget of at least {show_up(total_a, _A)}",
         at="budget",
     )  # fmt: skip
 
@@ -156,6 +157,7 @@ def _judge_timing(element: Any, case: Case) -> Judgement:
     if timing.current is None and timing.resistance is not None:
         threshold_v, ohm = case.own.most("timing.threshold"), case.own.most("timing.resistance")
         supply_v, _ = case.gather(lambda: delivered_v(case, element, "least"), lambda: case.own.most("timing.leakage"))
+        require_positive(r_ohm=ohm)
         return _above_leakage(
             case, max(supply_v - threshold_v, 0.0) / ohm, current="timing.resistance", leakage="timing.leakage",
             what="the current through its resistance, at the threshold,",

@@ -22,7 +22,7 @@ from tidegate.lint.derived.reset_path.override import (
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Bypass, Hold
 from tidegate.lint.graph.dependency import Graph
-from tidegate.lint.graph.dominators import on_every_way
+from tidegate.lint.graph.dominators import on_every_way_to_each
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.graph.leaning_gaps import leaning_gaps
 from tidegate.lint.graph.paths import Reach, drives
@@ -72,7 +72,7 @@ def detector_has_override(comparator: Comparator, case: Case) -> Judgement:
     case.settle()
     asserting = [override.id for override in overrides if override.forces == "asserted"]
     inside = {name: graph.heads(name, EdgeKind.DRIVES) for name in reach}
-    ways = [on_every_way(inside, comparator.id, net) for net in kept]
+    ways = on_every_way_to_each(inside, comparator.id, kept)
     shared = next((name for name in ways[0] if all(name in way for way in ways)), None)
     stage = f", or on {shared}, which every way passes" if shared else ""
     return case.fails(
@@ -252,8 +252,9 @@ def over_voltage_stays_in_force(bypass: Bypass, case: Case) -> Judgement:
             for unsaid in unsaid_combinations(graph, Reach(detector.id, drives(graph))):
                 case.of(unsaid).lacks("combine")
     case.settle()
-    if over and resets_in(graph, Reach(over[0].id, drives(graph))):
-        return case.passes(f"{over[0].id} still reaches its reset nets on another way")
+    still = [one.id for one in over if resets_in(graph, Reach(one.id, drives(graph)))]
+    if still:
+        return case.passes(f"{_and(still)} still {'reach' if len(still) > 1 else 'reaches'} every reset net without it")
     return case.passes("lifts the reset of no over-voltage detector")
 
 

@@ -147,10 +147,11 @@ def control_is_up(bypass: Bypass, case: Case) -> Judgement:
     if not watched:
         return case.not_applicable(f"no detector's decision passes through {element}")
     if late:
+        first = _earliest(case, late).id
         return case.asks(
-            f"rests on {rail.id} being up before {late[0].id}",
-            why=f"its control lives on {rail.id}, and nothing says that {late[0].id} comes up after it",
-            mend=f"give rails.{late[0].id}.after and its delay if it does; else move the control to {late[0].id}",
+            f"rests on {rail.id} being up before {first}",
+            why=f"its control lives on {rail.id}, and nothing says that {first} comes up after it",
+            mend=f"give rails.{first}.after and its delay if it does; else move the control to {first}",
             at="domain",
             path=feed,
         )
@@ -166,12 +167,20 @@ def _home(case: Case) -> tuple[Domain, str, Rail]:
     return domain, kind, rail
 
 
+def _earliest(case: Case, rails: Sequence[Rail]) -> Rail:
+    """The rail that all the others come up after; the first one where none is known to be."""
+    for rail in rails:
+        if all(way_to_earlier(case, later=other, earlier=rail) for other in rails if other is not rail):
+            return rail
+    return rails[0]
+
+
 def _dead(case: Case, rail: Rail, others: Sequence[Rail], feed: Path) -> Judgement | None:
     """Whether the control's rail waits for a reset net, or comes up after one of the rails watched."""
     if not others:
         return None
     needs = case.graph.once(leaning_of_rails)[rail.id]
-    mend = f"move the control to {others[0].id}, or to a rail that is up before it"
+    mend = f"move the control to {_earliest(case, others).id}, or to a rail that is up before it"
     held_by = next((name for name in needs if isinstance(case.graph.elements[name], Reset)), None)
     if held_by is not None:
         return case.fails(

@@ -14,6 +14,7 @@ from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.description.model.timing import Timing
 from tidegate.lint.judgement import Judgement, Kind, Level
 from tidegate.lint.physics import timer
+from tidegate.lint.physics.domain import require_positive
 from tidegate.lint.quantity import Dimension, Span, Voltage, show
 from tidegate.lint.rule import Example, Rule, rule
 
@@ -111,7 +112,7 @@ def ratio_is_made_by_resistances(comparator: Comparator, case: Case) -> Judgemen
     case.settle()
     made = Made(
         bottom[0] / (bottom[0] + top[1]), bottom[1] / (bottom[1] + top[0]),
-        f"{show(bottom[0], Dimension.RESISTANCE)} below {show(top[0], Dimension.RESISTANCE)}",
+        f"{_ends_text(bottom, Dimension.RESISTANCE)} below {_ends_text(top, Dimension.RESISTANCE)}",
     )  # fmt: skip
     stated = Span(divider.ratio, divider.ratio, divider.ratio)
     slack = ROUNDING * divider.ratio
@@ -122,6 +123,11 @@ def ratio_is_made_by_resistances(comparator: Comparator, case: Case) -> Judgemen
 
 def _ends(facts: Facts, fact: str) -> tuple[float, float]:
     return facts.least(fact), facts.most(fact)
+
+
+def _ends_text(ends: tuple[float, float], dimension: Dimension) -> str:
+    least, most = (show(end, dimension) for end in ends)
+    return least if least == most else f"{least} to {most}"
 
 
 @rule(
@@ -292,6 +298,7 @@ def bias_current_is_made(bias: Bias, case: Case) -> Judgement:
 def _current_held(case: Case, element: Reference | Bias, reference: Reference) -> Judgement:
     volt, ohm = _ends(case.of(reference), "voltage"), _ends(case.own, "resistance")
     case.settle()
+    require_positive(r_ohm=ohm[0])
     made = Made(volt[0] / ohm[1], volt[1] / ohm[0], f"voltage of {reference.id} over the resistance")
     assert element.current is not None
     slack_a = ROUNDING * made.most

@@ -304,6 +304,7 @@ def ring_dies_out(comparator: Comparator, case: Case) -> Judgement:
     if ring.unknown and measure.holds:
         return _unknown(case, ring.unknown)
     strongest = max(ring.pushes, key=lambda push: push.ratio)
+    allowed_v = strongest.bump_v if measure.holds else strongest.bump_v / ring.product  # a product may be 0
     return case.at_most(
         need=1.0,
         have=ring.product,
@@ -311,7 +312,7 @@ def ring_dies_out(comparator: Comparator, case: Case) -> Judgement:
         says=f"round the ring {' - '.join(push.by for push in ring.pushes)}, bump over hysteresis multiplies to",
         why="; ".join(_push_text(push) for push in ring.pushes),
         mend=f"keep what {strongest.by} leaves on {strongest.victim} at or below "
-        f"{show_down(strongest.bump_v / ring.product, _V)}; now {show(strongest.bump_v, _V)}",
+        f"{show_down(allowed_v, _V)}; now {show(strongest.bump_v, _V)}",
         path=joined(ring.pushes),
     )
 

@@ -86,8 +86,8 @@ def stack_has_no_hole(rail: Rail, case: Case) -> Judgement:
     return case.at_least(
         need=step.above.from_v, have=step.below.to_v, dimension=_V,
         says=f"{_WORDS[step.way]}, {step.below.detector} surely holds reset up to", why=_why(case, rail, step),
-        mend=f"a level of {step.below.detector} {show_up(max(-step.overlap_v, 0.0), _V)} higher, or "
-        f"{step.above.by or upper.id} working from {show_down(step.below.to_v, _V)} or less",
+        mend=f"a level of {step.below.detector} {show_up(-step.overlap_v, _V)} higher, or "
+        f"{step.above.by} working from {show_down(step.below.to_v, _V)} or less",
         path=(Hop(rail.id, ""), Hop(step.below.detector, EdgeKind.WATCHES.backwards)),
         # Without its components nobody can say whether its level tracks: then a person must look at the extremes.
         otherwise=Kind.REVIEW if made_without_reference else Kind.FAIL,
@@ -165,7 +165,7 @@ def armed_after_its_rail_is_up(comparator: Comparator, case: Case) -> Judgement:
         case.missing.extend(_least_times_to_give(lines, part, arming.id, least))
         case.settle()
     if least is None:
-        return case.not_applicable(f"{arming.id} never lets go of it in a start-up")
+        return case.not_applicable(f"{arming.id} asserts nothing that it lets go of in a start-up")
     if least.first_s == FOREVER_S or least.then_s == -FOREVER_S:
         return case.fails(
             f"{arming.id} may arm it while {rail} is not up ({least.scenario.name})",

@@ -150,14 +150,19 @@ def net_is_driven_sharply(reset: Reset, case: Case) -> Judgement:
     drive_ohm, load_f = case.of(stage).most("drive"), case.of(stage).most("load")
     count = reset.receivers.count if reset.receivers is not None else None
     among = f", {count} receivers among it" if count is not None else ""
-    largest_f = plain_s / (rc_edge.TEN_TO_NINETY * drive_ohm)
     return case.at_most(
         need=plain_s, have=edge_s, dimension=_T, says=f"{stage.id} moves it within",
         why=f"{show(drive_ohm, Dimension.RESISTANCE)} of drive on {show(load_f, Dimension.CAPACITANCE)}{among}",
-        mend=f"a drive of {show_down(plain_s / (rc_edge.TEN_TO_NINETY * load_f), Dimension.RESISTANCE)} or less, or a "
-        f"load of {show_down(largest_f, Dimension.CAPACITANCE)} or less", at="driven_by",
+        mend=_sharper(plain_s, drive_ohm, load_f) if edge_s > 0.0 else "", at="driven_by",
         path=(Hop(stage.id, ""), Hop(reset.id, EdgeKind.DRIVES.forwards)),
     )  # fmt: skip
+
+
+def _sharper(plain_s: float, drive_ohm: float, load_f: float) -> str:
+    """The drive, or the load, with which the edge would be no longer than asked for."""
+    tau_s = plain_s / rc_edge.TEN_TO_NINETY
+    drive, load = show_down(tau_s / load_f, Dimension.RESISTANCE), show_down(tau_s / drive_ohm, Dimension.CAPACITANCE)
+    return f"a drive of {drive} or less, or a load of {load} or less"
 
 
 def _edge_s(case: Case, stage: OutputStage) -> float:

@@ -54,7 +54,7 @@ def reset_is_a_level(comparator: Comparator, case: Case) -> Judgement:
             at="output",
         )
     rearms_v = case.own.least("rearms_below")
-    bounds = case.gather_all([partial(least_supplies, case, comparator)])[0]
+    (bounds,) = case.gather_all([partial(least_supplies, case, comparator)])
     power_on = comparator.role == "power_on"
     if bounds:
         need = bounds[0]

@@ -257,13 +257,14 @@ def reset_is_asserted_in_time(load: Load, case: Case) -> Judgement:
         if slack is not None:
             found.append((rail, slack))
     if not found:
-        return case.not_applicable("it works down to 0 V")
+        return case.not_applicable("no rail that falls from nominal leaves its range")
     rail, least = min(found, key=lambda one: one[1].slack_s)
     if least.slack_s < 0.0 and (late := decides_too_late(case, load, rail)):
         return case.not_applicable(late)
     works_v = dict(_load_part(lines, load).works)[rail].least
     missed = _deepest_missed(lines, load, rail)
-    if least.first_s < FOREVER_S and missed is not None and not _reaches(_depth_v(missed), works_v):
+    seen = missed is None or Measure(works_v, _depth_v(missed), _V, Relation.AT_LEAST).holds
+    if least.first_s < FOREVER_S and not seen:
         return case.not_applicable(f"a dip of {rail} may be missed altogether (start_up/dip_is_caught says so)")
     if least.first_s == FOREVER_S and (unheard := nobody_judges(case, load, rail)):
         return case.not_applicable(unheard)
@@ -274,8 +275,9 @@ def reset_is_asserted_in_time(load: Load, case: Case) -> Judgement:
             mend=f"let a detector of {rail} that is alive down to 0 V, or held, reset it",
             at="needs",
         )
-    slope_v_per_s = lines.ramps.by_rail[rail].fastest_fall_v_per_s
-    short_v = -least.slack_s * slope_v_per_s
+    if least.first_s == -FOREVER_S:
+        return case.passes(f"its reset is asserted before {rail} falls", at="needs")
+    short_v = -least.slack_s * lines.ramps.by_rail[rail].fastest_fall_v_per_s
     return case.at_least(
         need=least.first_s, have=least.then_s, dimension=_T,
         says=f"{rail} leaves the range of the load, falling from nominal, after",
@@ -316,10 +318,9 @@ def dip_is_caught(load: Load, case: Case) -> Judgement:
     for rail, works in _load_part(lines, load).works:
         falls = lines.alone(rail)
         slack = None if falls is None else assert_slack(falls, load.id, rail=rail, works=works)
-        if slack is None or slack.first_s == FOREVER_S:
+        if slack is not None and slack.first_s == FOREVER_S:
             unseen.append(rail)
-            continue
-        deepest = _deepest_missed(lines, load, rail)
+        deepest = None if slack is None or rail in unseen else _deepest_missed(lines, load, rail)
         if deepest is not None:
             depth_v = _depth_v(deepest)
             margins.append((depth_v - works.least, works.least, depth_v, rail, deepest))
@@ -335,10 +336,6 @@ def dip_is_caught(load: Load, case: Case) -> Judgement:
         why=f"{line.scenario.about}; the load works down to {show(need_v, _V)}",
         mend=f"see dips {show_up(need_v - have_v, _V)} sooner: a higher falling level, or a shorter filter", at="needs",
     )  # fmt: skip
-
-
-def _reaches(level_v: float, needed_v: float) -> bool:
-    return Measure(needed_v, level_v, _V, Relation.AT_LEAST).holds
 
 
 def _deepest_missed(lines: Timelines, load: Load, rail: str) -> Timeline | None:

@@ -79,7 +79,7 @@ def components_make_the_level(comparator: Comparator, case: Case) -> Judgement:
     parts = ", ".join(f"{name} {show(width_v, _V)}" for name, width_v in swings if width_v > 0.0)
     why = (
         f"components {show(least.level_v, _V)} to {show(most.level_v, _V)}, stated {show(stated.least_v, _V)} to "
-        f"{show(stated.most_v, _V)}; what moves it: {parts}"
+        f"{show(stated.most_v, _V)}; what moves it: {parts or 'nothing'}"
     )
     mend = f"state {show(least.level_v, _V)} to {show(most.level_v, _V)}, or narrow what moves it most: {swings[0][0]}"
     if least.level_v - stated.least_v <= stated.most_v - most.level_v:

@@ -46,10 +46,10 @@ class _Step(msgspec.Struct, frozen=True):
         return self.above_window.least_v - self.below_window.most_v
 
     @property
-    def nominal_gap_v(self) -> float:
-        return (
-            self.above_window.least_v + self.above_window.most_v - self.below_window.least_v - self.below_window.most_v
-        ) / 2
+    def is_in_order_nominally(self) -> bool:
+        """Whether the middle of the one level lies above the middle of the other."""
+        below, above = self.below_window, self.above_window
+        return above.least_v + above.most_v > below.least_v + below.most_v
 
 
 @rule(
@@ -89,7 +89,8 @@ def detectors_stand_in_order(rail: Rail, case: Case) -> Judgement:
     says = f"{step.level} of {step.above.id} above {step.below.id}, worst against worst:"
     overlap_v = -step.gap_v
     reference = step.below.reference
-    if overlap_v > 0.0 and step.nominal_gap_v > 0.0 and reference is not None and reference == step.above.reference:
+    shared = reference is not None and reference == step.above.reference
+    if overlap_v > 0.0 and step.is_in_order_nominally and shared:
         return case.asks(
             f"{step.below.id} and {step.above.id} overlap by {show(overlap_v, _V)} at the extremes, and not nominally",
             why=f"both take their level from {reference}, whose error moves both; {ladder}",
@@ -102,7 +103,7 @@ def detectors_stand_in_order(rail: Rail, case: Case) -> Judgement:
         dimension=_V,
         says=says,
         why=ladder,
-        mend=f"{step.above.id} and {step.below.id} {show_up(max(overlap_v, 0.0), _V)} further apart",
+        mend=f"{step.above.id} and {step.below.id} {show_up(overlap_v, _V)} further apart",
     )
 
 

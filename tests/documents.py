@@ -65,12 +65,25 @@ def description_reference() -> str:
     for name, node in quantities.items():
         units = node["description"].partition("(")[2].partition(")")[0]
         lines.append(f"| {name.replace('_', ' ')} | {_cell(units)} | `{node['examples'][0]}` |")
+    lines += ["", "## Limits", "", *_limits()]
     lines += ["", "## The file", "", *_table(schema["properties"], defs)]
     for name, node in defs.items():
         if "properties" in node:
             lines += ["", f"## {name}", "", f"{node['title']}. {node['description']}", ""]
             lines += _table(node["properties"], defs, node.get("required", ()))
     return "\n".join(lines) + "\n"
+
+
+def _limits() -> Iterator[str]:
+    from tidegate.lint.limits import LIMITS
+
+    yield "What lies beyond them is refused, with exit status 2 and a message that says what was found; a rule of a"
+    yield "pack that takes too long fails itself, with exit status 3."
+    yield ""
+    yield "| what | at most |"
+    yield "| --- | --- |"
+    for what, most in LIMITS:
+        yield f"| {_cell(what)} | {_cell(most)} |"
 
 
 def _table(properties: Mapping[str, Any], defs: Mapping[str, Any], required: Sequence[str] = ()) -> Iterator[str]:

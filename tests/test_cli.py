@@ -11,6 +11,8 @@ from pathlib import Path
 import jsonschema
 import pytest
 
+from tests.commands.calling import tidegate as on_terminal
+
 ROOT = Path(__file__).resolve().parents[1]
 SOUND = "examples/sound.yaml"
 FAULTY = "examples/faulty.yaml"
@@ -61,7 +63,7 @@ def test_exit_status(arguments: list[str], status: int) -> None:
 
 @pytest.mark.parametrize("columns", [60, 80, 110, 300])
 def test_no_line_is_wider_than_the_terminal(columns: int) -> None:
-    lines = tidegate("review", FAULTY, columns=columns).stdout.splitlines()
+    lines = on_terminal("review", FAULTY, columns=columns).stdout.splitlines()
     unbroken = [line for line in lines if len(line) > columns and " " in line.strip()[24:]]
     assert unbroken == []
 

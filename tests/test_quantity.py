@@ -72,7 +72,7 @@ def test_a_text_is_read_exactly(text: str, dimension: Dimension, value: float | 
 
 DUE = "write a number with its unit, such as"
 REFUSED = (
-    ("", Dimension.VOLTAGE, f"'' is no voltage; {DUE} 1.62 V"),
+    ("", Dimension.VOLTAGE, "'' is no voltage; leave the key empty where it is not known yet"),
     ("V", Dimension.VOLTAGE, f"'V' is no voltage; {DUE} 1.62 V"),
     ("1.8", Dimension.VOLTAGE, "'1.8' has no unit; write its unit, such as 1.8 V"),
     ("0.02", Dimension.RATIO, "'0.02' has no unit; write it in % or ppm: 0.02 is 2 %"),
@@ -100,7 +100,7 @@ REFUSED = (
     ("1.4 M\u2126", Dimension.RESISTANCE, "'1.4 M\u2126' is not written plainly; write 1.4 Mohm"),
     ("125 \u00b0C", Dimension.TEMPERATURE, "'125 \u00b0C' is not written plainly; write 125 degC"),
     ("\u221240 degC", Dimension.TEMPERATURE, "'\u221240 degC' is not written plainly; write -40 degC"),
-    ("\uff11 V", Dimension.VOLTAGE, f"'\uff11 V' is no voltage; {DUE} 1.62 V"),
+    ("\uff11 V", Dimension.VOLTAGE, "'\uff11 V' is not written plainly; write 1 V"),
     ("-1.8 V", Dimension.VOLTAGE, "'-1.8 V' is negative; a magnitude is due here, zero or more"),
     ("-300 degC", Dimension.TEMPERATURE, "'-300 degC' lies below absolute zero; the lowest is -273.15 degC"),
     ("-1 K", Dimension.TEMPERATURE, "'-1 K' lies below absolute zero; the lowest is -273.15 degC"),
@@ -241,13 +241,18 @@ def test_different_values_never_look_the_same(first: float, second: float) -> No
 
 def test_a_span_is_read_from_its_parts() -> None:
     assert Voltage.read("1.62 V") == Voltage(1.62, 1.62, 1.62)
-    span = Voltage.read({"min": "1.6 V", "max": "1.7 V", "basis": {"by": "simulated", "x-run": "7"}})
+    span = Voltage.read({"min": "1.6 V", "max": "1.7 V", "basis": {"by": "simulated"}})
     assert (span.least, span.typical, span.most) == (1.6, None, 1.7)
     assert span.basis == Basis(by="simulated")
     assert span.middle == pytest.approx(1.65)
     assert Voltage.read({"typ": "1.6 V"}).middle == 1.6
     assert Voltage.read({"min": "1.6 V"}).middle is None
     assert repr(span) == "Voltage(1.6, None, 1.7)"
+
+
+def test_a_span_takes_no_other_parts() -> None:
+    with pytest.raises(QuantityError, match="a span has min, typ, max and basis"):
+        Voltage.read({"min": "1.6 V", "least": "1.5 V"})
 
 
 @pytest.mark.parametrize(

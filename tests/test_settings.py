@@ -137,7 +137,7 @@ def test_least_margins_as_quantity_and_as_share(chip: Path, tmp_path: Path, leas
             [f"{FILE_NAME}:1:36: conditions.junction_temperature: min 125 degC, max -40 degC are out of order; "],
         ),
         ("waivers: [no.yaml]\n", [f"{FILE_NAME}:1:11: waivers[0]: no such file (found 'no.yaml'); name a file"]),
-        ("packs: [no.py]\n", [f"{FILE_NAME}: packs: rule pack no.py: no such file; "]),
+        ("packs: [no.py]\n", [f"{FILE_NAME}:1:9: packs[0]: rule pack no.py: no such file; "]),
     ],
     ids=["near miss", "no near miss", "dimension", "unknown key", "choice", "order", "waiver file", "pack"],
 )

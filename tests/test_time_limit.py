@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import signal
+import subprocess
+import sys
 import threading
 import time
 from collections.abc import Callable
@@ -71,3 +73,52 @@ def test_nothing_is_left_of_the_limit() -> None:
     within(0.05, "quick", lambda: None)
     assert signal.getsignal(signal.SIGALRM) is before
     assert signal.getitimer(signal.ITIMER_REAL) == (0.0, 0.0)
+
+
+UNSTOPPABLE = {
+    "a loop in C": "sum(range(10**13))",
+    "another loop in C": "__import__('collections').deque(__import__('itertools').count(), maxlen=0)",
+    "one that catches everything": "stubborn()",
+    "one that sleeps and catches everything": "sleepy()",
+}
+SCRIPT = """
+import sys, time
+import tidegate.lint.time_limit as limit
+
+def stubborn():
+    while True:
+        try:
+            while True: time.time()
+        except BaseException: pass
+
+def sleepy():
+    while True:
+        try: time.sleep(1)
+        except BaseException: pass
+
+limit.GRACE_S = 0.2
+print(limit.within(0.1, "house/slow", lambda: CALL, status=STATUS))
+"""
+
+
+@pytest.mark.skipif(not hasattr(signal, "setitimer"), reason="this system has no timers of this kind")
+@pytest.mark.parametrize(
+    ("call", "status"),
+    [(call, 2 if call == "sleepy()" else 3) for call in UNSTOPPABLE.values()],
+    ids=UNSTOPPABLE,
+)
+def test_what_does_not_let_itself_be_interrupted_ends_the_program(call: str, status: int) -> None:
+    script = SCRIPT.replace("CALL", call).replace("STATUS", str(status))
+    done = subprocess.run([sys.executable, "-c", script], capture_output=True, text=True, check=False, timeout=60)
+    assert done.returncode == status
+    assert done.stderr == (
+        "house/slow took more than 0.1 s and does not let itself be interrupted; nothing more is judged\n"
+    )
+    assert done.stdout == ""
+
+
+def test_the_timer_of_the_processor_is_left_as_it_was() -> None:
+    before = signal.getsignal(signal.SIGPROF)
+    within(0.05, "quick", lambda: None)
+    assert signal.getsignal(signal.SIGPROF) is before
+    assert signal.getitimer(signal.ITIMER_PROF) == (0.0, 0.0)

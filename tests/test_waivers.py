@@ -270,7 +270,10 @@ def test_waivers_in_the_description_come_before_those_of_the_settings(tmp_path: 
     ("text", "fault"),
     [
         ("waivers: [{rule: a/b}]\n", "agreed/waivers.yaml:1:11: waivers[0]: no agreed_by; "),
-        ("rails: {}\nwaivers: []\n", "agreed/waivers.yaml: holds more than waivers; keep the section waivers only"),
+        (
+            "rails: {}\nwaivers: []\n",
+            "agreed/waivers.yaml:1:1: rails: a file of waivers holds nothing else; keep the section waivers only",
+        ),
     ],
 )
 def test_a_waiver_file_is_checked(tmp_path: Path, text: str, fault: str) -> None:

@@ -13,8 +13,8 @@ from tidegate.lint.derived.levels.level_placement import LevelPlacement, margins
 from tidegate.lint.derived.levels.level_spread import is_nominal
 from tidegate.lint.description.load import Loaded
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, dotted
+from tidegate.lint.description.reading import read_file
 from tidegate.lint.description.rewrite import replace_file, rewritten
-from tidegate.lint.description.sources import read_file
 from tidegate.lint.quantity import Voltage
 
 _PER_VOLT: Final = 1000  # levels are chosen in whole millivolts

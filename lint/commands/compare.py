@@ -6,16 +6,17 @@ import argparse
 import os
 from typing import Final
 
-from tidegate.lint.batch import Request, catalogue, settings_for
+from tidegate.lint.batch import Request, catalogue, pack_fault, settings_for
+from tidegate.lint.commands.judged_on import add_day
 from tidegate.lint.commands.revisions import Held, at_revision
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.comparison import compare
 from tidegate.lint.description.load import load
 from tidegate.lint.description.place import DescriptionError
 from tidegate.lint.engine import Review, review
-from tidegate.lint.packs import PackError
 from tidegate.lint.reports.comparison_report import Sides, json_lines, markdown_lines, terminal_lines
-from tidegate.lint.reports.plain_text import plain
+from tidegate.lint.rule import PackError
+from tidegate.lint.settings import Settings
 
 _FORMS: Final = {"terminal": terminal_lines, "markdown": markdown_lines, "json": json_lines}
 
@@ -29,10 +30,12 @@ def configure(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--pack", action="append", default=[], metavar="FILE", help="Python file with rules of your own"
     )
+    add_day(parser)
 
 
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Print what changed; the exit status is 1 if anything got worse."""
+    settings = Settings()
     try:
         with at_revision(options.old) as held_old, at_revision(options.new) as held_new:
             request = _request(options, streams, held_new)
@@ -44,28 +47,37 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
 
             old, new = judged(held_old, options.old), judged(held_new, options.new)
     except DescriptionError as error:
-        streams.err.write("".join(f"{plain(str(fault))}\n" for fault in error.faults))
+        for fault in error.faults:
+            streams.say(str(fault))
         return Exit.UNUSABLE
     except PackError as error:
-        streams.err.write(f"{plain(str(error))}\n")
+        streams.say(str(pack_fault(str(error), settings, options.new)))
         return Exit.UNUSABLE
     found = compare(old, new)
-    sides = Sides(options.old, options.new, new.settings)
+    sides = Sides(options.old, options.new, _as_named(new.settings, options))
     lines = _FORMS[options.form](found, sides, width=streams.width)
+    if options.form != "terminal":
+        streams.out.fix_encoding()
     streams.out.write("\n".join(lines) + "\n")
-    for fault in dict.fromkeys((*old.faults, *new.faults)):
-        streams.err.write(plain(f"rule {fault.rule} failed on {fault.subject}: {fault.error}") + "\n")
+    for failed in dict.fromkeys((*old.faults, *new.faults)):
+        streams.say(f"rule {failed.rule} failed on {failed.subject}: {failed.error}")
     if old.faults or new.faults:
         return Exit.RULE_FAULT
     return Exit.FINDINGS if found.got_worse else Exit.KEPT
 
 
+def _as_named(settings: Settings, options: argparse.Namespace) -> Settings:
+    """The settings under the names that the command line gives: no folder of this machine belongs in a report."""
+    file = options.settings or settings.file
+    return settings.with_changes(file=file, option_packs=tuple(options.pack))
+
+
 def _request(options: argparse.Namespace, streams: Streams, new: Held) -> Request:
     """How both are judged: under the settings that belong to NEW, at its own revision."""
-    settings, packs = options.settings, tuple(options.pack)
+    settings, packs, today = options.settings, tuple(options.pack), options.today or streams.today
     if not new.unpacked:
-        return Request(streams.today, streams.families, settings, packs)
+        return Request(today, streams.families, settings, packs)
     return Request(
-        streams.today, streams.families, settings and os.path.abspath(settings),  # noqa: PTH100 - as it was named
+        today, streams.families, settings and os.path.abspath(settings),  # noqa: PTH100 - as it was named
         tuple(map(os.path.abspath, packs)), folder=str(new.folder), top=str(new.folder),
     )  # fmt: skip

@@ -19,5 +19,6 @@ def configure(parser: argparse.ArgumentParser) -> None:
 
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Print the script, which was written from the options by the tests' own recorder."""
+    streams.out.fix_encoding()
     streams.out.write((SCRIPTS / f"tidegate.{options.shell}").read_text("utf-8"))
     return Exit.KEPT

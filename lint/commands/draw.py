@@ -8,10 +8,10 @@ from difflib import get_close_matches
 from pathlib import Path
 from typing import Final
 
-from tidegate.lint.batch import Request, judge_file
+from tidegate.lint.batch import Request, files_read, judge_file
+from tidegate.lint.commands.judged_on import add_day
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.engine import Review
-from tidegate.lint.reports.plain_text import plain
 
 _PICTURES: Final = ("ladder", "timeline", "graph")
 _FORMS: Final = ("svg", "dot", "graphml")
@@ -30,37 +30,37 @@ def configure(parser: argparse.ArgumentParser) -> None:
     add("--save", metavar="PATH", help="write to a file instead of the output")
     add("--settings", metavar="FILE", help="settings, in place of the nearest tidegate.settings.yaml")
     add("--pack", action="append", default=[], metavar="FILE", help="Python file with rules of your own")
+    add_day(parser)
 
 
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Write the picture; the exit status says whether it could be drawn, not what was judged."""
     if options.form != "svg" and options.picture != "graph":
-        streams.err.write(
-            f"--as {options.form}: only the graph can be written so; a {options.picture} is drawn as svg\n"
-        )
+        streams.say(f"--as {options.form}: only the graph can be written so; a {options.picture} is drawn as svg")
         return Exit.UNUSABLE
-    request = Request(streams.today, streams.families, options.settings, tuple(options.pack))
+    request = Request(options.today or streams.today, streams.families, options.settings, tuple(options.pack))
     judged = judge_file(options.file, request)
     for fault in judged.faults:
-        streams.err.write(plain(str(fault)) + "\n")
+        streams.say(str(fault))
     if judged.review is None:
         return Exit.UNUSABLE
     text = _text(judged.review, options, streams)
     if text is None:
         return Exit.UNUSABLE
     if options.save is None:
+        streams.out.fix_encoding()
         streams.out.write(text)
         return Exit.KEPT
-    return _save(Path(options.save), text, streams)
+    return _save(Path(options.save), text, files_read(judged), streams)
 
 
-def _save(path: Path, text: str, streams: Streams) -> int:
+def _save(path: Path, text: str, read: Iterable[str], streams: Streams) -> int:
     from tidegate.lint.reports.saving import save
 
     try:
-        save(path, text)
+        save(path, [text], read=read)
     except OSError as error:
-        streams.err.write(f"{plain(str(path))}: cannot be written ({error.strerror or error})\n")
+        streams.say(f"{path}: cannot be written ({error.strerror or error})")
         return Exit.UNUSABLE
     return Exit.KEPT
 
@@ -72,7 +72,7 @@ def _text(review: Review, options: argparse.Namespace, streams: Streams) -> str 
     if options.picture == "timeline":
         return _timelines(review, options.of, streams)
     if options.of is not None:
-        streams.err.write("--of: a graph is drawn whole; it names a rail of a ladder or a scenario of a timeline\n")
+        streams.say("--of: a graph is drawn whole; it names a rail of a ladder or a scenario of a timeline")
         return None
     return _graph(review, options.form, streams)
 
@@ -121,7 +121,7 @@ def _graph(review: Review, form: str, streams: Streams) -> str | None:
     picture = picture_graph(review.loaded.description, review.graph, review.judgements)
     drawing = draw_graph(picture, elements=elements_shown(review.graph))
     if drawing is None:
-        streams.err.write("the description has no element that a graph could show\n")
+        streams.say("the description has no element that a graph could show")
         return None
     return graph_svg(_title(review), drawing)
 
@@ -134,7 +134,7 @@ def _named(of: str | None, known: Iterable[str], noun: str, streams: Streams) ->
     if of in names:
         return True
     near = get_close_matches(of or "", names, 1)
-    hint = f"did you mean {near[0]}?" if near else f"there is {', '.join(names[:12]) or 'none'}"
+    hint = f"did you mean {near[0]}?" if near else f"known: {', '.join(names[:12]) or 'none'}"
     what = f"no {noun} is called {of!r}" if of is not None else f"no {noun} to draw"
-    streams.err.write(plain(f"{what}; {hint}") + "\n")
+    streams.say(f"{what}; {hint}")
     return False

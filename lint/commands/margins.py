@@ -8,6 +8,7 @@ from difflib import get_close_matches
 from typing import TYPE_CHECKING
 
 from tidegate.lint.batch import Request, judge_file
+from tidegate.lint.commands.judged_on import add_day
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.judgement import Kind
 from tidegate.lint.reports.plain_text import plain
@@ -26,24 +27,26 @@ def configure(parser: argparse.ArgumentParser) -> None:
     add("--as", dest="form", choices=("terminal", "json"), default="terminal", help="form of the ledger")
     add("--settings", metavar="FILE", help="settings, in place of the nearest tidegate.settings.yaml")
     add("--pack", action="append", default=[], metavar="FILE", help="Python file with rules of your own")
+    add_day(parser)
 
 
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Print the ledger; the exit status is 1 where a number shown misses its limit and weighs enough."""
     from tidegate.lint.reports.ledger import entries
 
-    request = Request(streams.today, streams.families, options.settings, tuple(options.pack))
+    request = Request(options.today or streams.today, streams.families, options.settings, tuple(options.pack))
     judged = judge_file(options.file, request)
     for fault in judged.faults:
-        streams.err.write(plain(str(fault)) + "\n")
+        streams.say(str(fault))
     review = judged.review
     if review is None or _wrong_name(review, options, streams):
         return Exit.UNUSABLE
     found = entries(review.judgements, element=options.element, family=options.family)
+    if options.form == "json":
+        streams.out.fix_encoding()
     streams.out.write(_json(review, found) if options.form == "json" else _text(review, found, streams))
     for failed in review.faults:
-        what = f"{options.file}: {failed.rule} on {failed.subject} failed itself: {failed.error}"
-        streams.err.write(plain(what) + "\n")
+        streams.say(f"{options.file}: {failed.rule} on {failed.subject} failed itself: {failed.error}")
     if review.faults:
         return Exit.RULE_FAULT
     findings = {id(judgement) for judgement in review.findings(review.settings.fail_at, review.settings.also)}
@@ -58,8 +61,8 @@ def _wrong_name(review: Review, options: argparse.Namespace, streams: Streams) -
     ):  # fmt: skip
         if name is not None and name not in known:
             near = get_close_matches(name, known, 1)
-            hint = f"did you mean {near[0]}?" if near else f"there is {', '.join(list(known)[:12])}"
-            streams.err.write(plain(f"{options.file}: no {noun} is called {name!r}; {hint}") + "\n")
+            hint = f"did you mean {near[0]}?" if near else f"known: {', '.join(list(known)[:12])}"
+            streams.say(f"{options.file}: no {noun} is called {name!r}; {hint}")
             return True
     return False
 

@@ -26,6 +26,7 @@ if TYPE_CHECKING:
 _SAMPLES: Final = 1_000_000
 _MOST_SAMPLES: Final = 10_000_000
 _SEED: Final = 1
+_MOST_DIGITS: Final = 9
 _COVERAGE_95: Final = 1.959963984540054
 """Standard deviations to either side that hold 95 % of a normal distribution."""
 
@@ -39,21 +40,27 @@ def configure(parser: argparse.ArgumentParser) -> None:
     add("--apply", action="store_true", help="write the middle of the interval into the file, and nothing else")
     add("--yield", dest="estimate", action="store_true", help="draw parts, and count those that miss a limit")
     add("--samples", type=_samples, metavar="N", help=f"parts to draw (usual: {_SAMPLES}, most: {_MOST_SAMPLES})")
-    add("--seed", type=int, metavar="N", help=f"seed of the draws (usual: {_SEED})")
+    add("--seed", type=_seed, metavar="N", help=f"seed of the draws (usual: {_SEED})")
     add("--settings", metavar="FILE", help="settings, in place of the nearest tidegate.settings.yaml")
 
 
 def _samples(text: str) -> int:
-    number = int(text.replace("_", ""))
-    if not 1 <= number <= _MOST_SAMPLES:
-        raise argparse.ArgumentTypeError(f"from 1 to {_MOST_SAMPLES} parts can be drawn (found {number})")
-    return number
+    digits = text.replace("_", "")
+    if not digits.isdecimal() or len(digits) > _MOST_DIGITS or not 1 <= int(digits) <= _MOST_SAMPLES:
+        raise argparse.ArgumentTypeError(f"from 1 to {_MOST_SAMPLES} parts can be drawn (found {text!r})")
+    return int(digits)
+
+
+def _seed(text: str) -> int:
+    if not text.isdecimal() or len(text) > _MOST_DIGITS:
+        raise argparse.ArgumentTypeError(f"a whole number of at most {_MOST_DIGITS} digits is due (found {text!r})")
+    return int(text)
 
 
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Answer for the detectors asked for; the exit status is 1 where one of them stands outside its interval."""
     if (options.samples is not None or options.seed is not None) and not options.estimate:
-        streams.err.write("--samples and --seed belong to --yield\n")
+        streams.say("--samples and --seed belong to --yield")
         return Exit.UNUSABLE
     review = _review(options, streams)
     detectors = None if review is None else _asked_for(review, options, streams)
@@ -68,6 +75,8 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
             return Exit.UNUSABLE
         placed = _placed(review, [review.loaded.description.comparators[each.id] for each in detectors])
     estimates = _estimates(review, placed, options, streams) if options.estimate else None
+    if options.form == "json":
+        streams.out.fix_encoding()
     streams.out.write(
         _answer(review, placed, estimates, _components(review, placed, options), written=written, options=options)
     )
@@ -88,7 +97,7 @@ def _review(options: argparse.Namespace, streams: Streams) -> Review | None:
 
 def _say(faults: Sequence[Fault], streams: Streams) -> None:
     for fault in faults:
-        streams.err.write(plain(str(fault)) + "\n")
+        streams.say(str(fault))
 
 
 def _asked_for(review: Review, options: argparse.Namespace, streams: Streams) -> list[Comparator] | None:
@@ -97,14 +106,14 @@ def _asked_for(review: Review, options: argparse.Namespace, streams: Streams) ->
     can = {name: comparator for name, comparator in comparators.items() if comparator.role in PLACED_ROLES}
     if options.detector is None:
         if not can:
-            streams.err.write(plain(f"{options.file}: describes no detector whose levels could be placed") + "\n")
+            streams.say(f"{options.file}: describes no detector whose levels could be placed")
         return list(can.values()) or None
     if options.detector in can:
         return [can[options.detector]]
     near = get_close_matches(options.detector, can, 1)
-    hint = f"did you mean {near[0]}?" if near else f"there is {', '.join(list(can)[:12]) or 'none'}"
+    hint = f"did you mean {near[0]}?" if near else f"known: {', '.join(list(can)[:12]) or 'none'}"
     what = f"no power-on, under- or over-voltage detector is called {options.detector!r}"
-    streams.err.write(plain(f"{options.file}: {what}; {hint}") + "\n")
+    streams.say(f"{options.file}: {what}; {hint}")
     return None
 
 

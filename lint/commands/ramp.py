@@ -11,7 +11,7 @@ from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.description.load import load
 from tidegate.lint.description.model.reset_path import Bypass
 from tidegate.lint.description.place import DescriptionError
-from tidegate.lint.graph.dependency import build
+from tidegate.lint.graph.bounded import bounded_graph
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.timing.timeline import Timeline, Timelines, timelines
 
@@ -36,30 +36,32 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     """Draw the timelines of a description, or write them as JSON."""
     try:
         loaded = load(options.file)
+        graph = bounded_graph(loaded)
     except DescriptionError as error:
         streams.tell(error.faults)
         return Exit.UNUSABLE
-    lines = timelines(loaded.description, build(loaded.description))
+    lines = timelines(loaded.description, graph)
     groups = _groups(lines)
     try:
         shown, others = _chosen(groups, options.scenario)
     except DomainError as error:
-        streams.err.write(f"{options.file}: the waveform given lies outside the range of the formula: {error}\n")
+        streams.say(f"{options.file}: the waveform given lies outside the range of the formula: {error}")
         return Exit.UNUSABLE
     if not shown and options.scenario is not None:
         near = get_close_matches(options.scenario, others, 1)
-        hint = f"did you mean {near[0]!r}?" if near else f"there are {', '.join(others)}"
-        streams.err.write(f"{options.file}: no scenario is called {options.scenario!r}; {hint}\n")
+        hint = f"did you mean {near[0]!r}?" if near else f"known: {', '.join(others) or 'none'}"
+        streams.say(f"{options.file}: no scenario is called {options.scenario!r}; {hint}")
         return Exit.UNUSABLE
     if options.override is not None:
         bypass = loaded.description.bypasses.get(options.override)
         if bypass is None or bypass.overrides is None:
-            streams.err.write(f"{options.file}: {_no_override(options.override, loaded.description.bypasses)}\n")
+            streams.say(f"{options.file}: {_no_override(options.override, loaded.description.bypasses)}")
             return Exit.UNUSABLE
         shown = [lines.with_override(line, bypass) for line in shown]
     if options.form == "json":
         from tidegate.lint.reports.timeline_json import timelines_text
 
+        streams.out.fix_encoding()
         streams.out.write(timelines_text(lines, shown, file=options.file))
         return Exit.KEPT
     _draw(lines, shown, others, streams)
@@ -71,7 +73,7 @@ def _no_override(name: str, bypasses: Mapping[str, Bypass]) -> str:
     if name in bypasses:
         return f"bypasses.{name}.overrides is not given"
     near = get_close_matches(name, bypasses, 1)
-    hint = f"did you mean {near[0]}?" if near else f"there are {', '.join(bypasses) or 'none'}"
+    hint = f"did you mean {near[0]}?" if near else f"known: {', '.join(bypasses) or 'none'}"
     return f"no override is called {name!r}; {hint}"
 
 

@@ -4,39 +4,40 @@ from __future__ import annotations
 
 import argparse
 import os
-import signal
 from collections import Counter
 from collections.abc import Iterable, Iterator, Sequence
-from concurrent.futures import BrokenExecutor, Executor
 from contextlib import AbstractContextManager, ExitStack, closing, contextmanager, nullcontext
 from functools import partial
 from pathlib import Path
-from typing import Any, Final
+from typing import TYPE_CHECKING, Any, Final
 
 import msgspec
 
-from tidegate.lint.batch import Judged, Request, catalogue, judge_file
+from tidegate.lint.batch import Judged, Request, catalogue, files_read, judge_file
 from tidegate.lint.batch import run as run_batch
+from tidegate.lint.commands.interruption import processes, signals_held
+from tidegate.lint.commands.judged_on import add_day
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.description.place import Fault
 from tidegate.lint.found_files import found_files
 from tidegate.lint.judgement import Level
-from tidegate.lint.packs import PackError
 from tidegate.lint.reports.forms import ENDINGS, Form, Look, Part, Ran, View, Whole, form_of, part
-from tidegate.lint.reports.plain_text import plain
-from tidegate.lint.rule import Rule
+from tidegate.lint.rule import PackError, Rule
 from tidegate.lint.settings import Settings
+
+if TYPE_CHECKING:
+    from concurrent.futures import Executor
 
 _MANY: Final = 16  # files from which more than one process pays
 _AT_A_TERMINAL: Final = 4  # files from which a progress bar is shown
 _MOST_CONNECTING_S: Final = 10
+_MOST_DIGITS: Final = 9
 
 
 def _count(text: str) -> int:
-    number = int(text)
-    if number < 1:
-        raise argparse.ArgumentTypeError("at least 1")
-    return number
+    if not text.isdecimal() or len(text) > _MOST_DIGITS or int(text) < 1:
+        raise argparse.ArgumentTypeError(f"a whole number is due, at least 1 (found {text!r})")
+    return int(text)
 
 
 def configure(parser: argparse.ArgumentParser) -> None:
@@ -63,6 +64,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
     )  # fmt: skip
     add("--settings", metavar="FILE", help="settings for all files, in place of the nearest tidegate.settings.yaml")
     add("--pack", action="append", default=[], metavar="FILE", help="Python file with rules of your own")
+    add_day(parser)
     add("--workers", type=_count, metavar="N", help="processes to work in (default: one, or one a core for many files)")
     add("--on", metavar="ADDRESS", help="a running Dask scheduler to work on, such as tcp://host:8786 (needs dask)")
 
@@ -74,6 +76,8 @@ class _Done(msgspec.Struct, frozen=True):
     settings: Settings | None
     """The settings in force; None where no description was meant."""
     parts: tuple[Part, ...]
+    read: tuple[str, ...]
+    """The files it was made from."""
 
 
 def _work(item: str | Fault, request: Request, views: tuple[View, ...]) -> _Done:
@@ -81,7 +85,7 @@ def _work(item: str | Fault, request: Request, views: tuple[View, ...]) -> _Done
     fault = item if isinstance(item, Fault) else None
     judged = judge_file(item, request) if isinstance(item, str) else Judged(item.place.file, Settings(), None, (item,))
     settings = judged.settings if fault is None else None
-    return _Done(_status(judged), settings, tuple(part(view, judged) for view in views))
+    return _Done(_status(judged), settings, tuple(part(view, judged) for view in views), files_read(judged))
 
 
 def _status(judged: Judged) -> int:
@@ -103,20 +107,25 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     form = Form(options.form)
     shown = _view(form, Look(streams.width, streams.colour, options.every), options)
     saved: dict[str, View] = {}
+    met: dict[str, str] = {}
     for path in options.save:
+        first = met.setdefault(os.path.realpath(path), path)
+        if first in saved:
+            streams.say(f"--save {path}: named twice{f' (as {first})' if first != path else ''}; name each file once")
+            return Exit.UNUSABLE
         told = form_of(path)
         if told is None:
-            streams.err.write(f"--save {plain(path)}: the form is told by the ending: {', '.join(ENDINGS)}\n")
+            streams.say(f"--save {path}: the form is told by the ending: {', '.join(ENDINGS)}")
             return Exit.UNUSABLE
         saved[path] = _view(told, Look(every=options.every), options)
     request = Request(
-        streams.today, streams.families, options.settings, tuple(options.pack), options.fail_at,
+        options.today or streams.today, streams.families, options.settings, tuple(options.pack), options.fail_at,
         None if options.also is None else tuple(options.also),
     )  # fmt: skip
     try:
         return _judge_all(list(found_files(options.files)), _Order(request, shown, saved), options, streams)
     except _StoppedError as error:
-        streams.err.write(f"{plain(str(error))}\n")
+        streams.say(str(error))
         return Exit.UNUSABLE
 
 
@@ -139,68 +148,46 @@ def _judge_all(items: Sequence[str | Fault], order: _Order, options: argparse.Na
     request, shown, saved = order.request, order.shown, order.saved
     views = tuple(dict.fromkeys((shown, *saved.values())))
     to_print = shown.form is Form.TERMINAL
-    output = _Output(streams, saves=bool(saved))
     statuses: Counter[int] = Counter()
     used: dict[str, Settings] = {}
+    read: set[str] = set()
     with ExitStack() as stack:
         wholes = {view: Whole(view.form) for view in views}
         for whole in wholes.values():
             stack.enter_context(closing(whole))
         executor = stack.enter_context(_executor(options, len(items)))
-        results = run_batch(partial(_work, request=request, views=views), items, executor)
+        with signals_held():  # processes are started when the first work is handed out
+            results = run_batch(partial(_work, request=request, views=views), items, executor)
         for result in _with_progress(_unless_stopped(results, executor), len(items), streams, to_print=to_print):
             if to_print:
-                output.text(result, first=not statuses)
+                _show(result, streams, first=not statuses)
             for view, new in zip(views, result.parts, strict=True):
                 if not to_print or view in saved.values():
                     wholes[view].add(new)
             statuses[result.status] += 1
+            read.update(result.read)
             if result.settings is not None:
                 used.setdefault(result.settings.shown, result.settings)
         summary = _summary(statuses) if len(items) > 1 else ""
         if to_print:
-            output.write([summary])
+            streams.out.write(summary)
         for view in set(saved.values()):
             if view.form is Form.TERMINAL and summary:
                 wholes[view].add(Part(summary.removeprefix("\n")))
         ran = Ran(max(statuses, default=Exit.KEPT), list(used.values()), _rules(request, used.values()))
         if not to_print:
-            output.write(wholes[shown].pieces(ran))
-        status = max(ran.status, _save_all(saved, wholes, ran, streams))
-    output.end()
-    return status
+            streams.out.fix_encoding()
+            streams.out.writelines(wholes[shown].pieces(ran))
+        return max(ran.status, _save_all(saved, wholes, ran, read, streams))
 
 
-class _Output:
-    """What is shown; a reader who has left, as `| head` does, keeps no report from being saved."""
-
-    def __init__(self, streams: Streams, *, saves: bool) -> None:
-        self._streams = streams
-        self._saves = saves
-        self._left: BrokenPipeError | None = None
-
-    def text(self, result: _Done, *, first: bool) -> None:
-        """The text of one description; what is wrong with a file goes to the error stream."""
-        text = result.parts[0].text
-        if result.status == Exit.UNUSABLE:
-            self._streams.err.write(text)
-        else:
-            self.write([text if first else f"\n{text}"])
-
-    def write(self, pieces: Iterable[str]) -> None:
-        """Show a text that comes in pieces."""
-        if self._left is None:
-            try:
-                self._streams.out.writelines(pieces)
-            except BrokenPipeError as error:
-                if not self._saves:
-                    raise
-                self._left = error
-
-    def end(self) -> None:
-        """Say now that the reader has left."""
-        if self._left is not None:
-            raise self._left
+def _show(result: _Done, streams: Streams, *, first: bool) -> None:
+    """Show the text of one description; what is wrong with a file goes to the error stream."""
+    text = result.parts[0].text
+    if result.status == Exit.UNUSABLE:
+        streams.err.write(text)
+    else:
+        streams.out.write(text if first else f"\n{text}")
 
 
 def _summary(statuses: Counter[int]) -> str:
@@ -225,15 +212,17 @@ def _rules(request: Request, used: Iterable[Settings]) -> list[Rule]:
     return list(rules.values())
 
 
-def _save_all(saved: dict[str, View], wholes: dict[View, Whole], ran: Ran, streams: Streams) -> int:
+def _save_all(
+    saved: dict[str, View], wholes: dict[View, Whole], ran: Ran, read: Iterable[str], streams: Streams
+) -> int:
     from tidegate.lint.reports.saving import save
 
     status = Exit.KEPT
     for path, view in saved.items():
         try:
-            save(Path(path), wholes[view].pieces(ran))
+            save(Path(path), wholes[view].pieces(ran), read=read)
         except OSError as error:
-            streams.err.write(f"{plain(path)}: cannot be written ({error.strerror or error})\n")
+            streams.say(f"{path}: cannot be written ({error.strerror or error})")
             status = Exit.UNUSABLE
     return status
 
@@ -245,14 +234,7 @@ def _executor(options: argparse.Namespace, files: int) -> AbstractContextManager
     workers = options.workers or (min(os.cpu_count() or 1, files) if files >= _MANY else 1)
     if workers <= 1 or files <= 1:
         return nullcontext(None)
-    from concurrent.futures import ProcessPoolExecutor
-
-    return ProcessPoolExecutor(min(workers, files), initializer=_leave_interrupts_alone)
-
-
-def _leave_interrupts_alone() -> None:
-    """Ctrl-C reaches every process of a terminal; the first one ends the others."""
-    signal.signal(signal.SIGINT, signal.SIG_IGN)
+    return processes(min(workers, files))
 
 
 @contextmanager
@@ -275,9 +257,11 @@ def _unless_stopped(results: Iterator[_Done], executor: Executor | None) -> Iter
     """The results, unless the processes that should bring them die."""
     try:
         yield from results
-    except BrokenExecutor:
-        raise _StoppedError("a process that judges descriptions died; --workers 1 does without them") from None
     except Exception as error:
+        from concurrent.futures import BrokenExecutor
+
+        if isinstance(error, BrokenExecutor):
+            raise _StoppedError("a process that judges descriptions died; --workers 1 does without them") from None
         if executor is None or not type(error).__module__.startswith("distributed"):
             raise
         raise _StoppedError(f"the cluster gave up ({type(error).__name__}: {error})") from None

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+import os
 import posixpath
 import re
 import subprocess
@@ -41,7 +42,7 @@ def at_revision(name: str) -> Iterator[Held]:
     Raises: DescriptionError: if there is no such revision or file.
     """
     revision, colon, inside = name.partition(":")
-    if not colon or not revision or not inside or Path(name).exists():
+    if not colon or not revision or not inside or os.path.lexists(name):
         yield Held(Path.cwd(), name)
         return
     with tempfile.TemporaryDirectory(prefix="tidegate-") as made:

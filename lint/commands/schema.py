@@ -22,5 +22,6 @@ def configure(parser: argparse.ArgumentParser) -> None:
 
 def run(options: argparse.Namespace, streams: Streams) -> int:
     """Print a schema."""
+    streams.out.fix_encoding()
     streams.out.write(schema_text(options.which))
     return Exit.KEPT

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import re
 import textwrap
 from collections.abc import Iterator, Mapping, Sequence
 from difflib import get_close_matches
@@ -12,6 +13,8 @@ import msgspec
 
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.description.load import description_schema
+from tidegate.lint.found import quoted
+from tidegate.lint.limits import MOST_NAME
 from tidegate.lint.quantity import Dimension, QuantityError, parse
 
 _ROLES: Final = {
@@ -23,6 +26,9 @@ _ROLES: Final = {
 _USUAL_RAILS: Final = ("avdd=1.8V",)
 _USUAL_WATCHES: Final = ("avdd=power-on,under",)
 
+_NAME: Final = re.compile(r"[A-Za-z_][A-Za-z0-9_-]{0,63}")
+_OTHERS: Final = ("aon", "ref_fast", "bias_start")
+"""Elements of a starter beside its rails and detectors."""
 _LETTERS: Final = "kmunV"
 _DIGITS: Final = "+-0123456789.eE"
 
@@ -63,7 +69,7 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     try:
         plan = planned(options.rail, options.watch)
     except PlanError as error:
-        streams.err.write(f"tidegate start: {error}\n")
+        streams.say(f"tidegate start: {error}")
         return Exit.UNUSABLE
     streams.out.write(starter(plan))
     return Exit.KEPT
@@ -77,7 +83,7 @@ def planned(rails: Sequence[str], watches: Sequence[str]) -> Plan:
     chosen: dict[str, str] = {}
     for text in rails or _USUAL_RAILS:
         name, equals, voltage = text.partition("=")
-        if not equals or not name.isidentifier():
+        if not equals or not _NAME.fullmatch(name) or name == "none" or name.startswith("x-"):
             raise PlanError(f"--rail {text}: name and nominal voltage are due, such as avdd=1.8V")
         if name in chosen:
             raise PlanError(f"--rail {text}: the rail {name} is given twice")
@@ -94,6 +100,14 @@ def planned(rails: Sequence[str], watches: Sequence[str]) -> Plan:
         wanted += [(rail, _role(text, role)) for role in roles.split(",")]
     if len(set(wanted)) < len(wanted):
         raise PlanError("--watch: a role is asked for twice on one rail")
+    detectors = [f"{_ROLES[role][1]}_{rail}" for rail, role in wanted]
+    others = {*_OTHERS, *detectors, *(f"{detector}_out" for detector in detectors)}
+    for name in chosen:
+        if name in others:
+            raise PlanError(f"--rail {name}: the starter has another element of this name; give the rail another one")
+    for name in others:
+        if len(name) > MOST_NAME:
+            raise PlanError(f"{quoted(name)} would be longer than {MOST_NAME} characters; give the rail a shorter name")
     return Plan(chosen, tuple(wanted))
 
 

@@ -4,12 +4,14 @@ from __future__ import annotations
 
 import datetime
 import os
-import shutil
 from collections.abc import Callable, Sequence
 from enum import IntEnum
-from typing import TYPE_CHECKING, TextIO
+from typing import TYPE_CHECKING
 
 import msgspec
+
+from tidegate.lint.commands.guarded_stream import GuardedStream
+from tidegate.lint.reports.plain_text import plain
 
 if TYPE_CHECKING:
     from rich.console import Console
@@ -30,8 +32,8 @@ class Exit(IntEnum):
 class Streams(msgspec.Struct, frozen=True):
     """Output, errors, the date and the rules; made by the command line, handed to every command."""
 
-    out: TextIO
-    err: TextIO
+    out: GuardedStream
+    err: GuardedStream
     today: datetime.date
     families: Callable[[], Sequence[Sequence[Rule]]]
     """The rules that come with the tool; a function, so that a command that needs none does not load them."""
@@ -44,8 +46,16 @@ class Streams(msgspec.Struct, frozen=True):
 
     @property
     def width(self) -> int:
-        """Columns of the output; 80 where it has none of its own."""
-        return shutil.get_terminal_size((80, 24)).columns
+        """Columns of the terminal; 80 elsewhere, so that a report is the same wherever it is made."""
+        if not self.out.isatty():
+            return 80
+        from shutil import get_terminal_size
+
+        return get_terminal_size((80, 24)).columns
+
+    def say(self, sentence: str) -> None:
+        """Say something on the error stream, on a line of its own, with nothing in it that a terminal would obey."""
+        self.err.write(f"{plain(sentence)}\n")
 
     def tell(self, faults: Sequence[Fault]) -> None:
         """Say on the error stream why a file cannot be used."""
@@ -58,4 +68,4 @@ class Streams(msgspec.Struct, frozen=True):
         """A console on the error stream, for progress: it takes text as it is, no markup, no emoji."""
         from rich.console import Console
 
-        return Console(file=self.err, markup=False, emoji=False, highlight=False, soft_wrap=True)
+        return Console(file=self.err.stream, markup=False, emoji=False, highlight=False, soft_wrap=True)

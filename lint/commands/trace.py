@@ -10,7 +10,8 @@ from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.description.load import load
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.place import DescriptionError
-from tidegate.lint.graph.dependency import Graph, build
+from tidegate.lint.graph.bounded import bounded_graph
+from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.dominators import on_every_way
 from tidegate.lint.graph.edge import Edge, EdgeKind
 from tidegate.lint.graph.paths import Reach, driven_by, drives
@@ -34,14 +35,14 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     """Print what the element leans on and what leans on it, each once, nearest first."""
     try:
         loaded = load(options.file)
+        graph = bounded_graph(loaded)
     except DescriptionError as error:
         streams.tell(error.faults)
         return Exit.UNUSABLE
-    graph = build(loaded.description)
     if options.element not in graph.elements:
         near = get_close_matches(options.element, graph.elements, 1)
-        hint = f"did you mean {near[0]}?" if near else f"it describes {', '.join(list(graph.elements)[:12])}"
-        streams.err.write(f"{options.file}: no element is called {options.element!r}; {hint}\n")
+        hint = f"did you mean {near[0]}?" if near else f"known: {', '.join(list(graph.elements)[:12])}"
+        streams.say(f"{options.file}: no element is called {options.element!r}; {hint}")
         return Exit.UNUSABLE
     streams.out.write("\n".join(_lines(loaded.description, graph, options.element)) + "\n")
     return Exit.KEPT

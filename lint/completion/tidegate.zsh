@@ -38,6 +38,7 @@ _shtab_tidegate_compare_options=(
   "--as[form (default\: terminal)]:form:(terminal markdown json)"
   "--settings[settings for both, in place of the nearest of NEW]:FILE:"
   "*--pack[Python file with rules of your own]:FILE:"
+  "--today[judge waivers as on this day, such as 2031-12-31 (usual\: today)]:DAY:"
   ":description, or REVISION\:PATH of one in a git repository:"
   ":description, or REVISION\:PATH:"
 )
@@ -60,6 +61,7 @@ _shtab_tidegate_draw_options=(
   "--save[write to a file instead of the output]:PATH:"
   "--settings[settings, in place of the nearest tidegate.settings.yaml]:FILE:"
   "*--pack[Python file with rules of your own]:FILE:"
+  "--today[judge waivers as on this day, such as 2031-12-31 (usual\: today)]:DAY:"
   ":description (YAML or JSON):"
   ":ladder, timeline or graph:(ladder timeline graph)"
 )
@@ -74,6 +76,7 @@ _shtab_tidegate_margins_options=(
   "--as[form of the ledger]:form:(terminal json)"
   "--settings[settings, in place of the nearest tidegate.settings.yaml]:FILE:"
   "*--pack[Python file with rules of your own]:FILE:"
+  "--today[judge waivers as on this day, such as 2031-12-31 (usual\: today)]:DAY:"
   ":description (YAML or JSON):"
 )
 
@@ -116,6 +119,7 @@ _shtab_tidegate_review_options=(
   "*--also[let judgements of this kind, open or review, make the exit status 1 too\; may be given twice]:KIND:(open review)"
   "--settings[settings for all files, in place of the nearest tidegate.settings.yaml]:FILE:"
   "*--pack[Python file with rules of your own]:FILE:"
+  "--today[judge waivers as on this day, such as 2031-12-31 (usual\: today)]:DAY:"
   "--workers[processes to work in (default\: one, or one a core for many files)]:N:"
   "--on[a running Dask scheduler to work on, such as tcp\:\/\/host\:8786 (needs dask)]:ADDRESS:"
   "(*):description (YAML or JSON), folder of them, or pattern with \*:"

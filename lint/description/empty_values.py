@@ -27,7 +27,10 @@ def fill_empty(sources: Sources, schema: Schema) -> list[Fault]:
                     _drop_empty_span(sources.data, path[:-1])
             elif isinstance(above.get("additionalProperties"), dict):
                 entries = _value_at(sources.data, path[:-1])
-                if isinstance(entries, dict):
+                if "properties" not in (object_at(schema, path) or {}):
+                    place = file.place(path, key=True) or Place(file.name)
+                    faults.append(Fault(place, dotted(path), "no value", "give it one, or remove the key"))
+                elif isinstance(entries, dict):
                     entries.setdefault(key, {})
             else:
                 place = file.place(path, key=True) or Place(file.name)

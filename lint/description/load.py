@@ -7,20 +7,25 @@ import json
 from collections.abc import Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from functools import lru_cache
+from itertools import islice
 from pathlib import Path
 from typing import Any, Final
 
-import jsonschema_rs
 import msgspec
 
 import tidegate.schema
+from tidegate.lint.description.contradictions import contradictions
 from tidegate.lint.description.empty_values import fill_empty
 from tidegate.lint.description.model.description import Description
-from tidegate.lint.description.names import NAMED_SECTIONS, NameField, name_faults, name_fields
+from tidegate.lint.description.names import NAMED_SECTIONS, NameField, name_faults, name_fields, names_twice
 from tidegate.lint.description.place import DescriptionError, Fault, Place, dotted, steps
-from tidegate.lint.description.sources import Sources, read_file, read_sources
+from tidegate.lint.description.reading import read_file
+from tidegate.lint.description.scenario_points import point_faults
+from tidegate.lint.description.schema_tree import without_own_keys
+from tidegate.lint.description.sources import Sources, read_sources
 from tidegate.lint.description.yaml_nodes import PARSER, Parser
 from tidegate.lint.description.yaml_text import read_yaml
+from tidegate.lint.limits import MOST_FAULTS
 from tidegate.lint.quantity import Span
 
 KITS: Final = Path(__file__).parents[1] / "process_kits"
@@ -46,10 +51,14 @@ def load(path: str | Path, *, shown: str | None = None, parser: type[Parser] = P
     """
     with _collector_off():
         sources = _with_kit(read_sources(Path(path), shown or str(Path(path)), read_file, parser), parser)
-        faults = [*sources.faults, *_faults_of_data(sources)]
+        faults = list(sources.faults)
+        description = _built(sources, faults)
+        if faults or description is None:
+            raise DescriptionError(faults)
+        faults = [*point_faults(description, sources), *contradictions(description, sources)]
         if faults:
             raise DescriptionError(faults)
-        return Loaded(_typed(sources), sources)
+        return Loaded(description, sources)
 
 
 @contextmanager
@@ -78,6 +87,9 @@ def schema_text(name: str) -> str:
 
 @lru_cache(maxsize=1)
 def _validator() -> Any:
+    # Loaded here alone: a description that can be built is what the schema says, and needs no other check.
+    import jsonschema_rs
+
     return jsonschema_rs.validator_for(dict(description_schema()))
 
 
@@ -86,21 +98,23 @@ def _name_fields() -> tuple[NameField, ...]:
     return name_fields(description_schema())
 
 
-def _faults_of_data(sources: Sources) -> list[Fault]:
-    """What is wrong with the joined data, less what only follows from the faults of the files."""
-    data = sources.data
-    faults = fill_empty(sources, description_schema())
-    if not _validator().is_valid(data):
-        faults += _explained(sources)
+def _built(sources: Sources, faults: list[Fault]) -> Description | None:
+    """The joined data as a description; adds what is wrong, less what only follows from the faults of the files."""
+    schema, data = description_schema(), sources.data
+    found = fill_empty(sources, schema)
+    description = description_of(data, own_keys=any(file.has_own_keys for file in sources.files))
+    if description is None:
+        found += _explained(sources)
     if _sections_are_whole(data):
-        explained = {fault.place for fault in faults}
+        explained = {fault.place for fault in found}
         wrong_names = name_faults(data, _name_fields(), sources)
-        faults += [fault for fault in wrong_names if fault.place not in explained]
-        if not faults and not sources.faults and not any(data.get(section) for section in NAMED_SECTIONS):
+        found += [fault for fault in wrong_names if fault.place not in explained]
+        if not found and not sources.faults and not any(data.get(section) for section in NAMED_SECTIONS):
             place = Place(sources.files[0].name)
-            faults.append(Fault(place, "", "the file describes no element", "tidegate start writes a starter"))
+            found.append(Fault(place, "", "the file describes no element", "tidegate start writes a starter"))
     spoiled = {path for file in sources.files for path in file.spoiled}
-    return [fault for fault in faults if not fault.lies_in(spoiled)]
+    faults += [fault for fault in found if not fault.lies_in(spoiled)]
+    return description
 
 
 def _sections_are_whole(data: Mapping[str, Any]) -> bool:
@@ -116,7 +130,8 @@ def _explained(sources: Sources) -> Sequence[Fault]:
     # Loaded here alone: a description without faults does not pay for the library that explains them.
     from tidegate.lint.description.schema_faults import schema_faults
 
-    paths = [tuple(error.instance_path) for error in _validator().iter_errors(sources.data)]
+    errors = islice(_validator().iter_errors(sources.data), MOST_FAULTS + 1)
+    paths = [tuple(error.instance_path) for error in errors]
     part = _part_with(paths, sources.data) if paths else sources.data
     faults = schema_faults(part, description_schema(), sources)
     if faults:
@@ -166,16 +181,27 @@ def _mapping(value: Any) -> dict[str, Any]:
     return value if isinstance(value, dict) else {}
 
 
-def _typed(sources: Sources) -> Description:
-    data = dict(sources.data)
+def description_of(data: Mapping[str, Any], *, own_keys: bool = True) -> Description | None:
+    """The description that plain data are; None where they are none, by the schema or by the numbers in them.
+
+    ``own_keys`` says whether there may be keys of the author's own (``x-``) in them.
+    """
+    if names_twice(data, _name_fields()):
+        return None
+    given = dict(without_own_keys(data, description_schema()) if own_keys else data)
     for section in NAMED_SECTIONS:
-        entries = data.get(section)
+        entries = given.get(section)
         if isinstance(entries, dict):
-            data[section] = {name: {**_mapping(entry), "id": name} for name, entry in entries.items()}
+            given[section] = {name: _with_id(name, entry) for name, entry in entries.items()}
     try:
-        return msgspec.convert(data, Description, dec_hook=_read_span)
+        return msgspec.convert(given, Description, dec_hook=_read_span)
     except msgspec.ValidationError:
-        raise DescriptionError(_explained(sources)) from None
+        return None
+
+
+def _with_id(name: str, entry: Any) -> Any:
+    """An entry with its name as its id; None, which nothing can be made of, where it is no entry or has its own."""
+    return {**entry, "id": name} if isinstance(entry, dict) and "id" not in entry else None
 
 
 def _read_span(kind: type[Span], given: object) -> Span:

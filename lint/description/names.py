@@ -13,6 +13,7 @@ import msgspec
 from tidegate.lint.description.place import Fault, Path, dotted
 from tidegate.lint.description.sources import Sources
 from tidegate.lint.found import escaped, quoted
+from tidegate.lint.limits import MOST_FAULTS
 
 NAMED_SECTIONS: Final = (
     "rails", "domains", "references", "biases", "comparators", "output_stages", "resets", "loads", "bypasses",
@@ -52,6 +53,8 @@ class NameField(msgspec.Struct, frozen=True):
     sections: tuple[str, ...]
     or_none: bool = False
     """Whether ``none`` says that there is no such element."""
+    is_list: bool = False
+    """Whether the way ends at every name of a list."""
 
 
 def name_fields(schema: Mapping[str, Any]) -> tuple[NameField, ...]:
@@ -61,8 +64,9 @@ def name_fields(schema: Mapping[str, Any]) -> tuple[NameField, ...]:
 
 def _fields_below(node: Mapping[str, Any], defs: Mapping[str, Any], way: tuple[str, ...]) -> Iterator[NameField]:
     if "x-names" in node:
-        full_way = (*way, "*") if node.get("type") == "array" else way
-        yield NameField(full_way, tuple(node["x-names"]), or_none="anyOf" in node)
+        is_list = node.get("type") == "array"
+        full_way = (*way, "*") if is_list else way
+        yield NameField(full_way, tuple(node["x-names"]), or_none="anyOf" in node, is_list=is_list)
         return
     if "$ref" in node:
         yield from _fields_below(defs[node["$ref"].rpartition("/")[2]], defs, way)
@@ -83,19 +87,36 @@ def name_faults(data: Mapping[str, Any], fields: Sequence[NameField], sources: S
     home, faults = _homes(data, sources)
     advice = _Advice()
     for field in fields:
+        choices: list[str] | None = None
         for path, name in _values(data, field.way, ()):
             if name == "none" and field.or_none:
                 continue
             if isinstance(name, str) and home.get(name) not in field.sections:
-                problem, choices = _problem(name, field, home)
+                if len(faults) > MOST_FAULTS:
+                    return faults
+                if choices is None:
+                    choices = [known for known, section in home.items() if section in field.sections]
+                problem = _problem(name, field, home)
                 missing = "none is described yet" if name in home else "describe it, or correct the name"
                 faults.append(Fault(sources.place(path), dotted(path), problem, advice.about(name, choices, missing)))
     for path, name, kind, known in _names_of_parts(data):
         if name not in known:
+            if len(faults) > MOST_FAULTS:
+                return faults
             problem = f"no {kind} is called {quoted(name)}"
             missing = "describe it, or correct the name"
             faults.append(Fault(sources.place(path), dotted(path), problem, advice.about(name, list(known), missing)))
     return faults
+
+
+def names_twice(data: Mapping[str, Any], fields: Sequence[NameField]) -> bool:
+    """Whether any list of names holds one twice."""
+    for field in fields:
+        if field.is_list:
+            for _, names in _values(data, field.way[:-1], ()):
+                if isinstance(names, list) and len(names) > 1 and any(names.count(name) > 1 for name in names):
+                    return True
+    return False
 
 
 def _homes(data: Mapping[str, Any], sources: Sources) -> tuple[dict[str, str], list[Fault]]:
@@ -108,7 +129,7 @@ def _homes(data: Mapping[str, Any], sources: Sources) -> tuple[dict[str, str], l
                 home[name] = section
                 continue
             first = sources.place((home[name], name), key=True)
-            problem = f"the id {escaped(name)} is taken (first at {first}, in {home[name]})"
+            problem = f"the id {escaped(name)} is taken (also at {first}, in {home[name]})"
             place = sources.place((section, name), key=True)
             faults.append(Fault(place, section, problem, "ids are unique in the whole description"))
     return home, faults
@@ -133,15 +154,14 @@ def _values(node: Any, way: tuple[str, ...], path: Path) -> Iterator[tuple[Path,
             yield from _values(child, way[1:], (*path, index))
 
 
-def _problem(name: str, field: NameField, home: Mapping[str, str]) -> tuple[str, list[str]]:
-    """What is wrong with a name, and the names that would be right."""
-    choices = [known for known, section in home.items() if section in field.sections]
+def _problem(name: str, field: NameField, home: Mapping[str, str]) -> str:
+    """What is wrong with a name."""
     words = [_SINGULAR[section] for section in field.sections]
     wanted = words[0] if len(words) == 1 else f"{', '.join(words[:-1])} or {words[-1]}"
     if name in home:
-        return f"{escaped(name)} is {_SINGULAR[home[name]]} where {wanted} is due", choices
+        return f"{escaped(name)} is {_SINGULAR[home[name]]} where {wanted} is due"
     thing = wanted.partition(" ")[2] if len(words) == 1 else "element"
-    return f"no {thing} is called {quoted(name)}", choices
+    return f"no {thing} is called {quoted(name)}"
 
 
 class _Advice:

@@ -9,6 +9,7 @@ from typing import Final, TypeAlias
 import msgspec
 
 from tidegate.lint.found import escaped, quoted
+from tidegate.lint.limits import MOST_FAULTS
 
 Step: TypeAlias = "str | int"
 Path: TypeAlias = "tuple[Step, ...]"
@@ -48,10 +49,14 @@ class Fault(msgspec.Struct, frozen=True, order=True):
 
 
 class DescriptionError(Exception):
-    """A description cannot be used; carries every fault found, sorted by place."""
+    """A description cannot be used; carries the faults found, sorted by place, as far as so many are told."""
 
     def __init__(self, faults: Sequence[Fault]) -> None:
-        self.faults = tuple(sorted(set(faults)))
+        told = sorted(set(faults))
+        if len(told) > MOST_FAULTS:
+            more = Fault(Place(told[0].place.file), "", f"more than {MOST_FAULTS} faults", "mend those above first")
+            told = [*told[:MOST_FAULTS], more]
+        self.faults = tuple(told)
         super().__init__("\n".join(map(str, self.faults)))
 
 

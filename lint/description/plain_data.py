@@ -13,13 +13,9 @@ from typing import Final, TypeAlias
 import yaml
 
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, Step, dotted
-from tidegate.lint.description.yaml_nodes import MOST_DEPTH, NOT_TEXT, UNTYPED, TooDeepError
+from tidegate.lint.description.yaml_nodes import NOT_TEXT, UNTYPED, TooDeepError
 from tidegate.lint.found import quoted
-
-MOST_EXPANDED: Final = 1_000_000
-"""How many characters the aliases of a file may always stand for."""
-MOST_GROWTH: Final = 16
-"""How many times its own length a longer file may reach when its aliases are expanded."""
+from tidegate.lint.limits import LARGEST_NUMBER, MOST_BYTES, MOST_DEPTH, MOST_EXPANDED, MOST_GROWTH, MOST_TEXT
 
 Plain: TypeAlias = "dict[str, Plain] | list[Plain] | str | int | float | bool"
 
@@ -50,16 +46,19 @@ class PlainFile:
         self.faults: list[Fault] = []
         self.spoiled: list[str] = []  # paths of values that are not what the author meant
         self.empty: list[Path] = []
+        self.has_own_keys = False
         self._name = name
         self._path: list[Step] = []
         self._size = 0  # of the text so far in characters, aliases expanded
         self._seen: dict[int, tuple[Plain, int | None]] = {}
         if root.tag != UNTYPED:
             self._fault(root, None, f"a tag (found {_tag(root)})", "remove it")
+        self._seen[id(root)] = ({}, None)
         self.data = self._mapping(root)
         own = root.end_mark.index - root.start_mark.index
-        if self._size > max(MOST_EXPANDED, MOST_GROWTH * own):
-            problem = f"aliases (*) make {own} characters stand for more than {max(MOST_EXPANDED, MOST_GROWTH * own)}"
+        most = max(MOST_EXPANDED, min(MOST_GROWTH * own, MOST_BYTES))
+        if self._size > most:
+            problem = f"aliases (*) make {own} characters stand for more than {most}"
             raise DescriptionError([*self.faults, Fault(Place(name, 1, 1), "", problem, "write the values out")])
 
     def _mapping(self, node: yaml.MappingNode) -> dict[str, Plain]:
@@ -75,9 +74,13 @@ class PlainFile:
                 if key != key_node.value:  # the value stands in the key
                     data[key] = key_node.value.partition(":")[2]
                     continue
+                if key.startswith("x-"):
+                    self.has_own_keys = True
             if key in first:
                 line = first[key].start_mark.line + 1
-                self._note(key_node, (*self._path, key), f"given twice (first in line {line})", "keep one of them")
+                by_alias = key_node.start_mark.index < node.start_mark.index  # it stands where its anchor stands
+                at = value_node if by_alias else key_node
+                self._note(at, (*self._path, key), f"given twice (first in line {line})", "keep one of them")
                 continue
             first[key] = key_node
             self._size += len(key)
@@ -110,6 +113,8 @@ class PlainFile:
         if isinstance(node, yaml.ScalarNode):
             text: str = node.value
             self._size += len(text) + 1
+            if len(text) > MOST_TEXT:
+                return self._too_long(node, step, text)
             if node.tag != UNTYPED:
                 return self._tagged(node, step, text)
             if node.style:  # quoted, or a block of text
@@ -125,6 +130,7 @@ class PlainFile:
         if node.tag != UNTYPED:
             return self._tagged(node, step, {})
         before = self._size
+        self._size += 1
         self._path.append(step)
         if len(self._path) > MOST_DEPTH:
             raise DescriptionError([TooDeepError(node.start_mark).fault(self._name)])
@@ -163,10 +169,17 @@ class PlainFile:
             return text
         if _FLOAT.fullmatch(text):
             number = float(text)
-            if abs(number) <= 1e300:
+            vanished = number == 0.0 and text.lower().partition("e")[0].strip("+-0.") != ""
+            if abs(number) <= LARGEST_NUMBER and not vanished:
                 return number
-            self._fault(node, step, f"too large a number (found {quoted(text)})", "write a smaller one")
+            size, better = ("small", "larger") if vanished else ("large", "smaller")
+            self._fault(node, step, f"too {size} a number (found {quoted(text)})", f"write a {better} one")
         return text
+
+    def _too_long(self, node: yaml.Node, step: Step, text: str) -> Plain:
+        problem = f"a text of {len(text)} characters, where at most {MOST_TEXT} are read"
+        self._fault(node, step, problem, "shorten it, or name the document that says it")
+        return text[:1]
 
     def _tagged(self, node: yaml.Node, step: Step, data: Plain) -> Plain:
         self._fault(node, step, f"a tag (found {_tag(node)})", "remove it")
@@ -177,7 +190,7 @@ class PlainFile:
         found = NOT_TEXT.search(text) if node.style == '"' else None
         if found is None:
             return text
-        self._fault(node, step, f"the character U+{ord(found[0]):04X} in a text", "remove it")
+        self._fault(node, step, f"the character U+{ord(found[0]):04X} is not allowed in a text", "remove it")
         return NOT_TEXT.sub("", text)
 
     def _fault(self, node: yaml.Node, step: Step | None, problem: str, advice: str) -> None:

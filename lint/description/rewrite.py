@@ -6,11 +6,7 @@ again before it is handed on: all other data must be what they were.
 
 from __future__ import annotations
 
-import contextlib
-import os
 import re
-import stat
-import tempfile
 from collections.abc import Iterator, Mapping
 from pathlib import Path as FilePath
 from typing import Any, Final, NamedTuple
@@ -19,6 +15,7 @@ import yaml
 
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, dotted
 from tidegate.lint.description.plain_data import Plain
+from tidegate.lint.description.whole_file import write_whole
 from tidegate.lint.description.yaml_nodes import UNTYPED, node_tree
 from tidegate.lint.description.yaml_text import read_yaml
 
@@ -57,20 +54,7 @@ def replace_file(path: FilePath, content: bytes) -> None:
 
     Raises: OSError: where the folder or the file cannot be written; the old file is then as it was.
     """
-    target = path.resolve()
-    mode = stat.S_IMODE(target.stat().st_mode)
-    handle, draft = tempfile.mkstemp(prefix=f".{target.name}.", dir=target.parent)
-    try:
-        with os.fdopen(handle, "wb") as file:
-            file.write(content)
-            file.flush()
-            os.fsync(file.fileno())
-        FilePath(draft).chmod(mode)
-        FilePath(draft).replace(target)
-    except BaseException:
-        with contextlib.suppress(OSError):
-            FilePath(draft).unlink()
-        raise
+    write_whole(path, [content], lasting=True)
 
 
 class _Edit(NamedTuple):

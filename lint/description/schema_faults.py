@@ -18,7 +18,8 @@ from tidegate.lint.description.schema_tree import Schema, example_at
 from tidegate.lint.description.sources import Sources
 from tidegate.lint.description.unknown_key import unknown_key
 from tidegate.lint.description.written import written
-from tidegate.lint.found import found
+from tidegate.lint.found import found, quoted
+from tidegate.lint.limits import MOST_NAME
 from tidegate.lint.quantity import QuantityError, Span
 
 _SPANS: Final = {kind.dimension.value: kind for kind in Span.__subclasses__()}
@@ -51,7 +52,8 @@ def _quantity(validator: Any, mapping: Schema, instance: Any, span: type[Span]) 
     rest = {**mapping, "minProperties": 0, "properties": {**mapping["properties"], **dict.fromkeys(_PARTS, True)}}
     yield from validator.descend(instance, rest, schema_path=1)
     wrong = [fault for key, part in parts.items() for fault in _misread(span, part, key)]
-    yield from wrong or _misread(span, parts)
+    if parts or not instance.keys() - mapping["properties"].keys():  # an unknown key may be the part that is missing
+        yield from wrong or _misread(span, parts)
 
 
 def _misread(span: type[Span], given: object, *path: str) -> Iterator[ValidationError]:
@@ -93,12 +95,31 @@ def _faults_of(error: Any, schema: Schema, sources: Sources) -> Iterator[Fault]:
                     yield Fault(sources.place(path, key=True), dotted(path), f"no {key}", advice)
         case _ if "propertyNames" in error.absolute_schema_path:
             place = sources.place((*path, error.instance), key=True)
-            yield Fault(place, dotted(path), f"{found(error.instance)} is no name", _NAME)
+            if _is_name(error.schema):
+                yield Fault(place, dotted(path), *_no_name(error.instance, "give the element another name"))
+            else:
+                advice = f"write it as in {written(error.schema['examples'][0])}"
+                yield Fault(place, dotted(path), f"{quoted(error.instance)} does not fit", advice)
         case _:
             yield Fault(sources.place(path), dotted(path), *_in_words(error, written(example_at(schema, path))))
 
 
-_NAME: Final = "a name has letters, digits, - and _, begins with a letter or _, and has 64 characters at the most"
+_NAME: Final = f"a name has letters, digits, - and _, begins with a letter or _, and has at most {MOST_NAME} characters"
+
+
+def _no_name(text: str, other: str) -> tuple[str, str]:
+    """What is wrong with a text that is no name, and what would be right."""
+    if text == "none":
+        return "none is no name, but says that there is nothing", other
+    if text.startswith("x-"):
+        return f"{quoted(text)} is no name: x- begins keys of your own", other
+    bare = text.strip()
+    if bare != text and re.fullmatch(_BARE_NAME, bare):
+        return f"{quoted(text)} is no name", f"write {bare}"
+    return f"{quoted(text)} is no name", _NAME
+
+
+_BARE_NAME: Final = r"[A-Za-z_][A-Za-z0-9_-]*"
 
 _TYPE_WORDS: Final = {
     "object": "a mapping of keys", "array": "a list", "string": "a text", "number": "a number",
@@ -129,7 +150,9 @@ def _in_words(error: Any, example: str) -> tuple[str, str]:
             hint = f"did you mean {near[0]}? " if near else ""
             return f"no such choice (found {was})", f"{hint}choices: {', '.join(map(str, limit))}"
         case "pattern":
-            return f"{was} does not fit", _NAME if _is_name(error.schema) else f"write it as in {example}"
+            if _is_name(error.schema):
+                return _no_name(error.instance, "name one, or leave the key out where it is not known")
+            return f"{was} does not fit", f"write it as in {example}"
         case "minimum" | "exclusiveMinimum" | "maximum" | "exclusiveMaximum":
             size = "small" if "min" in error.validator.lower() else "large"
             return f"too {size} (found {was})", f"{_LIMITS[error.validator]} {limit} is due"
@@ -143,14 +166,22 @@ def _in_words(error: Any, example: str) -> tuple[str, str]:
 
 def _advice_on_type(kind: str, error: Any, example: str) -> str:
     instance = error.instance
-    if kind == "string" and not _is_name(error.schema) and not isinstance(instance, dict | list):
+    if kind == "string" and "pattern" not in error.schema and not isinstance(instance, dict | list):
         return f'put it in quotes: "{found(instance)}"'
     if kind == "boolean":
         return "write true or false, without quotes" if isinstance(instance, str) else "write true or false"
     if kind in {"number", "integer"} and isinstance(instance, str) and re.fullmatch(r"[0-9.]{1,20}", instance):
         return f"write it without quotes, as in {example}"
+    if kind == "array" and instance == "none":
+        return "leave it out where there is none"
     if kind == "array" and isinstance(instance, str) and re.fullmatch(r"[\w.-]{1,40}", instance, re.ASCII):
         return f"write [{instance}]"
+    if (
+        kind == "array"
+        and isinstance(instance, str)
+        and re.fullmatch(rf"{_BARE_NAME}(?:[, ]+{_BARE_NAME}){{1,9}}", instance)
+    ):
+        return f"write [{', '.join(re.split('[, ]+', instance))}]"
     return f"write it as in {example}"
 
 

@@ -1,4 +1,4 @@
-"""The schema, looked up by the path of a value."""
+"""The schema, looked up by the path of a value, and beside the data."""
 
 from __future__ import annotations
 
@@ -25,6 +25,23 @@ def child_of(node: Schema, step: Step) -> Schema | None:
     if child is None and isinstance(step, str):
         child = node.get("additionalProperties")
     return child if isinstance(child, dict) else None
+
+
+def without_own_keys(data: Any, schema: Schema, node: Schema | None = None) -> Any:
+    """The data without the keys of the author's own (``x-``), wherever the schema lets such keys stand."""
+    node = _object_behind(schema if node is None else node, schema["$defs"])
+    if isinstance(data, list) and "items" in node:
+        return [without_own_keys(item, schema, node["items"]) for item in data]
+    if not isinstance(data, dict):
+        return data
+    kept = {}
+    for key, value in data.items():
+        child = child_of(node, key)
+        if child is not None:
+            kept[key] = without_own_keys(value, schema, child)
+        elif not (key.startswith("x-") and "patternProperties" in node):
+            kept[key] = value
+    return kept
 
 
 def example_at(schema: Schema, path: Sequence[Step]) -> Any:

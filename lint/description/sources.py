@@ -6,6 +6,7 @@ file only.  Every fact remembers the file it came from.
 
 from __future__ import annotations
 
+import errno
 from collections.abc import Callable, Sequence
 from pathlib import Path as FilePath
 from pathlib import PurePosixPath
@@ -13,24 +14,15 @@ from typing import Any, Final
 
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, Step, dotted
 from tidegate.lint.description.plain_data import Plain
-from tidegate.lint.description.yaml_nodes import MOST_BYTES, PARSER, Parser
+from tidegate.lint.description.reading import TooMuchError, read_file
+from tidegate.lint.description.yaml_nodes import PARSER, Parser
 from tidegate.lint.description.yaml_text import YamlFile, read_yaml
 from tidegate.lint.found import quoted
-
-MOST_FILES: Final = 1000
-"""Most files that one description may be split into."""
-MOST_INCLUDED: Final = 16
-"""Longest chain of files that include one another."""
+from tidegate.lint.limits import MOST_BYTES, MOST_FILES, MOST_INCLUDED
 
 _NAME_A_FILE: Final = "name a description in YAML or JSON"
 
 Reader = Callable[[FilePath], bytes]
-
-
-def read_file(path: FilePath) -> bytes:
-    """The content of a file, as far as a description may reach."""
-    with path.open("rb") as file:
-        return file.read(MOST_BYTES + 1)
 
 
 class Sources:
@@ -97,18 +89,29 @@ class _Gatherer:
         self.files: list[YamlFile] = []
         self.faults: list[Fault] = []
         self._taken: set[FilePath] = set()
+        self._bytes = 0
 
     def take(self, path: FilePath, shown: str, above: tuple[FilePath, ...]) -> None:
         """Read one file, then what it includes."""
         try:
             real = path.resolve()
             self._taken.add(real)
-            file = read_yaml(shown, self.read(path), self.parser)
+            content = self.read(path)
+            self._bytes += len(content)
+            if self._bytes > MOST_BYTES:
+                raise TooMuchError(
+                    f"the files of the description are more than {MOST_BYTES / 2**20:g} MiB together",
+                    "split the description into several",
+                )
+            file = read_yaml(shown, content, self.parser)
         except DescriptionError as error:
             self.faults += error.faults
             return
+        except TooMuchError as error:
+            self.faults.append(Fault(Place(shown), "", error.problem, error.advice))
+            return
         except (OSError, ValueError, RuntimeError) as error:
-            reason = getattr(error, "strerror", None) or "no usable file name"
+            reason = _LOOP if _goes_round(error) else getattr(error, "strerror", None) or "no usable file name"
             advice = _near_file(path) if isinstance(error, FileNotFoundError) else _NAME_A_FILE
             self.faults.append(Fault(Place(shown), "", f"cannot be read ({reason})", advice))
             return
@@ -123,9 +126,10 @@ class _Gatherer:
         try:
             real = target.resolve()
             problem = self._why_not(name, target, real, above)
-        except (OSError, ValueError, RuntimeError):
+        except (OSError, ValueError, RuntimeError) as error:
             real = target
-            problem = "no usable file name", f"name a file below the folder of {self.files[0].name}"
+            what = _LOOP if _goes_round(error) else "no usable file name"
+            problem = what, f"name a file below the folder of {self.files[0].name}"
         if problem:
             what, advice = problem
             place = file.place(("include", index)) or Place(file.name)
@@ -144,12 +148,28 @@ class _Gatherer:
         if real.is_dir():
             return "a folder", "name the files in it"
         if not real.is_file():
-            return "no such file", _near_file(target)
+            return (_LOOP, below) if _leads_round(target) else ("no such file", _near_file(target))
         if len(above) > MOST_INCLUDED:
             return f"a chain of more than {MOST_INCLUDED} includes", "include the files side by side"
         if len(self._taken) >= MOST_FILES:
             return f"more than {MOST_FILES} files", "join some of them"
         return None
+
+
+_LOOP: Final = "links that lead back to themselves"
+
+
+def _goes_round(error: Exception) -> bool:
+    """Whether links lead back to themselves; Python says so in one way or another, as its version is."""
+    return isinstance(error, RuntimeError) or getattr(error, "errno", None) == errno.ELOOP
+
+
+def _leads_round(path: FilePath) -> bool:
+    try:
+        path.stat()
+    except OSError as error:
+        return _goes_round(error)
+    return False
 
 
 def _near_file(path: FilePath) -> str:

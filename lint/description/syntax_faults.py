@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from typing import Final
 
 import msgspec
@@ -11,6 +11,7 @@ import yaml
 
 from tidegate.lint.description.place import Fault, Place
 from tidegate.lint.found import escaped, quoted
+from tidegate.lint.limits import MOST_DEPTH
 
 
 class _Saying(msgspec.Struct, frozen=True):
@@ -29,8 +30,10 @@ _QUOTE_IT: Final = "put the text in quotes"
 
 _SAYINGS: Final = (
     _Saying(r"single document", "a second document begins here", "keep one description in a file; remove the ---"),
+    _Saying(r"document start", "text after the end of the description", "keep one description in a file; remove it"),
     _Saying(r"scanning a directive|YAML directive|duplicate tag handle|incompatible YAML", "a line that begins with %",
             "remove it"),
+    _Saying(r"nesting depth", f"nested more than {MOST_DEPTH} levels deep", "a description needs far fewer"),
     _Saying(r"undefined alias", "an alias (*) of an anchor (&) that is not there", "write the value out"),
     _Saying(r"duplicate anchor", "an anchor (&) is set twice (first in line {line})", "give it another name"),
     _Saying(r"scanning an (alias|anchor)|(scanning|parsing) a tag|undefined tag", "a text cannot begin with {sign}",
@@ -46,22 +49,22 @@ _SAYINGS: Final = (
     _Saying(r"flow sequence", "a comma or ] is missing here, for the [ in line {line}",
             "close it, with a comma between its entries"),
     _Saying(r"parsing a flow node.*found ','", "a comma with nothing before it", "remove it"),
+    _Saying(r"parsing a flow node.*found '[]}]'", "{sign} where something else is open", "close what was opened last"),
     _Saying(r"parsing a flow node", "a { or [ without its end", "close it"),
     _Saying(r"found '[],}]'", "{sign} without what it belongs to", "remove it, or " + _QUOTE_IT),
     _Saying(r"found ':'", "a colon without its key", "write key: value"),
     _Saying(r"but found '<scalar>'", "a text after the end of a value", "put the whole value in one pair of quotes"),
-    _Saying(r"but found '(<block mapping start>|<block sequence start>|-|\?|<block entry>)'",
+    _Saying(r"did not find expected key|but found '(<block mapping start>|<block sequence start>|-|\?|<block entry>)'",
             "the indentation does not fit the lines above", "align it with its neighbours"),
     _Saying(r"but found '([{[]|<anchor>|<alias>|<tag>)'", "{sign} after a value, or indented as no line above",
             "write one value for each key"),
-    _Saying(r"document start", "text after the end of the description", "keep one description in a file; remove it"),
 )  # fmt: skip
 
 _OTHERWISE: Final = _Saying("", "the text cannot be read as YAML from here on", "compare it with the lines above")
 
 
 MOST_LINES_AT_ONCE: Final = 2000
-"""Longer texts are read again from the section with the fault on, in lines."""
+"""Longer texts are not read again whole before parts of them are, in lines."""
 
 
 def syntax_fault(name: str, error: yaml.YAMLError, text: str) -> Fault:
@@ -77,6 +80,8 @@ def syntax_fault(name: str, error: yaml.YAMLError, text: str) -> Fault:
     tab = _tab(mark, lines)
     if tab is not None:
         return Fault(Place(name, mark.line + 1, tab + 1), "", "a tab", "use spaces")
+    if lines[mark.line].startswith("%"):
+        return Fault(Place(name, mark.line + 1, 1), "", "a line that begins with %", "remove it")
     if "mapping values are not allowed" in said:
         return _odd_colon(name, mark, lines)
     if "expected ':'" in said and error.context_mark:
@@ -96,18 +101,34 @@ def earliest_line(error: Exception) -> int | None:
     return min((mark.line for mark in marks if mark is not None), default=None)
 
 
-def section_alone(text: str, line: int | None) -> str | None:
-    """The text with the lines before the section of this line left empty; None where that could change its meaning."""
+def same_trouble(one: Exception, other: Exception) -> bool:
+    """Whether two errors are alike as far as anchors go: a part of a text may lack the anchor of an alias in it."""
+    return all((word in str(one)) == (word in str(other)) for word in ("undefined alias", "duplicate anchor"))
+
+
+def parts_alone(text: str, line: int | None) -> Iterator[tuple[str, bool]]:
+    """A long text with lines left empty that hardly bear on this line: all before its entry, then before its section.
+
+    The lines that are kept stand where they stood, so that faults keep their places.
+    Returns: each part, and whether it begins with a whole section.
+    """
     lines = text.splitlines(keepends=True)
     if line is None or len(lines) < MOST_LINES_AT_ONCE:
-        return None
-    first = next((number for number in range(min(line, len(lines) - 1), 0, -1) if _is_section(lines[number])), 0)
-    before = "".join(lines[:first])
-    return None if "&" in before else "\n" * first + "".join(lines[first:])
+        return
+    line = min(line, len(lines) - 1)
+    section = next((number for number in range(line, 0, -1) if _SECTION.match(lines[number])), 0)
+    for entry in range(line, section, -1):
+        if _ENTRY.match(lines[entry]):
+            header = lines[section] if _SECTION.match(lines[section]) else "\n"
+            yield "\n" * section + header + "\n" * (entry - section - 1) + "".join(lines[entry : line + _AFTER]), False
+            break
+    yield "\n" * section + "".join(lines[section : line + _AFTER]), True
 
 
-def _is_section(line: str) -> bool:
-    return re.match(r"[A-Za-z_][\w-]*:\s", line, re.ASCII) is not None
+_SECTION: Final = re.compile(r"[A-Za-z_][\w-]*:\s", re.ASCII)
+_ENTRY: Final = re.compile(r" {1,8}[A-Za-z_][\w-]*:\s", re.ASCII)
+_AFTER: Final = 1000
+"""How many lines after the trouble are read again: it may only show a little later."""
 
 
 def _tab(mark: yaml.Mark, lines: Sequence[str]) -> int | None:

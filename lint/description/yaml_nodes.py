@@ -13,11 +13,7 @@ from typing import Any, Final, Protocol
 import yaml
 
 from tidegate.lint.description.place import DescriptionError, Fault, Place
-
-MOST_BYTES: Final = 64 * 1024 * 1024
-"""Largest file that is read."""
-MOST_DEPTH: Final = 32
-"""Deepest nesting of mappings and lists that is read."""
+from tidegate.lint.limits import MOST_DEPTH
 
 UNTYPED: Final = "?"
 """The tag of every node that the file gives none."""
@@ -133,26 +129,44 @@ def node_tree(name: str, content: bytes, parser: type[Parser] = PARSER) -> yaml.
     return root
 
 
-def _composed_or_explained(name: str, text: str, first: Exception) -> yaml.Node | None:
+_LONG: Final = 300_000
+"""Texts longer than this, in characters, are not given whole to the pure Python parser."""
+
+
+def _composed_or_explained(name: str, text: str, first: yaml.YAMLError | TooDeepError) -> yaml.Node | None:
     """What the pure Python parser makes of a text that a parser refused: a tree after all, or the fault.
 
-    It is slow, so that it is given the section with the fault alone where that leads to the same line.
+    It is slow, so that of a long text it is given parts, as long as they lead to the same line; where no part does, the
+    first parser has the last word.
     """
-    from tidegate.lint.description.syntax_faults import earliest_line, section_alone, syntax_fault
+    from tidegate.lint.description.syntax_faults import earliest_line, parts_alone, same_trouble, syntax_fault
 
     line = earliest_line(first)
-    shorter = section_alone(text, line)
-    for given in (shorter, text) if shorter is not None else (text,):
+    early = "nesting depth" in str(first)  # what the slow parser meets early, too
+    found: yaml.YAMLError | TooDeepError | None = None
+    for part, whole_section in parts_alone(text, line):
+        if len(part.lstrip("\n")) > _LONG and not early:
+            continue
         try:
-            root = _composed(given, PureParser)
-        except (yaml.YAMLError, TooDeepError) as error:
-            if given is text or earliest_line(error) == line:
-                fault = error.fault(name) if isinstance(error, TooDeepError) else syntax_fault(name, error, text)
-                raise DescriptionError([fault]) from None
+            _composed(part, PureParser)
+        except TooDeepError as error:
+            if whole_section:
+                found = error
+                break
+        except yaml.YAMLError as error:
+            if earliest_line(error) == line and same_trouble(error, first):
+                found = error
+                break
+    if found is None:
+        if len(text) > _LONG and not early:
+            found = first
         else:
-            if given is text:
-                return root
-    raise AssertionError("the whole text is the last to be tried")
+            try:
+                return _composed(text, PureParser)
+            except (yaml.YAMLError, TooDeepError) as error:
+                found = error
+    fault = found.fault(name) if isinstance(found, TooDeepError) else syntax_fault(name, found, text)
+    raise DescriptionError([fault]) from None
 
 
 def _composed(text: str, parser: type[Any]) -> yaml.Node | None:
@@ -164,23 +178,37 @@ def _composed(text: str, parser: type[Any]) -> yaml.Node | None:
 
 
 def _decoded(name: str, content: bytes) -> str:
-    if len(content) > MOST_BYTES:
-        problem = f"more than {MOST_BYTES // 2**20} MiB"
-        raise DescriptionError([Fault(Place(name), "", problem, "split the description")])
     content = content.removeprefix(b"\xef\xbb\xbf")
     try:
         text = content.decode()
     except UnicodeDecodeError as error:
         place = _place_after(name, content[: error.start].decode())
         problem = f"byte 0x{content[error.start]:02X} is not UTF-8"
-        raise DescriptionError([Fault(place, "", problem, "save the file as UTF-8")]) from None
-    if b"\x00" in content[:2]:
-        raise DescriptionError([Fault(Place(name, 1, 1), "", "the file is UTF-16 or UTF-32", "save it as UTF-8")])
+        raise DescriptionError(
+            [_no_text(name, content) or Fault(place, "", problem, "save the file as UTF-8")]
+        ) from None
     found = NOT_TEXT.search(text)
     if found:
         place = _place_after(name, text[: found.start()])
-        raise DescriptionError([Fault(place, "", f"the character U+{ord(found[0]):04X}", "remove it")])
+        problem = f"the character U+{ord(found[0]):04X} is not allowed"
+        raise DescriptionError([_no_text(name, content) or Fault(place, "", problem, "remove it")])
     return text
+
+
+def _no_text(name: str, content: bytes) -> Fault | None:
+    """What kind of file it is where it is no text at all, or one of another encoding."""
+    empty = [byte == 0 for byte in content[:4]]
+    other_widths = ([True, False, True, False], [False, True, False, True], [False, True, True, True])
+    if content.startswith((b"\xff\xfe", b"\xfe\xff")) or empty in other_widths:
+        return Fault(Place(name, 1, 1), "", "the file is UTF-16 or UTF-32", "save it as UTF-8")
+    if sum(byte < 9 or 13 < byte < 27 for byte in content[:_LOOKED_AT]) >= _CONTROLS_OF_NO_TEXT:
+        return Fault(Place(name), "", "the file is no text", "name a description in YAML or JSON")
+    return None
+
+
+_LOOKED_AT: Final = 1000
+_CONTROLS_OF_NO_TEXT: Final = 3
+"""How many control characters among so many bytes make a file one that is no text."""
 
 
 def _place_after(name: str, before: str) -> Place:

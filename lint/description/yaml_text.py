@@ -14,16 +14,19 @@ from tidegate.lint.description.yaml_nodes import PARSER, Parser, node_tree
 class YamlFile:
     """A YAML file: its plain data, the place of every key and value, the keys that have no value yet, its faults.
 
+    ``has_own_keys`` says whether any key is the author's own (``x-``).
+
     ``spoiled`` are the paths of values that are not what the author meant; what else is wrong there only follows.
     """
 
     def __init__(
         self, name: str, root: yaml.Node | None, data: dict[str, Plain], *, empty: Sequence[Path] = (),
-        faults: Sequence[Fault] = (), spoiled: Sequence[str] = (),
+        has_own_keys: bool = False, faults: Sequence[Fault] = (), spoiled: Sequence[str] = (),
     ) -> None:  # fmt: skip
         self.name = name
         self.data = data
         self.empty = tuple(empty)
+        self.has_own_keys = has_own_keys
         self.faults = tuple(faults)
         self.spoiled = tuple(spoiled)
         self._root = root
@@ -60,8 +63,10 @@ class YamlFile:
         return pairs
 
 
-def read_yaml(name: str, content: bytes, parser: type[Parser] = PARSER) -> YamlFile:
-    """Read the content of one file; an empty file is an empty mapping.
+def read_yaml(
+    name: str, content: bytes, parser: type[Parser] = PARSER, *, first: str = "a section, such as rails"
+) -> YamlFile:
+    """Read the content of one file; an empty file is an empty mapping. ``first`` is what such a file begins with.
 
     Returns: the file, with the faults of its values.
     Raises: DescriptionError: where the content cannot be read at all.
@@ -72,6 +77,14 @@ def read_yaml(name: str, content: bytes, parser: type[Parser] = PARSER) -> YamlF
     if not isinstance(root, yaml.MappingNode):
         kind = "a list" if isinstance(root, yaml.SequenceNode) else "a text"
         place = Place(name, root.start_mark.line + 1, root.start_mark.column + 1)
-        raise DescriptionError([Fault(place, "", f"the file holds {kind}", "begin with a section, such as rails:")])
+        raise DescriptionError([Fault(place, "", f"the file holds {kind}", f"begin with {first}:")])
     plain = PlainFile(name, root)
-    return YamlFile(name, root, plain.data, empty=plain.empty, faults=plain.faults, spoiled=plain.spoiled)
+    return YamlFile(
+        name,
+        root,
+        plain.data,
+        empty=plain.empty,
+        has_own_keys=plain.has_own_keys,
+        faults=plain.faults,
+        spoiled=plain.spoiled,
+    )

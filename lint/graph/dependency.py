@@ -29,9 +29,12 @@ class Graph:
         self._worked_out: dict[Callable[[Graph], Any], Any] = {}
         self._out: dict[str, list[Edge]] = {}
         self._into: dict[str, list[Edge]] = {}
+        self._led: dict[str, list[Edge]] = {}  # edges to an element by which it leans on where they come from
         for edge in edges:
             self._out.setdefault(edge.tail, []).append(edge)
             self._into.setdefault(edge.head, []).append(edge)
+            if edge.kind.head_leans:
+                self._led.setdefault(edge.head, []).append(edge)
 
     def out(self, element: str) -> Iterable[Edge]:
         """Edges that come from an element."""
@@ -63,12 +66,12 @@ class Graph:
         for edge in self.out(element):
             if edge.kind.tail_leans:
                 yield edge.head, edge.kind.forwards, edge
-        for edge in self.into(element):
-            if edge.kind.head_leans and not self._is_guarded_domain(edge):
+        for edge in self._led.get(element, _NONE):
+            if not self._is_guarded_domain(edge):
                 yield edge.tail, edge.kind.backwards, edge
         if _has_reset(self.elements[element]):
             for domain in self.heads(element, EdgeKind.SUPPLIED_BY):
-                for edge in self.into(domain):
+                for edge in self._led.get(domain, _NONE):
                     if edge.kind is EdgeKind.GUARDS:
                         yield edge.tail, edge.kind.backwards, edge
 

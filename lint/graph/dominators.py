@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 
 
 def immediate_dominators(successors: Mapping[str, Sequence[str]], root: str) -> dict[str, str]:
@@ -61,7 +61,18 @@ def _postorder(successors: Mapping[str, Sequence[str]], root: str) -> list[str]:
 
 def on_every_way(successors: Mapping[str, Sequence[str]], root: str, goal: str) -> tuple[str, ...]:
     """What stands on every way from the root to a goal, both ends left out, from the root on; () if not reached."""
+    return on_every_way_to_each(successors, root, (goal,))[0]
+
+
+def on_every_way_to_each(
+    successors: Mapping[str, Sequence[str]], root: str, goals: Iterable[str]
+) -> list[tuple[str, ...]]:
+    """The same for several goals."""
     above = immediate_dominators(successors, root)
+    return [_chain(above, root, goal) for goal in goals]
+
+
+def _chain(above: Mapping[str, str], root: str, goal: str) -> tuple[str, ...]:
     chain: list[str] = []
     here = above.get(goal, root)
     while here != root:

@@ -10,6 +10,3 @@ ELEMENTARY_CHARGE_C: Final = 1.602176634e-19
 
 BOLTZMANN_EV_PER_K: Final = BOLTZMANN_J_PER_K / ELEMENTARY_CHARGE_C
 """Boltzmann constant, eV/K; the ratio of the two exact constants above."""
-
-ZERO_CELSIUS_K: Final = 273.15
-"""0 degC on the kelvin scale, K (SI Brochure, 9th edition, section 2.3.1)."""

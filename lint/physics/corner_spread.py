@@ -7,6 +7,7 @@ from typing import Final, TypeAlias
 
 import msgspec
 import numpy as np
+from numpy.typing import NDArray
 
 from tidegate.lint.physics.array_domain import FloatArray
 from tidegate.lint.physics.domain import DomainError, require_finite, require_positive
@@ -19,6 +20,7 @@ _REFINEMENTS: Final = 5
 
 Corner: TypeAlias = Mapping[str, FloatArray]
 LevelOf: TypeAlias = Callable[[Corner], FloatArray]
+_BestOf: TypeAlias = Callable[..., np.intp | NDArray[np.intp]]
 
 
 class Swing(msgspec.Struct, frozen=True):
@@ -129,7 +131,7 @@ def spread_over_corners(
     ends_v = _level_at(level_v, nominal, {TEMPERATURE: np.array(temperature_k)})
     return Spread(
         least_v=whole.least_v,
-        nominal_v=float(_level_at(level_v, nominal, {})[0]),
+        nominal_v=_level_at(level_v, nominal, {}).item(),
         most_v=whole.most_v,
         least_at=whole.least_at,
         most_at=whole.most_at,
@@ -164,9 +166,9 @@ def _extremes(level_v: LevelOf, *, corners: dict[str, FloatArray], grid_k: Float
     t_k = np.broadcast_to(grid_k[:, np.newaxis], (len(grid_k), count))
     levels_v = _levels(level_v, corners, t_k)
     found: list[tuple[float, dict[str, float]]] = []
-    for sign in (1.0, -1.0):
-        best_v, best_k = _refined(level_v, corners, t_k, levels_v, sign)
-        index = int(np.argmin(sign * best_v))
+    for best_of in (np.argmin, np.argmax):
+        best_v, best_k = _refined(level_v, corners, t_k, levels_v, best_of)
+        index = int(best_of(best_v))
         at = {name: float(axis[index]) for name, axis in corners.items()}
         found.append((float(best_v[index]), {**at, TEMPERATURE: float(best_k[index])}))
     (least_v, least_at), (most_v, most_at) = found
@@ -178,14 +180,14 @@ def _levels(level_v: LevelOf, corners: dict[str, FloatArray], t_k: FloatArray) -
 
 
 def _refined(
-    level_v: LevelOf, corners: dict[str, FloatArray], t_k: FloatArray, levels_v: FloatArray, sign: float
+    level_v: LevelOf, corners: dict[str, FloatArray], t_k: FloatArray, levels_v: FloatArray, best_of: _BestOf
 ) -> tuple[FloatArray, FloatArray]:
-    """Least of sign * level for each corner over the temperature, and where; axis 0 is the temperature."""
+    """Best level of each corner over the temperature, and where; axis 0 is the temperature."""
+    every = np.arange(t_k.shape[1])
     for _ in range(_REFINEMENTS):
-        best = np.argmin(sign * levels_v, axis=0)
-        low_k = np.take_along_axis(t_k, np.maximum(best - 1, 0)[np.newaxis], axis=0)[0]
-        high_k = np.take_along_axis(t_k, np.minimum(best + 1, len(t_k) - 1)[np.newaxis], axis=0)[0]
+        best = np.asarray(best_of(levels_v, axis=0))
+        low_k, high_k = t_k[np.maximum(best - 1, 0), every], t_k[np.minimum(best + 1, len(t_k) - 1), every]
         t_k = np.linspace(low_k, high_k, _REFINED_POINTS)
         levels_v = _levels(level_v, corners, t_k)
-    best = np.argmin(sign * levels_v, axis=0)[np.newaxis]
-    return np.take_along_axis(levels_v, best, axis=0)[0], np.take_along_axis(t_k, best, axis=0)[0]
+    best = np.asarray(best_of(levels_v, axis=0))
+    return levels_v[best, every], t_k[best, every]

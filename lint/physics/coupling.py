@@ -73,35 +73,6 @@ def bump_at_v(
     return peak_v * math.exp(-(t_s - edge_s) / (r_ohm * (coupling_c_f + ground_c_f)))
 
 
-def time_above_s(
-    *, level_v: float, step_v: float, edge_s: float, r_ohm: float, coupling_c_f: float, ground_c_f: float
-) -> float:
-    """How long the bump stays above a level.
-
-    Formula: t = t2 - t1; t1 = -tau ln(1 - L tr / (V R Cc)), t2 = tr + tau ln(v(tr) / L), tau = R (Cc + Cg);
-             0 where v(tr) <= L
-    Symbols:
-        level_v       L   V    level, > 0
-        step_v        V   V    height of the edge (magnitude), >= 0
-        edge_s        tr  s    duration of the edge from end to end, >= 0 (0: an ideal step)
-        r_ohm         R   ohm  resistance that holds the node, > 0
-        coupling_c_f  Cc  F    capacitance to the neighbour, >= 0
-        ground_c_f    Cg  F    all other capacitance of the node, >= 0
-    Returns: t, in s.
-    Valid: as bump_peak_v.
-    Source: v(t) of bump_at_v set equal to L and solved for t, on the way up and on the way down.
-    Raises: DomainError: if L or R is not > 0, or another symbol is negative.
-    """
-    require_positive(level_v=level_v)
-    peak_v = bump_peak_v(step_v=step_v, edge_s=edge_s, r_ohm=r_ohm, coupling_c_f=coupling_c_f, ground_c_f=ground_c_f)
-    if peak_v <= level_v:
-        return 0.0
-    tau_s = r_ohm * (coupling_c_f + ground_c_f)
-    settled_share = (level_v / step_v) * (edge_s / (r_ohm * coupling_c_f))
-    rising_s = min(edge_s, tau_s * _tau_to_settle(settled_share))
-    return (edge_s - rising_s) + tau_s * math.log(peak_v / level_v)
-
-
 def decoupling_for_bump_f(
     *, allowed_v: float, step_v: float, edge_s: float, r_ohm: float, coupling_c_f: float
 ) -> float:

@@ -18,8 +18,10 @@ from tidegate.lint.physics.domain import (
     require_within,
 )
 
-_MOST_STEPS: Final = 200
-_SETTLED: Final = 1e-14
+_MOST_DOUBLINGS: Final = 200
+"""From 1 V; far above any voltage that is known."""
+
+_NEVER_AHEAD: Final = "no crossing: the device never gets ahead of the divided supply"
 
 
 class NoCrossingError(DomainError):
@@ -55,23 +57,25 @@ def divider_crossing_v(device: Device, *, series_ohm: float, divider_ratio: floa
         return at_v - device.voltage_v(current_a), 1.0 - device.slope_ohm(current_a) * share
 
     device_v = 1.0
-    for _ in range(_MOST_STEPS):
+    for _ in range(_MOST_DOUBLINGS):
         found = balance(device_v)
         if found is not None and found[0] >= 0.0 and found[1] > 0.0:
             break
         device_v *= 2.0
-    for _ in range(_MOST_STEPS):
+    else:
+        raise DomainError("divider_ratio, series_ohm and the device have no level within the range of a number")
+    while True:
         found = balance(device_v)
         if found is None or found[1] <= 0.0:
+            raise NoCrossingError(_NEVER_AHEAD)
+        next_v = device_v - found[0] / found[1]
+        if not next_v < device_v:  # only rounding ends the fall
             break
-        step_v = found[0] / found[1]
-        device_v -= step_v
-        if abs(step_v) <= _SETTLED * (1.0 + abs(device_v)):
-            trip_v = (device_v + offset_v) / divider_ratio
-            if trip_v > device.least_v:
-                return trip_v
-            break
-    raise NoCrossingError("no crossing: the device never gets ahead of the divided supply")
+        device_v = next_v
+    trip_v = (device_v + offset_v) / divider_ratio
+    if trip_v <= device.least_v:
+        raise NoCrossingError(_NEVER_AHEAD)
+    return trip_v
 
 
 def branch_level_v(device: Device, *, series_ohm: float, current_a: float) -> float:
@@ -127,14 +131,11 @@ def reference_crossing_v(
 def _current_a(device: Device, *, left_ohm: float, source_v: float) -> float:
     """Root of source_v = I R + V_dev(I)."""
     current_a = source_v / left_ohm
-    for _ in range(_MOST_STEPS):
-        if current_a * left_ohm + device.voltage_v(current_a) <= source_v:
-            break
+    while current_a * left_ohm + device.voltage_v(current_a) > source_v:
         current_a *= 0.5
-    for _ in range(_MOST_STEPS):
+    while True:
         missing_v = source_v - current_a * left_ohm - device.voltage_v(current_a)
-        step_a = missing_v / (left_ohm + device.slope_ohm(current_a))
-        current_a += step_a
-        if abs(step_a) <= _SETTLED * current_a:
-            break
-    return current_a
+        next_a = current_a + missing_v / (left_ohm + device.slope_ohm(current_a))
+        if not next_a > current_a:  # only rounding ends the climb
+            return current_a
+        current_a = next_a

@@ -162,39 +162,3 @@ def edge_charge_c(inverter: Inverter, *, edge_s: float) -> float:
     Raises: DomainError: if te is not greater than 0.
     """
     return peak_current_a(inverter) * peak_equivalent_time_s(inverter, edge_s=edge_s, exponent=1.0)
-
-
-def edge_energy_j(inverter: Inverter, *, edge_s: float) -> float:
-    """Energy drawn from the supply by the crowbar current of one full-swing linear input edge.
-
-    Formula: E = VDD Q
-    Symbols:
-        inverter    VDD and Q as in Inverter and edge_charge_c
-        edge_s      te    s    time the input takes from 0 V to VDD, > 0
-    Returns: E, in J; exactly 0 where VDD <= Vtn + |Vtp|.
-    Valid: as edge_charge_c.
-    Source: Veendrick, IEEE J. Solid-State Circuits 19(4), 468-473 (1984), whose power per cycle of two edges
-        is 2 E / T.
-    Raises: DomainError: if te is not greater than 0.
-    """
-    return inverter.supply_v * edge_charge_c(inverter, edge_s=edge_s)
-
-
-def beta_a_per_v2(*, on_current_a: float, supply_v: float, threshold_v: float) -> float:
-    """Gain factor of a square-law device from its saturation current at full gate drive.
-
-    Formula: b = 2 Ion / (VDD - Vt)^2
-    Symbols:
-        on_current_a   Ion   A   drain current at gate and drain voltage VDD, > 0
-        supply_v       VDD   V   supply, > Vt
-        threshold_v    Vt    V   threshold, as a magnitude, >= 0
-    Returns: b, in A/V^2.
-    Valid: square law up to VDD.
-    Source: square law (Shichman and Hodges, IEEE J. Solid-State Circuits SC-3, 1968), solved for b.
-    Raises: DomainError: if Ion is not greater than 0, Vt is below 0, or VDD is not above Vt.
-    """
-    require_positive(on_current_a=on_current_a, supply_v=supply_v)
-    require_not_negative(threshold_v=threshold_v)
-    if supply_v <= threshold_v:
-        raise DomainError(f"supply_v must be above threshold_v = {threshold_v!r} (found {supply_v!r})")
-    return 2.0 * on_current_a / (supply_v - threshold_v) ** 2

@@ -4,13 +4,11 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from statistics import NormalDist
 
 import msgspec
 
 from tidegate.lint.physics.constants import BOLTZMANN_EV_PER_K
 from tidegate.lint.physics.domain import (
-    DomainError,
     require_finite,
     require_not_negative,
     require_positive,
@@ -180,27 +178,6 @@ def damage_share(
         for exposure in exposures
         if exposure.time_s > 0.0 and exposure.current > 0.0
     )
-
-
-def lognormal_percentile(*, median: float, sigma: float, share: float) -> float:
-    """Time by which a given share has failed, for log-normal failure times.
-
-    Formula: tp = t50 exp(z_p s), z_p the standard normal quantile of p
-    Symbols:
-        median   t50   any   time by which half have failed, > 0
-        sigma    s     -     standard deviation of the logarithm of the failure time, >= 0
-        share    p     -     share of failures, 0 < p < 1
-    Returns: tp, in the unit of median.
-    Valid: log-normal failure times, the usual finding for electromigration.
-    Source: definition of the log-normal distribution, e.g. NIST/SEMATECH e-Handbook of Statistical Methods,
-        section 8.1.6.4.
-    Raises: DomainError: if a symbol is outside its range.
-    """
-    require_positive(median=median)
-    require_not_negative(sigma=sigma)
-    if not 0.0 < share < 1.0:
-        raise DomainError(f"share must lie above 0 and below 1 (found {share!r})")
-    return median * _exp(NormalDist().inv_cdf(share) * sigma)
 
 
 def _log_thermal_gain(wear: Wear, *, to_k: float, from_k: float) -> float:

@@ -127,11 +127,9 @@ def largest_hold_ohm(
             ramp_s=ramp_s,
         )
 
-    share = coupling_c_f / total_c_f if coupling_c_f > 0.0 else 0.0
-    if leakage_a == 0.0 and share * slope_v_per_s * ramp_s <= limit_v:
+    if leakage_a == 0.0 and coupling_c_f * slope_v_per_s * ramp_s <= limit_v * total_c_f:
         return math.inf
-    low_ohm = limit_v / (leakage_a + coupling_c_f * slope_v_per_s)
-    high_ohm = 2.0 * low_ohm
+    low_ohm = high_ohm = limit_v / (leakage_a + coupling_c_f * slope_v_per_s)
     while math.isfinite(high_ohm) and holds(high_ohm):
         low_ohm, high_ohm = high_ohm, 2.0 * high_ohm
     if math.isinf(high_ohm):

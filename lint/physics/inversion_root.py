@@ -45,7 +45,7 @@ def inversion_root(*, constant: Reals, slope: Reals) -> InversionRoot:
     Raises: DomainError: p or q not finite; a root that does not settle.
     """
     p, q = np.broadcast_arrays(finite("constant", constant), finite("slope", slope))
-    exists = np.asarray((q < 0.0) | (p > 0.0) | ((q > _LN2) & (q * q + 4.0 * p >= 0.0)))
+    exists = np.asarray((q < 0.0) | (p > 0.0) | (q > _LN2))
     if not exists.all():
         p, q = np.where(exists, p, 1.0), np.where(exists, q, 0.0)
     x = _start_right_of_the_root(p, q)
@@ -67,20 +67,20 @@ def inversion_root(*, constant: Reals, slope: Reals) -> InversionRoot:
 def _start_right_of_the_root(p: FloatArray, q: FloatArray) -> FloatArray:
     """Upper bound of the last root, close to it both in strong and in weak inversion."""
     # The root lies at x >= 0 where h(0) >= 0, or where h still rises there; and there ln(1 + e^x) >= x.
-    x = 0.5 * (q + np.sqrt(np.maximum(q * q + 4.0 * p, 0.0)))
+    x = np.asarray(0.5 * (q + np.sqrt(np.maximum(q * q + 4.0 * p, 0.0))))
     weak = (p < _LN2**2) & (q <= _LN2)
-    if not weak.any():
-        return np.asarray(x)
-    p, q = np.where(weak, p, 1.0), np.where(weak, q, 0.0)
+    x[weak] = _start_in_weak_inversion(p[weak], q[weak])
+    return x
+
+
+def _start_in_weak_inversion(p: FloatArray, q: FloatArray) -> FloatArray:
     # At x <= 0, ln(2) e^x <= ln(1 + e^x) <= e^x. With a rising line the square is at most p. With a falling one, the
     # right inequality bounds how far left the root lies, W(z) <= ln(1 + z), and so how high the line is there.
     falling = q < 0.0
     down = np.where(falling, -q, 1.0)
     line = 0.5 * down * np.logaddexp(0.0, np.log(2.0 / down) + 2.0 * p / down)
-    most = np.where(falling, line, p)
-    # Where the line is all but 0, the root is where the line itself is.
     with np.errstate(divide="ignore"):
-        bound = np.minimum(0.5 * np.log(most) - math.log(_LN2), 0.0)
-    bound = np.where(falling, np.minimum(bound, np.where(p < 0.0, p / down, 0.0)), bound)
-    bound = np.where(np.isfinite(bound), bound, p / down)
-    return np.asarray(np.where(weak, bound, x))
+        bound = 0.5 * np.log(np.where(falling, line, p)) - math.log(_LN2)
+    # A falling line has its root left of where it is 0; and where it is all but 0 at the root, there.
+    bound = np.minimum(bound, p / down)
+    return np.where(np.isfinite(bound), bound, p / down)

@@ -13,7 +13,7 @@ _TINY_LOG: Final = -37.0
 """Below this logarithm of x, W(x) = x to the last bit, since W(x) = x (1 - x + ...)."""
 
 _STEPS: Final = 2
-"""Each step raises the error to the fourth power; from 3 % two steps leave less than a rounding."""
+"""Each step raises the error to the fourth power; from 5 % two steps leave less than a rounding."""
 
 
 def lambert_w_of_exp(y: Reals) -> FloatArray:
@@ -31,13 +31,12 @@ def lambert_w_of_exp(y: Reals) -> FloatArray:
     Raises: DomainError: y not finite.
     """
     y = finite("y", y)
-    tiny = y < _TINY_LOG
-    held = np.where(tiny, 0.0, y)
+    held = np.maximum(y, _TINY_LOG)
     start = np.logaddexp(0.0, held)
     w = start * (1.0 - np.log1p(start) / (2.0 + start))
     for _ in range(_STEPS):
         w = w * (1.0 + _fritsch_step(held - np.log(w) - w, 1.0 + w))
-    return np.asarray(np.where(tiny, np.exp(np.minimum(y, 0.0)), w))
+    return np.asarray(w * np.exp(np.minimum(y - _TINY_LOG, 0.0)))
 
 
 def _fritsch_step(rest: FloatArray, w1: FloatArray) -> FloatArray:
@@ -46,24 +45,6 @@ def _fritsch_step(rest: FloatArray, w1: FloatArray) -> FloatArray:
     # Numerator and denominator of the published step, both divided by w1^2 so that neither overflows.
     q = 2.0 + (4.0 / 3.0) * first
     return np.asarray(first * (q - first / w1) / (q - 2.0 * first / w1))
-
-
-def lambert_w(x: Reals) -> FloatArray:
-    """Principal branch of Lambert's W.
-
-    Formula: w exp(w) = x, w >= 0
-    Symbols:
-        x  x  -  argument, >= 0; any shape
-    Returns: w, dimensionless, of the shape of x.
-    Valid: x >= 0.
-    Source: as for lambert_w_of_exp.
-    Raises: DomainError: x below 0 or not finite.
-    """
-    x = not_negative("x", x)
-    zero = x == 0.0
-    w = np.where(zero, 0.0, lambert_w_of_exp(np.log(np.where(zero, 1.0, x))))
-    # ln x carries the rounding of its own size; for small w, w = x exp(-w) shrinks that by w.
-    return np.asarray(np.where(w < 1e-3, x * np.exp(-w), w))
 
 
 def lower_lambert_w_of_exp(y: Reals) -> FloatArray:
@@ -84,12 +65,10 @@ def lower_lambert_w_of_exp(y: Reals) -> FloatArray:
     root = np.sqrt(2.0 * (y - 1.0))
     start = 1.0 + root + root**2 / 3.0
     z = np.where(y < 2.0, start, y + np.log(y + np.log(y)))
-    for _ in range(_STEPS + 1):
-        # The step of the upper branch for w = -z: 1 + w = 1 - z, and ln(x/w) - w = z - y - ln z.
-        away = 1.0 - z
-        flat = away == 0.0
-        step = _fritsch_step(z - y - np.log(z), np.where(flat, -1.0, away))
-        z = np.maximum(1.0, z * (1.0 + np.where(flat, 0.0, step)))
+    for _ in range(_STEPS):
+        # The step of the upper branch for w = -z: 1 + w = 1 - z, and ln(x/w) - w = z - y - ln z. At z = 1 = y there is
+        # nothing left to do, and nothing to divide by.
+        z = z * (1.0 + _fritsch_step(z - y - np.log(z), np.minimum(1.0 - z, -1e-300)))
     return np.asarray(z)
 
 
@@ -112,25 +91,6 @@ def diode_current_a(*, source_v: Reals, series_ohm: Reals, saturation_a: Reals, 
     w = _diode_w(source_v, series_ohm, saturation_a, emission_v)
     # Near 0 V the difference of two equal currents may come out a rounding below 0.
     return np.asarray(np.maximum(scale_a * w - saturation_a, 0.0))
-
-
-def diode_voltage_v(*, source_v: Reals, series_ohm: Reals, saturation_a: Reals, emission_v: Reals) -> FloatArray:
-    """Voltage across a diode fed from a source through a resistor.
-
-    Formula: V_D = V + IS R - n V_T W[...], W as in diode_current_a
-    Symbols:
-        source_v      V      V    source voltage, >= 0
-        series_ohm    R      ohm  series resistance, > 0
-        saturation_a  IS     A    saturation current, > 0
-        emission_v    n V_T  V    emission coefficient times thermal voltage, > 0
-    Returns: V_D, in V, of the common shape of the inputs.
-    Valid: I = IS (exp(V_D/(n V_T)) - 1).
-    Source: V_D = V - I R with the current of diode_current_a.
-    Raises: DomainError: V below 0; R, IS or n V_T not above 0.
-    """
-    w = _diode_w(source_v, series_ohm, saturation_a, emission_v)
-    drop_v = np.asarray(saturation_a) * np.asarray(series_ohm)
-    return np.asarray(np.maximum(np.asarray(source_v) + drop_v - np.asarray(emission_v) * w, 0.0))
 
 
 def _diode_w(source_v: Reals, series_ohm: Reals, saturation_a: Reals, emission_v: Reals) -> FloatArray:

@@ -37,40 +37,6 @@ def threshold_linear_v(*, t_k: Reals, threshold_ref_v: Reals, t_ref_k: Reals, fa
     return np.asarray(found_v)
 
 
-def threshold_bsim_v(
-    *,
-    t_k: Reals,
-    threshold_ref_v: Reals,
-    t_ref_k: Reals,
-    kt1_v: Reals,
-    kt1l_v_m: Reals,
-    length_m: Reals,
-    kt2: Reals,
-    body_v: Reals,
-) -> FloatArray:
-    """Threshold at a temperature from the coefficients of a BSIM model card.
-
-    Formula: V_TH(T) = V_TH(T0) + (KT1 + KT1L/L + KT2 V_BS) (T/T0 - 1)
-    Symbols:
-        t_k              T         K    absolute temperature, > 0
-        threshold_ref_v  V_TH(T0)  V    threshold at T0, as a magnitude
-        t_ref_k          T0        K    temperature of the model card, > 0
-        kt1_v            KT1       V    coefficient, below 0 where the threshold falls
-        kt1l_v_m         KT1L      V m  its dependence on length
-        length_m         L         m    effective length, > 0
-        kt2              KT2       -    its dependence on body bias
-        body_v           V_BS      V    body to source, below 0 in reverse bias
-    Returns: V_TH, in V, of the common shape of the inputs.
-    Valid: the range of the model card.
-    Source: BSIM3v3 and BSIM4 manuals, temperature dependence (value from memory).
-    Raises: DomainError: T, T0 or L not above 0; another symbol not finite.
-    """
-    share = positive("t_k", t_k) / positive("t_ref_k", t_ref_k) - 1.0
-    slope_v = finite("kt1_v", kt1_v) + finite("kt1l_v_m", kt1l_v_m) / positive("length_m", length_m)
-    slope_v = slope_v + finite("kt2", kt2) * finite("body_v", body_v)
-    return np.asarray(finite("threshold_ref_v", threshold_ref_v) + slope_v * share)
-
-
 def gain_a_per_v2(*, t_k: Reals, gain_ref_a_per_v2: Reals, t_ref_k: Reals, exponent: Reals) -> FloatArray:
     """Gain factor at a temperature; it follows the mobility.
 

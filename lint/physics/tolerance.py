@@ -11,7 +11,6 @@ import msgspec
 
 from tidegate.lint.physics.domain import (
     DomainError,
-    require_finite,
     require_not_negative,
     require_positive,
     require_within,
@@ -19,15 +18,6 @@ from tidegate.lint.physics.domain import (
 
 RECTANGULAR_DIVISOR: Final = math.sqrt(3.0)
 """Half-width over standard deviation, every value equally likely (JCGM 100:2008, 4.3.7)."""
-
-TRIANGULAR_DIVISOR: Final = math.sqrt(6.0)
-"""Half-width over standard deviation, likelihood falling in a line to 0 at the ends (JCGM 100:2008, 4.3.9)."""
-
-ARCSINE_DIVISOR: Final = math.sqrt(2.0)
-"""Half-width over standard deviation of a sine caught at a random moment (JCGM 101:2008, 6.4.6)."""
-
-_CORRELATION_SLACK: Final = 1e-12
-_NEGATIVE_VARIANCE_SLACK: Final = 1e-12
 
 
 class Kind(Enum):
@@ -152,78 +142,3 @@ def refer_relative_to_level_v(*, share: float, level_v: float) -> float:
     """
     require_not_negative(share=share, level_v=level_v)
     return share * level_v
-
-
-def combined_uncertainty(
-    *,
-    sensitivities: Sequence[float],
-    uncertainties: Sequence[float],
-    correlations: Sequence[Sequence[float]] | None,
-) -> float:
-    """Standard uncertainty of a quantity worked out from several others, correlated or not.
-
-    Formula: u_c^2 = sum over i and j of c_i c_j u_i u_j r_ij
-    Symbols:
-        sensitivities  c_i   derivative of the result with respect to each input; n of them
-        uncertainties  u_i   standard uncertainty of each input, >= 0; n of them
-        correlations   r_ij  -  n rows of n, symmetric, 1 on the diagonal; None for independent inputs
-    Returns: u_c, in the unit of c_i u_i.
-    Valid: first order; a result nearly linear over the spread of its inputs.
-    Source: JCGM 100:2008 (GUM), 5.2.2 equation (16); equation (10) where all r_ij but the diagonal are 0.
-    Raises: DomainError: lengths that differ; u_i below 0; a matrix that no set of quantities can have.
-    """
-    size = len(uncertainties)
-    if len(sensitivities) != size:
-        raise DomainError(f"sensitivities must be as many as uncertainties, {size} (found {len(sensitivities)})")
-    for c, u in zip(sensitivities, uncertainties, strict=True):
-        require_finite(sensitivities=c)
-        require_not_negative(uncertainties=u)
-    terms = [c * u for c, u in zip(sensitivities, uncertainties, strict=True)]
-    if correlations is None:
-        return math.hypot(*terms)
-    _require_correlations(correlations, size)
-    variance = math.fsum(terms[i] * terms[j] * correlations[i][j] for i in range(size) for j in range(size))
-    if variance < -_NEGATIVE_VARIANCE_SLACK * math.fsum(term * term for term in terms):
-        raise DomainError(f"correlations must give a variance of at least 0 (found {variance!r})")
-    return math.sqrt(max(variance, 0.0))
-
-
-def _require_correlations(correlations: Sequence[Sequence[float]], size: int) -> None:
-    if len(correlations) != size or any(len(row) != size for row in correlations):
-        raise DomainError(f"correlations must be {size} rows of {size}")
-    for i, row in enumerate(correlations):
-        for j, r in enumerate(row):
-            if not abs(r) <= 1.0 + _CORRELATION_SLACK:
-                raise DomainError(f"correlations must lie in -1.0 to 1.0 (found {r!r})")
-            if i == j and abs(r - 1.0) > _CORRELATION_SLACK:
-                raise DomainError(f"correlations must be 1 on the diagonal (found {r!r})")
-            if abs(r - correlations[j][i]) > _CORRELATION_SLACK:
-                raise DomainError(f"correlations must be symmetric (found {r!r} against {correlations[j][i]!r})")
-
-
-def effective_degrees_of_freedom(*, contributions: Sequence[float], degrees_of_freedom: Sequence[float]) -> float:
-    """Degrees of freedom of a combined uncertainty (Welch-Satterthwaite).
-
-    Formula: nu = u_c^4 / sum of (u_i^4 / nu_i), u_c^2 = sum of u_i^2
-    Symbols:
-        contributions       u_i   each input's share of the result's uncertainty, c_i u(x_i), any sign
-        degrees_of_freedom  nu_i  -  of each u_i, > 0; infinity where u_i is taken as exact
-    Returns: nu; infinity where every u_i that is not 0 is exact.
-    Valid: independent, normally distributed inputs.
-    Source: JCGM 100:2008 (GUM), G.4.1 equation (G.2b).
-    Raises: DomainError: lengths that differ; nu_i not above 0; no u_i other than 0.
-    """
-    if len(contributions) != len(degrees_of_freedom):
-        raise DomainError(
-            f"degrees_of_freedom must be as many as contributions, {len(contributions)}"
-            f" (found {len(degrees_of_freedom)})"
-        )
-    for u, nu in zip(contributions, degrees_of_freedom, strict=True):
-        require_finite(contributions=u)
-        if not nu > 0.0:
-            raise DomainError(f"degrees_of_freedom must be greater than 0 (found {nu!r})")
-    combined = math.hypot(*contributions)
-    require_positive(combined_uncertainty=combined)
-    # Shares of u_c, not u_i themselves, so that the fourth power of a small uncertainty does not vanish.
-    inverse = math.fsum((u / combined) ** 4 / nu for u, nu in zip(contributions, degrees_of_freedom, strict=True))
-    return math.inf if inverse == 0.0 else 1.0 / inverse

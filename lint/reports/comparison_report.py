@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import textwrap
 from collections.abc import Iterator
 from typing import Any, Final
 
@@ -10,6 +9,7 @@ import msgspec
 
 from tidegate.lint.comparison import Comparison, FactChange, Harm, JudgementChange
 from tidegate.lint.judgement import Judgement
+from tidegate.lint.reports.columns import wrapped
 from tidegate.lint.reports.json_form import json_form
 from tidegate.lint.reports.json_report import number_entry, settings_entry
 from tidegate.lint.reports.markdown_text import code, code_in_table, escaped
@@ -77,7 +77,7 @@ def terminal_lines(found: Comparison, sides: Sides, *, width: int) -> Iterator[s
     """For people at a terminal."""
     yield plain(f"{sides.old} -> {sides.new}")
     if sides.settings.summary:
-        yield from textwrap.wrap(plain(f"settings: {sides.settings.summary}"), max(width, 24), break_on_hyphens=False)
+        yield from wrapped(plain(f"settings: {sides.settings.summary}"), max(width, 24))
     facts, judgements = _count(len(found.facts), "fact"), _count(len(found.judgements), "judgement")
     yield f"{_verdict(found)}   {facts} and {judgements} changed"
     for harm, title in _TITLES.items():
@@ -101,7 +101,7 @@ def terminal_lines(found: Comparison, sides: Sides, *, width: int) -> Iterator[s
 def _block(head: str, text: str, width: int) -> Iterator[str]:
     if head:
         yield f"  {plain(head)}"
-    yield from (f"      {line}" for line in textwrap.wrap(plain(text), max(width - 6, 24), break_on_hyphens=False))
+    yield from (f"      {line}" for line in wrapped(plain(text), max(width - 6, 24)))
 
 
 def markdown_lines(found: Comparison, sides: Sides, *, width: int) -> Iterator[str]:

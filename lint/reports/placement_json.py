@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import json
 from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any, Final
 
@@ -11,6 +10,7 @@ from tidegate.lint.derived.levels.detector_placement import DetectorPlacement
 from tidegate.lint.derived.levels.level_placement import LevelPlacement
 from tidegate.lint.description.place import Place
 from tidegate.lint.physics.placement import Limit
+from tidegate.lint.reports.json_form import json_form
 from tidegate.lint.reports.placement_text import limit_fact, limit_text
 from tidegate.lint.version import VERSION
 
@@ -30,7 +30,7 @@ def placement_text_json(file: str, written: Sequence[str], entries: Sequence[dic
         "written": list(written),
         "detectors": list(entries),
     }
-    return json.dumps(answer, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+    return json_form(answer) + "\n"
 
 
 def placement_entry(

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import math
 import re
-import textwrap
 from collections.abc import Iterator, Sequence
 from typing import Final
 
@@ -15,6 +14,7 @@ from tidegate.lint.derived.levels.level_placement import LevelPlacement
 from tidegate.lint.derived.levels.placement_facts import PlacementFacts, spread_of
 from tidegate.lint.physics.placement import Limit, Requirement, Side
 from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.reports.columns import columns, wrapped
 from tidegate.lint.reports.plain_text import plain
 
 WIDTH: Final = 80
@@ -33,7 +33,8 @@ def placement_lines(placed: DetectorPlacement, place: str, *, most_levers: int) 
     """The block of one detector."""
     comparator = placed.comparator
     title = f"{comparator.id}, {_NOUNS[comparator.role]} detector of {comparator.watches}"
-    yield plain(f"{title}{place.rjust(max(len(place) + 2, WIDTH - len(title)))}")
+    place = plain(place)
+    yield f"{title}{' ' * max(2, WIDTH - len(title) - columns(place))}{place}"
     found = placed.found
     if isinstance(found, Unknown):
         yield from row("open", found.text())
@@ -52,7 +53,7 @@ def placement_lines(placed: DetectorPlacement, place: str, *, most_levers: int) 
 def row(label: str, text: str) -> Iterator[str]:
     """A label, and a text that keeps clear of it on every line; a number stays with its unit."""
     together = _NUMBER_AND_UNIT.sub(_HELD, plain(text))
-    lines = textwrap.wrap(together, WIDTH - 2 - _LABEL, break_on_hyphens=False) or [""]
+    lines = wrapped(together, WIDTH - 2 - _LABEL) or [""]
     for number, line in enumerate(lines):
         yield f"  {label if number == 0 else '':<{_LABEL}}{line}".replace(_HELD, " ")
 

@@ -3,37 +3,31 @@
 from __future__ import annotations
 
 import os
-import tempfile
 from collections.abc import Iterable
-from contextlib import suppress
 from pathlib import Path
 
+from tidegate.lint.description.whole_file import write_whole
 
-def save(path: Path, pieces: Iterable[str]) -> None:
+
+def save(path: Path, pieces: Iterable[str], *, read: Iterable[str] = ()) -> None:
     """Write a text to a file: what reads the file sees the old content or the new, never a part.
 
-    Raises: OSError: if it cannot be written; the old content is then still there.
+    ``read`` are the files that the report was made from.
+    Raises: OSError: if it cannot be written, or would take the place of what it was made from; the old content is then
+    still there.
     """
-    if path.exists() and not path.is_file():  # a device or a pipe: there is nothing to replace
-        with path.open("w", encoding="utf-8", newline="\n") as device:
-            device.writelines(pieces)
-        return
-    path = path.resolve()  # what a link points to is replaced, not the link
-    handle, name = tempfile.mkstemp(dir=path.parent, prefix=".tidegate-")
+    there = _status(path)
+    if there is not None and any(_same(_status(file), there) for file in read):
+        raise OSError(None, "the report is made from this file")
+    write_whole(path, (piece.encode("utf-8", "backslashreplace") for piece in pieces))
+
+
+def _status(path: str | Path) -> os.stat_result | None:
     try:
-        with os.fdopen(handle, "w", encoding="utf-8", newline="\n") as file:
-            file.writelines(pieces)
-        mode = path.stat().st_mode & 0o777 if path.exists() else 0o666 & ~_umask()
-        Path(name).chmod(mode)
-        Path(name).replace(path)
-    except BaseException:
-        with suppress(OSError):
-            Path(name).unlink()
-        raise
+        return Path(path).stat()
+    except (OSError, ValueError):
+        return None
 
 
-def _umask() -> int:
-    """The mask of permissions for new files; it can only be read by setting it."""
-    mask = os.umask(0o077)
-    os.umask(mask)
-    return mask
+def _same(one: os.stat_result | None, other: os.stat_result) -> bool:
+    return one is not None and os.path.samestat(one, other)

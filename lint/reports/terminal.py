@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import textwrap
 from collections.abc import Iterator, Sequence
 from typing import Final
 
@@ -10,6 +9,7 @@ from tidegate.lint.description.place import Fault
 from tidegate.lint.engine import Review
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind, Level
+from tidegate.lint.reports.columns import columns, wrapped
 from tidegate.lint.reports.ladder import ladder_lines, ladders
 from tidegate.lint.reports.order import CAUTION, by_element, described, missing_facts, verdict
 from tidegate.lint.reports.paint import Line
@@ -65,7 +65,7 @@ def _plain_line(text: str, style: str = "") -> Line:
 def _two_ends(left: str, right: str, width: int, style: str) -> Iterator[Line]:
     """Text at both ends of the line; the right one below the left one where there is no room beside it."""
     left, right = plain(left), plain(right)
-    gap = width - len(left) - len(right)
+    gap = width - columns(left) - columns(right)
     if gap >= 2:
         yield Line(((left, style), (" " * gap, ""), (right, "dim")))
         return
@@ -77,7 +77,7 @@ def _wrapped(label: str, text: str, width: int, *, indent: int, style: str = "")
     """A label, and a text that keeps clear of it on every line."""
     room = max(width - indent - (_LABEL if label else 0), 24)
     margin = " " * indent
-    for number, part in enumerate(textwrap.wrap(plain(text), room, break_on_hyphens=False) or [""]):
+    for number, part in enumerate(wrapped(plain(text), room) or [""]):
         if not label:
             yield Line(((margin + part, style),))
         else:
@@ -106,7 +106,12 @@ def _head(review: Review, width: int) -> Iterator[Line]:
     said = verdict(review)
     style = "bold red" if said.startswith("NOT") else "bold green"
     text = ", ".join(word for word in words if word) or "nothing to judge"
-    yield Line(((said, style), (f"   {text}{f' ({accepted} waived)' if accepted else ''}", "")))
+    text += f" ({accepted} waived)" if accepted else ""
+    if len(said) + 3 + len(text) <= width:
+        yield Line(((said, style), (f"   {text}", "")))
+        return
+    yield Line(((said, style),))
+    yield from _wrapped("", text, width, indent=0)
 
 
 def _count(number: int, one: str, many: str) -> str:
@@ -123,7 +128,7 @@ def _judgement_lines(review: Review, judgement: Judgement, width: int) -> Iterat
     word = "waived" if judgement.waiver else _kind_word(judgement)
     style = "dim" if judgement.waiver else _STYLES[judgement.kind]
     room = max(width - 2 - _LABEL, 24)
-    for number, part in enumerate(textwrap.wrap(plain(judgement.message), room, break_on_hyphens=False)):
+    for number, part in enumerate(wrapped(plain(judgement.message), room)):
         head = word.ljust(_LABEL) if number == 0 else " " * _LABEL
         yield Line((("  " + head, style), (part, "")))
     margin = f"margin {judgement.measure.margin_text()}, " if judgement.measure else ""
@@ -147,7 +152,8 @@ def _kind_word(judgement: Judgement) -> str:
 def _rule_faults(review: Review, width: int) -> Iterator[Line]:
     if review.faults:
         yield _blank()
-        yield _plain_line("rules that failed themselves: their judgements are missing", "bold red")
+        what = "rules that failed themselves: their judgements are missing"
+        yield from _wrapped("", what, width, indent=0, style="bold red")
     for fault in review.faults:
         yield from _wrapped("fault", f"{fault.rule} on {fault.subject}: {fault.error}", width, indent=2)
 
@@ -156,7 +162,7 @@ def _missing(review: Review, width: int) -> Iterator[Line]:
     waiting = missing_facts(review)
     if waiting:
         yield _blank()
-        yield _plain_line("open: these facts are missing from the description", "bold")
+        yield from _wrapped("", "open: these facts are missing from the description", width, indent=0, style="bold")
     for fact, rules in waiting.items():
         yield from _wrapped("open", f"{fact}", width, indent=2, style="bold")
         yield from _wrapped(" ", f"for {', '.join(rules)}", width, indent=2, style="dim")

@@ -13,6 +13,9 @@ _STRETCH: Final = 0.6
 _ALIKE: Final = 1e-6
 """Share of the whole span below which two edges count as one."""
 
+_RESOLVED: Final = 1e-9
+"""Least span as a share of the times on it: a float tells no finer ones apart."""
+
 
 class Column(NamedTuple):
     """The times between which a column lies, and the one in its middle, in s."""
@@ -52,7 +55,7 @@ class TimeAxis(msgspec.Struct, frozen=True):
 def time_axis(edges: Iterable[float], width: int) -> TimeAxis:
     """An axis that shows all edges, with some room on either side."""
     times = sorted({edge for edge in edges if abs(edge) != float("inf")}) or [0.0]
-    span_s = max(times[-1] - times[0], 1e-12)
+    span_s = max(times[-1] - times[0], 1e-12, _RESOLVED * max(abs(times[0]), abs(times[-1])))
     distinct = [times[0]]
     for time in times[1:]:
         if time - distinct[-1] > _ALIKE * span_s:

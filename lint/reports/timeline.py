@@ -6,6 +6,7 @@ from collections.abc import Iterator, Sequence
 from typing import Final, NamedTuple
 
 from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.reports.columns import wrapped
 from tidegate.lint.reports.plain_text import plain
 from tidegate.lint.reports.time_axis import Column, TimeAxis, time_axis
 from tidegate.lint.timing.evaluate import LoadState, State
@@ -70,19 +71,29 @@ def timeline_lines(lines: Timelines, line: Timeline, *, width: int, signs: Signs
     edges = [edge for edge in _edges(lines, line) if abs(edge) < FOREVER_S] or [0.0]
     axis = time_axis(edges, room)
     yield plain(line.scenario.name)
-    yield f"  {plain(line.scenario.about)}"
+    yield from (f"  {row}" for row in wrapped(plain(line.scenario.about), width - 2))
     yield _head(axis, min(edges))
     for section in ("rails", "references", "biases", "comparators", "output_stages", "resets", "loads"):
         for name in getattr(lines.description, section):
-            if name in lines.read.parts:
+            if name in lines.read.parts and not _has_no_scale(lines, name):
                 state = line.states[name]
                 row, arrival = _row(lines, name, state, axis, signs), arrival_text(lines, name, state)
                 yield f"{_name(name)}{row}  {arrival}".rstrip()
                 if section == "loads":
                     yield from _slack_rows(lines, line, name, axis, signs)
+    for name in lines.description.rails:
+        if _has_no_scale(lines, name):
+            yield f"{_name(name)}not drawn without its nominal level"
     for name, lacks in lines.read.lacks.items():
         if lacks.whole:
             yield f"{_name(name)}not drawn without {', '.join(lacks.whole)}"
+    for name, error in lines.read.refused.items():
+        yield f"{_name(name)}not drawn: {error}"
+
+
+def _has_no_scale(lines: Timelines, name: str) -> bool:
+    """Whether it is a rail of which nobody knows when it is up."""
+    return name in lines.description.rails and name not in lines.ramps.by_rail
 
 
 def _name(name: str) -> str:
@@ -104,6 +115,8 @@ def _head(axis: TimeAxis, first_s: float) -> str:
 def _edges(lines: Timelines, line: Timeline) -> Iterator[float]:
     """Every time at which a state may change."""
     for name in lines.read.parts:
+        if _has_no_scale(lines, name):
+            continue
         state = line.states[name]
         if isinstance(state, GivenSupply):
             yield from (at_s + state.least_s for at_s, _ in state.waveform.points)
@@ -170,6 +183,8 @@ def arrival_text(lines: Timelines, name: str, state: State) -> str:
             may_not, may = state.may_assert, state.may_release
         case LoadState():
             may_not, may = state.ready.may_be_off, state.ready.may_be_on
+        case Supply() if _has_no_scale(lines, name):
+            return ""
         case Supply():
             may, may_not = _up(lines, name, state)
         case _:

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-import json
 from collections.abc import Sequence
 from typing import Any, Final
 
+from tidegate.lint.reports.json_form import json_form
 from tidegate.lint.reports.timeline import slack_of
 from tidegate.lint.timing.evaluate import LoadState, State
 from tidegate.lint.timing.interval import Times
@@ -27,7 +27,7 @@ def timelines_text(lines: Timelines, shown: Sequence[Timeline], *, file: str) ->
         "missing": {name: lacks.whole for name, lacks in lines.read.lacks.items() if lacks.whole},
         "scenarios": [_scenario(lines, line) for line in shown],
     }
-    return json.dumps(report, indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+    return json_form(report) + "\n"
 
 
 def _scenario(lines: Timelines, line: Timeline) -> dict[str, Any]:

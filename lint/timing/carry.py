@@ -44,7 +44,7 @@ def _through(times: Times, part: StagePart, alive: On, *, least_s: float | None 
         return delayed(seen, least_s=least_s, most_s=delay.most)
     begins = [start for start, _ in alive.may_be_on]
     spans = [(start if start in begins else start + least_s, end + delay.most) for start, end in seen]
-    return both(joined(spans) if len(spans) > 1 else tuple(spans), alive.may_be_on)
+    return both(joined(spans), alive.may_be_on)
 
 
 class _Driven(NamedTuple):

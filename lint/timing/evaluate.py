@@ -198,7 +198,7 @@ class _Timing:
         self.forced = forced
 
     def settle_loop(self, group: Sequence[str]) -> None:
-        """What leans on itself: nothing is on at first, and what then follows is followed until it stays the same."""
+        """What leans on itself: nothing is on at first; what follows is followed till it rests, at most twice round."""
         for name in group:
             self.states[name] = _at_rest(self.net.parts[name])
         for _ in range(2 * len(group) + 2):
@@ -208,7 +208,9 @@ class _Timing:
             if before == [_comparable(self.states[name]) for name in group]:
                 return
         for name in group:
-            self.states[name] = _anything(self.net.parts[name])
+            part = self.net.parts[name]
+            given = isinstance(part, RailPart) and name in self.scenario.waveforms and not self.scenario.in_sequence
+            self.states[name] = self.state(part) if given else _anything(part)
 
     def state(self, part: TimedPart) -> State:
         """The state of one element, from those of what it leans on."""
@@ -315,7 +317,8 @@ class _Timing:
         above = self._above(rail, Bounds(works.least, works.least))
         if works.most == FOREVER_S:
             return above
-        too_high = self._above(rail, Bounds(works.most * (1 + 1e-12), works.most * (1 + 1e-12)))
+        top_v = works.most * (1 + 1e-12)
+        too_high = self._above(rail, Bounds(top_v, top_v))
         if not too_high.may_be_on:
             return above
         return On(both(above.may_be_on, too_high.may_be_off), either(above.may_be_off, too_high.may_be_on))

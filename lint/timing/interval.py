@@ -52,13 +52,13 @@ def either(first: Times, second: Times) -> Times:
 
 
 def _either_span(first: Times, second: Times) -> Times:
-    if second[0] < first[0]:
-        first, second = second, first
-    start, end = first[0]
-    next_start, next_end = second[0]
-    if next_start > end and next_start - end > _TOUCHING * abs(end):
-        return (first[0], second[0])
-    return first if next_end <= end else ((start, next_end),)
+    ((start, end),) = first
+    ((other_start, other_end),) = second
+    if other_start < start:
+        return _either_span(second, first)
+    if other_start > end and other_start - end > _TOUCHING * abs(end):
+        return (*first, *second)
+    return first if other_end <= end else ((start, other_end),)
 
 
 def joined(spans: Sequence[tuple[float, float]]) -> Times:
@@ -100,8 +100,8 @@ def both(first: Times, second: Times) -> Times:
 
 
 def _both_span(first: Times, second: Times) -> Times:
-    start, end = first[0]
-    other_start, other_end = second[0]
+    ((start, end),) = first
+    ((other_start, other_end),) = second
     if other_start <= start:
         if end <= other_end:
             return first

@@ -8,6 +8,7 @@ import msgspec
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.supply import Rail
+from tidegate.lint.physics.domain import DomainError, require_positive
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
 from tidegate.lint.quantity import Span
 from tidegate.lint.timing.parts import Bounds
@@ -44,10 +45,11 @@ class RailRamp(msgspec.Struct, frozen=True):
 
 
 class Ramps(msgspec.Struct):
-    """The ramps of all rails that have a nominal level; the facts that the others lack."""
+    """The ramps of all rails that have a nominal level; the facts that the others lack, or numbers that cannot be."""
 
     by_rail: dict[str, RailRamp] = msgspec.field(default_factory=dict)
     lacks: dict[str, tuple[str, ...]] = msgspec.field(default_factory=dict)
+    refused: dict[str, DomainError] = msgspec.field(default_factory=dict)
 
 
 def read_ramps(description: Description) -> Ramps:
@@ -56,11 +58,16 @@ def read_ramps(description: Description) -> Ramps:
     drawn = _drawn_a(description)
     for rail in description.rails.values():
         nominal_v = rail.nominal.middle if rail.nominal is not None else None
-        if nominal_v is None or nominal_v <= 0.0:
-            found.lacks[rail.id] = (rail.fact("nominal"),)
+        if nominal_v is None:
+            found.lacks[rail.id] = (rail.fact("nominal" if rail.nominal is None else "nominal.typ"),)
             continue
-        rise, lacks = _bounds(rail, rail.rise, "rise")
-        fall, fast, slow, limited_by = _fall(rail, nominal_v, drawn.get(rail.id))
+        try:
+            require_positive(nominal_v=nominal_v)
+            rise, lacks = _bounds(rail, rail.rise, "rise")
+            fall, fast, slow, limited_by = _fall(rail, nominal_v, drawn.get(rail.id))
+        except DomainError as error:
+            found.refused[rail.id] = error
+            continue
         found.by_rail[rail.id] = RailRamp(nominal_v, _up_v(rail, nominal_v), rise, fall, limited_by, lacks, fast, slow)
     return found
 
@@ -76,11 +83,22 @@ def _bounds(rail: Rail, span: Span | None, fact: str) -> tuple[Bounds, tuple[str
     if span is None:
         return Bounds(0.0, _INFINITE), (rail.fact(fact),)
     lacks = []
-    if not span.least:
+    if not _given(rise_s=span.least):
         lacks.append(rail.fact(f"{fact}.min"))
-    if not span.most:
+    if not _given(rise_s=span.most):
         lacks.append(rail.fact(f"{fact}.max"))
     return Bounds(span.least or 0.0, span.most or _INFINITE), tuple(lacks)
+
+
+def _given(**time: float | None) -> bool:
+    """Whether a time is given.
+
+    Raises: DomainError: where it is 0 s.
+    """
+    for name, value_s in time.items():
+        if value_s is not None:
+            require_positive(**{name: value_s})
+    return None not in time.values()
 
 
 def _fall(rail: Rail, nominal_v: float, drawn_a: float | None) -> tuple[Bounds, tuple[str, ...], tuple[str, ...], str]:
@@ -98,8 +116,8 @@ def _fall(rail: Rail, nominal_v: float, drawn_a: float | None) -> tuple[Bounds, 
         held_up_s = held_up_f * nominal_v / drawn_a
         if not least_s or held_up_s > least_s:
             least_s, limited_by = held_up_s, "its hold-up"
-    fast = () if least_s else (rail.fact("fall" if rail.fall is None else "fall.min"),)
-    slow = () if most_s else (rail.fact("fall" if rail.fall is None else "fall.max"),)
+    fast = () if _given(fall_s=least_s) else (rail.fact("fall" if rail.fall is None else "fall.min"),)
+    slow = () if _given(fall_s=most_s) else (rail.fact("fall" if rail.fall is None else "fall.max"),)
     least_s = least_s or 0.0
     return Bounds(least_s, max(most_s or _INFINITE, least_s)), fast, slow, limited_by
 

@@ -8,7 +8,6 @@ from typing import Any, Final
 import msgspec
 
 from tidegate.lint.case import Case, MissingFactsError
-from tidegate.lint.derived.levels.at_code import at_code
 from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference, StartUp
@@ -122,13 +121,6 @@ class _Reader:
 
     def window(self, ask: Callable[[Case, Comparator], Window], comparator: Comparator) -> Bounds:
         """A trip level between its ends, at the code the part ships with."""
-        if comparator.codes and comparator.trip is None:
-            code = comparator.ships_with
-            if code is None:
-                if self.path("ships_with") not in self.lacks.whole:
-                    self.must(None, "ships_with")
-                return NOTHING
-            comparator = at_code(comparator, code)
         case = Case(subject=comparator, rule="", level=Level.NOTE, description=self.description, graph=self.graph)
         try:
             found = ask(case, comparator)
@@ -293,10 +285,8 @@ def _load(reader: _Reader, load: Load) -> LoadPart:
         works.append((need.rail, Bounds(least, _INFINITE if most is None else most)))
     if not load.needs:
         reader.must(None, "needs")
-    before = len(reader.lacks.most), len(reader.lacks.least)
-    ready = reader.bounds("ready")
-    reader.lacks.ready, reader.lacks.most = reader.lacks.most[before[0] :], reader.lacks.most[: before[0]]
-    del reader.lacks.least[before[1] :]
+    ready = reader.bounds("ready")  # the first quantity to be read: what is noted by now is about it alone
+    reader.lacks.ready, reader.lacks.most, reader.lacks.least = reader.lacks.most, [], []
     return LoadPart(
         id=load.id, works=tuple(works), domain=load.domain,
         needs=_names(load.references, load.leans_on, load.gated_by), ready=ready,

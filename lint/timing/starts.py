@@ -112,7 +112,7 @@ def _out_of_order(setting: Setting, free: Sequence[Rail]) -> Iterator[Scenario]:
 
     def scenario(name: str, about: str, late: Collection[str]) -> Scenario:
         waveforms = {rail: last[rail] if rail in late else first[rail] for rail in first}
-        return Scenario(name, about, Scene.START, waveforms, in_sequence=True, rises_s=late_s if late else 0.0)
+        return Scenario(name, about, Scene.START, waveforms, in_sequence=True, rises_s=late_s)
 
     names = [rail.id for rail in free]
     if len(free) <= _FEW:

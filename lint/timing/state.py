@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from typing import Final, NamedTuple
 
-from tidegate.lint.timing.interval import ALWAYS, NEVER, Times, both, either, outside
+from tidegate.lint.timing.interval import ALWAYS, NEVER, Times, both, delayed, either, outside
 
 
 class On(NamedTuple):
@@ -66,17 +66,9 @@ def settled(part: On, *, least_s: float, most_s: float) -> On:
     """On when it has been on for a settling time that lies between two bounds."""
     if most_s == 0.0:
         return part
-    on = tuple((start + least_s, end) for start, end in part.may_be_on if start + least_s < end)
-    if not part.may_be_off:
-        return On(on, NEVER)
-    off = [part.may_be_off[0]]
-    off[0] = (off[0][0], off[0][1] + most_s)
-    for start, end in part.may_be_off[1:]:
-        if start <= off[-1][1]:
-            off[-1] = (off[-1][0], max(off[-1][1], end + most_s))
-        else:
-            off.append((start, end + most_s))
-    return On(on, tuple(off))
+    return On(
+        delayed(part.may_be_on, least_s=least_s, most_s=0.0), delayed(part.may_be_off, least_s=0.0, most_s=most_s)
+    )
 
 
 def lets_go(decision: Decision) -> On:

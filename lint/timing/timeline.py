@@ -206,6 +206,8 @@ class Timelines:
         return tuple(found)
 
     def _ramp_lacks(self, name: str, *, starts: bool, falls: bool, slow_falls: bool) -> Sequence[str]:
+        if name in self.ramps.refused:
+            raise self.ramps.refused[name]
         if name in self.ramps.lacks:
             return self.ramps.lacks[name]
         ramp = self.ramps.by_rail.get(name)
@@ -238,7 +240,7 @@ class Timelines:
     @cached_property
     def _any_ramp_lacks(self) -> bool:
         ramps = self.ramps.by_rail.values()
-        return bool(self.ramps.lacks) or any(
+        return bool(self.ramps.lacks or self.ramps.refused) or any(
             ramp.start_lacks or ramp.fast_fall_lacks or ramp.slow_fall_lacks for ramp in ramps
         )
 

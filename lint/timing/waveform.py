@@ -1,9 +1,8 @@
-"""Piecewise-linear supplies, solved exactly: where they cross a level, how low and how high they go."""
+"""Piecewise-linear supplies, solved exactly: their level at a time, and where they cross one."""
 
 from __future__ import annotations
 
 from bisect import bisect_right
-from collections.abc import Iterable
 
 import msgspec
 
@@ -66,33 +65,6 @@ class Waveform(msgspec.Struct, frozen=True):
         if is_above:
             spans.append((start_s, FOREVER_S))
         return tuple(spans)
-
-    def least_v(self, *, from_s: float, to_s: float) -> float:
-        """The lowest level between two times, in V."""
-        return min(self._levels_v(from_s, to_s))
-
-    def most_v(self, *, from_s: float, to_s: float) -> float:
-        """The highest level between two times, in V."""
-        return max(self._levels_v(from_s, to_s))
-
-    def _levels_v(self, from_s: float, to_s: float) -> Iterable[float]:
-        yield self.level_v(from_s)
-        yield self.level_v(to_s)
-        yield from (level_v for at_s, level_v in self.points if from_s <= at_s <= to_s)
-
-    def shifted(self, by_s: float) -> Waveform:
-        """The same supply, later by a time."""
-        return Waveform(tuple((at_s + by_s, level_v) for at_s, level_v in self.points))
-
-    def then(self, other: Waveform) -> Waveform:
-        """This supply, and the other one from its last point on."""
-        end_s = self.points[-1][0]
-        return Waveform(self.points + other.shifted(end_s - other.points[0][0]).points)
-
-    @property
-    def end_s(self) -> float:
-        """The time after which the supply rests, in s."""
-        return self.points[-1][0]
 
 
 def _crossing_s(level_v: float, from_s: float, from_v: float, to_s: float, to_v: float) -> float:

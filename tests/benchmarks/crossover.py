@@ -1,13 +1,13 @@
-"""How long a full-factorial sweep of 10 000 corners takes, beside SciPy's root finder in a loop over the same corners.
+"""A full-factorial sweep of 10 000 corners, beside SciPy's root finder in a loop over the same corners.
 
-Run by hand: ``python tests/benchmarks/crossover.py``. The circuits are invented.
+The circuits are invented.
 """
 
 from __future__ import annotations
 
 import math
 import time
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 
 import numpy as np
 from scipy.optimize import brentq
@@ -21,7 +21,8 @@ K_OVER_Q = 1.380649e-23 / 1.602176634e-19
 SLOPE_FACTOR, GAIN, FALL_V_PER_K, T_REF_K = 1.15, 26e-6, 0.35e-3, 298.15
 SATURATION_A, GAP_EV, EXPONENT = 8e-19, 1.17, 3.0
 TENTH = np.linspace(0.0, 1.0, 10)
-MOST_REPEATS = 20
+REPEATS = 20
+SAME_V = 1e-9
 
 
 def between(low: float, high: float) -> tuple[float, ...]:
@@ -84,26 +85,8 @@ def junction_loop(corners: dict[str, FloatArray]) -> list[float]:
     return found
 
 
-def measure(name: str, swept: Callable[[], FloatArray], looped: Callable[[], list[float]]) -> None:
-    """Print both times, their ratio, and how far apart the levels are."""
-    times_s = []
-    for _ in range(MOST_REPEATS):
-        start_s = time.perf_counter()
-        at_once_v = swept()
-        times_s.append(time.perf_counter() - start_s)
-    start_s = time.perf_counter()
-    one_by_one_v = looped()
-    loop_s = time.perf_counter() - start_s
-    apart_v = float(np.max(np.abs(at_once_v - np.array(one_by_one_v))))
-    sweep_s = sorted(times_s)[MOST_REPEATS // 2]
-    print(
-        f"{name:<11} {at_once_v.size} corners: {sweep_s * 1e3:.2f} ms at once, {loop_s * 1e3:.0f} ms in a loop, "
-        f"{loop_s / sweep_s:.0f} times; {apart_v:.1e} V apart at most"
-    )
-
-
-def main() -> None:
-    """Measure both devices."""
+def at_once_and_one_by_one() -> Iterator[tuple[str, float, float]]:
+    """Each device, with the processor time of a sweep and of a loop over the same corners, in s."""
     corners = factorial_corners(SPANS)
     mos = level_of(facts(TransistorFacts(T_REF_K, SLOPE_FACTOR)))
     diode = level_of(facts(JunctionFacts(T_REF_K, EXPONENT, GAP_EV, 1.0)))
@@ -113,9 +96,18 @@ def main() -> None:
         "gain": np.asarray(GAIN),
         "saturation current": np.asarray(SATURATION_A),
     }
-    measure("transistor", lambda: mos(arrays), lambda: transistor_loop(corners))
-    measure("junction", lambda: diode(arrays), lambda: junction_loop(corners))
+    yield "transistor", *_times_s(lambda: mos(arrays), lambda: transistor_loop(corners))
+    yield "junction", *_times_s(lambda: diode(arrays), lambda: junction_loop(corners))
 
 
-if __name__ == "__main__":
-    main()
+def _times_s(swept: Callable[[], FloatArray], looped: Callable[[], list[float]]) -> tuple[float, float]:
+    times_s = []
+    for _ in range(REPEATS):
+        start_s = time.process_time()
+        at_once_v = swept()
+        times_s.append(time.process_time() - start_s)
+    start_s = time.process_time()
+    one_by_one_v = looped()
+    loop_s = time.process_time() - start_s
+    assert np.max(np.abs(at_once_v - np.array(one_by_one_v))) < SAME_V
+    return min(times_s), loop_s

@@ -5,6 +5,7 @@ from __future__ import annotations
 import contextlib
 import io
 import os
+from collections.abc import Iterator
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -22,17 +23,29 @@ class Done:
     stderr: str
 
 
-def tidegate(*arguments: str, cwd: Path = ROOT, columns: int = 80) -> Done:
-    """Call the command line in a folder, with output and errors that are no terminal."""
-    out, err = io.StringIO(), io.StringIO()
-    width = os.environ.get("COLUMNS")
-    os.environ["COLUMNS"] = str(columns)
-    try:
-        with contextlib.chdir(cwd), contextlib.redirect_stdout(out), contextlib.redirect_stderr(err):
-            try:
-                status = main(arguments)
-            except SystemExit as left:  # argparse leaves so where the arguments are wrong
-                status = int(left.code or 0)
-    finally:
-        os.environ.pop("COLUMNS") if width is None else os.environ.update(COLUMNS=width)
+class Terminal(io.StringIO):
+    """What is shown on a terminal."""
+
+    def isatty(self) -> bool:
+        return True
+
+
+def tidegate(*arguments: str, cwd: Path = ROOT, columns: int | None = None, colour: bool = False) -> Done:
+    """Call the command line in a folder; where columns are given, the output is a terminal so wide."""
+    out, err = io.StringIO() if columns is None else Terminal(), io.StringIO()
+    changes = {"COLUMNS": str(columns or 80), "NO_COLOR": "" if colour else "1", "TERM": "xterm"}
+    streams = contextlib.redirect_stdout(out), contextlib.redirect_stderr(err)
+    with _environment(changes), contextlib.chdir(cwd), streams[0], streams[1]:
+        status = main(arguments)
     return Done(status, out.getvalue(), err.getvalue())
+
+
+@contextlib.contextmanager
+def _environment(changes: dict[str, str]) -> Iterator[None]:
+    before = {name: os.environ.get(name) for name in changes}
+    os.environ.update(changes)
+    try:
+        yield
+    finally:
+        for name, value in before.items():
+            os.environ.pop(name) if value is None else os.environ.update({name: value})

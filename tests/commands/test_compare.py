@@ -44,7 +44,7 @@ def test_exit_status_and_text(pair: Path) -> None:
     [
         (["old.yaml", "none.yaml"], "none.yaml: cannot be read (No such file or directory); "),
         (["HEAD:old.yaml", "new.yaml"], "HEAD:old.yaml: git has no such revision or file ("),
-        (["old.yaml", "new.yaml", "--pack", "none.py"], "rule pack none.py: no such file\n"),
+        (["old.yaml", "new.yaml", "--pack", "none.py"], "new.yaml: --pack: rule pack none.py: no such file; "),
         (["old.yaml", "new.yaml", "--settings", "none.yaml"], "none.yaml: cannot be read ("),
     ],
 )

@@ -31,7 +31,7 @@ comparators: {uv: {role: under_voltage, watches: avdd, domain: aon, hysteresis: 
 """
 
 
-def review(*arguments: str, cwd: Path, columns: int = 80) -> Done:
+def review(*arguments: str, cwd: Path, columns: int | None = None) -> Done:
     return tidegate("review", *arguments, cwd=cwd, columns=columns)
 
 

@@ -17,7 +17,7 @@ from tests.graph.random_graphs import Successors, as_networkx, chain, graphs
 from tidegate.lint.graph.cycles import MeanCycle, greatest_mean_cycle, loops, strong_components
 
 Weights = Mapping[str, Mapping[str, float]]
-DEEP = 50_000
+DEEP = 20_000
 
 
 @given(graphs(most=9))
@@ -125,3 +125,35 @@ def test_long_ring_has_the_mean_of_its_edges() -> None:
     assert found is not None
     assert len(found.nodes) == len(steps)
     assert found.mean == pytest.approx(math.fsum(steps) / len(steps), abs=1e-12)
+
+
+def test_of_cycles_as_good_as_each_other_the_first_is_told() -> None:
+    apart = {"a": {"a": 1.0}, "b": {"b": 1.0}}
+    assert greatest_mean_cycle(apart) == MeanCycle(("a",), 1.0)
+    together = {"a": {"a": 1.0, "b": 0.0}, "b": {"b": 1.0, "a": 0.0}}
+    assert greatest_mean_cycle(together) == MeanCycle(("a",), 1.0)
+
+
+def test_a_cycle_is_told_from_where_it_was_first_entered() -> None:
+    # From a the heavier edge enters at c; the way by d gains more, and leads to the same cycle of mean 2.
+    weights = {"a": {"c": 1.0, "d": 0.5}, "c": {"d": 1.0}, "d": {"c": 3.0, "a": -9.0}}
+    assert greatest_mean_cycle(weights) == MeanCycle(("c", "d"), 2.0)
+
+
+@pytest.mark.parametrize("count", [3, 10, 25])
+def test_a_gain_that_takes_a_round_a_node_to_come_through_is_waited_for(count: int) -> None:
+    """Only x1 to xn, y and back is good, and each x learns so a round after the next: n rounds without a better mean.
+
+    c waits on itself with 0; c to x1 costs 5; y to c brings 10; from each x the way back to c looks good at first.
+    """
+    names = [f"x{number}" for number in range(1, count + 1)]
+    weights: dict[str, dict[str, float]] = {
+        name: {"c": 0.1 * (count - number), next_: 0.0}
+        for number, (name, next_) in enumerate(zip(names, [*names[1:], "y"], strict=True))
+    }
+    weights |= {"y": {"c": 10.0}, "c": {"c": 0.0, "x1": -5.0}}
+    found = greatest_mean_cycle(weights)
+    assert found is not None
+    assert set(found.nodes) == {"c", "y", *names}
+    assert found.mean == pytest.approx(5.0 / (count + 2))
+    hash(found)  # cannot be changed

@@ -7,7 +7,7 @@ from collections import Counter
 import pytest
 import yaml
 
-from tests.rules.sound import SOUND, patched
+from tests.rules.sound import SOUND, patched, without
 from tidegate.lint.description.load import load
 from tidegate.lint.graph.dependency import SECTIONS, Graph, build
 from tidegate.lint.graph.edge import EdgeKind
@@ -172,3 +172,90 @@ def test_once_is_worked_out_once() -> None:
 
     assert graph.once(count) == graph.once(count) == len(graph.elements)
     assert asked == [graph]
+
+
+# One field each, on top of the sound example or in place of what stands there; the edges it makes, written by hand.
+FIELDS = [
+    ("rails: {avdd: {made_by: ref_fast}}", {"avdd made by ref_fast rails.avdd.made_by"}),
+    ("rails: {avdd: {after: vcore}}", {"avdd comes up after vcore rails.avdd.after"}),
+    ("domains: {core: {kind: switched, switched_by: uv}}", {"core gated by uv domains.core.switched_by"}),
+    ("references: {ref_fast: {bias: bias_main}}", {"ref_fast biased by bias_main references.ref_fast.bias"}),
+    ("references: {ref_fast: {bias: none}}", set()),
+    ("references: {ref_fast: {gated_by: por_n}}", {"ref_fast gated by por_n references.ref_fast.gated_by"}),
+    (
+        "references: {ref_fast: {leans_on: [uv, adc]}}",
+        {"ref_fast leans on uv references.ref_fast.leans_on", "ref_fast leans on adc references.ref_fast.leans_on"},
+    ),
+    ("references: {ref_fast: {leans_on: []}}", set()),
+    ("biases: {bias_start: {source: ref_main}}", {"bias_start biased by ref_main biases.bias_start.source"}),
+    ("biases: {bias_start: {gated_by: adc}}", {"bias_start gated by adc biases.bias_start.gated_by"}),
+    ("biases: {bias_start: {leans_on: [gather]}}", {"bias_start leans on gather biases.bias_start.leans_on"}),
+    ("comparators: {uv: {armed_by: por}}", {"uv gated by por comparators.uv.armed_by"}),
+    ("comparators: {uv: {gated_by: por_n}}", {"uv gated by por_n comparators.uv.gated_by"}),
+    ("comparators: {por: {reference: ref_main}}", {"por takes its reference from ref_main comparators.por.reference"}),
+    ("output_stages: {gather: {gated_by: bias_main}}", {"gather gated by bias_main output_stages.gather.gated_by"}),
+    ("output_stages: {por_out: {driven_by: [por, ov]}}", {"ov drives por_out output_stages.por_out.driven_by"}),
+    ("resets: {por_n: {driven_by: [rst_out, por]}}", {"por drives por_n resets.por_n.driven_by"}),
+    (
+        "resets: {por_n: {guards: [adc, core_regulator, core]}}",
+        {"por_n guards core resets.por_n.guards"},
+    ),
+    ("loads: {adc: {gated_by: uv}}", {"adc gated by uv loads.adc.gated_by"}),
+    (
+        "loads: {core_logic: {references: [ref_fast]}}",
+        {"core_logic takes its reference from ref_fast loads.core_logic.references"},
+    ),
+    ("loads: {adc: {leans_on: [uv_core]}}", {"adc leans on uv_core loads.adc.leans_on"}),
+    (
+        "loads: {core_logic: {needs: [{rail: vcore}, {rail: avdd}]}}",
+        {"core_logic supplied by avdd loads.core_logic.needs.1.rail"},
+    ),
+    ("bypasses: {skip_core: {reset_by: por_n}}", {"skip_core cleared by por_n bypasses.skip_core.reset_by"}),
+    ("bypasses: {skip_core: {leans_on: [ref_main]}}", {"skip_core leans on ref_main bypasses.skip_core.leans_on"}),
+    ("neighbours: {core_return: {mutual: true}}", {"uv_core couples to core_out neighbours.core_return.mutual"}),
+    ("neighbours: {core_return: {mutual: false}}", set()),
+]  # fmt: skip
+
+
+def told(graph: Graph) -> Counter[str]:
+    return Counter(f"{edge.tail} {edge.kind.forwards} {edge.head} {edge.fact}" for edge in graph.edges())
+
+
+@pytest.mark.parametrize(("patch", "expected"), FIELDS, ids=lambda value: value if isinstance(value, str) else "")
+def test_each_field_makes_its_edges_and_no_other(patch: str, expected: set[str]) -> None:
+    before, after = told(sound()), told(build(patched(patch).description))
+    assert set(after - before) == expected
+    assert not before - after
+
+
+@pytest.mark.parametrize(
+    ("fact", "edges"),
+    [
+        ("neighbours.uv_beside_ov.mutual", {"ov couples to uv neighbours.uv_beside_ov.mutual"}),
+        ("comparators.uv.reference", {"uv takes its reference from ref_fast comparators.uv.reference"}),
+        ("domains.core.rail", {"core supplied by vcore domains.core.rail"}),
+    ],
+)
+def test_a_fact_that_is_not_given_makes_no_edge(fact: str, edges: set[str]) -> None:
+    before, after = told(sound()), told(build(patched(without(fact)).description))
+    assert set(before - after) == edges
+    assert not after - before
+
+
+def test_an_element_without_edges_has_none() -> None:
+    graph = build(patched("rails: {vx: {nominal: 1 V}}").description)
+    assert (
+        list(graph.out("vx")) == list(graph.into("vx")) == list(graph.needs("vx")) == list(graph.needed_by("vx")) == []
+    )
+    assert list(graph.out("uv_beside_ov")) == []  # a pair of neighbours is an element, and no end of an edge
+
+
+def test_which_way_each_relation_leans() -> None:
+    """By hand: what an element cannot be up or judged without; watching, overriding and coupling are none of it."""
+    tail = {kind.name for kind in EdgeKind if kind.tail_leans}
+    head = {kind.name for kind in EdgeKind if kind.head_leans}
+    assert tail == {
+        "SUPPLIED_BY", "BIASED_BY", "TAKES_REFERENCE_FROM", "LEANS_ON", "GATED_BY", "MADE_BY", "COMES_AFTER",
+        "CLEARED_BY",
+    }  # fmt: skip
+    assert head == {"DRIVES", "GUARDS"}

@@ -6,9 +6,9 @@ import networkx as nx
 from hypothesis import given, settings
 
 from tests.graph.random_graphs import Successors, as_networkx, chain, graphs
-from tidegate.lint.graph.dominators import immediate_dominators, on_every_way
+from tidegate.lint.graph.dominators import immediate_dominators, on_every_way, on_every_way_to_each
 
-DEEP = 50_000
+DEEP = 20_000
 
 
 @given(graphs(most=9))
@@ -37,6 +37,9 @@ def test_on_every_way_is_whatever_cuts_the_goal_off(successors: Successors) -> N
         lengths = nx.single_source_shortest_path_length(whole, "n0")
         distances = [lengths[node] for node in chain_found]
         assert distances == sorted(distances)  # from the root on
+    goals = list(successors)[1:]
+    singly = [on_every_way(successors, "n0", goal) for goal in goals]
+    assert on_every_way_to_each(successors, "n0", goals) == singly
 
 
 def test_a_goal_that_is_the_root_or_unknown_has_nothing_before_it() -> None:

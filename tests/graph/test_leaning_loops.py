@@ -33,6 +33,7 @@ def test_a_ring_without_start_up_circuit_is_a_deadlock() -> None:
 def test_one_start_up_circuit_starts_the_ring() -> None:
     loop = loop_of(RING.format(ref="none", bias=CIRCUIT), "ref_main")
     assert loop == LeaningLoop(("ref_main", "bias_main"), ("bias_main",), (), (), ())
+    hash(loop)  # cannot be changed
 
 
 def test_what_is_not_said_is_neither() -> None:

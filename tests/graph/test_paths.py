@@ -12,7 +12,7 @@ from tests.graph.random_graphs import Successors, as_networkx, chain, graphs
 from tidegate.lint.graph.edge import Edge, EdgeKind, Hop, path_text
 from tidegate.lint.graph.paths import Neighbours, Reach, cut, loop_through, step_onto
 
-DEEP = 50_000
+DEEP = 20_000
 
 
 def along(successors: Successors) -> Neighbours:

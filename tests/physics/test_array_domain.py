@@ -35,6 +35,7 @@ def test_good_entries_come_back_as_they_are(check: Callable[..., FloatArray], go
         (finite, math.nan, "x must be a finite number (found nan)"),
         (finite, np.array([1.0, math.inf]), "x must be a finite number (found inf at index (1,))"),
         (positive, np.array([[1.0, 2.0], [0.0, 3.0]]), "x must be greater than 0 (found 0.0 at index (1, 0))"),
+        (positive, np.array([1.0, 0.0, -1.0]), "x must be greater than 0 (found 0.0 at index (1,))"),
         (positive, math.inf, "x must be greater than 0 (found inf)"),
         (positive, math.nan, "x must be greater than 0 (found nan)"),
         (not_negative, -1.0, "x must be at least 0 (found -1.0)"),

@@ -2,6 +2,7 @@ from __future__ import annotations
 
 import math
 
+import mpmath
 import numpy as np
 import pytest
 from hypothesis import given, settings
@@ -181,10 +182,118 @@ def test_level_moves_with_each_parameter_as_it_must(
     assert level_v(ratio=ratio * 1.01) < here_v
 
 
-def test_no_crossing_is_never_filled_in() -> None:
-    weak = Junction(saturation_a=1e-3, emission_v=0.0257)
-    with pytest.raises(NoCrossingError, match="no crossing: the device never gets ahead of the divided supply"):
-        divider_crossing_v(weak, series_ohm=1e6, divider_ratio=0.5, offset_v=0.0)
+def scipy_crossing_v(device: Device, r_ohm: float, ratio: float, offset_v: float, low_v: float, high_v: float) -> float:
+    """SciPy's brentq on the voltage of the device, its current being what the resistor lets through."""
+
+    def ahead_v(device_v: float) -> float:
+        supply_v = (device_v + offset_v) / ratio
+        return device_v - device.voltage_v((supply_v - device_v) / r_ohm)
+
+    return (brentq(ahead_v, low_v, high_v, xtol=1e-14, rtol=1e-14) + offset_v) / ratio
+
+
+# Devices whose voltage lies above the first guess of 1 V; the last two favour the divider by so much that at first, or
+# at first and at 2 V and at 4 V, no current would flow at all.
+HIGH_DEVICES = (
+    pytest.param(DiodeConnected(0.9, 0.07, 7e-8), 0.0, 0.95, 2.0, id="just above 1 V"),
+    pytest.param(DiodeConnected(3.0, 0.07, 7e-8), 0.0, 2.0, 6.0, id="3 V"),
+    pytest.param(DiodeConnected(20.0, 0.07, 7e-8), 0.0, 15.0, 40.0, id="20 V"),
+    pytest.param(Junction(1e-17, 0.104), -0.49999999, 1.5, 4.0, id="stack of four, -0.5 V"),
+    pytest.param(DiodeConnected(5.0, 0.07, 7e-8), -2.0, 4.5, 8.0, id="5 V, -2 V"),
+)
+
+
+@pytest.mark.parametrize(("device", "offset_v", "low_v", "high_v"), HIGH_DEVICES)
+def test_crossing_far_above_the_first_guess(device: Device, offset_v: float, low_v: float, high_v: float) -> None:
+    found_v = divider_crossing_v(device, series_ohm=1e6, divider_ratio=0.5, offset_v=offset_v)
+    assert found_v == pytest.approx(scipy_crossing_v(device, 1e6, 0.5, offset_v, low_v, high_v), rel=1e-12)
+
+
+def test_the_upper_of_two_crossings_just_above_the_first_guess() -> None:
+    # The offset is such that at 1 V the device is a hair behind and its voltage rises by 1.5 V a volt; so it gets ahead
+    # just above and is overtaken a little further up. The constants place the point there, SciPy finds the crossing.
+    emission_v, ratio, r_ohm, behind_v = 0.1, 0.5, 1e6, 1e-3
+    share = (1.0 - ratio) / (ratio * r_ohm)
+    current_a = share * emission_v / 1.5
+    device = Junction(current_a * math.exp(-(1.0 - behind_v) / emission_v), emission_v)
+    offset_v = (current_a - share) * ratio * r_ohm
+    found_v = divider_crossing_v(device, series_ohm=r_ohm, divider_ratio=ratio, offset_v=offset_v)
+    assert found_v == pytest.approx(scipy_crossing_v(device, r_ohm, ratio, offset_v, 1.02, 2.0), rel=1e-10)
+
+
+@pytest.mark.parametrize(
+    ("device", "offset_v"),
+    [
+        pytest.param(Junction(saturation_a=1e-3, emission_v=0.0257), 0.0, id="leaks more than the resistor brings"),
+        pytest.param(Junction(saturation_a=1e-17, emission_v=0.0257), -0.5, id="junction, the divider 0.5 V ahead"),
+        pytest.param(DiodeConnected(0.6, 0.07, 5e-8), -0.5, id="transistor, the divider 0.5 V ahead"),
+        pytest.param(DiodeConnected(-0.2, 0.07, 5e-8), 0.0, id="transistor that never turns off"),
+    ],
+)
+def test_no_crossing_is_never_filled_in(device: Device, offset_v: float) -> None:
+    with pytest.raises(NoCrossingError) as refused:
+        divider_crossing_v(device, series_ohm=1e6, divider_ratio=0.5, offset_v=offset_v)
+    assert str(refused.value) == "no crossing: the device never gets ahead of the divided supply"
+
+
+@pytest.mark.parametrize("behind_v", [10.0**exponent for exponent in range(-9, -1)])
+def test_a_device_that_all_but_gets_ahead(behind_v: float) -> None:
+    # As for crossover: R IS is half of n V_T (1 - a)/a, and at -(1 - a) n V_T (0.5 - ln 0.5 - 1) the device touches.
+    device = Junction(0.5 * 0.6 / 0.4 * 0.026 / 1e6, 0.026)
+    touching_v = -0.6 * 0.026 * (0.5 - math.log(0.5) - 1.0)
+    with pytest.raises(NoCrossingError):
+        divider_crossing_v(device, series_ohm=1e6, divider_ratio=0.4, offset_v=touching_v - behind_v)
+    if behind_v < 1e-3:
+        found_v = divider_crossing_v(device, series_ohm=1e6, divider_ratio=0.4, offset_v=touching_v + behind_v)
+        branch = fed_branch.DiodeBranch(1e6, device.saturation_a, 0.026)
+        expected_v = crossover.divider_diode_trip_v(branch, divider_ratio=0.4, offset_v=touching_v + behind_v)
+        # Where two crossings all but meet, a level is good to the square root of a rounding.
+        assert found_v == pytest.approx(float(expected_v), rel=1e-6)
+
+
+def test_a_level_that_no_number_holds_is_refused() -> None:
+    # 2^199 V, 8.03e59 V, is the last that is tried; such a device is all threshold, and a half of the supply is it.
+    found_v = divider_crossing_v(DiodeConnected(6e59, 0.07, 5e-8), series_ohm=1e6, divider_ratio=0.5, offset_v=0.0)
+    assert found_v == pytest.approx(1.2e60, rel=1e-12)
+    with pytest.raises(DomainError) as refused:
+        divider_crossing_v(DiodeConnected(1.2e60, 0.07, 5e-8), series_ohm=1e6, divider_ratio=0.5, offset_v=0.0)
+    assert str(refused.value) == "divider_ratio, series_ohm and the device have no level within the range of a number"
+
+
+# Powers of two, so that m V_r/I_0 is exact: 2^20 ohm.
+EXACT = {"mirror_ratio": 1.0, "start_v": 0.3, "rise_v": 0.5, "regulated_a": 2.0**-21}
+
+
+def test_the_reference_must_rise_faster_than_the_crude_current_and_not_as_fast() -> None:
+    device = Junction(saturation_a=1e-17, emission_v=0.0257)
+    for series_ohm in (2.0**20, 2.0**20 - 0.5):
+        with pytest.raises(NoCrossingError, match=r"^no crossing: the reference current rises"):
+            reference_crossing_v(device, series_ohm=series_ohm, **EXACT)
+    # Half an ohm is left, on which almost nothing drops: the current is that of the diode at 0.3 V, by Shockley's law.
+    found_v = reference_crossing_v(device, series_ohm=2.0**20 + 0.5, **EXACT)
+    assert found_v - 0.3 == pytest.approx(2.0**20 * 1e-17 * math.expm1(0.3 / 0.0257), rel=1e-6)
+
+
+@pytest.mark.parametrize(
+    "device", [Junction(1e-17, 0.0257), Junction(1e-9, 0.0257), DiodeConnected(0.5, 0.07, 5e-8)], ids=repr
+)
+@pytest.mark.parametrize("current_a", [1e-12, 1e-9, 1e-7, 1e-4])
+def test_slope_against_a_difference_quotient_of_mpmath(device: Device, current_a: float) -> None:
+    def voltage_v(i: mpmath.mpf) -> mpmath.mpf:
+        if isinstance(device, Junction):
+            return device.emission_v * mpmath.log1p(i / device.saturation_a)
+        return device.threshold_v + device.scale_v * mpmath.log(mpmath.expm1(mpmath.sqrt(i / device.specific_a)))
+
+    with mpmath.workdps(40):
+        expected_ohm = float(
+            mpmath.diff(voltage_v, mpmath.mpf(current_a), h=mpmath.mpf(current_a) * mpmath.mpf("1e-12"))
+        )
+    assert device.slope_ohm(current_a) == pytest.approx(expected_ohm, rel=1e-9)
+
+
+def test_a_level_within_a_billionth_of_the_thermal_scale_is_rounding() -> None:
+    assert Junction(1e-17, 0.026).least_v == pytest.approx(26e-12, rel=1e-12)
+    assert DiodeConnected(0.5, 0.07, 5e-8).least_v == pytest.approx(70e-12, rel=1e-12)
 
 
 @pytest.mark.parametrize(

@@ -148,6 +148,41 @@ def test_a_leaky_diode_never_gets_ahead() -> None:
         divider_diode_trip_v(DiodeBranch(1e6, 2.0 * limit_a, 0.026), divider_ratio=0.4, offset_v=0.0)
 
 
+def test_a_diode_that_leaks_a_hair_less_than_it_may_gets_ahead_at_nanovolts() -> None:
+    # To first order the crossing of a diode of IS = (1 - d) of the limit lies at 2 d n V_T/a: 13 nV here.
+    limit_a = 0.026 / 1e6 * (1.0 - 0.4) / 0.4
+    found_v = float(
+        divider_diode_trip_v(DiodeBranch(1e6, limit_a * (1.0 - 1e-7), 0.026), divider_ratio=0.4, offset_v=0.0)
+    )
+    assert found_v == pytest.approx(2e-7 * 0.026 / 0.4, rel=0.2)  # the square root of a rounding, 1.5e-8, of n V_T/a
+
+
+def test_a_transistor_that_gets_ahead_at_nanovolts_is_not_taken_for_rounding() -> None:
+    # SciPy finds the offset for which the balance of currents holds at 5 nV.
+    branch, ratio, level_v = MosBranch(2e6, -0.0519, 1.3, 5e-8, 0.026), 0.5, 5e-9
+
+    def surplus_a(offset_v: float) -> float:
+        gate_v = ratio * level_v - offset_v
+        inversion = math.log1p(math.exp((gate_v + 0.0519) / (2.0 * 1.3 * 0.026)))
+        return 5e-8 * inversion**2 - (level_v - gate_v) / 2e6
+
+    offset_v = brentq(surplus_a, 0.0, 0.1, xtol=1e-17, rtol=1e-15)
+    found_v = float(divider_mos_trip_v(branch, divider_ratio=ratio, offset_v=offset_v))
+    assert found_v == pytest.approx(level_v, rel=1e-3)
+
+
+def test_an_offset_that_leaves_the_diode_always_a_little_behind() -> None:
+    # R IS is half of n V_T (1 - a)/a; by hand, the diode is nearest at the supply where its slope is that of the line,
+    # and there -3.01 mV make it touch: -(1 - a) n V_T (0.5 - ln 0.5 - 1).
+    touching_v = -0.6 * 0.026 * (0.5 - math.log(0.5) - 1.0)
+    branch = DiodeBranch(1e6, 0.5 * 0.6 / 0.4 * 0.026 / 1e6, 0.026)
+    assert touching_v == pytest.approx(-3.01e-3, abs=5e-6)
+    assert float(divider_diode_trip_v(branch, divider_ratio=0.4, offset_v=touching_v + 1e-6)) > 0.0
+    for behind_v in (1e-6, 2e-3):
+        with pytest.raises(NoCrossingError):
+            divider_diode_trip_v(branch, divider_ratio=0.4, offset_v=touching_v - behind_v)
+
+
 def test_an_offset_that_favours_the_divider_too_much_leaves_no_crossing() -> None:
     diode = DiodeBranch(1e6, 9e-19, 0.026)
     assert float(divider_diode_trip_v(diode, divider_ratio=0.45, offset_v=-0.05)) > 1.0
@@ -174,6 +209,16 @@ def test_levels_move_the_way_they_must() -> None:
     ):
         assert np.diff(trip_v(divider_ratio=ratios, offset_v=0.0))[0] < 0.0
         assert np.diff(trip_v(divider_ratio=0.45, offset_v=offsets))[0] > 0.0
+
+
+def test_branches_of_corners_are_told_apart_without_comparing_their_arrays() -> None:
+    ohm = np.array([1e6, 2e6])
+    for one, other in (
+        (DiodeBranch(ohm, 1e-17, 0.026), DiodeBranch(ohm, 1e-17, 0.026)),
+        (MosBranch(ohm, 0.6, 1.3, 5e-8, 0.026), MosBranch(ohm, 0.6, 1.3, 5e-8, 0.026)),
+    ):
+        assert one != other
+        assert len({one, other}) == 2
 
 
 # --- crude current against a reference's own ---------------------------------------------------------------------
@@ -260,6 +305,26 @@ def test_a_reference_that_rises_slower_than_the_crude_current_never_stays_ahead(
             branch, mirror_ratio=2.0, start_v=0.9, rise_v=np.array([0.4, 4.1]), regulated_a=np.array([8e-6, 8e-6])
         )
     assert caught.value.exists.tolist() == [True, False]
+
+
+def test_a_reference_must_rise_faster_than_the_crude_current_and_not_as_fast() -> None:
+    # Powers of two, so that m V_r/I_0 is exactly 2^20 ohm; half an ohm more is left, on which almost nothing drops.
+    series_ohm = 2.0**20 + np.array([0.5, 0.0, -0.5])
+    exact = {"mirror_ratio": 1.0, "start_v": 0.3, "rise_v": 0.5, "regulated_a": 2.0**-21}
+    with pytest.raises(NoCrossingError) as caught:
+        reference_overtakes_v(DiodeBranch(series_ohm, 1e-17, 0.0257), **exact)
+    assert caught.value.exists.tolist() == [True, False, False]
+    found_v = reference_overtakes_v(DiodeBranch(series_ohm[:1], 1e-17, 0.0257), **exact)
+    assert found_v[0] - 0.3 == pytest.approx(2.0**20 * 1e-17 * math.expm1(0.3 / 0.0257), rel=1e-6)
+
+
+def test_a_reference_that_regulates_at_the_crude_current_still_releases() -> None:
+    branch = DiodeBranch(1e6, 9e-19, 0.0257)
+    crude_a = float(branch.current_a(0.9))
+    at_once = {"mirror_ratio": 1.0, "start_v": 0.9, "rise_v": 0.0}
+    assert float(reference_overtakes_v(branch, regulated_a=crude_a, **at_once)) == 0.9
+    with pytest.raises(NoCrossingError):
+        reference_overtakes_v(branch, regulated_a=math.nextafter(crude_a, 0.0), **at_once)
 
 
 def test_corners_of_the_reference_alone_broadcast() -> None:

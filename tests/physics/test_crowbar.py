@@ -11,11 +11,9 @@ from scipy.optimize import brentq
 
 from tidegate.lint.physics.crowbar import (
     Inverter,
-    beta_a_per_v2,
     conduction_time_s,
     current_at_v,
     edge_charge_c,
-    edge_energy_j,
     peak_current_a,
     peak_equivalent_time_s,
     switching_threshold_v,
@@ -50,7 +48,7 @@ VEENDRICK_TABLE = (
     ids=[f"veendrick-1984-second-hand-{row[0] * 1e12:.0f}ps" for row in VEENDRICK_TABLE],
 )
 def test_short_circuit_power_of_veendricks_table(edge_s: float, power_nw: float, share_percent: float) -> None:
-    power_w = 2.0 * edge_energy_j(VEENDRICK, edge_s=edge_s) * VEENDRICK_CLOCK_HZ
+    power_w = 2.0 * VEENDRICK.supply_v * edge_charge_c(VEENDRICK, edge_s=edge_s) * VEENDRICK_CLOCK_HZ
     switching_w = VEENDRICK_LOAD_F * VEENDRICK.supply_v**2 * VEENDRICK_CLOCK_HZ
 
     assert switching_w * 1e9 == pytest.approx(1266.0, abs=0.5)  # as printed, to the last digit
@@ -59,20 +57,14 @@ def test_short_circuit_power_of_veendricks_table(edge_s: float, power_nw: float,
     assert 100.0 * power_w / switching_w == pytest.approx(share_percent, abs=0.051)
 
 
-def test_beta_of_veendricks_device_from_its_on_current() -> None:
-    # Same notes (second-hand): 80 uA at 0.75 V.
-    beta = beta_a_per_v2(on_current_a=80e-6, supply_v=0.75, threshold_v=0.25)
-    assert beta == pytest.approx(0.64e-3, rel=1e-12)
-
-
 # Algebra on Veendrick's law, each also solved by SciPy in test_against_full_dc_solution below.
 UNEQUAL = Inverter(1.8, 0.45, 0.5, 200e-6, 80e-6)
-# (inverter, edge in s, (peak in A, charge in C, energy in J), tolerance from the digits given)
+# (inverter, edge in s, (peak in A, charge in C), tolerance from the digits given)
 DERIVED = (
-    (VEENDRICK, 20e-12, (5.00e-6, 1.111e-17, 8.333e-18), 1e-4),
-    (symmetric(supply_v=1.8, threshold_v=0.45, beta=100e-6), 1e-6, (10.125e-6, 1.6875e-12, 3.0375e-12), 1e-9),
-    (UNEQUAL, 1e-6, (10.84464e-6, 1.7070266e-12, 3.0726479e-12), 5e-7),
-    (symmetric(supply_v=1.8, threshold_v=0.45, beta=50e-6), 1e-3, (5.0625e-6, 0.84375e-9, 1.51875e-9), 1e-9),
+    (VEENDRICK, 20e-12, (5.00e-6, 1.111e-17), 1e-4),
+    (symmetric(supply_v=1.8, threshold_v=0.45, beta=100e-6), 1e-6, (10.125e-6, 1.6875e-12), 1e-9),
+    (UNEQUAL, 1e-6, (10.84464e-6, 1.7070266e-12), 5e-7),
+    (symmetric(supply_v=1.8, threshold_v=0.45, beta=50e-6), 1e-3, (5.0625e-6, 0.84375e-9), 1e-9),
 )
 
 
@@ -81,11 +73,10 @@ DERIVED = (
     DERIVED,
     ids=["derived-scipy-0.75V", "derived-scipy-1.8V", "derived-scipy-unequal", "derived-scipy-1ms"],
 )
-def test_derived_values(inverter: Inverter, edge_s: float, expected: tuple[float, float, float], rel: float) -> None:
-    peak_a, charge_c, energy_j = expected
+def test_derived_values(inverter: Inverter, edge_s: float, expected: tuple[float, float], rel: float) -> None:
+    peak_a, charge_c = expected
     assert peak_current_a(inverter) == pytest.approx(peak_a, rel=rel)
     assert edge_charge_c(inverter, edge_s=edge_s) == pytest.approx(charge_c, rel=rel)
-    assert edge_energy_j(inverter, edge_s=edge_s) == pytest.approx(energy_j, rel=rel)
 
 
 def test_switching_threshold_of_unequal_devices() -> None:
@@ -153,7 +144,6 @@ def test_against_full_dc_solution(inverter: Inverter) -> None:
         epsabs=1e-9 * peak_a * edge_s,
     )
     assert edge_charge_c(inverter, edge_s=edge_s) == pytest.approx(charge_c, rel=1e-7)
-    assert edge_energy_j(inverter, edge_s=edge_s) == pytest.approx(inverter.supply_v * charge_c, rel=1e-7)
 
 
 @pytest.mark.parametrize("exponent", [0.5, 1.0, 1.4, 2.0, 3.0])
@@ -191,7 +181,6 @@ def test_no_current_where_the_supply_does_not_exceed_both_thresholds(supply_v: f
     assert peak_current_a(inverter) == 0.0
     assert conduction_time_s(inverter, edge_s=1e-3) == 0.0
     assert edge_charge_c(inverter, edge_s=1e-3) == 0.0
-    assert edge_energy_j(inverter, edge_s=1e-3) == 0.0
     assert peak_equivalent_time_s(inverter, edge_s=1e-3, exponent=2.0) == 0.0
     assert all(current_at_v(inverter, input_v=supply_v * k / 10) == 0.0 for k in range(11))
 
@@ -212,15 +201,15 @@ def test_no_input_draws_more_than_the_peak(inverter: Inverter, part: float) -> N
 
 @settings(max_examples=60)
 @given(inverters, st.floats(1e-9, 1.0), st.floats(1.0, 1e3))
-def test_energy_scales_with_edge_and_beta(inverter: Inverter, edge_s: float, factor: float) -> None:
-    energy_j = edge_energy_j(inverter, edge_s=edge_s)
+def test_charge_scales_with_edge_and_beta(inverter: Inverter, edge_s: float, factor: float) -> None:
+    charge_c = edge_charge_c(inverter, edge_s=edge_s)
     stronger = replace(
         inverter,
         nmos_beta_a_per_v2=factor * inverter.nmos_beta_a_per_v2,
         pmos_beta_a_per_v2=factor * inverter.pmos_beta_a_per_v2,
     )
-    assert edge_energy_j(inverter, edge_s=factor * edge_s) == pytest.approx(factor * energy_j, rel=1e-9)
-    assert edge_energy_j(stronger, edge_s=edge_s) == pytest.approx(factor * energy_j, rel=1e-9)
+    assert edge_charge_c(inverter, edge_s=factor * edge_s) == pytest.approx(factor * charge_c, rel=1e-9)
+    assert edge_charge_c(stronger, edge_s=edge_s) == pytest.approx(factor * charge_c, rel=1e-9)
 
 
 @settings(max_examples=40)
@@ -230,7 +219,7 @@ def test_energy_grows_with_the_cube_of_the_overlap(
 ) -> None:
     def energy_j(span_v: float) -> float:
         inverter = symmetric(supply_v=span_v + 2.0 * threshold_v, threshold_v=threshold_v, beta=beta)
-        return edge_energy_j(inverter, edge_s=1e-6)
+        return inverter.supply_v * edge_charge_c(inverter, edge_s=1e-6)
 
     assert energy_j(factor * overlap_v) == pytest.approx(factor**3 * energy_j(overlap_v), rel=1e-7)
 
@@ -274,25 +263,10 @@ def test_no_switching_threshold_where_no_input_turns_both_on() -> None:
 def test_arguments_out_of_range_are_refused() -> None:
     with pytest.raises(DomainError, match=r"^input_v must lie in 0\.0 to 1\.8 \(found 1\.9\)$"):
         current_at_v(UNEQUAL, input_v=1.9)
-    for function in (conduction_time_s, edge_charge_c, edge_energy_j):
+    for function in (conduction_time_s, edge_charge_c):
         with pytest.raises(DomainError, match=r"^edge_s must be greater than 0 \(found 0\.0\)$"):
             function(UNEQUAL, edge_s=0.0)
     with pytest.raises(DomainError, match=r"^edge_s must be greater than 0 \(found -1\.0\)$"):
         peak_equivalent_time_s(UNEQUAL, edge_s=-1.0, exponent=2.0)
     with pytest.raises(DomainError, match=r"^exponent must be greater than 0 \(found 0\.0\)$"):
         peak_equivalent_time_s(UNEQUAL, edge_s=1e-6, exponent=0.0)
-
-
-@pytest.mark.parametrize(
-    ("on_current_a", "supply_v", "threshold_v", "message"),
-    [
-        (0.0, 1.8, 0.45, "on_current_a must be greater than 0 (found 0.0)"),
-        (1e-4, -1.8, 0.45, "supply_v must be greater than 0 (found -1.8)"),
-        (1e-4, 1.8, -0.45, "threshold_v must be at least 0 (found -0.45)"),
-        (1e-4, 0.45, 0.45, "supply_v must be above threshold_v = 0.45 (found 0.45)"),
-    ],
-)
-def test_beta_out_of_range_is_refused(on_current_a: float, supply_v: float, threshold_v: float, message: str) -> None:
-    with pytest.raises(DomainError) as refusal:
-        beta_a_per_v2(on_current_a=on_current_a, supply_v=supply_v, threshold_v=threshold_v)
-    assert str(refusal.value) == message

@@ -159,6 +159,23 @@ def test_any_hold_does_where_even_the_full_kick_is_allowed() -> None:
     assert largest_hold_ohm(limit_v=0.1, leakage_a=5e-324, **still) == math.inf
 
 
+@pytest.mark.parametrize(("leakage_a", "coupling_c_f", "slope_v_per_s"), [(2.0, 0.0, 0.0), (0.0, 3.0, 3.0)])
+def test_largest_hold_at_sizes_far_from_a_chips(leakage_a: float, coupling_c_f: float, slope_v_per_s: float) -> None:
+    # Amperes and farads: no term may be small beside another by habit. SciPy's root finder on the same sum as above.
+    def surplus_v(r_ohm: float) -> float:
+        return r_ohm * (leakage_a + coupling_c_f * slope_v_per_s * (1.0 - math.exp(-1e3 / (r_ohm * 4.0)))) - 5.0
+
+    found_ohm = largest_hold_ohm(
+        limit_v=5.0,
+        leakage_a=leakage_a,
+        coupling_c_f=coupling_c_f,
+        total_c_f=4.0,
+        slope_v_per_s=slope_v_per_s,
+        ramp_s=1e3,
+    )
+    assert found_ohm == pytest.approx(float(brentq(surplus_v, 1e-3, 1e3, xtol=1e-13)), rel=1e-9)
+
+
 def test_leakage_alone_is_ohms_law() -> None:
     still = {"coupling_c_f": 0.0, "total_c_f": 1e-12, "slope_v_per_s": 0.0, "ramp_s": 0.0}
     assert leakage_level_v(leakage_a=10e-9, hold_ohm=20e6) == pytest.approx(0.2, rel=1e-12)

@@ -10,6 +10,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.optimize import brentq, minimize_scalar
 
+from tidegate.lint.physics import inversion_root as inversion_root_module
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.inversion_root import inversion_root
 
@@ -59,6 +60,40 @@ def test_level_line_is_solved_in_closed_form() -> None:
     found = inversion_root(constant=p, slope=0.0)
     assert found.x == pytest.approx(np.log(np.expm1(np.sqrt(p))), rel=1e-12, abs=1e-12)
     assert found.exists.all()
+
+
+def test_a_line_that_touches_the_square_alone_meets_nothing() -> None:
+    # 200 x - 10^4 touches x^2 at 100, and ln^2(1 + e^x) lies above x^2 by a hair; one unit further up it is met, at
+    # 100 + 1 to the last digit, and one unit further down it is far away.
+    found = inversion_root(constant=np.array([-9999.0, -10000.0, -10001.0]), slope=200.0)
+    assert found.exists.tolist() == [True, False, False]
+    assert float(found.x[0]) == pytest.approx(101.0, rel=1e-12)
+
+
+MANY_P = np.concatenate([-(10.0 ** np.linspace(6, -8, 60)), 10.0 ** np.linspace(-8, 6, 60)])
+MANY_Q = 10.0 ** np.linspace(-8, 4, 60)
+
+
+@pytest.mark.parametrize(
+    ("p", "q", "steps"),
+    [
+        pytest.param(MANY_P, -MANY_Q, 6, id="falling"),
+        pytest.param(MANY_P[MANY_P < 0.0], MANY_Q, 6, id="rising, below at 0"),
+        pytest.param(MANY_P[MANY_P > 0.0], MANY_Q, 10, id="rising, above at 0"),
+    ],
+)
+def test_the_start_is_close_wherever_the_line_lies(
+    p: np.ndarray, q: np.ndarray, steps: int, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    # From a start that is merely right of the root, Newton's method goes left by half a unit a step in weak inversion.
+    p, q = np.meshgrid(p, q)
+    expected = inversion_root(constant=p, slope=q)
+    monkeypatch.setattr(inversion_root_module, "_MOST_STEPS", steps)
+    found = inversion_root(constant=p, slope=q)
+    assert np.array_equal(found.exists, expected.exists)
+    monkeypatch.setattr(inversion_root_module, "_MOST_STEPS", 2)
+    with pytest.raises(DomainError, match=r"^constant and slope leave a root that does not settle$"):
+        inversion_root(constant=p, slope=q)
 
 
 def test_corners_with_and_without_a_root_side_by_side() -> None:

@@ -1,4 +1,4 @@
-"""MOS threshold over temperature and the law of inversion: model defaults, a kit's slopes, SciPy for the inverse."""
+"""MOS threshold over temperature and the law of inversion: a kit's slopes, SciPy for the inverse."""
 
 from __future__ import annotations
 
@@ -18,27 +18,9 @@ from tidegate.lint.physics.mos_threshold import (
     saturated_current_a,
     specific_current_a,
     subthreshold_swing_v_per_decade,
-    threshold_bsim_v,
     threshold_linear_v,
 )
 from tidegate.lint.physics.silicon import thermal_voltage_v
-
-
-def bsim(**changed: float) -> dict[str, float]:
-    card = {"threshold_ref_v": 0.5, "t_ref_k": 300.15, "kt1_v": -0.11, "kt1l_v_m": 0.0, "length_m": 1e-6}
-    return {**card, "kt2": 0.022, "body_v": 0.0, "t_k": 300.15, **changed}
-
-
-# Defaults of BSIM3 and BSIM4 read in their source; the differences are the manual's formula (value from memory).
-@pytest.mark.parametrize(
-    ("t_degc", "expected_mv"),
-    [(28.0, -0.36648), (125.0, -35.915), (-40.0, 24.554)],
-    ids=["bsim-default-per-kelvin", "bsim-default-125-degC", "bsim-default--40-degC"],
-)
-def test_bsim_default_coefficients(t_degc: float, expected_mv: float) -> None:
-    found = threshold_bsim_v(**bsim(t_k=t_degc + 273.15)) - 0.5
-    assert 1e3 * float(found) == pytest.approx(expected_mv, abs=6e-4 if t_degc != 28.0 else 6e-6)
-
 
 # google/globalfoundries-pdk-libs-gf180mcu_fd_pr at 9f992d5a, sm141064.ngspice: threshold, KT1 (L37545, L37581-82;
 # L37969, L38024-26; L814, L953-962), 25 degC; slopes derived, in mV/K.
@@ -55,18 +37,13 @@ GF180_SLOPES = (
     ids=[row[0] for row in GF180_SLOPES],
 )
 def test_slope_of_gf180_devices(threshold_v: float, kt1_v: float, slope_mv_per_k: float) -> None:
-    card = bsim(threshold_ref_v=threshold_v, kt1_v=kt1_v, t_ref_k=298.15, t_k=299.15)
-    slope_v_per_k = float(threshold_bsim_v(**card)) - threshold_v
-    assert 1e3 * slope_v_per_k == pytest.approx(slope_mv_per_k, abs=0.005)
-    linear = threshold_linear_v(t_k=398.15, threshold_ref_v=threshold_v, t_ref_k=298.15, fall_v_per_k=-slope_v_per_k)
-    bsim_v = threshold_bsim_v(**bsim(threshold_ref_v=threshold_v, kt1_v=kt1_v, t_ref_k=298.15, t_k=398.15))
-    assert float(linear) == pytest.approx(float(bsim_v), abs=1e-12)  # both are straight lines
-
-
-def test_bsim_length_and_body_terms() -> None:
-    # By hand at 1.1 T0: 0.1 (-0.11 - 1e-8/1e-6 + 0.022 * -1).
-    found = threshold_bsim_v(**bsim(t_k=1.1 * 300.15, kt1l_v_m=-1e-8, body_v=-1.0))
-    assert float(found) - 0.5 == pytest.approx(-0.0142, abs=1e-12)
+    # The law of the model card is V_TH(T0) + KT1 (T/T0 - 1) (BSIM3v3 manual, value from memory): a straight line.
+    for t_k in (233.15, 299.15, 398.15):
+        found_v = threshold_linear_v(
+            t_k=t_k, threshold_ref_v=threshold_v, t_ref_k=298.15, fall_v_per_k=-1e-3 * slope_mv_per_k
+        )
+        # The slope is given to 5 uV/K.
+        assert float(found_v) == pytest.approx(threshold_v + kt1_v * (t_k / 298.15 - 1.0), abs=5e-6 * abs(t_k - 298.15))
 
 
 def test_gain_follows_the_mobility() -> None:
@@ -140,10 +117,6 @@ REFUSALS: tuple[tuple[Callable[[], object], str], ...] = (
         lambda: threshold_linear_v(t_k=300.0, threshold_ref_v=0.5, t_ref_k=300.0, fall_v_per_k=math.inf),
         "fall_v_per_k must be a finite number (found inf)",
     ),
-    (lambda: threshold_bsim_v(**bsim(t_ref_k=0.0)), "t_ref_k must be greater than 0 (found 0.0)"),
-    (lambda: threshold_bsim_v(**bsim(length_m=0.0)), "length_m must be greater than 0 (found 0.0)"),
-    (lambda: threshold_bsim_v(**bsim(kt1_v=math.nan)), "kt1_v must be a finite number (found nan)"),
-    (lambda: threshold_bsim_v(**bsim(body_v=math.nan)), "body_v must be a finite number (found nan)"),
     (
         lambda: gain_a_per_v2(t_k=300.0, gain_ref_a_per_v2=0.0, t_ref_k=300.0, exponent=-1.5),
         "gain_ref_a_per_v2 must be greater than 0 (found 0.0)",

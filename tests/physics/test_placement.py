@@ -74,6 +74,28 @@ def test_where_nothing_fits_the_shortage_is_told() -> None:
     assert placement(sign_off_limits(start_least_v=1.65), hysteresis_v=0.03 + 1e-9).short_v > 0.0
 
 
+def test_of_equal_limits_the_first_is_named() -> None:
+    for side, first, second in (
+        (Side.LEAST, Requirement.GUARANTEE, Requirement.QUIET),
+        (Side.MOST, Requirement.QUIET, Requirement.COMES_BACK),
+    ):
+        found = placement([Limit(by, Level.FALLING, side, 1.5) for by in (first, second)], hysteresis_v=0.05)
+        assert (found.limited_below_by, found.limited_above_by) == (
+            (first, None) if side is Side.LEAST else (None, first)
+        )
+
+
+def test_largest_hysteresis_lies_between_the_rising_ceiling_and_the_falling_floor_alone() -> None:
+    # By hand: 2.0 V less 1.0 V, whatever else the levels must keep.
+    limits = [
+        Limit(Requirement.RELEASE, Level.RISING, Side.MOST, 2.0),
+        Limit(Requirement.GUARANTEE, Level.RISING, Side.LEAST, 1.2),
+        Limit(Requirement.QUIET, Level.FALLING, Side.MOST, 1.6),
+        Limit(Requirement.GUARANTEE, Level.FALLING, Side.LEAST, 1.0),
+    ]
+    assert largest_hysteresis_v(limits) == 1.0
+
+
 def test_without_limits_anything_goes() -> None:
     found = placement((), hysteresis_v=0.05)
     assert (found.least_v, found.most_v, found.short_v) == (-math.inf, math.inf, 0.0)

@@ -65,6 +65,12 @@ def holds(share: FailureShare, expected: float) -> bool:
     return share.least_ppm <= 1e6 * expected <= share.most_ppm
 
 
+def test_without_spread_the_nominal_decides() -> None:
+    # A margin of 0 V is kept.
+    assert [normal_failure_ppm(margin_v=margin_v, sigma_v=0.0) for margin_v in (0.5, 5e-324, 0.0)] == [0.0] * 3
+    assert normal_failure_ppm(margin_v=-5e-324, sigma_v=0.0) == 1e6
+
+
 @pytest.mark.parametrize("distance", [0.0, 1.0, 2.0, 3.0, -1.0])
 @pytest.mark.parametrize("side", [at_least, at_most], ids=["at-least", "at-most"])
 def test_normal_errors_against_the_normal_integral(distance: float, side: Callable[[float], Demand]) -> None:

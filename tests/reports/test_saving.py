@@ -72,9 +72,18 @@ def test_what_a_link_points_to_is_replaced(tmp_path: Path) -> None:
     assert (tmp_path / "real.txt").read_text("utf-8") == "new"
 
 
-def test_a_device_is_written_to() -> None:
-    save(Path(os.devnull), ["gone"])
-    assert not Path(os.devnull).is_file()
+def test_a_device_is_written_to(tmp_path: Path) -> None:
+    """A device of its own for root, who could replace that of the system by mistake."""
+    null = Path(os.devnull)
+    if os.geteuid() == 0:
+        null = tmp_path / "null"
+        try:
+            os.mknod(null, stat.S_IFCHR | 0o666, os.makedev(1, 3))
+        except OSError as error:
+            pytest.skip(f"no device can be made here ({error})")
+    save(null, ["gone"])
+    assert null.is_char_device()
+    assert [path for path in tmp_path.iterdir() if path != null] == []
 
 
 def test_a_folder_is_no_file(tmp_path: Path) -> None:

@@ -79,6 +79,36 @@ def test_holds_and_circuits_that_pass_it_alone_are_the_matter_of_another_rule() 
     )  # fmt: skip
 
 
+def test_holds_and_circuits_at_their_limit_leave_the_dividers_to_fail() -> None:
+    """At 8.80625 uA the other rule still holds; with one step less it says so itself."""
+    assert pytest.approx(8.80625e-6, rel=1e-12) == HOLDS_A + CIRCUITS_A
+    for budget, kind in (("8.80625 uA", FAIL), ("8.80624 uA", NONE)):
+        assert one(f"domains: {{aon: {{budget: {budget}}}}}", WITHIN, "aon").kind is kind
+
+
+def test_circuits_alone_fail_where_nothing_is_held() -> None:
+    """A domain without holds is no matter of the other rule: 1.2 uA and 40 uA of what lives in analog."""
+    said = one("domains: {analog: {budget: 41 uA}}", WITHIN, "analog")
+    assert (said.kind, said.message) == (FAIL, "takes at rest 41.2 uA, at most 41 uA needed")
+    assert said.why == "ref_main 40 uA, bias_main 1.2 uA; 1.2 uA in drift; 1.2 uA in self_test"
+
+
+def test_domain_in_which_nothing_takes_current() -> None:
+    said = one("domains: {spare: {rail: avdd, kind: always_on, budget: 1 uA}}", WITHIN, "spare")
+    assert (said.kind, said.message) == (PASS, "takes at rest 0 A, at most 1 uA needed")
+    assert said.why == "nothing in it takes current"
+
+
+def test_the_thriftiest_modes_are_told() -> None:
+    """Of 9.43625 uA: without all, without uv, ov, uv_core and their dividers on avdd, without uv, without por."""
+    off = {"b": "[uv]", "a": "[por]", "d": "[aon]", "c": "[uv, ov, uv_core]", "e": "[adc]"}
+    modes = ", ".join(f"{name}: {{off: {names}}}" for name, names in off.items())
+    said = one(f"modes: {{drift: null, self_test: null, {modes}}}", WITHIN, "aon")
+    assert pytest.approx(7.75625e-6) == TAKEN_A - 3 * 0.35e-6 - DIVIDERS_A
+    assert pytest.approx(8.77125e-6) == TAKEN_A - 0.35e-6 - 1.89 / 6e6
+    assert said.why.endswith("; 0 A in d; 7.756 uA in c; 8.771 uA in b")
+
+
 def test_what_is_off_in_a_mode_takes_nothing_there() -> None:
     """Without uv and its divider: 9.43625 uA - 0.35 uA - 0.315 uA."""
     said = one("modes: {drift: {off: [ref_main, adc, uv]}}", WITHIN, "aon")
@@ -139,9 +169,35 @@ def test_timing_through_a_resistance() -> None:
         assert (said.kind, said.measure.have) == (kind, pytest.approx(60.5e-9, rel=1e-12))
 
 
-def test_counted_time_does_not_leak() -> None:
-    patch = "output_stages: {core_out: {timing: {count: 100, period: {min: 9 us, max: 12 us}}}}"
-    assert one(patch, STAGE, "core_out").kind is NONE
+def test_threshold_that_the_resistance_never_reaches() -> None:
+    """Above the least supply of 1.71 V nothing flows into the capacitor: no current stands above its leakage."""
+    timing = "current: null, resistance: {max: 20 Mohm}, threshold: {max: 1.8 V}, leakage: {max: 1 nA}"
+    said = one(f"comparators: {{uv: {{timing: {{{timing}}}}}}}", DETECTOR, "uv")
+    assert said.message == (
+        "the current through its resistance, at the threshold, at its least 0 A, at least 10 nA needed"
+    )
+    assert said.mend == "a current of at least 10 nA, or leakage of at most 0 A"
+    assert said.at == "comparators.uv.timing.resistance"
+
+
+def test_timing_through_no_resistance_is_out_of_range() -> None:
+    said = one("comparators: {uv: {timing: {current: null, resistance: 0 ohm}}}", DETECTOR, "uv")
+    assert said.kind is OPEN
+    assert said.message.endswith("outside the range of the formula: r_ohm must be greater than 0 (found 0.0)")
+
+
+def test_a_current_that_is_stated_counts_beside_a_resistance_and_without_one() -> None:
+    """40 nA at the least, 1 nA of leakage; without current and resistance it is the current that is asked for."""
+    with_both = one("comparators: {uv: {timing: {resistance: {max: 20 Mohm}}}}", DETECTOR, "uv")
+    assert with_both.message == "the current that times it at its least 40 nA, at least 10 nA needed"
+    neither = one(without("comparators.uv.timing.current"), DETECTOR, "uv")
+    assert (neither.kind, neither.missing) == (OPEN, ("comparators.uv.timing.current",))
+
+
+@pytest.mark.parametrize("counted", ["count: 100", "period: {min: 9 us, max: 12 us}"])
+def test_counted_time_does_not_leak(counted: str) -> None:
+    said = one(f"output_stages: {{core_out: {{timing: {{{counted}}}}}}}", STAGE, "core_out")
+    assert (said.kind, said.message) == (NONE, "its time is counted, and leakage does not change it")
     assert one("", STAGE, "core_out").message == "does not say what makes a time of it (timing)"
 
 

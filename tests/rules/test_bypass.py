@@ -7,7 +7,7 @@ from typing import Any, Final
 
 import pytest
 
-from tests.rules.sound import changed, judged, of_kind, without
+from tests.rules.sound import both, changed, judged, of_kind, without
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind, Level
 from tidegate.lint.rule import Rule
@@ -79,6 +79,7 @@ def test_a_detector_without_override_fails() -> None:
     assert several.message == "no override takes it out of the way to por_n and core_rst_n"
     assert several.why == "skip_resets can only force the reset, not lift it"
     assert several.mend == "an override that forces released, on uv, or on uv_out, which every way passes"
+    assert path_text(several.path) == "uv drives uv_out drives gather drives rst_out drives por_n"
 
 
 @pytest.mark.parametrize("where", ["uv_core", "core_out", "core_rst_n"])
@@ -102,8 +103,8 @@ def test_an_override_on_one_of_two_ways_will_not_do() -> None:
     assert judgement.kind is FAIL
     assert path_text(judgement.path) == "uv_core drives beside drives core_rst_n"
     assert judgement.mend == "an override that forces released, on uv_core"
-    both = TWO_WAYS + "bypasses: {skip_core: {overrides: core_out}, skip_beside: {overrides: beside, forces: released}}"
-    assert one(both, PRESENT, "uv_core").kind is PASS
+    two = TWO_WAYS + "bypasses: {skip_core: {overrides: core_out}, skip_beside: {overrides: beside, forces: released}}"
+    assert one(two, PRESENT, "uv_core").kind is PASS
     assert one(TWO_WAYS + "bypasses: {skip_core: {overrides: core_rst_n}}", PRESENT, "uv_core").kind is PASS
 
 
@@ -247,11 +248,37 @@ resets:
 
 def test_a_detector_with_another_way_stays_in_force() -> None:
     judgement = one(BESIDE.replace("COMBINE", "any_asserts"), CAUTION, "skip_resets")
-    assert (judgement.kind, judgement.message) == (PASS, "ov still reaches its reset nets on another way")
+    assert (judgement.kind, judgement.message) == (PASS, "ov still reaches every reset net without it")
     agree = one(BESIDE.replace("COMBINE", "all_agree"), CAUTION, "skip_resets")
     assert agree.kind is REVIEW  # one released driver is enough to lift the net
     unsaid = one(BESIDE.replace("COMBINE", "null"), CAUTION, "skip_resets")
     assert unsaid.missing == ("resets.por_n.combine", "resets.core_rst_n.combine")
+
+
+OV_CORE: Final = "comparators: {ov_core: {role: over_voltage, watches: vcore, domain: aon}}"
+
+
+def test_several_detectors_that_stay_in_force() -> None:
+    """ov_core drives both nets beside what is overridden, as ov does; one that drives no net has none to lose."""
+    beside = BESIDE.replace("COMBINE", "any_asserts").replace("[ov]", "[ov_core, ov], combine: any_asserts")
+    latch = "output_stages: {ov_latch: {driven_by: [ov_out, ov_core], combine: any_asserts}}"
+    said = one(both(OV_CORE, beside, latch), CAUTION, "skip_resets")
+    assert (said.kind, said.message) == (PASS, "ov_core and ov still reach every reset net without it")
+    spare = "output_stages: {spare: {driven_by: [ov_core, ov], combine: any_asserts, domain: aon, kind: inverter}}"
+    said = one(both(OV_CORE, spare, skip_core(overrides="spare")), CAUTION, "skip_core")
+    assert (said.kind, said.message) == (PASS, "ov still reaches every reset net without it")
+
+
+def test_several_detectors_that_are_lifted_together() -> None:
+    latch = "output_stages: {ov_latch: {driven_by: [ov_out, ov_core], combine: any_asserts}}"
+    said = one(both(OV_CORE, latch), CAUTION, "skip_resets")
+    assert (said.kind, said.why) == (
+        REVIEW, "ov_core and ov cannot assert por_n and core_rst_n then, however high the supply",
+    )  # fmt: skip
+    assert said.mend == (
+        "limit the bench supply while it is active: vcore below 2 V, which damages and avdd below 2.5 V, which damages"
+    )
+    assert path_text(said.path) == "gather driven by ov_latch driven by ov_core"
 
 
 def test_an_override_that_forces_the_reset_needs_no_caution() -> None:

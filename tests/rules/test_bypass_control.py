@@ -76,6 +76,17 @@ def test_a_test_port_in_a_domain_that_is_reset_is_for_a_person() -> None:
     assert one(guarded(None), INDEPENDENT, "skip_core").missing == ("bypasses.skip_core.controlled_by",)
 
 
+def test_a_test_port_in_a_domain_that_another_net_resets() -> None:
+    """por_n guards the control, and nothing that uv_core drives."""
+    patch = {
+        "domains": {"control": {"rail": "avdd", "kind": "always_on"}},
+        "resets": {"por_n": {"guards": ["adc", "core_regulator", "control"]}},
+        "bypasses": {"skip_core": {"controlled_by": "test_port", "domain": "control"}},
+    }
+    judgement = one(json.dumps(patch), INDEPENDENT, "skip_core")
+    assert (judgement.kind, judgement.message) == (PASS, "leans on nothing that waits for uv_core")
+
+
 def test_a_control_on_a_rail_that_waits_for_what_it_overrides() -> None:
     patch = "bypasses: {skip_resets: {domain: core}}"
     judgement = one(patch, INDEPENDENT, "skip_resets")
@@ -169,6 +180,30 @@ def test_a_control_on_a_rail_whose_maker_is_held_in_reset() -> None:
     assert judgement.why == "the override is dead until por_n is released"
     assert judgement.mend == "move the control to vcore, or to a rail that is up before it"
     assert path_text(judgement.path) == "skip_core supplied by pads supplied by io made by booster guarded by por_n"
+
+
+# Behind core_out stand detectors of avdd and, first, of vcore, which comes up after avdd.
+BEHIND_BOTH: Final = "rails: {{io: {{{order}}}}}\ndomains: {{pads: {{rail: io, kind: always_on}}}}\n"
+CORE_OUT: Final = "bypasses: {skip_core: {domain: pads, overrides: core_out}}"
+
+
+@pytest.mark.parametrize(
+    ("order", "kind", "message"),
+    [
+        ("nominal: 3.3 V", REVIEW, "rests on io being up before avdd"),
+        ("after: avdd, delay: 1 ms", FAIL, "its control lives on io, which comes up after avdd"),
+        ("after: vcore, delay: 1 ms", FAIL, "its control lives on io, which waits for por_n"),
+    ],
+)
+def test_a_control_for_several_rails_is_to_be_up_before_the_first(order: str, kind: Kind, message: str) -> None:
+    judgement = one(BEHIND_BOTH.format(order=order) + CORE_OUT, UP, "skip_core")
+    assert (judgement.kind, judgement.message) == (kind, message)
+    assert "move the control to avdd" in judgement.mend
+    # Where nothing says which of the two is first, the one that is found first is named.
+    apart = BEHIND_BOTH.format(order="nominal: 3.3 V").replace(
+        "rails: {", "rails: {vcore: {made_by: null, after: null}, "
+    )
+    assert one(apart + CORE_OUT, UP, "skip_core").message == "rests on io being up before vcore"
 
 
 def test_a_control_on_a_rail_of_unknown_order_is_for_a_person() -> None:

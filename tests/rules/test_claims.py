@@ -69,6 +69,86 @@ def test_tracked_ranges_are_not_held_extreme_against_extreme() -> None:
     assert said("hysteresis", "uv", levels(*ranges, "{min: 160 mV, max: 180 mV}"), untracked).kind is FAIL
 
 
+RANGES = ("{min: 1.6 V, max: 1.7 V}", "{min: 1.56 V, max: 1.65 V}")
+"""40 mV and 50 mV apart, low with low and high with high; 10 mV are taken for rounding."""
+
+
+@pytest.mark.parametrize(
+    ("amount", "kind", "message"),
+    [
+        ("{min: 59.9 mV, max: 90 mV}", PASS, "hysteresis as stated, least 59.9 mV, at most 60 mV needed"),
+        ("{min: 60.1 mV, max: 90 mV}", FAIL, "hysteresis as stated, least 60.1 mV, at most 60 mV needed"),
+        ("{min: 10 mV, max: 30.1 mV}", PASS, "hysteresis as stated, greatest 30.1 mV, at least 30 mV needed"),
+        ("{min: 10 mV, max: 29.9 mV}", FAIL, "hysteresis as stated, greatest 29.9 mV, at least 30 mV needed"),
+        # The end with less room is told.
+        ("{min: 46 mV, max: 46 mV}", PASS, "hysteresis as stated, least 46 mV, at most 60 mV needed"),
+        ("{min: 44 mV, max: 44 mV}", PASS, "hysteresis as stated, greatest 44 mV, at least 30 mV needed"),
+    ],
+)
+def test_ranges_at_their_limits(amount: str, kind: Kind, message: str) -> None:
+    answer = said("hysteresis", "uv", levels(*RANGES, amount))
+    assert (answer.kind, answer.message) == (kind, message)
+    assert answer.mend == ("" if kind is PASS else "correct the hysteresis or a level")
+    assert answer.at == "comparators.uv.hysteresis.amount"
+
+
+def test_of_two_ends_with_as_much_room_the_least_is_told() -> None:
+    """62.5 mV and 125 mV apart, and half way between them: numbers that a float holds exactly."""
+    answer = said("hysteresis", "uv", levels("{min: 1.5 V, max: 1.75 V}", "{min: 1.4375 V, max: 1.625 V}", "0.09375 V"))
+    assert answer.message == "hysteresis as stated, least 93.75 mV, at most 135 mV needed"
+
+
+def test_ranges_that_come_closer_at_the_high_end() -> None:
+    answer = said("hysteresis", "uv", levels(RANGES[0], "{min: 1.55 V, max: 1.66 V}", "{min: 42 mV, max: 48 mV}"))
+    assert (answer.kind, answer.why) == (PASS, "levels 40 mV to 50 mV apart; up to 10 mV is taken for rounding")
+
+
+@pytest.mark.parametrize(
+    ("rising", "falling", "amount"),
+    [
+        ("{min: 1.6 V}", RANGES[1], "{min: 42 mV, max: 48 mV}"),
+        ("{max: 1.7 V}", RANGES[1], "{min: 42 mV, max: 48 mV}"),
+        (RANGES[0], "{min: 1.56 V}", "{min: 42 mV, max: 48 mV}"),
+        (RANGES[0], "{max: 1.65 V}", "{min: 42 mV, max: 48 mV}"),
+        (*RANGES, "{min: 42 mV}"),
+        (*RANGES, "{max: 48 mV}"),
+        ("{typ: 1.65 V, min: 1.6 V}", RANGES[1], "{min: 42 mV, max: 48 mV}"),
+    ],
+)
+def test_ranges_of_which_an_end_is_missing_claim_nothing(rising: str, falling: str, amount: str) -> None:
+    answer = said("hysteresis", "uv", levels(rising, falling, amount))
+    assert (answer.kind, answer.message) == (
+        NONE, "states neither typical levels nor both ends of levels and hysteresis",
+    )  # fmt: skip
+
+
+def test_one_typical_level_alone_leaves_the_ranges_to_judge() -> None:
+    answer = said(
+        "hysteresis", "uv", levels("{min: 1.6 V, typ: 1.69 V, max: 1.7 V}", RANGES[1], "{min: 42 mV, max: 48 mV}")
+    )
+    assert (answer.kind, answer.why) == (PASS, "levels 40 mV to 50 mV apart; up to 10 mV is taken for rounding")
+
+
+@pytest.mark.parametrize(
+    ("amount", "kind"), [("{min: 110 mV, max: 120 mV}", PASS), ("{min: 110.1 mV, max: 120 mV}", FAIL)]
+)
+def test_rounding_of_levels_with_few_digits_is_bounded(amount: str, kind: Kind) -> None:
+    """2 V and 1.9 V may be 5 mV off each, not half a volt."""
+    answer = said("hysteresis", "uv", levels("2 V", "1.9 V", amount))
+    assert (answer.kind, answer.why) == (
+        kind, "2 V rising less 1.9 V falling: 100 mV; up to 10 mV is taken for rounding",
+    )  # fmt: skip
+
+
+def test_levels_of_the_code_it_ships_with() -> None:
+    codes = "comparators: {uv: {trip: null, codes: {a: {rising: 1.697 V, falling: 1.627 V}}}}"
+    shipped = "comparators: {uv: {ships_with: a}}"
+    assert said("hysteresis", "uv", codes, shipped).why == (
+        "1.697 V rising less 1.627 V falling: 70 mV; up to 1 mV is taken for rounding"
+    )
+    assert said("hysteresis", "uv", codes).message == "does not state a hysteresis beside both levels"
+
+
 def test_words_of_a_hysteresis_that_is_not_between_the_levels() -> None:
     answer = said("hysteresis", "uv", levels("1.697 V", "1.627 V", "{min: 46 mV, max: 54 mV}"))
     assert answer.message == "hysteresis that the components make, greatest 70 mV, at most 55 mV needed"
@@ -99,6 +179,10 @@ def test_ratio_over_the_spans_of_both() -> None:
     for ratio, kind in ((0.322, PASS), (0.32, FAIL), (0.401, PASS), (0.403, FAIL)):
         patch = f"comparators: {{uv: {{divider: {{ratio: {ratio}, {spans}}}}}}}"
         assert said("divider_ratio", "uv", patch).kind is kind
+    assert said("divider_ratio", "uv", patch).why == (
+        "2 Mohm to 2.4 Mohm below 3.6 Mohm to 4.2 Mohm: 0.3226 to 0.4; up to 0.002015 is taken for rounding"
+    )
+    assert said("divider_ratio", "uv").why.startswith("2.2 Mohm below 3.8 Mohm: 0.3667; ")
 
 
 def test_level_of_reference_and_divider() -> None:
@@ -112,6 +196,46 @@ def test_level_of_reference_and_divider() -> None:
     assert (off.kind, off.message) == (FAIL, "level that reference and divider make 1.771 V, at most 1.698 V needed")
     for patch in (without("comparators.uv.divider"), without("references.ref_fast.voltage")):
         assert judged(patch, RULES)["claims/level_from_reference", "uv"].kind is NONE
+
+
+LOWEST_V = 1.627 - 0.005 * 1.627 - 3 * 0.0004 / 0.367
+HIGHEST_V = 1.677 + 0.005 * 1.677 + 3 * 0.0004 / 0.367
+
+
+@pytest.mark.parametrize(
+    ("level_v", "share", "kind"),
+    [
+        pytest.param(LOWEST_V / 1.005, 0.9999, FAIL, id="below"),
+        pytest.param(LOWEST_V / 1.005, 1.0001, PASS, id="just_above_the_least"),
+        pytest.param(HIGHEST_V / 0.995, 0.9999, PASS, id="just_below_the_most"),
+        pytest.param(HIGHEST_V / 0.995, 1.0001, FAIL, id="above"),
+    ],
+)
+def test_level_of_reference_at_its_limits(level_v: float, share: float, kind: Kind) -> None:
+    """Half a per cent of the level itself is taken for rounding."""
+    patch = f"references: {{ref_fast: {{voltage: {level_v * share * 0.367!r} V}}}}"
+    answer = said("level_from_reference", "uv", patch)
+    assert answer.kind is kind
+    assert answer.measure is not None
+    assert answer.measure.have == pytest.approx(level_v * share)
+    assert answer.mend == ("" if kind is PASS else "correct the levels, the ratio or the reference")
+
+
+def test_words_of_a_level_that_the_reference_does_not_make() -> None:
+    """0.65 V over 0.367 is 1.7711 V, of which half a per cent is 8.856 mV."""
+    answer = said("level_from_reference", "uv", "references: {ref_fast: {voltage: 0.65 V}}")
+    assert answer.why == "650 mV of ref_fast over a ratio of 0.367; 8.856 mV taken for rounding"
+    assert answer.at == "comparators.uv.trip"
+    without_ratio = said("level_from_reference", "uv", without("comparators.uv.divider.ratio"))
+    assert without_ratio.message == "does not state a reference voltage beside a divider ratio"
+    assert said("level_from_reference", "uv", without("comparators.uv.reference")).kind is NONE
+
+
+@pytest.mark.parametrize("fact", ["ratio", "top", "bottom"])
+def test_divider_that_does_not_state_all_three(fact: str) -> None:
+    answer = said("divider_ratio", "uv", without(f"comparators.uv.divider.{fact}"))
+    assert (answer.kind, answer.message) == (NONE, "does not state a ratio beside both resistances")
+    assert said("divider_ratio", "por").kind is NONE
 
 
 # Times
@@ -156,7 +280,13 @@ def test_time_of_a_resistance_and_a_capacitance() -> None:
     assert answer.kind is FAIL
     assert answer.measure is not None
     assert answer.measure.have == pytest.approx(most_s, rel=1e-6)
-    assert answer.why.startswith("a resistance and a capacitance charged from avdd: ")
+    assert answer.why.startswith("a resistance and a capacitance charged from avdd: 3.963 us to 11.6 us; ")
+    late = f"delay: {{min: {least_s * 1.02e6:.6f} us, max: {most_s * 1e6:.6f} us}}"
+    answer = said("stage_delay", "gather", stage(late, timing))
+    assert answer.kind is FAIL
+    assert answer.measure is not None
+    assert answer.measure.have == pytest.approx(least_s, rel=1e-6)
+    assert answer.at == "output_stages.gather.delay"
 
 
 @pytest.mark.parametrize(
@@ -189,11 +319,32 @@ def test_bias_current_by_ohms_law(current: str, kind: Kind) -> None:
     assert said("bias_current", "bias_main", f"biases: {{bias_main: {{current: {current}}}}}").kind is kind
 
 
+@pytest.mark.parametrize(
+    ("rule", "of", "patch"),
+    [
+        ("bias_current", "bias_main", "biases: {bias_main: {resistance: 0 ohm}}"),
+        ("bias_current", "bias_main", "biases: {bias_main: {resistance: {min: 0 ohm, max: 1 ohm}}}"),
+        ("reference_current", "ref_fast", "references: {ref_fast: {current: 1 uA, resistance: 0 ohm}}"),
+    ],
+)
+def test_no_current_is_made_by_no_resistance(rule: str, of: str, patch: str) -> None:
+    answer = said(rule, of, patch)
+    assert answer.kind is OPEN
+    assert answer.message.endswith("outside the range of the formula: r_ohm must be greater than 0 (found 0.0)")
+
+
 def test_bias_takes_what_it_makes() -> None:
     answer = said("bias_consumption", "bias_start", "biases: {bias_start: {consumes: {max: 80 nA}}}")
     assert (answer.kind, answer.message) == (REVIEW, "consumption 80 nA, at least 89.55 nA needed")
     assert said("bias_consumption", "bias_start", "biases: {bias_start: {consumes: {max: 89.55 nA}}}").kind is PASS
     assert said("bias_consumption", "bias_main").message == "does not make its current by itself"
+    assert answer.why == "makes up to 90 nA; 450 pA taken for rounding"
+    assert answer.mend == "state a consumption of at least 90 nA, or that the current is a multiple of its own"
+    for ends in ("consumes: {min: 80 nA}", "current: {min: 80 nA}", "current: null"):
+        answer = said("bias_consumption", "bias_start", f"biases: {{bias_start: {{{ends}}}}}")
+        assert answer.message == "does not state its greatest consumption beside its greatest current"
+    own = "biases: {bias_start: {kind: self_biased, consumes: {max: 80 nA}}}"
+    assert said("bias_consumption", "bias_start", own).kind is REVIEW
     answer = said("bias_consumption", "bias_start", without("biases.bias_start.consumes"))
     assert (answer.kind, answer.message) == (
         NONE, "does not state its greatest consumption beside its greatest current",
@@ -206,4 +357,27 @@ def test_reference_current_by_ohms_law() -> None:
     assert answer.kind is PASS
     assert answer.measure is not None
     assert answer.measure.have == pytest.approx(0.6 / 6.6e6)
-    assert said("reference_current", "ref_fast").kind is NONE
+    assert (
+        answer.why
+        == "voltage of ref_fast over the resistance: 90.91 nA to 111.1 nA; up to 555.6 pA is taken for rounding"
+    )
+    for fact in ("current", "resistance"):
+        answer = said("reference_current", "ref_fast", patch, without(f"references.ref_fast.{fact}"))
+        assert (answer.kind, answer.message) == (NONE, "does not state a current beside a setting resistance")
+
+
+def test_current_over_the_spans_of_both() -> None:
+    """0.594 V over 660 kohm at the least, 0.606 V over 540 kohm at the most."""
+    spread = "references: {ref_fast: {voltage: {min: 0.594 V, typ: 0.6 V, max: 0.606 V}}}"
+    wide = "biases: {bias_main: {current: {min: 0.9 uA, max: 1.2 uA}}}"
+    assert said("bias_current", "bias_main", spread, wide).why == (
+        "voltage of ref_fast over the resistance: 900 nA to 1.122 uA; up to 5.611 nA is taken for rounding"
+    )
+
+
+@pytest.mark.parametrize("fact", ["current", "resistance", "source"])
+def test_bias_that_does_not_state_all_three(fact: str) -> None:
+    answer = said("bias_current", "bias_main", without(f"biases.bias_main.{fact}"))
+    assert (answer.kind, answer.message) == (
+        NONE, "does not state a current beside a setting resistance and the reference it copies",
+    )  # fmt: skip

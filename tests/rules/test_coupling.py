@@ -617,6 +617,9 @@ def test_ring_open_where_what_is_missing_might_close_one() -> None:
     assert found.missing == ("neighbours.p1.current_step",)
     # A ring that is surely too strong fails all the same; and a push out of the ring does not matter.
     assert said("ring", "uv", pushes("uv ov 41", "ov uv_core 1", "uv_core uv 1", "ov uv 41"), lost).kind is FAIL
+    for size, kind in (("20", OPEN), ("20.1", FAIL)):  # of 20 mV, and back 40 of 40 mV
+        found = said("ring", "uv", pushes(f"uv ov {size}", "ov uv_core 1", "uv_core uv 1", "ov uv 40"), lost)
+        assert found.kind is kind
     assert said("ring", "uv", pushes("uv ov 1", "ov por 1", "ov uv 1"), lost).kind is PASS
     kicked = without("comparators.uv.kick")
     assert {key for key, found in judged(both(BENCH, kicked), RULES).items() if found.kind is OPEN} == {

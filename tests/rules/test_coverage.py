@@ -139,6 +139,15 @@ def test_net_that_guards_nothing_or_an_empty_domain() -> None:
     assert (missing.kind, missing.missing) == (OPEN, ("resets.spare_n.guards",))
 
 
+@pytest.mark.parametrize("fact", ["loads.core_logic.domain", "bypasses.skip_core.domain"])
+def test_what_does_not_say_where_it_lives_may_live_in_the_domain_guarded(fact: str) -> None:
+    net = "{{resets: {{spare_n: {{driven_by: [rst_out], active: low, guards: {guards}, domain: aon}}}}, "
+    net += "domains: {{spare: {{rail: avdd, kind: always_on}}}}}}"
+    said = one(both(net.format(guards="[spare]"), without(fact)), GUARDS, "spare_n")
+    assert (said.kind, said.missing) == (OPEN, (fact,))
+    assert one(both(net.format(guards="[]"), without(fact)), GUARDS, "spare_n").kind is FAIL
+
+
 def test_net_that_only_switches_something_on() -> None:
     assert one("resets: {por_n: {guards: []}}", GUARDS, "por_n").message == "switches analog on"
 
@@ -162,6 +171,29 @@ def test_detector_without_override_is_the_matter_of_another_rule() -> None:
 def test_single_point_is_open_where_ways_are_not_known() -> None:
     said = one(without("output_stages.uv_out.driven_by"), POINT, "por_n")
     assert (said.kind, said.missing) == (OPEN, ("output_stages.uv_out.driven_by",))
+
+
+def test_single_point_is_open_where_an_override_does_not_say_what_it_overrides() -> None:
+    said = one(without("bypasses.skip_resets.overrides"), POINT, "por_n")
+    assert (said.kind, said.missing) == (OPEN, ("bypasses.skip_resets.overrides",))
+
+
+@pytest.mark.parametrize(("combine", "kind"), [("any_asserts", FAIL), ("null", FAIL), ("all_agree", PASS)])
+def test_override_on_one_of_two_ways_behind_a_single_point(combine: str, kind: Kind) -> None:
+    """fork is stuck: one way is lifted, and the other still asserts unless both must agree. What is not said does not
+    lift the net."""
+    stage = "domain: aon, kind: buffer, hold: none"
+    patch = f"""
+    output_stages:
+      fork: {{driven_by: [por], {stage}}}
+      left: {{driven_by: [fork], {stage}}}
+      right: {{driven_by: [fork], {stage}}}
+      join: {{driven_by: [left, right], combine: {combine}, {stage}}}
+    resets: {{forked: {{driven_by: [join], active: low, guards: [adc], domain: aon}}}}
+    bypasses: {{skip_por: {{overrides: por, forces: released}}, skip_left: {{overrides: left, forces: released}}}}
+    """
+    said = one(patch, POINT, "forked")
+    assert (said.kind, "fork stands on every way to it" in said.message) == (kind, kind is FAIL)
 
 
 @pytest.mark.parametrize("seed", range(12))

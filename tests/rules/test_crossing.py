@@ -66,6 +66,25 @@ def test_rails_of_one_nominal_level_need_no_shifter() -> None:
     assert (said.kind, said.message) == (PASS, "from core_out at the same nominal level")
 
 
+def stage(driven_by: str, domain: str, kind: str = "buffer", hold: str = "none") -> str:
+    return f"{{driven_by: [{driven_by}], domain: {domain}, kind: {kind}, inverting: false, hold: {hold}}}"
+
+
+def test_several_signals_from_other_supplies() -> None:
+    """a is shifted, b comes at the same 1.8 V; into the core of 1.2 V both come bare, and the first is told."""
+    io = "rails: {vio: {nominal: 1.8 V}}, domains: {io: {rail: vio, kind: always_on}}"
+    shifted, bare = stage("uv", "io", kind="level_shifter"), stage("uv", "io")
+    patch = f"{{{io}, output_stages: {{a: {shifted}, b: {bare}, c: {stage('a, b', 'aon')}}}}}"
+    assert one(patch, STAGE, "c").message == "shifted from a; from b at the same nominal level"
+    patch = f"{{output_stages: {{a: {stage('uv', 'aon')}, b: {stage('uv', 'aon')}, c: {stage('a, b', 'core')}}}}}"
+    said = one(patch, STAGE, "c")
+    assert said.message == "a drives it from avdd, and it is read on vcore, with no level shifter between"
+    assert path_text(said.path) == "a drives c"
+    both_ends = both(patch, without("output_stages.a.kind", "output_stages.c.kind"))
+    assert one(both_ends, STAGE, "c").missing == ("output_stages.a.kind", "output_stages.c.kind")
+    assert (one("", STAGE, "gather").kind, one("", STAGE, "gather").message) == (NONE, "driven from its own rail alone")
+
+
 @pytest.mark.parametrize(
     ("gone", "missing"),
     [
@@ -103,7 +122,50 @@ def test_driver_on_a_later_rail() -> None:
 
 
 def test_driver_on_an_earlier_rail_is_alive() -> None:
-    assert one("output_stages: {core_out: {domain: core}}", HELD, "core_out").kind is NONE
+    said = one("output_stages: {core_out: {domain: core}}", HELD, "core_out")
+    assert (said.kind, said.message) == (NONE, "every driver is alive whenever it is")
+
+
+HOLD: Final = "{to: low, through: resistor, resistance: 1 Mohm, coupling: 1 fF}"
+
+
+def test_drivers_that_are_held_are_named() -> None:
+    moved = f"{{domain: analog, hold: {HOLD}}}"
+    said = one(f"output_stages: {{por_out: {moved}, uv_out: {moved}}}", HELD, "gather")
+    assert (said.kind, said.message, said.at) == (PASS, "held: por_out and uv_out", "output_stages.gather.driven_by")
+
+
+def test_what_comes_after_a_hold_is_judged_elsewhere() -> None:
+    """a passes on the hold of gather to por_n; b is judged here where no hold, or no net, lies on its way."""
+    said = one(f"output_stages: {{a: {stage('gather', 'analog')}, rst_out: {{driven_by: [a]}}}}", HELD, "rst_out")
+    assert (said.kind, said.message) == (
+        NONE, "its driver comes after the hold of gather (passive_default/chain_alive judges it)",
+    )  # fmt: skip
+    joined = "rst_out: {driven_by: [a, b], combine: any_asserts}"
+    for behind in ("gather", "uv"):
+        stages = f"a: {stage('gather', 'analog')}, b: {stage('uv', 'analog')}".replace("[uv]", f"[{behind}]")
+        said = one(f"output_stages: {{{stages}, {joined}}}", HELD, "rst_out")
+        assert said.kind is (FAIL if behind == "uv" else NONE)
+    assert said.message == "b drives it, is not held, and lives in analog, which is switched"
+    loose = f"a: {stage('ov', 'analog')}, b: {stage('uv', 'analog')}"
+    said = one(f"output_stages: {{{loose}, {joined}}}", HELD, "rst_out")
+    assert said.message == "a drives it, is not held, and lives in analog, which is switched"
+    aside = f"output_stages: {{b: {stage('gather', 'analog')}, c: {stage('b', 'aon')}}}"
+    assert one(aside, HELD, "c").message == "b drives it, is not held, and lives in analog, which is switched"
+
+
+def test_level_shifter_without_a_hold_leaves_its_driver_to_say() -> None:
+    moved = "{output_stages: {core_out: {hold: none}}, comparators: {uv_core: {domain: core}}}"
+    assert one(moved, HELD, "core_out").missing == ("comparators.uv_core.undecided",)
+    said = one(both(moved, "comparators: {uv_core: {undecided: undefined}}"), HELD, "core_out")
+    assert (said.kind, said.mend) == (
+        FAIL, "move uv_core to the domain of core_out, or let its output assert until it can decide",
+    )  # fmt: skip
+    assert one(both(moved, "comparators: {uv_core: {undecided: releases}}"), HELD, "core_out").kind is PASS
+    held = one("comparators: {uv_core: {domain: core}}", HELD, "core_out")
+    assert (held.kind, held.message, held.at) == (
+        PASS, "a level shifter whose output is held", "output_stages.core_out.hold",
+    )  # fmt: skip
 
 
 def test_detector_as_a_driver_says_what_its_output_does() -> None:
@@ -144,6 +206,57 @@ def test_detector_that_compares_with_a_switched_reference() -> None:
     assert path_text(said.path) == "uv_core takes its reference from ref_main supplied by analog"
 
 
+def test_words_of_what_it_leans_on() -> None:
+    """What biases it, and what enables it; what leans on uv_core through others is no such way."""
+    said = one("comparators: {uv_core: {bias: bias_main}}", DETECTOR, "uv_core")
+    assert said.message == "it is always on and is biased by bias_main, which lives in analog, which is switched"
+    assert said.why == "while analog is off, uv_core has no source"
+    assert said.mend == "let uv_core lean on something that is always on, or move bias_main to a domain that is"
+    gate = f"{{output_stages: {{gate: {stage('ov', 'analog')}, core_out: {{gated_by: gate}}}}}}"
+    assert one(gate, STAYS, "core_out").why == "while analog is off, core_out has no enable"
+    patch = f"{{{LATE}}}, references: {{ref_fast: {{leans_on: [bias_late]}}}}}}"
+    said = one(patch, "crossing/reference_stays_on", "ref_fast")
+    assert said.message == "it is always on and leans on bias_late, which lives in late, which is switched"
+    assert path_text(said.path) == "ref_fast leans on bias_late supplied by late"
+
+
+LATE: Final = "domains: {late: {rail: avdd, kind: switched}}, biases: {bias_late: {kind: resistor, domain: late}"
+"""A bias in a domain that is switched, it is not said by what."""
+
+
+def test_the_first_of_several_that_are_switched_is_told() -> None:
+    said = one("comparators: {uv_core: {bias: bias_main, reference: ref_main}}", DETECTOR, "uv_core")
+    assert said.message == "it is always on and is biased by bias_main, which lives in analog, which is switched"
+
+
+def test_a_source_off_the_chip_or_a_held_enable_hides_no_other() -> None:
+    off_chip = "{biases: {bias_x: {kind: external}}, comparators: {uv_core: {bias: bias_x, reference: ref_main}}}"
+    assert "takes its reference from ref_main" in one(off_chip, DETECTOR, "uv_core").message
+    held = f"output_stages: {{gate: {stage('ov', 'analog', hold=HOLD)}}}"
+    patch = f"{{{held}, {LATE}}}, references: {{ref_fast: {{gated_by: gate, leans_on: [bias_late]}}}}}}"
+    said = one(patch, "crossing/reference_stays_on", "ref_fast")
+    assert said.message == "it is always on and leans on bias_late, which lives in late, which is switched"
+
+
+def test_a_loop_that_the_switched_domain_is_not_in_excuses_nothing() -> None:
+    """ref_fast and bias_x feed each other; late waits for neither."""
+    patch = f"{{{LATE}, bias_x: {{kind: from_reference, source: ref_fast, domain: aon}}}}, "
+    patch += "references: {ref_fast: {bias: bias_x, leans_on: [bias_late]}}}"
+    said = one(patch, "crossing/reference_stays_on", "ref_fast")
+    assert (said.kind, said.why) == (FAIL, "while late is off, ref_fast has no source")
+
+
+def test_words_of_what_stays_on() -> None:
+    assert one("", DETECTOR, "uv").message == "leans on bias_start and ref_fast, which stay on"
+    assert one("", STAYS, "gather").message == "leans on nothing but its supply"
+    said = one("", "crossing/reference_stays_on", "ref_main")
+    assert (said.kind, said.message) == (NONE, "it lives in analog, which is switched")
+    off_chip = "{biases: {bias_x: {kind: external}}, references: {ref_fast: {bias: bias_x}}}"
+    assert one(off_chip, "crossing/reference_stays_on", "ref_fast").message == "leans on nothing but its supply"
+    said = one(off_chip, "crossing/bias_stays_on", "bias_x")
+    assert (said.kind, said.message) == (NONE, "it lives off the chip")
+
+
 def test_detector_that_asserts_meanwhile_is_safe() -> None:
     patch = "comparators: {uv_core: {reference: ref_main, undecided: asserts}}"
     said = one(patch, DETECTOR, "uv_core")
@@ -152,7 +265,10 @@ def test_detector_that_asserts_meanwhile_is_safe() -> None:
 
 def test_what_a_detector_switches_on_itself_is_the_matter_of_another_rule() -> None:
     """uv asserts por_n, which switches analog, in which ref_main lives."""
-    assert one("comparators: {uv: {reference: ref_main}}", DETECTOR, "uv").kind is NONE
+    said = one("comparators: {uv: {reference: ref_main}}", DETECTOR, "uv")
+    assert (said.kind, said.message) == (
+        NONE, "analog is switched on by what leans on it itself (self_bias says so)",
+    )  # fmt: skip
 
 
 def test_stage_enabled_from_the_domain_that_is_switched() -> None:

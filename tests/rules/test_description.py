@@ -71,8 +71,12 @@ def test_ranges_of_a_rail(patch: str, message: str, at: str) -> None:
 
 
 @pytest.mark.parametrize(
-    "patch", ["guaranteed: {min: 1.71 V, max: 1.89 V}", "damage: 1.98 V", "nominal: 1.71 V", "residual: 1.71 V"]
-)
+    "patch",
+    [
+        "guaranteed: {min: 1.71 V, max: 1.89 V}", "damage: 1.98 V", "nominal: 1.71 V", "residual: 1.71 V",
+        "residual: 0 V, delivered: {min: 0 V, max: 1.89 V}, guaranteed: {min: 0 V, max: 1.98 V}",
+    ],
+)  # fmt: skip
 def test_equal_facts_agree(patch: str) -> None:
     assert said("rails", "avdd", f"rails: {{avdd: {{{patch}}}}}").kind is PASS
 
@@ -83,6 +87,20 @@ def test_every_contradiction_is_told() -> None:
         "nominal (1.9 V) lies above the highest supply delivered (1.89 V); "
         "the highest supply signed off for (1.98 V) lies above the damage level (1.95 V)"
     )
+    assert answer.at == "rails.avdd.delivered"
+    assert answer.mend == "correct one of the two"
+
+
+def test_a_level_of_zero_is_told_as_such() -> None:
+    answer = said("rails", "avdd", "rails: {avdd: {nominal: 0 V}}")
+    assert answer.message == "the lowest supply delivered (1.71 V) lies above nominal (0 V)"
+
+
+def test_one_fact_alone_contradicts_nothing() -> None:
+    answer = said("rails", "vspare", "rails: {vspare: {nominal: 1.8 V}}")
+    assert (answer.kind, answer.message) == (NONE, "nothing is given of its ranges that could contradict")
+    answer = said("rails", "vspare", "rails: {vspare: {nominal: 1.8 V, damage: 2.5 V}}")
+    assert (answer.kind, answer.message) == (PASS, "its ranges agree")
 
 
 def test_what_is_not_given_contradicts_nothing() -> None:

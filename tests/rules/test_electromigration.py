@@ -278,12 +278,29 @@ def test_droop_that_trips_the_detector_again() -> None:
     assert path_text(said.path) == "por drives por_out"
 
 
+def test_supply_without_impedance_is_not_moved() -> None:
+    said = one(por_out("crowbar_peak: 1 A", "rails: {avdd: {source_impedance: 0 ohm}}"), DROOP)
+    assert (said.kind, said.message) == (Kind.PASS, "its crowbar current moves avdd by 0 V, at most 50 mV needed")
+
+
+def test_stiff_supply_that_a_large_current_moves_all_the_same() -> None:
+    """0.2 A through 0.4 ohm are 80 mV; 50 mV are kept up to 125 mA."""
+    said = one(por_out("crowbar_peak: 0.2 A"), DROOP)
+    assert said.message == "its crowbar current moves avdd by 80 mV, at most 50 mV needed"
+    assert said.mend == "at most 125 mA of crowbar current; now 200 mA"
+    assert said.at == "output_stages.por_out.input_edge"
+
+
 def test_detector_with_the_least_hysteresis_decides_through_all_stages() -> None:
     slow = "output_stages: {rst_out: {kind: schmitt, input_edge: 1 us, crowbar_peak: 10 uA}}"
     said = one(slow, DROOP, "rst_out")
     assert need(said) == 0.04
     assert path_text(said.path) == "ov drives ov_out drives ov_latch drives gather drives rst_out"
     assert said.why == "10 uA (peak as stated) through 400 mohm; least hysteresis of ov"
+    less = "comparators: {uv: {hysteresis: {amount: {min: 39 mV, max: 54 mV}}}}"
+    said = one(f"{slow}\n{less}", DROOP, "rst_out")
+    assert need(said) == 0.039
+    assert path_text(said.path) == "uv drives uv_out drives gather drives rst_out"
 
 
 def test_detector_of_another_rail_is_not_moved() -> None:

@@ -65,6 +65,7 @@ def test_all_of_an_element_are_asked_at_once() -> None:
         "comparators.uv.errors.offset.amount at one temperature and at one ramp",
         "comparators.uv.codes.a.rising at one corner",
     }
+    assert answer.why.startswith(f"{answer.at} at one ")
 
 
 def test_a_number_that_says_where_it_comes_from_and_covers_all() -> None:

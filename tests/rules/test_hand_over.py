@@ -39,6 +39,14 @@ def test_a_level_that_tracks_is_compared_at_the_same_temperature() -> None:
     )  # fmt: skip
 
 
+def test_a_level_that_tracks_passes_at_the_limit_between_the_extremes() -> None:
+    said = judged("comparators: {por: {trip: {falling: {min: 1.06 V, max: 1.43 V}}}}", RULES)[HOLE, "avdd"]
+    assert (said.kind, said.message) == (
+        PASS, "falling, por surely holds reset up to 1.06 V, at least 1.06 V needed",
+    )  # fmt: skip
+    assert said.why == "uv decides from 1.06 V on (ref_fast does)"
+
+
 def por(falling: str) -> str:
     """The power-on detector lets go of reset on the way down at a level; on the way up 60 mV higher."""
     return f"comparators: {{por: {{trip: {{rising: {{min: 1.2 V, max: 1.5 V}}, falling: {falling}}}}}}}"
@@ -92,6 +100,39 @@ def test_order_that_is_kept_only_typically() -> None:
     said = one(patch)
     assert said.kind is FAIL
     assert said.why.endswith("; typically they overlap by 200 mV")
+
+
+@pytest.mark.parametrize(
+    ("typical", "ends"),
+    [("1 V", "; typically they overlap by 0 V"), ("1.001 V", "to pass")],
+    ids=["at_the_limit", "beyond"],
+)
+def test_order_that_is_not_kept_typically_either(typical: str, ends: str) -> None:
+    works_from = f"references: {{ref_fast: {{works_from: {{typ: {typical}, max: 1.06 V}}}}}}"
+    said = one(both(por("{min: 0.96 V, typ: 1 V, max: 1.3 V}"), works_from))
+    assert (said.kind, said.why.endswith(ends)) == (FAIL, True)
+
+
+def test_detector_whose_own_supply_sets_where_it_decides() -> None:
+    """140 mV at 1.8 V in 500 ms take 38.9 ms."""
+    said = one(both(por("{min: 0.96 V, max: 1.3 V}"), "comparators: {uv: {works_from: {max: 1.1 V}}}"))
+    assert said.message == "falling, por surely holds reset up to 960 mV, at least 1.1 V needed"
+    assert said.why == (
+        "uv decides from 1.1 V on; between 960 mV and 1.1 V no detector holds reset, and avdd may take 38.89 ms to pass"
+    )
+    assert said.mend == "a level of por 140 mV higher, or uv working from 960 mV or less"
+
+
+def test_time_in_the_hole_of_a_rail_of_less_than_a_volt() -> None:
+    """100 mV at 0.9 V in 500 ms take 55.56 ms."""
+    said = one(both(por("{min: 0.96 V, max: 1.3 V}"), "rails: {avdd: {nominal: 0.9 V}}"))
+    assert said.why.endswith("no detector holds reset, and avdd may take 55.56 ms to pass")
+
+
+def test_no_time_in_the_hole_of_a_rail_that_is_said_to_be_off() -> None:
+    said = one(both(por("{min: 0.96 V, max: 1.3 V}"), "rails: {avdd: {nominal: 0 V}}"))
+    assert said.kind is FAIL
+    assert said.why.endswith("between 960 mV and 1.06 V no detector holds reset")
 
 
 def test_detector_that_asserts_while_it_cannot_decide_leaves_no_hole() -> None:
@@ -171,6 +212,118 @@ def test_detector_that_is_armed_before_its_rail_is_up() -> None:
     assert said.measure.have == pytest.approx(1.17 / 1.8 * 20e-3 + 0.5e-6, rel=1e-3)
     assert said.message.startswith("por arms it (ramp that goes back) after 13 ms, at least ")
     assert path_text(said.path) == "uv_core gated by por"
+    assert said.at == "comparators.uv_core.armed_by"
+
+
+VCORE_UP_S: Final = 18.763e-3 + 0.333e-3 + 0.4e-3 + 0.2e-3 + 1.888e-3
+"""avdd at 1.6887 V of 1.8 V in 20 ms, where uv lets go at the latest, and 30 mV there and back; the release of por_n;
+the delay of vcore, and 1.1328 V of 1.2 V in 2 ms. The delays of detector and stages are some microseconds more."""
+LATE: Final = """
+comparators: {uv_core: {armed_by: late}}
+output_stages: {late: {driven_by: [por], domain: aon, kind: buffer, inverting: false, works_from: 0.7 V, delay: DELAY,
+  hold: {to: low, through: resistor, resistance: 1 Mohm, coupling: 1 fF}, threshold: {min: 0.4 V, max: 1.25 V},
+  input_edge: 60 ns, drive: 8 kohm, load: 40 fF}}
+"""  # a stage that arms uv_core a while after por has let go, 13.0005 ms into the ramp
+
+
+@pytest.mark.parametrize(("delay", "kind"), [("8.57 ms", FAIL), ("8.6 ms", PASS)])
+def test_arming_by_a_stage_that_takes_its_time(delay: str, kind: Kind) -> None:
+    said = one(LATE.replace("DELAY", f"{{min: {delay}, max: 20 ms}}"), ARMED, "uv_core")
+    assert said.kind is kind
+    assert said.measure is not None
+    assert said.measure.need == pytest.approx(VCORE_UP_S, rel=3e-4)
+    assert said.measure.have == pytest.approx(13.0005e-3 + float(delay.split(maxsplit=1)[0]) * 1e-3, rel=1e-6)
+    assert said.why == (
+        "the slowest ramp, with the dip that the rail may have on its way; vcore has passed 1.133 V at the latest "
+        "after 21.59 ms"
+    )
+    assert said.mend == ("" if kind is PASS else "arm it 17.5 us later, or by a detector of vcore")
+
+
+def test_least_delay_of_the_arming_is_asked_for_where_it_could_do() -> None:
+    """With a delay of always 20 ms it would come late enough; with one of 8 ms it would not."""
+    said = one(LATE.replace("DELAY", "{max: 20 ms}"), ARMED, "uv_core")
+    assert (said.kind, said.missing[0]) == (OPEN, "output_stages.late.delay.min")
+    said = one(LATE.replace("DELAY", "{max: 8 ms}"), ARMED, "uv_core")
+    assert (said.kind, said.missing) == (FAIL, ())
+
+
+def test_times_count_from_where_the_rail_begins_to_rise() -> None:
+    """vio rises in 50 us, now or late: let go at half of it, armed 0.3 us and 5 ns later, and up at 1.45 V."""
+    levels = {"low_io": "{min: 0.9 V, max: 1 V}", "uv_io": "{min: 1.4 V, max: 1.45 V}"}
+    more = {"low_io": "role: power_on, undecided: asserts", "uv_io": "role: under_voltage, armed_by: late"}
+    detectors = ", ".join(
+        f"{name}: {{{more[name]}, watches: vio, domain: aon, bias: bias_start, reference: ref_fast, output: level, "
+        f"trip: {{rising: {level}, falling: {{min: 0.7 V, max: 0.8 V}}}}, works_from: {{max: 1.05 V}}, "
+        "delay: {min: 0.3 us, max: 2 us}}"
+        for name, level in levels.items()
+    )
+    rail = "rails: {vio: {nominal: 1.8 V, rise: 50 us, fall: {min: 1 ms, max: 500 ms}}}"
+    stage = LATE.replace("uv_core", "uv_io").replace("[por]", "[low_io]").replace("DELAY", "{min: 5 ns, max: 8 ns}")
+    said = one(both(stage, f"{{{rail}, comparators: {{{detectors}}}}}"), ARMED, "uv_io")
+    assert said.kind is FAIL
+    assert said.measure is not None
+    assert said.measure.have == pytest.approx(25e-6 + 0.3e-6 + 5e-9, rel=1e-6)
+    assert said.measure.need == pytest.approx(1.45 / 1.8 * 50e-6, rel=1e-6)
+    assert said.why.endswith("; vio has passed 1.45 V at the latest after 40.28 us")
+    assert said.mend == "arm it 15 us later, or by a detector of vio"
+
+
+def test_a_detector_may_be_armed_once_its_rail_has_passed_its_level_for_the_first_time() -> None:
+    """avdd goes from 1.2 V back to 1.185 V: 1.195 V are passed after 13.28 ms and again after 13.61 ms."""
+    detector = (
+        "{role: under_voltage, watches: avdd, armed_by: late, domain: aon, bias: bias_start, reference: ref_fast, "
+        "trip: {rising: {min: 1.19 V, max: 1.195 V}, falling: {min: 1.1 V, max: 1.11 V}}, works_from: {max: 1.05 V}, "
+        "output: level, delay: {min: 0.3 us, max: 2 us}}"
+    )
+    stage = LATE.replace("comparators: {uv_core: {armed_by: late}}", f"comparators: {{uv_low: {detector}}}")
+    said = one(stage.replace("DELAY", "{min: 0.3 ms, max: 20 ms}"), ARMED, "uv_low")
+    assert said.kind is PASS
+    assert said.measure is not None
+    assert said.measure.need == pytest.approx(1.195 / 1.8 * 20e-3, rel=1e-6)
+    assert said.measure.have == pytest.approx(13.3005e-3, rel=1e-6)
+
+
+def test_what_lets_go_twice_arms_when_it_does_so_first() -> None:
+    """avdd goes from 1.2 V back to 1.185 V, and a detector that lets go at 1.19 V asserts again at 1.186 V."""
+    twice = (
+        "{role: power_on, watches: avdd, domain: aon, bias: bias_start, reference: ref_fast, undecided: asserts, "
+        "trip: {rising: {min: 1.19 V, max: 1.19 V}, falling: {min: 1.186 V, max: 1.186 V}}, output: level, "
+        "works_from: {max: 1.05 V}, delay: {min: 0.3 us, max: 2 us}}"
+    )
+    said = one(f"comparators: {{uv_core: {{armed_by: twice}}, twice: {twice}}}", ARMED, "uv_core")
+    assert (said.kind, said.message.startswith("twice arms it (ramp that goes back) after ")) == (FAIL, True)
+    assert said.measure is not None
+    assert said.measure.have == pytest.approx(1.19 / 1.8 * 20e-3 + 0.3e-6, rel=1e-6)
+
+
+def test_rail_that_may_never_pass_the_level_of_what_is_armed() -> None:
+    """1.25 V, and vcore rises to 1.2 V: it may be armed while the rail is not up, however late."""
+    high = "comparators: {uv_core: {trip: {rising: {min: 1.24 V, max: 1.25 V}, falling: {min: 1.2 V, max: 1.21 V}}}}"
+    said = one(both(LATE.replace("DELAY", "{min: 9 ms, max: 20 ms}"), high), ARMED, "uv_core")
+    assert (said.kind, said.message) == (FAIL, "late may arm it while vcore is not up (fastest ramp)")
+
+
+@pytest.mark.parametrize("arming", ["por_out", "ov"])
+def test_what_may_arm_it_at_any_time(arming: str) -> None:
+    """por_out is not held before it is alive, and ov never asserts on the way up."""
+    said = one(f"comparators: {{uv_core: {{armed_by: {arming}}}}}", ARMED, "uv_core")
+    assert (said.kind, said.message) == (FAIL, f"{arming} may arm it while vcore is not up (fastest ramp)")
+    assert said.why == "every rail rises as fast as it may"
+    assert said.mend == "arm it by a detector of its own rail"
+
+
+def test_what_never_lets_go_arms_nothing() -> None:
+    """A detector that lets go at 1.95 V of a rail of 1.8 V."""
+    never = (
+        "{role: under_voltage, watches: avdd, domain: aon, bias: bias_start, reference: ref_fast, output: level, "
+        "trip: {rising: {min: 1.95 V, max: 2 V}, falling: {min: 1.9 V, max: 1.95 V}}, works_from: {max: 1.05 V}, "
+        "undecided: asserts, delay: {min: 0.3 us, max: 2 us}}"
+    )
+    said = one(f"comparators: {{uv_core: {{armed_by: never}}, never: {never}}}", ARMED, "uv_core")
+    assert (said.kind, said.message) == (NONE, "never asserts nothing that it lets go of in a start-up")
+    said = one("comparators: {uv_core: {armed_by: ref_main}}", ARMED, "uv_core")
+    assert (said.kind, said.message) == (NONE, "ref_main asserts nothing that it lets go of in a start-up")
 
 
 def test_detectors_of_one_rail_that_arm_each_other() -> None:
@@ -192,7 +345,13 @@ def test_detector_that_is_armed_late_enough() -> None:
     assert one(patch, ARMED, "uv_late").kind is PASS
 
 
-@pytest.mark.parametrize("fact", ["rails.avdd.rise", "comparators.por.output", "rails.vcore.nominal"])
+@pytest.mark.parametrize(
+    "fact",
+    [
+        "rails.avdd.rise", "comparators.por.output", "rails.vcore.nominal", "references.ref_fast.settling",
+        "output_stages.rst_out.delay",
+    ],
+)  # fmt: skip
 def test_armed_is_open_without(fact: str) -> None:
     said = one(both("comparators: {uv_core: {armed_by: por}}", without(fact)), ARMED, "uv_core")
     assert (said.kind, fact in said.missing) == (OPEN, True)
@@ -206,5 +365,6 @@ def test_a_level_without_a_reference_and_without_components_is_for_a_person() ->
     assert judged(known, RULES)[HOLE, "avdd"].kind is Kind.NOT_APPLICABLE
     asked = judged(unknown, RULES)[HOLE, "avdd"]
     assert asked.kind is Kind.REVIEW
+    assert asked.message == "falling, por surely holds reset up to 900 mV, at least 1.06 V needed"
     assert asked.measure is not None
     assert asked.measure.have == pytest.approx(0.9, abs=1e-12)

@@ -123,6 +123,23 @@ def test_small_hysteresis_is_not_missing() -> None:
     assert said("covers_disturbance", patch).kind is FAIL
 
 
+def test_least_hysteresis_of_zero_is_of_no_sense() -> None:
+    """The rising level cannot lie below the falling one: what is too small is told as such."""
+    patch = amount("0 mV", "2 mV")
+    assert said("sense", patch).kind is PASS
+    assert said("false_trips", patch).message == (
+        "the hysteresis does not cover what disturbs it (hysteresis/covers_disturbance)"
+    )
+    late = said("feedback_in_time", patch)
+    assert (late.kind, late.message) == (
+        FAIL, "until the level has moved, the supply travels 3.6 mV, at most 0 V needed",
+    )  # fmt: skip
+    level_with_it = "comparators: {uv: {trip: {rising: {min: 1.6 V, max: 1.645 V}}}}"
+    assert said("fits_window", level_with_it).message == "greatest hysteresis 0 V, at most 56 mV needed"
+    equal = "comparators: {uv: {trip: {rising: 1.62 V, falling: 1.62 V}}}"  # beside an amount that is stated
+    assert said("sense", equal).kind is PASS
+
+
 # sense
 
 
@@ -495,6 +512,22 @@ def test_the_steepest_part_of_the_ripple_can_be_faster_than_the_ramp() -> None:
     assert found.measure is not None
     assert found.measure.have == pytest.approx(math.pi * 10e6 * 10e-3 * 0.1e-6, rel=1e-12)
     assert found.why.endswith("the fastest ripple")
+
+
+def test_a_supply_that_never_moves_lets_the_feedback_take_its_time() -> None:
+    still = "rails: {avdd: {nominal: 0 V, ripple: {peak_to_peak: 0 V}}}"
+    found = said("feedback_in_time", still, "comparators: {uv: {hysteresis: {feedback_delay: 1 s}}}")
+    assert (found.kind, found.message) == (
+        PASS, "until the level has moved, the supply travels 0 V, at most 46 mV needed",
+    )  # fmt: skip
+
+
+def test_a_very_slow_supply_bounds_the_feedback_all_the_same() -> None:
+    """1.8 V in 4 s are 450 mV/s: 46 mV take 102.2 ms."""
+    slow = "rails: {avdd: {rise: {min: 4 s, max: 5 s}, ripple: {peak_to_peak: 0 V}}}"
+    found = said("feedback_in_time", slow, "comparators: {uv: {hysteresis: {feedback_delay: 0.2 s}}}")
+    assert found.message == "until the level has moved, the supply travels 90 mV, at most 46 mV needed"
+    assert found.mend == "a feedback delay of at most 102 ms; now 200 ms"
 
 
 def test_no_ripple_has_no_frequency() -> None:

@@ -69,6 +69,32 @@ def test_way_to_what_is_off_is_shown() -> None:
     assert path_text(said.path) == "uv takes its reference from ref_fast"
 
 
+def test_without_a_way_to_what_is_off_the_rail_is_shown() -> None:
+    """What is masked or off itself leans on nothing that is off; of two detectors the first that does shows its way."""
+    for facts in ("off: [uv]", "masked: [uv]", "off: [gather]"):
+        assert path_text(one(mode(facts), LIVE, "core_regulator").path) == "core_regulator supplied by avdd"
+    twin = """
+    references: {ref_twin: {kind: band_gap, domain: aon, self_biased: false, bias: bias_start}}
+    comparators: {uv_twin: {role: under_voltage, watches: avdd, domain: aon, bias: bias_start, reference: ref_twin}}
+    output_stages: {gather: {driven_by: [por_out, uv_out, ov_latch, uv_twin]}}
+    """
+    said = one(both(twin, mode("off: [uv_twin, ref_fast]")), LIVE, "core_regulator")
+    assert said.message.endswith("uv_twin is off; uv leans on ref_fast, which is off")
+    assert path_text(said.path) == "uv takes its reference from ref_fast"
+    said = one(both(twin, mode("off: [ref_twin, ref_fast]")), LIVE, "core_regulator")
+    assert said.message.endswith("uv_twin leans on ref_twin, which is off; uv leans on ref_fast, which is off")
+    assert path_text(said.path) == "uv_twin takes its reference from ref_twin"
+
+
+def test_load_that_nothing_resets_or_no_detector_of_its_rails() -> None:
+    said = one("resets: {core_rst_n: {guards: [adc]}}", LIVE, "core_logic")
+    assert (said.kind, said.message) == (NONE, "no reset net guards it (reach/has_reset says so)")
+    said = one("output_stages: {core_out: {driven_by: [gather]}}", LIVE, "core_logic")
+    assert (said.kind, said.message) == (
+        NONE, "no detector of its rails resets it (reach/every_rail and coverage say so)",
+    )  # fmt: skip
+
+
 def test_power_on_detector_does_not_stand_in_for_the_under_voltage_detector() -> None:
     assert one(mode("off: [uv]"), LIVE, "core_regulator").kind is FAIL
     alone = both("output_stages: {gather: {driven_by: [por_out, ov_latch]}}", mode("off: [uv]"))
@@ -144,6 +170,27 @@ def test_rail_without_its_over_voltage_detector_in_a_mode() -> None:
     assert one(both(moved, mode("off: [core_regulator], masked: [ov]")), OVER, "vcore").kind is PASS
 
 
+def test_one_of_two_over_voltage_detectors_is_enough() -> None:
+    twin = "comparators: {ov_twin: {role: over_voltage, watches: avdd, domain: aon, bias: bias_start}}"
+    assert one(both(twin, mode("masked: [ov]")), OVER, "avdd").message == "watched in nap"
+    said = one(both(twin, mode("masked: [ov], off: [ov_twin]")), OVER, "avdd")
+    assert said.message == "in nap no over-voltage detector watches it: ov is masked; ov_twin is off"
+    assert one("modes: null", OVER, "avdd").message == "no mode is described"
+
+
+def test_a_rail_that_is_off_in_one_mode_is_watched_in_the_next() -> None:
+    moved = "comparators: {ov: {watches: vcore}}"
+    modes = "modes: {drift: null, self_test: null, a: {off: [core_regulator]}, b: {masked: [ov]}}"
+    said = one(both(moved, modes), OVER, "vcore")
+    assert (said.kind, said.message) == (FAIL, "in b no over-voltage detector watches it: ov is masked")
+
+
+@pytest.mark.parametrize("fact", ["comparators.ov.bias", "comparators.ov.domain"])
+def test_over_voltage_is_open_where_it_is_not_said_what_the_detector_leans_on(fact: str) -> None:
+    said = one(both(mode("off: [ref_main]"), without(fact)), OVER, "avdd")
+    assert (said.kind, said.missing) == (OPEN, (fact,))
+
+
 # modes/sampling
 
 
@@ -167,6 +214,65 @@ def test_sampling_against_the_collapse() -> None:
 def test_sampling_at_its_limit(share: float, kind: Kind) -> None:
     period_us = share * (1.627 * 0.995 - 3 * 0.4e-3 / 0.367 - 1.6) / 2e3 * 1e6
     assert one(sampled(f"{period_us!r} us"), SAMPLING, "uv").kind is kind
+
+
+OVER_ROOM_V: Final = 1.98 - (1.958 * (1 + 0.004 + 0.001) + 3 * 0.4e-3 / 0.31)
+"""Up to 1.98 V adc works; the highest rising level of ov, its errors added."""
+
+
+def over(period: str) -> str:
+    return both(mode("sampled: [ov]"), f"comparators: {{ov: {{sampling: {period}}}}}")
+
+
+@pytest.mark.parametrize(("share", "kind"), [(0.999, PASS), (1.0, PASS), (1.001, FAIL)])
+def test_sampling_against_the_overshoot_at_its_limit(share: float, kind: Kind) -> None:
+    said = one(over(f"{share * OVER_ROOM_V / 1e3 * 1e6!r} us"), SAMPLING, "ov")
+    assert said.kind is kind
+    assert said.measure is not None
+    assert said.measure.need == pytest.approx(OVER_ROOM_V, rel=1e-9)
+
+
+def test_sampling_against_the_overshoot() -> None:
+    """1.98 V less 1.97166 V are 8.339 mV, at 1 V/ms."""
+    said = one(over("9 us"), SAMPLING, "ov")
+    assert said.message == "sampled in nap: between two samples avdd moves 9 mV, at most 8.339 mV needed"
+    assert said.why == "1 V/ms for 9 us; adc works up to 1.98 V, the level lies at 1.972 V at its worst"
+    assert said.mend == "a period of 8.33 us or less"
+    assert said.at == "comparators.ov.sampling"
+
+
+def test_the_most_demanding_load_sets_the_room() -> None:
+    """core_regulator bears 1.5 V to 2.1 V, adc 1.6 V to 1.98 V: as before, whichever comes first."""
+    wide = "loads: {core_regulator: {needs: {0: {works: {min: 1.5 V, max: 2.1 V}}}}}"
+    for patch, of, rail_end in ((sampled("20 us"), "uv", "from 1.6 V"), (over("9 us"), "ov", "up to 1.98 V")):
+        alone, said = one(patch, SAMPLING, of), one(both(patch, wide), SAMPLING, of)
+        assert said.measure == alone.measure
+        assert f"; adc works {rail_end}, " in said.why
+        assert said.path[-1].element == "adc"
+
+
+def test_sampling_of_a_rail_that_never_moves() -> None:
+    said = one(both(sampled("20 us"), "rails: {avdd: {collapse: 0 V/s}}"), SAMPLING, "uv")
+    assert (said.kind, said.message) == (
+        PASS, "sampled in nap: between two samples avdd moves 0 V, at most 15.6 mV needed",
+    )  # fmt: skip
+
+
+@pytest.mark.parametrize(("least", "kind"), [("1.6 V", PASS), ("1.6001 V", NONE)])
+def test_level_that_does_not_protect_at_all_is_judged_elsewhere(least: str, kind: Kind) -> None:
+    """The lowest falling level is 1.6 V: a detector that a rail at rest lets sample as seldom as it will."""
+    levels = "trip: {rising: {min: 1.65 V, max: 1.7 V}, falling: {min: 1.6 V, max: 1.64 V}}"
+    loads = ", ".join(f"{name}: {{needs: {{0: {{works: {{min: {least}}}}}}}}}" for name in ("adc", "core_regulator"))
+    patch = f"{{comparators: {{uv: {{{levels}}}}}, loads: {{{loads}}}, rails: {{avdd: {{collapse: 0 V/s}}}}}}"
+    said = one(both(sampled("4 us"), patch), SAMPLING, "uv")
+    assert said.kind is kind
+    if kind is NONE:
+        assert said.message == "its level does not protect its loads at all (trip_window/guarantee says so)"
+
+
+def test_sampled_detector_that_guards_no_load_of_its_rail() -> None:
+    patch = "{resets: {por_n: {guards: [core_logic]}, core_rst_n: {guards: [core_logic]}}}"
+    assert one(both(sampled("4 us"), patch), SAMPLING, "uv").message == "it guards no load of its rail"
 
 
 @pytest.mark.parametrize(

@@ -70,6 +70,41 @@ def test_words() -> None:
     assert answer.mend == "a detector that works to 1.5 V or more; now 1.45 V"
 
 
+def test_the_end_with_less_room_is_told() -> None:
+    """Levels from 1.1 V to 1.5 V: 0.1 V above works_from; 0.2 V, 0.1 V and 0.05 V below works_to."""
+    from_1_v = "comparators: {por: {works_from: {max: 1 V}, works_to: {min: LIMIT}}}"
+    for limit, message in (
+        ("1.7 V", "its lowest level 1.1 V, at least 1 V needed"),
+        ("1.55 V", "its highest level 1.5 V, at most 1.55 V needed"),
+    ):
+        answer = said("levels_inside", from_1_v.replace("LIMIT", limit))
+        assert (answer.kind, answer.message) == (PASS, message)
+    assert said("levels_inside", from_1_v.replace("LIMIT", "1.7 V")).at == "comparators.por.works_from"
+    assert said("levels_inside", from_1_v.replace("LIMIT", "1.55 V")).at == "comparators.por.works_to"
+
+
+def test_of_two_ends_with_as_much_room_the_lowest_is_told() -> None:
+    """250 mV at either end, in numbers that a float holds exactly."""
+    trip = "trip: {rising: {min: 1.375 V, max: 1.5 V}, falling: {min: 1.25 V, max: 1.375 V}}"
+    answer = said("levels_inside", f"comparators: {{por: {{{trip}, works_from: 1 V, works_to: 1.75 V}}}}")
+    assert answer.message == "its lowest level 1.25 V, at least 1 V needed"
+
+
+def test_detector_without_levels_and_without_codes_is_open() -> None:
+    answer = judged(without("comparators.por.trip", "comparators.por.hysteresis"), RULES)[
+        "own_range/levels_inside", "por"
+    ]
+    assert (answer.kind, answer.missing) == (OPEN, ("comparators.por.trip.falling", "comparators.por.trip.rising"))
+
+
+def test_levels_that_are_stated_count_beside_the_codes() -> None:
+    """The code alone reaches from 1.1 V to 1.5 V, the levels stated from 1 V to 1.6 V."""
+    codes = "ships_with: a, codes: {a: {rising: {min: 1.2 V, max: 1.5 V}, falling: {min: 1.1 V, max: 1.4 V}}}"
+    trip = "trip: {rising: {min: 1.15 V, max: 1.6 V}, falling: {min: 1 V, max: 1.4 V}}"
+    answer = said("levels_inside", f"comparators: {{por: {{{codes}, {trip}, works_to: {{min: 1.9 V}}}}}}")
+    assert answer.why == "works from 950 mV to 1.9 V; levels 1 V to 1.6 V, over 1 codes"
+
+
 def test_every_code_counts() -> None:
     patch = """
     comparators:
@@ -126,10 +161,28 @@ def test_a_level_above_the_own_range_is_said_once() -> None:
     )  # fmt: skip
 
 
+def test_a_level_at_the_end_of_the_own_range_is_judged_with_the_answer() -> None:
+    answer = said("survives", "comparators: {ov: {works_to: 1.97 V}}", of="ov")
+    assert (answer.kind, answer.message) == (FAIL, "until the answer avdd reaches 1.974 V, at most 1.97 V needed")
+    assert answer.why == "rising level up to 1.97 V, 3.5 mV more in 3.5 us; works to 1.97 V"
+    assert answer.mend == "a level 3.5 mV lower, or a faster answer"
+    assert answer.at == "comparators.ov.trip.rising"
+
+
+def test_levels_of_a_code_that_do_not_survive() -> None:
+    codes = "codes: {a: {rising: {min: 1.95 V, max: 1.97 V}, falling: {min: 1.9 V, max: 1.93 V}}}"
+    patch = f"comparators: {{ov: {{trip: null, ships_with: a, {codes}}}}}"
+    answer = said("survives", patch, "rails: {avdd: {damage: 1.95 V}}", of="ov")
+    assert (answer.kind, answer.at) == (FAIL, "comparators.ov.codes")
+
+
 def test_a_detector_fed_from_elsewhere_must_still_report_below_the_damage() -> None:
     patch = "comparators: {ov: {domain: core, works_to: null}}"
     answer = said("survives", patch, of="ov")
     assert (answer.kind, answer.measure is not None and answer.measure.need) == (PASS, 2.5)
+    assert answer.why.endswith("; avdd damages above 2.5 V")
+    high = said("survives", patch, "rails: {avdd: {damage: 1.96 V}}", of="ov")
+    assert (high.kind, high.message) == (FAIL, "until the answer avdd reaches 1.974 V, at most 1.96 V needed")
     assert said("survives", of="uv").message == "reports no over-voltage"
 
 

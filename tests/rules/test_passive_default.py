@@ -224,6 +224,14 @@ def test_one_held_driver_of_several_is_not_enough() -> None:
         "driven directly by uv: the output of a comparator has no hold; "
         "nothing holds the output of uv_out and of ov_out, which drives it"
     )
+    assert path_text(said.path) == "uv drives por_n"
+    loose = one("resets: {por_n: {driven_by: [rst_out, uv_out, ov_out]}}", HELD, "por_n")
+    assert path_text(loose.path) == "uv_out drives por_n"
+    bare = one("resets: {por_n: {driven_by: [por, uv]}}", HELD, "por_n")
+    assert bare.message == "driven directly by por and uv: the output of a comparator has no hold"
+    assert path_text(bare.path) == "por drives por_n"
+    unsaid = one("resets: {por_n: {driven_by: [por], active: null}}", HELD, "por_n")
+    assert unsaid.mend == "put a stage with an output held between por and the net"
     both = one("resets: {por_n: {driven_by: [rst_out, core_out]}}", HELD, "por_n")
     assert (both.kind, both.message) == (Kind.PASS, "held by rst_out and core_out")
 

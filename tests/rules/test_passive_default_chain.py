@@ -61,6 +61,13 @@ def test_stage_in_a_switched_domain_loses_the_hold_before_it() -> None:
     assert one(held, ALIVE, "gather").kind is Kind.PASS
 
 
+def test_the_first_of_several_stages_that_lose_the_hold_is_told() -> None:
+    second = {"driven_by": ["stretch"], "domain": "analog", "kind": "buffer", "hold": "none"}
+    said = one(stretch(stages(second=second, rst_out={"driven_by": ["second"]}), domain="analog"), ALIVE, "gather")
+    assert said.message.startswith("stretch comes after its hold, is not held, and ")
+    assert path_text(said.path) == "gather drives stretch"
+
+
 def test_gated_stage_loses_the_hold_before_it() -> None:
     said = one(stretch(gated_by="core_rst_n"), ALIVE, "gather")
     assert said.message == "stretch comes after its hold, is not held, and works only when core_rst_n enables it"
@@ -123,6 +130,8 @@ def test_the_last_stage_is_judged_by_one_rule_alone() -> None:
     assert said.kind is Kind.NOT_APPLICABLE
     assert said.message == "the output of rst_out is not held (passive_default/held says so)"
     assert set(of_kind(judged(patch, RULES), Kind.FAIL)) == {(HELD, "por_n")}
+    both = "output_stages: {rst_out: {hold: none, domain: analog}, core_out: {hold: none, domain: analog}}"
+    assert one(both, ALIVE, "gather").message == "the output of rst_out is not held (passive_default/held says so)"
 
 
 def test_a_stage_that_leads_to_no_reset_net_is_no_part_of_the_chain() -> None:
@@ -187,6 +196,11 @@ def test_every_net_and_every_way_counts() -> None:
     assert path_text(said.path) == "gather drives stretch drives rst_out drives por_n"
     right = "resets: {also_n: {driven_by: [rst_out], active: low, guards: [adc]}}"
     assert one(right, LEVEL, "rst_out").message == "held low, it leaves por_n low and also_n low"
+    assert path_text(one(right, LEVEL, "rst_out").path) == "rst_out drives por_n"
+    two = "resets: {rst: {driven_by: [rst_out], active: high}, rst2: {driven_by: [rst_out], active: high}}"
+    said = one(two, LEVEL, "rst_out")
+    assert said.message == "held low, it leaves rst low, which resets when high"
+    assert path_text(said.path) == "rst_out drives rst"
 
 
 @pytest.mark.parametrize("inverting", [False, True])

@@ -67,7 +67,42 @@ def test_has_reset_is_open_where_a_net_does_not_say_what_it_guards() -> None:
     assert one(patch, HAS, "core_logic").missing == ("loads.core_logic.domain",)
 
 
+def test_domain_of_a_load_counts_only_where_a_net_guards_a_domain() -> None:
+    """Without a net that guards a domain, to know that of core_logic would change nothing."""
+    patch = both("resets: {core_rst_n: {guards: [adc]}}", without("loads.core_logic.domain"))
+    said = one(patch, HAS, "core_logic")
+    assert (said.kind, said.missing) == (FAIL, ())
+    elsewhere = both(patch, "resets: {core_rst_n: {guards: [adc, analog]}}")
+    assert one(elsewhere, HAS, "core_logic").missing == ("loads.core_logic.domain",)
+    lives_there = both(elsewhere, "loads: {core_logic: {domain: core}}")
+    assert (one(lives_there, HAS, "core_logic").kind, one(lives_there, HAS, "core_logic").missing) == (FAIL, ())
+
+
+def test_what_no_net_guards_is_judged_once() -> None:
+    for rule in (EVERY, CLOCK):
+        said = one("resets: {core_rst_n: {guards: [adc]}}", rule, "core_logic")
+        assert (said.kind, said.message) == (NONE, "no reset net guards it (reach/has_reset says so)")
+
+
 # reach/every_rail
+
+
+def test_several_detectors_that_do_not_reach_several_nets() -> None:
+    said = one("output_stages: {gather: {driven_by: [ov_latch]}}", EVERY, "adc")
+    assert said.message == "it needs avdd, and no detector of avdd resets it"
+    assert said.why == "por and uv watch avdd, and do not reach por_n and core_rst_n"
+    assert said.mend == "lead the decision of por or uv to por_n or core_rst_n"
+    assert said.at == "loads.adc.needs"
+
+
+def test_the_first_of_two_rails_that_are_lost_is_told() -> None:
+    said = one("output_stages: {gather: {driven_by: [ov_latch]}, core_out: {driven_by: [gather]}}", EVERY, "adc")
+    assert said.message == "it needs avdd, and no detector of avdd resets it"
+    assert path_text(said.path) == "adc supplied by avdd"
+
+
+def test_every_rail_is_open_without_the_rails_needed() -> None:
+    assert one(without("loads.core_logic.needs"), EVERY, "core_logic").missing == ("loads.core_logic.needs",)
 
 
 def test_load_that_no_detector_of_its_rail_resets() -> None:
@@ -142,6 +177,28 @@ def test_net_that_is_too_slow() -> None:
     assert path_text(said.path) == "rst_out drives por_n"
 
 
+def test_the_slowest_of_several_stages_is_told() -> None:
+    """ln 9 times 8 kohm times 400 fF are 7.03 ns, times 30 kohm times 4 pF 263.7 ns; no count of receivers is given."""
+    patch = "{resets: {por_n: {driven_by: [rst_out, core_out], receivers: {count: null}}}, output_stages: {core_out: "
+    said = one(patch + "{drive: {max: 30 kohm}, load: 4 pF}}}", EDGE, "por_n")
+    assert said.measure is not None
+    assert said.measure.have == pytest.approx(math.log(9) * 30e3 * 4e-12, rel=1e-12)
+    assert said.message == "core_out moves it within 263.7 ns, at most 100 ns needed"
+    assert said.why == "30 kohm of drive on 4 pF"
+    assert said.mend == "a drive of 11.3 kohm or less, or a load of 1.51 pF or less"
+
+
+@pytest.mark.parametrize("nothing", ["drive: 0 ohm", "load: 0 fF"])
+def test_edge_without_drive_resistance_or_without_load(nothing: str) -> None:
+    said = one(f"output_stages: {{rst_out: {{{nothing}}}}}", EDGE, "por_n")
+    assert (said.kind, said.message) == (PASS, "rst_out moves it within 0 s, at most 100 ns needed")
+
+
+def test_net_that_no_stage_drives_has_no_edge_to_judge() -> None:
+    said = one("resets: {por_n: {driven_by: [por]}}", EDGE, "por_n")
+    assert (said.kind, said.message) == (NONE, "no stage drives it (passive_default/held says so)")
+
+
 @pytest.mark.parametrize(
     "fact",
     ["output_stages.rst_out.drive", "output_stages.rst_out.load", "process.plain_edge", "resets.por_n.driven_by"],
@@ -156,7 +213,10 @@ def test_edge_is_open_without(fact: str) -> None:
 def test_clocked_load_that_is_released_at_any_time() -> None:
     said = one("loads: {core_logic: {synchronised: false}}", CLOCK, "core_logic")
     assert said.message == "it has a clock, and its reset is released at any time"
-    assert one("loads: {core_logic: {clocked: false, synchronised: null}}", CLOCK, "core_logic").kind is NONE
+    assert said.at == "loads.core_logic.synchronised"
+    assert one("", CLOCK, "core_logic").message == "released in step with its clock"
+    still = one("loads: {core_logic: {clocked: false, synchronised: null}}", CLOCK, "core_logic")
+    assert (still.kind, still.message) == (NONE, "it has no clock")
 
 
 @pytest.mark.parametrize("fact", ["loads.core_logic.clocked", "loads.core_logic.synchronised"])
@@ -181,6 +241,22 @@ def test_two_detectors_alike_that_must_agree() -> None:
     assert said.mend == (
         "combine: any_asserts, which is the safe way against a missed reset; or say combined_against: false_reset"
     )
+
+
+def test_what_must_agree_against_a_missed_reset_makes_it_likelier() -> None:
+    missed = one(PAIR.replace("COMBINE", "combine: all_agree, combined_against: missed_reset"), STAGE, "twins")
+    assert missed.why == "it is meant against a missed reset, which it makes more likely"
+    assert one(PAIR.replace("COMBINE", "combine: all_agree"), STAGE, "twins").why == ""
+    meant = one(PAIR.replace("COMBINE", "combine: all_agree, combined_against: false_reset"), STAGE, "twins")
+    assert (meant.message, meant.at) == (
+        "like detectors must agree, against false resets", "output_stages.twins.combined_against",
+    )  # fmt: skip
+
+
+def test_one_driver_alone_is_combined_with_none() -> None:
+    said = one("", STAGE, "uv_out")
+    assert (said.kind, said.message) == (NONE, "it has one driver")
+    assert (one("", STAGE, "gather").kind, one("", STAGE, "gather").message) == (PASS, "any of its drivers asserts")
 
 
 @pytest.mark.parametrize(

@@ -81,6 +81,25 @@ def test_pulse_of_another_detector_is_asked() -> None:
     assert (over.kind, over.message) == (REVIEW, "reports by a pulse of 1 ms or more")
 
 
+def test_pulse_of_a_detector_that_guards_no_load_is_held_against_none() -> None:
+    """No dip takes a load out of its range; of a power-on detector the pulse fails all the same."""
+    nothing = "resets: {por_n: {guards: [core_logic]}, core_rst_n: {guards: [core_logic]}}"
+    said = one(both(pulse("uv", "0.5 V"), nothing), HELD, "uv")
+    assert (said.kind, said.message) == (
+        REVIEW, "resets by a pulse of 1 ms or more, which ends however low avdd still is",
+    )  # fmt: skip
+    assert one(both(pulse("por", "0.5 V"), nothing), HELD, "por").message == said.message
+
+
+def test_pulse_of_unknown_length_and_where_it_is_told() -> None:
+    said = one(both(pulse("uv", "1.62 V"), without("comparators.uv.pulse")), HELD, "uv")
+    assert said.message == "resets by a pulse, which ends however low avdd still is"
+    assert said.mend == "an output that is a level held for every supply below the threshold"
+    for of in ("por", "uv", "ov"):
+        assert one(pulse(of, "1.62 V"), HELD, of).at == f"comparators.{of}.output"
+    assert one("", HELD, "por").message == "a level, held for every supply on its side of the threshold"
+
+
 def test_level_output_needs_no_more() -> None:
     """The trap: a level that re-arms far below its threshold still asserts for every supply below it."""
     assert one("comparators: {por: {rearms_below: 0.1 V}, uv: {rearms_below: 0.1 V}}", HELD, "uv").kind is PASS
@@ -120,8 +139,12 @@ def test_residual_is_open_without(fact: str) -> None:
 
 
 def test_detector_that_states_no_level_of_re_arming() -> None:
-    assert one(without("comparators.uv.rearms_below"), RESIDUAL, "uv").kind is NONE
-    assert one("", RESIDUAL, "ov").kind is NONE
+    said = one(without("comparators.uv.rearms_below"), RESIDUAL, "uv")
+    assert (said.kind, said.message) == (NONE, "states no level of re-arming, and is not what starts the chip")
+    said = one(both(pulse("uv", "null")), RESIDUAL, "uv")
+    assert (said.kind, said.missing) == (OPEN, ("comparators.uv.rearms_below",))
+    said = one("", RESIDUAL, "ov")
+    assert (said.kind, said.message) == (NONE, "a rail that starts from below is nothing to it")
 
 
 # rearming/discharge
@@ -175,5 +198,43 @@ def test_collapse_or_fall_gives_the_steepest_fall() -> None:
     assert gone.missing == ("rails.avdd.fall",)
 
 
+def test_nothing_discharges_a_delay_of_unknown_length() -> None:
+    said = one("output_stages: {rst_out: {discharge: none, release_delay: {max: null}}}", DISCHARGE, "rst_out")
+    assert said.message == "nothing sets its release delay back: the next one may be over at once"
+    assert said.at == "output_stages.rst_out.discharge"
+
+
+def test_the_shortest_of_all_times_behind_a_stage_counts() -> None:
+    """core_out has detectors of both rails behind it: of their times off the shorter, of their dips the shortest."""
+    slow = "output_stages: {core_out: {discharge: {within: 60 ms}}}"
+    off = "rails: {avdd: {off_time: 50 ms}, vcore: {off_time: 40 ms}}"
+    free = ", ".join(f"{name}: {{needs: {{0: {{works: {{min: 0 V}}}}}}}}" for name in ("core_regulator", "core_logic"))
+    resting = f"loads: {{{free}, adc: {{needs: {{0: {{works: {{min: 1.7 V}}}}, 1: {{works: {{min: 1.2 V}}}}}}}}}}"
+    said = one(both(slow, off, resting), DISCHARGE, "core_out")  # no level lies above what adc needs
+    assert (said.kind, said.why) == (FAIL, "vcore stays off for 40 ms or more")
+    assert said.mend == "a discharge within 40 ms"
+    core_s = (1.095 * 0.995 - 3 * 0.4e-3 / 0.542 - 1.08) / 1.2e3 + (1.125 * 0.995 - 3 * 0.4e-3 / 0.542 - 1.08) / 60e3
+    said = one(slow, DISCHARGE, "core_out")  # 1.2 V down in 1 ms, up in 20 us: less than the 9.613 us of uv
+    assert said.measure is not None
+    assert said.measure.need == pytest.approx(core_s, rel=1e-9)
+    assert said.why == "a dip that takes core_logic out of its range makes uv_core assert for 6.712 us or more"
+
+
+def test_stage_behind_which_no_detector_of_too_low_a_supply_stands() -> None:
+    stage = "{driven_by: [ov], domain: aon, kind: buffer, hold: none, release_delay: 1 ms, discharge: {within: 1 ms}}"
+    said = one(f"output_stages: {{alone: {stage}}}", DISCHARGE, "alone")
+    assert (said.kind, said.message) == (NONE, "no under-voltage or power-on detector stands behind it")
+    gone = both(f"output_stages: {{alone: {stage}}}", without("output_stages.alone.discharge.within"))
+    assert one(gone, DISCHARGE, "alone").missing == ("output_stages.alone.discharge.within",)
+
+
+def test_rail_that_never_moves_is_out_of_range() -> None:
+    """A nominal level of 0 V rises in no time at all: nothing can be said of a dip."""
+    said = one("rails: {avdd: {nominal: 0 V}}", DISCHARGE, "rst_out")
+    assert said.kind is OPEN
+    assert said.message.endswith("outside the range of the formula: up_v_per_s must be greater than 0 (found 0.0)")
+
+
 def test_stage_without_a_release_delay() -> None:
-    assert one("", DISCHARGE, "gather").kind is NONE
+    said = one("", DISCHARGE, "gather")
+    assert (said.kind, said.message) == (NONE, "it has no release delay")

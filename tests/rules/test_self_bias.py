@@ -273,6 +273,18 @@ def test_all_others_are_named() -> None:
     assert judgement.message == "leans on another than its supply: it is gated by uv_core"
     assert judgement.why == "also bias_start comes from off the chip"
     assert judgement.mend == "let it come up without uv_core"
+    assert path_text(judgement.path) == "por gated by uv_core"
+
+
+def test_what_it_gates_itself_is_left_to_the_loop_and_hides_nothing_else() -> None:
+    loops = one("comparators: {por: {gated_by: por_out, armed_by: gather}}", NOBODY, "por")
+    assert (loops.kind, loops.message) == (
+        NONE, "it is gated by por_out, which it gates itself (self_bias/no_loop says so)",
+    )  # fmt: skip
+    patch = "{biases: {bias_x: {kind: external}}, comparators: {por: {bias: bias_x, gated_by: por_out}}}"
+    judgement = one(patch, NOBODY, "por")
+    assert (judgement.kind, judgement.why) == (FAIL, "")
+    assert judgement.message == "leans on another than its supply: bias_x comes from off the chip"
 
 
 def test_leans_on_nobody_speaks_of_power_on_detectors_alone() -> None:

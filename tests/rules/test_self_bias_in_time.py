@@ -206,6 +206,22 @@ def test_an_external_bias_of_a_power_on_detector_is_one_finding() -> None:
     assert judgement.message == "bias_start comes from off the chip (self_bias/leans_on_nobody says so)"
 
 
+@pytest.mark.parametrize(
+    ("detector", "message"),
+    [
+        ("uv: {bias: bias_x, reference: ref_x}", "rests on bias_x being there before avdd reaches its trip level"),
+        (
+            "por: {bias: bias_x, reference: ref_x, crossover: null}",
+            "bias_x comes from off the chip (self_bias/leans_on_nobody says so)",
+        ),
+    ],
+)
+def test_the_first_of_several_sources_from_off_the_chip_is_told(detector: str, message: str) -> None:
+    off_chip = "biases: {bias_x: {kind: external}}, references: {ref_x: {kind: external}}"
+    judgement = one(f"{{{off_chip}, comparators: {{{detector}}}}}", UP, detector.partition(":")[0])
+    assert judgement.message == message
+
+
 def test_a_detector_that_needs_no_bias_waits_for_none() -> None:
     """Bias none: a crossover that carries its own current; every rule can judge it."""
     found = judged("comparators: {por: {bias: none}}", RULES)

@@ -179,6 +179,26 @@ def test_rails_that_wait_for_each_other() -> None:
     )
 
 
+@pytest.mark.parametrize(
+    ("patch", "rule", "subject", "step"),
+    [
+        ("output_stages: {por_out: {gated_by: gather}}", STAGE_LOOP, "por_out", "gather driven by por_out"),
+        ("loads: {core_regulator: {domain: core}}", RAIL_LOOP, "vcore", "core supplied by vcore"),
+    ],
+)
+def test_the_step_that_could_be_taken_out_is_the_last_one(patch: str, rule: str, subject: str, step: str) -> None:
+    judgement = one(patch, rule, subject)
+    assert judgement.kind is FAIL
+    assert judgement.mend == f"one step of the loop taken out, such as: {step}"
+
+
+def test_several_start_up_circuits_of_a_loop_are_named() -> None:
+    leak = "start_up: {by: a leak, least_slope: 0 V/s}"
+    patch = f"{{references: {{ref_main: {{{leak}}}}}, biases: {{bias_main: {{source: ref_main, {leak}}}}}}}"
+    judgement = one(patch, REFERENCE_LOOP, "ref_main")
+    assert (judgement.kind, judgement.message) == (PASS, "is in a loop that ref_main and bias_main start")
+
+
 def test_a_loop_through_a_detector_is_said_once() -> None:
     judgements = judged("biases: {bias_start: {gated_by: por_n}}", RULES)
     assert judgements[BIAS_LOOP, "bias_start"].kind is PASS

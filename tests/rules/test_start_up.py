@@ -7,8 +7,10 @@ from typing import Any
 
 import pytest
 
-from tests.rules.sound import changed, judged, without
+from tests.rules.sound import both, changed, judged, patched, without
+from tidegate.lint.graph.dependency import build
 from tidegate.lint.judgement import Judgement, Kind
+from tidegate.lint.timing.timeline import timelines
 from tidegate.rules.start_up import RULES
 
 RELEASE, UNKNOWN, ASSERTS = "start_up/release_after_ready", "start_up/no_unknown_interval", "start_up/asserts_in_time"
@@ -54,6 +56,8 @@ def test_release_waits_for_the_reference_after_the_deepest_dip() -> None:
     # The supply comes back at 36 V/ms from 1.06 V, where ref_fast was down: up at 1.12 V, settled 60 us later,
     # ready 80 us after that; of the 1.12 V - 1.06 V nothing is left that could be told from 0.
     assert judgement.message.startswith("earliest release (avdd dips to 1.06 V for long) 203.6 us, at least 140 us")
+    assert judgement.why == "avdd dips to 1.06 V for long; ready at the latest 140 us after the supply begins to rise"
+    assert "at either end" not in found("", RELEASE, "adc").why  # each time at its own worst end is enough
 
 
 def test_release_too_soon_says_by_how_much() -> None:
@@ -172,7 +176,116 @@ def test_a_load_without_reset_is_not_judged() -> None:
         assert judgement.message == "no reset net guards it"
 
 
+def test_a_least_time_that_could_not_help_is_not_asked_for() -> None:
+    """With always 100 us it would come 37 us too soon all the same."""
+    short = {"output_stages": {"rst_out": {"release_delay": {"min": None, "max": "100 us"}}}}
+    judgement = found(patch(short), RELEASE, "core_regulator")
+    assert (judgement.kind, judgement.missing) == (Kind.FAIL, ())
+
+
+def test_a_greatest_time_that_is_not_given_is_asked_for_before_a_release_fails() -> None:
+    short = {"output_stages": {"rst_out": {"release_delay": {"min": "100 us", "max": "400 us"}}}}
+    judgement = found(both(patch(short), without("comparators.por.delay")), RELEASE, "core_regulator")
+    assert (judgement.kind, judgement.missing) == (Kind.OPEN, ("comparators.por.delay",))
+
+
+def test_a_reset_that_is_never_released() -> None:
+    """uv lets go above 1.9 V, and the rail rises to 1.8 V: nothing is released, and vcore never rises."""
+    high = patch({"comparators": {"uv": {"undecided": "asserts", "trip": {"rising": "1.95 V", "falling": "1.9 V"}}}})
+    judgement = found(high, RELEASE, "core_regulator")
+    assert (judgement.kind, judgement.message) == (
+        Kind.FAIL,
+        "its reset is never released (fastest ramp, slowest ramp, ramp that goes back, residual charge, off and on "
+        "again, plug_in)",
+    )
+    assert judgement.mend == "let every detector that resets it let go within the supply in service"
+    judgement = found(high, ORDER, "vcore")
+    assert (judgement.kind, judgement.message) == (Kind.FAIL, "never begins to rise")
+    assert (judgement.mend, judgement.at) == ("let what makes it come on", "rails.vcore.after")
+    judgement = found(high, ASSERTS, "core_regulator")
+    assert (judgement.kind, judgement.message) == (Kind.PASS, "its reset is asserted before avdd falls")
+    assert found(high, DIP, "core_regulator").message == "no dip can be missed"
+
+
+def test_a_load_that_is_released_and_may_never_be_ready() -> None:
+    """Its reference works from 1.85 V, and the rail rises to 1.8 V."""
+    judgement = found(patch({"references": {"ref_main": {"works_from": {"max": "1.85 V"}}}}), RELEASE, "adc")
+    assert judgement.kind is Kind.FAIL
+    # 1.665 V, where uv lets go at the earliest, after 46.26 us of the fastest ramp; core_out releases 1 ms after
+    # uv_core, which waits for por_n (0.2 ms), the rail's delay (20 us) and its rise to 1.117 V of 1.2 V in 20 us.
+    lets_go_s = (1.677 * 0.995 - 3 * 0.4e-3 / 0.367) / 1.8 * 50e-6
+    vcore_s = 20e-6 + (1.125 * 0.995 - 3 * 0.4e-3 / 0.542) / 1.2 * 20e-6
+    assert lets_go_s + 0.2e-3 + vcore_s + 1e-3 == pytest.approx(1.285e-3, rel=2e-2)
+    assert judgement.message.startswith("released from 1.27")
+    assert judgement.message.endswith(" ms on, and may never be ready (fastest ramp)")
+    assert judgement.why.startswith("every rail rises as fast as it may; ")
+    assert judgement.mend == "release it by a net that waits for all that it needs"
+    assert judgement.at == "loads.adc.ready"
+
+
+def test_a_net_that_guards_the_domain_guards_the_load() -> None:
+    """The same numbers as with the load itself guarded."""
+    by_domain = patch({"resets": {"por_n": {"guards": ["adc", "aon"]}}})
+    for rule in (RELEASE, ASSERTS, DIP):
+        assert found(by_domain, rule, "core_regulator").measure == found("", rule, "core_regulator").measure
+
+
 # Unknown intervals
+
+
+def test_a_net_that_is_known_throughout_says_how_much_was_tried() -> None:
+    """Every start, every fall of all rails and of each behind the net alone, and every dip of each."""
+    loaded = patched("")
+    lines = timelines(loaded.description, build(loaded.description))
+    for net, rails in (("por_n", ("avdd",)), ("core_rst_n", ("avdd", "vcore"))):
+        tried = len(lines.starts) + len(lines.falls) + len(rails) + sum(len(lines.dips(rail)) for rail in rails)
+        judgement = found("", UNKNOWN, net)
+        assert (judgement.kind, judgement.message) == (Kind.PASS, f"known in {tried} start-ups, falls and dips")
+
+
+@pytest.mark.parametrize(
+    "facts",
+    [
+        ["comparators.uv.delay"], ["rails.avdd.rise"],
+        ["rails.avdd.fall.min", "rails.avdd.hold_up", "rails.avdd.collapse"],  # how fast it falls at the most
+    ],
+)  # fmt: skip
+def test_unknown_cannot_be_judged_without(facts: list[str]) -> None:
+    judgement = found(without(*facts), UNKNOWN, "por_n")
+    assert (judgement.kind, judgement.missing) == (Kind.OPEN, (facts[0],))
+
+
+def test_an_unknown_level_on_the_way_down() -> None:
+    """core_out is alive down to 0.7 V of avdd, which falls by its hold-up; its receivers still read vcore then."""
+    judgement = found(patch({"output_stages": {"core_out": {"hold": "none"}}}), UNKNOWN, "core_rst_n")
+    assert pytest.approx(834.5e-6, rel=1e-4) == (1.8 - 0.7) / FALL_V_PER_S
+    assert judgement.message.endswith(
+        " (off and on again, from 834.5 us on): core_out is not alive and nothing holds it"
+    )
+
+
+def test_an_unknown_level_for_good() -> None:
+    undefined = {name: {"undecided": "undefined"} for name in ("por", "uv", "ov")}
+    judgement = found(patch({"comparators": undefined}), UNKNOWN, "por_n")
+    assert judgement.message.startswith("its level may be unknown for good (fastest ramp, from ")
+    assert judgement.message.endswith(": ov cannot decide yet")
+    assert judgement.why == "every rail rises as fast as it may; ov waits for its answer"
+    assert judgement.mend == (
+        "let something assert por_n until ov can decide; where its output surely does so by itself, say "
+        "comparators.ov.undecided"
+    )
+
+
+def test_an_unknown_level_after_a_dip() -> None:
+    """At 1.06 V ref_fast may be down, and por has let go: uv_core is known again 60 us after ref_fast is."""
+    low = patch({"comparators": {"por": {"trip": {"falling": {"min": "0.9 V", "max": "1.43 V"}}}}})
+    judgement = found(low, UNKNOWN, "core_rst_n")
+    assert judgement.kind is Kind.FAIL
+    assert judgement.message == (
+        "its level may be unknown for 22.22 us (avdd dips to 1.06 V for long, from 40 us after the supply begins to "
+        "rise again): uv_core cannot decide yet"
+    )
+    assert judgement.at == "resets.core_rst_n.driven_by"
 
 
 def test_a_stage_without_hold_is_to_blame() -> None:
@@ -245,6 +358,88 @@ def test_assertion_too_late_says_what_would_do() -> None:
         "avdd leaves the range of the load, falling from nominal, after 151.7 us, at least 163.5 us needed"
     )
     assert judgement.mend == "an answer that comes 11.8 us sooner, or a falling level that lies 15.6 mV higher"
+
+
+@pytest.mark.parametrize("least", ["0 V", "1.85 V"], ids=["works_down_to_nothing", "never_works"])
+def test_a_load_whose_range_no_fall_leaves(least: str) -> None:
+    needs = {"0": {"works": {"min": least, "max": "1.98 V"}}}
+    of_load = patch({"loads": {"core_regulator": {"needs": needs}}})
+    judgement = found(of_load, ASSERTS, "core_regulator")
+    assert (judgement.kind, judgement.message) == (
+        Kind.NOT_APPLICABLE, "no rail that falls from nominal leaves its range",
+    )  # fmt: skip
+    judgement = found(of_load, DIP, "core_regulator")
+    assert (judgement.kind, judgement.message) == (Kind.NOT_APPLICABLE, "no dip can be missed")
+
+
+def test_a_load_that_its_rails_detectors_do_not_reset() -> None:
+    """Of two rails the one that nobody judges is told: uv_core does not reach a net that guards adc."""
+    cut = patch({"output_stages": {"core_out": {"driven_by": ["gather"]}}})
+    judgement = found(cut, ASSERTS, "adc")
+    assert (judgement.kind, judgement.message) == (
+        Kind.NOT_APPLICABLE, "no detector of vcore resets it (reach/every_rail says so)",
+    )  # fmt: skip
+    judgement = found(cut, DIP, "core_logic")
+    assert (judgement.kind, judgement.message) == (
+        Kind.NOT_APPLICABLE, "its reset is not asserted even when vcore falls (start_up/asserts_in_time says so)",
+    )  # fmt: skip
+
+
+def test_a_reset_that_may_never_be_asserted() -> None:
+    """rst_out is alive down to 1.65 V and not held: gone before uv decides."""
+    dead = patch({"output_stages": {"rst_out": {"hold": "none", "works_from": {"max": "1.65 V"}}}})
+    judgement = found(dead, ASSERTS, "core_regulator")
+    assert (judgement.kind, judgement.message) == (Kind.FAIL, "its reset may never be asserted when avdd falls")
+    assert judgement.why == "avdd falls at 1.318 V/ms, by its hold-up; the load works down to 1.6 V"
+    assert judgement.mend == "let a detector of avdd that is alive down to 0 V, or held, reset it"
+    assert judgement.at == "loads.core_regulator.needs"
+
+
+def test_how_a_rail_comes_up_does_not_matter_when_it_falls() -> None:
+    """vcore is there, however its regulator started."""
+    for fact in ("loads.core_regulator.start", "rails.vcore.delay"):
+        for rule in (ASSERTS, DIP):
+            assert found(without(fact), rule, "adc").measure == found("", rule, "adc").measure
+
+
+def test_the_rail_with_the_least_room_is_told() -> None:
+    """vcore keeps 86 mV above 1 V then, avdd 15 mV above 1.6 V."""
+    needs = {"1": {"works": {"min": "1 V", "max": "1.32 V"}}}
+    judgement = found(patch({"loads": {"adc": {"needs": needs}}}), DIP, "adc")
+    assert judgement.message.startswith("the deepest dip of avdd that may be missed goes down to ")
+
+
+def test_an_answer_that_the_hold_up_covers_is_in_time() -> None:
+    """7 us at 2 V/ms are too late by trip_window/guarantee; avdd falls at 1.318 V/ms here."""
+    slower = patch({"comparators": {"uv": {"delay": {"min": "0.3 us", "max": "7 us"}}}})
+    judgement = found(slower, ASSERTS, "core_regulator")
+    assert judgement.kind is Kind.PASS
+    assert judgement.measure is not None
+    assert judgement.measure.need == pytest.approx((1.8 - UV_FALLS_V) / FALL_V_PER_S + ANSWER_S + 5e-6)
+    assert found(slower, DIP, "core_regulator").kind is Kind.PASS
+
+
+def test_a_detector_that_decides_too_late_is_judged_by_itself() -> None:
+    """Within 50 us avdd falls 100 mV below the falling level: the range of the load is left long before."""
+    late = patch({"comparators": {"uv": {"delay": {"min": "0.3 us", "max": "50 us"}}}})
+    for rule in (ASSERTS, DIP):
+        judgement = found(late, rule, "core_regulator")
+        assert (judgement.kind, judgement.message) == (
+            Kind.NOT_APPLICABLE,
+            "uv decides too late by itself (trip_window/guarantee or placement_sense says so)",
+        )
+
+
+def test_a_dip_that_may_be_missed_altogether_is_told_once() -> None:
+    cut = patch({"output_stages": {"gather": {"driven_by": ["por_out", "ov_latch"]}}})
+    judgement = found(cut, ASSERTS, "core_regulator")
+    assert (judgement.kind, judgement.message) == (
+        Kind.NOT_APPLICABLE, "a dip of avdd may be missed altogether (start_up/dip_is_caught says so)",
+    )  # fmt: skip
+    judgement = found(cut, DIP, "core_regulator")
+    assert judgement.message == "the deepest dip of avdd that may be missed goes down to 1.11 V, at least 1.6 V needed"
+    assert judgement.why == "avdd dips to 1.11 V for long; the load works down to 1.6 V"
+    assert judgement.at == "loads.core_regulator.needs"
 
 
 @pytest.mark.parametrize(
@@ -322,13 +517,51 @@ def test_a_rail_whose_maker_starts_too_soon_is_out_of_order() -> None:
     back_s = 2 * 15e-3 / 1.8 * 20e-3
     assert judgement.measure.have == pytest.approx(1.2 / 1.8 * 20e-3 + 20e-6 + back_s, rel=1e-3)
     assert judgement.measure.need == pytest.approx(1.6 / 1.8 * 20e-3 + back_s, rel=1e-3)
+    assert judgement.mend == "let it begin 4.43 ms later"  # 0.4 V of the ramp are 4.444 ms, less 20 us of delay
 
 
 def test_a_rail_that_waits_for_itself_never_comes() -> None:
     judgement = found(
         patch({"loads": {"core_regulator": {"needs": [{"rail": "vcore", "works": {"min": "1 V"}}]}}}), ORDER, "vcore"
     )
-    assert judgement.kind in (Kind.FAIL, Kind.NOT_APPLICABLE)
+    assert (judgement.kind, judgement.message) == (
+        Kind.NOT_APPLICABLE, "hangs on vcore, which waits for itself (self_bias/rail_loop_starts says so)",
+    )  # fmt: skip
+
+
+def test_what_waits_for_itself_is_told_once() -> None:
+    """Two stages that enable each other: a net behind them is unknown, released too soon, asserted late or never."""
+    gated = {"uv_out": {"gated_by": "core_out"}, "core_out": {"gated_by": "uv_out"}}
+    told = "hangs on uv_out, which waits for itself (self_bias/stage_loop_starts says so)"
+    for rule, of in (
+        (UNKNOWN, "por_n"), (RELEASE, "core_regulator"), (DIP, "core_regulator"), (ASSERTS, "adc"),
+    ):  # fmt: skip
+        judgement = found(patch({"output_stages": gated}), rule, of)
+        assert (judgement.kind, judgement.message) == (Kind.NOT_APPLICABLE, told)
+    latch = found(patch({"output_stages": {"ov_latch": {"power_up": "undefined"}}}), UNKNOWN, "por_n")
+    assert latch.message == "hangs on ov_latch, which comes up in either state (passive_default/latch_state says so)"
+
+
+@pytest.mark.parametrize(
+    ("rule", "of", "facts"),
+    [
+        (DIP, "core_regulator", ["comparators.uv.delay"]),
+        (DIP, "core_regulator", ["rails.avdd.rise"]),
+        (DIP, "core_regulator", ["rails.avdd.fall", "rails.avdd.hold_up", "rails.avdd.collapse"]),
+        (ORDER, "vcore", ["rails.avdd.rise"]),
+    ],
+)
+def test_dips_and_order_cannot_be_judged_without(rule: str, of: str, facts: list[str]) -> None:
+    judgement = found(without(*facts), rule, of)
+    assert (judgement.kind, judgement.missing) == (Kind.OPEN, (facts[0],))
+
+
+def test_words_of_a_rail_in_order_and_of_one_after_none() -> None:
+    judgement = found("", ORDER, "vcore")
+    assert judgement.why == "the fastest ramp, with avdd at 200 mV; avdd is up at the latest after 38.89 us"
+    assert judgement.at == "rails.vcore.after"
+    judgement = found("", ORDER, "avdd")
+    assert (judgement.kind, judgement.message) == (Kind.NOT_APPLICABLE, "comes after no other rail")
 
 
 # One fault, what changes

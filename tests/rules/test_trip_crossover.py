@@ -116,6 +116,38 @@ def test_tracking_at_equal_temperature_and_not_extreme_against_extreme() -> None
     assert answer.why.endswith(f"extreme against extreme it would be {(1.2 - LOWEST_V + 0.07) * 1e3:.2f} mV below")
 
 
+def test_extreme_against_extreme_is_told_beside() -> None:
+    """The lowest level that the components make, less 70 mV of hysteresis, against 1.06 V and 1.2 V of ref_fast."""
+    level = said("crossover_level").measure
+    assert level is not None
+    assert said("crossover_tracks").why.endswith(
+        f"; extreme against extreme it would be {(level.have - 0.07 - 1.06) * 1e3:.4g} mV above"
+    )
+    assert said("crossover_tracks", "references: {ref_fast: {works_from: {max: 1.2 V}}}").why.endswith(
+        f"; extreme against extreme it would be {(1.2 + 0.07 - level.have) * 1e3:.4g} mV below"
+    )
+
+
+def test_without_hysteresis_the_level_itself_is_compared() -> None:
+    bare, sound = (
+        said("crossover_tracks", "comparators: {por: {hysteresis: none}}").measure,
+        said("crossover_tracks").measure,
+    )
+    assert bare is not None
+    assert sound is not None
+    assert bare.have == pytest.approx(sound.have + 0.07, abs=1e-9)
+
+
+def test_only_what_moves_the_level_is_told() -> None:
+    """At one temperature and one resistance the threshold moves it, and without a span of that nothing does."""
+    one_point = "{conditions: {junction_temperature: 27 degC}, comparators: {por: {crossover: {resistance: 2 Mohm, "
+    why = said("crossover_level", one_point + "offset: 0 V}}}}").why
+    assert "; what moves it: threshold " in why
+    assert "temperature 0 V" not in why
+    exact = "{process: {devices: {nmos_long: {threshold: 0.5 V}}}}"
+    assert "; what moves it: nothing; " in said("crossover_level", one_point + "offset: 0 V}}}}", exact).why
+
+
 def test_without_a_slope_the_reference_needs_the_same_at_every_temperature() -> None:
     answer = said(
         "crossover_tracks", without("references.ref_fast.works_from_slope"),

@@ -72,6 +72,38 @@ def test_nominal_levels_out_of_order_fail_whatever_they_share() -> None:
     assert said(patch).kind is FAIL
 
 
+def test_levels_that_share_a_reference_and_meet_at_the_extremes_are_in_order() -> None:
+    answer = said(levels("ov", rising="{min: 1.73 V, max: 1.78 V}", falling="{min: 1.7 V, max: 1.75 V}"))
+    assert (answer.kind, answer.message) == (
+        PASS, "falling level of ov above uv, worst against worst: 1.7 V, at least 1.7 V needed",
+    )  # fmt: skip
+
+
+def test_levels_that_are_alike_nominally_are_in_no_order() -> None:
+    """1.625 V in the middle of both, in numbers that a float holds exactly."""
+    wide = "{min: 1.5 V, max: 1.75 V}"
+    answer = said(
+        levels("uv", rising=wide, falling="{min: 1.5 V, max: 1.625 V}"), levels("ov", rising=wide, falling=wide)
+    )
+    assert (answer.kind, answer.mend) == (FAIL, "ov and uv 250 mV further apart")
+
+
+def test_levels_without_a_reference_share_none() -> None:
+    """1.62 V of por, made by a crossover, against 1.6 V of uv, of which no reference is given."""
+    high = levels("por", rising="{min: 1.2 V, max: 1.62 V}", falling="{min: 1.1 V, max: 1.4 V}")
+    answer = said(high, "comparators: {uv: {reference: null}}")
+    assert (answer.kind, answer.mend) == (FAIL, "uv and por 20 mV further apart")
+
+
+def test_one_sort_of_two_is_enough_below_an_over_voltage_detector() -> None:
+    """Without an under-voltage detector the power-on detector stands below ov; ov alone has nobody below it."""
+    answer = said("comparators: {uv: {watches: vcore}}")
+    assert answer.message == "falling level of ov above por, worst against worst: 1.9 V, at least 1.5 V needed"
+    assert answer.why == "por 1.1 V to 1.5 V, ov 1.9 V to 2 V"
+    answer = said("comparators: {ov: {watches: vcore}}")
+    assert answer.why == "por 1.1 V to 1.5 V, uv 1.55 V to 1.7 V"
+
+
 def test_rising_and_falling_of_one_detector_may_overlap() -> None:
     """The trap: 1.6 V to 1.7 V rising and 1.55 V to 1.65 V falling overlap, and are tracked."""
     assert said().kind is PASS

@@ -7,7 +7,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from tests.derived.placing import found
-from tests.rules.sound import both, judged
+from tests.rules.sound import both, judged, without
 from tidegate.lint.judgement import Judgement, Kind, Measure
 from tidegate.rules.trip_window import RULES
 
@@ -81,6 +81,61 @@ def test_over_voltage_the_wrong_way_round() -> None:
         "is placed by the level that lets go: until the answer avdd may come up to 2.024 V, at most 1.98 V needed"
     )
     assert answer.mend == "both levels 44 mV further down"
+
+
+@pytest.mark.parametrize(
+    ("falling", "rising", "kind"),
+    [
+        pytest.param(("1.55 V", "1.6 V"), ("1.61 V", "1.65 V"), PASS, id="asserts_at_the_load_at_the_latest"),
+        pytest.param(("1.55 V", "1.5999 V"), ("1.61 V", "1.65 V"), FAIL, id="asserts_just_below"),
+        pytest.param(("1.55 V", "1.58 V"), ("1.58 V", "1.6 V"), FAIL, id="lets_go_at_the_load_at_the_latest"),
+        pytest.param(("1.55 V", "1.58 V"), ("1.58 V", "1.5999 V"), NONE, id="lets_go_just_below"),
+        pytest.param(("1.55 V", "1.6 V"), ("1.58 V", "1.6 V"), PASS, id="both_at_the_load"),
+    ],
+)
+def test_placement_at_its_limits(falling: tuple[str, str], rising: tuple[str, str], kind: Kind) -> None:
+    """adc works from 1.6 V."""
+    assert said("placement_sense", trip("falling", *falling), trip("rising", *rising)).kind is kind
+
+
+@pytest.mark.parametrize(
+    ("falling", "rising", "kind"),
+    [
+        pytest.param(("1.9 V", "1.95 V"), ("1.98 V", "2 V"), PASS, id="asserts_at_the_load_at_the_earliest"),
+        pytest.param(("1.9 V", "1.95 V"), ("1.9801 V", "2 V"), FAIL, id="asserts_just_above"),
+        pytest.param(("1.98 V", "1.99 V"), ("1.99 V", "2 V"), FAIL, id="lets_go_at_the_load_at_the_earliest"),
+        pytest.param(("1.9801 V", "1.99 V"), ("1.99 V", "2 V"), NONE, id="lets_go_just_above"),
+        pytest.param(("1.98 V", "1.99 V"), ("1.98 V", "2 V"), PASS, id="both_at_the_load"),
+    ],
+)
+def test_placement_of_over_voltage_at_its_limits(falling: tuple[str, str], rising: tuple[str, str], kind: Kind) -> None:
+    """adc works up to 1.98 V."""
+    answer = said("placement_sense", trip("falling", *falling, of="ov"), trip("rising", *rising, of="ov"), of="ov")
+    assert answer.kind is kind
+    if kind is PASS:
+        assert answer.message == "is placed by the level that asserts, against adc at 1.98 V"
+        assert answer.at == "comparators.ov.trip.rising"
+
+
+def test_placement_is_judged_against_the_most_demanding_load() -> None:
+    """core_regulator bears 1.5 V to 2.1 V, adc 1.6 V to 1.98 V: as without it."""
+    wide = "loads: {core_regulator: {needs: {0: {works: {min: 1.5 V, max: 2.1 V}}}}}"
+    for of, level in (("uv", "1.6 V"), ("ov", "1.98 V")):
+        answer = said("placement_sense", wide, of=of)
+        assert answer.message == f"is placed by the level that asserts, against adc at {level}"
+    wrong = trip("falling", "1.53 V", "1.55 V"), trip("rising", "1.58 V", "1.6 V")
+    assert said("placement_sense", wide, *wrong).measure == said("placement_sense", *wrong).measure
+
+
+def test_placement_is_told_without_what_the_answer_takes() -> None:
+    """Without the collapse only the level itself counts: 1.53 V, not the 7 mV less of the answer."""
+    patch = both(trip("falling", "1.53 V", "1.55 V"), trip("rising", "1.58 V", "1.6 V"))
+    assert measure(said("placement_sense", patch)).have == pytest.approx(1.53 - 2000 * 3.5e-6, abs=1e-12)
+    unknown = said("placement_sense", patch, without("rails.avdd.collapse"))
+    assert (unknown.kind, measure(unknown).have) == (FAIL, pytest.approx(1.53, abs=1e-12))
+    assert unknown.at == "comparators.uv.trip.falling"
+    single = both(trip("falling", "1.55 V", "1.55 V"), trip("rising", "1.6 V", "1.6 V"))
+    assert said("placement_sense", single).why == "adc works from 1.6 V; falling 1.55 V, rising 1.6 V"
 
 
 # Codes

@@ -159,6 +159,19 @@ def test_spread_at_its_limit() -> None:
     assert measure(over).have == pytest.approx(1.97 - 1.94, abs=1e-12)
 
 
+def test_a_rail_that_leaves_no_room_at_all() -> None:
+    """1.7 V and 7 mV until the answer lie above 1.71 V less 5 mV; then a load at the end of what is delivered."""
+    mend = "a faster answer, or a load that works with more: as it is, no level keeps both limits"
+    answer = said("spread", works("min: 1.7 V", "max: 1.98 V"))
+    assert (answer.kind, answer.mend, answer.at) == (FAIL, mend, "comparators.uv.errors")
+    assert measure(answer).need == pytest.approx(-0.002, abs=1e-12)
+    still = "rails: {avdd: {delivered: {min: 1.75 V, max: 1.89 V}, ripple: {peak_to_peak: 0 V}, collapse: 0 V/s}}"
+    answer = said("spread", works("min: 1.75 V", "max: 1.98 V"), still)
+    assert (answer.mend, measure(answer).need) == (mend, 0.0)
+    ranges = said("spread", works("min: 1.7 V", "max: 1.98 V"), without("comparators.uv.errors"))
+    assert ranges.at == "comparators.uv.trip"
+
+
 def test_the_room_is_judged_once() -> None:
     """Spread first, then the hysteresis in what it leaves, then the level that lets go where both would fit."""
     wide = trip("falling", "1.61 V", "1.72 V"), trip("rising", "1.66 V", "1.77 V")
@@ -184,6 +197,32 @@ def test_a_load_that_does_not_work_in_service_leaves_no_room_to_judge() -> None:
     assert (answer.kind, answer.message) == (
         NONE, "what it guards does not work in all the range delivered (description/loads says so)",
     )  # fmt: skip
+
+
+def test_where_the_error_takes_more_than_the_room_to_move_the_levels_will_not_do() -> None:
+    """118 mV of spread in 98 mV of room: 5 mV short of 1.607 V at one end, 65 mV beyond 1.705 V at the other."""
+    wide = trip("falling", "1.602 V", "1.72 V"), trip("rising", "1.66 V", "1.77 V")
+    assert said("guarantee", *wide).mend == (
+        "an error 5 mV smaller; to move the levels will not do (trip_window/spread says so); or an answer within 1 us"
+    )
+    assert said("nuisance", *wide).mend == (
+        "an error 65 mV smaller; to move the levels will not do (trip_window/spread says so) (so that it lets go in "
+        "service too)"
+    )
+    # Limits that the description itself puts the wrong way round leave no room to speak of.
+    apart = said("guarantee", works("min: 1.72 V", "max: 1.98 V"))
+    assert apart.mend == "levels 117 mV further up, or an error that much smaller"
+
+
+def test_sampled_too_seldom_is_the_matter_of_another_rule() -> None:
+    """10 us at 2 V/ms are 20 mV, of which the level leaves 10 mV; 4 us are 8 mV, and the answer takes 7 mV more."""
+    sampled = "{modes: {nap: {sampled: [uv]}}, comparators: {uv: {sampling: PERIOD}}}"
+    answer = said("guarantee", sampled.replace("PERIOD", "10 us"))
+    assert (answer.kind, answer.message) == (NONE, "is sampled too seldom for what it guards (modes/sampling says so)")
+    answer = said("guarantee", sampled.replace("PERIOD", "4 us"))
+    assert (answer.kind, measure(answer).need) == (FAIL, pytest.approx(1.6 + 2000 * 7.5e-6, abs=1e-12))
+    answer = said("guarantee", sampled.replace("PERIOD", "1 us"))
+    assert (answer.kind, measure(answer).need) == (PASS, pytest.approx(1.6 + 2000 * 4.5e-6, abs=1e-12))
 
 
 @pytest.mark.parametrize("fact", ["rails.avdd.collapse", "comparators.uv.delay"])

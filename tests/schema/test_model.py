@@ -1,4 +1,7 @@
-"""The typed description is the schema, field by field: names, order, kinds, choices, and what must be given."""
+"""The typed description is the schema, field by field: names, order, kinds, choices, bounds, and what must be given.
+
+A description that can be built is therefore not held against the schema once more.
+"""
 
 from __future__ import annotations
 
@@ -12,7 +15,7 @@ import pytest
 
 from tidegate.lint.description.load import description_schema
 from tidegate.lint.description.model.description import Description
-from tidegate.lint.description.model.part import Element, Part
+from tidegate.lint.description.model.part import Element, Name, Part
 from tidegate.lint.quantity import Basis, Span
 
 SCHEMA = description_schema()
@@ -49,32 +52,67 @@ def without_none(kind: Any) -> tuple[Any, ...]:
     return tuple(member for member in members if member is not types.NoneType)
 
 
+BOUNDS = {
+    "minLength": "min_length", "minItems": "min_length", "minimum": "ge", "exclusiveMinimum": "gt", "maximum": "le",
+    "pattern": "pattern",
+}  # fmt: skip
+
+
+def bounded(kind: Any) -> tuple[Any, dict[str, Any]]:
+    """A type without its bounds, and the bounds."""
+    if get_origin(kind) is not typing.Annotated:
+        return kind, {}
+    plain, *metas = get_args(kind)
+    names = set(BOUNDS.values())
+    return plain, {name: getattr(meta, name) for meta in metas for name in names if getattr(meta, name) is not None}
+
+
+def bounds_of(node: Mapping[str, Any]) -> dict[str, Any]:
+    """The bounds of the schema, as the model names them; a dollar sign in a pattern means the very end of the text."""
+    bounds = {ours: node[theirs] for theirs, ours in BOUNDS.items() if theirs in node}
+    if "pattern" in bounds:
+        assert bounds["pattern"].endswith("$")
+        bounds["pattern"] = bounds["pattern"].removesuffix("$") + r"\Z"
+    return bounds
+
+
 def agrees(kind: Any, node: Mapping[str, Any]) -> bool:
-    """Whether a type of the model is what the schema says."""
+    """Whether a type of the model is what the schema says, with every bound."""
     members = without_none(kind)
     if "anyOf" in node and "x-quantity" not in node:
         const, inner = node["anyOf"]
         if "x-names" in node:  # a name, or none
-            return members == (str,)
+            assert (const, inner) == ({"const": "none"}, {"$ref": "#/$defs/id"})
+            pattern = bounds_of(DEFS["id"])["pattern"].replace(r"|none$", "")
+            return bounded(members[0]) == (str, {"pattern": pattern})
         return set(members) == {Literal[const["const"]], struct_of(inner["$ref"].rpartition("/")[2])}
     (member,) = members
+    plain, bounds = bounded(member)
     if "$ref" in node:
         name = node["$ref"].rpartition("/")[2]
         if name == "id":
-            return member is str
+            pattern = bounds_of(DEFS["id"])["pattern"].replace("none$", r"none\Z")
+            return (plain, bounds) == (str, {"pattern": pattern})
         if "x-quantity" in DEFS[name]:
             return bool(issubclass(member, Span) and member.dimension.value == name)
         return member is struct_of(name)
     if "enum" in node:
         # Types that differ in the order of their choices alone are one type to Python.
         return get_origin(member) is Literal and set(get_args(member)) == set(node["enum"])
+    if bounds != bounds_of(node):
+        return False
     if node["type"] == "array":
-        item, more = get_args(member)
-        return get_origin(member) is tuple and more is Ellipsis and agrees(item, node["items"])
+        item, more = get_args(plain)
+        assert not node.get("uniqueItems") or "x-names" in node  # names_twice() looks at those
+        return get_origin(plain) is tuple and more is Ellipsis and agrees(item, node["items"])
     if node["type"] == "object":
-        key, value = get_args(member)
-        return get_origin(member) in (dict, Mapping) and key is str and agrees(value, node["additionalProperties"])
-    return member is PLAIN[node["type"]]
+        key, value = get_args(plain)
+        return (
+            get_origin(plain) in (dict, Mapping)
+            and agrees(key, node["propertyNames"])
+            and agrees(value, node["additionalProperties"])
+        )
+    return plain is PLAIN[node["type"]]
 
 
 def check(kind: type[msgspec.Struct], node: Mapping[str, Any]) -> None:
@@ -115,13 +153,18 @@ def test_every_part_is_frozen(kind: type[msgspec.Struct]) -> None:
     assert kind.__struct_config__.frozen
 
 
+@pytest.mark.parametrize("kind", [*STRUCTS.values(), Basis], ids=[*STRUCTS, "Basis"])
+def test_no_part_takes_keys_that_the_schema_does_not_know(kind: type[msgspec.Struct]) -> None:
+    assert kind.__struct_config__.forbid_unknown_fields
+
+
 def test_an_element_knows_its_section() -> None:
     elements = {kind for kind in STRUCTS.values() if issubclass(kind, Element)}
     by_section = {kind.section: kind for kind in elements}
     assert len(by_section) == len(elements)
     for section, kind in by_section.items():
         (member,) = without_none({f.name: f.type for f in msgspec.structs.fields(Description)}[section])
-        assert get_args(member) == (str, kind)
+        assert get_args(member) == (Name, kind)
     uv = struct_of("comparator")
     assert issubclass(uv, Element)
     assert msgspec.convert({"id": "uv", "role": "power_on", "watches": "a"}, uv).fact("trip") == "comparators.uv.trip"

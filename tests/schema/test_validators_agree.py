@@ -1,4 +1,4 @@
-"""The quick validator and the explaining library say the same of any data, and what one refuses the loader explains."""
+"""Building the description and two validators say the same of any data, and what is refused the loader explains."""
 
 from __future__ import annotations
 
@@ -13,7 +13,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from jsonschema import Draft202012Validator
 
-from tidegate.lint.description.load import description_schema, load
+from tidegate.lint.description.load import description_of, description_schema, load
 from tidegate.lint.description.place import DescriptionError
 from tidegate.lint.quantity import Dimension
 
@@ -131,12 +131,13 @@ def changed(draw: st.DrawFn) -> Any:
 def test_data_made_from_the_schema_fit_to_both(data: Any) -> None:
     assert [error.message for error in SLOW.iter_errors(data)] == []
     assert QUICK.is_valid(data)
+    assert description_of(data) is not None
 
 
 @given(changed())
 @settings(max_examples=150, deadline=None)
 def test_both_say_the_same_of_changed_data(data: Any) -> None:
-    assert SLOW.is_valid(data) == QUICK.is_valid(data)
+    assert SLOW.is_valid(data) == QUICK.is_valid(data) == (description_of(data) is not None)
 
 
 @given(changed())

@@ -110,6 +110,11 @@ def random_waveform(chance: random.Random) -> Waveform:
     return Waveform(tuple(points))
 
 
+def shifted(waveform: Waveform, by_s: float) -> Waveform:
+    """The same supply, later by a time."""
+    return Waveform(tuple((at_s + by_s, level_v) for at_s, level_v in waveform.points))
+
+
 def with_supply(parts: dict[str, TimedPart]) -> Network:
     """The network of the parts, on one rail and in one domain that is always on."""
     return network({"vdd": RailPart("vdd", None, None, NOTHING), "aon": DomainPart("aon", "vdd", ()), **parts}, {})

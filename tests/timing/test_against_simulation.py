@@ -58,7 +58,7 @@ def test_every_simulated_state_is_one_that_may_be(seed: int) -> None:
     chance = random.Random(seed)
     parts, waveform = random_parts(chance), random_waveform(chance)
     states = evaluate(with_supply(parts), supplied_with(waveform))
-    to_s = waveform.end_s + 25.0
+    to_s = waveform.points[-1][0] + 25.0
     room_s = ROOM_IN_STEPS * (to_s + 2.0) / STEPS
     wide = {
         name: {word: delayed(times, least_s=-room_s, most_s=room_s) for word, times in _sets(states[name]).items()}

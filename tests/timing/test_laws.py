@@ -9,7 +9,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from tests.timing.random_subsystems import random_parts, random_waveform, supplied_with, with_supply
+from tests.timing.random_subsystems import random_parts, random_waveform, shifted, supplied_with, with_supply
 from tidegate.lint.timing.evaluate import LoadState, States, evaluate
 from tidegate.lint.timing.interval import Times, both, outside
 from tidegate.lint.timing.parts import Bounds, SourcePart, StagePart
@@ -89,7 +89,7 @@ def test_a_shift_in_time_shifts_every_edge_and_changes_nothing_else(seed: int, b
     chance = random.Random(seed)
     parts, waveform = random_parts(chance), random_waveform(chance)
     net = with_supply(parts)
-    now, later = evaluate(net, supplied_with(waveform)), evaluate(net, supplied_with(waveform.shifted(by_s)))
+    now, later = evaluate(net, supplied_with(waveform)), evaluate(net, supplied_with(shifted(waveform, by_s)))
     for name in parts:
         for times, late in zip(_sets(now, name), _sets(later, name), strict=True):
             # A span as long as a tolerance to the last digit may come or go with rounding.

@@ -12,7 +12,6 @@ from scipy.integrate import solve_ivp
 
 from tests.rules.sound import patched
 from tidegate.lint.graph.dependency import build
-from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.timing.evaluate import LoadState
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.scenario import Scenario, Scene
@@ -157,14 +156,6 @@ def test_what_is_missing_is_named_with_the_end_that_is() -> None:
     assert lines.missing("core_regulator", readiness=True) == ("loads.core_regulator.ready",)
     assert lines.missing("core_logic", readiness=True) == ()
     assert lines.missing("uv") == ()
-
-
-def test_a_waveform_that_cannot_be_is_refused_by_name() -> None:
-    back = {"waveforms": [{"rail": "avdd", "points": [{"at": "1 s", "level": "0 V"}, {"at": "0 s", "level": "1 V"}]}]}
-    lines = lines_of({"scenarios": {"backwards": back}})
-    with pytest.raises(DomainError) as refused:
-        list(lines.starts)
-    assert str(refused.value) == "at_s must not go back: 0.0 comes after 1.0"
 
 
 def test_a_loop_that_nothing_starts_never_comes_up() -> None:

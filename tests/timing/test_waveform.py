@@ -10,8 +10,9 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.integrate import solve_ivp
 
+from tests.timing.random_subsystems import shifted
 from tidegate.lint.physics.domain import DomainError
-from tidegate.lint.timing.interval import FOREVER_S
+from tidegate.lint.timing.interval import FOREVER_S, Times
 from tidegate.lint.timing.waveform import Waveform
 
 BOUNCE = Waveform(((0.0, 0.0), (1.0, 1.8), (1.2, 1.8), (1.4, 0.9), (2.0, 1.8), (3.0, 0.1)))
@@ -62,6 +63,7 @@ def test_a_step_has_no_time_between() -> None:
     step = Waveform(((0.0, 0.0), (0.0, 2.0), (3.0, 2.0), (3.0, 0.0)))
     assert step.above(rising_v=1.0, falling_v=1.0) == ((0.0, 3.0),)
     assert step.level_v(0.0) == 2.0
+    assert Waveform.__struct_config__.frozen
     assert step.level_v(3.0) == 0.0
 
 
@@ -79,18 +81,83 @@ def test_shifting_a_supply_shifts_its_crossings(
         at_s += wait_s
     waveform = Waveform(tuple(points))
     spans = waveform.above(rising_v=rising_v, falling_v=rising_v * (1.0 - below))
-    later = waveform.shifted(by_s).above(rising_v=rising_v, falling_v=rising_v * (1.0 - below))
+    later = shifted(waveform, by_s).above(rising_v=rising_v, falling_v=rising_v * (1.0 - below))
     assert len(later) == len(spans)
     for (start, end), (late_start, late_end) in zip(spans, later, strict=True):
         assert (late_start, late_end) == (pytest.approx(start + by_s), pytest.approx(end + by_s))
 
 
-def test_least_and_most_between_two_times_and_one_after_another() -> None:
-    assert BOUNCE.least_v(from_s=1.1, to_s=1.7) == pytest.approx(0.9)
-    assert BOUNCE.most_v(from_s=1.3, to_s=1.7) == pytest.approx(1.35)
-    twice = Waveform(((0.0, 0.0), (1.0, 1.0))).then(Waveform(((5.0, 1.0), (6.0, 0.0))))
-    assert twice.points == ((0.0, 0.0), (1.0, 1.0), (1.0, 1.0), (2.0, 0.0))
-    assert twice.end_s == 2.0
+@pytest.mark.parametrize(
+    ("at_s", "expected_v"),
+    [
+        (-1.0, 0.0),
+        (0.0, 0.0),
+        (0.5, 0.9),
+        (1.0, 1.8),
+        (1.1, 1.8),
+        (1.35, 1.125),
+        (1.4, 0.9),
+        (2.5, 0.95),
+        (3.0, 0.1),
+        (9.0, 0.1),
+    ],
+)
+def test_the_level_at_a_time_is_that_of_numpy(at_s: float, expected_v: float) -> None:
+    assert BOUNCE.level_v(at_s) == pytest.approx(expected_v, abs=1e-12)
+    assert expected_v == pytest.approx(np.interp(at_s, *zip(*BOUNCE.points, strict=True)), abs=1e-12)
+
+
+def test_between_points_of_odd_times_and_levels() -> None:
+    # From 1 V at 2 s to 4 V at 8 s: half a volt each second.
+    line = Waveform(((2.0, 1.0), (8.0, 4.0)))
+    assert [line.level_v(at_s) for at_s in (1.0, 2.0, 3.0, 6.0, 8.0)] == [1.0, 1.0, 1.5, 3.0, 4.0]
+    assert line.above(rising_v=1.5, falling_v=1.5) == ((3.0, FOREVER_S),)
+    assert line.above(rising_v=1.0, falling_v=1.0) == ((-FOREVER_S, FOREVER_S),)
+    down = Waveform(((2.0, 4.0), (8.0, 1.0)))
+    assert down.above(rising_v=1.5, falling_v=1.5) == ((-FOREVER_S, 7.0),)
+
+
+PULSE = Waveform(((0.0, 0.0), (2.0, 1.0), (4.0, 1.0), (6.0, 0.0)))
+
+
+@pytest.mark.parametrize(
+    ("rising_v", "falling_v", "expected"),
+    [
+        (1.0, 1.0, ((2.0, 4.0),)),  # just reaches the level, and rests on it: not below it until it falls
+        (1.0, 0.5, ((2.0, 5.0),)),
+        (1.0, 0.0, ((2.0, FOREVER_S),)),  # comes down to the falling level, and not below it
+        (0.5, 0.0, ((1.0, FOREVER_S),)),
+        (1.0 + 1e-9, 0.5, ()),
+        (0.0, 0.0, ((-FOREVER_S, FOREVER_S),)),  # before its first point it has reached the level
+        (0.0, 0.5, ((-FOREVER_S, 5.0),)),
+        (-1.0, -1.0, ((-FOREVER_S, FOREVER_S),)),
+    ],
+)
+def test_levels_that_are_just_reached(rising_v: float, falling_v: float, expected: Times) -> None:
+    assert PULSE.above(rising_v=rising_v, falling_v=falling_v) == expected
+
+
+@pytest.mark.parametrize(
+    ("points", "expected"),
+    [
+        (((0.0, 2.0), (0.0, 0.0)), ((-FOREVER_S, 0.0),)),
+        (((1.0, 0.0), (1.0, 2.0), (1.0, 0.0)), ()),  # up and down at one time is never up
+        (((1.0, 0.0), (1.0, 2.0), (2.0, 2.0), (2.0, 0.0), (2.0, 2.0)), ((1.0, 2.0), (2.0, FOREVER_S))),
+        (((0.0, 1.0), (5.0, 1.0)), ((-FOREVER_S, FOREVER_S),)),
+        (((3.0, 1.0),), ((-FOREVER_S, FOREVER_S),)),
+        (((3.0, 0.5),), ()),
+    ],
+)
+def test_steps_and_rests(points: tuple[tuple[float, float], ...], expected: Times) -> None:
+    assert Waveform(points).above(rising_v=1.0, falling_v=1.0) == expected
+
+
+def test_a_supply_that_begins_above_the_rising_level_and_below_the_falling_one() -> None:
+    """Levels the wrong way round: it is taken for high where it begins, and lets go with the first piece."""
+    wrong = Waveform(((0.0, 1.0), (2.0, 1.0), (4.0, 3.0)))
+    assert wrong.above(rising_v=0.5, falling_v=2.0) == ((-FOREVER_S, 0.0), (2.0, FOREVER_S))
+    ((_, goes_s),) = Waveform(((0.0, 1.0), (2.0, 1.5))).above(rising_v=0.5, falling_v=2.0)
+    assert 0.0 <= goes_s <= 2.0
 
 
 @pytest.mark.parametrize(

@@ -21,6 +21,7 @@ from tidegate.lint.derived.crossover.crossover_facts import (
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.physics.crossing_point import branch_level_v, divider_crossing_v, reference_crossing_v
 from tidegate.lint.physics.device_at_corner import Device, diode_connected_at, junction_at, series_ohm_at
+from tidegate.lint.physics.domain import DomainError
 
 _POINTS: Final = 5
 _FINER_POINTS: Final = 9
@@ -141,6 +142,19 @@ def level_of(facts: CrossoverFacts) -> CrossoverLevel:
 
 
 def _at_v(facts: CrossoverFacts, corner: Corner, t_k: float) -> float:
+    """The level at one corner and temperature.
+
+    Raises: DomainError: where a formula refuses its numbers, or they lead beyond what a float can hold.
+    """
+    try:
+        return _crossing_v(facts, corner, t_k)
+    except DomainError:
+        raise
+    except (ArithmeticError, ValueError):
+        raise DomainError("the facts of the crossover lead beyond the range of a number") from None
+
+
+def _crossing_v(facts: CrossoverFacts, corner: Corner, t_k: float) -> float:
     device, series_ohm = _device_at(facts, corner, t_k), _series_ohm(facts, corner, t_k)
     if facts.crossing is Crossing.DIVIDER:
         return divider_crossing_v(device, series_ohm=series_ohm, divider_ratio=facts.ratio, offset_v=corner["offset"])

@@ -33,6 +33,7 @@ from tidegate.lint.physics import crossover, mos_threshold, silicon
 from tidegate.lint.physics.array_domain import FloatArray, Reals
 from tidegate.lint.physics.corner_spread import TEMPERATURE, Corner, LevelOf, Spread, spread_over_corners
 from tidegate.lint.physics.crossover import NoCrossingError
+from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.fed_branch import Branch, DiodeBranch, MosBranch
 from tidegate.lint.physics.resistor import resistance_ohm
 
@@ -84,7 +85,7 @@ def crossover_sweep(description: Description, graph: Graph, comparator: Comparat
     assert comparator.crossover is not None
 
     def answer(question: Callable[[Case], _A]) -> _A | Unknown:
-        return ask(description, graph, comparator, question)
+        return ask(description, graph, comparator, lambda case: _within_range(lambda: question(case)))
 
     facts = answer(lambda case: release_facts(case, comparator))
     level = facts if isinstance(facts, Unknown) else answer(lambda _: _spread(facts, level_of(facts)))
@@ -98,6 +99,18 @@ def crossover_sweep(description: Description, graph: Graph, comparator: Comparat
         tracking=tracking,
         second=answer(lambda case: _second(case, comparator)) if crude else None,
     )
+
+
+def _within_range(work: Callable[[], _A]) -> _A:
+    """What a function returns.
+
+    Raises: DomainError: where a number on the way is more than a float can hold.
+    """
+    try:
+        with np.errstate(over="raise", divide="raise", invalid="raise"):
+            return work()
+    except FloatingPointError:
+        raise DomainError("the facts of the crossover lead beyond the range of a number") from None
 
 
 def _spread(facts: CrossoverFacts, level_v: LevelOf) -> Spread:

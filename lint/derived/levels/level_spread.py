@@ -11,12 +11,15 @@ from tidegate.lint.case import Case
 from tidegate.lint.derived.asking import NoAnswerError
 from tidegate.lint.derived.levels.trip_levels import falling_window, hysteresis_window, level_errors, rising_window
 from tidegate.lint.description.model.detector import Comparator, Hysteresis
+from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.tolerance import Contributor
 from tidegate.lint.physics.trip_window import Combination, combined_error_v
 from tidegate.lint.quantity import Voltage
 
 _MOST_STEPS: Final = 200
 _SETTLED: Final = 1e-15
+_RESTED: Final = 1e-9
+"""Share of the level by which the last step may still have moved it: rounding moves it by less."""
 
 
 class PlacedError(msgspec.Struct, frozen=True):
@@ -62,12 +65,17 @@ class LevelSpread(msgspec.Struct, frozen=True):
         return self._nominal_v(ceiling_v, -1.0)
 
     def _nominal_v(self, end_v: float, side: float) -> float:
-        """Steps from the end by the error where the last step led; each step is smaller by the share of the level."""
+        """Steps from the end by the error where the last step led; each step is smaller by the share of the level.
+
+        Raises: DomainError: where they are not, and lead nowhere.
+        """
         level_v = end_v
         for _ in range(_MOST_STEPS):
             before_v, level_v = level_v, end_v + side * self.at_v(level_v)
             if abs(level_v - before_v) <= _SETTLED * abs(level_v):
                 break
+        if not abs(level_v - before_v) <= _RESTED * abs(level_v):
+            raise DomainError("share of the errors must be well below 100 % (found no place for the level)")
         return level_v
 
 

@@ -133,11 +133,12 @@ def _from_other_level(case: Case, comparator: Comparator, which: _Level) -> Wind
     stands = span is not None and (_nominal_v(span) is not None or None not in (span.least, span.most))
     if not stands or _amount(comparator) is None:
         facts, stated = case.of(comparator), _span(comparator, which)
+        level = f"{_stands_at(case, comparator)}.{which}"
         if stated is None:
-            facts.lacks(f"trip.{which}")
+            facts.lacks(level)
         else:
-            facts.least(f"trip.{which}")
-            facts.most(f"trip.{which}")
+            facts.least(level)
+            facts.most(level)
         case.settle()
     base, apart = case.gather(
         lambda: _level_window(case, comparator, other), lambda: hysteresis_window(case, comparator)
@@ -145,6 +146,12 @@ def _from_other_level(case: Case, comparator: Comparator, which: _Level) -> Wind
     if which == "falling":
         return window_from_rising(rising=base, hysteresis=apart).falling
     return window_from_falling(falling=base, hysteresis=apart).rising
+
+
+def _stands_at(case: Case, comparator: Comparator) -> str:
+    """Where the levels of a detector at some code stand in the description: ``trip``, or ``codes.b``."""
+    codes = case.description.comparators[comparator.id].codes.items()
+    return next((f"codes.{code}" for code, trip in codes if trip is comparator.trip), "trip")
 
 
 def _amount(comparator: Comparator) -> Voltage | None:

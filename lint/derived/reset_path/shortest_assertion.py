@@ -9,6 +9,7 @@ from tidegate.lint.derived.levels.at_code import as_shipped
 from tidegate.lint.derived.levels.guarded_loads import least_supplies
 from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
 from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.physics.domain import require_positive
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
 
 
@@ -25,7 +26,9 @@ def shortest_assertion(case: Case, detector: Comparator) -> ShortestAssertion | 
 
     t = (F - L)/s_down + (R - L)/s_up, with the lowest falling and rising levels F and R, the least supply L of the
     load, and the steepest slopes. None where no load needs the rail, or where the level lies below what it needs.
-    Raises: MissingFactsError: where a fact is missing.
+    Raises:
+        MissingFactsError: where a fact is missing.
+        DomainError: where the rail is said never to move.
     """
     bounds = least_supplies(case, detector)
     if not bounds:
@@ -40,6 +43,7 @@ def shortest_assertion(case: Case, detector: Comparator) -> ShortestAssertion | 
     least_v = bounds[0].level_v
     if falling.least_v <= least_v or rising.least_v <= least_v:
         return None
+    require_positive(down_v_per_s=down_v_per_s, up_v_per_s=up_v_per_s)
     time_s = (falling.least_v - least_v) / down_v_per_s + (rising.least_v - least_v) / up_v_per_s
     return ShortestAssertion(time_s, detector.id, bounds[0].element)
 

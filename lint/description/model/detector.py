@@ -6,7 +6,7 @@ from typing import ClassVar, Literal
 
 import msgspec
 
-from tidegate.lint.description.model.part import Element, Part
+from tidegate.lint.description.model.part import Element, Name, NameOrNone, Part, Positive, Text, UpToOne
 from tidegate.lint.description.model.timing import Timing
 from tidegate.lint.quantity import (
     Capacitance,
@@ -26,9 +26,9 @@ from tidegate.lint.quantity import (
 class StartUp(Part, frozen=True, kw_only=True):
     """Start-up circuit."""
 
-    by: str | None = None
+    by: Text | None = None
     least_slope: Slope | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Reference(Element, frozen=True, kw_only=True):
@@ -46,15 +46,15 @@ class Reference(Element, frozen=True, kw_only=True):
     settling: Duration | None = None
     source_resistance: Resistance | None = None
     decoupling: Capacitance | None = None
-    domain: str | None = None
-    bias: str | None = None
-    leans_on: tuple[str, ...] | None = None
+    domain: Name | None = None
+    bias: NameOrNone | None = None
+    leans_on: tuple[Name, ...] | None = None
     self_biased: bool | None = None
     start_up: StartUp | Literal["none"] | None = None
-    gated_by: str | None = None
+    gated_by: Name | None = None
     resistance: Resistance | None = None
     consumes: Current | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Bias(Element, frozen=True, kw_only=True):
@@ -63,18 +63,18 @@ class Bias(Element, frozen=True, kw_only=True):
     section: ClassVar[str] = "biases"
 
     kind: Literal["resistor", "self_biased", "from_reference", "external"] | None = None
-    source: str | None = None
-    domain: str | None = None
+    source: Name | None = None
+    domain: Name | None = None
     current: Current | None = None
     leakage: Current | None = None
     works_from: Voltage | None = None
     settling: Duration | None = None
-    leans_on: tuple[str, ...] | None = None
+    leans_on: tuple[Name, ...] | None = None
     start_up: StartUp | Literal["none"] | None = None
-    gated_by: str | None = None
+    gated_by: Name | None = None
     resistance: Resistance | None = None
     consumes: Current | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Trip(Part, frozen=True, kw_only=True):
@@ -82,13 +82,13 @@ class Trip(Part, frozen=True, kw_only=True):
 
     rising: Voltage | None = None
     falling: Voltage | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Switch(Part, frozen=True, kw_only=True):
     """Switch of a level."""
 
-    turned_by: str | None = None
+    turned_by: Name | None = None
     closed_when: Literal["high", "low"] | None = None
 
 
@@ -100,7 +100,7 @@ class Hysteresis(Part, frozen=True, kw_only=True):
     feedback: Literal["positive", "negative"] | None = None
     switches: tuple[Switch, ...] = ()
     feedback_delay: Duration | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Contributor(Part, frozen=True, kw_only=True):
@@ -111,16 +111,16 @@ class Contributor(Part, frozen=True, kw_only=True):
     is_: Literal["bound", "sigma"] | None = msgspec.field(default=None, name="is")
     at: Literal["rail", "input"] | None = None
     tracks: bool | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Divider(Part, frozen=True, kw_only=True):
     """Input divider."""
 
-    ratio: float | None = None
+    ratio: UpToOne | None = None
     top: Resistance | None = None
     bottom: Resistance | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Noise(Part, frozen=True, kw_only=True):
@@ -134,18 +134,18 @@ class Crossover(Part, frozen=True, kw_only=True):
     """Crossover."""
 
     kind: Literal["divider_diode", "divider_mos", "crude_current"] | None = None
-    ratio: float | None = None
+    ratio: UpToOne | None = None
     resistance: Resistance | None = None
-    resistor: str | None = None
-    diode: str | None = None
-    device: str | None = None
+    resistor: Text | None = None
+    diode: Text | None = None
+    device: Text | None = None
     gain: GainFactor | None = None
     offset: Voltage | None = None
     reference_current: Current | None = None
     reference_start: Voltage | None = None
     reference_rise: Voltage | None = None
-    mirror: float | None = None
-    note: str | None = None
+    mirror: Positive | None = None
+    note: Text | None = None
 
 
 class Comparator(Element, frozen=True, kw_only=True):
@@ -154,17 +154,17 @@ class Comparator(Element, frozen=True, kw_only=True):
     section: ClassVar[str] = "comparators"
 
     role: Literal["power_on", "under_voltage", "over_voltage", "reference_ready"]
-    watches: str
-    domain: str | None = None
-    bias: str | None = None
-    reference: str | None = None
+    watches: Name
+    domain: Name | None = None
+    bias: NameOrNone | None = None
+    reference: Name | None = None
     crossover: Crossover | None = None
     trip: Trip | None = None
     tracked: bool | None = None
     hysteresis: Hysteresis | Literal["none"] | None = None
-    errors: dict[str, Contributor] = {}
-    codes: dict[str, Trip] = {}
-    ships_with: str | None = None
+    errors: dict[Name, Contributor] = {}
+    codes: dict[Name, Trip] = {}
+    ships_with: Text | None = None
     divider: Divider | None = None
     works_from: Voltage | None = None
     works_to: Voltage | None = None
@@ -175,11 +175,11 @@ class Comparator(Element, frozen=True, kw_only=True):
     noise: Noise | None = None
     kick: Charge | None = None
     switching_current: Current | None = None
-    armed_by: str | None = None
-    gated_by: str | None = None
+    armed_by: Name | None = None
+    gated_by: Name | None = None
     rearms_below: Voltage | None = None
     output: Literal["level", "pulse"] | None = None
     pulse: Duration | None = None
     undecided: Literal["asserts", "releases", "undefined"] | None = None
     consumes: Current | None = None
-    note: str | None = None
+    note: Text | None = None

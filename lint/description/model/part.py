@@ -1,13 +1,34 @@
-"""What every part of a description is."""
+"""What every part of a description is, and the plain values it is made of.
+
+The types say all that the schema says, so that a description that can be built needs no other check; a test holds the
+two together.
+"""
 
 from __future__ import annotations
 
-from typing import ClassVar
+from typing import Annotated, ClassVar, TypeAlias, TypeVar
 
 import msgspec
 
+_A = TypeVar("_A")
 
-class Part(msgspec.Struct, frozen=True, kw_only=True):
+Name: TypeAlias = Annotated[str, msgspec.Meta(pattern=r"^(?!x-|none\Z)[A-Za-z_][A-Za-z0-9_-]{0,63}\Z")]
+"""The id of an element, or of an entry of another section."""
+NameOrNone: TypeAlias = Annotated[str, msgspec.Meta(pattern=r"^(?!x-)[A-Za-z_][A-Za-z0-9_-]{0,63}\Z")]
+"""An id, or the word that says that there is none."""
+Text: TypeAlias = Annotated[str, msgspec.Meta(min_length=1)]
+Date: TypeAlias = Annotated[
+    str, msgspec.Meta(pattern=r"^[0-9]{4}-(0[1-9]|1[0-2])-(0[1-9]|[12][0-9]|3[01])\Z", min_length=1)
+]
+Positive: TypeAlias = Annotated[float, msgspec.Meta(gt=0)]
+NotNegative: TypeAlias = Annotated[float, msgspec.Meta(ge=0)]
+UpToOne: TypeAlias = Annotated[float, msgspec.Meta(gt=0, le=1)]
+"""More than nothing, and at most the whole."""
+Count: TypeAlias = Annotated[int, msgspec.Meta(ge=1)]
+AtLeastOne: TypeAlias = Annotated[tuple[_A, ...], msgspec.Meta(min_length=1)]
+
+
+class Part(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """An object of the description; a field that is None was not given."""
 
 

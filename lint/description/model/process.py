@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Literal
 
-from tidegate.lint.description.model.part import Part
+from tidegate.lint.description.model.part import Name, NotNegative, Part, Positive, Text
 from tidegate.lint.quantity import (
     CapacitancePerArea,
     Current,
@@ -50,8 +50,8 @@ class Layer(Part, frozen=True, kw_only=True):
     thickness: Length | None = None
     short_length_product: CurrentPerWidth | None = None
     sheet: SheetResistance | None = None
-    source: str | None = None
-    note: str | None = None
+    source: Text | None = None
+    note: Text | None = None
 
 
 class ViaLimit(Part, frozen=True, kw_only=True):
@@ -67,8 +67,8 @@ class ViaKind(Part, frozen=True, kw_only=True):
 
     limits: tuple[ViaLimit, ...] = ()
     resistance: Resistance | None = None
-    source: str | None = None
-    note: str | None = None
+    source: Text | None = None
+    note: Text | None = None
 
 
 class MismatchLaw(Part, frozen=True, kw_only=True):
@@ -90,8 +90,8 @@ class Device(Part, frozen=True, kw_only=True):
     swing: Voltage | None = None
     mismatch: MismatchLaw | None = None
     supply: Voltage | None = None
-    source: str | None = None
-    note: str | None = None
+    source: Text | None = None
+    note: Text | None = None
 
 
 class Resistor(Part, frozen=True, kw_only=True):
@@ -101,28 +101,28 @@ class Resistor(Part, frozen=True, kw_only=True):
     tc1: PerKelvin | None = None
     tc2: PerKelvinSquared | None = None
     reference_temperature: Temperature | None = None
-    source: str | None = None
-    note: str | None = None
+    source: Text | None = None
+    note: Text | None = None
 
 
 class Capacitor(Part, frozen=True, kw_only=True):
     """Capacitor kind."""
 
     density: CapacitancePerArea | None = None
-    source: str | None = None
-    note: str | None = None
+    source: Text | None = None
+    note: Text | None = None
 
 
 class Diode(Part, frozen=True, kw_only=True):
     """Junction."""
 
     saturation: Current | None = None
-    emission: float | None = None
+    emission: Positive | None = None
     band_gap: Energy | None = None
-    temperature_exponent: float | None = None
+    temperature_exponent: NotNegative | None = None
     reference_temperature: Temperature | None = None
-    source: str | None = None
-    note: str | None = None
+    source: Text | None = None
+    note: Text | None = None
 
 
 class Process(Part, frozen=True, kw_only=True):
@@ -130,13 +130,13 @@ class Process(Part, frozen=True, kw_only=True):
 
     kit: Literal["ihp-sg13g2", "gf180mcu"] | None = None
     activation_energy: Energy | None = None
-    current_exponent: float | None = None
+    current_exponent: Positive | None = None
     plain_edge: Duration | None = None
-    layers: dict[str, Layer] = {}
-    vias: dict[str, ViaKind] = {}
-    devices: dict[str, Device] = {}
-    resistors: dict[str, Resistor] = {}
-    capacitors: dict[str, Capacitor] = {}
-    diodes: dict[str, Diode] = {}
-    source: str | None = None
-    note: str | None = None
+    layers: dict[Name, Layer] = {}
+    vias: dict[Name, ViaKind] = {}
+    devices: dict[Name, Device] = {}
+    resistors: dict[Name, Resistor] = {}
+    capacitors: dict[Name, Capacitor] = {}
+    diodes: dict[Name, Diode] = {}
+    source: Text | None = None
+    note: Text | None = None

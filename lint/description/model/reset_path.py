@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import ClassVar, Literal
 
-from tidegate.lint.description.model.part import Element, Part
+from tidegate.lint.description.model.part import AtLeastOne, Count, Element, Name, NotNegative, Part, Text
 from tidegate.lint.description.model.timing import Timing
 from tidegate.lint.quantity import (
     Capacitance,
@@ -25,13 +25,13 @@ class Hold(Part, frozen=True, kw_only=True):
     through: Literal["resistor", "transistor"] | None = None
     resistance: Resistance | None = None
     coupling: Capacitance | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Transistor(Part, frozen=True, kw_only=True):
     """Output transistor."""
 
-    family: str | None = None
+    family: Text | None = None
     threshold: Voltage | None = None
     gain: GainFactor | None = None
 
@@ -39,20 +39,20 @@ class Transistor(Part, frozen=True, kw_only=True):
 class OutputLine(Part, frozen=True, kw_only=True):
     """Output line."""
 
-    layer: str | None = None
+    layer: Text | None = None
     width: Length | None = None
     length: Length | None = None
-    via: str | None = None
-    vias: int | None = None
-    note: str | None = None
+    via: Text | None = None
+    vias: Count | None = None
+    note: Text | None = None
 
 
 class Discharge(Part, frozen=True, kw_only=True):
     """Discharge."""
 
     within: Duration | None = None
-    by: str | None = None
-    note: str | None = None
+    by: Text | None = None
+    note: Text | None = None
 
 
 class OutputStage(Element, frozen=True, kw_only=True):
@@ -60,10 +60,10 @@ class OutputStage(Element, frozen=True, kw_only=True):
 
     section: ClassVar[str] = "output_stages"
 
-    driven_by: tuple[str, ...] | None = None
+    driven_by: AtLeastOne[Name] | None = None
     combine: Literal["any_asserts", "all_agree"] | None = None
     combined_against: Literal["false_reset", "missed_reset"] | None = None
-    domain: str | None = None
+    domain: Name | None = None
     kind: Literal["gain", "inverter", "buffer", "schmitt", "latch", "level_shifter", "filter", "delay"] | None = None
     inverting: bool | None = None
     hold: Hold | Literal["none"] | None = None
@@ -79,14 +79,14 @@ class OutputStage(Element, frozen=True, kw_only=True):
     load: Capacitance | None = None
     power_up: Literal["asserts", "releases", "undefined"] | None = None
     dwell: Duration | None = None
-    edges_per_cycle: float | None = None
+    edges_per_cycle: NotNegative | None = None
     delay: Duration | None = None
     release_delay: Duration | None = None
     discharge: Discharge | Literal["none"] | None = None
     timing: Timing | None = None
-    gated_by: str | None = None
+    gated_by: Name | None = None
     consumes: Current | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Receiver(Part, frozen=True, kw_only=True):
@@ -95,8 +95,8 @@ class Receiver(Part, frozen=True, kw_only=True):
     levels: Literal["JESD8C.01", "JESD8-5A.01", "JESD8-7A", "JESD8-11A", "JESD8-12A.01"] | None = None
     threshold: Voltage | None = None
     leakage: Current | None = None
-    count: int | None = None
-    note: str | None = None
+    count: Count | None = None
+    note: Text | None = None
 
 
 class Reset(Element, frozen=True, kw_only=True):
@@ -104,20 +104,20 @@ class Reset(Element, frozen=True, kw_only=True):
 
     section: ClassVar[str] = "resets"
 
-    driven_by: tuple[str, ...] | None = None
+    driven_by: AtLeastOne[Name] | None = None
     combine: Literal["any_asserts", "all_agree"] | None = None
     combined_against: Literal["false_reset", "missed_reset"] | None = None
     active: Literal["low", "high"] | None = None
-    guards: tuple[str, ...] | None = None
-    domain: str | None = None
+    guards: tuple[Name, ...] | None = None
+    domain: Name | None = None
     receivers: Receiver | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class Need(Part, frozen=True, kw_only=True):
     """Need of a supply."""
 
-    rail: str
+    rail: Name
     works: Voltage | None = None
 
 
@@ -126,17 +126,17 @@ class Load(Element, frozen=True, kw_only=True):
 
     section: ClassVar[str] = "loads"
 
-    needs: tuple[Need, ...] = ()
-    references: tuple[str, ...] | None = None
-    domain: str | None = None
+    needs: AtLeastOne[Need] = ()
+    references: tuple[Name, ...] | None = None
+    domain: Name | None = None
     ready: Duration | None = None
     start: Duration | None = None
     clocked: bool | None = None
     synchronised: bool | None = None
     consumes: Current | None = None
-    leans_on: tuple[str, ...] | None = None
-    gated_by: str | None = None
-    note: str | None = None
+    leans_on: tuple[Name, ...] | None = None
+    gated_by: Name | None = None
+    note: Text | None = None
 
 
 class Bypass(Element, frozen=True, kw_only=True):
@@ -144,17 +144,17 @@ class Bypass(Element, frozen=True, kw_only=True):
 
     section: ClassVar[str] = "bypasses"
 
-    overrides: str | None = None
+    overrides: Name | None = None
     forces: Literal["released", "asserted"] | None = None
     controlled_by: Literal["pin", "register", "fuse", "test_port"] | None = None
-    domain: str | None = None
-    reset_by: str | None = None
-    leans_on: tuple[str, ...] | None = None
+    domain: Name | None = None
+    reset_by: Name | None = None
+    leans_on: tuple[Name, ...] | None = None
     default: Literal["inactive", "active"] | None = None
     hold: Hold | Literal["none"] | None = None
     locked_outside_test: bool | None = None
     readable: bool | None = None
-    note: str | None = None
+    note: Text | None = None
 
 
 class VictimNode(Part, frozen=True, kw_only=True):
@@ -170,8 +170,8 @@ class Neighbour(Element, frozen=True, kw_only=True):
     section: ClassVar[str] = "neighbours"
 
     kind: Literal["capacitance", "shared_reference", "supply_impedance", "shared_return"]
-    aggressor: str
-    victim: str
+    aggressor: Name
+    victim: Name
     mutual: bool | None = None
     at: Literal["rail", "input", "reference"] | None = None
     capacitance: Capacitance | None = None
@@ -180,6 +180,6 @@ class Neighbour(Element, frozen=True, kw_only=True):
     node: VictimNode | None = None
     impedance: Resistance | None = None
     current_step: Current | None = None
-    reference: str | None = None
+    reference: Name | None = None
     charge: Charge | None = None
-    note: str | None = None
+    note: Text | None = None

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import ClassVar, Literal
 
-from tidegate.lint.description.model.part import Element, Part
+from tidegate.lint.description.model.part import Element, Name, Part, Text
 from tidegate.lint.quantity import Capacitance, Current, Duration, Frequency, Resistance, Slope, Voltage
 
 
@@ -40,12 +40,12 @@ class Rail(Element, frozen=True, kw_only=True):
     source_impedance: Resistance | None = None
     load_step: Current | None = None
     hold_up: Capacitance | None = None
-    after: str | None = None
+    after: Name | None = None
     delay: Duration | None = None
     residual: Voltage | None = None
     off_time: Duration | None = None
-    made_by: str | None = None
-    note: str | None = None
+    made_by: Name | None = None
+    note: Text | None = None
 
 
 class Domain(Element, frozen=True, kw_only=True):
@@ -53,8 +53,8 @@ class Domain(Element, frozen=True, kw_only=True):
 
     section: ClassVar[str] = "domains"
 
-    rail: str | None = None
+    rail: Name | None = None
     kind: Literal["always_on", "switched"] | None = None
-    switched_by: str | None = None
+    switched_by: Name | None = None
     budget: Current | None = None
-    note: str | None = None
+    note: Text | None = None

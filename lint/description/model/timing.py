@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from tidegate.lint.description.model.part import Part
+from tidegate.lint.description.model.part import Part, Positive, Text
 from tidegate.lint.quantity import Capacitance, Current, Duration, Resistance, Voltage
 
 
@@ -14,6 +14,6 @@ class Timing(Part, frozen=True, kw_only=True):
     leakage: Current | None = None
     capacitance: Capacitance | None = None
     threshold: Voltage | None = None
-    count: float | None = None
+    count: Positive | None = None
     period: Duration | None = None
-    note: str | None = None
+    note: Text | None = None

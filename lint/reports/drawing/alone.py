@@ -11,8 +11,10 @@ from markupsafe import Markup
 
 from tidegate.lint.reports.drawing.graph import GraphDrawing
 from tidegate.lint.reports.drawing.ladder import LadderDrawing
+from tidegate.lint.reports.drawing.scale import shortened
 from tidegate.lint.reports.drawing.templates import environment, picture_css
 from tidegate.lint.reports.drawing.timeline import TimelineDrawing
+from tidegate.lint.reports.plain_text import plain
 
 _WIDTH: Final = 960.0
 _HEAD: Final = 52.0
@@ -59,13 +61,18 @@ def _macro(name: str) -> Any:
 
 
 def _file(title: str, pictures: Sequence[tuple[str, str, float, float, Markup]]) -> str:
+    room = max((width for _, _, width, _, _ in pictures), default=_WIDTH)
     parts, y = [], 8.0
     for heading, about, width, height, picture in pictures:
-        parts.append(Part(heading, about, y, width, height, picture))
+        parts.append(Part(_fitting(heading, room, 17.0), _fitting(about, room, 13.0), y, width, height, picture))
         y += _HEAD + height + _FOOT
-    width = max((part.width for part in parts), default=_WIDTH) + 2 * _EDGE
+    width = room + 2 * _EDGE
     template = environment().get_template("alone.svg.j2")
     return template.render(title=title, width=width, height=y, parts=parts, css=Markup(_style()))
+
+
+def _fitting(text: str, width: float, size: float) -> str:
+    return shortened(plain(text), width=width, size=size)
 
 
 def _style() -> str:

@@ -42,5 +42,5 @@ def graphml_text(graph: Graph, *, name: str) -> str:
     for edge in graph.edges():
         made.add_edge(edge.tail, edge.head, relation=edge.kind.forwards, fact=edge.fact)
     out = io.BytesIO()
-    networkx.write_graphml(made, out, encoding="utf-8", named_key_ids=True)
+    networkx.write_graphml_xml(made, out, encoding="utf-8", named_key_ids=True)  # the same with and without lxml
     return out.getvalue().decode("utf-8") + "\n"

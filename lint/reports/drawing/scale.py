@@ -10,6 +10,8 @@ from typing import Final
 
 import msgspec
 
+from tidegate.lint.reports.columns import columns
+
 _WIDE: Final = 0.61
 """Width of a character as a share of the size of its type: that of a wide plain face, so that no label is too short
 of room in any."""
@@ -85,16 +87,24 @@ def round_values(*, low: float, high: float, most: int) -> list[float]:
 
 def text_width(text: str, size: float) -> float:
     """Room that a text takes at most, in pixels."""
-    return _WIDE * size * len(text)
+    return _WIDE * size * columns(text)
 
 
 def shortened(text: str, *, width: float, size: float) -> str:
     """A text that fits a width, its middle left out where it is too long."""
     most = max(int(width / (_WIDE * size)), 3)
-    if len(text) <= most:
+    if columns(text) <= most:
         return text
     tail = (most - 1) // 3
-    return f"{text[: most - 1 - tail]}…{text[len(text) - tail :]}"
+    return f"{_first(text, most - 1 - tail)}…{_first(text[::-1], tail)[::-1]}"
+
+
+def _first(text: str, most: int) -> str:
+    """As much of the beginning of a text as has room in so many columns."""
+    start = text[:most]
+    while columns(start) > most:
+        start = start[:-1]
+    return start
 
 
 def kept_apart(places: Sequence[tuple[float, float]], *, gap: float) -> list[int]:

@@ -7,7 +7,7 @@ from collections.abc import Iterable
 from pathlib import Path
 
 from tidegate.lint.description.model.description import Conditions
-from tidegate.lint.description.sources import read_file
+from tidegate.lint.description.reading import read_file
 from tidegate.lint.quantity import Span, show
 from tidegate.lint.reports.page.contents import InputFile
 from tidegate.lint.settings import Settings
@@ -20,6 +20,8 @@ def input_files(names: Iterable[str]) -> tuple[InputFile, ...]:
 
 def _digest(name: str) -> str:
     try:
+        if not Path(name).is_file():  # what came through a pipe does not come again
+            return ""
         return hashlib.sha256(read_file(Path(name))).hexdigest()
     except (OSError, ValueError):  # process data that come with the tool, or a file that has gone since
         return ""

@@ -32,7 +32,7 @@ ATTACKS: Final = (
     "</style></title></textarea><style>body{display:none}</style>",
     "{{ 7 * 7 }}{% raw %}",
     "\u202egnirts desrever\u202c \u200b",
-    "x" * 10_000,
+    "x" * 9_000,
     "]]>--><!--&lt;&#x3c;",
 )
 
