@@ -66,7 +66,9 @@ class Measure(msgspec.Struct, frozen=True):
         return margin / (abs(self.need) or abs(self.have))
 
     def texts(self) -> tuple[str, str]:
-        """The number found and its limit, with digits enough to tell them apart."""
+        """The number found and its limit, with digits enough to tell them apart; a tie is told as one."""
+        if self.margin == 0.0:
+            return show(self.need, self.dimension), show(self.need, self.dimension)
         return show_apart(self.have, self.need, self.dimension)
 
     def text(self) -> str:

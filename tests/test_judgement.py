@@ -89,3 +89,9 @@ def test_the_words_are_those_of_sarif() -> None:
     # OASIS SARIF 2.1.0, sections 3.27.9 (kind) and 3.27.10 (level).
     assert {kind.value for kind in Kind} == {"pass", "fail", "open", "review", "notApplicable"}
     assert {level.value for level in Level} == {"error", "warning", "note"}
+
+
+def test_a_tie_but_for_rounding_is_told_as_one() -> None:
+    measure = Measure(0.06, 0.1 - 0.04, Dimension.VOLTAGE, Relation.AT_MOST)
+    assert measure.have != measure.need
+    assert measure.text() == "60 mV, at most 60 mV needed"

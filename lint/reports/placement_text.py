@@ -26,6 +26,7 @@ _V: Final = Dimension.VOLTAGE
 _HELD: Final = "\xa0"  # a space at which no line is broken
 _NUMBER_AND_UNIT: Final = re.compile(r"(?<=[0-9]) (?=[A-Za-z%])")
 _GRID: Final = 10_000  # levels are shown in tenths of a millivolt
+_MOST_ON_GRID_V: Final = 1e9  # no float tells tenths of a millivolt apart much above
 _NOUNS: Final = {"power_on": "power-on", "under_voltage": "under-voltage", "over_voltage": "over-voltage"}
 
 
@@ -177,11 +178,15 @@ def millivolts(value_v: float) -> str:
 
 def up_text(level_v: float) -> str:
     """A least level: the next tenth of a millivolt up."""
+    if abs(level_v) > _MOST_ON_GRID_V:
+        return show(level_v, _V)
     return f"{math.ceil(level_v * _GRID - 1e-6) / _GRID:.4f} V"
 
 
 def down_text(level_v: float) -> str:
     """A greatest level: the next tenth of a millivolt down."""
+    if abs(level_v) > _MOST_ON_GRID_V:
+        return show(level_v, _V)
     return f"{math.floor(level_v * _GRID + 1e-6) / _GRID:.4f} V"
 
 

@@ -175,7 +175,9 @@ def _properties(judgement: Judgement) -> dict[str, Any]:
 
 
 def _number(value: float) -> float | str:
-    return value if abs(value) != float("inf") else str(value)
+    if abs(value) != float("inf"):
+        return value
+    return "unlimited" if value > 0 else "-unlimited"
 
 
 def _related(review: Review, judgement: Judgement) -> list[dict[str, Any]]:

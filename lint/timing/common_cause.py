@@ -35,7 +35,8 @@ def release_slack_apart(lines: Timelines, load: str, courses: Iterable[Timeline]
         apart = ends.worst_of(line) if slack_s < 0.0 and shared else slack
         if apart is not None and (least is None or (apart.slack_s, number) < least[:2]):
             least = apart.slack_s, number, apart
-    assert least is not None
+    if least is None:  # at no combination of ends is reset released: what lies between them stands
+        return min(found, key=itemgetter(0, 1))[3], ()
     return least[2], shared if min(found, key=itemgetter(0))[0] < 0.0 else ()
 
 

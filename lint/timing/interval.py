@@ -83,20 +83,30 @@ def both(first: Times, second: Times) -> Times:
         return second
     if len(first) == 1 and len(second) == 1:  # as it mostly is
         return _both_span(first, second)
+    return _overlaps(first, second)
+
+
+def _overlaps(first: Times, second: Times) -> Times:
+    """Where two sets overlap: through both at once, past whichever span ends first."""
     done: list[tuple[float, float]] = []
-    one = other = 0
-    while one < len(first) and other < len(second):
-        start, end = first[one]
-        other_start, other_end = second[other]
-        start = max(start, other_start)
+    ones, others = iter(first), iter(second)
+    (start, end), (other_start, other_end) = next(ones), next(others)
+    while True:
+        both_start = start if start > other_start else other_start
         if end < other_end:
-            one += 1
+            if both_start < end:
+                done.append((both_start, end))
+            span = next(ones, None)
+            if span is None:
+                return tuple(done)
+            start, end = span
         else:
-            other += 1
-            end = other_end
-        if start < end:
-            done.append((start, end))
-    return tuple(done)
+            if both_start < other_end:
+                done.append((both_start, other_end))
+            span = next(others, None)
+            if span is None:
+                return tuple(done)
+            other_start, other_end = span
 
 
 def _both_span(first: Times, second: Times) -> Times:

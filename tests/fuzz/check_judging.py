@@ -6,6 +6,7 @@ import datetime
 import json
 import math
 import random
+import re
 from collections import Counter
 from collections.abc import Iterator
 from pathlib import Path
@@ -124,8 +125,10 @@ def _essence(result: Review) -> dict[str, Counter[Any]]:
     essence: dict[str, Counter[Any]] = {}
     for said in result.judgements:
         margin = f"{said.measure.margin:.9g}" if said.measure is not None else ""
+        # A loop through elements of several sections is judged by the rule of the one that comes first.
+        rule = re.sub(r"/\w+_loop_starts$", "/loop_starts", said.rule)
         if said.rule != "waiver/still_right":
-            essence.setdefault(said.rule, Counter())[said.kind, margin, tuple(sorted(set(said.missing)))] += 1
+            essence.setdefault(rule, Counter())[said.kind, margin, tuple(sorted(set(said.missing)))] += 1
     return essence
 
 

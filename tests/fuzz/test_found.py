@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import json
 import random
 from collections import Counter
 from pathlib import Path
@@ -18,6 +19,7 @@ from tidegate.lint.description.place import DescriptionError
 from tidegate.lint.engine import Catalogue, review
 from tidegate.lint.judgement import Judgement
 from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.reports.placement_text import down_text, up_text
 from tidegate.rules.catalogue import FAMILIES
 
 WITHOUT_TROUBLE: Final = {
@@ -59,6 +61,53 @@ WITHOUT_TROUBLE: Final = {
           por_n: {driven_by: [buf], domain: core}
           rst_b: {driven_by: [por], guards: [core], domain: aon}
         loads: {cpu: {needs: [{rail: vio, works: {min: 1.27 V}}], domain: core, consumes: {max: 25 mA}}}
+    """,
+    # start_up/release_after_ready found no release at any combination of ends of what two times share
+    "release_between_the_ends_alone": """
+        conditions: {combine: worst_case, coverage: 2.954}
+        rails: {avdd: {nominal: 1.98897312 V, rise: 23.936 ms, hold_up: 4910.5 nF}}
+        domains: {aon: {rail: avdd, kind: always_on}}
+        comparators:
+          por:
+            {role: over_voltage, watches: avdd, domain: aon, errors: {a: {share: {max: 4570 ppm}, is: sigma}},
+            codes: {a: {rising: {min: 1.64 V, max: 1.81 V}, falling: 1.75489797 V}}, ships_with: a,
+            works_from: {max: 1.22760424 V},
+            delay: {max: 2.2273 us}, sampling: 1247.5 us, output: level, undecided: releases}
+        output_stages:
+          st:
+            {driven_by: [st_b], domain: aon, kind: latch, hold: {to: low}, works_from: {max: 0.6696018 V},
+            power_up: releases,
+            delay: {max: 42.3 ns}, gated_by: por}
+          st_b: {driven_by: [st], domain: aon, hold: {to: low}, works_from: {max: 0.875425494 V}, delay: 42164 ps}
+        resets:
+          por_n: {driven_by: [st], guards: [cpu], domain: aon}
+          rst_b: {driven_by: [st_b], domain: aon}
+        loads:
+          cpu:
+            {needs: [{rail: avdd, works: 1.4926 V}], ready: {max: 43.4 us},
+            consumes: {max: 32167 uA}, gated_by: rst_b}
+    """,
+    # the wear is unlimited, which SARIF alone wrote as inf
+    "vias_that_wear_out_at_once": """
+        conditions: {junction_temperature: {max: -12 degC}, service_life: 17.906 yr, power_cycles: 0.08696}
+        process:
+          {activation_energy: 0.2 meV, current_exponent: 4034, plain_edge: 0.13534 us,
+          vias: {m1: {limits: [{temperature: 55.763 degC, life: 3.6e+38 s, dc: 7.0348 uA}]}}}
+        output_stages:
+          st:
+            {input_edge: 3.6944 min, crowbar_peak: 0.21188571 A, output: {via: m1, vias: 1}, dwell: 56.5 h,
+            edges_per_cycle: 4.87e-06}
+    """,
+    # electromigration/line advised a line that is inf um wide
+    "line_that_carries_nothing": """
+        conditions: {junction_temperature: {max: 182 degC}, service_life: 22 yr, power_cycles: 40820}
+        process:
+          {activation_energy: 648.77 meV, current_exponent: 0.001, plain_edge: 183 ns,
+          layers: {m1: {limits: [{temperature: 447.35 K, life: 14.377 yr, dc: 0.845 mA/um}]}}}
+        output_stages:
+          st:
+            {input_edge: 16.78 ms, crowbar_peak: 17 uA, output: {layer: m1, width: 0.321 um}, dwell: 0.06 ps,
+            edges_per_cycle: 1.065}
     """,
     # `place` stepped without end, and showed an error of inf mV, where errors grow faster than the level
     "errors_larger_than_the_level": """
@@ -135,6 +184,14 @@ def test_a_rail_that_cannot_be_drawn_is_named(tmp_path: Path) -> None:
     assert "not drawn without its nominal level" in done.stdout
 
 
+def test_an_unlimited_number_is_called_so_in_every_form(tmp_path: Path) -> None:
+    (tmp_path / "chip.yaml").write_text(WITHOUT_TROUBLE["vias_that_wear_out_at_once"], "utf-8")
+    results = json.loads(tidegate("review", "--as", "sarif", "chip.yaml", cwd=tmp_path).stdout)["runs"][0]["results"]
+    (wear,) = [each for each in results if each["ruleId"] == "electromigration/vias"]
+    assert wear["properties"]["have"] == "unlimited"
+    assert wear["properties"]["margin"] == "-unlimited"
+
+
 def faults_of(folder: Path, text: str) -> list[str]:
     (folder / "chip.yaml").write_text(text, "utf-8")
     with pytest.raises(DescriptionError) as refused:
@@ -168,6 +225,11 @@ def test_a_number_of_more_units_than_a_float_can_count_is_shown() -> None:
     """It was shown as ``inf %``."""
     assert show(2e306, Dimension.RATIO) == "2.000e+308 %"
     assert show(-1e305, Dimension.MISMATCH) == "-1.000e+314 mV*um"
+
+
+def test_a_level_beyond_any_voltage_is_shown() -> None:
+    """``place`` failed to round it to tenths of a millivolt."""
+    assert [up_text(float("inf")), down_text(-1e305), up_text(1.23451)] == ["unlimited", "-1e+302 kV", "1.2346 V"]
 
 
 def said(folder: Path, text: str) -> dict[tuple[str, str], Judgement]:

@@ -400,6 +400,11 @@ def test_how_a_rail_comes_up_does_not_matter_when_it_falls() -> None:
     for fact in ("loads.core_regulator.start", "rails.vcore.delay"):
         for rule in (ASSERTS, DIP):
             assert found(without(fact), rule, "adc").measure == found("", rule, "adc").measure
+    alone = patch(
+        {"output_stages": {"core_out": {"driven_by": ["uv_core"]}}}
+    )  # por_n, that lets vcore come, hangs on uv
+    for rule in (ASSERTS, DIP):
+        assert found(both(alone, without("comparators.uv.delay")), rule, "core_logic").kind is Kind.PASS
 
 
 def test_the_rail_with_the_least_room_is_told() -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import Final
 
 import msgspec
@@ -74,8 +75,8 @@ class LevelSpread(msgspec.Struct, frozen=True):
             before_v, level_v = level_v, end_v + side * self.at_v(level_v)
             if abs(level_v - before_v) <= _SETTLED * abs(level_v):
                 break
-        if not abs(level_v - before_v) <= _RESTED * abs(level_v):
-            raise DomainError("share of the errors must be well below 100 % (found no place for the level)")
+        if not math.isfinite(level_v) or abs(level_v - before_v) > _RESTED * abs(level_v):
+            raise DomainError("the errors must be finite, and their share well below 100 %: the level has no place")
         return level_v
 
 

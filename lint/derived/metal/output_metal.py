@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Mapping
 from typing import Final
 
@@ -83,6 +84,8 @@ def line_of(case: Case, stage: OutputStage) -> Conductor:
     def enough(current_a: float) -> str:
         strictest = min([per_width.here, *heating.values()])
         needed_m = width_for_current_m(current_a=current_a, per_width_a_per_m=strictest, width_bias_m=bias_m)
+        if math.isinf(needed_m * 1e6):
+            return f"another layer: no width is enough; now {width_m * 1e6:g} um"
         wide_m = max(needed_m, narrow_m + _GRID_M) if is_narrow else needed_m
         return f"{width_up_um(wide_m)} wide, or wider; now {width_m * 1e6:g} um"
 
