@@ -20,7 +20,7 @@ from generated import ROOT, generated
 from processes import TOOL, both, cost
 
 SIZES = (10, 100, 1000, 10000, 100000)
-RUNS = 15
+RUNS = 9
 PARSE = "import sys, yaml; yaml.compose(open(sys.argv[1]), Loader=yaml.CSafeLoader)"
 LIBRARIES = "import yaml, jsonschema, networkx, rich"
 READING = "import argparse, yaml, msgspec"
