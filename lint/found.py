@@ -21,6 +21,13 @@ def escaped(text: str) -> str:
     return "".join(sign if sign.isprintable() else repr(sign)[1:-1] for sign in text)
 
 
+def with_space(key: str, value: str) -> str:
+    """What to write in place of a key and a value with no space between them; in words where that would be long."""
+    if len(key) + len(value) >= MOST_SHOWN:
+        return "write a space after the colon"
+    return f"write {escaped(key)}: {escaped(value)}"
+
+
 def found(value: object) -> str:
     """A value of a description, in few words."""
     if isinstance(value, bool):

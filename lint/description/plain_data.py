@@ -14,7 +14,7 @@ import yaml
 
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, Step, dotted
 from tidegate.lint.description.yaml_nodes import NOT_TEXT, UNTYPED, TooDeepError
-from tidegate.lint.found import quoted
+from tidegate.lint.found import quoted, with_space
 from tidegate.lint.limits import LARGEST_NUMBER, MOST_BYTES, MOST_DEPTH, MOST_EXPANDED, MOST_GROWTH, MOST_TEXT
 
 Plain: TypeAlias = "dict[str, Plain] | list[Plain] | str | int | float | bool"
@@ -104,7 +104,7 @@ class PlainFile:
             return None
         if ":" in text and not text.startswith("x-"):
             word, _, value = text.partition(":")
-            self._fault(node, word, f"no space after the colon (found {quoted(text)})", f"write {word}: {value}")
+            self._fault(node, word, f"no space after the colon (found {quoted(text)})", with_space(word, value))
             return word
         return text
 

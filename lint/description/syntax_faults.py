@@ -10,7 +10,7 @@ import msgspec
 import yaml
 
 from tidegate.lint.description.place import Fault, Place
-from tidegate.lint.found import escaped, quoted
+from tidegate.lint.found import quoted, with_space
 from tidegate.lint.limits import MOST_DEPTH
 
 
@@ -161,6 +161,5 @@ def _no_key(name: str, number: int, lines: Sequence[str]) -> Fault:
     place = Place(name, number + 1, len(lines[number]) - len(lines[number].lstrip()) + 1)
     key, colon, value = text.partition(":")
     if colon and value:
-        advice = f"write {escaped(key[:40])}: {escaped(value[:40])}"
-        return Fault(place, "", f"no space after the colon (found {quoted(text)})", advice)
+        return Fault(place, "", f"no space after the colon (found {quoted(text)})", with_space(key, value))
     return Fault(place, "", f"a line without a key and a colon (found {quoted(text)})", "write key: value")

@@ -66,6 +66,16 @@ KEYS: Final = (
         "main.yaml:4:17: rails.avdd.delivered.min: no space after the colon (found 'min:1.7V'); write min: 1.7V",
     ),
     Bad(
+        "a value with a sign that turns the text round, without the space after its colon",
+        RAIL + "    rise:5 m\u202es\n",
+        "main.yaml:4:5: no space after the colon (found 'rise:5 m\\u202es'); write rise: 5 m\\u202es",
+    ),
+    Bad(
+        "a long value without the space after its colon",
+        RAIL + "    note:" + "a" * 60 + "\n",
+        "main.yaml:4:5: no space after the colon (found 'note:" + "a" * 55 + "...'); write a space after the colon",
+    ),
+    Bad(
         "a key with an escape for the terminal",
         RAIL + '    "\\e[31mred": 1 V\n',
         "main.yaml:4:5: rails.avdd: the character U+001B is not allowed in a text; remove it",

@@ -140,3 +140,15 @@ def _is_chosen_first(chance: random.Random) -> None:
         least, taken = release_slack_apart(cast(Timelines, None), "core", lines)
     assert (least.slack_s, least.first_s) == min(found)
     assert taken == (shared if any(course is not None and course[0] < 0 for course in courses) else ())
+
+
+def test_what_lies_between_the_ends_stands_where_nothing_is_released_at_them(monkeypatch: pytest.MonkeyPatch) -> None:
+    lines = lines_of(NOT_READY.format("400 us", ""))
+    slacks = [(line, release_slack(line, "core_regulator")) for line in lines.starts]
+    short = [(line, slack) for line, slack in slacks if slack is not None and slack.slack_s < 0.0]
+    assert len({slack.slack_s for _, slack in short}) > 1
+    monkeypatch.setattr(common_cause._Ends, "worst_of", lambda *_: None)
+    courses = sorted(short, key=lambda each: -each[1].slack_s)  # the least does not come first
+    least, shared = release_slack_apart(lines, "core_regulator", [line for line, _ in courses])
+    assert least == min((slack for _, slack in short), key=lambda slack: slack.slack_s)
+    assert shared == ()
