@@ -151,7 +151,11 @@ def _part_with(paths: Sequence[tuple[Any, ...]], data: Mapping[str, Any]) -> Map
         elif len(path) == 1 or not isinstance(data[section], dict):
             part[section] = data[section]
         elif part.get(section) is not data[section]:
-            part.setdefault(section, {})[path[1]] = data[section][path[1]]
+            name = str(path[1])  # the validator takes a name of digits for a number
+            if name in data[section]:
+                part.setdefault(section, {})[name] = data[section][name]
+            else:
+                part[section] = data[section]
     return part
 
 

@@ -8,6 +8,18 @@ from tests.bad_input.form import RAIL, UV, Bad
 
 NAMES: Final = (
     Bad(
+        "an element whose name is a number and of which nothing is said",
+        "loads:\n 1:\n",
+        "main.yaml:2:2: loads: '1' is no name; a name has letters, digits, - and _, begins with a letter or _, and has "
+        "at most 64 characters",
+    ),
+    Bad(
+        "an element whose name is a number with a nought in front",
+        "rails:\n  '01': {nominal: 1.8 V}\n",
+        "main.yaml:2:3: rails: '01' is no name; a name has letters, digits, - and _, begins with a letter or _, and "
+        "has at most 64 characters",
+    ),
+    Bad(
         "a name that points nowhere",
         RAIL + "domains:\n  aon: {rail: avd}\n",
         "main.yaml:5:15: domains.aon.rail: no rail is called 'avd'; did you mean avdd?",
