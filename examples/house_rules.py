@@ -29,8 +29,7 @@ QUICK_S: Final = 5e-6  # what the house has agreed on
 )
 def detector_is_quick(comparator: Comparator, case: Case) -> Judgement:
     """Compare the greatest delay with the house's limit."""
-    delay_s = case.own.most("delay")
-    case.settle()
+    delay_s = case.of(comparator).delay.most()
     return case.at_most(
         need=QUICK_S,
         have=delay_s,

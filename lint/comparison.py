@@ -11,7 +11,7 @@ import msgspec
 
 from tidegate.lint.description.place import dotted
 from tidegate.lint.engine import WEIGHT, Review
-from tidegate.lint.judgement import Judgement, Kind, Measure
+from tidegate.lint.judgement import Judgement, Kind, Level, Measure
 
 
 class Harm(IntEnum):
@@ -46,8 +46,9 @@ class JudgementChange(msgspec.Struct, frozen=True):
         """By how much of its need the margin moved; below zero it shrank."""
         if self.old is None or self.new is None or self.old.measure is None or self.new.measure is None:
             return 0.0
-        old, new = self.old.measure.slack, self.new.measure.slack
-        return 0.0 if old == new else new - old
+        old, new = self.old.measure, self.new.measure
+        sure = _apart(old.share(old.sure_margin), new.share(new.sure_margin))
+        return sure or _apart(old.share(old.best_margin), new.share(new.best_margin))
 
 
 class Comparison(msgspec.Struct, frozen=True):
@@ -94,36 +95,56 @@ def _harm(old: Judgement | None, new: Judgement | None) -> Harm | None:
     """None where nothing changed that a reader should know."""
     was, now = _rank(old), _rank(new)
     if now > was:
-        return Harm.WORSE
+        return Harm.OTHER if _is_known_now(old, new) else Harm.WORSE
     if now < was:
         return Harm.BETTER
     if old is None or new is None:
         return None
-    if old.kind is not new.kind or bool(old.waiver) != bool(new.waiver):
-        return Harm.OTHER
+    told_otherwise = old.kind is not new.kind or old.under != new.under or bool(old.waiver) != bool(new.waiver)
     if old.measure is None or new.measure is None or old.measure.dimension is not new.measure.dimension:
         said_otherwise = (old.measure, old.message) != (new.measure, new.message)
-        return Harm.OTHER if said_otherwise and old.kind is not Kind.PASS else None
+        return Harm.OTHER if told_otherwise or (said_otherwise and old.kind is not Kind.PASS) else None
     moved = _moved(old.measure, new.measure)
+    if moved < 0.0 and _rank(new) == _RANK[Kind.FAIL]:
+        return Harm.WORSE
+    if told_otherwise:
+        return Harm.OTHER
     if moved == 0.0:
         return None
-    if moved > 0.0:
-        return Harm.MARGIN_GREW
-    return Harm.WORSE if new.kind is Kind.FAIL and not new.waiver else Harm.MARGIN_SHRANK
+    return Harm.MARGIN_GREW if moved > 0.0 else Harm.MARGIN_SHRANK
+
+
+def _is_known_now(old: Judgement | None, new: Judgement | None) -> bool:
+    """Whether a note asks for a look where nothing was known before: what is said honestly makes nothing worse."""
+    if old is None or new is None:
+        return False
+    return old.kind is Kind.NOT_APPLICABLE and new.kind is Kind.REVIEW and new.level is Level.NOTE
 
 
 def _moved(old: Measure, new: Measure) -> float:
-    """By how much the margin moved, in the unit of both; what rounding makes of it counts as nothing."""
-    if old.margin == new.margin:  # two without limit as well
-        return 0.0
-    moved = new.margin - old.margin
+    """By how much the margin moved, in the unit of both: its sure end, and where that stayed its best end.
+
+    What rounding makes of it counts as nothing.
+    """
     sizes = (abs(size) for size in (old.need, old.have, new.need, new.have) if math.isfinite(size))
-    return 0.0 if abs(moved) <= _STILL * max(sizes, default=0.0) else moved
+    still = _STILL * max(sizes, default=0.0)
+    sure = _apart(old.sure_margin, new.sure_margin)
+    if abs(sure) > still:
+        return sure
+    best = _apart(old.best_margin, new.best_margin)
+    return best if abs(best) > still else 0.0
+
+
+def _apart(old: float, new: float) -> float:
+    """How far apart two margins are; two without end are where they were."""
+    return 0.0 if old == new else new - old
 
 
 def _rank(judgement: Judgement | None) -> int:
-    """How much a judgement asks of somebody; an accepted one asks nothing."""
-    return 0 if judgement is None or judgement.waiver else _RANK[judgement.kind]
+    """How much a judgement asks of somebody; an accepted one asks nothing, one told under another is a failure."""
+    if judgement is None or judgement.waiver:
+        return 0
+    return _RANK[Kind.FAIL if judgement.under else judgement.kind]
 
 
 def _facts(old: Mapping[str, Any], new: Mapping[str, Any]) -> Iterator[FactChange]:

@@ -6,19 +6,21 @@ import datetime
 import math
 from collections import Counter
 from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
+from functools import partial
 from typing import Final
 
 import msgspec
 
-from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.case import Case
+from tidegate.lint.corners import Ask, judged
 from tidegate.lint.description.load import Loaded
 from tidegate.lint.description.model.description import Conditions, Description, Waiver
 from tidegate.lint.description.place import DescriptionError, Fault, Place
+from tidegate.lint.facts.reading import Reading
 from tidegate.lint.found import quoted, raised
 from tidegate.lint.graph.bounded import bounded_graph
 from tidegate.lint.graph.dependency import SECTIONS, Element, Graph
-from tidegate.lint.judgement import Judgement, Kind, Level, difference, least_margin
-from tidegate.lint.physics.domain import DomainError
+from tidegate.lint.judgement import Judgement, Kind, Level, difference, least_margin, under
 from tidegate.lint.quantity import QuantityError
 from tidegate.lint.rule import Rule
 from tidegate.lint.settings import Settings, name_faults
@@ -39,10 +41,11 @@ class Catalogue:
             for rule in family:
                 if rule.id in self.rules or rule.id == STILL_RIGHT.id:
                     raise ValueError(f"two rules are called {rule.id}")
-                if rule.applies_to not in self._by_section:
-                    raise ValueError(f"{rule.id} applies to {rule.applies_to}, which is no section of elements")
+                for section in rule.applies_to:
+                    if section not in self._by_section:
+                        raise ValueError(f"{rule.id} applies to {section}, which is no section of elements")
+                    self._by_section[section].append(rule)
                 self.rules[rule.id] = rule
-                self._by_section[rule.applies_to].append(rule)
         self.rules[STILL_RIGHT.id] = STILL_RIGHT
 
     def for_section(self, section: str) -> Sequence[Rule]:
@@ -66,6 +69,8 @@ class Review(msgspec.Struct, frozen=True):
     settings: Settings
     judgements: tuple[Judgement, ...]
     faults: tuple[RuleFault, ...]
+    rules: Mapping[str, Rule] = {}
+    """Every rule that was asked, by id."""
 
     @property
     def counts(self) -> Mapping[Kind, int]:
@@ -125,9 +130,10 @@ def review(loaded: Loaded, catalogue: Catalogue, *, today: datetime.date, settin
     judgements, on_waivers = apply_waivers(
         judgements, _waivers(loaded, settings), around, settings.level_of(STILL_RIGHT)
     )
+    judgements = _yielded(judgements, catalogue.rules, loaded.description, graph)
     if not settings.leaves_out(STILL_RIGHT):
         judgements += on_waivers
-    return Review(loaded, graph, settings, tuple(judgements), tuple(rule_faults))
+    return Review(loaded, graph, settings, tuple(judgements), tuple(rule_faults), catalogue.rules)
 
 
 def _with_conditions(loaded: Loaded, offered: Conditions | None) -> Loaded:
@@ -160,6 +166,29 @@ def _meant(waiver: Waiver, description: Description, elements: Container[str]) -
     return waiver.element in elements
 
 
+def _yielded(
+    judgements: Sequence[Judgement], rules: Mapping[str, Rule], description: Description, graph: Graph
+) -> list[Judgement]:
+    """The judgements, with each failure that another failure explains told under that one."""
+    failed = {(one.rule, one.subject): one for one in judgements if one.kind is Kind.FAIL and not one.waiver}
+
+    def above(judgement: Judgement) -> str:
+        """The rule whose failure explains one; empty where none does."""
+        for each in rules[judgement.rule].yields:
+            element = graph.elements[judgement.subject]
+            for subject in (judgement.subject,) if each.on is None else each.on(element, description):
+                other = failed.get((each.to, subject))
+                if other is not None:
+                    return above(other) or other.rule
+        return ""
+
+    found = []
+    for judgement in judgements:
+        rule = above(judgement) if (judgement.rule, judgement.subject) in failed else ""
+        found.append(judgement if not rule else under(judgement, rule))
+    return found
+
+
 class _InForce(msgspec.Struct, frozen=True):
     """A rule as the settings want it."""
 
@@ -177,25 +206,19 @@ class _InForce(msgspec.Struct, frozen=True):
 def _judge(asked: _InForce, element: Element, description: Description, graph: Graph) -> Judgement | RuleFault | Fault:
     """What a rule says about an element, or whose fault it is that it says nothing: the rule's, or the settings'."""
     rule = asked.rule
-    case = Case(subject=element, rule=rule.id, level=asked.level, description=description, graph=graph)
+    ask = asker(rule, element, description, graph, asked.level)
+    opened = partial(
+        _opened, Case(subject=element, rule=rule.id, level=asked.level, description=description, graph=graph)
+    )
     try:
-        answer: object = rule.judge(element, case)
-    except MissingFactsError as error:
-        return case.open(error.missing)
-    except DomainError as error:
-        if case.missing:  # a number that is not there yet may be what the formula refused
-            return case.open(dict.fromkeys(case.missing))
-        return case.open((), f"the numbers given lie outside the range of the formula: {error}")
+        answer = judged(ask, opened)
     except KeyboardInterrupt:
         raise
+    except _RuleError as error:
+        return RuleFault(rule.id, element.id, str(error))
     except BaseException as error:  # whatever a rule does wrong is its fault and hides no finding, nor ends the run
         return RuleFault(rule.id, element.id, raised(error))
-    if not isinstance(answer, Judgement):
-        return RuleFault(rule.id, element.id, f"answered {type(answer).__name__}, not a judgement")
-    problem = _improper(answer, case)
-    if problem:
-        return RuleFault(rule.id, element.id, problem)
-    if asked.least_margin is None or answer.kind is not Kind.PASS or answer.measure is None:
+    if asked.least_margin is None or answer.kind not in (Kind.PASS, Kind.OPEN) or answer.measure is None:
         return answer
     name, margin = asked.least_margin
     try:
@@ -207,12 +230,37 @@ def _judge(asked: _InForce, element: Element, description: Description, graph: G
         return Fault(asked.settings.place("least_margins", name), f"least_margins.{name}", problem, advice)
 
 
+def _opened(case: Case, missing: Sequence[str], says: str) -> Judgement:
+    return case.open(missing, says)
+
+
+def asker(rule: Rule, element: Element, description: Description, graph: Graph, level: Level) -> Ask:
+    """A rule on an element, to be asked in one reading or another."""
+
+    def ask(reading: Reading) -> Judgement:
+        case = Case(subject=element, rule=rule.id, level=level, description=description, graph=graph, reading=reading)
+        answer: object = rule.judge(element, case)
+        if not isinstance(answer, Judgement):
+            raise _RuleError(f"answered {type(answer).__name__}, not a judgement")
+        problem = _improper(answer, case)
+        if problem:
+            raise _RuleError(problem)
+        return answer
+
+    return ask
+
+
+class _RuleError(Exception):
+    """What a rule answered is no proper answer."""
+
+
 def _improper(answer: Judgement, case: Case) -> str:
     """Why a judgement cannot be what the rule says about the element; empty where it can."""
     if (answer.rule, answer.subject) != (case.rule, case.subject.id):
         return f"answered for {answer.rule} on {answer.subject}"
     if answer.waiver:
         return "waived its own finding"
-    if answer.measure is not None and (math.isnan(answer.measure.need) or math.isnan(answer.measure.have)):
+    unknown = answer.measure is not None and (math.isnan(answer.measure.need) or math.isnan(answer.measure.have))
+    if unknown and case.reading.exact:
         return "answered with a number that is none"
     return ""

@@ -156,8 +156,8 @@ def _problems(rule: Rule, taken: Collection[str]) -> Iterator[str]:
         yield f"the family {rule.family} is taken; a pack has families of its own"
     if rule.level not in list(Level):
         yield f"its level is {rule.level!r}; levels are Level.ERROR, Level.WARNING and Level.NOTE"
-    if rule.applies_to not in SECTIONS:
-        yield f"applies to {rule.applies_to!r}; sections are {', '.join(SECTIONS)}"
+    for section in sorted({*rule.applies_to} - {*SECTIONS}):
+        yield f"applies to {section!r}; sections are {', '.join(SECTIONS)}"
     for field in _TEXTS:
         if not str(getattr(rule, field)).strip():
             yield f"its {field} is empty"

@@ -103,6 +103,7 @@ _SHOWN: Final[Mapping[Dimension, tuple[tuple[float, str], ...]]] = {
 }  # fmt: skip
 """Units in which a number is shown, smallest first, with the size of one."""
 
+NO_END: Final = "without end"
 _SHOWN_FROM: Final = {"%": 1e-3}
 """Units that are used from another size on than one of them: 0.5 % is easier to read than 5000 ppm."""
 
@@ -111,7 +112,7 @@ _SHOWN_FROM: Final = {"%": 1e-3}
 def show(value: float, dimension: Dimension, *, digits: int = 4) -> str:
     """A value for people: at most ``digits`` significant figures, with the unit that suits its size."""
     if value in (float("inf"), float("-inf")):
-        return "unlimited" if value > 0 else "-unlimited"
+        return NO_END if value > 0 else f"-{NO_END}"
     if dimension is Dimension.COUNT:
         return _plain(value, digits)
     if dimension is Dimension.TEMPERATURE:
@@ -164,22 +165,26 @@ class Span:
     """Least, typical and greatest value of a quantity, in its kept unit; None where not given. Immutable."""
 
     # A plain class: the library that builds the typed description hands over to read() only what it does not know.
-    __slots__ = ("basis", "least", "most", "typical")
+    __slots__ = ("basis", "least", "most", "plain", "typical")
     dimension: ClassVar[Dimension]
 
     least: float | None
     typical: float | None
     most: float | None
     basis: Basis | None
+    plain: bool
+    """Whether one value is written, which is a nominal one; a range with equal ends is a range."""
 
     def __init__(
-        self, least: float | None, typical: float | None, most: float | None, basis: Basis | None = None
-    ) -> None:
+        self, least: float | None, typical: float | None, most: float | None, basis: Basis | None = None,
+        plain: bool = False,
+    ) -> None:  # fmt: skip
         put = object.__setattr__
         put(self, "least", least)
         put(self, "typical", typical)
         put(self, "most", most)
         put(self, "basis", basis)
+        put(self, "plain", plain)
 
     def __setattr__(self, name: str, value: object) -> NoReturn:
         raise AttributeError(f"a span cannot be changed (tried to set {name})")
@@ -196,11 +201,11 @@ class Span:
     def __repr__(self) -> str:
         return f"{type(self).__name__}({self.least!r}, {self.typical!r}, {self.most!r})"
 
-    def __reduce__(self) -> tuple[type[Self], tuple[float | None, float | None, float | None, Basis | None]]:
+    def __reduce__(self) -> tuple[type[Self], tuple[float | None, float | None, float | None, Basis | None, bool]]:
         return type(self), self._key()
 
-    def _key(self) -> tuple[float | None, float | None, float | None, Basis | None]:
-        return self.least, self.typical, self.most, self.basis
+    def _key(self) -> tuple[float | None, float | None, float | None, Basis | None, bool]:
+        return self.least, self.typical, self.most, self.basis, self.plain
 
     @classmethod
     def read(cls, given: object) -> Self:
@@ -210,7 +215,7 @@ class Span:
         """
         if isinstance(given, str):
             value = parse(given, cls.dimension)
-            return cls(value, value, value)
+            return cls(value, value, value, plain=True)
         if not isinstance(given, dict):
             raise QuantityError(_not_a_text(given, cls.dimension))
         if not given.keys() <= _OF_A_SPAN:
@@ -220,7 +225,8 @@ class Span:
         if not known:
             raise QuantityError("a span without values; give at least one of min, typ, max")
         if known != sorted(known):
-            raise QuantityError(f"{_order(given)} are out of order; min <= typ <= max is due")
+            order = ", ".join(f"{key} {given[key]}" for key in ("min", "typ", "max") if given.get(key) is not None)
+            raise QuantityError(f"{order} are out of order; min <= typ <= max is due")
         basis = given.get("basis")
         return cls(least, typical, most, msgspec.convert(basis, Basis) if basis is not None else None)
 
@@ -234,15 +240,16 @@ class Span:
         return parse(text, cls.dimension)
 
     @property
+    def is_nominal(self) -> bool:
+        """Whether it states a nominal value, about which there are errors: one value, or a typical one alone."""
+        return self.plain or (self.least is None and self.most is None)
+
+    @property
     def middle(self) -> float | None:
         """The typical value, or the middle between least and greatest where only these are given."""
         if self.typical is not None or self.least is None or self.most is None:
             return self.typical
         return (self.least + self.most) / 2
-
-
-def _order(given: Mapping[str, Any]) -> str:
-    return ", ".join(f"{key} {given[key]}" for key in ("min", "typ", "max") if given.get(key) is not None)
 
 
 def _not_a_text(given: object, dimension: Dimension) -> str:

@@ -140,20 +140,21 @@ def _about_the_unit(clean: str, number: str, unit: str, dimension: Dimension) ->
         return f"has the unknown unit {quoted(unit)}", f"did you mean {better}?"
     other = next((each for each in Dimension if unit in each.units), None)
     if other is not None:
-        return f"is {_one(other.noun)}", f"write {_one(noun)}, such as {dimension.example}"
+        return f"is {one(other.noun)}", f"write {one(noun)}, such as {dimension.example}"
     inside = re.fullmatch(r"([A-Za-z]+)([0-9]+)", unit)
     if inside and number.isdigit():  # 4k7
         like = f"{number}.{inside[2]} {_meant(inside[1], dimension) or inside[1]}"
         if _reads(like, dimension):
             return f"has the unknown unit {quoted(unit)}", f"did you mean {like}?"
-    known = f"units of {_one(noun)}: {', '.join(dimension.units)}"
+    known = f"units of {one(noun)}: {', '.join(dimension.units)}"
     if re.fullmatch(r"[A-Za-z%/^*0-9]+", unit):
         return f"has the unknown unit {quoted(unit)}", known
     advice = _tidied(clean, dimension) or f"write one number with its unit, such as {dimension.example}"
     return f"is no {noun}", advice
 
 
-def _one(noun: str) -> str:
+def one(noun: str) -> str:
+    """The noun with its article."""
     return f"an {noun}" if noun[0] in "aeiou" else f"a {noun}"
 
 

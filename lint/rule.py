@@ -8,6 +8,7 @@ from typing import Any, TypeAlias
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.description.model.description import Description
 from tidegate.lint.judgement import Judgement, Level
 
 Judge: TypeAlias = "Callable[[Any, Case], Judgement]"
@@ -15,6 +16,18 @@ Judge: TypeAlias = "Callable[[Any, Case], Judgement]"
 
 class PackError(Exception):
     """A pack of rules cannot be used; the message names the pack and everything that is wrong with it."""
+
+
+class Yield(msgspec.Struct, frozen=True):
+    """A rule whose failure says the same: a failure of this rule is then told under it, with its number.
+
+    Nothing yields to what is open, waived or left out.
+    """
+
+    to: str
+    """The id of that rule."""
+    on: Callable[[Any, Description], Iterable[str]] | None = None
+    """The elements on which it may have failed, from the element that is judged; None for that element itself."""
 
 
 class Example(msgspec.Struct, frozen=True):
@@ -30,13 +43,13 @@ class Example(msgspec.Struct, frozen=True):
 class Rule(msgspec.Struct, frozen=True, kw_only=True):
     """What is judged, how, on which facts, and from which sources.
 
-    ``judge`` is called once for every element of the section ``applies_to``, so that no element can be forgotten.
+    ``judge`` is called once for every element of the sections ``applies_to``, so that no element can be forgotten.
     """
 
     id: str
     title: str
     level: Level
-    applies_to: str
+    applies_to: tuple[str, ...]
     proves: str
     facts: tuple[str, ...]
     mend: str
@@ -44,6 +57,12 @@ class Rule(msgspec.Struct, frozen=True, kw_only=True):
     example: Example
     judge: Judge
     formulas: tuple[Callable[..., object], ...] = ()
+    yields: tuple[Yield, ...] = ()
+
+    @property
+    def judges(self) -> str:
+        """The sections that it judges, in words."""
+        return ", ".join(section.replace("_", " ") for section in self.applies_to)
 
     @property
     def family(self) -> str:
@@ -56,13 +75,14 @@ def rule(
     *,
     title: str,
     level: Level,
-    applies_to: str,
+    applies_to: str | Iterable[str],
     proves: str,
     facts: Iterable[str],
     mend: str,
     sources: Iterable[str],
     example: Example,
     formulas: Iterable[Callable[..., object]] = (),
+    yields: Iterable[Yield | str] = (),
 ) -> Callable[[Judge], Rule]:
     """Make a rule of the function below: its metadata in the order in which a reader asks.
 
@@ -73,9 +93,11 @@ def rule(
             raise TypeError(f"the {field} of {id} are a tuple of texts, such as ({given!r},)")
 
     def make(judge: Judge) -> Rule:
+        sections = (applies_to,) if isinstance(applies_to, str) else tuple(applies_to)
+        above = tuple(Yield(each) if isinstance(each, str) else each for each in yields)
         return Rule(
-            id=id, title=title, level=level, applies_to=applies_to, proves=proves, facts=tuple(facts), mend=mend,
-            sources=tuple(sources), example=example, judge=judge, formulas=tuple(formulas),
+            id=id, title=title, level=level, applies_to=sections, proves=proves, facts=tuple(facts), mend=mend,
+            sources=tuple(sources), example=example, judge=judge, formulas=tuple(formulas), yields=above,
         )  # fmt: skip
 
     return make

@@ -13,8 +13,8 @@ import msgspec
 
 from tidegate.lint.description.model.description import Waiver
 from tidegate.lint.description.place import Place
-from tidegate.lint.judgement import Judgement, Kind, Level, difference
-from tidegate.lint.quantity import Dimension, QuantityError, parse, show
+from tidegate.lint.judgement import Judgement, Kind, Level, difference, signed
+from tidegate.lint.quantity import Dimension, QuantityError, parse
 from tidegate.lint.rule import Example, Rule
 
 
@@ -45,7 +45,7 @@ STILL_RIGHT: Final = Rule(
     id="waiver/still_right",
     title="every waiver covers a finding that is there, at no worse a margin, and in date",
     level=Level.WARNING,
-    applies_to="waivers",
+    applies_to=("waivers",),
     proves="A waiver accepts one finding until a day, at the margin that was agreed. It is reported when the day has "
     "passed, when the margin got worse, when its rule or element is gone, and when there is nothing left to accept.",
     facts=("waivers[*]",),
@@ -125,15 +125,17 @@ def _margin_problem(waiver: Waiver, judgement: Judgement) -> _Problem | None:
     if agreed is None:
         what = f"its margin {waiver.margin} is no {dimension.value.replace('_', ' ')}"
         return _Problem(what, f"write the margin that was agreed, such as {judgement.measure.margin_text()}")
-    now, then = judgement.measure.margin_text(), _signed(agreed, dimension)
-    if judgement.measure.margin < agreed and now != then:  # a margin is agreed as the report shows it, rounded
+    measure = judgement.measure
+    sure, then = signed(measure.sure_margin, measure.dimension), signed(agreed, measure.dimension)
+    if measure.sure_margin >= agreed or sure == then:  # a margin is agreed as the report shows it, rounded
+        return None
+    if measure.margin < agreed and measure.margin_text() != then:
+        now = measure.margin_words(judgement.kind)
         what = f"the margin of {waiver.rule} on {waiver.element} is {now}, worse than the {then} agreed"
         return _Problem(what, "mend the finding, or agree on it again at this margin")
-    return None
-
-
-def _signed(value: float, dimension: Dimension) -> str:
-    return f"{'-' if value < 0 else '+'}{show(abs(value), dimension)}"
+    what = f"the margin of {waiver.rule} on {waiver.element} can be worse than the {then} agreed"
+    facts = f"give {', '.join(judgement.missing)}, or " if judgement.missing else ""
+    return _Problem(what, f"{facts}agree on it again without a margin")
 
 
 def margin_of(text: str, dimension: Dimension) -> float | None:

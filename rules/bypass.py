@@ -15,23 +15,25 @@ from tidegate.lint.derived.reset_path.override import (
     overrides_of,
     perhaps_lifted_by_overrides,
     resets_in,
-    undriven_resets,
     unsaid_combinations,
     ways_left,
 )
+from tidegate.lint.derived.reset_path.path_gaps import gaps_behind, gaps_onward, undriven
+from tidegate.lint.derived.unsaid import missing, not_whole, unsaid
 from tidegate.lint.description.model.detector import Comparator
-from tidegate.lint.description.model.reset_path import Bypass, Hold
+from tidegate.lint.description.model.reset_path import Bypass
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.dominators import on_every_way_to_each
 from tidegate.lint.graph.edge import EdgeKind
-from tidegate.lint.graph.leaning_gaps import leaning_gaps
 from tidegate.lint.graph.paths import Reach, drives
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 from tidegate.rules import bypass_control
 
-_COMMON_PRACTICE: Final = "common practice, no source: a wrong detector must not keep a chip from being brought up"
+_COMMON_PRACTICE: Final = (
+    "common practice, no source, a policy: a wrong detector must not keep a chip from being brought up"
+)
 
 
 @rule(
@@ -40,9 +42,10 @@ _COMMON_PRACTICE: Final = "common practice, no source: a wrong detector must not
     level=Level.ERROR,
     applies_to="comparators",
     proves="On every way from the detector to every reset net that it drives stands an element that an override forces "
-    "released: the detector itself, a stage, or the net.",
+    "released: the detector itself, a stage, or the net. That is a policy of the house, and no law of nature: how much "
+    "it weighs is for the settings. It fails only where overrides are said to be complete (or none).",
     facts=(
-        "output_stages.*.driven_by", "resets.*.driven_by", "bypasses.*.overrides", "bypasses.*.forces",
+        "output_stages.*.driven_by", "resets.*.driven_by", "bypasses.*.overrides", "bypasses.*.forces", "complete",
         "output_stages.*.combine and resets.*.combine of what has several drivers",
     ),
     mend="an override on the detector, or on a stage that its decision must pass",
@@ -55,21 +58,21 @@ _COMMON_PRACTICE: Final = "common practice, no source: a wrong detector must not
 def detector_has_override(comparator: Comparator, case: Case) -> Judgement:
     """Pass if no way to a reset net is left once everything that can be overridden is taken out."""
     graph = case.graph
-    reach = Reach(comparator.id, drives(graph))
-    nets = resets_in(graph, reach)
-    if not nets:
-        for reset in graph.once(undriven_resets):
-            case.of(reset).lacks("driven_by")
-        case.settle()
-        return case.not_applicable("it drives no reset net")
-    overrides = [override for name in reach for override in overrides_of(graph, name)]
-    left = ways_left(graph, comparator.id, graph.once(lifted_by_overrides))
+    reach, gaps = Reach(comparator.id, drives(graph)), gaps_onward(case, comparator.id)
+    nets, left = resets_in(graph, reach), ways_left(graph, comparator.id, graph.once(lifted_by_overrides))
     kept = resets_in(graph, left)
+    overrides = [override for name in reach for override in overrides_of(graph, name)]
+    if not kept and gaps:
+        missing(gaps)
+    if not nets:
+        return case.not_applicable("it drives no reset net")
     if not kept:
         names = [override.id for override in overrides if override.forces == "released"]
         return case.passes(f"can be taken out of the way to {_and(nets)}", why=f"by {_and(names)}" if names else "")
-    _note_unsaid_overrides(case, comparator, reach, overrides)
-    case.settle()
+    if lacking := _unsaid_overrides(case, comparator, reach, overrides):
+        missing(lacking)
+    if others := not_whole(case, "bypasses"):
+        return case.open(others, f"nothing is said of an override that takes it out of the way to {_and(kept)}")
     asserting = [override.id for override in overrides if override.forces == "asserted"]
     inside = {name: graph.heads(name, EdgeKind.DRIVES) for name in reach}
     ways = on_every_way_to_each(inside, comparator.id, kept)
@@ -83,18 +86,15 @@ def detector_has_override(comparator: Comparator, case: Case) -> Judgement:
     )
 
 
-def _note_unsaid_overrides(case: Case, comparator: Comparator, reach: Reach, overrides: list[Bypass]) -> None:
-    """Note the missing facts with which the detector might be seen to be overridden after all."""
+def _unsaid_overrides(case: Case, comparator: Comparator, reach: Reach, overrides: Sequence[Bypass]) -> tuple[str, ...]:
+    """The missing facts of what is described with which the detector might be seen to be overridden after all."""
     graph = case.graph
-    for override in graph.once(aimless_overrides):
-        case.of(override).lacks("overrides")
+    aimless = tuple(override.fact("overrides") for override in graph.once(aimless_overrides))
     if resets_in(graph, ways_left(graph, comparator.id, graph.once(perhaps_lifted_by_overrides))):
-        return
-    for override in overrides:
-        if override.forces is None:
-            case.of(override).lacks("forces")
-    for element in unsaid_combinations(graph, reach):
-        case.of(element).lacks("combine")
+        return aimless
+    forces = (override.fact("forces") for override in overrides if override.forces is None)
+    combine = (element.fact("combine") for element in unsaid_combinations(graph, reach))
+    return (*aimless, *forces, *combine)
 
 
 def _and(names: Iterable[str]) -> str:
@@ -117,7 +117,7 @@ def _and(names: Iterable[str]) -> str:
 )
 def override_rests_inactive(bypass: Bypass, case: Case) -> Judgement:
     """Pass if the default is inactive."""
-    if case.own.must("default") == "inactive":
+    if case.of(bypass).default.must() == "inactive":
         return case.passes("inactive unless set", at="default")
     return case.fails(
         "active when nobody sets it: what it overrides is out of force in every chip",
@@ -141,29 +141,33 @@ def override_rests_inactive(bypass: Bypass, case: Case) -> Judgement:
         fails="bypasses: {skip_core: {hold: none}}",
         holds="bypasses: {skip_core: {hold: {to: low, through: resistor, resistance: 100 kohm}}}",
     ),
+    yields=("bypass/default_inactive",),
 )
 def default_is_held(bypass: Bypass, case: Case) -> Judgement:
     """Pass if a hold of known strength is there; for a register, if a reset net clears it."""
-    if bypass.default == "active":
-        return case.not_applicable("its default is active, which needs no hold (bypass/default_inactive says so)")
-    control = case.own.must("controlled_by")
+    control = case.of(bypass).controlled_by.must()
     if control == "fuse":
         return case.not_applicable("a fuse holds its own state")
+    if control == "register" and bypass.reset_by is None:
+        missing((bypass.fact("reset_by" if bypass.controlled_by else "controlled_by"),))
     if control == "register":
-        return case.passes(f"{case.own.must('reset_by')} clears the register", at="reset_by")
+        return case.passes(f"{bypass.reset_by} clears the register", at="reset_by")
     if bypass.hold == "none":
         return case.fails(
             f"nothing holds its default: a {control.replace('_', ' ')} that nobody drives floats",
             mend="a hold resistor to the inactive level",
             at="hold",
         )
-    case.own.must("hold")
-    assert isinstance(bypass.hold, Hold)
-    if bypass.hold.to is None:
-        case.own.lacks("hold.to")
-    weakest_ohm = case.own.most("hold.resistance")
+    held = case.of(bypass).hold
+    held.must()
+    if held.to.given is None:
+        held.lacks("to")
+    span = held.resistance.given
+    if span is None or span.most is None:
+        held.lacks("resistance" if span is None else "resistance.max")
     case.settle()
-    return case.passes(f"held {bypass.hold.to} through at most {show(weakest_ohm, Dimension.RESISTANCE)}", at="hold")
+    weakest = show(held.resistance.most(), Dimension.RESISTANCE)
+    return case.passes(f"held {held.to.given} through at most {weakest}", at="hold")
 
 
 @rule(
@@ -182,7 +186,7 @@ def default_is_held(bypass: Bypass, case: Case) -> Judgement:
 )
 def override_is_locked(bypass: Bypass, case: Case) -> Judgement:
     """Pass if it is locked outside test."""
-    if case.own.must("locked_outside_test"):
+    if case.of(bypass).locked_outside_test.must():
         return case.passes("locked outside test", at="locked_outside_test")
     return case.fails(
         f"can be set outside test: {bypass.overrides or 'what it overrides'} can be taken out in the field",
@@ -207,7 +211,7 @@ def override_is_locked(bypass: Bypass, case: Case) -> Judgement:
 )
 def override_is_readable(bypass: Bypass, case: Case) -> Judgement:
     """Pass if its state can be read back."""
-    if case.own.must("readable"):
+    if case.of(bypass).readable.must():
         return case.passes("its state can be read back", at="readable")
     return case.fails(
         "its state cannot be read back: an override left active is not noticed",
@@ -234,28 +238,31 @@ def override_is_readable(bypass: Bypass, case: Case) -> Judgement:
 )
 def over_voltage_stays_in_force(bypass: Bypass, case: Case) -> Judgement:
     """Ask a person where the override lifts the reset of an over-voltage detector."""
-    if bypass.forces == "asserted":
+    if case.of(bypass).forces.must() == "asserted":
         return case.not_applicable("it forces the reset, and lifts none")
-    graph, element = case.graph, case.own.must("overrides")
+    graph, element = case.graph, case.of(bypass).overrides.must()
     reach = behind(graph, element)
     over = [detector for detector in detectors_in(graph, reach) if detector.role == "over_voltage"]
-    lost = _lost(graph, over, element, unsaid_agree=False)
-    if lost:
-        case.own.must("forces")
+    if lost := _lost(graph, over, element, unsaid_agree=False):
         return _asks_for_limit(case, lost, reach)
-    for name in reach:
-        for fact in leaning_gaps(graph.elements[name]):
-            if fact == "driven_by":
-                case.of(graph.elements[name]).lacks(fact)
-    if _lost(graph, over, element, unsaid_agree=True):
-        for detector in over:
-            for unsaid in unsaid_combinations(graph, Reach(detector.id, drives(graph))):
-                case.of(unsaid).lacks("combine")
-    case.settle()
+    if lacking := _unsaid_lifts(case, element, over):
+        missing(lacking)
     still = [one.id for one in over if resets_in(graph, Reach(one.id, drives(graph)))]
     if still:
         return case.passes(f"{_and(still)} still {'reach' if len(still) > 1 else 'reaches'} every reset net without it")
     return case.passes("lifts the reset of no over-voltage detector")
+
+
+def _unsaid_lifts(case: Case, element: str, over: Sequence[Comparator]) -> tuple[str, ...]:
+    """The missing facts with which the override might be seen to lift the reset of an over-voltage detector."""
+    graph = case.graph
+    if not over:
+        return gaps_behind(case, element)
+    combine: list[str] = []
+    if _lost(graph, over, element, unsaid_agree=True):
+        ways = (Reach(detector.id, drives(graph)) for detector in over)
+        combine = [one.fact("combine") for way in ways for one in unsaid_combinations(graph, way)]
+    return (*graph.once(undriven), *unsaid(case, "resets"), *combine)
 
 
 def _lost(
@@ -287,7 +294,7 @@ def _asks_for_limit(case: Case, lost: Sequence[tuple[Comparator, list[str]]], re
 def _limit(case: Case, detector: Comparator) -> str:
     """The level below which a rail must be kept; an unknown one is no reason to leave the caution out."""
     rail = case.description.rails[detector.watches]
-    damage_v = case.attempt(lambda: case.of(rail).least("damage"))
+    damage_v = case.if_known(case.of(rail).damage.least)
     level = (
         f"{show(damage_v, Dimension.VOLTAGE)}, which damages"
         if damage_v is not None

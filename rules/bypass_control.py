@@ -3,12 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
+from functools import partial
 from typing import Final
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.reset_path.guarding_nets import nets_without_guards
 from tidegate.lint.derived.reset_path.override import behind, detectors_in
+from tidegate.lint.derived.reset_path.path_gaps import gaps_behind, gaps_onward
 from tidegate.lint.derived.supply.rail_of import domain_rail
 from tidegate.lint.derived.supply.rail_sequence import leaning_of_rails, order_text, way_to_earlier
+from tidegate.lint.derived.unsaid import missing
 from tidegate.lint.description.model.reset_path import Bypass, Reset
 from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path
@@ -46,21 +50,13 @@ _TEST_PORT: Final = (
 )  # fmt: skip
 def override_is_independent(bypass: Bypass, case: Case) -> Judgement:
     """Pass if the overridden element is not among what the override leans on."""
-    graph = case.graph
-    element = case.attempt(lambda: case.own.must("overrides"))
+    graph, element = case.graph, bypass.overrides
     reach = Reach(bypass.id, graph.needs)
     if element is not None and element in reach:
         return _leans_on_overridden(case, element, reach.path(element))
-    if element is None:
-        case.own.lacks("overrides")
-    if bypass.id in graph.once(before_gaps):
-        for name in reach:
-            for fact in leaning_gaps(graph.elements[name]):
-                case.of(graph.elements[name]).lacks(fact)
     guard = next(_domain_guards(case, bypass), None)
-    if guard is not None and bypass.controlled_by is None:
-        case.own.lacks("controlled_by")
-    case.settle()
+    if lacking := [*_unsaid_leaning(case, bypass, reach), *_unsaid_guards(case, bypass, guard)]:
+        missing(tuple(lacking))
     if guard is not None and bypass.controlled_by == "test_port":
         return case.asks(
             f"rests on the test port not being cleared with {bypass.domain}",
@@ -70,6 +66,29 @@ def override_is_independent(bypass: Bypass, case: Case) -> Judgement:
             path=(*guard, Hop(bypass.id, EdgeKind.OVERRIDES.backwards)),
         )
     return case.passes(f"leans on nothing that waits for {element}")
+
+
+def _unsaid_leaning(case: Case, bypass: Bypass, reach: Reach) -> Iterator[str]:
+    """The missing facts that would say what the override takes out, and what it leans on."""
+    if bypass.overrides is None:
+        yield bypass.fact("overrides")
+    if bypass.id in case.graph.once(before_gaps):
+        for name in reach:
+            described = case.graph.elements[name]
+            yield from (described.fact(fact) for fact in leaning_gaps(described))
+
+
+def _unsaid_guards(case: Case, bypass: Bypass, guard: Path | None) -> Iterator[str]:
+    """The missing facts with which a net that waits for what is overridden might hold what the override leans on."""
+    graph, element = case.graph, bypass.overrides
+    if guard is not None and bypass.controlled_by is None:
+        yield bypass.fact("controlled_by")
+    if element is None:
+        return
+    for net in graph.once(nets_without_guards):
+        if element in Reach(net.id, graph.needs):
+            yield net.fact("guards")
+    yield from gaps_onward(case, element)
 
 
 def _domain_guards(case: Case, bypass: Bypass) -> Iterator[Path]:
@@ -116,15 +135,13 @@ def _leans_on_overridden(case: Case, element: str, path: Path) -> Judgement:
         fails="bypasses: {skip_core: {domain: analog}}",
         holds="bypasses: {skip_core: {domain: core}}",
     ),
+    yields=("bypass/independent",),
 )  # fmt: skip
 def control_is_up(bypass: Bypass, case: Case) -> Judgement:
     """Compare the rail of the control with the rail of each detector that the override takes out."""
-    element, (domain, kind, rail) = case.gather(lambda: case.own.must("overrides"), lambda: _home(case))
-    graph = case.graph
-    if element in Reach(bypass.id, graph.needs):
-        return case.not_applicable("its control hangs on what it overrides (bypass/independent says so)")
+    graph, domain = case.graph, _home(bypass, case)
     own = (Hop(bypass.id, ""), Hop(domain.id, EdgeKind.SUPPLIED_BY.forwards))
-    if kind == "switched":
+    if case.of(domain).kind.must() == "switched":
         switch = domain.switched_by
         return case.fails(
             f"its control lives in {domain.id}, which is switched{f' by {switch}' if switch else ''}",
@@ -132,18 +149,17 @@ def control_is_up(bypass: Bypass, case: Case) -> Judgement:
             at="domain",
             path=(*own, Hop(switch, EdgeKind.GATED_BY.forwards)) if switch else own,
         )
-    back = behind(graph, element)
-    watched = dict.fromkeys(detector.watches for detector in detectors_in(graph, back))
+    element, rail = case.each((case.of(bypass).overrides.must, partial(domain_rail, case, domain)))
+    assert isinstance(element, str) and isinstance(rail, Rail)
+    watched = dict.fromkeys(detector.watches for detector in detectors_in(graph, behind(graph, element)))
     others = [case.description.rails[name] for name in watched if name != rail.id]
     feed = (*own, Hop(rail.id, EdgeKind.SUPPLIED_BY.forwards))
     late = [other for other in others if not way_to_earlier(case, later=other, earlier=rail)]
     dead = _dead(case, rail, late, feed)
     if dead is not None:
         return dead
-    for name in back:
-        if getattr(graph.elements[name], "driven_by", ()) is None:
-            case.of(graph.elements[name]).lacks("driven_by")
-    case.settle()
+    if gaps := gaps_behind(case, element):
+        missing(gaps)
     if not watched:
         return case.not_applicable(f"no detector's decision passes through {element}")
     if late:
@@ -159,12 +175,16 @@ def control_is_up(bypass: Bypass, case: Case) -> Judgement:
     return case.passes(f"its control is up with {rail.id}", why="; ".join(orders), at="domain")
 
 
-def _home(case: Case) -> tuple[Domain, str, Rail]:
-    """The domain that the control lives in, its kind, and its rail."""
-    domain = case.own.element("domain")
+def _home(bypass: Bypass, case: Case) -> Domain:
+    """The domain that the control lives in.
+
+    Raises: MissingFactsError: where it is not given, with what is taken out where that is not given either.
+    """
+    if bypass.domain is None and bypass.overrides is None:
+        case.of(bypass).lacks("overrides")
+    domain = case.of(bypass).domain.element()
     assert isinstance(domain, Domain)
-    kind, rail = case.gather(lambda: case.of(domain).must("kind"), lambda: domain_rail(case, domain))
-    return domain, kind, rail
+    return domain
 
 
 def _earliest(case: Case, rails: Sequence[Rail]) -> Rail:

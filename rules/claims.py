@@ -2,26 +2,34 @@
 
 from __future__ import annotations
 
+import math
+from collections.abc import Callable
 from typing import Final
 
-from tidegate.lint.case import Case, Facts
+from tidegate.lint.case import Case
+from tidegate.lint.derived.at_corner import at_corner
 from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.claimed_level import claimed_v
+from tidegate.lint.derived.levels.trip_causes import LEVEL_FORMULAS
 from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
-from tidegate.lint.derived.stated_and_made import ROUNDING, Made, held_against
+from tidegate.lint.derived.stated_and_made import ROUNDING, Made, held_against, share_for_rounding
 from tidegate.lint.derived.supply.rail_of import rail_of
 from tidegate.lint.description.model.detector import Bias, Comparator, Hysteresis, Reference
 from tidegate.lint.description.model.reset_path import OutputStage
 from tidegate.lint.description.model.timing import Timing
+from tidegate.lint.facts.reading import Better
+from tidegate.lint.facts.view import Number
 from tidegate.lint.judgement import Judgement, Kind, Level
 from tidegate.lint.physics import timer
 from tidegate.lint.physics.domain import require_positive
-from tidegate.lint.quantity import Dimension, Span, Voltage, show
+from tidegate.lint.quantity import Dimension, Voltage, show
 from tidegate.lint.rule import Example, Rule, rule
 
 _V: Final = Dimension.VOLTAGE
 _A: Final = Dimension.CURRENT
 _S: Final = Dimension.DURATION
 _MOST_ROUNDING_V: Final = 0.005
+_AMOUNT: Final = "hysteresis.amount"
 _HALF_A_PER_CENT: Final = "Half a per cent is taken for the rounding of the numbers stated."
 
 
@@ -30,9 +38,10 @@ _HALF_A_PER_CENT: Final = "Half a per cent is taken for the rounding of the numb
     title="the stated hysteresis is what lies between the stated levels",
     level=Level.WARNING,
     applies_to="comparators",
-    proves="Typical rising level less typical falling level lies in the stated hysteresis. Where the levels are ranges "
-    "without a typical value, some hysteresis that they leave possible does. Half a unit of the last digit of each "
-    "level, and at most 5 mV, is taken for rounding.",
+    proves="Typical rising level less typical falling level lies in the stated hysteresis, and is its typical value "
+    "where one is stated. Where the levels are ranges without a typical value, some hysteresis that they leave "
+    "possible does, and so where a typical amount is all that is stated: typical values of one table need not be of "
+    "one part. Half a unit of the last digit of each level, and at most 5 mV, is taken for rounding.",
     facts=("comparators.*.hysteresis.amount", "comparators.*.trip (or codes and ships_with)", "comparators.*.tracked"),
     mend="correct the hysteresis or a level",
     sources=("definition: hysteresis is the rising less the falling level",),
@@ -44,42 +53,59 @@ _HALF_A_PER_CENT: Final = "Half a per cent is taken for the rounding of the numb
 def hysteresis_is_between_levels(comparator: Comparator, case: Case) -> Judgement:
     """Hold the stated amount against the difference of the levels."""
     amount = comparator.hysteresis.amount if isinstance(comparator.hysteresis, Hysteresis) else None
-    trip = as_shipped(case, comparator).trip if comparator.trip is not None or comparator.ships_with else None
+    code = comparator.ships_with if comparator.codes and comparator.trip is None else None
+    trip = comparator.trip if code is None else comparator.codes.get(code)
     if amount is None or trip is None or trip.rising is None or trip.falling is None:
         return case.not_applicable("does not state a hysteresis beside both levels")
-    up, down = trip.rising, trip.falling
-    at = "hysteresis.amount"
-    if up.typical is not None and down.typical is not None:
-        apart_v = up.typical - down.typical
-        how = f"{show(up.typical, _V)} rising less {show(down.typical, _V)} falling"
-        slack_v = _last_digit_v(up.typical) + _last_digit_v(down.typical)
-        made = Made(apart_v, apart_v, how)
-        return held_against(case, amount, made, dimension=_V, what="hysteresis", slack=slack_v, at=at)
-    apart = _possible_v(up, down, tracked=bool(comparator.tracked))
-    if apart is None or amount.least is None or amount.most is None:
-        return case.not_applicable("states neither typical levels nor both ends of levels and hysteresis")
-    least_v, most_v = apart
-    slack_v = 2 * _MOST_ROUNDING_V
-    why = f"levels {show(least_v, _V)} to {show(most_v, _V)} apart; up to {show(slack_v, _V)} is taken for rounding"
-    if amount.least - most_v >= least_v - amount.most:
-        return case.at_most(
-            need=most_v + slack_v, have=amount.least, dimension=_V, says="hysteresis as stated, least", why=why,
-            mend="correct the hysteresis or a level", at=at,
-        )  # fmt: skip
-    return case.at_least(
-        need=least_v - slack_v, have=amount.most, dimension=_V, says="hysteresis as stated, greatest", why=why,
-        mend="correct the hysteresis or a level", at=at,
+    own = case.of(comparator)
+    levels = own.trip if code is None else own.codes[code]
+    up_v, down_v = trip.rising.typical, trip.falling.typical
+    lone = amount.least is None and amount.most is None
+    if up_v is None or down_v is None or (lone and not _fits(amount, up_v, down_v)):
+        return _some_is_possible(case, own.hysteresis.amount, levels.rising, levels.falling, own.tracked.must)
+    apart_v, slack_v = up_v - down_v, _last_digit_v(up_v) + _last_digit_v(down_v)
+    how = f"{show(up_v, _V)} rising less {show(down_v, _V)} falling"
+    return held_against(
+        case, own.hysteresis.amount, lambda: Made(apart_v, apart_v, how), dimension=_V, what="hysteresis",
+        at=_AMOUNT, rounding=lambda _: slack_v,
     )  # fmt: skip
 
 
-def _possible_v(up: Voltage, down: Voltage, *, tracked: bool) -> tuple[float, float] | None:
-    """What the ranges of the levels leave possible between them."""
-    if up.least is None or up.most is None or down.least is None or down.most is None:
-        return None
-    if tracked:
-        ends_v = up.least - down.least, up.most - down.most
-        return min(ends_v), max(ends_v)
-    return up.least - down.most, up.most - down.least
+def _some_is_possible(case: Case, amount: Number, up: Number, down: Number, tracked: Callable[[], bool]) -> Judgement:
+    """Pass if some stated hysteresis is one that the ranges of the levels leave possible."""
+    together = tracked()
+    slack_v = 2 * _MOST_ROUNDING_V
+    # The more the levels leave possible, the more of the stated amount may be right.
+    most_v = _apart_v(up, down, max, together=together, up=Better.MORE)
+    least_v = _apart_v(up, down, min, together=together, up=Better.LESS)
+    stated_least_v, stated_most_v = amount.least(Better.LESS), amount.most(Better.MORE)
+    why = f"levels {show(least_v, _V)} to {show(most_v, _V)} apart; up to {show(slack_v, _V)} is taken for rounding"
+    if stated_least_v - most_v >= least_v - stated_most_v:
+        return case.at_most(
+            need=most_v + slack_v, have=stated_least_v, dimension=_V, says="hysteresis as stated, least", why=why,
+            mend="correct the hysteresis or a level", at=_AMOUNT,
+        )  # fmt: skip
+    return case.at_least(
+        need=least_v - slack_v, have=stated_most_v, dimension=_V, says="hysteresis as stated, greatest", why=why,
+        mend="correct the hysteresis or a level", at=_AMOUNT,
+    )  # fmt: skip
+
+
+def _apart_v(
+    rising: Number, falling: Number, furthest: Callable[[float, float], float], *, together: bool, up: Better
+) -> float:
+    """How far apart the levels can be at one end: low with low and high with high where they track."""
+    if together:
+        return furthest(rising.least(up) - falling.least(up.other), rising.most(up) - falling.most(up.other))
+    if up is Better.MORE:
+        return rising.most(up) - falling.least(up.other)
+    return rising.least(up) - falling.most(up.other)
+
+
+def _fits(amount: Voltage, up_v: float, down_v: float) -> bool:
+    """Whether the typical amount is what lies between the typical levels, up to rounding."""
+    slack_v = _last_digit_v(up_v) + _last_digit_v(down_v)
+    return amount.typical is not None and abs(amount.typical - (up_v - down_v)) <= slack_v
 
 
 def _last_digit_v(level_v: float) -> float:
@@ -105,24 +131,27 @@ def _last_digit_v(level_v: float) -> float:
 def ratio_is_made_by_resistances(comparator: Comparator, case: Case) -> Judgement:
     """Hold the stated ratio against the two resistances."""
     divider = comparator.divider
-    if divider is None or divider.ratio is None or divider.top is None or divider.bottom is None:
-        return case.not_applicable("does not state a ratio beside both resistances")
-    own = case.own
-    top, bottom = _ends(own, "divider.top"), _ends(own, "divider.bottom")
-    case.settle()
-    made = Made(
-        bottom[0] / (bottom[0] + top[1]), bottom[1] / (bottom[1] + top[0]),
-        f"{_ends_text(bottom, Dimension.RESISTANCE)} below {_ends_text(top, Dimension.RESISTANCE)}",
-    )  # fmt: skip
-    stated = Span(divider.ratio, divider.ratio, divider.ratio)
-    slack = ROUNDING * divider.ratio
-    return held_against(
-        case, stated, made, dimension=Dimension.COUNT, what="ratio", slack=slack, at="divider.ratio"
-    )  # fmt: skip
+    if divider is None or divider.ratio is None or (divider.top is None and divider.bottom is None):
+        return case.not_applicable("does not state a ratio beside its resistances")
+    own = case.of(comparator).divider
+
+    def make() -> Made:
+        bottom, top = _ends(own.bottom), _ends(own.top)
+        how = f"{_ends_text(bottom, Dimension.RESISTANCE)} below {_ends_text(top, Dimension.RESISTANCE)}"
+        return Made(
+            at_corner(case, lambda: _share(bottom[0], top[1]), sure=0.0, best=1.0),
+            at_corner(case, lambda: _share(bottom[1], top[0]), sure=1.0, best=0.0), how,
+        )  # fmt: skip
+
+    return held_against(case, own.ratio, make, dimension=Dimension.COUNT, what="ratio", at="divider.ratio")
 
 
-def _ends(facts: Facts, fact: str) -> tuple[float, float]:
-    return facts.least(fact), facts.most(fact)
+def _share(part: float, rest: float) -> float:
+    return part / (part + rest)
+
+
+def _ends(fact: Number) -> tuple[float, float]:
+    return fact.least(), fact.most()
 
 
 def _ends_text(ends: tuple[float, float], dimension: Dimension) -> str:
@@ -144,26 +173,29 @@ def _ends_text(ends: tuple[float, float], dimension: Dimension) -> str:
         fails="comparators: {uv: {divider: {ratio: 0.38, top: 3.72 Mohm, bottom: 2.28 Mohm}}}",
         holds="comparators: {uv: {divider: {ratio: 0.367, top: 3.8 Mohm, bottom: 2.2 Mohm}}}",
     ),
+    formulas=LEVEL_FORMULAS,
 )
 def levels_come_from_reference(comparator: Comparator, case: Case) -> Judgement:
     """Hold the levels against reference and divider."""
     reference = case.description.references.get(comparator.reference or "")
-    ratio = comparator.divider.ratio if comparator.divider is not None else None
-    if reference is None or ratio is None or reference.voltage is None:
-        return case.not_applicable("does not state a reference voltage beside a divider ratio")
+    if reference is None or comparator.divider is None:
+        return case.not_applicable("does not name a reference beside a divider")
+    voltage, ratio = case.of(reference).voltage, case.of(comparator).divider.ratio
     shipped = as_shipped(case, comparator)
-    falling, rising, voltage_v = case.gather(
-        lambda: falling_window(case, shipped),
-        lambda: rising_window(case, shipped),
-        lambda: case.of(reference).middle("voltage"),
-    )
-    level_v = voltage_v / ratio
-    slack_v = ROUNDING * level_v
-    low_v, high_v = min(falling.least_v, rising.least_v) - slack_v, max(falling.most_v, rising.most_v) + slack_v
-    why = f"{show(voltage_v, _V)} of {reference.id} over a ratio of {ratio:g}; {show(slack_v, _V)} taken for rounding"
-    answer, need_v = (case.at_least, low_v) if level_v - low_v <= high_v - level_v else (case.at_most, high_v)
+    levels = falling_window(case, shipped), rising_window(case, shipped)
+    # The wider the levels lie, the more of what reference and divider make lies between them.
+    low_v = min(claimed_v(case, comparator, level, "least") for level in levels)
+    high_v = max(claimed_v(case, comparator, level, "most") for level in levels)
+    above_v = at_corner(case, lambda: voltage.typical(Better.MORE) / ratio.number(Better.LESS), sure=0.0, best=math.inf)
+    below_v = at_corner(case, lambda: voltage.typical(Better.LESS) / ratio.number(Better.MORE), sure=math.inf, best=0.0)
+    low_v, high_v = low_v - share_for_rounding(above_v), high_v + share_for_rounding(below_v)
+    is_low = above_v - low_v <= high_v - below_v
+    level_v = above_v if is_low else below_v
+    answer, need_v = (case.at_least, low_v) if is_low else (case.at_most, high_v)
     return answer(
-        need=need_v, have=level_v, dimension=_V, says="level that reference and divider make", why=why,
+        need=need_v, have=level_v, dimension=_V, says="level that reference and divider make",
+        why=f"{show(voltage.typical(), _V)} of {reference.id} over a ratio of {ratio.number():g}; "
+        f"{show(share_for_rounding(level_v), _V)} taken for rounding",
         mend="correct the levels, the ratio or the reference", at="trip",
     )  # fmt: skip
 
@@ -217,38 +249,44 @@ def delay_is_made_by_components(stage: OutputStage, case: Case) -> Judgement:
 
 
 def _time_held(element: Comparator | OutputStage, timing: Timing, case: Case, fact: str) -> Judgement:
-    made, stated = case.gather(lambda: _time_made(element, timing, case), lambda: case.own.must(fact))
-    slack_s = ROUNDING * made.most
+    stated: Number = getattr(case.of(element), fact)
     return held_against(
-        case, stated, made, dimension=_S, what=fact.replace("_", " "), slack=slack_s, at=fact
-    )  # fmt: skip
+        case, stated, lambda: _time_made(element, timing, case), dimension=_S, what=fact.replace("_", " "), at=fact
+    )
 
 
 def _time_made(element: Comparator | OutputStage, timing: Timing, case: Case) -> Made:
     """What the components make: by counting where periods are given, else by charging."""
-    own = case.own
+    facts = case.of(element).timing
     if timing.count is not None or timing.period is not None:
-        count, (least_s, most_s) = own.number("timing.count"), _ends(own, "timing.period")
-        case.settle()
-        ends_s = [timer.counted_time_s(count=count, period_s=period_s) for period_s in (least_s, most_s)]
-        return Made(ends_s[0], ends_s[1], f"{count:g} periods")
-    farad, volt = _ends(own, "timing.capacitance"), _ends(own, "timing.threshold")
+        return _between(
+            case,
+            lambda: timer.counted_time_s(count=facts.count.number(Better.MORE), period_s=facts.period.least()),
+            lambda: timer.counted_time_s(count=facts.count.number(Better.LESS), period_s=facts.period.most()),
+            f"{'unsaid' if timing.count is None else f'{timing.count:g}'} periods",
+        )
+    farad, volt = facts.capacitance, facts.threshold
     if timing.current is not None:
-        ampere = _ends(own, "timing.current")
-        case.settle()
-        ends_s = [
-            timer.current_charge_time_s(current_a=ampere[1 - end], c_f=farad[end], v_th_v=volt[end]) for end in (0, 1)
-        ]
-        return Made(ends_s[0], ends_s[1], "a current into a capacitance")
-    ohm = _ends(own, "timing.resistance")
-    rail = rail_of(case, element)
-    supply = _ends(case.of(rail), "delivered")
-    case.settle()
-    ends_s = [
-        timer.charge_time_s(r_ohm=ohm[end], c_f=farad[end], v_final_v=supply[1 - end], v_th_v=volt[end])
-        for end in (0, 1)
-    ]
-    return Made(ends_s[0], ends_s[1], f"a resistance and a capacitance charged from {rail.id}")
+        ampere = facts.current
+        return _between(
+            case,
+            lambda: timer.current_charge_time_s(current_a=ampere.most(), c_f=farad.least(), v_th_v=volt.least()),
+            lambda: timer.current_charge_time_s(current_a=ampere.least(), c_f=farad.most(), v_th_v=volt.most()),
+            "a current into a capacitance",
+        )
+    ohm, rail = facts.resistance, rail_of(case, element)
+    supply = case.of(rail).delivered
+    return _between(
+        case,
+        lambda: timer.charge_time_s(r_ohm=ohm.least(), c_f=farad.least(), v_final_v=supply.most(), v_th_v=volt.least()),
+        lambda: timer.charge_time_s(r_ohm=ohm.most(), c_f=farad.most(), v_final_v=supply.least(), v_th_v=volt.most()),
+        f"a resistance and a capacitance charged from {rail.id}",
+    )
+
+
+def _between(case: Case, least: Callable[[], float], most: Callable[[], float], how: str) -> Made:
+    """What lies between two ends, each without a limit where a component is not known."""
+    return Made(at_corner(case, least, sure=0.0, best=math.inf), at_corner(case, most, sure=math.inf, best=0.0), how)
 
 
 @rule(
@@ -296,13 +334,23 @@ def bias_current_is_made(bias: Bias, case: Case) -> Judgement:
 
 
 def _current_held(case: Case, element: Reference | Bias, reference: Reference) -> Judgement:
-    volt, ohm = _ends(case.of(reference), "voltage"), _ends(case.own, "resistance")
-    case.settle()
-    require_positive(r_ohm=ohm[0])
-    made = Made(volt[0] / ohm[1], volt[1] / ohm[0], f"voltage of {reference.id} over the resistance")
-    assert element.current is not None
-    slack_a = ROUNDING * made.most
-    return held_against(case, element.current, made, dimension=_A, what="current", slack=slack_a, at="current")
+    own = case.of(element)
+
+    def make() -> Made:
+        volt, ohm = case.of(reference).voltage, own.resistance
+        return _between(
+            case,
+            lambda: _flowing_a(volt.least(), ohm.most()),
+            lambda: _flowing_a(volt.most(), ohm.least()),
+            f"voltage of {reference.id} over the resistance",
+        )
+
+    return held_against(case, own.current, make, dimension=_A, what="current", at="current")
+
+
+def _flowing_a(voltage_v: float, r_ohm: float) -> float:
+    require_positive(r_ohm=r_ohm)
+    return voltage_v / r_ohm
 
 
 @rule(
@@ -323,13 +371,12 @@ def _current_held(case: Case, element: Reference | Bias, reference: Reference) -
 )
 def bias_takes_what_it_makes(bias: Bias, case: Case) -> Judgement:
     """Compare the two currents."""
-    if bias.kind not in ("resistor", "self_biased"):
+    own = case.of(bias)
+    if own.kind.must() not in ("resistor", "self_biased"):
         return case.not_applicable("does not make its current by itself")
-    if bias.consumes is None or bias.current is None or bias.consumes.most is None or bias.current.most is None:
-        return case.not_applicable("does not state its greatest consumption beside its greatest current")
-    makes_a = bias.current.most
+    makes_a = own.current.most()
     return case.at_least(
-        need=makes_a * (1 - ROUNDING), have=bias.consumes.most, dimension=_A, says="consumption",
+        need=makes_a * (1 - ROUNDING), have=own.consumes.most(Better.MORE), dimension=_A, says="consumption",
         why=f"makes up to {show(makes_a, _A)}; {show(ROUNDING * makes_a, _A)} taken for rounding",
         mend=f"state a consumption of at least {show(makes_a, _A)}, or that the current is a multiple of its own",
         otherwise=Kind.REVIEW, at="consumes",

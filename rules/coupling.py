@@ -2,30 +2,35 @@
 
 from __future__ import annotations
 
-import math
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable, Iterator
 from functools import partial
-from typing import Final
+from typing import Any, Final
 
+from tidegate.lint.account import Sum, plus
 from tidegate.lint.case import Case
-from tidegate.lint.derived.disturbance.coupling_map import Push, coupling_map
-from tidegate.lint.derived.disturbance.disturbance import disturbers, own_kick, pair_bump, sharers
+from tidegate.lint.derived.disturbance.disturbance import BUMP_FORMULAS, Bump, own_kick, seen_term, size_of
+from tidegate.lint.derived.disturbance.doubt import holds
+from tidegate.lint.derived.disturbance.kept_distance import kept
+from tidegate.lint.derived.disturbance.pushes import pushes, pushes_of
 from tidegate.lint.derived.disturbance.quieting import quieter_pair, quieter_reference
-from tidegate.lint.derived.disturbance.seen_bump import SeenBump, seen_bumps
-from tidegate.lint.derived.disturbance.toggle_chain import chain_on, comes_round, joined, two_pushes
-from tidegate.lint.derived.levels.trip_levels import has_no_hysteresis, hysteresis_window
+from tidegate.lint.derived.disturbance.seen_bump import SeenBump, bump_text, seen_bump
+from tidegate.lint.derived.disturbance.term_text import terms_text
+from tidegate.lint.derived.disturbance.toggles import Sized, first_chain, joined, mean_of, strongest_ring
+from tidegate.lint.derived.disturbance.who_disturbs import Disturber, disturbers, takes_no_reference
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.derived.supply.rail_of import rail_of
+from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Neighbour
-from tidegate.lint.judgement import Judgement, Level, Measure, Relation
+from tidegate.lint.facts.view import factors
+from tidegate.lint.graph.edge import Path
+from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.physics import coupling, lasting_bump
-from tidegate.lint.physics.domain import DomainError
+from tidegate.lint.physics.domain import quotient
 from tidegate.lint.quantity import Dimension, show
-from tidegate.lint.rule import Example, Rule, rule
+from tidegate.lint.rule import Example, Rule, Yield, rule
 
 _V: Final = Dimension.VOLTAGE
-_NOTHING_KEPT: Final = "its level keeps no distance to hold a bump against (the hysteresis rules say so)"
 _NODE: Final = "solution of the node equation (Cc + Cg) dv/dt = Cc dVs/dt - v/R (derived)"
 _CHARGE: Final = "definition of capacitance: a charge Q thrown onto C moves it by Q/C"
 _SUM: Final = "triangle inequality: bumps at once move a level by no more than the sum of their sizes"
@@ -34,6 +39,30 @@ _KICK_FACTS: Final = (
     "comparators.*.kick", "references.*.decoupling", "references.*.source_resistance, behind a filter",
     "comparators.*.divider.ratio", "comparators.*.filter", _HYSTERESIS,
 )  # fmt: skip
+_KICK_FORMULAS: Final = (
+    coupling.charge_kick_v, lasting_bump.decayed_kick_v, coupling.decoupling_for_charge_f, coupling.settling_time_s,
+)  # fmt: skip
+_NONE_OR_WRONG: Final = ("hysteresis/present", "hysteresis/sense")
+_LESS: Final = "less of what disturbs it, or more hysteresis"
+
+
+def _victims(pair: Any, description: Description) -> Iterator[str]:
+    """The comparators that a described pair may disturb."""
+    yield pair.victim
+    if pair.mutual is not False and pair.aggressor in description.comparators:
+        yield pair.aggressor
+
+
+def _pairs_on(comparator: Any, description: Description) -> Iterator[str]:
+    """The described pairs that may disturb a comparator."""
+    for pair in description.neighbours.values():
+        if comparator.id in _victims(pair, description):
+            yield pair.id
+
+
+def _round(comparator: Any, description: Description) -> Iterable[str]:
+    """The comparators that may push one another round with one."""
+    return pushes_of(description).might_ring_of(comparator.id)
 
 
 @rule(
@@ -53,42 +82,44 @@ _KICK_FACTS: Final = (
     mend="more capacitance on what is disturbed, less coupling, or more hysteresis",
     sources=(_NODE, _CHARGE, "Ohm's law, for a shared supply or return"),
     example=Example(
-        fails="neighbours: {uv_beside_ov: {capacitance: {max: 4.2 fF}}}",
+        fails="neighbours: {uv_beside_ov: {capacitance: {max: 4.2 fF}, edge: {min: 1 ns, max: 1 us}, "
+        "node: {capacitance: {min: 250 fF, max: 300 fF}}}}",
         holds="neighbours: {uv_beside_ov: {capacitance: {max: 0.8 fF}}}",
     ),
     formulas=(
-        coupling.bump_peak_v, lasting_bump.lasting_bump_v, lasting_bump.decayed_kick_v, coupling.charge_kick_v,
-        coupling.shared_impedance_bump_v, coupling.decoupling_for_bump_f, coupling.decoupling_for_charge_f,
-        coupling.settling_time_s,
+        *BUMP_FORMULAS, coupling.decoupling_for_bump_f,
+        lasting_bump.decoupling_for_lasting_bump_f, coupling.settling_time_s,
     ),
+    yields=tuple(Yield(above, _victims) for above in _NONE_OR_WRONG),
 )  # fmt: skip
 def bump_is_kept(pair: Neighbour, case: Case) -> Judgement:
     """Compare the worse of the two directions with what the victim's level keeps."""
     comparators = case.description.comparators
-    ways = [(comparators[pair.victim], pair.aggressor)]
-    if pair.mutual and pair.aggressor in comparators:
-        ways.append((comparators[pair.aggressor], pair.victim))
     asks = [
-        partial(seen_bumps, case, victim, [partial(pair_bump, case, pair, victim, aggressor)])
-        for victim, aggressor in ways
-        if not has_no_hysteresis(victim)
+        partial(seen_bump, case, comparators[victim], source)
+        for victim in _victims(pair, case.description)
+        for source in disturbers(case.graph).of(victim)
+        if source.pair is pair and holds(case, source.doubt)
     ]
-    seen = [way for ways_seen in case.gather_all(asks) for way in ways_seen if way.kept_v > 0.0]
-    if not seen:
-        return case.not_applicable(_NOTHING_KEPT)
-    worst, *others = sorted(seen, key=lambda way: way.spare_v)
-    also = "".join(f"; the other way round {show(way.seen_v, _V)} of {show(way.kept_v, _V)}" for way in others)
-    loud = [(way.victim, way.kept_v) for way in seen if not way.is_kept]
-    return case.at_most(
-        need=worst.kept_v,
-        have=worst.seen_v,
-        dimension=_V,
-        says=f"{worst.bump.aggressor} moves the level of {worst.victim.id} by",
-        why=worst.text() + also,
-        mend=quieter_pair(case, pair, loud) if loud else "",
-        at=worst.bump.fact.rpartition(".")[2],
-        path=worst.bump.path,
-    )
+    worst, *others = sorted(case.each(asks), key=lambda way: (way.measure.margin, way.victim.id))
+    also = [f"the other way round {show(way.seen.value, _V)} of {show(way.kept.value, _V)}" for way in others]
+    loud = [(way.victim, way.kept.value) for way in (worst, *others) if not way.measure.holds]
+    size = size_of(worst.disturber).rpartition(".")[2]
+    return _judged(
+        case, worst, f"{worst.disturber.aggressor} moves the level of {worst.victim.id} by", at=size,
+        why="; ".join(filter(None, (worst.text(case), *also))), path=worst.disturber.path,
+        quieter=lambda: quieter_pair(case, pair, loud),
+    )  # fmt: skip
+
+
+def _judged(
+    case: Case, seen: SeenBump, says: str, *, at: str, why: str, path: Path, quieter: Callable[[], str]
+) -> Judgement:  # fmt: skip
+    """Compare what a comparator sees with what its level keeps; ``quieter`` says what would do, where all is known."""
+    mend = _LESS
+    if not seen.measure.holds and seen.kept.value > 0.0:
+        mend = case.if_known(quieter) or _LESS
+    return case.at_most(need=seen.kept, have=seen.seen, dimension=_V, says=says, why=why, mend=mend, at=at, path=path)
 
 
 @rule(
@@ -103,42 +134,43 @@ def bump_is_kept(pair: Neighbour, case: Case) -> Judgement:
     mend="more decoupling on the reference, less charge, or a reference of its own",
     sources=(_CHARGE,),
     example=Example(fails="comparators: {uv: {kick: 145 fC}}", holds="comparators: {uv: {kick: 4 fC}}"),
-    formulas=(
-        coupling.charge_kick_v, lasting_bump.decayed_kick_v, coupling.decoupling_for_charge_f, coupling.settling_time_s,
-    ),
-)  # fmt: skip
+    formulas=_KICK_FORMULAS,
+    yields=_NONE_OR_WRONG,
+)
 def shared_reference_stays(comparator: Comparator, case: Case) -> Judgement:
     """Compare the largest kick of another comparator with what the level keeps."""
-    if comparator.reference is None:
+    if takes_no_reference(comparator):
         return case.not_applicable("it takes no reference")
-    others = sharers(case, comparator)
+    others = disturbers(case.graph).sharers(comparator.id)
+    reference = comparator.reference or "its reference"
     if not others:
-        return case.not_applicable(f"no other comparator kicks {comparator.reference}")
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NOTHING_KEPT)
-    seen = seen_bumps(case, comparator, [other.bump for other in others])
-    worst = max(seen, key=lambda each: each.seen_v)
-    return _kick_judged(case, worst, f"{worst.bump.aggressor} kicks {comparator.reference}, which moves its level by")
+        return case.not_applicable(f"no other comparator kicks {reference}")
+    seen = case.each(partial(seen_bump, case, comparator, other) for other in others)
+    worst = min(seen, key=lambda each: (each.measure.margin, each.disturber.aggressor))
+    kicking = case.description.comparators[worst.disturber.aggressor]
+    return _judged(
+        case, worst, f"{kicking.id} kicks {worst.disturber.reference or reference}, which moves its level by",
+        at="reference", why=_kick_text(case, comparator, kicking, worst.text(case)), path=worst.disturber.path,
+        quieter=partial(_quieter_kick, case, comparator, kicking, worst.kept),
+    )  # fmt: skip
 
 
-def _kick_judged(case: Case, seen: SeenBump, says: str) -> Judgement:
-    if seen.kept_v <= 0.0:
-        return case.not_applicable(_NOTHING_KEPT)
-    reference = case.description.references[seen.victim.reference or ""]
-    kicking = case.of(case.description.comparators[seen.bump.aggressor])
-    charge_c, decoupling_f = kicking.most("kick"), case.of(reference).least("decoupling")
-    onto = f"{show(charge_c, Dimension.CHARGE)} onto {show(decoupling_f, Dimension.CAPACITANCE)}"
-    loud = not seen.is_kept
-    return case.at_most(
-        need=seen.kept_v,
-        have=seen.seen_v,
-        dimension=_V,
-        says=says,
-        why=f"{onto}: {seen.text()}",
-        mend=quieter_reference(case, reference, charge_c, [(seen.victim, seen.kept_v)]) if loud else "",
-        at="reference",
-        path=seen.bump.path,
-    )
+def _kick_text(case: Case, comparator: Comparator, kicking: Comparator, text: str) -> str:
+    """The charge, what it goes onto, and the bump; empty where it is not known."""
+    if not text or comparator.reference is None:
+        return ""
+    reference = case.description.references[comparator.reference]
+    ask = (case.of(kicking).kick.most, case.of(reference).decoupling.least)
+    known = case.if_known(lambda: tuple(each() for each in ask))
+    if known is None:
+        return text
+    return f"{show(known[0], Dimension.CHARGE)} onto {show(known[1], Dimension.CAPACITANCE)}: {text}"
+
+
+def _quieter_kick(case: Case, comparator: Comparator, kicking: Comparator, keeps: Sum) -> str:
+    """The decoupling that would do for the kick of a comparator."""
+    reference = case.of(comparator).reference.element()
+    return quieter_reference(case, reference, case.of(kicking).kick.most(), [(comparator, keeps.value)])
 
 
 @rule(
@@ -153,18 +185,22 @@ def _kick_judged(case: Case, seen: SeenBump, says: str) -> Judgement:
     mend="more decoupling on the reference, less charge, or more hysteresis",
     sources=(_CHARGE,),
     example=Example(fails="comparators: {ov: {kick: 145 fC}}", holds="comparators: {ov: {kick: 4 fC}}"),
-    formulas=(
-        coupling.charge_kick_v, lasting_bump.decayed_kick_v, coupling.decoupling_for_charge_f, coupling.settling_time_s,
-    ),
-)  # fmt: skip
+    formulas=_KICK_FORMULAS,
+    yields=_NONE_OR_WRONG,
+)
 def own_kick_is_kept(comparator: Comparator, case: Case) -> Judgement:
     """Compare a comparator's kick on its own reference with what its level keeps."""
-    if comparator.reference is None:
+    if takes_no_reference(comparator):
         return case.not_applicable("it takes no reference")
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NOTHING_KEPT)
-    (seen,) = seen_bumps(case, comparator, [partial(own_kick, case, comparator)])
-    return _kick_judged(case, seen, f"its own decision kicks {comparator.reference}, which moves its level by")
+    ask: Callable[[], Bump] = partial(own_kick, case, comparator)
+    own = Disturber(comparator.id, comparator.id, None, comparator.reference)
+    total = case.sum(plus("its own kick", lambda: ask().seen_v, of=case.of(comparator).kick, floor=0.0))
+    seen = SeenBump(own, comparator, total, kept(case, comparator))
+    return _judged(
+        case, seen, f"its own decision kicks {comparator.reference or 'its reference'}, which moves its level by",
+        at="reference", why=_kick_text(case, comparator, comparator, bump_text(case, comparator, ask)), path=own.path,
+        quieter=partial(_quieter_kick, case, comparator, comparator, seen.kept),
+    )  # fmt: skip
 
 
 @rule(
@@ -173,42 +209,32 @@ def own_kick_is_kept(comparator: Comparator, case: Case) -> Judgement:
     level=Level.WARNING,
     applies_to="comparators",
     proves="What a comparator sees of every described neighbour and of every other comparator on its reference, added "
-    "up, is at most the least hysteresis. One that is too much alone is left to coupling/bump and to "
+    "up, is at most the least hysteresis. One that is too much alone is told by coupling/bump or by "
     "coupling/shared_reference.",
     facts=("the facts of coupling/bump and of coupling/shared_reference", _HYSTERESIS),
     mend="less of the largest, or more hysteresis",
     sources=(_SUM,),
     example=Example(
-        fails="{comparators: {ov: {kick: 120 fC}}, neighbours: {uv_beside_ov: {capacitance: {max: 2.2 fF}}}}",
+        fails="{comparators: {ov: {kick: 120 fC}}, neighbours: {uv_beside_ov: {capacitance: {max: 2.2 fF}, "
+        "edge: {min: 1 ns, max: 1 us}, node: {capacitance: {min: 250 fF, max: 300 fF}}}}}",
         holds="{comparators: {ov: {kick: 4 fC}}, neighbours: {uv_beside_ov: {capacitance: {max: 0.8 fF}}}}",
     ),
+    formulas=BUMP_FORMULAS,
+    yields=(Yield("coupling/bump", _pairs_on), "coupling/shared_reference", *_NONE_OR_WRONG),
 )
 def neighbours_together_are_kept(comparator: Comparator, case: Case) -> Judgement:
     """Compare the sum of all bumps with what the level keeps."""
-    sources = disturbers(case, comparator)
+    sources = disturbers(case.graph).of(comparator.id)
     if len(sources) < 2:
         return case.not_applicable(f"{'one neighbour' if sources else 'no neighbour'} disturbs it")
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NOTHING_KEPT)
-    seen = seen_bumps(case, comparator, [source.bump for source in sources])
-    seen.sort(key=lambda each: -each.seen_v)
-    largest, kept_v = seen[0], seen[0].kept_v
-    if kept_v <= 0.0:
-        return case.not_applicable(_NOTHING_KEPT)
-    if not largest.is_kept:
-        judge = "bump" if largest.bump.via in case.description.neighbours else "shared_reference"
-        return case.not_applicable(f"{largest.bump.aggressor} alone is too much for it (coupling/{judge} says so)")
-    total_v = math.fsum(each.seen_v for each in seen)
-    parts = [f"{show(each.seen_v, _V)} {each.bump.aggressor} through {each.bump.via}" for each in seen if each.seen_v]
+    keeps, total = kept(case, comparator), case.sum(*(seen_term(case, source) for source in sources))
+    lines = sorted(total.lines, key=lambda line: (-line.value, line.name))
     return case.at_most(
-        need=kept_v,
-        have=total_v,
-        dimension=_V,
-        says=f"its {len(seen)} neighbours together move its level by",
-        why=" + ".join(parts) or "none of them moves it",
-        mend=f"less of the largest, or at least {show_up(total_v, _V)} of hysteresis; now {show(kept_v, _V)}",
+        need=keeps, have=total, dimension=_V, says=f"its {len(sources)} neighbours together move its level by",
+        why=terms_text(case, lines) or "none of them moves it",
+        mend=f"less of the largest, or at least {show_up(total.value, _V)} of hysteresis; now {show(keeps.value, _V)}",
         at="hysteresis",
-    )
+    )  # fmt: skip
 
 
 @rule(
@@ -218,59 +244,39 @@ def neighbours_together_are_kept(comparator: Comparator, case: Case) -> Judgemen
     applies_to="comparators",
     proves="A bump above the least hysteresis of its victim toggles it; the victim, and the stages it drives, then "
     "disturb others. No chain of two toggles or more begins at the comparator, or at what is no comparator and toggles "
-    "it. A chain is told where it begins; one that comes back to where it began is left to coupling/ring.",
+    "it. A victim that surely keeps no distance is left out: the rules of hysteresis judge it.",
     facts=("the facts of coupling/bump and of coupling/shared_reference, for every comparator along the chain",),
     mend="keep one of the bumps below the hysteresis of its victim",
     sources=("a walk along the bumps that exceed the hysteresis of their victims (derived)",),
     example=Example(
         fails="{comparators: {uv: {kick: 145 fC}}, neighbours: {ov_beside_core: {kind: capacitance, aggressor: ov, "
-        "victim: uv_core, at: input, capacitance: 5 fF, step: 1.89 V, edge: {min: 1 ns}, "
-        "node: {resistance: 1.4 Mohm, capacitance: {min: 250 fF}}}}}",
+        "victim: uv_core, mutual: false, at: input, capacitance: 5 fF, step: 1.89 V, edge: {min: 1 ns, max: 1 us}, "
+        "node: {resistance: 1.4 Mohm, capacitance: {min: 250 fF, max: 300 fF}}}}}",
         holds="comparators: {uv: {kick: 4 fC}}",
     ),
+    formulas=BUMP_FORMULAS,
+    yields=(Yield("coupling/ring", _round),),
 )
 def toggles_end_at_once(comparator: Comparator, case: Case) -> Judgement:
     """Follow the toggles that begin at a comparator; fail where one of them toggles somebody else."""
-    pushes, name, comparators = coupling_map(case), comparator.id, case.description.comparators
-    if not pushes.out_of(name):
+    if not pushes(case.graph).out_of(comparator.id):
         return case.not_applicable("its decision moves nobody's level")
-    if comes_round(pushes, name):
-        return case.not_applicable("what it toggles toggles it back (coupling/ring judges it)")
-    before = next((push for push in pushes.onto(name) if push.toggles and push.by in comparators), None)
-    if before is not None:
-        return case.not_applicable(f"{before.by} toggles it: a chain is judged where it begins")
-    outside = frozenset(push.by for push in pushes.onto(name) if push.by not in comparators)
-    pairs = list(two_pushes(pushes, name, outside))
-    sure = next((pair for pair in pairs if all(push.toggles for push in pair)), None)
-    if sure is None and pairs:
-        return _unknown(case, (push for pair in pairs for push in pair))
-    if sure is None:
-        known = [push for push in pushes.out_of(name) if push.known]
-        why = _push_text(max(known, key=lambda push: push.ratio)) if known else ""
-        return case.passes("no chain of toggles begins at it", why=why)
-    chain = chain_on(pushes, *sure)
+    chain = first_chain(case, comparator.id)
+    if not chain:
+        return case.passes("no chain of toggles begins at it")
     first = chain[0]
-    toggled = ", which toggles ".join(push.victim for push in chain)
+    toggled = ", which toggles ".join(each.push.victim for each in chain)
     return case.fails(
-        f"{'its decision' if first.by == name else first.by} toggles {toggled}",
-        why="; ".join(_push_text(push) for push in chain),
-        mend=f"keep what {first.by} leaves on {first.victim} at or below {show_down(first.kept_v, _V)}",
+        f"{'its decision' if first.push.by == comparator.id else first.push.by} toggles {toggled}",
+        why="; ".join(map(_push_text, chain)),
+        mend=f"keep what {first.push.by} leaves on {first.push.victim} at or below {show_down(first.kept_v, _V)}",
         path=joined(chain),
     )
 
 
-def _push_text(push: Push) -> str:
-    whom = "itself" if push.by == push.victim else push.victim
-    return f"{push.by} moves {whom} by {show(push.bump_v, _V)} of {show(push.kept_v, _V)} kept"
-
-
-def _unknown(case: Case, pushes: Iterable[Push]) -> Judgement:
-    """Open, for want of the facts of these pushes."""
-    doubtful = [push for push in pushes if not push.known]
-    missing = dict.fromkeys(fact for push in doubtful for fact in push.missing)
-    if not missing:
-        raise DomainError(doubtful[0].refused)
-    return case.open(missing)
+def _push_text(each: Sized) -> str:
+    whom = "itself" if each.push.by == each.push.victim else each.push.victim
+    return f"{each.push.by} moves {whom} by {show(each.bump_v, _V)} of {show(each.kept_v, _V)} kept"
 
 
 @rule(
@@ -279,8 +285,9 @@ def _unknown(case: Case, pushes: Iterable[Push]) -> Judgement:
     level=Level.ERROR,
     applies_to="comparators",
     proves="Round every closed way on which comparators, and the stages they drive, disturb one another, the bumps "
-    "over the least hysteresis of their victims multiply to at most 1. Rings that hang together are judged once, at "
-    "their first comparator in the order of the description.",
+    "over the least hysteresis of their victims multiply to at most 1: so does their geometric mean, which is what is "
+    "measured. Comparators that may disturb one another round are judged once, by the strongest way round, at the "
+    "first of them by id. A victim that surely keeps no distance is left out: the rules of hysteresis judge it.",
     facts=("the facts of coupling/bump and of coupling/shared_reference, for every comparator in the ring",),
     mend="less of the strongest bump in the ring, or more hysteresis where it arrives",
     sources=(
@@ -288,33 +295,37 @@ def _unknown(case: Case, pushes: Iterable[Push]) -> Judgement:
         "weight, here the logarithm of bump over hysteresis; a product reaches 1 exactly if that mean reaches 0",
     ),
     example=Example(
-        fails="neighbours: {uv_beside_ov: {capacitance: {max: 8 fF}}}",
+        fails="neighbours: {uv_beside_ov: {capacitance: {max: 8 fF}, edge: {min: 1 ns, max: 1 us}, "
+        "node: {capacitance: {min: 250 fF, max: 300 fF}}}}",
         holds="neighbours: {uv_beside_ov: {capacitance: {max: 0.8 fF}}}",
     ),
+    formulas=BUMP_FORMULAS,
 )
 def ring_dies_out(comparator: Comparator, case: Case) -> Judgement:
     """Compare the product of ratios round the strongest ring with 1."""
-    ring = coupling_map(case).ring_of(comparator.id)
-    if ring is None:
+    found = pushes(case.graph)
+    surely, might = found.ring_of(comparator.id), found.might_ring_of(comparator.id)
+    if not might:
         return case.not_applicable("it is in no ring of neighbours")
-    first = ring.members[0]
-    if comparator.id != first:
-        return case.not_applicable(f"the ring it is in is judged at {first}")
-    measure = Measure(1.0, ring.product, Dimension.COUNT, Relation.AT_MOST)
-    if ring.unknown and measure.holds:
-        return _unknown(case, ring.unknown)
-    strongest = max(ring.pushes, key=lambda push: push.ratio)
-    allowed_v = strongest.bump_v if measure.holds else strongest.bump_v / ring.product  # a product may be 0
+    if surely and comparator.id != surely[0]:
+        return case.not_applicable(f"the ring it is in is judged at {surely[0]}")
+    members = surely if case.at_best else might
+    ring = strongest_ring(case, members)
+    mean = mean_of(ring)
+    if not ring:
+        nothing = f"round {', '.join(might)}, bump over hysteresis is on the geometric mean"
+        return case.at_most(need=1.0, have=mean, dimension=Dimension.COUNT, says=nothing)
+    strongest = max(ring, key=lambda each: each.ratio)
+    allowed_v = quotient(strongest.bump_v, mean ** len(ring))
     return case.at_most(
-        need=1.0,
-        have=ring.product,
-        dimension=Dimension.COUNT,
-        says=f"round the ring {' - '.join(push.by for push in ring.pushes)}, bump over hysteresis multiplies to",
-        why="; ".join(_push_text(push) for push in ring.pushes),
-        mend=f"keep what {strongest.by} leaves on {strongest.victim} at or below "
+        need=1.0, have=mean, dimension=Dimension.COUNT,
+        says=f"round the ring {' - '.join(each.push.by for each in ring)}, bump over hysteresis is on the geometric "
+        "mean",
+        why="; ".join(map(_push_text, ring)),
+        mend=f"keep what {strongest.push.by} leaves on {strongest.push.victim} at or below "
         f"{show_down(allowed_v, _V)}; now {show(strongest.bump_v, _V)}",
-        path=joined(ring.pushes),
-    )
+        path=joined(ring),
+    )  # fmt: skip
 
 
 @rule(
@@ -334,31 +345,39 @@ def ring_dies_out(comparator: Comparator, case: Case) -> Judgement:
         fails="comparators: {uv: {switching_current: 200 mA}}", holds="comparators: {uv: {switching_current: 2 uA}}"
     ),
     formulas=(coupling.shared_impedance_bump_v,),
+    yields=_NONE_OR_WRONG,
 )  # fmt: skip
 def own_step_is_kept(comparator: Comparator, case: Case) -> Judgement:
     """Compare the droop of the comparator's own current step with what its level keeps."""
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NOTHING_KEPT)
     rail = rail_of(case, comparator)
     if rail.id != comparator.watches:
         return case.not_applicable(f"it lives on {rail.id} and watches {comparator.watches}")
-    step_a, impedance_ohm = case.own.most("switching_current"), case.of(rail).most("source_impedance")
-    kept_v = hysteresis_window(case, comparator).least_v
-    case.settle()
-    if kept_v <= 0.0:
-        return case.not_applicable(_NOTHING_KEPT)
-    droop_v = coupling.shared_impedance_bump_v(step_a=step_a, impedance_ohm=impedance_ohm)
-    loud = droop_v > kept_v
-    step, impedance = show(step_a, Dimension.CURRENT), show(impedance_ohm, Dimension.RESISTANCE)
-    return case.at_most(
-        need=kept_v,
-        have=droop_v,
-        dimension=_V,
-        says=f"its own decision moves {rail.id} by",
-        why=f"a step of {step} through {impedance}",
-        mend=f"a step of at most {show_down(kept_v / impedance_ohm, Dimension.CURRENT)}; now {step}" if loud else "",
-        at="switching_current",
+    keeps, (step, impedance) = (
+        kept(case, comparator),
+        (case.of(comparator).switching_current, case.of(rail).source_impedance),
     )
+
+    def droop_v() -> float:
+        step_a, impedance_ohm = factors(step, impedance)
+        return coupling.shared_impedance_bump_v(step_a=step_a, impedance_ohm=impedance_ohm)
+
+    droop = case.sum(plus("step of its own current", droop_v, of=step))
+    known = case.if_known(lambda: (step.most(), impedance.most()))
+    return case.at_most(
+        need=keeps, have=droop, dimension=_V, says=f"its own decision moves {rail.id} by",
+        why="" if known is None else _step_text(*known),
+        mend=_LESS if known is None or keeps.value == 0.0 or not known[1] else _smaller_step(*known, keeps.value),
+        at="switching_current",
+    )  # fmt: skip
+
+
+def _step_text(step_a: float, impedance_ohm: float) -> str:
+    return f"a step of {show(step_a, Dimension.CURRENT)} through {show(impedance_ohm, Dimension.RESISTANCE)}"
+
+
+def _smaller_step(step_a: float, impedance_ohm: float, kept_v: float) -> str:
+    ampere = Dimension.CURRENT
+    return f"a step of at most {show_down(kept_v / impedance_ohm, ampere)}; now {show(step_a, ampere)}"
 
 
 RULES: Final[tuple[Rule, ...]] = (

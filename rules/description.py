@@ -2,67 +2,78 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+import math
+from collections.abc import Callable, Iterator
 from typing import Final
 
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.trip_levels import falling_window
 from tidegate.lint.description.model.detector import Comparator, Reference
 from tidegate.lint.description.model.reset_path import Load
 from tidegate.lint.description.model.supply import Rail
+from tidegate.lint.facts.reading import Better, Corner, MissingFactsError, Reading
 from tidegate.lint.judgement import Judgement, Level
-from tidegate.lint.quantity import Dimension, Span, show
+from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 
 _COMMON_PRACTICE: Final = (
     "common practice, no source: two facts that cannot both hold make every judgement on them void"
 )
 _ROUNDING: Final = 1e-9
+_LESS: Final = Better.LESS
+_MORE: Final = Better.MORE
 
 
 class _Order(msgspec.Struct, frozen=True):
-    """Two levels of which the first must not be higher, in V; None where one is not given."""
+    """Two levels of which the first must not be higher, in V, as they stand in a reading."""
 
-    less_v: float | None
+    less_v: float
     less_says: str
-    more_v: float | None
+    more_v: float
     more_says: str
     at: str
-
-    @property
-    def is_given(self) -> bool:
-        return self.less_v is not None and self.more_v is not None
+    usual: bool = False
+    """Whether the order is what is usual only: a person must look where it is not kept."""
+    follows: bool = False
+    """Whether it follows from others, and need not be told beside them."""
 
     @property
     def is_wrong(self) -> bool:
-        return self.less_v is not None and self.more_v is not None and self.less_v > self.more_v * (1 + _ROUNDING)
+        rounding_v = _ROUNDING * abs(self.more_v) if math.isfinite(self.more_v) else 0.0
+        return self.less_v > self.more_v + rounding_v
 
     def text(self) -> str:
-        less, more = (show(level_v or 0.0, Dimension.VOLTAGE) for level_v in (self.less_v, self.more_v))
+        less, more = (show(level_v, Dimension.VOLTAGE) for level_v in (self.less_v, self.more_v))
         return f"{self.less_says} ({less}) lies above {self.more_says} ({more})"
 
 
-def _answer(case: Case, orders: Sequence[_Order], what: str) -> Judgement:
-    """Fail with every pair that contradicts; what is not given contradicts nothing."""
-    wrong = [order for order in orders if order.is_wrong]
+def _answer(case: Case, orders: Callable[[Case], Iterator[_Order]], what: str) -> Judgement:
+    """Fail with every pair that contradicts whatever is missing; what may still turn out to is open."""
+    certain = [order for order in orders(_at_best(case)) if order.is_wrong]
+    if any(not order.usual for order in certain):
+        told = [order for order in certain if not order.follows]
+        told = certain if all(order.usual for order in told) else told
+        return case.fails("; ".join(order.text() for order in told), mend="correct one of the two", at=told[0].at)
+    wrong = [order for order in orders(case) if order.is_wrong]
+    if any(not order.usual for order in wrong):
+        return case.fails(wrong[0].text(), mend="correct one of the two", at=wrong[0].at)
     if wrong:
-        return case.fails("; ".join(order.text() for order in wrong), mend="correct one of the two", at=wrong[0].at)
-    if any(order.is_given for order in orders):
-        return case.passes(f"{what} agree")
-    return case.not_applicable(f"nothing is given of {what} that could contradict")
+        return case.asks(
+            "; ".join(order.text() for order in wrong), why="it is so on some rails, and a slip on most",
+            mend="correct one of the two, or say why it is so", at=wrong[0].at,
+        )  # fmt: skip
+    return case.passes(f"{what} agree")
 
 
-def _least(span: Span | None) -> float | None:
-    return None if span is None else span.least
-
-
-def _most(span: Span | None) -> float | None:
-    return None if span is None else span.most
-
-
-def _middle(span: Span | None) -> float | None:
-    return None if span is None else span.middle
+def _at_best(case: Case) -> Case:
+    """The same case with all that is missing at its best: what contradicts there does so whatever is missing."""
+    return Case(
+        subject=case.subject, rule=case.rule, level=case.level, description=case.description, graph=case.graph,
+        reading=Reading(Corner.BEST, chosen=case.reading.chosen),
+    )  # fmt: skip
 
 
 @rule(
@@ -70,8 +81,8 @@ def _middle(span: Span | None) -> float | None:
     title="the ranges of a rail lie inside one another",
     level=Level.ERROR,
     applies_to="rails",
-    proves="guaranteed.min <= delivered.min <= nominal <= delivered.max <= guaranteed.max <= damage; the residual "
-    "level and the dip of the ramp lie below the supply in service; the fastest ramp is not slower than the slowest.",
+    proves="guaranteed.min <= delivered.min and delivered.max <= guaranteed.max <= damage; the residual level lies "
+    "below the supply in service. A nominal level outside of what is delivered is for a person to look at.",
     facts=("rails.*.nominal", "rails.*.delivered", "rails.*.guaranteed", "rails.*.damage", "rails.*.residual"),
     mend="correct the range that is wrong",
     sources=(_COMMON_PRACTICE,),
@@ -82,20 +93,25 @@ def _middle(span: Span | None) -> float | None:
 )
 def rail_ranges_nest(rail: Rail, case: Case) -> Judgement:
     """Hold each range of the rail against the next."""
-    nominal = _middle(rail.nominal)
-    low, high = _least(rail.delivered), _most(rail.delivered)
-    signed_high, damage = _most(rail.guaranteed), _least(rail.damage)
-    top = "the highest supply delivered" if high is not None else "nominal"
-    orders = [
-        _Order(_least(rail.guaranteed), "the lowest supply signed off for", low, "the lowest delivered", "guaranteed"),
-        _Order(low, "the lowest supply delivered", nominal, "nominal", "delivered"),
-        _Order(nominal, "nominal", high, "the highest supply delivered", "delivered"),
-        _Order(high, "the highest supply delivered", signed_high, "the highest signed off for", "guaranteed"),
-        _Order(signed_high, "the highest supply signed off for", damage, "the damage level", "damage"),
-        _Order(_most(rail.residual), "the residual level", low, "the lowest supply delivered", "residual"),
-    ]
-    if signed_high is None:
-        orders.append(_Order(high if high is not None else nominal, top, damage, "the damage level", "damage"))
+
+    def orders(at: Case) -> Iterator[_Order]:
+        own = at.of(rail)
+        delivered, guaranteed, damage = own.delivered, own.guaranteed, own.damage
+        low, high = "the lowest supply delivered", "the highest supply delivered"
+        yield _Order(
+            guaranteed.least(_LESS), "the lowest supply signed off for", delivered.least(_MORE),
+            "the lowest delivered", "guaranteed",
+        )  # fmt: skip
+        yield _Order(delivered.least(_LESS), low, own.nominal.typical(_MORE), "nominal", "delivered", usual=True)
+        yield _Order(own.nominal.typical(_LESS), "nominal", delivered.most(_MORE), high, "delivered", usual=True)
+        yield _Order(delivered.most(_LESS), high, guaranteed.most(_MORE), "the highest signed off for", "guaranteed")
+        yield _Order(
+            guaranteed.most(_LESS), "the highest supply signed off for", damage.least(_MORE), "the damage level",
+            "damage",
+        )  # fmt: skip
+        yield _Order(own.residual.most(_LESS), "the residual level", delivered.least(_MORE), low, "residual")
+        yield _Order(delivered.most(_LESS), high, damage.least(_MORE), "the damage level", "damage", follows=True)
+
     return _answer(case, orders, "its ranges")
 
 
@@ -116,15 +132,17 @@ def rail_ranges_nest(rail: Rail, case: Case) -> Judgement:
 )
 def load_works_in_service(load: Load, case: Case) -> Judgement:
     """Hold the working range of the load against what each rail delivers."""
-    return _answer(case, list(_load_orders(load, case)), "its working range and the range delivered")
+    if not load.needs:
+        raise MissingFactsError([load.fact("needs")])
 
+    def orders(at: Case) -> Iterator[_Order]:
+        for index, need in enumerate(load.needs):
+            works, delivered = at.of(load).needs[index].works, at.of(at.description.rails[need.rail]).delivered
+            fact, rail = f"needs.{index}.works", need.rail
+            yield _Order(works.least(_LESS), "its lowest supply", delivered.least(_MORE), f"the lowest of {rail}", fact)
+            yield _Order(delivered.most(_LESS), f"the highest of {rail}", works.most(_MORE), "its highest supply", fact)
 
-def _load_orders(load: Load, case: Case) -> Iterator[_Order]:
-    for index, need in enumerate(load.needs):
-        delivered = case.description.rails[need.rail].delivered
-        at = f"needs.{index}.works"
-        yield _Order(_least(need.works), "its lowest supply", _least(delivered), f"the lowest of {need.rail}", at)
-        yield _Order(_most(delivered), f"the highest of {need.rail}", _most(need.works), "its highest supply", at)
+    return _answer(case, orders, "its working range and the range delivered")
 
 
 @rule(
@@ -144,11 +162,17 @@ def _load_orders(load: Load, case: Case) -> Iterator[_Order]:
 )
 def reference_below_its_supply(reference: Reference, case: Case) -> Judgement:
     """Hold the voltage against the lowest supply."""
-    if reference.kind == "external":
+    if case.of(reference).kind.must() == "external":
         return case.not_applicable("comes from outside the chip")
-    voltage, lowest = _middle(reference.voltage), _most(reference.works_from)
-    order = _Order(voltage, "its voltage", lowest, "the supply it works from", "works_from")
-    return _answer(case, [order], "its voltage and its lowest supply")
+
+    def orders(at: Case) -> Iterator[_Order]:
+        own = at.of(reference)
+        yield _Order(
+            own.voltage.typical(_LESS), "its voltage", own.works_from.most(_MORE), "the supply it works from",
+            "works_from",
+        )  # fmt: skip
+
+    return _answer(case, orders, "its voltage and its lowest supply")
 
 
 @rule(
@@ -156,9 +180,9 @@ def reference_below_its_supply(reference: Reference, case: Case) -> Judgement:
     title="the facts of a detector agree with each other",
     level=Level.ERROR,
     applies_to="comparators",
-    proves="works_from <= works_to; the levels stated in trip are those of the code it ships with; a re-arming level "
-    "does not lie above the falling level. That the stated hysteresis is what lies between the levels is judged by "
-    "claims/hysteresis.",
+    proves="works_from <= works_to; the levels stated in trip and those of the code it ships with have something in "
+    "common; a re-arming level does not lie above the falling level. That the stated hysteresis is what lies between "
+    "the levels is judged by claims/hysteresis.",
     facts=(
         "comparators.*.works_from, works_to", "comparators.*.trip, codes, ships_with", "comparators.*.rearms_below",
     ),
@@ -171,24 +195,38 @@ def reference_below_its_supply(reference: Reference, case: Case) -> Judgement:
 )  # fmt: skip
 def detector_facts_agree(comparator: Comparator, case: Case) -> Judgement:
     """Hold its range, its levels, its codes and its re-arming level against each other."""
-    trip = comparator.trip
-    orders = [
-        _Order(_most(comparator.works_from), "works_from", _least(comparator.works_to), "works_to", "works_from"),
-    ]  # fmt: skip
-    if comparator.role != "over_voltage":
-        falling = _most(trip.falling) if trip is not None else None
-        orders.append(
-            _Order(_least(comparator.rearms_below), "rearms_below", falling, "the falling level", "rearms_below")
-        )
-    if trip is not None and comparator.ships_with is not None:
-        code = comparator.codes[comparator.ships_with]
-        for level in ("rising", "falling"):
-            pair = _middle(getattr(trip, level)), _middle(getattr(code, level))
-            names = f"the {level} level of trip", f"that of {comparator.ships_with}, which it ships with"
-            at = f"codes.{comparator.ships_with}.{level}"
-            orders.append(_Order(pair[0], names[0], pair[1], names[1], at))
-            orders.append(_Order(pair[1], names[1], pair[0], names[0], at))
+
+    def orders(at: Case) -> Iterator[_Order]:
+        own = at.of(comparator)
+        yield _Order(own.works_from.most(_LESS), "works_from", own.works_to.least(_MORE), "works_to", "works_from")
+        if comparator.role != "over_voltage":
+            yield _Order(
+                own.rearms_below.least(_LESS), "rearms_below", _highest_falling_v(comparator, at), "the falling level",
+                "rearms_below",
+            )  # fmt: skip
+        if comparator.trip is not None and comparator.ships_with in comparator.codes:
+            yield from _code_orders(comparator, comparator.ships_with, at)
+
     return _answer(case, orders, "its own range, levels and codes")
+
+
+def _highest_falling_v(comparator: Comparator, case: Case) -> float:
+    """The falling level at its highest, in V: as it is stated, else from the rising one."""
+    trip = case.of(comparator).trip
+    if trip.falling.given is not None:
+        return trip.falling.most(_MORE)
+    return case.turned(lambda: falling_window(case, as_shipped(case, comparator)).most_v)
+
+
+def _code_orders(comparator: Comparator, code: str, case: Case) -> Iterator[_Order]:
+    """What is stated in trip and what at the code it ships with: neither lies above the other altogether."""
+    trip, shipped = case.of(comparator).trip, case.of(comparator).codes[code]
+    levels = {"rising": (trip.rising, shipped.rising), "falling": (trip.falling, shipped.falling)}
+    for level, (stated, chosen) in levels.items():
+        names = f"the {level} level of trip", f"that of {code}, which it ships with"
+        at = f"codes.{code}.{level}"
+        yield _Order(stated.least(_LESS), names[0], chosen.most(_MORE), names[1], at)
+        yield _Order(chosen.least(_LESS), names[1], stated.most(_MORE), names[0], at)
 
 
 RULES: Final[tuple[Rule, ...]] = (

@@ -7,21 +7,28 @@ from collections.abc import Callable
 from functools import partial
 from typing import Final
 
+from tidegate.lint.account import Sum
 from tidegate.lint.case import Case
+from tidegate.lint.derived.at_corner import at_corner
+from tidegate.lint.derived.levels.furthest import lowest
 from tidegate.lint.derived.levels.trip_levels import has_no_hysteresis, hysteresis_window
 from tidegate.lint.derived.metal.crowbar_peak import Crowbar, crowbar_of
 from tidegate.lint.derived.metal.output_metal import Conductor, line_of, vias_of
-from tidegate.lint.derived.metal.wire_limit import wear_of
+from tidegate.lint.derived.reset_path.path_gaps import gaps_behind
 from tidegate.lint.derived.safe_rounding import show_down
 from tidegate.lint.derived.supply.rail_of import rail_of
+from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import OutputStage
+from tidegate.lint.facts.reading import Better, MissingFactsError
+from tidegate.lint.graph.dependency import build
 from tidegate.lint.graph.edge import EdgeKind, Hop, Path
 from tidegate.lint.graph.paths import Reach, driven_by
-from tidegate.lint.judgement import Judgement, Level, Measure, Relation
+from tidegate.lint.judgement import Judgement, Kind, Level, Measure, Relation
 from tidegate.lint.physics import conductor_size, coupling, crowbar, electromigration, short_length
+from tidegate.lint.physics.domain import product
 from tidegate.lint.quantity import Dimension, show
-from tidegate.lint.rule import Example, Rule, rule
+from tidegate.lint.rule import Example, Rule, Yield, rule
 
 _V: Final = Dimension.VOLTAGE
 _A: Final = Dimension.CURRENT
@@ -48,17 +55,20 @@ _WEAR_FACTS: Final = (
 _ONE: Final = {"inverter": "an"}
 
 
-def _edge(case: Case) -> Measure:
+def _edge(stage: OutputStage, case: Case) -> Measure:
     """The input edge against the slowest one that a plain stage is good for."""
-    edge_s, plain_s = case.own.most("input_edge"), case.whole.least("process.plain_edge")
-    case.settle()
-    return Measure(plain_s, edge_s, _TIME, Relation.AT_MOST)
+    plain_s = case.whole.process.plain_edge.least()
+    return Measure(plain_s, case.of(stage).input_edge.most(), _TIME, Relation.AT_MOST)
 
 
-def _why_fast(case: Case) -> str:
-    """Why crowbar current is no matter; empty where the stage is behind a slow edge."""
-    edge = _edge(case)
-    return f"its input edge of {show(edge.have, _TIME)} is not slow" if edge.holds else ""
+def _fast(stage: OutputStage, case: Case) -> Judgement | None:
+    """Why crowbar current is no matter; None where the stage is, or may be, behind a slow edge."""
+    edge = _edge(stage, case)
+    if not edge.holds:
+        return None
+    if not case.reading.exact:
+        return case.passes("its input edge may be fast enough")
+    return case.not_applicable(f"its input edge of {show(edge.have, _TIME)} is not slow")
 
 
 @rule(
@@ -79,19 +89,25 @@ def _why_fast(case: Case) -> str:
 )
 def slow_edge_meets_schmitt(stage: OutputStage, case: Case) -> Judgement:
     """Pass if the stage is a Schmitt stage, or its edge is fast enough for any other."""
-    if stage.kind == "schmitt":
+    edge = None if stage.kind == "schmitt" else _edge(stage, case)
+    kind = "schmitt" if edge is None else "" if edge.holds else case.of(stage).kind.must()
+    if edge is None or kind == "schmitt":
         return case.passes("a Schmitt stage is good for any edge", at="kind")
-    edge = _edge(case)
-    kind = "" if edge.holds else case.own.must("kind").replace("_", " ")
     return case.at_most(
         need=edge.need,
         have=edge.have,
         dimension=_TIME,
         says="input edge",
-        why=f"{_ONE.get(kind, 'a')} {kind} stage has no hysteresis" if kind else "",
+        why=f"{_ONE.get(kind, 'a')} {kind.replace('_', ' ')} stage has no hysteresis" if kind else "",
         mend=f"make it a Schmitt stage, or an edge of at most {show(edge.need, _TIME)}",
         at="input_edge",
     )
+
+
+def _detectors_behind(stage: OutputStage, description: Description) -> list[str]:
+    """The detectors whose decision a stage passes on."""
+    reach = Reach(stage.id, driven_by(build(description)))
+    return [name for name in reach if name in description.comparators]
 
 
 @rule(
@@ -111,30 +127,36 @@ def slow_edge_meets_schmitt(stage: OutputStage, case: Case) -> Judgement:
         "output_stages: {por_out: {crowbar_peak: 0.28 mA}}}",
     ),
     formulas=(crowbar.peak_current_a, coupling.shared_impedance_bump_v),
+    yields=(Yield("hysteresis/present", _detectors_behind),),
 )
 def crowbar_leaves_the_level(stage: OutputStage, case: Case) -> Judgement:
     """Compare the droop at the crowbar peak with the least hysteresis of the detectors behind it."""
-    fast = _why_fast(case)
-    if fast:
-        return case.not_applicable(fast)
+    if (fast := _fast(stage, case)) is not None:
+        return fast
     rail = rail_of(case, stage)
     behind = Reach(stage.id, driven_by(case.graph))
-    known = case.description.comparators
+    known, gaps = case.description.comparators, gaps_behind(case, stage.id)
     watching = [known[name] for name in behind if name in known and known[name].watches == rail.id]
-    detectors = [comparator for comparator in watching if not has_no_hysteresis(comparator)]
-    if not detectors:
-        why = "has hysteresis (hysteresis/present says so)" if watching else "drives it"
-        return case.not_applicable(f"no detector that watches {rail.id} {why}")
-    kept, source_ohm, current = case.gather(
-        lambda: _least_hysteresis(case, detectors),
-        lambda: case.of(rail).most("source_impedance"),
-        lambda: crowbar_of(case, stage),
+    if not watching and gaps:
+        raise MissingFactsError(gaps)
+    if not watching:
+        return case.not_applicable(f"no detector that watches {rail.id} drives it")
+    # Those without hysteresis are another rule's, as long as one has some.
+    detectors = [comparator for comparator in watching if not has_no_hysteresis(comparator)] or watching
+    detector, kept = _least_hysteresis(case, detectors)
+    if gaps:  # what else drives it may have any
+        case.reading.block(gaps)
+        kept = kept if case.at_best else Sum(min(kept.value, 0.0), kept.lines)
+    source_ohm, current = case.of(rail).source_impedance.most(), crowbar_of(case, stage)
+    droop_v = at_corner(
+        case,
+        lambda: coupling.shared_impedance_bump_v(step_a=current.peak_a, impedance_ohm=source_ohm),
+        sure=math.inf,
+        best=0.0,
     )
-    detector, kept_v = kept
-    droop_v = coupling.shared_impedance_bump_v(step_a=current.peak_a, impedance_ohm=source_ohm)
-    most_a = kept_v / source_ohm if source_ohm > 0.0 else math.inf
+    most_a = kept.value / source_ohm if 0.0 < source_ohm < math.inf else math.inf
     return case.at_most(
-        need=kept_v,
+        need=kept,
         have=droop_v,
         dimension=_V,
         says=f"its crowbar current moves {rail.id} by",
@@ -152,11 +174,15 @@ def _forwards(path: Path) -> Path:
     return (Hop(names[0], ""), *(Hop(name, EdgeKind.DRIVES.forwards) for name in names[1:]))
 
 
-def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, float]:
+def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, Sum]:
     """The detector with the least hysteresis, and how much it is, in V."""
-    windows = case.gather_all(partial(hysteresis_window, case, detector) for detector in detectors)
-    least = {detector.id: window.least_v for detector, window in zip(detectors, windows, strict=True)}
-    return min(least.items(), key=lambda each: each[1])
+    ends = case.each(partial(_smallest, case, detector) for detector in detectors)
+    first = min(zip(detectors, ends, strict=True), key=lambda each: each[1].value)[0]
+    return first.id, lowest(ends)
+
+
+def _smallest(case: Case, detector: Comparator) -> Sum:
+    return Sum(0.0, ()) if has_no_hysteresis(detector) else hysteresis_window(case, detector).end("least")
 
 
 @rule(
@@ -165,10 +191,11 @@ def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, flo
     level=Level.ERROR,
     applies_to="output_stages",
     proves="An edge much longer than the thermal time constant of a wire is direct current to it: the greatest crowbar "
-    "current keeps the direct, r.m.s. and peak limits of the line at its narrowest, less the width bias of the layer "
-    "where there is one, at the hottest junction and for the service life. Where it exceeds the direct limit alone, a "
-    "line too short to fail (Blech) will do; else the damage of all edges and of the longest stays at the threshold "
-    "is added up, and a person must look where it is no whole life.",
+    "current keeps the r.m.s. and peak limits of the line at its narrowest, less the width bias of the layer, and the "
+    "direct limit at the hottest junction and for the service life, or what a line so short carries without failing "
+    "(Blech). Where it exceeds what the line carries for good, and no limit against heat, the time of all edges and of "
+    "the longest stays at the threshold is added up, and a person must look where the line carries it for so long. A "
+    "limit against heat that is not stated is at least the direct current that is.",
     facts=(
         *_PEAK_FACTS, "output_stages.*.output.layer", "output_stages.*.output.width", "process.layers.*.limits",
         *_WEAR_FACTS, "output_stages.*.output.length, process.layers.*.thickness and "
@@ -182,8 +209,8 @@ def _least_hysteresis(case: Case, detectors: list[Comparator]) -> tuple[str, flo
     ),
     formulas=(
         crowbar.peak_current_a, crowbar.peak_equivalent_time_s, electromigration.carried_limit,
-        electromigration.damage_share, short_length.short_length_product_a_per_m, conductor_size.line_limit_a,
-        conductor_size.width_for_current_m,
+        electromigration.life_s, electromigration.damage_share, short_length.short_length_product_a_per_m,
+        conductor_size.line_limit_a, conductor_size.width_for_current_m,
     ),
 )  # fmt: skip
 def line_carries_the_crowbar(stage: OutputStage, case: Case) -> Judgement:
@@ -209,7 +236,7 @@ def line_carries_the_crowbar(stage: OutputStage, case: Case) -> Judgement:
     ),
     formulas=(
         crowbar.peak_current_a, crowbar.peak_equivalent_time_s, electromigration.carried_limit,
-        electromigration.damage_share, conductor_size.vias_for_current,
+        electromigration.life_s, electromigration.damage_share, conductor_size.vias_for_current,
     ),
 )  # fmt: skip
 def vias_carry_the_crowbar(stage: OutputStage, case: Case) -> Judgement:
@@ -218,96 +245,67 @@ def vias_carry_the_crowbar(stage: OutputStage, case: Case) -> Judgement:
 
 
 def _carried(stage: OutputStage, case: Case, metal: Callable[[Case, OutputStage], Conductor]) -> Judgement:
-    """Compare the crowbar peak with what the metal carries outright, with its short length, then with its life."""
-    fast = _why_fast(case)
-    if fast:
-        return case.not_applicable(fast)
-    known = case.attempt(lambda: crowbar_of(case, stage))
-    if known is not None and known.peak_a == 0.0:
-        return case.passes("there is no crowbar current", why=known.text(), at="input_edge")
-    current, conductor = case.gather(lambda: crowbar_of(case, stage), lambda: metal(case, stage))
-    outright = _at_most(current, conductor.limit_a)
-    if outright.holds or _heats(current, conductor):
-        return case.at_most(
-            need=outright.need,
-            have=outright.have,
-            dimension=_A,
-            says=f"crowbar current of its {conductor.name}",
-            why=f"{current.text()}; {_limits_text(current, conductor)}",
-            mend=conductor.enough(current.peak_a),
-            at=conductor.fact,
-        )
-    short = conductor.short
-    if short is not None and _at_most(current, short.largest_a).holds:
-        length_um, limit_a_per_cm = short.length_m * 1e6, short.limit_a_per_m / 100.0
-        return case.at_most(
-            need=short.largest_a,
-            have=current.peak_a,
-            dimension=_A,
-            says=f"too short to fail (Blech) from the crowbar current of its {conductor.name}",
-            why=f"{current.text()}; {length_um:g} um keep below {limit_a_per_cm:g} A/cm of density times length; "
-            f"for a long line {_limits_text(current, conductor)}",
-            at="output.length",
-        )
-    return _worn(stage, case, current, conductor)
+    """Compare the crowbar peak with what the metal carries for good, then with what it carries for so long."""
+    if (fast := _fast(stage, case)) is not None:
+        return fast
+    current = crowbar_of(case, stage)
+    if current.peak_a == 0.0:
+        return case.passes("there is no crowbar current", why=current.text(), at="input_edge")
+    conductor = metal(case, stage)
+    good = Measure(conductor.for_good_a(case.whole.conditions.service_life.most), current.peak_a, _A, Relation.AT_MOST)
+    kind, says, why = (
+        Kind.FAIL,
+        f"crowbar current of its {conductor.name}",
+        f"{current.text()}; {_limits(case, conductor)}",
+    )
+    if not good.holds and all(_at_most(current, limit_a).holds for limit_a in conductor.heating_a.values()):
+        time_s = partial(_time_s, stage, case, current)
+        if _at_most(current, conductor.carried_a(time_s)).holds:
+            kind, says = Kind.REVIEW, f"for a while only, {says}"
+            why = f"{why}; assumes that no more time than this is spent, and that damage adds up linearly (Miner)"
+        used = conductor.damage(current.peak_a, time_s)
+        why = f"{why}; {_times(stage, case, current)} use up {show(used, Dimension.RATIO)} of its life"
+    return case.at_most(
+        need=good.need, have=good.have, dimension=_A, says=says, why=why, mend=conductor.enough(current.peak_a),
+        at=conductor.fact, otherwise=kind,
+    )  # fmt: skip
 
 
 def _at_most(current: Crowbar, limit_a: float) -> Measure:
     return Measure(limit_a, current.peak_a, _A, Relation.AT_MOST)
 
 
-def _heats(current: Crowbar, conductor: Conductor) -> bool:
-    """Whether the current exceeds a limit that no short time and no short length makes up for."""
-    return any(not _at_most(current, limit_a).holds for limit_a in conductor.heating_a.values())
-
-
-def _limits_text(current: Crowbar, conductor: Conductor) -> str:
-    """The limit for direct current, and each other limit that the current exceeds or that is the smallest."""
-    parts = [f"{show(conductor.direct.here, _A)} direct, {conductor.direct.text()}"]
-    for word, limit_a in conductor.heating_a.items():
-        if limit_a == conductor.limit_a or not _at_most(current, limit_a).holds:
-            parts.append(f"{show(limit_a, _A)} {word}")
+def _limits(case: Case, conductor: Conductor) -> str:
+    """What the metal carries for good and by what; of what is limited besides, the smallest."""
+    direct_a = conductor.carried_a(case.whole.conditions.service_life.most)
+    parts = [f"{show(direct_a, _A)} direct, {conductor.stated.text(case)}"]
+    if conductor.short_a > direct_a:
+        parts.append(f"{show(conductor.short_a, _A)} because {conductor.short_text}")
+    if conductor.heating_a:
+        word, least_a = min(conductor.heating_a.items(), key=lambda limit: limit[1])
+        parts += [f"{show(least_a, _A)} {word}"] if least_a < max(direct_a, conductor.short_a) else []
     return ", ".join(parts)
 
 
-def _worn(stage: OutputStage, case: Case, current: Crowbar, conductor: Conductor) -> Judgement:
-    """Add up the damage of all edges and all stays at the threshold: a person must look if it is no whole life."""
-    own, whole, direct = case.own, case.whole, conductor.direct
-    edge_s, dwell_s = own.most("input_edge"), own.most("dwell")
-    cycles, edges = whole.number("conditions.power_cycles"), own.number("edges_per_cycle")
-    wear = wear_of(case, stated_k=direct.stated_k, hottest_k=direct.hottest_k)
-    at_peak_s = current.time_at_peak_s(edge_s=edge_s, exponent=wear.current_exponent)
-    spent = [
-        electromigration.Exposure(time_s=cycles * edges * at_peak_s, current=current.peak_a),
-        electromigration.Exposure(time_s=cycles * dwell_s, current=current.peak_a),
-    ]
-    share = electromigration.damage_share(
-        exposures=spent, limit=direct.stated, wear=wear, stated_k=direct.stated_k, use_k=direct.hottest_k,
-        stated_life_s=direct.stated_life_s,
-    )  # fmt: skip
-    used = Measure(1.0, share, Dimension.RATIO, Relation.AT_MOST)
-    says = f"wear of its {conductor.name} over the service life"
-    why = (
-        f"{show(current.peak_a, _A)} ({current.text()}) against {_limits_text(current, conductor)}; "
-        f"{show(cycles * edges, Dimension.COUNT)} edges, each as {show(at_peak_s, _TIME)} at the peak, and "
-        f"{show(cycles, Dimension.COUNT)} stays of {show(dwell_s, _TIME)} at it"
-    )
-    if used.holds:
-        return case.asks(
-            f"above its direct limit for a while only; {says} {used.text()}",
-            why=f"{why}; assumes that no more time than this is spent, and that damage adds up linearly (Miner)",
-            mend=conductor.enough(current.peak_a),
-            at=conductor.fact,
-            measure=used,
-        )
-    return case.at_most(
-        need=used.need,
-        have=used.have,
-        dimension=Dimension.RATIO,
-        says=says,
-        why=why,
-        mend=conductor.enough(current.peak_a),
-        at=conductor.fact,
+def _time_s(stage: OutputStage, case: Case, current: Crowbar) -> float:
+    """The time that the crowbar peak flows over the service life, in s: on edges, and in stays at the threshold."""
+    own, conditions = case.of(stage), case.whole.conditions
+    cycles, edges = conditions.power_cycles.number(Better.LESS), own.edges_per_cycle.number(Better.LESS)
+    at_peak_s = _at_peak_s(stage, case, current)
+    return product(cycles, product(edges, at_peak_s) + own.dwell.most())
+
+
+def _at_peak_s(stage: OutputStage, case: Case, current: Crowbar) -> float:
+    exponent = case.whole.process.current_exponent
+    return current.time_at_peak_s(case, edge_s=case.of(stage).input_edge.most(), exponent=exponent)
+
+
+def _times(stage: OutputStage, case: Case, current: Crowbar) -> str:
+    own, cycles = case.of(stage), case.whole.conditions.power_cycles.number(Better.LESS)
+    edges, at_peak_s = product(cycles, own.edges_per_cycle.number(Better.LESS)), _at_peak_s(stage, case, current)
+    return (
+        f"{show(edges, Dimension.COUNT)} edges, each as {show(at_peak_s, _TIME)} at the peak, and "
+        f"{show(cycles, Dimension.COUNT)} stays of {show(own.dwell.most(), _TIME)} at it"
     )
 
 

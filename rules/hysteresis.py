@@ -2,35 +2,42 @@
 
 from __future__ import annotations
 
-import math
-from typing import Final
+from collections.abc import Iterator
+from typing import Any, Final
 
+import msgspec
+
+from tidegate.lint.account import Sum
 from tidegate.lint.case import Case
-from tidegate.lint.derived.disturbance.hysteresis_need import disturbance, noise_v
-from tidegate.lint.derived.levels.at_code import as_far_as_said
-from tidegate.lint.derived.levels.level_room import NEVER_APART, level_room
-from tidegate.lint.derived.levels.placement_facts import NOT_PLACED, PLACED_ROLES
-from tidegate.lint.derived.levels.trip_levels import has_no_hysteresis, hysteresis_window, typical_hysteresis_v
-from tidegate.lint.derived.reset_path.logic_signal import origin
+from tidegate.lint.derived.disturbance.disturbance import BUMP_FORMULAS
+from tidegate.lint.derived.disturbance.hysteresis_need import need_at_coverage, need_over_life
+from tidegate.lint.derived.disturbance.term_text import terms_text
+from tidegate.lint.derived.levels.at_code import as_shipped
+from tidegate.lint.derived.levels.level_room import level_room
+from tidegate.lint.derived.levels.placed_roles import NOT_PLACED, PLACED_ROLES
+from tidegate.lint.derived.levels.requirements import protects_nothing
+from tidegate.lint.derived.levels.trip_causes import LEVEL_FORMULAS
+from tidegate.lint.derived.levels.trip_levels import has_no_hysteresis, hysteresis_window
 from tidegate.lint.derived.safe_rounding import show_down, show_up
-from tidegate.lint.description.model.detector import Comparator, Hysteresis, Switch
-from tidegate.lint.description.model.supply import Rail
-from tidegate.lint.judgement import Judgement, Level, Measure, Relation
-from tidegate.lint.physics import hysteresis, noise
-from tidegate.lint.physics.ramp import ramp_slope_v_per_s
+from tidegate.lint.description.model.description import Description
+from tidegate.lint.description.model.detector import Comparator, Hysteresis
+from tidegate.lint.facts.reading import MissingFactsError
+from tidegate.lint.judgement import Judgement, Level
+from tidegate.lint.physics import coupling, hysteresis, lasting_bump, noise, trip_window
 from tidegate.lint.quantity import Dimension, Voltage, show
-from tidegate.lint.rule import Example, Rule, rule
+from tidegate.lint.rule import Example, Rule, Yield, rule
+from tidegate.rules.hysteresis_made import feedback_comes_in_time, hysteresis_moves_away, switches_are_complementary
 
 _V: Final = Dimension.VOLTAGE
 _COMMON_PRACTICE: Final = "common practice, no source: every comparator that judges a supply has some hysteresis"
-_OTHER: Final = {"high": "low", "low": "high"}
-_PLACE_APART: Final = "place the rising level above the falling one by the hysteresis"
-_NO_HYSTERESIS: Final = "there is no hysteresis to judge (hysteresis/present says so)"
-_WRONG_SENSE: Final = "its rising level can lie below its falling one (hysteresis/sense says so)"
+_NONE_OR_WRONG: Final = ("hysteresis/present", "hysteresis/sense")
 
 
-def _rail(case: Case, comparator: Comparator) -> Rail:
-    return case.description.rails[comparator.watches]
+def _loads_of(comparator: Any, description: Description) -> Iterator[str]:
+    """The loads that need the rail of a detector."""
+    for load in description.loads.values():
+        if any(need.rail == comparator.watches for need in load.needs):
+            yield load.id
 
 
 @rule(
@@ -38,8 +45,9 @@ def _rail(case: Case, comparator: Comparator) -> Rail:
     title="every comparator has hysteresis",
     level=Level.ERROR,
     applies_to="comparators",
-    proves="The two levels differ, typically at least, so that a supply resting at the level gives one decision. In "
-    "which sense, and whether by enough, other rules of the family judge.",
+    proves="The two levels differ, so that a supply resting at the level gives one decision: an amount is stated that "
+    "is not nothing, or levels that are not one. In which sense, and whether by enough, other rules of the family "
+    "judge.",
     facts=("comparators.*.hysteresis", "or both levels of comparators.*.trip (or codes and ships_with)"),
     mend="give the comparator a hysteresis that covers what disturbs it",
     sources=(_COMMON_PRACTICE,),
@@ -47,75 +55,64 @@ def _rail(case: Case, comparator: Comparator) -> Rail:
         fails="comparators: {uv: {hysteresis: none}}",
         holds="comparators: {uv: {hysteresis: {amount: 50 mV}}}",
     ),
-)
+    formulas=(
+        noise.false_trip_distance_v, hysteresis.release_droop_v, coupling.bump_peak_v, coupling.charge_kick_v,
+        lasting_bump.lasting_bump_v, lasting_bump.decayed_kick_v,
+    ),
+)  # fmt: skip
 def hysteresis_present(comparator: Comparator, case: Case) -> Judgement:
     """Pass if there is some; its sign and its size are for other rules to judge."""
     if not has_no_hysteresis(comparator):
-        window = case.attempt(lambda: hysteresis_window(case, comparator))
-        size_v = typical_hysteresis_v(comparator)
-        if window is None and size_v is not None:
-            return case.passes(f"has hysteresis, about {show(abs(size_v), _V)}", at="hysteresis")
-        window = hysteresis_window(case, comparator)
-        return case.passes(f"has hysteresis, {_window_text(window.least_v, window.most_v)}", at="hysteresis")
-    needed_v = case.attempt(
-        lambda: disturbance(case, comparator, dip_anywhere=True).with_noise_v(noise_v(case, comparator))
-    )
+        return case.passes(f"has hysteresis, {_size_text(comparator, case)}", at="hysteresis")
+    needed_v = case.if_known(lambda: _needed_v(comparator, case))
     covers = "that covers ripple, droop at release, neighbours and noise"
     size = covers if needed_v is None else f"of at least {show_up(needed_v, _V)}"
     return case.fails("has no hysteresis", mend=f"add hysteresis {size}", at="hysteresis")
 
 
-def _window_text(least_v: float, most_v: float) -> str:
-    return show(least_v, _V) if least_v == most_v else f"{show(least_v, _V)} to {show(most_v, _V)}"
+def _needed_v(comparator: Comparator, case: Case) -> float:
+    """What a hysteresis that is yet to be made must be, in V; a dip counts wherever it is: there are no levels yet."""
+    over_life = case.if_known(lambda: need_over_life(case, comparator, placed=False).value)
+    return max(need_at_coverage(case, comparator, placed=False).value, over_life or 0.0)
 
 
-@rule(
-    "hysteresis/sense",
-    title="the decision moves the level away from the supply",
-    level=Level.ERROR,
-    applies_to="comparators",
-    proves="The feedback is positive: after a decision the supply must come back by the hysteresis to undo it. With "
-    "the opposite sense the comparator oscillates at its level.",
-    facts=("comparators.*.trip.rising", "comparators.*.trip.falling", "comparators.*.hysteresis.feedback"),
-    mend="swap the two switches, or the two ends of the feedback",
-    sources=("Texas Instruments SBOA313, comparator with hysteresis: the levels move apart with positive feedback",),
-    example=Example(
-        fails="comparators: {uv: {hysteresis: {feedback: negative}}}",
-        holds="comparators: {uv: {hysteresis: {feedback: positive}}}",
-    ),
-    formulas=(hysteresis.positive_feedback_levels_v,),
-)
-def hysteresis_moves_away(comparator: Comparator, case: Case) -> Judgement:
-    """Pass if rising lies above falling and the feedback is positive."""
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NO_HYSTERESIS)
-    if isinstance(comparator.hysteresis, Hysteresis) and comparator.hysteresis.feedback == "negative":
-        return case.fails(
-            "the feedback moves the level towards the supply: it oscillates at its level",
-            mend="make the feedback positive: swap the two switches, or the two ends of the feedback",
-            at="hysteresis.feedback",
-        )
-    up_v, down_v = _middle_v(comparator, "rising"), _middle_v(comparator, "falling")
-    if up_v is not None and down_v is not None and up_v < down_v:
-        return case.fails(
-            f"the rising level lies below the falling one ({show(up_v, _V)} rising, {show(down_v, _V)} falling)",
-            mend=_PLACE_APART,
-            at="trip",
-        )
-    _, window = case.gather(lambda: case.own.must("hysteresis.feedback"), lambda: hysteresis_window(case, comparator))
-    if window.least_v < 0.0:
-        return case.fails(
-            f"the rising level can lie below the falling one ({show(-window.least_v, _V)} below at the worst)",
-            mend=_PLACE_APART,
-            at="trip",
-        )
-    return case.passes("the decision moves the level away from the supply", at="hysteresis.feedback")
+def _size_text(comparator: Comparator, case: Case) -> str:
+    """How large it is, as far as it is said.
+
+    Raises: MissingFactsError: where it is not said that there is any.
+    """
+    said = comparator.hysteresis
+    amount = said.amount if isinstance(said, Hysteresis) else None
+    if amount is not None:
+        if not any((amount.least, amount.typical, amount.most)):
+            raise MissingFactsError([case.of(comparator).hysteresis.amount.path + ".max"])
+        return _span_text(amount)
+    trip = as_shipped(case, comparator).trip
+    up, down = (None, None) if trip is None else (trip.rising, trip.falling)
+    if up is None or down is None or not _differ(up, down):
+        raise MissingFactsError([case.of(comparator).hysteresis.amount.path])
+    window = hysteresis_window(case, comparator)
+    ends_v = case.if_known(lambda: (window.least_v, window.most_v))
+    if ends_v is not None:
+        return _span_text(Voltage(ends_v[0], None, ends_v[1]))
+    if up.typical is not None and down.typical is not None:
+        return f"typically {show(abs(up.typical - down.typical), _V)}"
+    return "of a size that is not said"
 
 
-def _middle_v(comparator: Comparator, which: str) -> float | None:
-    trip = as_far_as_said(comparator).trip
-    span: Voltage | None = getattr(trip, which) if trip is not None else None
-    return None if span is None else span.middle
+def _differ(up: Voltage, down: Voltage) -> bool:
+    """Whether two levels are said to differ; equal ranges do not say that they are one."""
+    ends = ((up.least, down.least), (up.typical, down.typical), (up.most, down.most))
+    return any(None not in pair and pair[0] != pair[1] for pair in ends)
+
+
+def _span_text(span: Voltage) -> str:
+    """A span in words; what is said at one end says nothing of the other."""
+    least, typical, most = (None if end is None else show(end, _V) for end in (span.least, span.typical, span.most))
+    if least is not None and most is not None:
+        return least if least == most else f"{least} to {most}"
+    ends = ((typical, "typically"), (least, "at least"), (most, "at most"))
+    return ", ".join(f"{words} {end}" for end, words in ends if end is not None)
 
 
 @rule(
@@ -142,29 +139,23 @@ def _middle_v(comparator: Comparator, which: str) -> float | None:
         fails="comparators: {uv: {trip: {rising: 1.651 V}, hysteresis: {amount: {min: 20 mV, max: 28 mV}}}}",
         holds="comparators: {uv: {trip: {rising: 1.677 V}, hysteresis: {amount: {min: 46 mV, max: 54 mV}}}}",
     ),
-    formulas=(hysteresis.disturbance_v, hysteresis.release_droop_v),
+    formulas=(*LEVEL_FORMULAS, hysteresis.release_droop_v, *BUMP_FORMULAS),
+    yields=_NONE_OR_WRONG,
 )  # fmt: skip
 def hysteresis_covers_disturbance(comparator: Comparator, case: Case) -> Judgement:
     """Compare the least hysteresis with the sum of disturbances."""
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NO_HYSTERESIS)
-    random_v, disturbed, window = case.gather(
-        lambda: noise_v(case, comparator),
-        lambda: disturbance(case, comparator),
-        lambda: hysteresis_window(case, comparator),
-    )
-    if window.least_v < 0.0:
-        return case.not_applicable(_WRONG_SENSE)
-    need_v = disturbed.with_noise_v(random_v)
+    return _held_against(comparator, case, need_at_coverage(case, comparator), at="hysteresis.amount")
+
+
+def _held_against(comparator: Comparator, case: Case, need: Sum, *, at: str) -> Judgement:
+    """Compare the least hysteresis with what it must be."""
+    least = hysteresis_window(case, comparator).end("least")
+    known = not any(line.waits for line in (*need.lines, *least.lines))
+    more = "" if known else ", and more by what is not known yet"
     return case.at_least(
-        need=need_v,
-        have=window.least_v,
-        dimension=_V,
-        says="hysteresis",
-        why=f"{disturbed.text()} + {show(random_v, _V)} noise",
-        mend=f"at least {show_up(need_v, _V)} of hysteresis; now {show(window.least_v, _V)}",
-        at="hysteresis.amount",
-    )
+        need=need, have=least, dimension=_V, says="hysteresis", why=terms_text(case, need.lines) or "nothing",
+        mend=f"at least {show_up(need.value, _V)} of hysteresis; now {show(least.value, _V)}{more}", at=at,
+    )  # fmt: skip
 
 
 @rule(
@@ -185,37 +176,12 @@ def hysteresis_covers_disturbance(comparator: Comparator, case: Case) -> Judgeme
         fails="comparators: {uv: {noise: {rms: 2.5 mV}}}",
         holds="comparators: {uv: {noise: {rms: 0.5 mV}}}",
     ),
-    formulas=(noise.false_trip_distance_v, noise.zero_level_rate_hz),
+    formulas=(*LEVEL_FORMULAS, noise.false_trip_distance_v, hysteresis.release_droop_v, *BUMP_FORMULAS),
+    yields=(*_NONE_OR_WRONG, "hysteresis/covers_disturbance"),
 )  # fmt: skip
 def noise_trips_seldom(comparator: Comparator, case: Case) -> Judgement:
-    """Compare what the disturbances leave of the hysteresis with the distance that noise needs."""
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NO_HYSTERESIS)
-    own, whole = case.own, case.whole
-    sigma_v, bandwidth_hz = own.most("noise.rms"), own.most("noise.bandwidth")
-    life_s, allowed = whole.most("conditions.service_life"), whole.number("conditions.false_trips")
-    disturbed, window = case.gather(lambda: disturbance(case, comparator), lambda: hysteresis_window(case, comparator))
-    if window.least_v < 0.0:
-        return case.not_applicable(_WRONG_SENSE)
-    random_v = case.attempt(lambda: noise_v(case, comparator))
-    if random_v is not None and not _covers(window.least_v, disturbed.with_noise_v(random_v)):
-        return case.not_applicable("the hysteresis does not cover what disturbs it (hysteresis/covers_disturbance)")
-    need_v = noise.false_trip_distance_v(
-        sigma_v=sigma_v, bandwidth_hz=bandwidth_hz, life_s=life_s, allowed_trips=allowed
-    )
-    return case.at_least(
-        need=need_v,
-        have=window.least_v - disturbed.total_v,
-        dimension=_V,
-        says="the hysteresis leaves noise a distance of",
-        why=f"{show(window.least_v, _V)} less {disturbed.text()}; {show(sigma_v, _V)} r.m.s. of noise",
-        mend=f"at least {show_up(need_v + disturbed.total_v, _V)} of hysteresis; now {show(window.least_v, _V)}",
-        at="noise",
-    )
-
-
-def _covers(have_v: float, need_v: float) -> bool:
-    return Measure(need_v, have_v, _V, Relation.AT_LEAST).holds
+    """Compare the least hysteresis with the disturbances and the distance that noise needs."""
+    return _held_against(comparator, case, need_over_life(case, comparator), at="noise")
 
 
 @rule(
@@ -237,143 +203,33 @@ def _covers(have_v: float, need_v: float) -> bool:
         fails="comparators: {uv: {trip: {rising: 1.734 V}, hysteresis: {amount: {min: 98 mV, max: 116 mV}}}}",
         holds="comparators: {uv: {trip: {rising: 1.677 V}, hysteresis: {amount: {min: 46 mV, max: 54 mV}}}}",
     ),
+    formulas=(*LEVEL_FORMULAS, trip_window.response_time_s, trip_window.droop_during_response_v),
+    yields=("trip_window/spread", Yield("description/loads", _loads_of)),
 )
 def hysteresis_fits_window(comparator: Comparator, case: Case) -> Judgement:
     """Compare the greatest hysteresis with what the spread leaves of the room."""
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NO_HYSTERESIS)
     if comparator.role not in PLACED_ROLES:
         return case.not_applicable(NOT_PLACED)
-    room = level_room(case, comparator)
+    room = None if protects_nothing(case, comparator) else level_room(case, comparator)
     if room is None:
         return case.not_applicable("nothing that it guards sets it a limit (trip_window/release judges its levels)")
-    if room.apart_by_description:
-        return case.not_applicable(NEVER_APART)
-    if not room.spread_fits:
-        return case.not_applicable("its error alone takes more room than there is (trip_window/spread says so)")
-    if room.hysteresis_v < 0.0:
-        return case.not_applicable(_WRONG_SENSE)
-    return case.at_most(
-        need=room.left_v,
-        have=room.hysteresis_v,
-        dimension=_V,
-        says="greatest hysteresis",
-        why=f"room of {show(room.room_v, _V)}, of which the {room.protects.level.value} level takes "
-        f"{show(room.spread_v, _V)}: {room.protects.why}; {room.returns.why}",
-        mend=f"at most {show_down(room.left_v, _V)} of hysteresis; now {show(room.hysteresis_v, _V)}",
+    left, apart = room.left, room.hysteresis
+    if apart.value < 0.0:  # levels that cross take no room for hysteresis
+        apart = msgspec.structs.replace(apart, value=0.0, lines=())
+    now = f"now {show(apart.value, _V)}"
+    judged = case.at_most(
+        need=left, have=apart, dimension=_V, says="greatest hysteresis",
+        why=f"room of {show(room.room.value, _V)}, of which the {room.protects.which} level takes "
+        f"{show(room.spread.value, _V)}: {room.protects.why}; {room.returns.why}",
+        mend=f"at most {show_down(left.value, _V)} of hysteresis; {now}"
+        if left.value > 0.0
+        else "a smaller error, or more room: as it is, there is none for hysteresis",
         at="hysteresis.amount",
-    )
-
-
-@rule(
-    "hysteresis/switches_complementary",
-    title="the two switches of a switched level are never both open or both closed",
-    level=Level.ERROR,
-    applies_to="comparators",
-    proves="A level that is switched between two taps or references is chosen by exactly two switches that the same "
-    "output turns, as it is or inverted by stages, one when it is high and one when it is low.",
-    facts=(
-        "comparators.*.hysteresis.made_by",
-        "comparators.*.hysteresis.switches",
-        "output_stages.*.kind and inverting of stages between output and switch",
-    ),
-    mend="turn both switches from the same output, one when it is high and one when it is low",
-    sources=("common practice, no source: a level with no switch closed floats, one with both closed shorts two taps",),
-    example=Example(
-        fails="comparators: {uv: {hysteresis: {switches: "
-        "[{turned_by: uv, closed_when: high}, {turned_by: uv, closed_when: high}]}}}",
-        holds="comparators: {uv: {hysteresis: {switches: "
-        "[{turned_by: uv, closed_when: high}, {turned_by: uv, closed_when: low}]}}}",
-    ),
-)
-def switches_are_complementary(comparator: Comparator, case: Case) -> Judgement:
-    """Pass if two switches hang on one output, as it is or inverted, and only one of them is closed at a time."""
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NO_HYSTERESIS)
-    made_by = case.own.must("hysteresis.made_by")
-    if made_by not in ("switched_reference", "switched_tap"):
-        return case.not_applicable(f"its hysteresis is made by {made_by}, without switches")
-    assert isinstance(comparator.hysteresis, Hysteresis)
-    switches = comparator.hysteresis.switches
-    _note_missing(case, switches)
-    mend = "two switches turned by one output, one closed when it is high and one when it is low"
-    if len(switches) != 2:
-        return case.fails(f"has {len(switches)} switches for two levels", mend=mend, at="hysteresis.switches")
-    first, second = switches
-    one, other = case.gather(lambda: origin(case, str(first.turned_by)), lambda: origin(case, str(second.turned_by)))
-    names = str(first.turned_by) if first.turned_by == second.turned_by else f"{first.turned_by} and {second.turned_by}"
-    if one.element != other.element:
-        what = f"its two switches are turned by {names}: both can be open, or closed"
-        return case.fails(what, mend=mend, at="hysteresis.switches")
-    alike = (first.closed_when == second.closed_when) == (one.inverted == other.inverted)
-    if alike:
-        when = first.closed_when if one.inverted is False else _OTHER[str(first.closed_when)]
-        what = f"both switches are closed when {one.element} is {when}"
-        return case.fails(what, mend=mend, at="hysteresis.switches")
-    return case.passes(f"its switches take turns with {names}", at="hysteresis.switches")
-
-
-def _note_missing(case: Case, switches: tuple[Switch, ...]) -> None:
-    if not switches:
-        case.own.lacks("hysteresis.switches")
-    for index, switch in enumerate(switches):
-        for fact in ("turned_by", "closed_when"):
-            if getattr(switch, fact) is None:
-                case.own.lacks(f"hysteresis.switches.{index}.{fact}")
-    case.settle()
-
-
-@rule(
-    "hysteresis/feedback_in_time",
-    title="the level has moved before the supply can come back",
-    level=Level.WARNING,
-    applies_to="comparators",
-    proves="While the level has not moved yet, the supply (on its fastest ramp, or on the steepest part of its ripple) "
-    "travels less than the least hysteresis; else it can cross the old level again before the new one is there.",
-    facts=(
-        "comparators.*.hysteresis.feedback_delay", "rails.*.rise", "rails.*.nominal", "rails.*.ripple",
-        "comparators.*.hysteresis.amount",
-    ),
-    mend="a faster feedback, or a slower supply",
-    sources=("distance is slope times time (derived)",),
-    example=Example(
-        fails="comparators: {uv: {hysteresis: {feedback_delay: 5 us}}}",
-        holds="comparators: {uv: {hysteresis: {feedback_delay: 0.1 us}}}",
-    ),
-    formulas=(hysteresis.supply_travel_v, hysteresis.steepest_ripple_v_per_s),
-)  # fmt: skip
-def feedback_comes_in_time(comparator: Comparator, case: Case) -> Judgement:
-    """Compare the travel of the supply during the feedback delay with the least hysteresis."""
-    if has_no_hysteresis(comparator):
-        return case.not_applicable(_NO_HYSTERESIS)
-    facts = case.of(_rail(case, comparator))
-    delay_s = case.own.most("hysteresis.feedback_delay")
-    nominal_v, rise_s = facts.middle("nominal"), facts.least("rise")
-    ripple_v = facts.most("ripple.peak_to_peak")
-    frequency_hz = None if ripple_v == 0.0 else facts.most("ripple.frequency")
-    kept_v = hysteresis_window(case, comparator).least_v
-    case.settle()
-    if kept_v < 0.0:
-        return case.not_applicable(_WRONG_SENSE)
-    ramp_v_per_s = ramp_slope_v_per_s(rise_v=nominal_v, rise_s=rise_s)
-    ripple_v_per_s = (
-        0.0
-        if frequency_hz is None
-        else hysteresis.steepest_ripple_v_per_s(peak_to_peak_v=ripple_v, frequency_hz=frequency_hz)
-    )
-    fastest_v_per_s = max(ramp_v_per_s, ripple_v_per_s)
-    travel_v = hysteresis.supply_travel_v(slope_v_per_s=fastest_v_per_s, delay_s=delay_s)
-    what = "ramp" if fastest_v_per_s == ramp_v_per_s else "ripple"
-    allowed_s = kept_v / fastest_v_per_s if fastest_v_per_s > 0.0 else math.inf
-    return case.at_most(
-        need=kept_v,
-        have=travel_v,
-        dimension=_V,
-        says="until the level has moved, the supply travels",
-        why=f"{show(delay_s, Dimension.DURATION)} at {show(fastest_v_per_s, Dimension.SLOPE)}, the fastest {what}",
-        mend=f"a feedback delay of at most {show_down(allowed_s, Dimension.DURATION)}; "
-        f"now {show(delay_s, Dimension.DURATION)}",
-        at="hysteresis.feedback_delay",
+    )  # fmt: skip
+    if left.value >= 0.0:
+        return judged
+    return msgspec.structs.replace(
+        judged, message=f"greatest hysteresis {show(apart.value, _V)}, and no room is left for any"
     )
 
 

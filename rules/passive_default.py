@@ -2,43 +2,44 @@
 
 from __future__ import annotations
 
-import math
-from typing import Final
+from collections.abc import Iterable, Mapping, Sequence
+from functools import partial
+from typing import Any, Final
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.reset_path.follows_alive import not_alive
-from tidegate.lint.derived.reset_path.held_node import (
-    drives_reset,
-    held_node,
-    larger_hold,
-    reads_it,
-    sure_high,
-    sure_low,
-)
+from tidegate.lint.derived.reset_path import held_node
+from tidegate.lint.derived.reset_path.dead_output import dead_output, says_dead_output
+from tidegate.lint.derived.reset_path.follows_alive import why_not_alive
+from tidegate.lint.derived.reset_path.held_node import drives_reset, reads_it
+from tidegate.lint.derived.reset_path.path_gaps import gaps_onward
 from tidegate.lint.derived.reset_path.reset_path import arrivals, onward
 from tidegate.lint.derived.safe_rounding import show_up
-from tidegate.lint.derived.supply.rail_of import delivered_v, rail_of
-from tidegate.lint.derived.supply.standing_current import circuit_takers, hold_takers, largest_first, stages_in
+from tidegate.lint.derived.supply.rail_of import rail_of
+from tidegate.lint.derived.supply.standing_current import circuit_draws, drawn, hold_draws, largest_first
+from tidegate.lint.derived.unsaid import found_out, missing
+from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Hold, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain
+from tidegate.lint.facts.reading import Better
 from tidegate.lint.graph.edge import EdgeKind, Hop
 from tidegate.lint.judgement import Judgement, Level
-from tidegate.lint.physics import hold, logic_levels
+from tidegate.lint.physics import hold, ramp
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 
 _V: Final = Dimension.VOLTAGE
 _A: Final = Dimension.CURRENT
-_OHM: Final = Dimension.RESISTANCE
-_OPPOSITE: Final = {"low": "high", "high": "low"}
+_OPPOSITE: Final[Mapping[held_node.Level, held_node.Level]] = {"low": "high", "high": "low"}
 _NO_RESET: Final = "no reset net lies behind it"
+_NOTHING: Final = "it drives nothing"
 _TAKERS_SHOWN: Final = 4
 _COMMON_PRACTICE: Final = "common practice, no source: what nothing drives is held in its safe state"
 _LEVELS: Final = "JEDEC JESD8 family, input levels at a pin, as quoted by others (see the formula)"
 
 _STRETCH: Final = """output_stages:
   stretch: {{driven_by: [gather], domain: {domain}, kind: buffer, inverting: false, hold: none, works_from: 0.7 V,
-    threshold: {{min: 0.4 V, max: 1.25 V}}, input_edge: 60 ns, load: 40 fF, delay: {{min: 5 ns, max: 60 ns}}}}
+    threshold: {{min: 0.4 V, max: 1.25 V}}, input_edge: 60 ns, load: 40 fF, delay: {{min: 5 ns, max: 60 ns}},
+    consumes: 5 nA}}
   core_out: {{driven_by: [uv_core, stretch]}}
 """  # a stage between two that are held
 _FIRM: Final = """output_stages: {{rst_out: {{drive: {{max: {drive}}}, load: 200 fF,
@@ -46,53 +47,80 @@ _FIRM: Final = """output_stages: {{rst_out: {{drive: {{max: {drive}}}, load: 200
 """
 
 
-def _why_no_hold(case: Case, stage: OutputStage) -> str:
-    """Why there is no hold to judge."""
+def _unheld(stage: OutputStage, case: Case, gaps: tuple[str, ...], *, leads: bool, nowhere: str) -> Judgement | None:
+    """Why there is no hold to judge; None where there is one.
+
+    Raises: MissingFactsError: where it is not said what holds the stage, or whether it leads anywhere.
+    """
     if stage.hold == "none":
-        return "nothing holds its output"
-    asking = "held" if drives_reset(case, stage) else "chain_alive"
-    return f"it is not said what holds its output (passive_default/{asking} asks for it)"
+        return case.not_applicable("nothing holds its output")
+    if not leads and not gaps:
+        return case.not_applicable(nowhere)
+    if not leads:
+        missing(gaps)
+    case.of(stage).hold.must()
+    return None
 
 
 @rule(
     "passive_default/held",
-    title="every stage that drives a reset net is held while it is not alive",
+    title="every driver of a reset net leaves it at a level while it is not alive",
     level=Level.ERROR,
     applies_to="resets",
-    proves="The output of each element that drives the net directly has a passive hold, so that the net has a level "
-    "before its drivers work. A comparator's output has no hold: a net that a comparator drives directly is not held.",
-    facts=("resets.*.driven_by", "output_stages.*.hold of each stage named there"),
+    proves="The net has a level before its drivers work: the output of each stage that drives it directly has a "
+    "passive hold, and a detector that drives it directly is said to assert it while it cannot decide, by itself or by "
+    "what holds its output. One that is said to let the net go meanwhile counts where another driver keeps it in "
+    "reset, unless all must agree. How a detector is drawn says nothing of it.",
+    facts=(
+        "resets.*.driven_by", "output_stages.*.hold of each stage named there",
+        "comparators.*.undecided of each detector named there",
+    ),
     mend="hold the output of the last stage through a resistor, at the level at which the net resets",
     sources=(_COMMON_PRACTICE,),
     example=Example(
         fails="output_stages: {rst_out: {hold: none}}",
         holds="output_stages: {rst_out: {hold: {to: low, through: resistor}}}",
     ),
-)
+)  # fmt: skip
 def reset_net_is_held(reset: Reset, case: Case) -> Judgement:
-    """Pass if every driver of the net is a stage with a hold."""
-    drivers = [case.graph.elements[name] for name in case.own.must("driven_by")]
-    stages = [driver for driver in drivers if isinstance(driver, OutputStage)]
-    bare = [driver.id for driver in drivers if not isinstance(driver, OutputStage)]
-    loose = [stage.id for stage in stages if stage.hold == "none"]
-    if bare or loose:
-        level = f"{reset.active} " if reset.active else ""
-        found, mends = [], []
-        if bare:
-            found.append(f"driven directly by {' and '.join(bare)}: the output of a comparator has no hold")
-            mends.append(f"put a stage with an output held {level}between {' and '.join(bare)} and the net")
-        if loose:
-            found.append(f"nothing holds the output of {' and of '.join(loose)}, which drives it")
-            mends.append(f"hold the output of {' and of '.join(loose)} {level}through a resistor")
-        path = (Hop((bare or loose)[0], ""), Hop(reset.id, EdgeKind.DRIVES.forwards))
-        return case.fails("; ".join(found), mend="; ".join(mends), at="driven_by", path=path)
-    if not drivers:
-        case.own.lacks("driven_by")
-    for stage in stages:
-        if stage.hold is None:
-            case.of(stage).lacks("hold")
-    case.settle()
-    return case.passes(f"held by {' and '.join(stage.id for stage in stages)}", at="driven_by")
+    """Pass if every driver of the net leaves it at a level, and one of them in reset."""
+    drivers: dict[str, Any] = {name: case.graph.elements[name] for name in case.of(reset).driven_by.must()}
+    outputs = {name: dead_output(driver) for name, driver in drivers.items()}
+    loose = [name for name, output in outputs.items() if output == "loose"]
+    if loose:
+        return _loose_drivers(reset, case, [drivers[name] for name in loose])
+    if unknown := [name for name, output in outputs.items() if output is None]:
+        missing(tuple(says_dead_output(drivers[name]) for name in unknown))
+    kept = [name for name, output in outputs.items() if output == "kept"]
+    let_go = [name for name, output in outputs.items() if output == "let go"]
+    if let_go and (not kept or case.of(reset).combine.must() == "all_agree"):
+        agree = "all must agree" if kept else "nothing else keeps it in reset"
+        return case.fails(
+            f"{_and(let_go)} {'let' if len(let_go) > 1 else 'lets'} it go while unable to decide, and {agree}",
+            mend=f"let {_and(let_go)} assert until able to decide, or any of the drivers keep the net in reset",
+            at="driven_by", path=(Hop(let_go[0], ""), Hop(reset.id, EdgeKind.DRIVES.forwards)),
+        )  # fmt: skip
+    return case.passes(f"held by {_and(kept)}", at="driven_by")
+
+
+def _loose_drivers(reset: Reset, case: Case, loose: Sequence[OutputStage | Comparator]) -> Judgement:
+    """Say what leaves a net at no level."""
+    stages = [driver.id for driver in loose if isinstance(driver, OutputStage)]
+    bare = [driver.id for driver in loose if isinstance(driver, Comparator)]
+    level = f"{reset.active} " if reset.active else ""
+    found, mends = [], []
+    if bare:
+        found.append(f"driven directly by {_and(bare)}, whose output is not defined while it cannot decide")
+        mends.append(f"put a stage with an output held {level}between {_and(bare)} and the net")
+    if stages:
+        found.append(f"nothing holds the output of {' and of '.join(stages)}, which drives it")
+        mends.append(f"hold the output of {' and of '.join(stages)} {level}through a resistor")
+    path = (Hop((bare or stages)[0], ""), Hop(reset.id, EdgeKind.DRIVES.forwards))
+    return case.fails("; ".join(found), mend="; ".join(mends), at="driven_by", path=path)
+
+
+def _and(names: Iterable[str]) -> str:
+    return " and ".join(dict.fromkeys(names))
 
 
 @rule(
@@ -100,9 +128,9 @@ def reset_net_is_held(reset: Reset, case: Case) -> Judgement:
     title="every stage after a hold is alive, or held too",
     level=Level.ERROR,
     applies_to="output_stages",
-    proves="The level of a hold comes through to each reset net: every stage on a way there is held itself, or lives, "
-    "with nothing that gates it, in a domain that is always on, on the same rail or on one that is up before. Whether "
-    "the last stage of all is held, passive_default/held says.",
+    proves="The level of a hold comes through to the last stage of each reset net behind it: every stage on a way "
+    "there is held itself, or lives, with nothing that gates it, in a domain that is always on, on the same rail or on "
+    "one that is up before. The stages that drive a net are judged by passive_default/held.",
     facts=(
         "output_stages.*.hold", "output_stages.*.domain", "output_stages.*.gated_by", "domains.*.kind",
         "domains.*.rail", "rails.*.after and rails.*.made_by, where the rails differ",
@@ -115,36 +143,29 @@ def reset_net_is_held(reset: Reset, case: Case) -> Judgement:
     ),
 )  # fmt: skip
 def stages_after_hold_are_alive(stage: OutputStage, case: Case) -> Judgement:
-    """Pass if every stage between the hold and each reset net is alive or held."""
-    if stage.hold == "none" or (stage.hold is None and drives_reset(case, stage)):
-        return case.not_applicable(_why_no_hold(case, stage))
-    behind = onward(case, stage)
-    if not behind.resets:
-        return case.not_applicable(_NO_RESET)
-    case.own.must("hold")
-    if not behind.stages:
-        return case.passes("no stage comes after its hold", at="hold")
-    loose = [after for after in behind.stages if not isinstance(after.hold, Hold)]
-    if not loose:
-        return case.passes("every stage after its hold is held too", at="hold")
-    rail = rail_of(case, stage)
-    dead = not_alive(case, loose, held_rail=rail)
-    between = [(after, why) for after, why in dead if not drives_reset(case, after)]
-    for after, _ in between:
-        if after.hold is None:
-            case.of(after).lacks("hold")
-    case.settle()
-    if between:
-        after, why = between[0]
-        return case.fails(
-            f"{after.id} comes after its hold, is not held, and {why}",
-            mend=f"hold the output of {after.id} too, or move it to a domain that is always on and up with {rail.id}",
-            at="hold",
-            path=behind.path(after.id),
-        )
-    if dead:
-        return case.not_applicable(f"the output of {dead[0][0].id} is not held (passive_default/held says so)")
-    return case.passes(f"alive after its hold: {', '.join(after.id for after in loose)}", at="hold")
+    """Pass if every stage between the hold and the last stage of each reset net is alive or held."""
+    behind, gaps = onward(case, stage), gaps_onward(case, stage.id)
+    if (other := _unheld(stage, case, gaps, leads=bool(behind.resets), nowhere=_NO_RESET)) is not None:
+        return other
+    loose = [one for one in behind.stages if not isinstance(one.hold, Hold) and not drives_reset(case, one)]
+    lacking = list(gaps)
+    for after in loose:
+        why, lacks = found_out(case, partial(why_not_alive, case, after, held=stage))
+        if why and after.hold == "none":
+            return case.fails(
+                f"{after.id} comes after its hold, is not held, and {why}",
+                mend=f"hold the output of {after.id} too, or move it to a domain that is always on and up with "
+                f"{rail_of(case, stage).id}", at="hold", path=behind.path(after.id),
+            )  # fmt: skip
+        lacking += [*lacks, after.fact("hold")] if why else lacks
+    if lacking:
+        missing(tuple(lacking))
+    if loose:
+        return case.passes(f"alive after its hold: {', '.join(after.id for after in loose)}", at="hold")
+    if all(isinstance(after.hold, Hold) for after in behind.stages):
+        held = "every stage after its hold is held too" if behind.stages else "no stage comes after its hold"
+        return case.passes(held, at="hold")
+    return case.passes("no stage that is not held stands between its hold and the last one", at="hold")
 
 
 @rule(
@@ -167,29 +188,25 @@ def stages_after_hold_are_alive(stage: OutputStage, case: Case) -> Judgement:
 )  # fmt: skip
 def hold_leaves_the_active_level(stage: OutputStage, case: Case) -> Judgement:
     """Pass if the level held arrives as the active level at each reset net, on every way."""
-    if not isinstance(stage.hold, Hold):
-        return case.not_applicable(_why_no_hold(case, stage))
-    behind = onward(case, stage)
-    if not behind.resets:
-        return case.not_applicable(_NO_RESET)
-    active = {reset.id: reset.active for reset in behind.resets}
-    for reset in behind.resets:
-        if reset.active is None:
-            case.of(reset).lacks("active")
-    to, found = case.gather(lambda: str(case.own.must("hold.to")), lambda: arrivals(case, stage, behind))
+    behind, gaps = onward(case, stage), gaps_onward(case, stage.id)
+    if (other := _unheld(stage, case, gaps, leads=bool(behind.resets), nowhere=_NO_RESET)) is not None:
+        return other
+    to, found = case.of(stage).hold.to.must(), arrivals(case, stage, behind)
     levels = [(arrival, _OPPOSITE[to] if arrival.inverted else to) for arrival in found]
-    wrong = [(arrival, level) for arrival, level in levels if level != active[arrival.reset.id]]
-    if not wrong:
-        nets = dict.fromkeys(f"{arrival.reset.id} {level}" for arrival, level in levels)
-        return case.passes(f"held {to}, it leaves {' and '.join(nets)}", at="hold.to", path=found[0].path)
-    arrival, level = wrong[0]
-    other_way = len(wrong) < len(levels)
-    return case.fails(
-        f"held {to}, it leaves {arrival.reset.id} {level}, which resets when {active[arrival.reset.id]}",
-        mend="one inversion more, or one less, on the way shown" if other_way else f"hold its output {_OPPOSITE[to]}",
-        at="hold.to",
-        path=arrival.path,
-    )
+    wrong = [(arrival, level) for arrival, level in levels if level != case.of(arrival.reset).active.must()]
+    if wrong:
+        arrival, level = wrong[0]
+        other_way = len(wrong) < len(levels)
+        return case.fails(
+            f"held {to}, it leaves {arrival.reset.id} {level}, which resets when {_OPPOSITE[level]}",
+            mend="one inversion more, or one less, on the way shown" if other_way
+            else f"hold its output {_OPPOSITE[to]}",
+            at="hold.to", path=arrival.path,
+        )  # fmt: skip
+    if gaps:
+        missing(gaps)
+    nets = _and(f"{arrival.reset.id} {level}" for arrival, level in levels)
+    return case.passes(f"held {to}, it leaves {nets}", at="hold.to", path=found[0].path)
 
 
 @rule(
@@ -214,40 +231,29 @@ def hold_leaves_the_active_level(stage: OutputStage, case: Case) -> Judgement:
         fails="resets: {por_n: {receivers: {leakage: {max: 500 nA}}}}",
         holds="resets: {por_n: {receivers: {leakage: {max: 2 nA}}}}",
     ),
-    formulas=(hold.undriven_level_v, hold.largest_hold_ohm, logic_levels.input_levels_v),
+    formulas=(hold.leakage_level_v, hold.ramp_level_v, hold.largest_hold_ohm, ramp.ramp_slope_v_per_s),
 )  # fmt: skip
 def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
     """Compare the level that leakage and the ramp leave with what is surely read as the level held."""
-    if not isinstance(stage.hold, Hold):
-        return case.not_applicable(_why_no_hold(case, stage))
-    if not reads_it(case, stage):
-        return case.not_applicable("it drives nothing")
-    if case.own.must("hold.to") == "low":
-        node, sure = case.gather(lambda: held_node(case, stage), lambda: sure_low(case, stage, supply="least"))
+    gaps = gaps_onward(case, stage.id)
+    if (other := _unheld(stage, case, gaps, leads=bool(reads_it(case, stage)), nowhere=_NOTHING)) is not None:
+        return other
+    to = case.of(stage).hold.to.must()
+    moved = held_node.moves(case, stage, to)
+    need = held_node.surely_read(case, stage, to, "least", gaps)
+    reads = held_node.sure_level(case, stage, to, "least").text(to)
+    moves = held_node.moves_text(case, stage, to, moved)
+    if to == "low":
         return case.at_most(
-            need=sure.level_v,
-            have=node.moves_v,
-            dimension=_V,
-            says="not driven, it rises to",
-            why=f"{node.text()}; {sure.reader} surely reads low up to {show(sure.level_v, _V)}",
-            mend="" if node.moves_v <= sure.level_v else node.smaller_hold(sure.level_v),
-            at="hold.resistance",
-        )
-    node, sure, supply_v = case.gather(
-        lambda: held_node(case, stage),
-        lambda: sure_high(case, stage, supply="least"),
-        lambda: delivered_v(case, stage, "least"),
-    )
+            need=need, have=moved, dimension=_V, says="not driven, it rises to", why=f"{moves}; {reads}",
+            mend=held_node.stronger_hold(case, stage, to, need.value), at="hold.resistance",
+        )  # fmt: skip
+    supply = held_node.supply_kept(case, stage)
     return case.at_least(
-        need=sure.level_v,
-        have=supply_v - node.moves_v,
-        dimension=_V,
-        says="not driven, it stays up at",
-        why=f"{show(supply_v, _V)} less {node.text()}; {sure.reader} surely reads high from "
-        f"{show(sure.level_v, _V)} on",
-        mend="" if node.moves_v <= supply_v - sure.level_v else node.smaller_hold(supply_v - sure.level_v),
-        at="hold.resistance",
-    )
+        need=need, have=supply.less(moved), dimension=_V, says="not driven, it stays up at",
+        why=f"{show(supply.value, _V)} less {moves}; {reads}",
+        mend=held_node.stronger_hold(case, stage, to, supply.value - need.value), at="hold.resistance",
+    )  # fmt: skip
 
 
 @rule(
@@ -268,42 +274,25 @@ def hold_is_strong_enough(stage: OutputStage, case: Case) -> Judgement:
         fails=_FIRM.format(drive="200 kohm"),
         holds=_FIRM.format(drive="8 kohm"),
     ),
-    formulas=(hold.driven_level_v, hold.smallest_hold_for_driver_ohm, logic_levels.input_levels_v),
+    formulas=(hold.driven_level_v, hold.level_left_v, hold.smallest_hold_for_driver_ohm),
 )  # fmt: skip
 def driver_wins_against_hold(stage: OutputStage, case: Case) -> Judgement:
     """Compare the level that the stage reaches against its hold with what is surely read as the opposite level."""
-    if not isinstance(stage.hold, Hold):
-        return case.not_applicable(_why_no_hold(case, stage))
-    if not reads_it(case, stage):
-        return case.not_applicable("it drives nothing")
-    drive_ohm, hold_ohm = case.own.most("drive"), case.own.least("hold.resistance")
-    through = f"{show(drive_ohm, _OHM)} of drive against a hold of {show(hold_ohm, _OHM)}"
-    if case.own.must("hold.to") == "low":
-        supply_v, sure = case.gather(
-            lambda: delivered_v(case, stage, "least"), lambda: sure_high(case, stage, supply="least")
-        )
-        moves_v = hold.driven_level_v(supply_v=supply_v, hold_ohm=hold_ohm, drive_ohm=drive_ohm)
-        return case.at_least(
-            need=sure.level_v,
-            have=moves_v,
-            dimension=_V,
-            says="driven high, it reaches",
-            why=f"{show(supply_v, _V)} through {through}; {sure.reader} surely reads high from "
-            f"{show(sure.level_v, _V)} on",
-            mend=larger_hold(supply_v=supply_v, needed_v=sure.level_v, drive_ohm=drive_ohm, hold_ohm=hold_ohm),
-            at="hold.resistance",
-        )
-    supply_v, sure = case.gather(lambda: delivered_v(case, stage, "most"), lambda: sure_low(case, stage, supply="most"))
-    moves_v = hold.driven_level_v(supply_v=supply_v, hold_ohm=hold_ohm, drive_ohm=drive_ohm)
-    return case.at_most(
-        need=sure.level_v,
-        have=supply_v - moves_v,
-        dimension=_V,
-        says="driven low, it comes down to",
-        why=f"{show(supply_v, _V)} through {through}; {sure.reader} surely reads low up to {show(sure.level_v, _V)}",
-        mend=larger_hold(supply_v=supply_v, needed_v=supply_v - sure.level_v, drive_ohm=drive_ohm, hold_ohm=hold_ohm),
-        at="hold.resistance",
-    )
+    gaps = gaps_onward(case, stage.id)
+    if (other := _unheld(stage, case, gaps, leads=bool(reads_it(case, stage)), nowhere=_NOTHING)) is not None:
+        return other
+    to = case.of(stage).hold.to.must()
+    away = _OPPOSITE[to]
+    supply: held_node.End = "least" if to == "low" else "most"
+    have = held_node.driven_v(case, stage, to)
+    need = held_node.surely_read(case, stage, away, supply, gaps)
+    answer = case.at_least if to == "low" else case.at_most
+    return answer(
+        need=need, have=have, dimension=_V,
+        says="driven high, it reaches" if to == "low" else "driven low, it comes down to",
+        why=f"{held_node.drive_text(case, stage, to)}; {held_node.sure_level(case, stage, away, supply).text(away)}",
+        mend=held_node.larger_hold(case, stage, to, need.value), at="hold.resistance",
+    )  # fmt: skip
 
 
 @rule(
@@ -311,13 +300,13 @@ def driver_wins_against_hold(stage: OutputStage, case: Case) -> Judgement:
     title="the holds fit into the current budget of their domain",
     level=Level.ERROR,
     applies_to="domains",
-    proves="With every stage driven against its least hold at the greatest supply delivered, the holds, what the "
-    "references, biases and comparators of the domain take at most, and what its stages are said to take or to leak "
-    "(a CMOS stage at rest takes no more than it leaks, so what is not said there does not count) stay within the "
-    "budget. Loads, dividers and the defaults of overrides are not counted. A domain without holds is not judged.",
+    proves="With every stage driven against its least hold at the greatest supply delivered, the holds and what the "
+    "references, biases, comparators and stages of the domain take at most stay within the budget. What does not say "
+    "where it lives may live there. Loads, dividers and the defaults of overrides are not counted. A domain in which "
+    "nothing is held is not judged.",
     facts=(
-        "domains.*.budget", "domains.*.rail", "rails.*.delivered", "output_stages.*.hold", "references.*.consumes",
-        "biases.*.consumes", "comparators.*.consumes",
+        "domains.*.budget", "domains.*.rail", "rails.*.delivered", "output_stages.*.hold", "output_stages.*.consumes",
+        "references.*.consumes", "biases.*.consumes", "comparators.*.consumes", "the domain of each of them",
     ),
     mend="larger holds, or a larger budget",
     sources=("Ohm's law; currents into one domain add up",),
@@ -329,21 +318,16 @@ def driver_wins_against_hold(stage: OutputStage, case: Case) -> Judgement:
 )  # fmt: skip
 def holds_fit_budget(domain: Domain, case: Case) -> Judgement:
     """Compare what the holds and the circuits of a domain take with its budget."""
-    if all(stage.hold == "none" for stage in stages_in(case, domain)):
+    holds = list(hold_draws(case, domain))
+    if not holds:
         return case.not_applicable("nothing in it is held")
-    budget_a = case.own.most("budget")
-    holds, circuits = case.gather(lambda: hold_takers(case, domain), lambda: circuit_takers(case, domain))
-    takers = [*holds, *circuits]
-    total_a = math.fsum(taker.current_a for taker in takers)
+    taken, budget_a = drawn(case, [*holds, *circuit_draws(case, domain)]), case.of(domain).budget.most(Better.MORE)
     return case.at_most(
-        need=budget_a,
-        have=total_a,
-        dimension=_A,
-        says="its holds and circuits take",
-        why=largest_first(takers, _TAKERS_SHOWN),
-        mend=f"take {show_up(total_a - budget_a, _A)} less, or a budget of at least {show_up(total_a, _A)}",
+        need=budget_a, have=taken, dimension=_A, says="its holds and circuits take",
+        why=largest_first(taken, _TAKERS_SHOWN),
+        mend=f"take {show_up(taken.value - budget_a, _A)} less, or a budget of at least {show_up(taken.value, _A)}",
         at="budget",
-    )
+    )  # fmt: skip
 
 
 @rule(
@@ -362,9 +346,9 @@ def holds_fit_budget(domain: Domain, case: Case) -> Judgement:
 )
 def latch_state_is_defined(stage: OutputStage, case: Case) -> Judgement:
     """Pass if the latch asserts, or releases, when its supply comes up."""
-    if case.own.must("kind") != "latch":
+    if case.of(stage).kind.must() != "latch":
         return case.not_applicable("it is no latch")
-    state = case.own.must("power_up")
+    state = case.of(stage).power_up.must()
     if state == "undefined":
         return case.fails(
             "it comes up in either state",

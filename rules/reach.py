@@ -2,23 +2,25 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable
 from functools import partial
 from typing import Any, Final
 
+from tidegate.lint.account import Sum, plus
 from tidegate.lint.case import Case
 from tidegate.lint.derived.reset_path.guarding_nets import (
     LOW_ROLES,
     detectors_behind_nets,
+    guard_gaps,
     guarding_nets,
-    note_undriven,
-    note_unsaid_guards,
     watching,
 )
+from tidegate.lint.derived.reset_path.path_gaps import gaps_behind
 from tidegate.lint.derived.safe_rounding import show_down
+from tidegate.lint.derived.unsaid import missing, not_whole
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Load, OutputStage, Reset
-from tidegate.lint.graph.dependency import Graph
+from tidegate.lint.facts.view import factors
 from tidegate.lint.graph.edge import EdgeKind, Hop
 from tidegate.lint.graph.paths import Reach, driven_by
 from tidegate.lint.judgement import Judgement, Level
@@ -27,13 +29,13 @@ from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 
 _T: Final = Dimension.DURATION
-_NO_NET: Final = "no reset net guards it (reach/has_reset says so)"
+_NO_NET: Final = "no reset net guards it"
 _AGREE: Final = (
     "common practice, no source: one of two that must agree may fail to assert, and the reset is lost with it"
 )
 
 
-def _and(names: Sequence[str]) -> str:
+def _and(names: Iterable[str]) -> str:
     return " and ".join(names)
 
 
@@ -42,8 +44,9 @@ def _and(names: Sequence[str]) -> str:
     title="every load is held in reset by some net",
     level=Level.ERROR,
     applies_to="loads",
-    proves="A reset net guards the load, or the domain it lives in. A load that makes a rail may run without one.",
-    facts=("resets.*.guards", "loads.*.domain, where a net guards a domain", "rails.*.made_by"),
+    proves="A reset net guards the load, or the domain it lives in. A load that makes a rail may run without one. It "
+    "fails only where reset nets are said to be complete.",
+    facts=("resets.*.guards", "loads.*.domain, where a net guards a domain", "rails.*.made_by", "complete"),
     mend="let a reset net guard it",
     sources=("common practice, no source: what must not run outside its range is reset there",),
     example=Example(
@@ -59,17 +62,11 @@ def load_has_a_reset(load: Load, case: Case) -> Judgement:
     makes = case.graph.tails(load.id, EdgeKind.MADE_BY)
     if makes:
         return case.not_applicable(f"it makes {_and(makes)}, and may run without a reset")
-    note_unsaid_guards(case)
-    if load.domain is None and case.graph.once(_guards_a_domain):
-        case.own.lacks("domain")
-    case.settle()
+    if gaps := guard_gaps(case, load):
+        missing(gaps)
+    if others := not_whole(case, "resets"):
+        return case.open(others, "no net that is described guards it")
     return case.fails("no reset net guards it", mend=f"let a reset net guard {load.id}, or its domain")
-
-
-def _guards_a_domain(graph: Graph) -> bool:
-    return any(
-        edge.kind is EdgeKind.GUARDS and graph.elements[edge.head].section == "domains" for edge in graph.edges()
-    )
 
 
 @rule(
@@ -77,9 +74,9 @@ def _guards_a_domain(graph: Graph) -> bool:
     title="each load is reset by detectors that judge every rail it needs",
     level=Level.ERROR,
     applies_to="loads",
-    proves="For every rail that the load needs, the decision of an under-voltage or power-on detector of that rail "
-    "reaches a net that guards the load. A rail that no such detector watches at all is judged by "
-    "coverage/under_voltage.",
+    proves="For every rail that the load needs and that an under-voltage or power-on detector watches, the decision of "
+    "such a detector reaches a net that guards the load. A rail that no such detector watches is the matter of "
+    "coverage/under_voltage, a load that no net guards that of reach/has_reset.",
     facts=("loads.*.needs", "resets.*.guards and driven_by", "output_stages.*.driven_by", "comparators.*.watches"),
     mend="lead the decision of the detector to a net that guards the load",
     sources=("common practice, no source: a reset that does not judge a rail does not protect against it",),
@@ -90,24 +87,23 @@ def _guards_a_domain(graph: Graph) -> bool:
 )
 def every_rail_is_judged(load: Load, case: Case) -> Judgement:
     """Pass if a detector of each rail resets the load."""
-    nets = guarding_nets(case.graph, load)
-    if not nets:
+    nets, gaps = guarding_nets(case.graph, load), guard_gaps(case, load)
+    if not nets and not gaps:
         return case.not_applicable(_NO_NET)
+    if not load.needs:
+        case.of(load).lacks("needs")
+        case.settle()
     behind = case.graph.once(detectors_behind_nets)
     judged = {one.watches for net in nets for one in behind[net] if one.role in LOW_ROLES}
-    rails = [need.rail for need in load.needs]
-    if not rails:
-        case.own.lacks("needs")
-        case.settle()
-    watched = {rail: watching(case.graph, rail, LOW_ROLES) for rail in rails}
-    lost = [rail for rail in rails if rail not in judged and watched[rail]]
+    watched = {need.rail: watching(case.graph, need.rail, LOW_ROLES) for need in load.needs}
+    lost = [rail for rail, detectors in watched.items() if detectors and rail not in judged]
     if not lost:
-        if not judged & set(rails):
-            return case.not_applicable(f"nobody watches {_and(rails)} (coverage/under_voltage says so)")
-        return case.passes(f"reset for {_and([rail for rail in rails if rail in judged])}")
-    for net in nets:
-        note_undriven(case, net)
-    case.settle()
+        found = [rail for rail in watched if rail in judged]
+        return (
+            case.passes(f"reset for {_and(found)}") if found else case.not_applicable(f"nobody watches {_and(watched)}")
+        )
+    if lacking := (*gaps, *(fact for net in nets for fact in gaps_behind(case, net))):
+        missing(lacking)
     rail = lost[0]
     detectors = [one.id for one in watched[rail]]
     return case.fails(
@@ -139,36 +135,49 @@ def every_rail_is_judged(load: Load, case: Case) -> Judgement:
 )
 def net_is_driven_sharply(reset: Reset, case: Case) -> Judgement:
     """Compare the slowest edge of the net with the slowest that plain inputs may see."""
-    case.own.must("driven_by")
-    stages = [case.description.output_stages[name] for name in case.graph.tails(reset.id, EdgeKind.DRIVES)
-              if name in case.description.output_stages]  # fmt: skip
+    drivers = case.of(reset).driven_by.must()
+    stages = [case.description.output_stages[name] for name in drivers if name in case.description.output_stages]
     if not stages:
-        return case.not_applicable("no stage drives it (passive_default/held says so)")
-    plain_s = case.whole.least("process.plain_edge")
-    edges = case.gather_all(partial(_edge_s, case, stage) for stage in stages)
-    edge_s, stage = max(zip(edges, stages, strict=True), key=lambda found: found[0])
-    drive_ohm, load_f = case.of(stage).most("drive"), case.of(stage).most("load")
+        return case.not_applicable("no stage drives it")
+    edges = [(_edge(case, stage), stage) for stage in stages]
+    edge, stage = max(edges, key=lambda found: found[0].value)
+    plain = case.whole.process.plain_edge
     count = reset.receivers.count if reset.receivers is not None else None
     among = f", {count} receivers among it" if count is not None else ""
     return case.at_most(
-        need=plain_s, have=edge_s, dimension=_T, says=f"{stage.id} moves it within",
-        why=f"{show(drive_ohm, Dimension.RESISTANCE)} of drive on {show(load_f, Dimension.CAPACITANCE)}{among}",
-        mend=_sharper(plain_s, drive_ohm, load_f) if edge_s > 0.0 else "", at="driven_by",
+        need=case.sum(plus("slowest edge of plain inputs", plain.least, of=plain)), have=edge, dimension=_T,
+        says=f"{stage.id} moves it within", why=f"{_driven(case, stage)}{among}",
+        mend=case.if_known(lambda: _sharper(case, stage)) or "a stronger stage, or less load", at="driven_by",
         path=(Hop(stage.id, ""), Hop(reset.id, EdgeKind.DRIVES.forwards)),
     )  # fmt: skip
 
 
-def _sharper(plain_s: float, drive_ohm: float, load_f: float) -> str:
-    """The drive, or the load, with which the edge would be no longer than asked for."""
-    tau_s = plain_s / rc_edge.TEN_TO_NINETY
+def _driven(case: Case, stage: OutputStage) -> str:
+    """What drives what, as far as it is known."""
+    own = case.of(stage)
+    drive = case.if_known(lambda: show(own.drive.most(), Dimension.RESISTANCE)) or "what is not given"
+    load = case.if_known(lambda: show(own.load.most(), Dimension.CAPACITANCE)) or "what is not given"
+    return f"{drive} of drive on {load}"
+
+
+def _sharper(case: Case, stage: OutputStage) -> str:
+    """The drive, or the load, with which the edge would be no longer than asked for; empty where there is none."""
+    tau_s = case.whole.process.plain_edge.least() / rc_edge.TEN_TO_NINETY
+    drive_ohm, load_f = case.of(stage).drive.most(), case.of(stage).load.most()
+    if not (drive_ohm > 0.0 and load_f > 0.0):
+        return ""
     drive, load = show_down(tau_s / load_f, Dimension.RESISTANCE), show_down(tau_s / drive_ohm, Dimension.CAPACITANCE)
     return f"a drive of {drive} or less, or a load of {load} or less"
 
 
+def _edge(case: Case, stage: OutputStage) -> Sum:
+    """The slowest edge that a stage makes, from a tenth to nine tenths."""
+    return case.sum(plus(f"edge of {stage.id}", partial(_edge_s, case, stage), of=case.of(stage).drive))
+
+
 def _edge_s(case: Case, stage: OutputStage) -> float:
-    drive_ohm, load_f = case.of(stage).most("drive"), case.of(stage).most("load")
-    case.settle()
-    return 0.0 if drive_ohm == 0.0 or load_f == 0.0 else rc_edge.rc_edge_s(r_ohm=drive_ohm, c_f=load_f)
+    drive_ohm, load_f = factors(case.of(stage).drive, case.of(stage).load)
+    return rc_edge.rc_edge_s(r_ohm=drive_ohm, c_f=load_f)
 
 
 @rule(
@@ -188,11 +197,12 @@ def _edge_s(case: Case, stage: OutputStage) -> float:
 )
 def release_is_synchronised(load: Load, case: Case) -> Judgement:
     """Pass if the release of a clocked load is in step with its clock."""
+    gaps = guard_gaps(case, load)
     if not guarding_nets(case.graph, load):
-        return case.not_applicable(_NO_NET)
-    if not case.own.must("clocked"):
+        return case.not_applicable(_NO_NET) if not gaps else missing(gaps)
+    if not case.of(load).clocked.must():
         return case.not_applicable("it has no clock")
-    if case.own.must("synchronised"):
+    if case.of(load).synchronised.must():
         return case.passes("released in step with its clock", at="synchronised")
     return case.fails(
         "it has a clock, and its reset is released at any time",
@@ -219,33 +229,34 @@ def _redundant_rule(section: str, word: str, example: Example) -> Rule:
 
 def _judge_combination(joint: Any, case: Case) -> Judgement:
     """Pass if any driver asserts, or if like detectors must agree for a reason that is said."""
-    drivers = case.own.must("driven_by")
+    drivers, gaps = case.of(joint).driven_by.must(), gaps_behind(case, joint.id)
     if len(drivers) < 2:
         return case.not_applicable("it has one driver")
-    if case.own.must("combine") == "any_asserts":
+    if case.of(joint).combine.must() == "any_asserts":
         return case.passes("any of its drivers asserts", at="combine")
     judged = {name: _judges(case, name) for name in drivers}
-    kinds = list(dict.fromkeys(kind for found in judged.values() for kind in found))
+    kinds = dict.fromkeys(kind for found in judged.values() for kind in found)
     unlike = next((kind for kind in kinds if any(kind not in found for found in judged.values())), None)
-    if unlike is not None:
+    if unlike is not None and not gaps:
         role, rail = unlike
         silent = next(name for name, found in judged.items() if unlike not in found)
         return case.fails(
-            f"{_and(list(drivers))} must all agree, and {silent} does not judge {rail} for {role.replace('_', ' ')}",
+            f"{_and(drivers)} must all agree, and {silent} does not judge {rail} for {role.replace('_', ' ')}",
             why=f"what judges {rail} cannot assert it alone",
             mend="combine: any_asserts",
             at="combine",
             path=(Hop(silent, ""), Hop(joint.id, EdgeKind.DRIVES.forwards)),
         )
-    if joint.combined_against == "false_reset":
-        return case.passes("like detectors must agree, against false resets", at="combined_against")
-    missed = joint.combined_against == "missed_reset"
-    return case.fails(
-        f"{_and(list(drivers))} must all agree: one that fails to assert keeps the others from it",
-        why="it is meant against a missed reset, which it makes more likely" if missed else "",
-        mend="combine: any_asserts, which is the safe way against a missed reset; or say combined_against: false_reset",
-        at="combine",
-    )
+    if case.of(joint).combined_against.must() == "missed_reset":
+        return case.fails(
+            f"{_and(drivers)} must all agree: one that fails to assert keeps the others from it",
+            why="it is meant against a missed reset, which it makes more likely",
+            mend="combine: any_asserts, which is the safe way against a missed reset",
+            at="combine",
+        )
+    if gaps:
+        missing(gaps)
+    return case.passes("like detectors must agree, against false resets", at="combined_against")
 
 
 def _judges(case: Case, driver: str) -> frozenset[tuple[str, str]]:
@@ -271,7 +282,7 @@ RULES: Final[tuple[Rule, ...]] = (
         "resets",
         "reset_net",
         Example(
-            fails="resets: {por_n: {driven_by: [rst_out, gather], combine: all_agree}}",
+            fails="resets: {por_n: {driven_by: [rst_out, gather], combine: all_agree, combined_against: missed_reset}}",
             holds="resets: {por_n: {driven_by: [rst_out, gather], combine: any_asserts}}",
         ),
     ),

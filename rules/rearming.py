@@ -5,18 +5,22 @@ from __future__ import annotations
 from functools import partial
 from typing import Final
 
+from tidegate.lint.account import Sum
 from tidegate.lint.case import Case
-from tidegate.lint.derived.levels.guarded_loads import least_supplies
+from tidegate.lint.derived.levels.guarded_loads import Bound, least_supplies
+from tidegate.lint.derived.levels.trip_causes import LEVEL_FORMULAS
 from tidegate.lint.derived.reset_path.guarding_nets import LOW_ROLES
+from tidegate.lint.derived.reset_path.path_gaps import gaps_behind, unsaid_ways
 from tidegate.lint.derived.reset_path.shortest_assertion import shortest_assertion
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.description.model.detector import Comparator
-from tidegate.lint.description.model.reset_path import Discharge, OutputStage
-from tidegate.lint.graph.paths import Reach, driven_by
-from tidegate.lint.judgement import Judgement, Level, Measure, Relation
+from tidegate.lint.description.model.reset_path import OutputStage
+from tidegate.lint.graph.paths import Reach, driven_by, drives
+from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 
+_INFINITE: Final = float("inf")
 _V: Final = Dimension.VOLTAGE
 _T: Final = Dimension.DURATION
 _DERIVED: Final = "a dip that ends above the level of re-arming brings no new reset (derived)"
@@ -42,9 +46,9 @@ _LEVEL: Final = "an output that is a level held for every supply below the thres
 )
 def reset_is_a_level(comparator: Comparator, case: Case) -> Judgement:
     """Pass for a level; for a pulse compare the level of re-arming with what the loads need."""
-    if case.own.must("output") == "level":
+    if case.of(comparator).output.must() == "level":
         return case.passes("a level, held for every supply on its side of the threshold", at="output")
-    length = case.attempt(lambda: case.own.least("pulse"))
+    length = case.if_known(case.of(comparator).pulse.least)
     pulse = "a pulse" if length is None else f"a pulse of {show(length, _T)} or more"
     if comparator.role not in LOW_ROLES:
         return case.asks(
@@ -53,34 +57,34 @@ def reset_is_a_level(comparator: Comparator, case: Case) -> Judgement:
             mend=_LEVEL,
             at="output",
         )
-    rearms_v = case.own.least("rearms_below")
-    (bounds,) = case.gather_all([partial(least_supplies, case, comparator)])
-    power_on = comparator.role == "power_on"
-    if bounds:
-        need = bounds[0]
-        measure = Measure(need.level_v, rearms_v, _V, Relation.AT_LEAST)
-        if not measure.holds:
-            return case.at_least(
-                need=need.level_v, have=rearms_v, dimension=_V,
-                says=f"resets by {pulse}, and again only after {comparator.watches} has been below",
-                why=f"{need.element} works from {show(need.level_v, _V)}: a dip that ends between "
-                f"{show(rearms_v, _V)} and that resets nothing",
-                mend=f"{_LEVEL}; or one that re-arms below {show_up(need.level_v, _V)} at its lowest",
-                at="output", path=need.path,
-            )  # fmt: skip
-    if power_on:
-        return case.fails(
-            f"resets by {pulse}, which ends however low {comparator.watches} still is",
-            why=f"it re-arms below {show(rearms_v, _V)}",
-            mend=_LEVEL,
-            at="output",
-        )
+    rearms = case.of(comparator).rearms_below
+    bounds = least_supplies(case, comparator)
+    gaps = unsaid_ways(case, Reach(comparator.id, drives(case.graph))) if comparator.role != "power_on" else ()
+    case.reading.block(gaps)
+    if gaps and not case.at_best:
+        return case.fails(f"resets by {pulse}, and may guard what needs more than brings it back", mend=_LEVEL)
+    if bounds and rearms.least() < bounds[0].level_v:
+        return _rearms_too_low(case, comparator, f"resets by {pulse}", bounds[0])
+    rearms_v = case.if_known(rearms.least)
+    again = f"it re-arms below {'a level that is not given' if rearms_v is None else show(rearms_v, _V)}"
+    ends = f"resets by {pulse}, which ends however low {comparator.watches} still is"
+    if comparator.role == "power_on":
+        return case.fails(ends, why=again, mend=_LEVEL, at="output")
     return case.asks(
-        f"resets by {pulse}, which ends however low {comparator.watches} still is",
-        why=f"rests on {comparator.watches} coming back within the pulse; it re-arms below {show(rearms_v, _V)}",
-        mend=_LEVEL,
-        at="output",
+        ends, why=f"rests on {comparator.watches} coming back within the pulse; {again}", mend=_LEVEL, at="output"
     )
+
+
+def _rearms_too_low(case: Case, comparator: Comparator, resets: str, need: Bound) -> Judgement:
+    rearms_v = case.of(comparator).rearms_below.least()
+    return case.at_least(
+        need=need.level_v, have=rearms_v, dimension=_V,
+        says=f"{resets}, and again only after {comparator.watches} has been below",
+        why=f"{need.element} works from {show(need.level_v, _V)}: a dip that ends between {show(rearms_v, _V)} and "
+        "that resets nothing",
+        mend=f"{_LEVEL}; or one that re-arms below {show_up(need.level_v, _V)} at its lowest",
+        at="output", path=need.path,
+    )  # fmt: skip
 
 
 @rule(
@@ -89,7 +93,7 @@ def reset_is_a_level(comparator: Comparator, case: Case) -> Judgement:
     level=Level.ERROR,
     applies_to="comparators",
     proves="The greatest level that may be left on the watched rail is no higher than the lowest level below which the "
-    "detector is ready to work again. A power-on detector, and one whose output is a pulse, must say that level.",
+    "detector, which asserts while the rail is too low, is ready to work again.",
     facts=("comparators.*.rearms_below", "rails.*.residual"),
     mend="a detector that re-arms below a higher level, or a rail that is discharged when it is off",
     sources=("a start from a residual level is no start from nothing (derived)",),
@@ -102,11 +106,8 @@ def residual_lies_below_rearming(comparator: Comparator, case: Case) -> Judgemen
     """Compare the residual level of the rail with the level of re-arming."""
     if comparator.role not in LOW_ROLES:
         return case.not_applicable("a rail that starts from below is nothing to it")
-    if comparator.rearms_below is None and comparator.role != "power_on" and comparator.output != "pulse":
-        return case.not_applicable("states no level of re-arming, and is not what starts the chip")
     rail = case.description.rails[comparator.watches]
-    rearms_v, residual_v = case.own.least("rearms_below"), case.of(rail).most("residual")
-    case.settle()
+    rearms_v, residual_v = case.of(comparator).rearms_below.least(), case.of(rail).residual.most()
     return case.at_most(
         need=rearms_v, have=residual_v, dimension=_V, says=f"{rail.id} may come up again from",
         why=f"ready to work again below {show(rearms_v, _V)}",
@@ -134,44 +135,48 @@ def residual_lies_below_rearming(comparator: Comparator, case: Case) -> Judgemen
         fails="output_stages: {rst_out: {discharge: none}}",
         holds="output_stages: {rst_out: {discharge: {within: 2 us}}}",
     ),
+    formulas=(*LEVEL_FORMULAS,),
 )  # fmt: skip
 def release_delay_begins_anew(stage: OutputStage, case: Case) -> Judgement:
     """Compare the time of discharge with the shortest time off and the shortest assertion."""
     if stage.release_delay is None:
         return case.not_applicable("it has no release delay")
-    if case.own.must("discharge") == "none":
-        delay = case.attempt(lambda: case.own.most("release_delay"))
+    if case.of(stage).discharge.must() == "none":
+        delay = case.if_known(case.of(stage).release_delay.most)
         length = "" if delay is None else f" of up to {show(delay, _T)}"
         return case.fails(
             f"nothing sets its release delay{length} back: the next one may be over at once",
             mend="a transistor across the capacitor that the assertion turns on",
             at="discharge",
         )
-    assert isinstance(stage.discharge, Discharge)
-    within_s = case.own.most("discharge.within")
     found = (case.graph.elements[name] for name in Reach(stage.id, driven_by(case.graph)))
     detectors = [one for one in found if isinstance(one, Comparator) and one.role in LOW_ROLES]
+    gaps = gaps_behind(case, stage.id)
     if not detectors:
+        case.missing.extend(gaps)
         case.settle()
         return case.not_applicable("no under-voltage or power-on detector stands behind it")
-    limits: list[tuple[float, str]] = []
-    for name in dict.fromkeys(one.watches for one in detectors):
-        off_s = case.of(case.description.rails[name]).least("off_time")
-        limits.append((off_s, f"{name} stays off for {show(off_s, _T)} or more"))
-    for shortest in case.gather_all(partial(shortest_assertion, case, one) for one in detectors):
+    case.reading.block(gaps)
+    limits = [(0.0, "more may stand behind it", 0.0)] if gaps and not case.at_best else []
+    limits += [_time_off(case, name) for name in dict.fromkeys(one.watches for one in detectors)]
+    for shortest in case.each(partial(shortest_assertion, case, one) for one in detectors):
         if shortest is not None:
-            limits.append(
-                (
-                    shortest.time_s,
-                    f"a dip that takes {shortest.load} out of its range makes {shortest.detector} assert for "
-                    f"{show(shortest.time_s, _T)} or more",
-                )
-            )
-    need_s, why = min(limits)
+            why = f"a dip that takes {shortest.load} out of its range makes {shortest.detector} assert for "
+            limits.append((shortest.time_s, f"{why}{show(shortest.time_s, _T)} or more", shortest.loose_s))
+    need_s, why, _ = min(limits)
+    loose_s = min(time_s + more_s for time_s, _, more_s in limits) - need_s
     return case.at_most(
-        need=need_s, have=within_s, dimension=_T, says="its release delay is set back within", why=why,
-        mend=f"a discharge within {show_down(need_s, _T)}", at="discharge.within",
+        need=Sum(need_s, (), loose_s if loose_s < _INFINITE else 0.0), have=case.of(stage).discharge.within.most(),
+        dimension=_T,
+        says="its release delay is set back within", why=why, mend=f"a discharge within {show_down(need_s, _T)}",
+        at="discharge.within",
     )  # fmt: skip
+
+
+def _time_off(case: Case, rail: str) -> tuple[float, str, float]:
+    """How long a rail stays off at the least, in s, in words, and by how much longer it may."""
+    off_s = case.of(case.description.rails[rail]).off_time.least()
+    return off_s, f"{rail} stays off for {show(off_s, _T)} or more", 0.0
 
 
 RULES: Final[tuple[Rule, ...]] = (reset_is_a_level, residual_lies_below_rearming, release_delay_begins_anew)

@@ -9,19 +9,21 @@ import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.levels.lowest_decision import lowest_decision
+from tidegate.lint.derived.levels.trip_causes import LEVEL_FORMULAS
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.derived.supply.rail_of import rail_of
+from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
 from tidegate.lint.description.model.reset_path import Reset
 from tidegate.lint.description.model.supply import Domain, Rail
-from tidegate.lint.graph.dependency import Graph
+from tidegate.lint.graph.dependency import Graph, build
 from tidegate.lint.graph.edge import Edge, EdgeKind, Hop, Path
 from tidegate.lint.graph.leaning_gaps import before_gaps, leaning_gaps
 from tidegate.lint.graph.leaning_loops import in_a_loop
 from tidegate.lint.graph.paths import Neighbours, Reach, drives, loop_through, step_onto
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.quantity import Dimension, show
-from tidegate.lint.rule import Example, Rule, rule
+from tidegate.lint.rule import Example, Rule, Yield, rule
 from tidegate.rules import self_bias_in_time, self_bias_start
 
 _V: Final = Dimension.VOLTAGE
@@ -45,16 +47,16 @@ _V: Final = Dimension.VOLTAGE
         fails="comparators: {por: {works_from: {max: 1.25 V}}}",
         holds="comparators: {por: {works_from: {max: 1.1 V}}}",
     ),
+    formulas=LEVEL_FORMULAS,
 )  # fmt: skip
 def comparator_works_at_own_trip(comparator: Comparator, case: Case) -> Judgement:
     """Compare the comparator's lowest supply with the lowest supply at which it must decide."""
-    works_v, least = case.gather(
-        lambda: case.own.most("works_from"), lambda: lowest_decision(case, comparator, rail_of(case, comparator))
-    )
+    works_v = case.of(comparator).works_from.most()
+    least = lowest_decision(case, comparator, rail_of(case, comparator))
     lower = f"a comparator that works from {show_down(least.level_v, _V)} or less; now {show(works_v, _V)}"
     higher = f"; or a lowest falling level of {show_up(works_v, _V)} or more" if least.is_trip_level else ""
     return case.at_most(
-        need=least.level_v,
+        need=least.level,
         have=works_v,
         dimension=_V,
         says="decides correctly from",
@@ -116,50 +118,6 @@ def _note_gaps(case: Case, comparator: Comparator) -> None:
             case.of(driven).lacks("guards")
 
 
-@rule(
-    "self_bias/leans_on_nobody",
-    title="a power-on detector leans on nothing but its supply",
-    level=Level.ERROR,
-    applies_to="comparators",
-    proves="The power-on detector, and every bias and reference in its chain, is awake whenever its supply is: none "
-    "comes from off the chip, is enabled by another element, lives in a switched domain or waits for a load, a stage "
-    "or another detector.",
-    facts=(
-        "comparators.*.domain", "comparators.*.bias", "comparators.*.reference or comparators.*.crossover",
-        "biases.*.kind", "the domain of each source in the chain, and domains.*.kind",
-    ),
-    mend="a bias of its own, from the supply that it watches",
-    sources=("common practice, no source: the first circuit to wake has nobody to wake it",),
-    example=Example(
-        fails="comparators: {por: {gated_by: uv}}",
-        holds="comparators: {por: {bias: bias_start}}",
-    ),
-)  # fmt: skip
-def power_on_leans_on_nobody(comparator: Comparator, case: Case) -> Judgement:
-    """Pass if its chain ends in sources that are awake whenever a supply is."""
-    if comparator.role != "power_on":
-        return case.not_applicable("it is no power-on detector")
-    chain = Reach(comparator.id, _chain(case.graph))
-    others = list(_others(case.graph, chain, comparator.id))
-    foreign = [other for other in others if not _hangs_on(case.graph, other, comparator)]
-    if foreign:
-        more = "; ".join(other.says for other in foreign[1:])
-        return case.fails(
-            f"leans on another than its supply: {foreign[0].says}",
-            why=f"also {more}" if more else "",
-            mend=foreign[0].mend,
-            path=foreign[0].path,
-        )
-    if others:
-        return case.not_applicable(f"{others[0].says}, which it gates itself (self_bias/no_loop says so)")
-    for name in chain:
-        for fact in leaning_gaps(case.graph.elements[name]):
-            case.of(case.graph.elements[name]).lacks(fact)
-    case.settle()
-    rails = [name for name in chain if isinstance(case.graph.elements[name], Rail)]
-    return case.passes(f"leans on nothing but {' and '.join(rails)}")
-
-
 class _Other(msgspec.Struct, frozen=True):
     """Something besides a supply that a detector's chain waits for."""
 
@@ -212,6 +170,60 @@ def _hangs_on(graph: Graph, other: _Other, comparator: Comparator) -> bool:
     if other.gate is None or comparator.id not in graph.once(in_a_loop):
         return False
     return comparator.id in Reach(other.gate, graph.needs)
+
+
+def _where_it_waits_for_itself_alone(comparator: Comparator, description: Description) -> tuple[str, ...]:
+    """The detector, where all that its chain waits for besides supplies hangs on its own output."""
+    graph = build(description)
+    others = _others(graph, Reach(comparator.id, _chain(graph)), comparator.id)
+    return (comparator.id,) if all(_hangs_on(graph, other, comparator) for other in others) else ()
+
+
+@rule(
+    "self_bias/leans_on_nobody",
+    title="a power-on detector leans on nothing but its supply",
+    level=Level.ERROR,
+    applies_to="comparators",
+    proves="The power-on detector, and every bias and reference in its chain, is awake whenever its supply is: none "
+    "comes from off the chip, is enabled by another element, lives in a switched domain or waits for a load, a stage "
+    "or another detector.",
+    facts=(
+        "comparators.*.domain", "comparators.*.bias", "comparators.*.reference or comparators.*.crossover",
+        "biases.*.kind", "the domain of each source in the chain, and domains.*.kind",
+    ),
+    mend="a bias of its own, from the supply that it watches",
+    sources=("common practice, no source: the first circuit to wake has nobody to wake it",),
+    example=Example(
+        fails="comparators: {por: {gated_by: uv}}",
+        holds="comparators: {por: {bias: bias_start}}",
+    ),
+    yields=(Yield("self_bias/no_loop", _where_it_waits_for_itself_alone),),
+)  # fmt: skip
+def power_on_leans_on_nobody(comparator: Comparator, case: Case) -> Judgement:
+    """Pass if its chain ends in sources that are awake whenever a supply is."""
+    if comparator.role != "power_on":
+        return case.not_applicable("it is no power-on detector")
+    chain = Reach(comparator.id, _chain(case.graph))
+    others = list(_others(case.graph, chain, comparator.id))
+    foreign = [other for other in others if not _hangs_on(case.graph, other, comparator)]
+    if others:
+        first, *more = foreign or others
+        also = "; ".join(other.says for other in more)
+        return case.fails(
+            f"leans on another than its supply: {first.says}",
+            why=f"also {also}" if also else "",
+            mend=first.mend,
+            path=first.path,
+        )
+    for name in chain:
+        element = case.graph.elements[name]
+        for fact in leaning_gaps(element):
+            case.of(element).lacks(fact)
+        if isinstance(element, Reference) and element.kind is None:  # it may come from off the chip
+            case.of(element).lacks("kind")
+    case.settle()
+    rails = [name for name in chain if isinstance(case.graph.elements[name], Rail)]
+    return case.passes(f"leans on nothing but {' and '.join(rails)}")
 
 
 RULES: Final[tuple[Rule, ...]] = (

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+import math
+from collections.abc import Iterable, Sequence
 from enum import Enum
 from functools import partial
 from typing import Final
@@ -10,7 +11,9 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.at_corner import known_of
 from tidegate.lint.derived.levels.lowest_decision import LowestDecision, lowest_decision
+from tidegate.lint.derived.levels.trip_causes import LEVEL_FORMULAS
 from tidegate.lint.derived.safe_rounding import show_down, show_up
 from tidegate.lint.derived.supply.lowest_supply import LowestSupply, lowest_supply
 from tidegate.lint.derived.supply.rail_of import rail_of
@@ -39,7 +42,7 @@ _V: Final = Dimension.VOLTAGE
     facts=(
         "comparators.*.trip", "comparators.*.domain", "comparators.*.bias",
         "comparators.*.reference or comparators.*.crossover", "biases.*.kind", "biases.*.works_from",
-        "references.*.works_from", "conditions.junction_temperature where references.*.works_from_slope is above zero",
+        "references.*.works_from, works_from_slope", "conditions.junction_temperature where that slope is above zero",
         "the domain of each source, and its rail", "rails.*.delivered and rails.*.after where another rail feeds one",
     ),
     mend="a source that works from a lower supply, a higher trip level, or a rail that is surely up first",
@@ -48,35 +51,42 @@ _V: Final = Dimension.VOLTAGE
         fails="biases: {bias_start: {works_from: {max: 1.3 V}}}",
         holds="biases: {bias_start: {works_from: {max: 1.1 V}}}",
     ),
+    formulas=LEVEL_FORMULAS,
+    yields=("self_bias/no_loop", "self_bias/leans_on_nobody"),
 )  # fmt: skip
 def sources_are_up_in_time(comparator: Comparator, case: Case) -> Judgement:
     """Compare each source's lowest supply with the level at which it must work; then look at the order of rails."""
     reach = reach_of_sources(case, comparator)
     sources = sources_in(case, reach)
-    off_chip = [source for source in sources if source.kind == "external"]
-    on_chip = [source for source in sources if source.kind != "external"]
-    needs, own_rail = case.gather(
-        lambda: case.gather_all(partial(_need, case, comparator, source) for source in on_chip),
-        lambda: rail_of(case, comparator),
-    )
+    off_chip = [source for source in sources if case.of(source).kind.must() == "external"]
+    on_chip = [source for source in sources if source not in off_chip]
+    needs, unsaid = known_of(case, (partial(_need, case, comparator, source) for source in on_chip))
+    rails, unfed = known_of(case, [partial(rail_of, case, comparator)])
     worst = min(needs, key=lambda need: need.measure.margin, default=None)
-    if worst is not None and not worst.measure.holds:
-        return _measured(case, worst, reach, ())
-    fed = ((comparator, own_rail), *((need.source, need.rail) for need in needs))
+    short = worst is not None and not worst.measure.holds
+    fed = (*((comparator, rail) for rail in rails), *((need.source, need.rail) for need in needs))
     waits = [_wait(case, comparator, part, rail) for part, rail in fed]
-    if off_chip and comparator.role != "power_on":
-        return _asks_for_order(case, comparator, _off_chip_wait(off_chip[0]), reach)
-    doubt = next((wait for wait in waits if wait.order in (_Order.LATER, _Order.UNKNOWN)), None)
-    if doubt is not None:
-        return _asks_for_order(case, comparator, doubt, reach)
-    hanging = next((wait for wait in waits if wait.order is _Order.ON_ITSELF), None)
-    if hanging is not None:
-        return case.not_applicable(f"{hanging.rail} hangs on its own output (self_bias/no_loop says so)")
-    if worst is None and not off_chip:
-        return case.not_applicable("needs neither bias nor reference")
+    doubts = [wait for wait in waits if wait.order in (_Order.LATER, _Order.UNKNOWN)]
+    late = _surely_late(comparator, off_chip, waits)
+    if late is not None and not (short and (case.at_best or case.reading.exact)):  # a number that is sure says more
+        return _asks_for_order(case, comparator, late, reach)
+    if (unsaid or unfed) and not case.at_best:  # what is not known of, or not of enough, may work from anything
+        need_v = 0.0 if worst is None else worst.least.level_v
+        return case.at_most(need=need_v, have=math.inf, dimension=_V, says="what else it may lean on works from")
+    if (off_chip or doubts) and not short:
+        return _asks_for_order(case, comparator, _off_chip_wait(off_chip[0]) if off_chip else doubts[0], reach)
     if worst is None:
-        return case.not_applicable(f"{off_chip[0].id} comes from off the chip (self_bias/leans_on_nobody says so)")
-    return _measured(case, worst, reach, waits)
+        return case.not_applicable("needs neither bias nor reference")
+    return _measured(case, worst, reach, () if short else waits)
+
+
+def _surely_late(comparator: Comparator, off_chip: Sequence[Bias | Reference], waits: Sequence[_Wait]) -> _Wait | None:
+    """What is up too late whatever else is: what hangs on the detector itself, and what a power-on one gets late."""
+    itself = next((wait for wait in waits if wait.order is _Order.ON_ITSELF), None)
+    if itself is not None or comparator.role != "power_on":
+        return itself
+    later = next((wait for wait in waits if wait.order is _Order.LATER), None)
+    return _off_chip_wait(off_chip[0]) if later is None and off_chip else later
 
 
 class _Need(msgspec.Struct, frozen=True):
@@ -94,15 +104,8 @@ class _Need(msgspec.Struct, frozen=True):
 
 def _need(case: Case, comparator: Comparator, source: Bias | Reference) -> _Need:
     """A source with its two levels."""
-    works, (rail, least) = case.gather(
-        lambda: lowest_supply(case, source), lambda: _at_its_rail(case, comparator, source)
-    )
-    return _Need(source, rail, least, works)
-
-
-def _at_its_rail(case: Case, comparator: Comparator, source: Bias | Reference) -> tuple[Rail, LowestDecision]:
     rail = rail_of(case, source)
-    return rail, lowest_decision(case, comparator, rail)
+    return _Need(source, rail, lowest_decision(case, comparator, rail), lowest_supply(case, source))
 
 
 def _measured(case: Case, worst: _Need, reach: Reach, waits: Iterable[_Wait]) -> Judgement:
@@ -112,7 +115,7 @@ def _measured(case: Case, worst: _Need, reach: Reach, waits: Iterable[_Wait]) ->
     order = dict.fromkeys(wait.says for wait in waits if wait.order is _Order.FIRST)
     higher = f"; or a lowest falling level of {show_up(works.level_v, _V)} or more" if least.is_trip_level else ""
     return case.at_most(
-        need=least.level_v,
+        need=least.level,
         have=works.level_v,
         dimension=_V,
         says=f"{name}, which it leans on, works from",
@@ -164,19 +167,12 @@ def _wait(case: Case, comparator: Comparator, part: Comparator | Bias | Referenc
 
 
 def _asks_for_order(case: Case, comparator: Comparator, wait: _Wait, reach: Reach) -> Judgement:
-    """A person must look; of a power-on detector it is known to be wrong where the other rail comes later."""
+    """A person must look; of a power-on detector it is known to be wrong, unless nothing is said of the order."""
     watched = comparator.watches
     itself = wait.part == comparator.id
     who = "it" if itself else f"{wait.part}, which it leans on,"
     feed = f"feed {'it' if itself else wait.part} from {watched}"
     path = (*reach.path(wait.part), *wait.onward)
-    if wait.order is _Order.OFF_CHIP:
-        return case.asks(
-            f"rests on {wait.part} being there before {watched} reaches its trip level",
-            why=f"{wait.part} comes from off the chip, and no rail of the description says when",
-            mend=f"a source on the chip, fed from {watched}",
-            path=path,
-        )
     if wait.order is _Order.UNKNOWN:
         return case.asks(
             f"rests on {wait.rail} being up before {watched}",
@@ -184,15 +180,22 @@ def _asks_for_order(case: Case, comparator: Comparator, wait: _Wait, reach: Reac
             mend=f"give rails.{watched}.after and its delay if it does; else {feed}",
             path=path,
         )
-    says = f"{who} is fed from {wait.rail}, which comes up after {watched}"
-    if comparator.role == "power_on":
-        return case.fails(says, why=wait.says, mend=feed, path=path)
-    return case.asks(
-        says,
-        why=f"{wait.says}: until then its decision means nothing, and another detector must hold reset",
-        mend=f"a detector that holds reset until {wait.rail} is up; or {feed}",
-        path=path,
-    )
+    if wait.order is _Order.OFF_CHIP:
+        says = f"rests on {wait.part} being there before {watched} reaches its trip level"
+        why = f"{wait.part} comes from off the chip, and no rail of the description says when"
+        mend = f"a source on the chip, fed from {watched}"
+    elif wait.order is _Order.ON_ITSELF:
+        says = f"{who} is fed from {wait.rail}, which hangs on its own output"
+        why, mend = f"{wait.rail} comes up once {comparator.id} has let go", feed
+    else:
+        says = f"{who} is fed from {wait.rail}, which comes up after {watched}"
+        why, mend = wait.says, feed
+    if comparator.role == "power_on" or wait.order is _Order.ON_ITSELF:
+        return case.fails(says, why=why, mend=mend, path=path)
+    if wait.order is _Order.LATER:
+        why = f"{why}: until then its decision means nothing, and another detector must hold reset"
+        mend = f"a detector that holds reset until {wait.rail} is up; or {mend}"
+    return case.asks(says, why=why, mend=mend, path=path)
 
 
 RULES: Final[tuple[Rule, ...]] = (sources_are_up_in_time,)

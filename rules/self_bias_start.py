@@ -2,17 +2,21 @@
 
 from __future__ import annotations
 
+import math
 from itertools import pairwise
 from typing import Any, Final
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.at_corner import at_corner
 from tidegate.lint.derived.safe_rounding import show_down
 from tidegate.lint.derived.supply.rail_of import domain_rail
 from tidegate.lint.description.model.detector import Bias, Reference
 from tidegate.lint.description.model.supply import Domain, Rail
+from tidegate.lint.facts.reading import Better
 from tidegate.lint.graph.edge import Path, path_text
-from tidegate.lint.graph.leaning_gaps import leaning_gaps
-from tidegate.lint.graph.leaning_loops import STARTED_WITHOUT, LeaningLoop, leaning_loops
+from tidegate.lint.graph.leaning_gaps import before_loop_gaps, leaning_gaps
+from tidegate.lint.graph.leaning_loops import STARTED_WITHOUT, SUBJECTS, LeaningLoop, leaning_loops, without_detectors
+from tidegate.lint.graph.paths import Reach
 from tidegate.lint.judgement import Judgement, Level
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
 from tidegate.lint.quantity import Dimension, show
@@ -58,7 +62,7 @@ def self_biased_reference_starts(reference: Reference, case: Case) -> Judgement:
     """Judge the start-up circuit of a self-biased reference."""
     if reference.self_biased is None and reference.kind in ("divider", "external"):
         return case.not_applicable(f"a reference of the kind {reference.kind} does not feed itself")
-    if not case.own.must("self_biased"):
+    if not case.of(reference).self_biased.must():
         return case.not_applicable("it is not self-biased")
     return _starts(reference, case)
 
@@ -80,33 +84,36 @@ def self_biased_reference_starts(reference: Reference, case: Case) -> Judgement:
 )
 def self_biased_bias_starts(bias: Bias, case: Case) -> Judgement:
     """Judge the start-up circuit of a self-biased source of bias."""
-    kind = case.own.must("kind")
+    kind = case.of(bias).kind.must()
     if kind != "self_biased":
         return case.not_applicable(f"a bias of the kind {kind} does not feed itself")
     return _starts(bias, case)
 
 
 def _starts(source: Reference | Bias, case: Case) -> Judgement:
-    if case.own.must("start_up") == "none":
+    if case.of(source).start_up.must() == "none":
         return case.fails(
             "feeds itself and has no start-up circuit: it may stay in the state in which nothing flows",
             mend=_STARTS_MEND,
             at="start_up",
         )
-    least_v_per_s = case.own.most("start_up.least_slope")
-    case.settle()
+    least_v_per_s = case.of(source).start_up.least_slope.most()
     if least_v_per_s == 0.0:
         return case.passes("its start-up circuit works on any ramp", at="start_up.least_slope")
-    domain = case.own.element("domain")
+    domain = case.of(source).domain.element()
     assert isinstance(domain, Domain)
-    kind, rail = case.gather(lambda: case.of(domain).must("kind"), lambda: domain_rail(case, domain))
+    kind, rail = case.of(domain).kind.must(), domain_rail(case, domain)
     switch = source.gated_by or (domain.switched_by if kind == "switched" else None)
     if switch is not None or kind == "switched":
         return _asks_for_switched_ramp(case, rail, domain, switch, least_v_per_s)
-    facts = case.of(rail)
-    nominal_v, rise_s = facts.middle("nominal"), facts.most("rise")
-    case.settle()
-    slowest_v_per_s = ramp_slope_v_per_s(rise_v=nominal_v, rise_s=rise_s)
+    nominal, rise = case.of(rail).nominal, case.of(rail).rise
+    slowest_v_per_s = at_corner(
+        case,
+        lambda: ramp_slope_v_per_s(rise_v=nominal.typical(Better.MORE), rise_s=rise.most()),
+        sure=0.0,
+        best=math.inf,
+    )
+    nominal_v, rise_s = nominal.typical(Better.MORE), rise.most()
     return case.at_most(
         need=slowest_v_per_s,
         have=least_v_per_s,
@@ -133,49 +140,38 @@ def _asks_for_switched_ramp(
     )
 
 
-def _loop_rule(section: str, word: str, example: Example) -> Rule:
-    """The rule about loops for the elements of one section: the same for each of them."""
-    described = rule(
-        f"self_bias/{word}_loop_starts",
-        title=f"no {word} waits for itself, unless a start-up circuit breaks the loop",
-        level=Level.ERROR,
-        applies_to=section,
-        proves="Every closed way of elements that lean on each other holds a bias or a reference whose start-up "
-        "circuit stands in for what it is biased by. A start-up circuit stands in for no supply and no enable. "
-        "Each loop is judged once, at its first element in the order of the description. Ways through a detector's "
-        "output are judged by self_bias/no_loop.",
-        facts=(
-            "every fact that says what an element leans on: domain, bias, source, leans_on, gated_by, driven_by, "
-            "made_by, after, switched_by, guards",
-            "references.*.start_up and biases.*.start_up of those in a loop",
-        ),
-        mend="a start-up circuit in the loop, or one step of it taken out",
-        sources=("a closed way in the graph of who leans on whom has no first step (derived)", _IDLE_STATE),
-        example=example,
-    )
-    return described(_loop_starts)
-
-
-_JUDGED: Final = ("rails", "references", "biases", "output_stages", "loads")
-"""Sections of which every loop without a comparator holds an element.
-
-A domain leans on a rail, or on what switches it; a reset net on a stage; nothing leans on an override or on a pair.
-"""
-
-
-def _loop_starts(element: Any, case: Case) -> Judgement:
+@rule(
+    "self_bias/loop_starts",
+    title="nothing waits for itself, unless a start-up circuit breaks the loop",
+    level=Level.ERROR,
+    applies_to=SUBJECTS,
+    proves="Every closed way of elements that lean on each other holds a bias or a reference whose start-up circuit "
+    "stands in for what it is biased by. A start-up circuit stands in for no supply and no enable. Each loop is judged "
+    "once, at its first element in the order of ids. Ways through a detector's output are judged by self_bias/no_loop.",
+    facts=(
+        "every fact that says what an element leans on: domain, bias, source, leans_on, gated_by, driven_by, made_by, "
+        "after, switched_by, guards",
+        "references.*.start_up and biases.*.start_up of those in a loop",
+    ),
+    mend="a start-up circuit in the loop, or one step of it taken out",
+    sources=("a closed way in the graph of who leans on whom has no first step (derived)", _IDLE_STATE),
+    example=Example(
+        fails="loads: {core_regulator: {domain: core}}",
+        holds="loads: {core_regulator: {domain: aon}}",
+    ),
+)  # fmt: skip
+def loop_starts(element: Any, case: Case) -> Judgement:
     """Judge the loop that an element is in, at the first element of the loop."""
     loop = case.graph.once(leaning_loops).get(element.id)
-    if loop is None:
+    cycle = () if loop is None else loop.deadlock or loop.doubtful
+    if loop is None or not cycle:
         _note_gaps(case)
         case.settle()
-        return case.passes("leans on nothing that leans on it")
-    cycle = loop.deadlock or loop.doubtful
-    if not cycle:
-        return case.passes(f"is in a loop that {_starters(loop)}")
-    first = _first(case, loop, cycle)
-    if first != element.id:
-        return case.not_applicable(f"its loop is judged at {first}")
+        return case.passes(
+            "leans on nothing that leans on it" if loop is None else f"is in a loop that {_starters(loop)}"
+        )
+    if cycle[0].element != element.id:
+        return case.not_applicable(f"its loop is judged at {cycle[0].element}")
     if not loop.deadlock:
         for member in loop.unknown:
             case.of(case.graph.elements[member]).lacks("start_up")
@@ -201,68 +197,14 @@ def _starters(loop: LeaningLoop) -> str:
     return f"{' and '.join(loop.started_by)} {'start' if len(loop.started_by) > 1 else 'starts'}"
 
 
-def _first(case: Case, loop: LeaningLoop, cycle: Path) -> str:
-    """The first element of a cycle, in the order of the description, that one of the rules about loops judges."""
-    on_it = {hop.element for hop in cycle}
-    return next(name for name in loop.members if name in on_it and case.graph.elements[name].section in _JUDGED)
-
-
 def _note_gaps(case: Case) -> None:
-    """Note the missing facts of an element and its domain that could hide a loop."""
-    domain = case.description.domains.get(getattr(case.subject, "domain", None) or "")
-    for element in (case.subject, domain):
-        if element is not None:
-            for fact in leaning_gaps(element):
-                case.of(element).lacks(fact)
+    """Note the missing facts that could hide a loop: of all that the element leans on, other than detectors."""
+    if case.subject.id not in case.graph.once(before_loop_gaps):
+        return
+    for name in Reach(case.subject.id, without_detectors(case.graph)):
+        element = case.graph.elements[name]
+        for fact in leaning_gaps(element):
+            case.of(element).lacks(fact)
 
 
-RULES: Final[tuple[Rule, ...]] = (
-    self_biased_reference_starts,
-    self_biased_bias_starts,
-    _loop_rule(
-        "rails",
-        "rail",
-        Example(
-            fails="loads: {core_regulator: {domain: core}}",
-            holds="loads: {core_regulator: {domain: aon}}",
-        ),
-    ),
-    _loop_rule(
-        "references",
-        "reference",
-        Example(
-            fails="{references: {ref_main: {voltage: 0.6 V, start_up: none}}, "
-            "biases: {bias_main: {source: ref_main, start_up: none}}}",
-            holds="{references: {ref_main: {voltage: 0.6 V, start_up: {by: a leak, least_slope: 0 V/s}}}, "
-            "biases: {bias_main: {source: ref_main, start_up: none}}}",
-        ),
-    ),
-    _loop_rule(
-        "biases",
-        "bias",
-        Example(
-            fails="biases: {bias_main: {source: bias_copy, start_up: none}, bias_copy: {kind: from_reference, "
-            "source: bias_main, domain: analog, current: 1 uA, leakage: 10 nA, consumes: 1 uA, works_from: 1.2 V, "
-            "settling: 20 us, start_up: none}}",
-            holds="{references: {ref_main: {bias: bias_copy}}, biases: {bias_copy: {kind: from_reference, "
-            "source: bias_main, domain: analog, current: 1 uA, leakage: 10 nA, consumes: 1 uA, works_from: 1.2 V, "
-            "settling: 20 us}}}",
-        ),
-    ),
-    _loop_rule(
-        "output_stages",
-        "stage",
-        Example(
-            fails="output_stages: {por_out: {gated_by: gather}}",
-            holds="output_stages: {gather: {gated_by: por_out}}",
-        ),
-    ),
-    _loop_rule(
-        "loads",
-        "load",
-        Example(
-            fails="loads: {adc: {leans_on: [core_logic]}, core_logic: {leans_on: [adc]}}",
-            holds="loads: {adc: {leans_on: [core_regulator]}}",
-        ),
-    ),
-)
+RULES: Final[tuple[Rule, ...]] = (self_biased_reference_starts, self_biased_bias_starts, loop_starts)

@@ -2,41 +2,46 @@
 
 from __future__ import annotations
 
-from typing import Final
+import math
+from collections.abc import Callable, Iterator
+from typing import Any, Final, TypeVar
+
+import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.levels.at_code import as_shipped
 from tidegate.lint.derived.levels.guarded_loads import Bound, greatest_supplies, least_supplies
-from tidegate.lint.derived.levels.level_margins import (
-    LevelMargin,
+from tidegate.lint.derived.levels.level_room import level_room, tracks_its_bound
+from tidegate.lint.derived.levels.placed_roles import NOT_PLACED, PLACED_ROLES
+from tidegate.lint.derived.levels.requirements import (
+    Requirement,
     comes_back,
-    guarantee,
-    hands_over,
+    guard_gaps,
+    protects,
+    protects_down_to_v,
     protects_nothing,
     quiet,
-    sampled_too_seldom,
-    short_at_once,
 )
-from tidegate.lint.derived.levels.level_room import NEVER_APART, level_room, tracks_its_bound
-from tidegate.lint.derived.levels.placement_facts import NOT_PLACED, PLACED_ROLES
-from tidegate.lint.derived.levels.response import response
-from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.levels.response import moved_v, slope
+from tidegate.lint.derived.levels.trip_causes import LEVEL_FORMULAS
+from tidegate.lint.derived.levels.trip_levels import TripLevel, falling_window, rising_window
+from tidegate.lint.derived.other_corner import read_at
 from tidegate.lint.derived.safe_rounding import show_down, show_up
+from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.facts.reading import Corner, MissingFactsError
 from tidegate.lint.judgement import Judgement, Level
-from tidegate.lint.physics import trip_margin, trip_window
-from tidegate.lint.physics.placement import Side
+from tidegate.lint.physics import hysteresis, trip_window
 from tidegate.lint.quantity import Dimension, show
-from tidegate.lint.rule import Example, Rule, rule
+from tidegate.lint.rule import Example, Rule, Yield, rule
 from tidegate.rules import trip_codes, trip_crossover, trip_order
 
+_A = TypeVar("_A")
 _V: Final = Dimension.VOLTAGE
 _COMMON_PRACTICE: Final = "common practice, no source: the levels of a supply detector, their errors taken off, keep "
 _LEVELS: Final = (
-    "comparators.*.trip (or codes and ships_with), with errors or ranges",
-    "conditions.combine",
-    "conditions.coverage",
-)
+    "comparators.*.trip (or codes and ships_with), with errors or ranges", "conditions.combine", "conditions.coverage",
+)  # fmt: skip
 _RESPONSE: Final = ("comparators.*.delay, filter, sampling", "rails.*.collapse, or overshoot")
 
 
@@ -53,27 +58,42 @@ def _nothing_leans(comparator: Comparator, case: Case) -> Judgement:
     return case.not_applicable(f"guards no load that needs {rail}")
 
 
+def _loads_of(comparator: Any, description: Description) -> Iterator[str]:
+    """The loads that need the rail of a detector."""
+    for load in description.loads.values():
+        if any(need.rail == comparator.watches for need in load.needs):
+            yield load.id
+
+
+def _its_rail(comparator: Any, _: Description) -> tuple[str, ...]:
+    """The rail that a detector watches."""
+    return (comparator.watches,)
+
+
+_UNWORKABLE: Final = Yield("description/loads", _loads_of)
+
+
 def _at(comparator: Comparator, level: str) -> str:
     return f"trip.{level}" if comparator.trip is not None else f"codes.{comparator.ships_with}.{level}"
 
 
-def _measured(comparator: Comparator, case: Case, found: LevelMargin, mend: str) -> Judgement:
+def _judged(comparator: Comparator, case: Case, found: Requirement, mend: str) -> Judgement:
     """Compare the end of a level with its limit."""
-    answer = case.at_least if found.side is Side.LEAST else case.at_most
+    answer = case.at_least if found.end == "least" else case.at_most
     return answer(
-        need=found.limit_v, have=found.end_v, dimension=_V, says=found.says, why=found.why, mend=mend,
-        at=_at(comparator, found.level.value), path=found.bound.path if found.bound is not None else (),
+        need=found.need, have=found.have, dimension=_V, says=found.says, why=found.why, mend=mend,
+        at=_at(comparator, found.which), path=found.path,
     )  # fmt: skip
 
 
-def _move(case: Case, comparator: Comparator, found: LevelMargin) -> str:
+def _move(case: Case, comparator: Comparator, found: Requirement) -> str:
     """By how much the levels, or their error, must change."""
     by = show_up(-found.margin_v, _V)
     if not found.is_kept:
-        room = case.attempt(lambda: level_room(case, comparator))
-        if room is not None and not room.apart_by_description and not room.spread_fits:
-            return f"an error {by} smaller; to move the levels will not do (trip_window/spread says so)"
-    return f"levels {by} further {'up' if found.side is Side.LEAST else 'down'}, or an error that much smaller"
+        room = case.if_known(lambda: level_room(case, comparator))
+        if room is not None and room.room.value > 0.0 and not room.spread_fits:
+            return f"an error {by} smaller; to move the levels will not do"
+    return f"levels {by} further {'up' if found.end == 'least' else 'down'}, or an error that much smaller"
 
 
 @rule(
@@ -97,10 +117,8 @@ def _move(case: Case, comparator: Comparator, found: LevelMargin) -> str:
         fails="comparators: {uv: {trip: {rising: 1.652 V, falling: 1.602 V}}}",
         holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
     ),
-    formulas=(
-        trip_margin.under_voltage_guarantee_v, trip_margin.over_voltage_guarantee_v, trip_margin.power_on_guarantee_v,
-        trip_window.response_time_s, trip_window.droop_during_response_v,
-    ),
+    formulas=(*LEVEL_FORMULAS, trip_window.response_time_s, trip_window.droop_during_response_v),
+    yields=("trip_window/placement_sense", "modes/sampling", Yield("hand_over/no_hole", _its_rail), _UNWORKABLE),
 )  # fmt: skip
 def guarded_before_out_of_range(comparator: Comparator, case: Case) -> Judgement:
     """Compare the protecting level with the most demanding load, or follower, and the move of the rail."""
@@ -108,40 +126,40 @@ def guarded_before_out_of_range(comparator: Comparator, case: Case) -> Judgement
         return other
     if protects_nothing(case, comparator):
         return _nothing_leans(comparator, case)
-    shipped = as_shipped(case, comparator)
-    if case.attempt(lambda: _placed_by_release(case, comparator)) is not None:
-        return case.not_applicable("is placed by the level that lets go (trip_window/placement_sense says so)")
-    short = short_at_once(case, shipped)
-    if short is not None:
-        return _measured(comparator, case, short, _move(case, comparator, short))
-    found = guarantee(case, shipped)
+    found = protects(case, as_shipped(case, comparator))
     assert found is not None and found.bound is not None
     if not found.is_kept and tracks_its_bound(case, comparator, found):
-        return case.not_applicable(
-            f"extreme against extreme {_below(found)}; both move with temperature, and trip_window/crossover_tracks "
-            "compares them at the same one"
-        )
-    if not found.is_kept and hands_over(case, comparator, found):
-        return case.not_applicable(f"{_below(found)} (hand_over/no_hole judges what holds reset there)")
-    if not found.is_kept and sampled_too_seldom(case, comparator, found):
-        return case.not_applicable("is sampled too seldom for what it guards (modes/sampling says so)")
-    return _measured(comparator, case, found, f"{_move(case, comparator, found)}{_faster(found)}")
+        best = read_at(case, Corner.BEST, lambda: protects(case, as_shipped(case, comparator)))
+        if best is None or not best.is_kept:
+            return case.not_applicable(
+                f"extreme against extreme {_below(best or found)}; both move with temperature, and "
+                "trip_window/crossover_tracks compares them at the same one"
+            )
+    if math.isinf(found.bound.level_v):
+        found = msgspec.structs.replace(found, why=_capability(comparator, case))
+    return _judged(comparator, case, found, f"{_move(case, comparator, found)}{_faster(comparator, case, found)}")
 
 
-def _below(found: LevelMargin) -> str:
-    assert found.bound is not None
-    level, element = found.level.value, found.bound.element
-    return f"its {level} level can lie {show(-found.margin_v, _V)} below what {element} works from"
-
-
-def _faster(found: LevelMargin) -> str:
-    """The response that would do, where one would."""
-    assert found.bound is not None
-    left_v = abs(found.end_v - found.bound.level_v)
-    ahead = (found.end_v > found.bound.level_v) is (found.side is Side.LEAST)
-    if not ahead or found.slew_v_per_s == 0.0 or left_v == 0.0:
+def _capability(comparator: Comparator, case: Case) -> str:
+    """What the detector protects whatever it guards, where it is not known what that needs."""
+    level_v = protects_down_to_v(case, as_shipped(case, comparator))
+    if math.isinf(level_v):
         return ""
-    return f"; or an answer within {show_down(left_v / found.slew_v_per_s, Dimension.DURATION)}"
+    return f"protects what works {'up' if comparator.role == 'over_voltage' else 'down'} to {show(level_v, _V)}"
+
+
+def _below(found: Requirement) -> str:
+    assert found.bound is not None
+    return f"its {found.which} level can lie {show(-found.margin_v, _V)} below what {found.bound.element} works from"
+
+
+def _faster(comparator: Comparator, case: Case, found: Requirement) -> str:
+    """The response that would do, where one would."""
+    slew_v_per_s = case.if_known(slope(case, comparator).most)
+    left_v = found.margin_v + (case.if_known(lambda: moved_v(case, comparator)) or 0.0)
+    if comparator.role == "power_on" or not slew_v_per_s or not 0.0 < left_v < math.inf:
+        return ""
+    return f"; or an answer within {show_down(left_v / slew_v_per_s, Dimension.DURATION)}"
 
 
 @rule(
@@ -164,7 +182,8 @@ def _faster(found: LevelMargin) -> str:
         "divider: {ratio: 0.367, top: 3.8 Mohm, bottom: 2.2 Mohm}}}",
     ),
     formulas=(
-        trip_margin.under_voltage_quiet_v, trip_margin.over_voltage_quiet_v, trip_margin.power_on_quiet_v,
+        *LEVEL_FORMULAS, trip_window.response_time_s,
+        trip_window.droop_during_response_v, hysteresis.release_droop_v,
     ),
 )  # fmt: skip
 def quiet_in_service(comparator: Comparator, case: Case) -> Judgement:
@@ -173,10 +192,10 @@ def quiet_in_service(comparator: Comparator, case: Case) -> Judgement:
         return other
     shipped = as_shipped(case, comparator)
     found = quiet(case, shipped)
-    returns = case.attempt(lambda: comes_back(case, shipped))
+    returns = case.if_known(lambda: comes_back(case, shipped))
     furthest = found if returns is None else min(found, returns, key=lambda level: level.margin_v)
     also = "" if furthest is found else " (so that it lets go in service too)"
-    return _measured(comparator, case, found, f"{_move(case, comparator, furthest)}{also}")
+    return _judged(comparator, case, found, f"{_move(case, comparator, furthest)}{also}")
 
 
 @rule(
@@ -196,24 +215,15 @@ def quiet_in_service(comparator: Comparator, case: Case) -> Judgement:
         fails="comparators: {uv: {trip: {rising: 1.696 V, falling: 1.646 V}}}",
         holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}}}",
     ),
-    formulas=(
-        trip_margin.under_voltage_comes_back_v, trip_margin.over_voltage_comes_back_v,
-        trip_margin.power_on_comes_back_v,
-    ),
+    formulas=(*LEVEL_FORMULAS, trip_window.response_time_s, trip_window.droop_during_response_v),
+    yields=("trip_window/nuisance", "trip_window/spread", "hysteresis/fits_window"),
 )  # fmt: skip
 def lets_go_in_range(comparator: Comparator, case: Case) -> Judgement:
     """Compare the releasing level with the end of the range delivered."""
     if (other := _not_placed(comparator, case)) is not None:
         return other
     found = comes_back(case, as_shipped(case, comparator))
-    room = None if found.is_kept else case.attempt(lambda: level_room(case, comparator))
-    if room is not None and not room.apart_by_description and not (room.spread_fits and room.hysteresis_fits):
-        judge = "hysteresis/fits_window" if room.spread_fits else "trip_window/spread"
-        return case.not_applicable(f"no place of its levels keeps this and trip_window/guarantee ({judge} says so)")
-    in_service = None if found.is_kept else case.attempt(lambda: quiet(case, as_shipped(case, comparator)))
-    if in_service is not None and not in_service.is_kept:
-        return case.not_applicable("it trips in service already (trip_window/nuisance says so)")
-    return _measured(comparator, case, found, f"{_move(case, comparator, found)}, or less hysteresis")
+    return _judged(comparator, case, found, f"{_move(case, comparator, found)}, or less hysteresis")
 
 
 @rule(
@@ -237,6 +247,7 @@ def lets_go_in_range(comparator: Comparator, case: Case) -> Judgement:
         holds="comparators: {uv: {trip: {rising: 1.677 V, falling: 1.627 V}, "
         "divider: {ratio: 0.367, top: 3.8 Mohm, bottom: 2.2 Mohm}}}",
     ),
+    formulas=(*LEVEL_FORMULAS, trip_window.response_time_s, trip_window.droop_during_response_v),
 )
 def asserted_level_is_placed(comparator: Comparator, case: Case) -> Judgement:
     """Fail if what is guarded lies between the two levels, on the side of the releasing one."""
@@ -244,57 +255,67 @@ def asserted_level_is_placed(comparator: Comparator, case: Case) -> Judgement:
         return case.not_applicable("is placed by what must work once it lets go (trip_window/guarantee)")
     if protects_nothing(case, comparator):
         return _nothing_leans(comparator, case)
-    wrong = _placed_by_release(case, comparator)
-    if wrong is not None:
-        return wrong
-    over = comparator.role == "over_voltage"
-    falling, rising, first = _levels_and_load(case, comparator)
-    beyond = falling.least_v > first.level_v if over else rising.most_v < first.level_v
-    if beyond:
-        return case.not_applicable(
-            f"both levels lie outside what {first.element} works with (trip_window/guarantee says so)"
-        )
-    return case.passes(
-        f"is placed by the level that asserts, against {first.element} at {show(first.level_v, _V)}",
-        at=_at(comparator, "rising" if over else "falling"),
-    )
-
-
-def _levels_and_load(case: Case, comparator: Comparator) -> tuple[trip_window.Window, trip_window.Window, Bound]:
-    """The falling and the rising level, and the most demanding load."""
     over, shipped = comparator.role == "over_voltage", as_shipped(case, comparator)
-    falling, rising, bounds = case.gather(
-        lambda: falling_window(case, shipped),
-        lambda: rising_window(case, shipped),
-        lambda: greatest_supplies(case, comparator) if over else least_supplies(case, comparator),
-    )
-    return falling, rising, bounds[0]
+    asserts, lets_go = rising_window(case, shipped), falling_window(case, shipped)
+    if not over:
+        asserts, lets_go = lets_go, asserts
+    first = _known(case, lambda: _most_demanding(case, comparator))
+    nearest_v = _known(case, lambda: asserts.least_v if over else asserts.most_v)
+    if (nearest_v <= first.level_v) if over else (nearest_v >= first.level_v):
+        return case.passes(
+            f"is placed by the level that asserts, against {first.element} at {show(first.level_v, _V)}",
+            at=_at(comparator, asserts.which),
+        )
+    furthest_v = _known(case, lambda: lets_go.least_v if over else lets_go.most_v)
+    if (furthest_v > first.level_v) if over else (furthest_v < first.level_v):
+        return case.passes(f"is not placed by the level that lets go, which {first.element} does not reach either")
+    return _placed_by_release(case, comparator, asserts, first)
 
 
-def _placed_by_release(case: Case, comparator: Comparator) -> Judgement | None:
-    """The finding, where what is guarded lies between the two levels; None where it does not."""
-    if comparator.role == "power_on":
-        return None
+def _known(case: Case, ask: Callable[[], _A]) -> _A:
+    """What is exactly known; the rule says how levels are meant, which bounds do not tell.
+
+    Raises: MissingFactsError: with what keeps it from being known.
+    """
+    log = case.reading.listen()
+    try:
+        found = ask()
+    finally:
+        case.reading.unlisten()
+    if log:
+        raise MissingFactsError(log)
+    return found
+
+
+def _most_demanding(case: Case, comparator: Comparator) -> Bound:
+    """The load that asks most of a detector.
+
+    Raises: MissingFactsError: where it is not said what the detector guards.
+    """
     over = comparator.role == "over_voltage"
-    falling, rising, first = _levels_and_load(case, comparator)
-    level_v = first.level_v
-    if not (falling.least_v <= level_v < rising.least_v if over else falling.most_v < level_v <= rising.most_v):
-        return None
-    moved_v = case.attempt(lambda: response(case, comparator).moved_v) or 0.0
-    end_v = rising.most_v + moved_v if over else falling.least_v - moved_v
+    bounds = greatest_supplies(case, comparator) if over else least_supplies(case, comparator)
+    if not bounds:
+        raise MissingFactsError(guard_gaps(case, comparator))
+    return bounds[0]
+
+
+def _placed_by_release(case: Case, comparator: Comparator, asserts: TripLevel, first: Bound) -> Judgement:
+    """The finding: what is guarded lies between the two levels."""
+    over, level_v = comparator.role == "over_voltage", first.level_v
+    moves_v = case.if_known(lambda: moved_v(case, comparator)) or 0.0
+    end_v = asserts.most_v + moves_v if over else asserts.least_v - moves_v
     side, up_to = ("up", "up to") if over else ("down", "from")
-    short_v = end_v - level_v if over else level_v - end_v
     answer = case.at_most if over else case.at_least
     return answer(
         need=level_v, have=end_v, dimension=_V,
         says=f"is placed by the level that lets go: until the answer {comparator.watches} may come {side} to",
-        why=f"{first.element} works {up_to} {show(level_v, _V)}; falling {_text(falling)}, rising {_text(rising)}",
-        mend=f"both levels {show_up(short_v, _V)} further {'down' if over else 'up'}",
-        at=_at(comparator, "rising" if over else "falling"), path=first.path,
+        why=f"{first.element} works {up_to} {show(level_v, _V)}; asserts at {_text(asserts)}",
+        mend=f"both levels {show_up(abs(end_v - level_v), _V)} further {'down' if over else 'up'}",
+        at=_at(comparator, asserts.which), path=first.path,
     )  # fmt: skip
 
 
-def _text(window: trip_window.Window) -> str:
+def _text(window: TripLevel) -> str:
     if window.least_v == window.most_v:
         return show(window.least_v, _V)
     return f"{show(window.least_v, _V)} to {show(window.most_v, _V)}"
@@ -316,6 +337,8 @@ def _text(window: trip_window.Window) -> str:
         fails="comparators: {uv: {errors: {reference: {share: 3 %}}}}",
         holds="comparators: {uv: {errors: {reference: {share: 0.4 %}}}}",
     ),
+    formulas=(*LEVEL_FORMULAS, trip_window.response_time_s, trip_window.droop_during_response_v),
+    yields=(_UNWORKABLE,),
 )
 def spread_has_room(comparator: Comparator, case: Case) -> Judgement:
     """Compare the spread of the level that protects with what the rail leaves between its limits."""
@@ -328,14 +351,11 @@ def spread_has_room(comparator: Comparator, case: Case) -> Judgement:
         return case.not_applicable(
             "its level and what follows it move together with temperature (trip_window/crossover_tracks compares them)"
         )
-    if room.apart_by_description:
-        return case.not_applicable(NEVER_APART)
     return case.at_most(
-        need=room.room_v, have=room.spread_v, dimension=_V,
-        says=f"spread of its {room.protects.level.value} level",
+        need=room.room, have=room.spread, dimension=_V, says=f"spread of its {room.protects.which} level",
         why=f"{room.protects.why}; {room.returns.why}",
-        mend=f"an error {show_up((room.spread_v - room.room_v) / 2, _V)} smaller either way, and room for hysteresis"
-        if room.room_v > 0.0
+        mend=f"an error {show_up((room.spread.value - room.room.value) / 2, _V)} smaller either way, and room for "
+        "hysteresis" if room.room.value > 0.0
         else "a faster answer, or a load that works with more: as it is, no level keeps both limits",
         at="errors" if comparator.errors else "trip",
     )  # fmt: skip

@@ -23,7 +23,7 @@ def rule_catalogue() -> str:
     rules = [*(rule for family in FAMILIES for rule in family), STILL_RIGHT]
     for rule in rules:
         anchor = rule.id.replace("/", "")
-        section = rule.applies_to.replace("_", " ")
+        section = rule.judges
         lines.append(f"| [`{rule.id}`](#{anchor}) | {rule.level.value} | {section} | {_cell(rule.title)} |")
     for rule in rules:
         lines += ["", f"## {rule.id}", "", *_wrapped(f"{rule.title[0].upper()}{rule.title[1:]}. {rule.proves}")]
@@ -65,6 +65,8 @@ def description_reference() -> str:
     for name, node in quantities.items():
         units = node["description"].partition("(")[2].partition(")")[0]
         lines.append(f"| {name.replace('_', ' ')} | {_cell(units)} | `{node['examples'][0]}` |")
+    lines += ["", "## What is not there", "", *_wrapped(_NOT_THERE)]
+    lines += ["", "## What a fact is for", "", *_wrapped(_USES)]
     lines += ["", "## Limits", "", *_limits()]
     lines += ["", "## The file", "", *_table(schema["properties"], defs)]
     for name, node in defs.items():
@@ -72,6 +74,22 @@ def description_reference() -> str:
             lines += ["", f"## {name}", "", f"{node['title']}. {node['description']}", ""]
             lines += _table(node["properties"], defs, node.get("required", ()))
     return "\n".join(lines) + "\n"
+
+
+_NOT_THERE = (
+    "A key that is left out, or has no value, is a fact that is not given: it may be anything, and what it decides is "
+    "open. `none` says that there is nothing: no ripple, no filter, no reference. It can be written where the tables "
+    "offer it. A section without entries, or left out, says nothing of what there may be; `none` in place of its "
+    "entries, or its name in the list `complete`, says that all there is has been described."
+)
+
+
+_USES = (
+    "Most facts vary over parts, corners, temperature and life: a narrower range is a better part. The others say what "
+    "they are. *Ability*: what a part stands or works over; a narrower one is a worse part. *Promise*: what nobody "
+    "promises is not relied on, so that one promise more may turn a failure into a pass. *Policy*: how a house judges; "
+    "it has a default, and is never missing."
+)
 
 
 def _limits() -> Iterator[str]:
@@ -92,14 +110,26 @@ def _table(properties: Mapping[str, Any], defs: Mapping[str, Any], required: Seq
     for key, node in properties.items():
         needed = " (needed)" if key in required else ""
         example = json.dumps(node["examples"][0], ensure_ascii=False) if "examples" in node else ""
-        yield f"| `{key}`{needed} | {_kind(node, defs)} | {_cell(node.get('description', ''))} | `{_cell(example)}` |"
+        meaning = _cell(" ".join((node.get("description", ""), *_more(node)))).strip()
+        yield f"| `{key}`{needed} | {_kind(node, defs)} | {meaning} | `{_cell(example)}` |"
+
+
+def _more(node: Mapping[str, Any]) -> Iterator[str]:
+    """What a fact reads as where it is said to be none, and what holds where it is not given."""
+    if node.get("x-none", "none") != "none" and node["x-none"]:
+        yield f"`none` reads as `{json.dumps(node['x-none'], ensure_ascii=False)}`."
+    if "x-use" in node:
+        yield f"*{node['x-use'].capitalize()}.*"
+    if "default" in node:
+        yield f"Where not given, `{json.dumps(node['default'])}`."
 
 
 def _kind(node: Mapping[str, Any], defs: Mapping[str, Any]) -> str:
     inner = node.get("$ref", "").rpartition("/")[2]
     if "x-names" in node:
         many = "names of " if node.get("type") == "array" else "name of "
-        return many + " or ".join(section.replace("_", " ") for section in node["x-names"])
+        none = "`none` or " if "x-none" in node else ""
+        return none + many + " or ".join(section.replace("_", " ") for section in node["x-names"])
     if inner:
         shown = inner.replace("_", " ")
         return shown if "x-quantity" in defs[inner] or inner == "id" else f"[{shown}](#{inner})"

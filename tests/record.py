@@ -10,6 +10,7 @@ import importlib.util
 import io
 import os
 from collections.abc import Callable, Iterator, Mapping
+from functools import lru_cache, partial
 from pathlib import Path
 from typing import Any
 
@@ -70,6 +71,7 @@ def recorded() -> Mapping[str, Callable[[], str]]:
         "rules/README.md": _documents().rule_catalogue,
         "schema/README.md": _documents().description_reference,
         "lint/physics/README.md": _documents().formula_sheet,
+        **{f"lint/facts/views/{name}.py": partial(_fact_views().view_module, name) for name in _fact_views().MODULES},
         "tests/golden/rules.txt": lambda: command("rules"),
         "tests/golden/help.txt": _help,
         "README.md": _readme,
@@ -95,8 +97,19 @@ def _filled(text: str, name: str, lines: list[str]) -> str:
 
 
 def _documents() -> Any:
-    """The module beside this one, wherever Python was started."""
-    spec = importlib.util.spec_from_file_location("documents", Path(__file__).with_name("documents.py"))
+    """How the documents are made."""
+    return _beside("documents")
+
+
+def _fact_views() -> Any:
+    """How the typed views of facts are made."""
+    return _beside("fact_views")
+
+
+@lru_cache
+def _beside(name: str) -> Any:
+    """A module beside this one, wherever Python was started."""
+    spec = importlib.util.spec_from_file_location(name, Path(__file__).with_name(f"{name}.py"))
     assert spec is not None and spec.loader is not None
     module = importlib.util.module_from_spec(spec)
     spec.loader.exec_module(module)

@@ -1,13 +1,15 @@
 from __future__ import annotations
 
-import math
 from collections.abc import Callable
+from math import inf
 from pathlib import Path
 
 import pytest
 
-from tidegate.lint.case import Case, MissingFactsError, UnsettledError
+from tidegate.lint.account import Line, less, plus
+from tidegate.lint.case import Case, UnsettledError
 from tidegate.lint.description.load import load
+from tidegate.lint.facts.reading import Corner, MissingFactsError, Reading
 from tidegate.lint.graph.dependency import build
 from tidegate.lint.graph.edge import Hop
 from tidegate.lint.judgement import Kind, Level, Measure, Relation
@@ -43,71 +45,126 @@ def case(tmp_path: Path) -> Case:
 
 
 def test_facts_that_are_given(case: Case) -> None:
-    rail = case.of(case.description.rails["avdd"])
-    assert (rail.least("delivered"), rail.most("delivered")) == (1.7, 1.9)
-    assert rail.middle("delivered") == pytest.approx(1.8)
-    assert (rail.least("nominal"), rail.most("nominal"), rail.middle("nominal")) == (1.8, 1.8, 1.8)
-    assert rail.middle("ripple.peak_to_peak") == 0.008
-    assert case.own.number("divider.ratio") == 0.4
-    assert case.own.must("role") == "under_voltage"
-    assert case.own.must("tracked") is False  # given, although it is not true
-    assert case.own.must("errors.offset.is") == "bound"
-    assert case.own.must("hysteresis.switches.1.closed_when") == "low"
-    assert case.own.element("domain") is case.description.domains["aon"]
-    assert case.whole.number("conditions.coverage") == 3.0
+    rail, uv = case.of(case.description.rails["avdd"]), case.of(case.description.comparators["uv"])
+    assert (rail.delivered.least(), rail.delivered.most()) == (1.7, 1.9)
+    assert (rail.nominal.least(), rail.nominal.most(), rail.nominal.typical()) == (1.8, 1.8, 1.8)
+    assert rail.ripple.peak_to_peak.typical() == 0.008
+    assert uv.divider.ratio.number() == 0.4
+    assert uv.role.must() == "under_voltage"
+    assert uv.tracked.must() is False  # given, although it is not true
+    assert uv.errors["offset"].is_.must() == "bound"
+    assert uv.hysteresis.switches[1].closed_when.must() == "low"
+    assert uv.domain.element() is case.description.domains["aon"]
+    assert case.whole.conditions.coverage.number() == 3.0
+    assert case.reading.exact
     assert case.missing == []
     case.settle()
 
 
-def test_facts_that_are_not_given_are_noted_with_their_paths(case: Case) -> None:
-    rail = case.of(case.description.rails["avdd"])
-    numbers = (
-        rail.most("rise"), rail.least("ripple.peak_to_peak"), rail.most("dip.depth"), case.own.number("sampling"),
-        case.own.most("errors.offset.amount"), case.whole.number("conditions.false_trips"),
-        case.own.lacks("trip.rising"),
+def in_corner(case: Case, corner: Corner) -> Case:
+    return Case(
+        subject=case.subject, rule=case.rule, level=case.level, description=case.description, graph=case.graph,
+        reading=Reading(corner),
     )  # fmt: skip
-    assert all(math.isnan(number) for number in numbers)
-    with pytest.raises(MissingFactsError) as missing:
-        case.settle()
-    assert missing.value.missing == (
-        "rails.avdd.rise", "rails.avdd.ripple.peak_to_peak.min", "rails.avdd.dip.depth", "comparators.uv.sampling",
-        "comparators.uv.errors.offset.amount", "conditions.false_trips", "comparators.uv.trip.rising",
+
+
+def test_numbers_that_are_not_known_stand_at_the_corner_of_the_reading(case: Case) -> None:
+    """The table of section 1 of the design: a lone end says nothing of the other, a typical value bounds both."""
+    for corner, expected in ((Corner.SURE, (inf, 0.0, inf, -inf, 0.0)), (Corner.BEST, (0.0, 0.008, 0.008, inf, inf))):
+        reads = in_corner(case, corner)
+        rail, uv = reads.of(case.description.rails["avdd"]), reads.of(case.description.comparators["uv"])
+        found = (
+            rail.dip.depth.most(), rail.ripple.peak_to_peak.least(), rail.ripple.peak_to_peak.most(),
+            uv.works_from.least(), rail.rise.least(),
+        )  # fmt: skip
+        assert found == expected
+        assert tuple(reads.reading.waits) == (
+            "rails.avdd.dip.depth", "rails.avdd.ripple.peak_to_peak.min", "rails.avdd.ripple.peak_to_peak.max",
+            "comparators.uv.works_from", "rails.avdd.rise",
+        )  # fmt: skip
+        assert reads.missing == []
+
+
+def test_an_ability_helps_the_other_way_round(case: Case) -> None:
+    """A load that works over more is the better load: what is missing of its range is worst at the other end."""
+    sure, best = (in_corner(case, corner).of(case.description.rails["avdd"]) for corner in Corner)
+    assert (sure.guaranteed.least(), best.guaranteed.least()) == (inf, -inf)
+    assert (sure.damage.least(), best.damage.least()) == (-inf, inf)
+
+
+def test_a_word_that_is_missing_is_chosen(case: Case) -> None:
+    uv = case.of(case.description.comparators["uv"])
+    assert uv.output.must() == "level"
+    assert case.reading.options == {"comparators.uv.output": ("level", "pulse")}
+    other = Case(
+        subject=case.subject, rule="", level=Level.NOTE, description=case.description, graph=case.graph,
+        reading=Reading(chosen={"comparators.uv.output": "pulse"}),
     )  # fmt: skip
+    assert other.of(case.description.comparators["uv"]).output.must() == "pulse"
 
 
 def test_what_a_rule_cannot_go_on_without(case: Case) -> None:
-    case.own.most("delay")
+    uv = case.of(case.description.comparators["uv"])
+    uv.lacks("trip.rising")
     with pytest.raises(MissingFactsError) as missing:
-        case.own.element("reference")
-    assert missing.value.missing == ("comparators.uv.delay", "comparators.uv.reference")
+        uv.reference.element()
+    assert missing.value.missing == ("comparators.uv.trip.rising", "comparators.uv.reference")
 
 
-def test_missing_facts_are_named_once(case: Case) -> None:
-    for _ in range(3):
-        case.own.most("delay")
-    with pytest.raises(MissingFactsError, match=r"^comparators\.uv\.delay$"):
-        case.settle()
-
-
-def test_gather_asks_everything_before_it_gives_up(case: Case) -> None:
-    assert case.gather(lambda: 1, lambda: "two") == (1, "two")
+def test_each_question_is_asked_before_the_case_gives_up(case: Case) -> None:
+    uv = case.of(case.description.comparators["uv"])
+    assert case.each([lambda: 1, lambda: 2]) == [1, 2]
     with pytest.raises(MissingFactsError) as missing:
-        case.gather(
-            lambda: case.own.must("bias"), lambda: case.own.most("delay"), lambda: 3.0, lambda: case.own.must("output")
-        )
-    assert missing.value.missing == ("comparators.uv.bias", "comparators.uv.delay", "comparators.uv.output")
+        case.each([uv.bias.must, uv.delay.most, uv.reference.must])
+    assert missing.value.missing == ("comparators.uv.bias", "comparators.uv.reference")
 
 
-def test_attempt_leaves_no_trace(case: Case) -> None:
-    assert case.attempt(lambda: 5) == 5
-    assert case.attempt(lambda: case.own.most("delay")) is None
-    assert case.attempt(lambda: case.own.must("bias")) is None
-    assert case.lacking(lambda: case.own.must("bias")) == ("comparators.uv.bias",)
-    assert case.lacking(lambda: 5) == ()
+def test_what_only_helps_a_message_leaves_no_trace(case: Case) -> None:
+    uv = case.of(case.description.comparators["uv"])
+    assert case.if_known(lambda: 5) == 5
+    assert case.if_known(uv.delay.most) is None
+    assert case.if_known(uv.bias.must) is None
+    assert case.if_known(uv.output.must) is None
+    assert case.if_known(uv.divider.ratio.number) == 0.4
+    assert case.reading.exact
     assert case.missing == []
-    case.own.most("delay")
-    assert case.attempt(lambda: case.own.number("divider.ratio")) == 0.4
-    assert case.missing == ["comparators.uv.delay"]
+
+
+def test_what_only_might_hold_does_where_it_harms(case: Case) -> None:
+    sure, best = in_corner(case, Corner.SURE), in_corner(case, Corner.BEST)
+    assert sure.perhaps(True, might=True) and best.perhaps(True, might=True)
+    assert (sure.perhaps(False, might=True), best.perhaps(False, might=True)) == (True, False)
+    assert (sure.perhaps(False, might=True, harms=False), best.perhaps(False, might=True, harms=False)) == (False, True)
+    assert not sure.perhaps(False, might=False)
+
+
+def test_a_sum_names_its_terms(case: Case) -> None:
+    rail = case.of(case.description.rails["avdd"])
+    found = case.sum(
+        plus("delivered", rail.delivered.least, of=rail.delivered),
+        less("half the ripple", lambda: rail.ripple.peak_to_peak.most() / 2, of=rail.ripple.peak_to_peak),
+    )
+    assert found.value == -inf  # at the sure corner a ripple of which no end is given has none
+    assert found.lines == (
+        Line("delivered", 1.7, "rails.avdd.delivered"),
+        Line("half the ripple", -inf, "rails.avdd.ripple.peak_to_peak", ("rails.avdd.ripple.peak_to_peak.max",)),
+    )
+
+
+def test_a_term_that_cannot_be_computed_hides_no_other(case: Case) -> None:
+    uv, rail = case.of(case.description.comparators["uv"]), case.of(case.description.rails["avdd"])
+    with pytest.raises(MissingFactsError) as missing:
+        case.sum(plus("a", lambda: float(len(uv.bias.must()))), plus("b", lambda: float(len(uv.reference.must()))))
+    assert missing.value.missing == ("comparators.uv.bias", "comparators.uv.reference")
+    for corner, expected in ((Corner.SURE, -inf), (Corner.BEST, 1.7)):
+        reads = in_corner(case, corner)
+        facts = reads.of(case.description.comparators["uv"])
+        found = reads.sum(
+            plus("delivered", rail.delivered.least),
+            less("what it may add", lambda facts=facts: len(facts.bias.must()), floor=0.0),
+        )
+        assert (found.value, found.lines[1].waits) == (expected, ("comparators.uv.bias",))
+        assert tuple(reads.reading.blocked) == ("comparators.uv.bias",)
 
 
 def test_answers_with_a_number(case: Case) -> None:
@@ -143,8 +200,8 @@ def test_answers_without_a_number(case: Case) -> None:
     assert case.open((), "out of range").mend == ""
 
 
-def test_no_answer_but_open_goes_over_a_missing_fact(case: Case) -> None:
-    case.own.most("delay")
+def test_no_answer_but_open_goes_over_a_missing_name(case: Case) -> None:
+    case.of(case.description.comparators["uv"]).lacks("bias")
     answers: tuple[Callable[[], object], ...] = (
         lambda: case.passes("well"),
         lambda: case.fails("badly", mend="do better"),
@@ -152,6 +209,16 @@ def test_no_answer_but_open_goes_over_a_missing_fact(case: Case) -> None:
         lambda: case.at_most(need=1.0, have=0.0, dimension=Dimension.COUNT, says="x"),
     )
     for answer in answers:
-        with pytest.raises(UnsettledError, match=r"^answered although facts are missing: comparators\.uv\.delay$"):
+        with pytest.raises(UnsettledError, match=r"^answered although facts are missing: comparators\.uv\.bias$"):
             answer()
     assert case.open(case.missing).kind is Kind.OPEN
+
+
+def test_what_rounding_leaves_of_terms_that_cancel_is_nothing(case: Case) -> None:
+    # 0.1 + 0.2 - 0.3 is 5.6e-17 in binary floating point (IEEE 754); a part in a million is no dust.
+    left = case.sum(plus("a", lambda: 0.1), plus("b", lambda: 0.2), less("c", lambda: 0.3))
+    assert left.value == 0.0
+    taken = case.sum(plus("a", lambda: 0.1), plus("b", lambda: 0.2)).less(case.sum(plus("c", lambda: 0.3)))
+    assert taken.value == 0.0
+    assert case.sum(plus("a", lambda: 0.3000003), less("c", lambda: 0.3)).value == pytest.approx(3e-7, rel=1e-6)
+    assert case.sum().value == 0.0

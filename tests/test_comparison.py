@@ -101,15 +101,21 @@ def test_a_waiver_before_the_others_changes_no_judgement_of_theirs(old: Review, 
 
 def said(
     kind: Kind = Kind.PASS, margin: float | None = None, *, need: float = 1.0, waiver: str = "", message: str = "says",
-    level: Level = Level.ERROR,
+    level: Level = Level.ERROR, sure: float | None = None, best: float | None = None, under: str = "",
 ) -> Judgement:  # fmt: skip
-    measure = None if margin is None else Measure(need, need + margin, Dimension.VOLTAGE, Relation.AT_LEAST)
+    measure = (
+        None
+        if margin is None
+        else Measure(need, need + margin, Dimension.VOLTAGE, Relation.AT_LEAST, sure=sure, best=best)
+    )
     return Judgement(
         rule="a/b", subject="uv", kind=kind, level=level, message=message, at="comparators.uv", measure=measure,
-        waiver=waiver,
+        waiver=waiver, under=under,
     )  # fmt: skip
 
 
+NOT_APPLICABLE = Kind.NOT_APPLICABLE
+INF = math.inf
 PAIRS: tuple[tuple[str, Judgement | None, Judgement | None, Harm | None], ...] = (
     ("same", said(), said(), None),
     ("pass to fail", said(), said(Kind.FAIL), Harm.WORSE),
@@ -136,6 +142,28 @@ PAIRS: tuple[tuple[str, Judgement | None, Judgement | None, Harm | None], ...] =
     ("unlimited to limited", said(margin=math.inf), said(margin=0.1), Harm.MARGIN_SHRANK),
     ("fails for another reason", said(Kind.FAIL, message="one"), said(Kind.FAIL, message="two"), Harm.OTHER),
     ("number gone", said(Kind.FAIL, -0.1), said(Kind.FAIL), Harm.OTHER),
+    # A fact taken away: what failed for sure is open, and a failure less is no harm.
+    ("fail to open", said(Kind.FAIL, -0.1), said(Kind.OPEN, 0.1, sure=-INF, best=0.1), Harm.BETTER),
+    # A fact added: the margin that there surely is was none, and is one.
+    ("sure end known", said(margin=0.1, sure=0.0, best=INF), said(margin=0.1), Harm.MARGIN_GREW),
+    ("sure end lost", said(margin=0.1), said(margin=0.1, sure=0.0, best=0.1), Harm.MARGIN_SHRANK),
+    (
+        "best end grew, sure end shrank",
+        said(margin=0.1, sure=0.1, best=0.2), said(margin=0.1, sure=0.05, best=0.9), Harm.MARGIN_SHRANK,
+    ),
+    (
+        "nothing sure, best end shrank",
+        said(Kind.OPEN, 0.2, sure=-INF, best=0.2), said(Kind.OPEN, 0.1, sure=-INF, best=0.1), Harm.MARGIN_SHRANK,
+    ),
+    (
+        "surely short by more",
+        said(Kind.FAIL, -0.1, sure=-INF, best=-0.1), said(Kind.FAIL, -0.2, sure=-INF, best=-0.2), Harm.WORSE,
+    ),
+    ("told under another failure", said(Kind.FAIL, -0.1), said(NOT_APPLICABLE, -0.1, under="a/c"), Harm.OTHER),
+    ("no longer told under another", said(NOT_APPLICABLE, -0.1, under="a/c"), said(Kind.FAIL, -0.1), Harm.OTHER),
+    ("worse under another", said(Kind.FAIL, -0.1), said(NOT_APPLICABLE, -0.2, under="a/c"), Harm.WORSE),
+    ("pass to under another", said(margin=0.1), said(NOT_APPLICABLE, -0.1, under="a/c"), Harm.WORSE),
+    ("under another to pass", said(NOT_APPLICABLE, -0.1, under="a/c"), said(margin=0.1), Harm.BETTER),
     ("passes in other words", said(message="one"), said(message="two"), None),
 )  # fmt: skip
 

@@ -1,21 +1,26 @@
 from __future__ import annotations
 
 import datetime
+import math
 from collections.abc import Callable
 from pathlib import Path
+from typing import Any
 
 import msgspec
 import pytest
 
+from tidegate.lint.account import plus
 from tidegate.lint.case import Case
 from tidegate.lint.description.load import Loaded, load
 from tidegate.lint.description.model.description import Conditions
+from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.description.place import DescriptionError
 from tidegate.lint.engine import Catalogue, review
+from tidegate.lint.facts.reading import Better
 from tidegate.lint.judgement import Judgement, Kind, Level
 from tidegate.lint.physics.domain import require_positive
 from tidegate.lint.quantity import Dimension
-from tidegate.lint.rule import Example, Rule, rule
+from tidegate.lint.rule import Example, Rule, Yield, rule
 from tidegate.lint.settings import Settings
 
 TODAY = datetime.date(2026, 1, 1)
@@ -30,16 +35,15 @@ waivers:
 """
 
 
-def made(id: str, judge: Callable[[object, Case], object], applies_to: str = "rails") -> Rule:
+def made(id: str, judge: Callable[[Any, Case], object], applies_to: str = "rails") -> Rule:
     return rule(
         id, title="a rule", level=Level.ERROR, applies_to=applies_to, proves="", facts=(), mend="", sources=(),
         example=Example("", ""),
     )(judge)  # type: ignore[arg-type]  # fmt: skip
 
 
-def high_enough(_: object, case: Case) -> Judgement:
-    have_v = case.own.most("nominal")
-    case.settle()
+def high_enough(rail: Rail, case: Case) -> Judgement:
+    have_v = case.of(rail).nominal.most()
     return case.at_least(need=1.5, have=have_v, dimension=Dimension.VOLTAGE, says="nominal", at="nominal")
 
 
@@ -80,13 +84,71 @@ def test_a_catalogue_refuses_a_rule_twice_and_a_section_that_is_none() -> None:
 
 
 def test_missing_facts_make_a_judgement_open(loaded: Loaded) -> None:
-    def needs_both(_: object, case: Case) -> Judgement:
-        case.own.most("rise"), case.own.least("fall")
-        case.settle()
-        return case.passes("well")
+    def needs_both(rail: Rail, case: Case) -> Judgement:
+        facts = case.of(rail)
+        return case.at_least(
+            need=facts.rise.most(), have=facts.fall.least(), dimension=Dimension.DURATION, says="falls within"
+        )
 
     found = answers(loaded, made("supply/both", needs_both))["supply/both", "avdd"]
     assert (found.kind, found.missing) == (Kind.OPEN, ("rails.avdd.rise", "rails.avdd.fall"))
+
+
+def test_a_name_that_is_missing_makes_a_judgement_open(loaded: Loaded) -> None:
+    def needs_both(rail: Rail, case: Case) -> Judgement:
+        facts = case.of(rail)
+        case.each([facts.after.must, facts.made_by.must])
+        return case.passes("well")
+
+    found = answers(loaded, made("supply/both", needs_both))["supply/both", "avdd"]
+    assert (found.kind, found.missing) == (Kind.OPEN, ("rails.avdd.after", "rails.avdd.made_by"))
+
+
+def test_what_holds_whatever_is_missing_is_said(loaded: Loaded) -> None:
+    """A wait that can only add to what is too long already, or stay below what is allowed, opens nothing."""
+
+    def short(rail: Rail, case: Case) -> Judgement:
+        rise = case.sum(plus("rises", lambda: 2e-3), plus("waits", case.of(rail).delay.most, of=case.of(rail).delay))
+        return case.at_most(need=1e-3, have=rise, dimension=Dimension.DURATION, says="up after", mend="sooner")
+
+    def long_enough(rail: Rail, case: Case) -> Judgement:
+        waits_s = case.of(rail).delay.least()
+        return case.at_least(need=1e-3, have=2e-3 + waits_s, dimension=Dimension.DURATION, says="up after")
+
+    found = answers(loaded, made("supply/short", short), made("supply/long", long_enough))
+    failed, passed = found["supply/short", "avdd"], found["supply/long", "avdd"]
+    assert (failed.kind, passed.kind) == (Kind.FAIL, Kind.PASS)
+    assert failed.message == ("up after 2 ms, at most 1 ms needed: at least 1 ms short, whatever delay of avdd may be")
+    assert failed.measure is not None and passed.measure is not None
+    assert (failed.measure.sure_margin, failed.measure.best_margin) == (-math.inf, pytest.approx(-1e-3))
+    assert (passed.measure.sure_margin, passed.measure.best_margin) == (pytest.approx(1e-3), math.inf)
+    assert [line.waits for line in failed.account] == [(), ("rails.avdd.delay",)]
+
+
+def test_a_missing_word_is_tried_with_every_value(loaded: Loaded) -> None:
+    def asks(domain: Domain, case: Case) -> Judgement:
+        if case.of(domain).kind.must() == "switched":
+            return case.fails("is switched", mend="keep it on")
+        return case.passes("stays on")
+
+    found = answers(loaded, made("domain/stays", asks, "domains"))["domain/stays", "aon"]
+    assert (found.kind, found.missing) == (Kind.OPEN, ("domains.aon.kind",))
+    assert found.message == "cannot be judged without domains.aon.kind; it holds where kind of aon is always_on"
+
+
+def test_a_failure_is_told_under_one_that_says_the_same(loaded: Loaded) -> None:
+    """It keeps its number; nothing yields to what passes, is open or waived."""
+    first = made("supply/first", lambda rail, case: case.fails("bad", mend="mend it"))
+    below = msgspec.structs.replace(made("supply/below", high_enough), yields=(Yield("supply/first"),))
+    found = answers(loaded, first, below)["supply/below", "vcore"]
+    assert (found.kind, found.under) == (Kind.NOT_APPLICABLE, "supply/first")
+    assert found.measure is not None and found.measure.margin == pytest.approx(-0.3)
+    for kind in ("passes", "open"):
+        other = made("supply/first", lambda rail, case, kind=kind: getattr(case, kind)("well"))
+        assert answers(loaded, other, below)["supply/below", "vcore"].kind is Kind.FAIL
+    waived = msgspec.structs.replace(first, id="supply/high_enough")
+    below = msgspec.structs.replace(below, yields=(Yield("supply/high_enough"),))
+    assert answers(loaded, waived, below)["supply/below", "vcore"].kind is Kind.FAIL
 
 
 def test_a_number_outside_its_formula_makes_a_judgement_open(loaded: Loaded) -> None:
@@ -104,13 +166,13 @@ def test_a_number_outside_its_formula_makes_a_judgement_open(loaded: Loaded) -> 
 def test_a_number_that_is_missing_is_told_before_what_the_formula_refused(loaded: Loaded) -> None:
     """Nobody needs to hear that not a number lies outside the range, and least of all without the name of the fact."""
 
-    def refused(_: object, case: Case) -> Judgement:
-        rise_s = case.own.most("rise")
+    def refused(rail: Rail, case: Case) -> Judgement:
+        rise_s = case.of(rail).rise.most()
         require_positive(rise_s=rise_s)
         return case.passes("well")
 
-    def gathered(_: object, case: Case) -> Judgement:
-        case.gather(lambda: require_positive(r_ohm=0.0), lambda: case.own.most("fall"))
+    def gathered(rail: Rail, case: Case) -> Judgement:
+        case.each([lambda: require_positive(r_ohm=0.0), lambda: require_positive(t_s=case.of(rail).fall.most())])
         return case.passes("well")
 
     for name, judge, fact in (("supply/refused", refused, "rise"), ("supply/gathered", gathered, "fall")):
@@ -125,8 +187,8 @@ def test_a_rule_that_raises_is_at_fault_and_hides_no_finding(loaded: Loaded) -> 
             raise ZeroDivisionError("division by zero")
         return "well"
 
-    def hasty(_: object, case: Case) -> Judgement:
-        case.own.most("rise")
+    def hasty(rail: Rail, case: Case) -> Judgement:
+        case.of(rail).lacks("rise")
         return case.passes("well")
 
     rules = (made("supply/careless", careless), made("supply/hasty", hasty), HIGH)
@@ -179,15 +241,15 @@ def test_settings_are_in_force(loaded: Loaded) -> None:
 
 
 def test_settings_fill_in_conditions_and_take_none_away(loaded: Loaded) -> None:
-    def coverage(_: object, case: Case) -> Judgement:
-        value = case.whole.number("conditions.coverage")
-        case.settle()
-        return case.passes(f"coverage {value:g}")
+    def cycles(_: object, case: Case) -> Judgement:
+        found = case.whole.conditions.power_cycles.number(Better.LESS)
+        return case.at_most(need=100.0, have=found, dimension=Dimension.COUNT, says="power cycles")
 
-    covers = made("supply/coverage", coverage)
-    assert answers(loaded, covers)["supply/coverage", "avdd"].kind is Kind.OPEN
-    offered = Settings(conditions=Conditions(coverage=2.0))
-    assert answers(loaded, covers, settings=offered)["supply/coverage", "avdd"].message == "coverage 2"
+    counts = made("supply/cycles", cycles)
+    assert answers(loaded, counts)["supply/cycles", "avdd"].kind is Kind.OPEN
+    offered = Settings(conditions=Conditions(power_cycles=20.0))
+    found = answers(loaded, counts, settings=offered)["supply/cycles", "avdd"]
+    assert (found.kind, found.message) == (Kind.PASS, "power cycles 20, at most 100 needed")
 
 
 def test_settings_that_name_what_nobody_has(loaded: Loaded) -> None:

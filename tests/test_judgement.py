@@ -2,6 +2,7 @@ from __future__ import annotations
 
 import math
 
+import msgspec
 import pytest
 
 from tidegate.lint.judgement import Judgement, Kind, Level, Measure, Relation, least_margin
@@ -95,3 +96,81 @@ def test_a_tie_but_for_rounding_is_told_as_one() -> None:
     measure = Measure(0.06, 0.1 - 0.04, Dimension.VOLTAGE, Relation.AT_MOST)
     assert measure.have != measure.need
     assert measure.text() == "60 mV, at most 60 mV needed"
+
+
+def between(sure: float, best: float, *, have: float = 0.050, kind: Kind = Kind.PASS) -> Judgement:
+    """A judgement of a number that is needed to be at least 40 mV, with both ends of its margin."""
+    measure = Measure(0.040, have, V, LEAST, sure=sure, best=best)
+    missing = ("rails.avdd.ripple.peak_to_peak",)
+    return msgspec.structs.replace(passing(0.040, have), measure=measure, missing=missing, kind=kind)
+
+
+@pytest.mark.parametrize(
+    ("sure", "best", "kind", "asked", "expected"),
+    [
+        (0.010, 0.020, Kind.PASS, "10 mV", Kind.PASS),  # the sure end reaches it
+        (0.010, 0.020, Kind.PASS, "11 mV", Kind.OPEN),  # the best end does
+        (0.010, math.inf, Kind.PASS, "11 mV", Kind.OPEN),
+        (0.010, 0.020, Kind.PASS, "21 mV", Kind.FAIL),  # neither does
+        (-math.inf, 0.020, Kind.OPEN, "20 mV", Kind.OPEN),
+        (-math.inf, 0.020, Kind.OPEN, "21 mV", Kind.FAIL),  # whatever the missing facts are
+        (-math.inf, math.inf, Kind.OPEN, "1 V", Kind.OPEN),
+    ],
+)
+def test_a_least_margin_is_judged_by_both_ends(
+    sure: float, best: float, kind: Kind, asked: str, expected: Kind
+) -> None:
+    found = least_margin(between(sure, best, kind=kind), asked)
+    assert found.kind is expected
+    if kind is Kind.PASS and expected is Kind.OPEN:
+        assert found.message.startswith("hysteresis 50 mV; the settings ask for 11 mV of margin: +10 mV for sure, ")
+        assert found.mend == "give rails.avdd.ripple.peak_to_peak"
+    if expected is Kind.FAIL:
+        assert found.message.endswith(f"the margin of +20 mV is less than the {asked} that the settings ask for")
+        assert found.mend == "another 1 mV of margin"
+
+
+def test_where_nothing_is_missing_the_sure_end_decides_the_least_margin() -> None:
+    """How extremes go together may not be said although every fact is given: worst case is judged all the same."""
+    loose = msgspec.structs.replace(between(0.010, 0.020), missing=())
+    assert least_margin(loose, "11 mV").kind is Kind.FAIL
+
+
+INF = math.inf
+
+
+@pytest.mark.parametrize(
+    ("kind", "have", "sure", "best", "words"),
+    [
+        (Kind.PASS, 0.050, None, None, "+10 mV"),
+        (Kind.PASS, 0.050, 0.010, 0.020, "+10 mV or more"),
+        (Kind.PASS, 0.050, 0.010, INF, "+10 mV or more"),
+        (Kind.FAIL, 0.030, None, None, "-10 mV"),
+        (Kind.FAIL, 0.030, -INF, -0.010, "-10 mV or worse"),
+        (Kind.FAIL, 0.030, -0.010, 0.020, "-10 mV"),  # worst case, of which it is not said that it is met
+        (Kind.OPEN, 0.050, -INF, 0.010, "+10 mV so far"),
+        (Kind.OPEN, 0.050, -0.005, 0.010, "-5 mV to +10 mV"),
+        (Kind.OPEN, 0.050, -0.005, INF, "-5 mV or more"),
+        (Kind.OPEN, 0.050, -INF, INF, "not known"),
+        (Kind.NOT_APPLICABLE, 0.030, None, None, "-10 mV"),
+    ],
+)
+def test_a_margin_is_told_as_far_as_it_is_known(
+    kind: Kind, have: float, sure: float | None, best: float | None, words: str
+) -> None:
+    measure = Measure(0.040, have, V, LEAST, sure=sure, best=best)
+    assert measure.margin_words(kind) == words
+    assert measure.is_known is (words != "not known")
+
+
+def test_no_size_is_told_that_is_none() -> None:
+    """What has no end is not shown as a number, and a limit below 0 of a size is no fact."""
+    assert Measure(0.040, INF, V, LEAST).text() == "without end, at least 40 mV needed"
+    assert Measure(0.040, INF, V, MOST, sure=-INF, best=0.01).text() == "not known, at most 40 mV needed"
+    assert Measure(INF, 0.040, V, MOST).text() == "40 mV, no limit known"
+    assert Measure(-INF, 0.040, V, MOST).text() == "40 mV, no limit that would do"
+    assert Measure(-0.012, 0.092, V, MOST).text() == "92 mV, no room for any: 12 mV too little without it"
+    assert Measure(-0.012, 0.092, V, LEAST).text() == "92 mV, none needed"
+    # Slopes over temperature have a sign.
+    slope = Measure(-0.002, -0.001, Dimension.TEMPERATURE_SLOPE, MOST)
+    assert slope.text() == "-1 mV/K, at most -2 mV/K needed"

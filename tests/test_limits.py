@@ -181,7 +181,7 @@ def test_long_rows_are_followed_without_recursion(
     element = ("s7",) if command == ("trace",) else ()
     done = tidegate(*command, "main.yaml", *element, cwd=tmp_path)
     assert done.stderr == ""
-    assert done.returncode == (1 if command[0] == "review" else 0)
+    assert done.returncode == (1 if command[0] == "review" and ring else 0)  # a ring waits for itself
     if command[0] == "review":
         assert json.loads(done.stdout)["files"][0].get("rule_faults", []) == []
 

@@ -211,8 +211,8 @@ def test_a_value_below_zero_is_shown_as_its_size_with_a_sign(dimension: Dimensio
         (1e4, Dimension.SLOPE, "10 V/ms"),
         (12345.0, Dimension.COUNT, "12340"),
         (1.23456e-5, Dimension.COUNT, "0.00001235"),
-        (math.inf, Dimension.RESISTANCE, "unlimited"),
-        (-math.inf, Dimension.TEMPERATURE, "-unlimited"),
+        (math.inf, Dimension.RESISTANCE, "without end"),
+        (-math.inf, Dimension.TEMPERATURE, "-without end"),
     ],
 )
 def test_values_are_shown_as_engineers_write_them(value: float, dimension: Dimension, text: str) -> None:
@@ -240,7 +240,8 @@ def test_different_values_never_look_the_same(first: float, second: float) -> No
 
 
 def test_a_span_is_read_from_its_parts() -> None:
-    assert Voltage.read("1.62 V") == Voltage(1.62, 1.62, 1.62)
+    assert Voltage.read("1.62 V") == Voltage(1.62, 1.62, 1.62, plain=True)
+    assert Voltage.read({"min": "1.62 V", "typ": "1.62 V", "max": "1.62 V"}) == Voltage(1.62, 1.62, 1.62)
     span = Voltage.read({"min": "1.6 V", "max": "1.7 V", "basis": {"by": "simulated"}})
     assert (span.least, span.typical, span.most) == (1.6, None, 1.7)
     assert span.basis == Basis(by="simulated")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime
+import math
 from pathlib import Path
 
 import msgspec
@@ -282,3 +283,30 @@ def test_a_waiver_file_is_checked(tmp_path: Path, text: str, fault: str) -> None
     with pytest.raises(DescriptionError) as refused:
         load_settings(tmp_path / "tidegate.settings.yaml", shown="tidegate.settings.yaml")
     assert any(fault in str(each).replace("\\", "/") for each in refused.value.faults), refused.value.faults
+
+
+def with_ends(sure: float, best: float) -> Judgement:
+    """A failure of -13 mV as it is told, with both ends of its margin."""
+    found = judgement()
+    assert found.measure is not None
+    measure = msgspec.structs.replace(found.measure, sure=sure, best=best)
+    return msgspec.structs.replace(found, measure=measure, missing=("rails.avdd.ripple.peak_to_peak",))
+
+
+def test_a_waiver_is_met_by_the_sure_end_and_never_by_the_best() -> None:
+    unsure = with_ends(-math.inf, -0.013)
+    marked, on_waiver = waived(unsure, margin="-13 mV")
+    assert marked.waiver == ""
+    assert on_waiver.message == "the margin of hysteresis/covers_disturbance on uv can be worse than the -13 mV agreed"
+    assert on_waiver.mend == "give rails.avdd.ripple.peak_to_peak, or agree on it again without a margin"
+    assert waived(unsure)[0].waiver != ""  # agreed on without a margin
+    bounded = with_ends(-0.020, -0.013)
+    assert waived(bounded, margin="-19 mV")[0].waiver == ""
+    assert waived(bounded, margin="-20 mV")[0].waiver != ""
+
+
+def test_what_is_worse_than_agreed_for_sure_is_told_with_its_margin() -> None:
+    _, on_waiver = waived(with_ends(-math.inf, -0.013), margin="-12 mV")
+    assert on_waiver.message == (
+        "the margin of hysteresis/covers_disturbance on uv is -13 mV or worse, worse than the -12 mV agreed"
+    )

@@ -7,15 +7,13 @@ from collections.abc import Sequence
 from pathlib import Path as FilePath
 from typing import Final
 
-from tidegate.lint.derived.asking import Unknown
 from tidegate.lint.derived.levels.detector_placement import DetectorPlacement
-from tidegate.lint.derived.levels.level_placement import LevelPlacement, margins_v, windows_at
-from tidegate.lint.derived.levels.level_spread import is_nominal
+from tidegate.lint.derived.levels.placing import Place as LevelPlace
 from tidegate.lint.description.load import Loaded
 from tidegate.lint.description.place import DescriptionError, Fault, Path, Place, dotted
 from tidegate.lint.description.reading import read_file
 from tidegate.lint.description.rewrite import replace_file, rewritten
-from tidegate.lint.quantity import Voltage
+from tidegate.lint.facts.reading import Corner
 
 _PER_VOLT: Final = 1000  # levels are chosen in whole millivolts
 _MOST_TRIED: Final = 3
@@ -60,47 +58,59 @@ def _chosen(loaded: Loaded, placed: DetectorPlacement) -> dict[Path, int]:
     def fault(problem: str, advice: str) -> DescriptionError:
         return DescriptionError([Fault(loaded.sources.place((*base, "trip")), dotted(base), problem, advice)])
 
-    if isinstance(found, Unknown):
-        raise fault(f"cannot be placed ({found.text()})", "nothing was written")
     if comparator.trip is None and comparator.codes:
         raise fault("its levels are chosen by code", "choose a code that is usable")
-    if found.facts.levels.ranged:
+    if found.stated.words == "typical":
+        raise fault("its levels are stated as typical values", "state nominal levels with their errors")
+    if found.stated.ranged:
         raise fault("its levels are stated as a range", "move the circuit, and state the range that it has then")
-    if found.falling.short_v > 0.0:
+    if found.best.is_empty:
         raise fault("no level keeps every limit", "see what would buy room")
-    chosen = chosen_levels_mv(found)
+    if found.sure.is_empty:
+        raise fault(f"no level surely keeps every limit without {', '.join(found.waits)}", "nothing was written")
+    chosen = chosen_levels_mv(placed)
     if chosen is None:
         raise fault("no whole millivolt lies in the interval", "write the level yourself")
     trip = comparator.trip
-    spans = (("falling", trip and trip.falling, chosen[0]), ("rising", trip and trip.rising, chosen[1]))
-    given = [(which, span, level_mv) for which, span, level_mv in spans if isinstance(span, Voltage)]
-    if not given:  # keys without a value yet: rewriting says so where there is no key
-        return {(*base, "trip", which): level_mv for which, _, level_mv in spans}
+    falling, rising = (None, None) if trip is None else (trip.falling, trip.rising)
+    new = {"falling": chosen[0], "rising": chosen[1]}
+    given = {which: span for which, span in (("falling", falling), ("rising", rising)) if span is not None}
+    # keys without a value yet: rewriting says so where there is no key
     return {
-        (*base, "trip", which, *_to_value(span)): level_mv
-        for which, span, level_mv in given
-        if span.typical != level_mv / _PER_VOLT
+        (*base, "trip", which): level_mv
+        for which, level_mv in new.items()
+        if not given or (which in given and given[which].typical != level_mv / _PER_VOLT)
     }
 
 
-def _to_value(span: Voltage) -> Path:
-    """The rest of the way to the value of a nominal level, which may be stated as ``{typ: ...}``."""
-    assert is_nominal(span)
-    return () if span.least is not None else ("typ",)
+def chosen_levels_mv(placed: DetectorPlacement) -> tuple[int, int] | None:
+    """Falling and rising level in whole millivolts, the nearest the middle that surely keep every limit.
 
-
-def chosen_levels_mv(found: LevelPlacement) -> tuple[int, int] | None:
-    """Falling and rising level in whole millivolts, the nearest the middle that keep every limit; None if none do."""
-    middle = round(found.middle_v * _PER_VOLT)
-    apart = found.facts.levels.hysteresis_v * _PER_VOLT
+    Of a detector that states one level, the other one is as far away as its hysteresis says.
+    Returns: None where none do, or where it is not known how far the levels lie apart or where either end is.
+    """
+    stated, middle_v = placed.found.stated, placed.found.sure.middle_v
+    if stated.falling_v is None or stated.hysteresis_v is None or not math.isfinite(middle_v):
+        return None
+    middle = round((stated.falling_v + middle_v) * _PER_VOLT)
+    apart = stated.hysteresis_v * _PER_VOLT
     whole = [round(apart)] if math.isclose(round(apart), apart, abs_tol=1e-6) else [math.floor(apart), math.ceil(apart)]
     for step in range(_MOST_TRIED):
         for falling in dict.fromkeys((middle - step, middle + step)):
             for between in sorted(whole, key=lambda each: abs(each - apart)):
-                windows = windows_at(found.facts, falling / _PER_VOLT, (falling + between) / _PER_VOLT)
-                if min(margins_v(found.facts, windows).values()) >= 0.0:
+                if _is_kept(placed, falling / _PER_VOLT, (falling + between) / _PER_VOLT):
                     return falling, falling + between
     return None
+
+
+def _is_kept(placed: DetectorPlacement, falling_v: float, rising_v: float) -> bool:
+    """Whether levels keep every limit, whatever is missing."""
+    placing, stated, trip = placed.placing, placed.found.stated, placed.comparator.trip
+    assert stated.falling_v is not None and stated.rising_v is not None
+    place = LevelPlace(falling_v - stated.falling_v, (rising_v - falling_v) - (stated.rising_v - stated.falling_v))
+    if trip is not None and (trip.falling is None) is not (trip.rising is None):
+        place = LevelPlace(rising_v - stated.rising_v if trip.falling is None else falling_v - stated.falling_v)
+    return all(placing.margin(due, Corner.SURE, place).margin_v >= 0.0 for due in placing.dues)
 
 
 def _text(loaded: Loaded, path: Path, level_mv: int) -> str:

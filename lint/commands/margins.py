@@ -1,4 +1,8 @@
-"""``tidegate margins``: the margin ledger, need, have and margin of every judgement with a number, least first."""
+"""``tidegate margins``: the margin ledger, need, have and margin of every judgement with a number, least first.
+
+Margins are ranked by their sure end; of what is open the best end is shown, as what is known so far.  On request the
+account of each number is shown.
+"""
 
 from __future__ import annotations
 
@@ -24,6 +28,8 @@ def configure(parser: argparse.ArgumentParser) -> None:
     add("file", metavar="FILE", help="description (YAML or JSON)")
     add("--element", metavar="ID", help="only the judgements about one element")
     add("--family", metavar="NAME", help="only the judgements of one family of rules, such as hysteresis")
+    add("--rule", metavar="ID", help="only the judgements of one rule, such as trip_window/nuisance")
+    add("--account", action="store_true", help="in text, show how each number is made up, term by term")
     add("--as", dest="form", choices=("terminal", "json"), default="terminal", help="form of the ledger")
     add("--settings", metavar="FILE", help="settings, in place of the nearest tidegate.settings.yaml")
     add("--pack", action="append", default=[], metavar="FILE", help="Python file with rules of your own")
@@ -41,10 +47,10 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     review = judged.review
     if review is None or _wrong_name(review, options, streams):
         return Exit.UNUSABLE
-    found = entries(review.judgements, element=options.element, family=options.family)
+    found = entries(review.judgements, element=options.element, family=options.family, rule=options.rule)
     if options.form == "json":
         streams.out.fix_encoding()
-    streams.out.write(_json(review, found) if options.form == "json" else _text(review, found, streams))
+    streams.out.write(_json(review, found) if options.form == "json" else _text(review, found, options, streams))
     for failed in review.faults:
         streams.say(f"{options.file}: {failed.rule} on {failed.subject} failed itself: {failed.error}")
     if review.faults:
@@ -54,10 +60,12 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
 
 
 def _wrong_name(review: Review, options: argparse.Namespace, streams: Streams) -> bool:
-    """Whether an element or a family is named that is not there; then it is said."""
-    families = dict.fromkeys(judgement.rule.partition("/")[0] for judgement in review.judgements)
+    """Whether an element, a family or a rule is named that is not there; then it is said."""
+    rules = dict.fromkeys(judgement.rule for judgement in review.judgements)
+    families = dict.fromkeys(rule.partition("/")[0] for rule in rules)
     for noun, name, known in (
-        ("element", options.element, review.graph.elements), ("family of rules", options.family, families)
+        ("element", options.element, review.graph.elements), ("family of rules", options.family, families),
+        ("rule", options.rule, rules),
     ):  # fmt: skip
         if name is not None and name not in known:
             near = get_close_matches(name, known, 1)
@@ -67,7 +75,10 @@ def _wrong_name(review: Review, options: argparse.Namespace, streams: Streams) -
     return False
 
 
-def _text(review: Review, found: Sequence[Entry], streams: Streams) -> str:
+def _text(review: Review, found: Sequence[Entry], options: argparse.Namespace, streams: Streams) -> str:
+    from tidegate.lint.reports.account_text import account_lines
+    from tidegate.lint.reports.columns import wrapped
+    from tidegate.lint.reports.detector_margins import detector_margins, table_lines
     from tidegate.lint.reports.ledger import histogram, ledger_lines
     from tidegate.lint.reports.order import verdict
 
@@ -75,14 +86,24 @@ def _text(review: Review, found: Sequence[Entry], streams: Streams) -> str:
     name = description.subsystem or "unnamed subsystem"
     title = f"{name}, revision {description.revision}" if description.revision else name
     open_ones = review.counts.get(Kind.OPEN, 0)
-    lines = [
-        plain(title),
-        f"{verdict(review)}: {len(found)} numbers of {len(review.judgements)} judgements, {open_ones} open",
-    ]
-    if found:
-        lines += [histogram(found, unicode=_takes_blocks(streams)), "", *ledger_lines(found, width=streams.width)]
-    else:
+    numbers = f"{len(found)} {'number' if len(found) == 1 else 'numbers'}"
+    said = f"{verdict(review)}: {numbers} of {len(review.judgements)} judgements, {open_ones} open"
+    lines = [plain(title), *wrapped(said, max(streams.width, 24))]
+    chosen = options.family is None and options.rule is None
+    detectors = table_lines(detector_margins(review, options.element), width=streams.width) if chosen else []
+    lines += ["", *detectors] if detectors else []
+    if not found:
         lines.append("no judgement has a number")
+    elif options.account:
+        for entry in found:
+            lines += ["", *account_lines(review, entry.judgement, width=streams.width)]
+    else:
+        lines += [
+            *([""] if detectors else []),
+            histogram(found, unicode=_takes_blocks(streams)),
+            "",
+            *ledger_lines(found, width=streams.width),
+        ]
     return "\n".join(lines) + "\n"
 
 

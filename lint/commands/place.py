@@ -12,7 +12,7 @@ from tidegate.lint.batch import Request, judge_file
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.derived.asking import Unknown, ask
 from tidegate.lint.derived.levels.detector_placement import DetectorPlacement, detector_placement
-from tidegate.lint.derived.levels.placement_facts import PLACED_ROLES
+from tidegate.lint.derived.levels.placed_roles import PLACED_ROLES
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.place import Fault
 from tidegate.lint.engine import Review
@@ -80,12 +80,8 @@ def run(options: argparse.Namespace, streams: Streams) -> int:
     streams.out.write(
         _answer(review, placed, estimates, _components(review, placed, options), written=written, options=options)
     )
-    outside = any(each.stands is False or _nothing_fits(each) for each in placed)
+    outside = any(each.found.stands is False or each.found.best.is_empty for each in placed)
     return max(status, Exit.FINDINGS if outside else Exit.KEPT)
-
-
-def _nothing_fits(placed: DetectorPlacement) -> bool:
-    return not isinstance(placed.found, Unknown) and placed.found.falling.short_v > 0.0
 
 
 def _review(options: argparse.Namespace, streams: Streams) -> Review | None:
@@ -199,11 +195,8 @@ def _estimate(
     from tidegate.lint.derived.levels.drawn_detector import drawn_detector
     from tidegate.lint.physics.yield_estimate import yield_estimate
 
-    if isinstance(placed.found, Unknown):
-        return placed.found
-    facts, comparator = placed.found.facts, placed.comparator
     drawn = ask(
-        review.loaded.description, review.graph, comparator, lambda case: drawn_detector(case, comparator, facts)
+        review.loaded.description, review.graph, placed.comparator, lambda case: drawn_detector(case, placed.placing)
     )
     if isinstance(drawn, Unknown):
         return drawn

@@ -71,7 +71,7 @@ def _listed(rules: Sequence[Rule]) -> Iterator[str]:
 
 
 def _in_full(rule: Rule) -> Iterator[str]:
-    yield f"{rule.id}   ({rule.level.value}, judges {rule.applies_to.replace('_', ' ')})"
+    yield f"{rule.id}   ({rule.level.value}, judges {rule.judges})"
     yield f"  {plain(rule.title)}"
     yield ""
     yield from _part("proves", [rule.proves])

@@ -13,6 +13,7 @@ import msgspec
 
 from tidegate.lint.commands.streams import Exit, Streams
 from tidegate.lint.description.load import description_schema
+from tidegate.lint.description.said_none import NONE
 from tidegate.lint.found import quoted
 from tidegate.lint.limits import MOST_NAME
 from tidegate.lint.quantity import Dimension, QuantityError, parse
@@ -35,8 +36,8 @@ _DIGITS: Final = "+-0123456789.eE"
 # Facts that a first sketch can do without; the reference of the language names them all.
 _LATER: Final = frozenset(
     {
-        "note", "leans_on", "gated_by", "armed_by", "crossover", "codes", "ships_with", "sampling", "pulse", "made_by",
-        "works_from_slope", "switched_by", "reset_by", "current", "filter", "crowbar_peak", "power_up", "references",
+        "note", "leans_on", "gated_by", "armed_by", "crossover", "codes", "ships_with", "pulse", "made_by",
+        "works_from_slope", "switched_by", "reset_by", "current", "crowbar_peak", "power_up", "references",
     }
 )  # fmt: skip
 
@@ -83,7 +84,7 @@ def planned(rails: Sequence[str], watches: Sequence[str]) -> Plan:
     chosen: dict[str, str] = {}
     for text in rails or _USUAL_RAILS:
         name, equals, voltage = text.partition("=")
-        if not equals or not _NAME.fullmatch(name) or name == "none" or name.startswith("x-"):
+        if not equals or not _NAME.fullmatch(name) or name == NONE or name.startswith("x-"):
             raise PlanError(f"--rail {text}: name and nominal voltage are due, such as avdd=1.8V")
         if name in chosen:
             raise PlanError(f"--rail {text}: the rail {name} is given twice")
@@ -147,6 +148,8 @@ def _sections(plan: Plan) -> Iterator[str]:
     yield from ("", "domains:", *fill.element("aon", "domain", {"rail": first, "kind": "always_on"}))
     yield from _sources(plan, fill)
     yield from _detectors(plan, fill)
+    for section in ("neighbours", "modes", "complete"):
+        yield from ("", *fill.section(section))
 
 
 def _process() -> Iterator[str]:
@@ -177,7 +180,7 @@ def _detectors(plan: Plan, fill: _Filler) -> Iterator[str]:
         facts = {"role": _ROLES[role][0], "watches": rail, "domain": "aon", "bias": "bias_start", "output": "level"}
         if role != "power-on":
             facts["reference"] = "ref_fast"
-        yield from fill.element(name, "comparator", facts, without=() if role != "power-on" else ("reference",))
+        yield from fill.element(name, "comparator", facts)
     yield from ("", "output_stages:")
     for name in names:
         yield from fill.element(f"{name}_out", "output_stage", {"driven_by": f"[{name}]", "domain": "aon"})
@@ -198,35 +201,41 @@ class _Filler:
     """Writes out the keys of an object of the schema, those that are known with their value, the others explained."""
 
     def __init__(self, schema: Mapping[str, Any]) -> None:
+        self._sections: Mapping[str, Any] = schema["properties"]
         self._defs: Mapping[str, Any] = schema["$defs"]
 
-    def element(self, name: str, kind: str, facts: Mapping[str, str], without: Sequence[str] = ()) -> Iterator[str]:
-        """One element of a section."""
-        yield from self.part(name, kind, 1, facts, without)
+    def section(self, name: str) -> Iterator[str]:
+        """A section that is still to be written."""
+        yield from self._asked(name, self._sections[name], 0)
 
-    def part(
-        self, name: str, kind: str, depth: int, facts: Mapping[str, str], without: Sequence[str] = ()
-    ) -> Iterator[str]:
+    def element(self, name: str, kind: str, facts: Mapping[str, str]) -> Iterator[str]:
+        """One element of a section."""
+        yield from self.part(name, kind, 1, facts)
+
+    def part(self, name: str, kind: str, depth: int, facts: Mapping[str, str]) -> Iterator[str]:
         """An object under its key."""
         margin = "  " * depth
         yield f"{margin}{name}:"
         for key, child in self._defs[kind]["properties"].items():
             if key in facts:
                 yield f"{margin}  {key}: {facts[key]}"
-            elif key not in _LATER and key not in without:
+            elif key not in _LATER:
                 yield from self._asked(key, child, depth + 1)
 
     def _asked(self, key: str, child: Mapping[str, Any], depth: int) -> Iterator[str]:
         """A fact to be filled in, with what it means and how it is written."""
-        margin = "  " * depth
-        inner = child.get("$ref", "").rpartition("/")[2]
+        start = f"{'  ' * depth}{key}:"
+        told = f"{start.ljust(28)} # {child['description'].rstrip('.')}"
+        or_none = child.get("x-none", NONE) != NONE
+        behind = child["anyOf"][1] if or_none else child
+        inner = behind.get("$ref", "").rpartition("/")[2]
         if "properties" in self._defs.get(inner, {}):
-            yield f"{margin}{key}:"
+            yield told if or_none else start
             for name, grandchild in self._defs[inner]["properties"].items():
                 if name not in _LATER:
                     yield from self._asked(name, grandchild, depth + 1)
             return
-        yield f"{margin}{key}:".ljust(28) + f" # {child['description'].rstrip('.')}, such as {_example(child)}"
+        yield f"{told}, such as {_example(child)}"
 
 
 def _example(child: Mapping[str, Any]) -> str:

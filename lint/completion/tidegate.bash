@@ -8,7 +8,7 @@
 _shtab_tidegate_subparsers=(review margins place ramp rules draw trace start compare schema completion)
 
 _shtab_tidegate_review_option_strings=(-h --help --as --save --every --findings-only --fail-at --also --settings --pack --today --workers --on)
-_shtab_tidegate_margins_option_strings=(-h --help --element --family --as --settings --pack --today)
+_shtab_tidegate_margins_option_strings=(-h --help --element --family --rule --account --as --settings --pack --today)
 _shtab_tidegate_place_option_strings=(-h --help --as --apply --yield --samples --seed --settings)
 _shtab_tidegate_ramp_option_strings=(-h --help --scenario --override --as)
 _shtab_tidegate_rules_option_strings=(-h --help --pack)
@@ -42,6 +42,7 @@ _shtab_tidegate_review___every_nargs=0
 _shtab_tidegate_review___findings_only_nargs=0
 _shtab_tidegate_margins__h_nargs=0
 _shtab_tidegate_margins___help_nargs=0
+_shtab_tidegate_margins___account_nargs=0
 _shtab_tidegate_place__h_nargs=0
 _shtab_tidegate_place___help_nargs=0
 _shtab_tidegate_place___apply_nargs=0

@@ -14,7 +14,7 @@ complete tidegate \
         'c/--as=/(terminal json)/' \
         'c/--as=/(svg dot graphml)/' \
         'c/--as=/(terminal markdown json)/' \
-        'c/--/(also apply as element every fail-at family findings-only help of on override pack rail samples save scenario seed settings today version watch workers yield)/' \
+        'c/--/(account also apply as element every fail-at family findings-only help of on override pack rail rule samples save scenario seed settings today version watch workers yield)/' \
         'c/-/(- h)/' \
         'n/--as/(terminal json sarif markdown html)/' \
         'n/--fail-at/(error warning note)/' \

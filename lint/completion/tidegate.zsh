@@ -73,6 +73,8 @@ _shtab_tidegate_margins_options=(
   "(- : *)"{-h,--help}"[show this help message and exit]"
   "--element[only the judgements about one element]:ID:"
   "--family[only the judgements of one family of rules, such as hysteresis]:NAME:"
+  "--rule[only the judgements of one rule, such as trip_window\/nuisance]:ID:"
+  "--account[in text, show how each number is made up, term by term]"
   "--as[form of the ledger]:form:(terminal json)"
   "--settings[settings, in place of the nearest tidegate.settings.yaml]:FILE:"
   "*--pack[Python file with rules of your own]:FILE:"

@@ -7,8 +7,9 @@ from typing import TypeVar
 
 import msgspec
 
-from tidegate.lint.case import Case, MissingFactsError
+from tidegate.lint.case import Case
 from tidegate.lint.description.model.description import Description
+from tidegate.lint.facts.reading import MissingFactsError
 from tidegate.lint.graph.dependency import Element, Graph
 from tidegate.lint.judgement import Level
 from tidegate.lint.physics.domain import DomainError
@@ -39,9 +40,10 @@ def ask(description: Description, graph: Graph, element: Element, question: Call
     except MissingFactsError as error:
         return Unknown(error.missing, "")
     except DomainError as error:
-        if case.missing:  # a number that is not there yet may be what the formula refused
-            return Unknown(tuple(dict.fromkeys(case.missing)), "")
+        if waiting := (*case.missing, *case.reading.lacking):  # what is not known may be what the formula refused
+            return Unknown(tuple(dict.fromkeys(waiting)), "")
         return Unknown((), f"the numbers given lie outside the range of the formula: {error}")
     except NoAnswerError as error:
         return Unknown((), str(error))
-    return Unknown(tuple(dict.fromkeys(case.missing)), "") if case.missing else answer
+    waiting = (*case.missing, *case.reading.lacking)
+    return Unknown(tuple(dict.fromkeys(waiting)), "") if waiting else answer

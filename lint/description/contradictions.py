@@ -14,8 +14,8 @@ from tidegate.lint.quantity import Duration, Temperature
 def contradictions(description: Description, sources: Sources) -> list[Fault]:
     """What is wrong with facts that exclude each other; empty if there are none."""
     found = (
-        *_domains(description), *_loads(description), *_neighbours(description), *_scenarios(description),
-        *_process(description.process),
+        *_domains(description), *_loads(description), *_modes(description), *_neighbours(description),
+        *_scenarios(description), *_process(description.process),
     )  # fmt: skip
     return [Fault(sources.place(path), dotted(path), problem, advice) for path, problem, advice in found]
 
@@ -34,6 +34,15 @@ def _loads(description: Description) -> Iterator[tuple[Path, str, str]]:
             if need.rail in met:
                 yield ("loads", load.id, "needs", number, "rail"), f"a second need of {need.rail}", "keep one of them"
             met.add(need.rail)
+
+
+def _modes(description: Description) -> Iterator[tuple[Path, str, str]]:
+    for name, mode in description.modes.items():
+        for number, sampled in enumerate(mode.sampled or ()):
+            period = description.comparators[sampled].sampling
+            if period is not None and period.most == 0.0:
+                problem = f"{sampled} decides at any time (sampling: none), and only now and then here"
+                yield ("modes", name, "sampled", number), problem, "give its sampling period, or leave it out here"
 
 
 def _neighbours(description: Description) -> Iterator[tuple[Path, str, str]]:

@@ -17,11 +17,19 @@ import tidegate.schema
 from tidegate.lint.description.contradictions import contradictions
 from tidegate.lint.description.empty_values import fill_empty
 from tidegate.lint.description.model.description import Description
-from tidegate.lint.description.names import NAMED_SECTIONS, NameField, name_faults, name_fields, names_twice
+from tidegate.lint.description.names import (
+    NAMED_SECTIONS,
+    NameField,
+    name_faults,
+    name_fields,
+    named_twice,
+    unique_lists,
+)
 from tidegate.lint.description.place import DescriptionError, Fault, Place, dotted, steps
 from tidegate.lint.description.reading import read_file
+from tidegate.lint.description.said_none import NONE, NoneFields, none_fields, without_none
 from tidegate.lint.description.scenario_points import point_faults
-from tidegate.lint.description.schema_tree import without_own_keys
+from tidegate.lint.description.schema_tree import Way, without_own_keys
 from tidegate.lint.description.sources import Sources, read_sources
 from tidegate.lint.description.yaml_nodes import PARSER, Parser
 from tidegate.lint.description.yaml_text import read_yaml
@@ -98,6 +106,16 @@ def _name_fields() -> tuple[NameField, ...]:
     return name_fields(description_schema())
 
 
+@lru_cache(maxsize=1)
+def _unique_lists() -> tuple[Way, ...]:
+    return unique_lists(description_schema())
+
+
+@lru_cache(maxsize=1)
+def _none_fields() -> NoneFields:
+    return none_fields(description_schema())
+
+
 def _built(sources: Sources, faults: list[Fault]) -> Description | None:
     """The joined data as a description; adds what is wrong, less what only follows from the faults of the files."""
     schema, data = description_schema(), sources.data
@@ -109,7 +127,7 @@ def _built(sources: Sources, faults: list[Fault]) -> Description | None:
         explained = {fault.place for fault in found}
         wrong_names = name_faults(data, _name_fields(), sources)
         found += [fault for fault in wrong_names if fault.place not in explained]
-        if not found and not sources.faults and not any(data.get(section) for section in NAMED_SECTIONS):
+        if not found and not sources.faults and not _has_elements(data):
             place = Place(sources.files[0].name)
             found.append(Fault(place, "", "the file describes no element", "tidegate start writes a starter"))
     spoiled = {path for file in sources.files for path in file.spoiled}
@@ -121,8 +139,15 @@ def _sections_are_whole(data: Mapping[str, Any]) -> bool:
     """Whether every element is where it can be found; if not, a wrong name may be the fault of its section."""
     known = description_schema()["properties"]
     return all(
-        isinstance(data[key], dict) if key in NAMED_SECTIONS else key in known or key.startswith("x-") for key in data
+        isinstance(data[key], dict) or (data[key] == NONE and "x-none" in known[key])
+        if key in NAMED_SECTIONS
+        else key in known or key.startswith("x-")
+        for key in data
     )
+
+
+def _has_elements(data: Mapping[str, Any]) -> bool:
+    return any(data.get(section) not in (None, {}, NONE) for section in NAMED_SECTIONS)
 
 
 def _explained(sources: Sources) -> Sequence[Fault]:
@@ -190,9 +215,9 @@ def description_of(data: Mapping[str, Any], *, own_keys: bool = True) -> Descrip
 
     ``own_keys`` says whether there may be keys of the author's own (``x-``) in them.
     """
-    if names_twice(data, _name_fields()):
+    if named_twice(data, _unique_lists()):
         return None
-    given = dict(without_own_keys(data, description_schema()) if own_keys else data)
+    given = without_none(without_own_keys(data, description_schema()) if own_keys else data, _none_fields())
     for section in NAMED_SECTIONS:
         entries = given.get(section)
         if isinstance(entries, dict):

@@ -11,6 +11,7 @@ from typing import Any, Final
 import msgspec
 
 from tidegate.lint.description.place import Fault, Path, dotted
+from tidegate.lint.description.schema_tree import Schema, Way, values_below
 from tidegate.lint.description.sources import Sources
 from tidegate.lint.found import escaped, quoted
 from tidegate.lint.limits import MOST_FAULTS
@@ -47,36 +48,26 @@ _SINGULAR: Final = {
 
 
 class NameField(msgspec.Struct, frozen=True):
-    """A field that names elements: the way to it (``*`` for every entry) and the sections it may point into."""
+    """A field that names elements: the way to it and the sections it may point into."""
 
-    way: tuple[str, ...]
+    way: Way
     sections: tuple[str, ...]
     or_none: bool = False
     """Whether ``none`` says that there is no such element."""
-    is_list: bool = False
-    """Whether the way ends at every name of a list."""
 
 
-def name_fields(schema: Mapping[str, Any]) -> tuple[NameField, ...]:
-    """Every field of the schema that names elements."""
-    return tuple(_fields_below(schema, schema["$defs"], ()))
+def name_fields(schema: Schema) -> tuple[NameField, ...]:
+    """Every field of the schema that names elements; a list of names ends at every one of them."""
+    return tuple(
+        NameField((*way, "*") if node.get("type") == "array" else way, tuple(node["x-names"]), "x-none" in node)
+        for way, node in values_below(schema)
+        if "x-names" in node
+    )
 
 
-def _fields_below(node: Mapping[str, Any], defs: Mapping[str, Any], way: tuple[str, ...]) -> Iterator[NameField]:
-    if "x-names" in node:
-        is_list = node.get("type") == "array"
-        full_way = (*way, "*") if is_list else way
-        yield NameField(full_way, tuple(node["x-names"]), or_none="anyOf" in node, is_list=is_list)
-        return
-    if "$ref" in node:
-        yield from _fields_below(defs[node["$ref"].rpartition("/")[2]], defs, way)
-    for branch in node.get("anyOf", ()):
-        yield from _fields_below(branch, defs, way)
-    for key, child in node.get("properties", {}).items():
-        yield from _fields_below(child, defs, (*way, key))
-    for inside in ("additionalProperties", "items"):
-        if isinstance(node.get(inside), dict):
-            yield from _fields_below(node[inside], defs, (*way, "*"))
+def unique_lists(schema: Schema) -> tuple[Way, ...]:
+    """The way to every list that holds nothing twice."""
+    return tuple(way for way, node in values_below(schema) if node.get("uniqueItems"))
 
 
 def name_faults(data: Mapping[str, Any], fields: Sequence[NameField], sources: Sources) -> list[Fault]:
@@ -109,13 +100,12 @@ def name_faults(data: Mapping[str, Any], fields: Sequence[NameField], sources: S
     return faults
 
 
-def names_twice(data: Mapping[str, Any], fields: Sequence[NameField]) -> bool:
-    """Whether any list of names holds one twice."""
-    for field in fields:
-        if field.is_list:
-            for _, names in _values(data, field.way[:-1], ()):
-                if isinstance(names, list) and len(names) > 1 and any(names.count(name) > 1 for name in names):
-                    return True
+def named_twice(data: Mapping[str, Any], lists: Sequence[Way]) -> bool:
+    """Whether any of these lists holds something twice."""
+    for way in lists:
+        for _, words in _values(data, way, ()):
+            if isinstance(words, list) and len(words) > 1 and any(words.count(word) > 1 for word in words):
+                return True
     return False
 
 
@@ -139,7 +129,7 @@ def _mapping(value: Any) -> Mapping[str, Any]:
     return value if isinstance(value, dict) else {}
 
 
-def _values(node: Any, way: tuple[str, ...], path: Path) -> Iterator[tuple[Path, Any]]:
+def _values(node: Any, way: Way, path: Path) -> Iterator[tuple[Path, Any]]:
     """Every value at the end of a way, with its path."""
     if not way:
         yield path, node

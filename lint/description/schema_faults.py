@@ -14,13 +14,15 @@ from jsonschema import Draft202012Validator, ValidationError, validators
 
 from tidegate.lint.description.nearest import nearest
 from tidegate.lint.description.place import Fault, Path, dotted
-from tidegate.lint.description.schema_tree import Schema, example_at
+from tidegate.lint.description.said_none import NONE, can_be_none
+from tidegate.lint.description.schema_tree import Schema, example_at, object_at
 from tidegate.lint.description.sources import Sources
 from tidegate.lint.description.unknown_key import unknown_key
 from tidegate.lint.description.written import written
 from tidegate.lint.found import found, quoted
 from tidegate.lint.limits import MOST_NAME
 from tidegate.lint.quantity import QuantityError, Span
+from tidegate.lint.quantity_faults import one
 
 _SPANS: Final = {kind.dimension.value: kind for kind in Span.__subclasses__()}
 _PARTS: Final = ("min", "typ", "max")
@@ -39,7 +41,20 @@ def _any_of(validator: Any, branches: Any, instance: Any, schema: Schema) -> Ite
     elif isinstance(instance, dict):
         yield from validator.descend(instance, branches[1], schema_path=1)
     elif not any(validator.evolve(schema=branch).is_valid(instance) for branch in branches):
-        yield ValidationError("neither")
+        if _noun_of(schema) and not _nearly_none(instance):
+            yield from validator.descend(instance, branches[1], schema_path=1)
+        else:
+            yield ValidationError("neither")
+
+
+def _nearly_none(instance: Any) -> bool:
+    return isinstance(instance, str) and bool(nearest(instance, [NONE]))
+
+
+def _noun_of(schema: Schema) -> str:
+    """What a quantity that may be said to be none is called; empty where it is another value."""
+    span = _SPANS.get(schema["anyOf"][1].get("$ref", "").rpartition("/")[2])
+    return span.dimension.noun if span is not None else ""
 
 
 def _quantity(validator: Any, mapping: Schema, instance: Any, span: type[Span]) -> Iterator[ValidationError]:
@@ -101,7 +116,21 @@ def _faults_of(error: Any, schema: Schema, sources: Sources) -> Iterator[Fault]:
                 advice = f"write it as in {written(error.schema['examples'][0])}"
                 yield Fault(place, dotted(path), f"{quoted(error.instance)} does not fit", advice)
         case _:
-            yield Fault(sources.place(path), dotted(path), *_in_words(error, written(example_at(schema, path))))
+            words = _no_none(error, object_at(schema, path[:-1])) if error.instance == NONE else None
+            words = words or _in_words(error, written(example_at(schema, path)))
+            yield Fault(sources.place(path), dotted(path), *words)
+
+
+def _no_none(error: Any, above: Schema | None) -> tuple[str, str] | None:
+    """What is wrong with ``none`` where a value is due; None where what is due says more."""
+    problem, advice = "none cannot be said here", "leave the key empty where it is not known yet"
+    match error.validator, error.validator_value:
+        case "type", "array":
+            return problem, advice if error.schema.get("minItems") else "write [] where there is none"
+        case ("type", "object") | ("x-quantity", _):
+            others = can_be_none(above)
+            return problem, f"{advice}; it can be said of {', '.join(others)}" if others else advice
+    return None
 
 
 _NAME: Final = f"a name has letters, digits, - and _, begins with a letter or _, and has at most {MOST_NAME} characters"
@@ -139,8 +168,9 @@ def _in_words(error: Any, example: str) -> tuple[str, str]:
             problem, _, advice = error.message.partition("; ")
             return problem, advice
         case "anyOf":
-            hint = "did you mean none? " if nearest(str(error.instance), ["none"]) else ""
-            other = "a name" if "x-names" in error.schema else "a mapping of keys"
+            hint = "did you mean none? " if _nearly_none(error.instance) else ""
+            noun = "name" if "x-names" in error.schema else _noun_of(error.schema)
+            other = one(noun) if noun else "a mapping of keys"
             return f"neither none nor {other} (found {was})", f"{hint}write none, or as in {example}"
         case "type":
             kind = "a name" if _is_name(error.schema) else _TYPE_WORDS[limit]
@@ -172,8 +202,6 @@ def _advice_on_type(kind: str, error: Any, example: str) -> str:
         return "write true or false, without quotes" if isinstance(instance, str) else "write true or false"
     if kind in {"number", "integer"} and isinstance(instance, str) and re.fullmatch(r"[0-9.]{1,20}", instance):
         return f"write it without quotes, as in {example}"
-    if kind == "array" and instance == "none":
-        return "leave it out where there is none"
     if kind == "array" and isinstance(instance, str) and re.fullmatch(r"[\w.-]{1,40}", instance, re.ASCII):
         return f"write [{instance}]"
     if (

@@ -3,11 +3,30 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
-from typing import Any
+from typing import Any, TypeAlias
 
 from tidegate.lint.description.place import Step
 
-Schema = Mapping[str, Any]
+Schema: TypeAlias = "Mapping[str, Any]"
+Way: TypeAlias = "tuple[str, ...]"
+"""The keys on the way to a value; ``*`` stands for every entry of a section or list."""
+
+
+def values_below(schema: Schema, node: Schema | None = None, way: Way = ()) -> Iterator[tuple[Way, Schema]]:
+    """Every value of the data, by the way to it, with each schema that it meets there; a quantity is one value."""
+    node = schema if node is None else node
+    yield way, node
+    if "$ref" in node:
+        yield from values_below(schema, schema["$defs"][node["$ref"].rpartition("/")[2]], way)
+    if "x-quantity" in node:
+        return
+    for branch in node.get("anyOf", ()):
+        yield from values_below(schema, branch, way)
+    for key, child in node.get("properties", {}).items():
+        yield from values_below(schema, child, (*way, key))
+    for inside in ("additionalProperties", "items"):
+        if isinstance(node.get(inside), dict):
+            yield from values_below(schema, node[inside], (*way, "*"))
 
 
 def object_at(schema: Schema, path: Sequence[Step]) -> Schema | None:

@@ -222,7 +222,10 @@ class _Joining:
         else:
             first = next((place for other in self.earlier if (place := other.place(path, key=True))), None)
             place = file.place(path, key=True) or Place(file.name)
-            self.faults.append(Fault(place, dotted(path), f"given twice (first at {first})", "keep one of them"))
+            twice = f"given twice (first at {first})"
+            if joinable and "none" in (old, content) and old != content:
+                twice = f"said to be none in one file and described in another (first at {first})"
+            self.faults.append(Fault(place, dotted(path), twice, "keep one of them"))
 
 
 def _copied(content: Plain, levels: int) -> Plain:

@@ -58,11 +58,20 @@ def _supply_gaps(element: Element) -> Iterator[str]:
 
 def before_gaps(graph: Graph) -> frozenset[str]:
     """The elements of which it is not fully known what they lean on, directly or through others."""
-    waiting = [name for name, element in graph.elements.items() if any(leaning_gaps(element))]
+    return _before(graph, frozenset())
+
+
+def before_loop_gaps(graph: Graph) -> frozenset[str]:
+    """As ``before_gaps``, without ways through detectors."""
+    return _before(graph, frozenset(name for name, one in graph.elements.items() if isinstance(one, Comparator)))
+
+
+def _before(graph: Graph, removed: frozenset[str]) -> frozenset[str]:
+    waiting = [name for name, element in graph.elements.items() if name not in removed and any(leaning_gaps(element))]
     found = set(waiting)
     while waiting:
         for there, _, _ in graph.needed_by(waiting.pop()):
-            if there not in found:
+            if there not in found and there not in removed:
                 found.add(there)
                 waiting.append(there)
     return frozenset(found)

@@ -10,7 +10,15 @@ from __future__ import annotations
 
 import math
 
-from tidegate.lint.physics.domain import require_not_negative, require_positive, require_within
+from tidegate.lint.physics.domain import (
+    product,
+    quotient,
+    require_not_negative,
+    require_positive,
+    require_size,
+    require_within,
+    share,
+)
 
 
 def bump_peak_v(*, step_v: float, edge_s: float, r_ohm: float, coupling_c_f: float, ground_c_f: float) -> float:
@@ -20,21 +28,21 @@ def bump_peak_v(*, step_v: float, edge_s: float, r_ohm: float, coupling_c_f: flo
     Symbols:
         step_v        V   V    height of the edge (magnitude), >= 0
         edge_s        tr  s    duration of the edge from end to end, >= 0 (0: an ideal step)
-        r_ohm         R   ohm  resistance that holds the node, > 0
+        r_ohm         R   ohm  resistance that holds the node, >= 0
         coupling_c_f  Cc  F    capacitance to the neighbour, >= 0
         ground_c_f    Cg  F    all other capacitance of the node, >= 0
     Returns: v, in V; it is reached at the end of the edge.
-    Valid: linear R and C; edge of constant slope; node at rest before.
+    Valid: linear R and C; edge of constant slope; node at rest before. Of a symbol without end, the limit is meant; of
+        an ideal step onto a node without resistance, the step before the node gives it back.
     Source: solution of (Cc + Cg) dv/dt = Cc V/tr - v/R, v(0) = 0, at t = tr.
-    Raises: DomainError: if R is not > 0 or another symbol is negative.
+    Raises: DomainError: if a symbol is negative.
     """
-    require_not_negative(step_v=step_v, edge_s=edge_s, coupling_c_f=coupling_c_f, ground_c_f=ground_c_f)
-    require_positive(r_ohm=r_ohm)
-    if coupling_c_f == 0.0:
+    require_size(step_v=step_v, edge_s=edge_s, r_ohm=r_ohm, coupling_c_f=coupling_c_f, ground_c_f=ground_c_f)
+    passed = share(coupling_c_f, ground_c_f)
+    if passed == 0.0:
         return 0.0
-    node_c_f = coupling_c_f + ground_c_f
-    edge_in_tau = edge_s / (r_ohm * node_c_f)
-    return step_v * (coupling_c_f / node_c_f) * _mean_of_decay(edge_in_tau)
+    tau_s = product(r_ohm, coupling_c_f + ground_c_f)
+    return product(step_v, passed * _mean_of_decay(quotient(edge_s, tau_s)))
 
 
 def bump_at_v(
@@ -48,14 +56,14 @@ def bump_at_v(
         t_s           t   s    time since the start of the edge, >= 0
         step_v        V   V    height of the edge (magnitude), >= 0
         edge_s        tr  s    duration of the edge from end to end, >= 0 (0: an ideal step)
-        r_ohm         R   ohm  resistance that holds the node, > 0
+        r_ohm         R   ohm  resistance that holds the node, >= 0
         coupling_c_f  Cc  F    capacitance to the neighbour, >= 0
         ground_c_f    Cg  F    all other capacitance of the node, >= 0
     Returns: v(t), in V.
     Valid: as bump_peak_v.
     Source: solution of (Cc + Cg) dv/dt = Cc V/tr - v/R with v(0) = 0 during the edge, and without the term in
         V after it.
-    Raises: DomainError: if R is not > 0 or another symbol is negative.
+    Raises: DomainError: if a symbol is negative.
     """
     require_not_negative(t_s=t_s)
     # The time since the start is an edge cut short: same slope, so the height scales with the time.
@@ -70,7 +78,7 @@ def bump_at_v(
     peak_v = bump_peak_v(step_v=step_v, edge_s=edge_s, r_ohm=r_ohm, coupling_c_f=coupling_c_f, ground_c_f=ground_c_f)
     if peak_v == 0.0:
         return 0.0
-    return peak_v * math.exp(-(t_s - edge_s) / (r_ohm * (coupling_c_f + ground_c_f)))
+    return peak_v * math.exp(-quotient(t_s - edge_s, product(r_ohm, coupling_c_f + ground_c_f)))
 
 
 def decoupling_for_bump_f(
@@ -84,19 +92,19 @@ def decoupling_for_bump_f(
         allowed_v     a   V    highest bump allowed, > 0
         step_v        V   V    height of the edge (magnitude), >= 0
         edge_s        tr  s    duration of the edge from end to end, >= 0 (0: an ideal step)
-        r_ohm         R   ohm  resistance that holds the node, > 0
+        r_ohm         R   ohm  resistance that holds the node, >= 0
         coupling_c_f  Cc  F    capacitance to the neighbour, >= 0
     Returns: Cg, in F.
-    Valid: as bump_peak_v.
+    Valid: as bump_peak_v, for symbols that have an end.
     Source: bump_peak_v set equal to a and solved for Cg. There is one solution: Cg enters the peak through
         tau alone, tau grows with Cg, and 1 - exp(-tr/tau) falls as tau grows, from its value at Cg = 0 down to 0.
-    Raises: DomainError: if a or R is not > 0, or another symbol is negative.
+    Raises: DomainError: if a is not > 0, or another symbol is negative.
     """
     require_positive(allowed_v=allowed_v)
     bare_peak_v = bump_peak_v(step_v=step_v, edge_s=edge_s, r_ohm=r_ohm, coupling_c_f=coupling_c_f, ground_c_f=0.0)
     if bare_peak_v <= allowed_v:
         return 0.0
-    settled_share = (allowed_v / step_v) * (edge_s / (r_ohm * coupling_c_f))
+    settled_share = (allowed_v / step_v) * quotient(edge_s, r_ohm * coupling_c_f)
     if settled_share == 0.0:
         return coupling_c_f * (step_v / allowed_v - 1.0)
     node_c_f = edge_s / (r_ohm * _tau_to_settle(settled_share))
@@ -128,15 +136,14 @@ def charge_kick_v(*, charge_c: float, c_f: float) -> float:
     Formula: dV = Q / C
     Symbols:
         charge_c  Q  C  charge (magnitude), >= 0
-        c_f       C  F  capacitance of the node, > 0
-    Returns: dV, in V.
+        c_f       C  F  capacitance of the node, >= 0
+    Returns: dV, in V; without end where there is no capacitance.
     Valid: charge delivered in a time much shorter than the node takes to recover.
     Source: definition of capacitance.
-    Raises: DomainError: if Q is negative or C is not > 0.
+    Raises: DomainError: if Q or C is negative.
     """
-    require_not_negative(charge_c=charge_c)
-    require_positive(c_f=c_f)
-    return charge_c / c_f
+    require_size(charge_c=charge_c, c_f=c_f)
+    return quotient(charge_c, c_f)
 
 
 def decoupling_for_charge_f(*, charge_c: float, allowed_v: float) -> float:
@@ -168,8 +175,8 @@ def shared_impedance_bump_v(*, step_a: float, impedance_ohm: float) -> float:
     Source: Ohm's law.
     Raises: DomainError: if dI or Z is negative.
     """
-    require_not_negative(step_a=step_a, impedance_ohm=impedance_ohm)
-    return step_a * impedance_ohm
+    require_size(step_a=step_a, impedance_ohm=impedance_ohm)
+    return product(step_a, impedance_ohm)
 
 
 def _mean_of_decay(x: float) -> float:

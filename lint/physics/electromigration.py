@@ -9,6 +9,7 @@ import msgspec
 
 from tidegate.lint.physics.constants import BOLTZMANN_EV_PER_K
 from tidegate.lint.physics.domain import (
+    product,
     require_finite,
     require_not_negative,
     require_positive,
@@ -25,17 +26,20 @@ class Wear(msgspec.Struct, frozen=True):
     """How one failure mechanism of one metal depends on temperature and current.
 
     Symbols:
-        activation_energy_ev   Ea   eV   activation energy, > 0
-        current_exponent       n    -    exponent of the current density, > 0 (1 void growth, 2 nucleation)
+        activation_energy_ev   Ea   eV   activation energy, >= 0 (0: temperature does not matter)
+        current_exponent       n    -    exponent of the current density, > 0 (1 void growth, 2 nucleation; without
+                                         end: the limit is sharp, and no life moves it)
     Valid: both belong to the process; there is no value that fits all.
-    Raises: DomainError: if a symbol is not greater than 0.
+    Raises: DomainError: if Ea is below 0, or n is not greater than 0.
     """
 
     activation_energy_ev: float
     current_exponent: float
 
     def __post_init__(self) -> None:
-        require_positive(activation_energy_ev=self.activation_energy_ev, current_exponent=self.current_exponent)
+        require_not_negative(activation_energy_ev=self.activation_energy_ev)
+        if self.current_exponent != math.inf:
+            require_positive(current_exponent=self.current_exponent)
 
 
 class Exposure(msgspec.Struct, frozen=True):
@@ -140,7 +144,7 @@ def life_s(
     log_life = _log_life_at_limit(limit=limit, wear=wear, stated_k=stated_k, use_k=use_k, stated_life_s=stated_life_s)
     if current == 0.0:
         return math.inf
-    return _exp(log_life + wear.current_exponent * (math.log(limit) - math.log(current)))
+    return _exp(log_life + product(wear.current_exponent, math.log(limit) - math.log(current)))
 
 
 def damage_share(
@@ -172,7 +176,7 @@ def damage_share(
         # Logarithms, because the life itself may be too short or too long for a float.
         _exp(
             math.log(exposure.time_s)
-            + wear.current_exponent * (math.log(exposure.current) - math.log(limit))
+            + product(wear.current_exponent, math.log(exposure.current) - math.log(limit))
             - log_life
         )
         for exposure in exposures

@@ -9,7 +9,15 @@ from __future__ import annotations
 
 import math
 
-from tidegate.lint.physics.domain import DomainError, require_not_negative, require_positive
+from tidegate.lint.physics.domain import (
+    DomainError,
+    product,
+    quotient,
+    require_not_negative,
+    require_positive,
+    require_size,
+    share,
+)
 
 
 def lasting_bump_v(*, lasts_s: float, step_v: float, r_ohm: float, coupling_c_f: float, ground_c_f: float) -> float:
@@ -19,7 +27,7 @@ def lasting_bump_v(*, lasts_s: float, step_v: float, r_ohm: float, coupling_c_f:
     Symbols:
         lasts_s       T   s    time for which it stays above the level, >= 0
         step_v        V   V    height of the edge (magnitude), >= 0
-        r_ohm         R   ohm  resistance that holds the node, > 0
+        r_ohm         R   ohm  resistance that holds the node, >= 0
         coupling_c_f  Cc  F    capacitance to the neighbour, >= 0
         ground_c_f    Cg  F    all other capacitance of the node, >= 0
     Returns: L, in V.
@@ -27,13 +35,11 @@ def lasting_bump_v(*, lasts_s: float, step_v: float, r_ohm: float, coupling_c_f:
         reaches it jumps to L and then rises for T just fast enough to hold the node there.
     Source: charge balance. (Cc + Cg) dv/dt = Cc dVs/dt - v/R, integrated from rest to the end of the time above L:
         the node holds at least L (Cc + Cg) and R has drained at least L T/R, all of it brought by at most Cc V.
-    Raises: DomainError: if R is not > 0 or another symbol is negative.
+    Raises: DomainError: if a symbol is negative.
     """
-    require_not_negative(lasts_s=lasts_s, step_v=step_v, coupling_c_f=coupling_c_f, ground_c_f=ground_c_f)
-    require_positive(r_ohm=r_ohm)
-    if coupling_c_f == 0.0:
-        return 0.0
-    return step_v * coupling_c_f / (coupling_c_f + ground_c_f + lasts_s / r_ohm)
+    require_size(lasts_s=lasts_s, step_v=step_v, r_ohm=r_ohm, coupling_c_f=coupling_c_f, ground_c_f=ground_c_f)
+    drained_c_f = quotient(lasts_s, r_ohm)
+    return product(step_v, share(coupling_c_f, ground_c_f + drained_c_f))
 
 
 def decayed_kick_v(*, lasts_s: float, charge_c: float, r_ohm: float, least_c_f: float, most_c_f: float) -> float:
@@ -44,21 +50,20 @@ def decayed_kick_v(*, lasts_s: float, charge_c: float, r_ohm: float, least_c_f: 
     Symbols:
         lasts_s    T      s    time after the charge has come, >= 0
         charge_c   Q      C    charge (magnitude), >= 0
-        r_ohm      R      ohm  resistance that holds the node, > 0
-        least_c_f  C_min  F    least capacitance of the node, > 0
+        r_ohm      R      ohm  resistance that holds the node, >= 0
+        least_c_f  C_min  F    least capacitance of the node, >= 0
         most_c_f   C_max  F    greatest capacitance of the node, >= C_min; infinity where it is not known
     Returns: v, in V.
     Valid: linear R and C; charge delivered in no time, or T counted from the end of its delivery.
     Source: solution of C dv/dt = -v/R from v(0) = Q/C; its derivative in C is v (T/(R C) - 1)/C, positive below T/R
         and negative above.
-    Raises: DomainError: if R or C_min is not > 0, C_max is below C_min, or another symbol is negative.
+    Raises: DomainError: if C_max is below C_min, or a symbol is negative.
     """
-    require_not_negative(lasts_s=lasts_s, charge_c=charge_c)
-    require_positive(r_ohm=r_ohm, least_c_f=least_c_f)
+    require_size(lasts_s=lasts_s, charge_c=charge_c, r_ohm=r_ohm, least_c_f=least_c_f)
     if not most_c_f >= least_c_f:
         raise DomainError(f"most_c_f must be at least least_c_f, {least_c_f!r} (found {most_c_f!r})")
-    c_f = min(max(lasts_s / r_ohm, least_c_f), most_c_f)
-    return charge_c / c_f * math.exp(-lasts_s / (r_ohm * c_f))
+    c_f = min(max(quotient(lasts_s, r_ohm), least_c_f), most_c_f)
+    return product(quotient(charge_c, c_f), math.exp(-quotient(lasts_s, product(r_ohm, c_f))))
 
 
 def decoupling_for_lasting_bump_f(

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
+from enum import Enum
 from typing import Final
 
 import msgspec
@@ -11,10 +12,16 @@ import numpy as np
 
 from tidegate.lint.physics.array_domain import FloatArray
 from tidegate.lint.physics.domain import DomainError
-from tidegate.lint.physics.placement import Level
 
 _UNIFORM_WIDTH: Final = math.sqrt(12.0)
 """Width over standard deviation of a rectangular distribution (JCGM 100:2008, 4.3.7)."""
+
+
+class Level(Enum):
+    """Which of the two trip levels."""
+
+    RISING = "rising"
+    FALLING = "falling"
 
 
 class DrawnError(msgspec.Struct, frozen=True):

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from tidegate.lint.physics.domain import require_not_negative, require_positive
+from tidegate.lint.physics.domain import quotient, require_size
 
 
 def ramp_slope_v_per_s(*, rise_v: float, rise_s: float) -> float:
@@ -11,12 +11,11 @@ def ramp_slope_v_per_s(*, rise_v: float, rise_s: float) -> float:
     Formula: s = V / t
     Symbols:
         rise_v  V  V  height of the ramp, >= 0
-        rise_s  t  s  duration of the ramp, > 0
+        rise_s  t  s  duration of the ramp, >= 0 (0: as steep as can be)
     Returns: s, in V/s.
     Valid: a straight ramp; a curved one is steeper somewhere.
     Source: definition of slope.
-    Raises: DomainError: if V is negative or t is not above 0.
+    Raises: DomainError: if V or t is negative.
     """
-    require_not_negative(rise_v=rise_v)
-    require_positive(rise_s=rise_s)
-    return rise_v / rise_s
+    require_size(rise_v=rise_v, rise_s=rise_s)
+    return quotient(rise_v, rise_s)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Collection, Mapping, Sequence
+from enum import Enum
 from typing import Final
 
 import msgspec
@@ -12,8 +13,7 @@ from numpy.typing import NDArray
 
 from tidegate.lint.physics.array_domain import BoolArray
 from tidegate.lint.physics.domain import DomainError, require_finite, require_positive
-from tidegate.lint.physics.part_draws import DrawnError, PartDraws
-from tidegate.lint.physics.placement import Level, Side
+from tidegate.lint.physics.part_draws import DrawnError, Level, PartDraws
 from tidegate.lint.physics.sample_confidence import wilson_interval
 from tidegate.lint.physics.tolerance import Contributor, standard_uncertainty_v
 
@@ -21,6 +21,13 @@ _CHUNK: Final = 1 << 14
 """Parts drawn at a time: the few arrays in use stay within a processor's cache, and memory stays flat."""
 
 _MILLION: Final = 1e6
+
+
+class Side(Enum):
+    """Which way a limit holds."""
+
+    LEAST = "least"
+    MOST = "most"
 
 
 class Demand(msgspec.Struct, frozen=True):

@@ -11,10 +11,11 @@ from tidegate.lint.comparison import Comparison, FactChange, Harm, JudgementChan
 from tidegate.lint.judgement import Judgement
 from tidegate.lint.reports.columns import wrapped
 from tidegate.lint.reports.json_form import json_form
-from tidegate.lint.reports.json_report import number_entry, settings_entry
+from tidegate.lint.reports.json_report import margin_entry, settings_entry
 from tidegate.lint.reports.markdown_text import code, code_in_table, escaped
 from tidegate.lint.reports.order import kind_word
 from tidegate.lint.reports.plain_text import plain
+from tidegate.lint.reports.words import margin_words
 from tidegate.lint.settings import Settings
 from tidegate.lint.version import VERSION
 
@@ -27,7 +28,7 @@ _TITLES: Final = {
 }
 
 
-COMPARISON_SCHEMA: Final = "urn:tidegate:comparison:1"
+COMPARISON_SCHEMA: Final = "urn:tidegate:comparison:2"
 """The version of the form for machines (``schema/comparison.schema.json``)."""
 
 
@@ -42,11 +43,13 @@ class Sides(msgspec.Struct, frozen=True):
 def _kind(judgement: Judgement | None) -> str:
     if judgement is None:
         return "not there"
+    if judgement.under:
+        return f"explained by {judgement.under}"
     return f"{kind_word(judgement.kind)}, waived" if judgement.waiver else kind_word(judgement.kind)
 
 
 def _margin(judgement: Judgement | None) -> str:
-    return judgement.measure.margin_text() if judgement is not None and judgement.measure is not None else ""
+    return margin_words(judgement) if judgement is not None else ""
 
 
 def _said(change: JudgementChange) -> str:
@@ -166,7 +169,7 @@ def _side(judgement: Judgement | None) -> dict[str, Any] | None:
         "kind": judgement.kind.value,
         "level": judgement.level.value,
         "waived": bool(judgement.waiver),
-        "margin": number_entry(judgement.measure, "margin"),
+        "margin": margin_entry(judgement.measure),
         "message": judgement.message,
         "mend": judgement.mend,
     }

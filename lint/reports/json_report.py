@@ -2,13 +2,18 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Iterator, Sequence
 from typing import Any, Final
 
+from tidegate.lint.corners import choice_text
 from tidegate.lint.description.place import Fault, Place
 from tidegate.lint.engine import Review
+from tidegate.lint.facts.names import dimension_at
 from tidegate.lint.judgement import Judgement, Kind, Measure
+from tidegate.lint.must_keep import MustKeep, must_keep
 from tidegate.lint.quantity import Dimension
+from tidegate.lint.reports.accounts import sides
 from tidegate.lint.reports.json_form import json_form
 from tidegate.lint.reports.order import CAUTION, verdict
 from tidegate.lint.settings import Settings
@@ -16,7 +21,9 @@ from tidegate.lint.version import VERSION
 
 SEPARATOR: Final = ",\n"
 """What stands between the entries."""
-REPORT_SCHEMA: Final = "urn:tidegate:report:1"
+_DIGITS: Final = 12
+"""Significant digits of a number: what lies beyond them is rounding."""
+REPORT_SCHEMA: Final = "urn:tidegate:report:2"
 """The version of the report's form."""
 
 
@@ -106,22 +113,79 @@ def _judgement(review: Review, judgement: Judgement) -> dict[str, Any]:
         "relation": measure.relation.value if measure else None,
         "need": number_entry(measure, "need"),
         "have": number_entry(measure, "have"),
-        "margin": number_entry(measure, "margin"),
+        "margin": margin_entry(measure),
+        "account": account_entry(judgement),
         "fact": judgement.at,
         "place": _place(review.place(judgement)),
         "path": [{"element": hop.element, "by": hop.by} for hop in judgement.path],
         "missing": list(judgement.missing),
+        "must_keep": must_keep_entry(judgement, must_keep(review, judgement)),
+        "under": judgement.under or None,
         "waiver": judgement.waiver or None,
     }
 
 
 def number_entry(measure: Measure | None, which: str) -> dict[str, Any] | None:
-    """A value and its unit; an unlimited one has no value."""
+    """A value and its unit; one without end has no value."""
     if measure is None:
         return None
-    value: float = getattr(measure, which)
-    unit = "" if measure.dimension is Dimension.COUNT else measure.dimension.unit
-    return {"value": value if abs(value) != float("inf") else None, "unit": unit}
+    return _quantity(getattr(measure, which), measure.dimension)
+
+
+def margin_entry(measure: Measure | None) -> dict[str, Any] | None:
+    """The margin that is told, its sure and its best end, and whether these are one."""
+    if measure is None:
+        return None
+    ends = {"sure": finite(measure.sure_margin), "best": finite(measure.best_margin), "exact": measure.is_exact}
+    return _quantity(measure.margin, measure.dimension) | ends
+
+
+def account_entry(judgement: Judgement) -> list[dict[str, Any]]:
+    """The terms of what there is and of what is needed, each with its sign."""
+    if judgement.measure is None:
+        return []
+    dimension = judgement.measure.dimension
+    return [
+        {
+            "side": side.name,
+            "name": line.name,
+            **_quantity(line.value, dimension),
+            "of": line.of,
+            "waits": list(line.waits),
+            "sure": finite(line.sure if line.waits else line.value),
+            "best": finite(line.best if line.waits else line.value),
+        }
+        for side in sides(judgement)
+        for line in side.lines
+    ]
+
+
+def must_keep_entry(judgement: Judgement, kept: MustKeep | None) -> dict[str, Any] | None:
+    """What the missing facts of an open judgement must keep: each alone, all together, and which word holds."""
+    if kept is None:
+        return None
+    facts = []
+    for each in kept.facts:
+        dimension = dimension_at(each.fact)
+        if dimension is not None:
+            limit = {"relation": "at most" if each.at_most else "at least", "sufficient": each.alone}
+            facts.append({"fact": each.fact, **limit, **_quantity(each.value, dimension)})
+    room = None
+    if kept.room is not None and judgement.measure is not None:
+        room = _quantity(kept.room, judgement.measure.dimension)
+    choice = None if kept.choice is None else {"fact": kept.choice[0], "value": choice_text(kept.choice[1])}
+    return {"facts": facts, "terms": list(kept.terms), "room": room, "choice": choice}
+
+
+def _quantity(value: float, dimension: Dimension) -> dict[str, Any]:
+    return {"value": finite(value), "unit": "" if dimension is Dimension.COUNT else dimension.unit}
+
+
+def finite(value: float | None) -> float | None:
+    """A number without what rounding leaves behind it; None where it has no end."""
+    if value is None or not math.isfinite(value):
+        return None
+    return float(f"{value:.{_DIGITS}g}") + 0.0
 
 
 def _place(place: Place) -> dict[str, Any]:

@@ -2,21 +2,24 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from typing import Final
 
 import msgspec
 
 from tidegate.lint.case import Case
-from tidegate.lint.derived.asking import Unknown, ask
-from tidegate.lint.derived.levels.at_code import as_shipped
-from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.levels.trip_levels import TripLevel, falling_window, rising_window
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.supply import Rail
+from tidegate.lint.facts.reading import Corner, MissingFactsError, Reading
 from tidegate.lint.graph.dependency import Graph
+from tidegate.lint.judgement import Level
+from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.physics.trip_window import Window
 from tidegate.lint.quantity import Dimension, Voltage, show
+from tidegate.lint.reports.columns import wrapped
 from tidegate.lint.reports.plain_text import plain
 
 _V: Final = Dimension.VOLTAGE
@@ -33,6 +36,8 @@ class Rung(msgspec.Struct, frozen=True):
     window: Window
     slack_v: float | None = None
     slack_to: str = ""
+    open: bool = False
+    """Whether the level lies at least so far apart as the window says, and perhaps further: errors are missing."""
 
 
 class _TripLevel(msgspec.Struct, frozen=True):
@@ -41,6 +46,7 @@ class _TripLevel(msgspec.Struct, frozen=True):
     name: str
     role: str
     window: Window
+    open: bool
 
 
 class Ladder(msgspec.Struct, frozen=True):
@@ -65,10 +71,10 @@ def ladder_lines(ladder: Ladder, *, width: int) -> Iterator[str]:
     """The ladder as text, at most ``width`` columns wide."""
     missing = f"not given: {_first(ladder.missing)}" if ladder.missing else ""
     if len(ladder.rungs) < 2:
-        yield plain(f"{ladder.rail}: no ladder, {missing or 'too few levels'}")
+        yield from wrapped(plain(f"{ladder.rail}: no ladder, {missing or 'too few levels'}"), max(width, _LEAST_BAR))
         return
     labels = _even(_shortened(rung.name) for rung in ladder.rungs)
-    ranges = _even(_range(rung.window) for rung in ladder.rungs)
+    ranges = _even(range_text(rung) for rung in ladder.rungs)
     slacks = [_slack(rung) for rung in ladder.rungs]
     columns = width - len(labels[0]) - len(ranges[0]) - max(map(len, slacks)) - 8  # two before, two between each
     if columns < _LEAST_BAR:
@@ -78,7 +84,7 @@ def ladder_lines(ladder: Ladder, *, width: int) -> Iterator[str]:
     else:
         yield from _drawn(ladder, labels, ranges, slacks, columns=columns)
     if missing:
-        yield plain(f"  not drawn, {missing}")
+        yield from (f"  {line}" for line in wrapped(plain(missing), max(width - 2, _LEAST_BAR)))
 
 
 def _even(texts: Iterable[str]) -> list[str]:
@@ -93,8 +99,10 @@ def _listed(label: str, shown: str, slack: str, *, width: int) -> Iterator[str]:
     if len(line) <= width:
         yield plain(line)
         return
-    yield plain(f"  {label}  {shown}".rstrip())
-    yield plain(f"    {slack}")
+    indent = min(len(label) + 4, max(width - _LEAST_BAR, 4))
+    for number, part in enumerate(wrapped(plain(shown.rstrip()), max(width - indent, _LEAST_BAR))):
+        yield f"{plain(f'  {label}').ljust(indent) if number == 0 else ' ' * indent}{part}".rstrip()
+    yield from (f"    {part}" for part in wrapped(plain(slack), max(width - 4, _LEAST_BAR)))
 
 
 def _drawn(
@@ -119,11 +127,11 @@ def _ladder(description: Description, graph: Graph, rail: Rail, detectors: Itera
     levels: list[_TripLevel] = []
     for detector in detectors:
         for which, find in (("rising", rising_window), ("falling", falling_window)):
-            window = _window(description, graph, detector, find)
-            if isinstance(window, Unknown):
-                missing += window.missing or (f"{detector.id} {which} ({window.problem})",)
-            else:
-                levels.append(_TripLevel(f"{detector.id} {which}", f"{detector.role} {which}", window))
+            found = _known_part(description, graph, detector, find)
+            missing += found.missing
+            if found.window is not None:
+                level = f"{detector.id} {which}", f"{detector.role} {which}"
+                levels.append(_TripLevel(*level, found.window, bool(found.missing)))
     ranges = {
         name: _given(rail, fact, span, missing)
         for name, fact, span in (
@@ -133,15 +141,34 @@ def _ladder(description: Description, graph: Graph, rail: Rail, detectors: Itera
     }  # fmt: skip
     rungs = [Rung(name, window) for name, window in ranges.items() if window is not None]
     rungs = [_damage(rung, levels, ranges) if rung.name == "damage" else rung for rung in rungs]
-    rungs += [Rung(level.name, level.window, *_clear_of(level, levels, ranges)) for level in levels]
+    rungs += [Rung(one.name, one.window, *_clear_of(one, levels, ranges), one.open) for one in levels]
     rungs.sort(key=lambda rung: -(rung.window.least_v + rung.window.most_v))
     return Ladder(rail.id, tuple(rungs), tuple(dict.fromkeys(missing)))
 
 
-def _window(
-    description: Description, graph: Graph, detector: Comparator, find: Callable[[Case, Comparator], Window]
-) -> Window | Unknown:
-    return ask(description, graph, detector, lambda case: find(case, as_shipped(case, detector)))
+class _Known(msgspec.Struct, frozen=True):
+    """Where a level lies as far as it is told, and what is missing for the rest."""
+
+    window: Window | None
+    missing: tuple[str, ...]
+
+
+def _known_part(
+    description: Description, graph: Graph, detector: Comparator, find: Callable[[Case, Comparator], TripLevel]
+) -> _Known:
+    """A level at the best corner: it reaches at least from one end to the other; None where nothing is told of it."""
+    case = Case(
+        subject=detector, rule="", level=Level.NOTE, description=description, graph=graph, reading=Reading(Corner.BEST)
+    )
+    try:
+        level = find(case, detector)
+        ends_v = level.most_v, level.least_v  # at the best corner the least end is the greatest that it may be
+    except (MissingFactsError, DomainError) as error:
+        lacks = error.missing if isinstance(error, MissingFactsError) else case.reading.lacking
+        return _Known(None, lacks or (f"{detector.id} ({error})",))
+    low_v, high_v = min(ends_v), max(ends_v)
+    told = math.isfinite(low_v) and math.isfinite(high_v)
+    return _Known(Window(low_v, high_v) if told else None, case.reading.lacking)
 
 
 def _given(rail: Rail, fact: str, span: Voltage | None, missing: list[str]) -> Window | None:
@@ -202,7 +229,13 @@ def _shortened(name: str) -> str:
     return f"{word[: _MOST_LABEL - len(which) - 3]}.. {which}"
 
 
-def _range(window: Window) -> str:
+def range_text(rung: Rung) -> str:
+    """The window of a rung; of one that is open, with a mark."""
+    text = _window_text(rung.window)
+    return f"{text} or beyond" if rung.open else text
+
+
+def _window_text(window: Window) -> str:
     least, most = (show(end_v, _V) for end_v in (window.least_v, window.most_v))
     if least == most:
         return least
@@ -213,4 +246,5 @@ def _range(window: Window) -> str:
 def _slack(rung: Rung) -> str:
     if rung.slack_v is None:
         return ""
-    return f"{'-' if rung.slack_v < 0.0 else '+'}{show(abs(rung.slack_v), _V, digits=3)} to {_shortened(rung.slack_to)}"
+    size = f"{'-' if rung.slack_v < 0.0 else '+'}{show(abs(rung.slack_v), _V, digits=3)}"
+    return f"{size}{' at most' if rung.open else ''} to {_shortened(rung.slack_to)}"

@@ -9,6 +9,7 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.judgement import Judgement, Kind, Measure
+from tidegate.lint.reports.gravity import least_room_first, missed, told_share
 from tidegate.lint.reports.plain_text import plain
 
 _BLOCKS: Final = "▁▂▃▄▅▆▇█"
@@ -20,37 +21,41 @@ _LESS: Final = 1e-12
 
 
 class Entry(msgspec.Struct, frozen=True):
-    """A judgement with its measure, and the margin as a share of what is needed."""
+    """A judgement with its measure, and the sure end of the margin as a share of what is needed."""
 
     judgement: Judgement
     measure: Measure
     slack: float
 
 
-def entries(judgements: Iterable[Judgement], *, element: str | None, family: str | None) -> list[Entry]:
-    """The judgements that have a number, least slack first; of one element, of one family, where these are named."""
-    found = [
-        Entry(judgement, judgement.measure, _slack(judgement.measure))
+def entries(
+    judgements: Iterable[Judgement], *, element: str | None = None, family: str | None = None, rule: str | None = None
+) -> list[Entry]:
+    """The judgements that have a number, those that miss their limit first, then by the sure end of their margin.
+
+    Of one element, of one family or of one rule, where these are named.
+    """
+    chosen = (
+        judgement
         for judgement in judgements
-        if judgement.measure is not None
-        and element in (None, judgement.subject)
+        if element in (None, judgement.subject)
         and family in (None, judgement.rule.partition("/")[0])
-    ]
-    return sorted(found, key=lambda entry: (entry.slack, entry.judgement.rule, entry.judgement.subject))
-
-
-def _slack(measure: Measure) -> float:
-    """The slack; without end, on the side on which the number lies, where need or number is unlimited."""
-    if math.isinf(measure.need) or math.isinf(measure.have):
-        return math.inf if measure.holds else -math.inf
-    return measure.slack
+        and rule in (None, judgement.rule)
+    )
+    found = []
+    for judgement in least_room_first(chosen):
+        measure = judgement.measure
+        assert measure is not None
+        found.append(Entry(judgement, measure, measure.share(measure.sure_margin)))
+    return found
 
 
 def histogram(found: Sequence[Entry], *, unicode: bool) -> str:
-    """How many judgements have how much slack, in one line."""
+    """How many judgements have how much slack for sure, in one line; those of which nothing is sure are not counted."""
     counts = [0] * (len(_BINS) + 1)
     for entry in found:
-        counts[_bin(entry.slack)] += 1
+        if entry.judgement.kind is not Kind.OPEN or math.isfinite(entry.slack):
+            counts[_bin(entry.slack)] += 1
     blocks, most = (_BLOCKS if unicode else _ASCII_BLOCKS), max(counts)
     words = [f"{'' if number == 0 else '<'}{word}" for number, (_, word) in enumerate(_BINS)] + ["more"]
     cells = []
@@ -74,10 +79,15 @@ def ledger_lines(found: Sequence[Entry], *, width: int) -> Iterator[str]:
     widths = [max(len(head), *(len(row[i]) for row in rows)) for i, head in enumerate(heads)] if rows else []
     if rows:
         yield _aligned(heads, widths, "of")
+    groups = {_group(entry.judgement) for entry in found}
+    told = "" if len(groups) > 1 else next(iter(groups), "")
     for entry, row in zip(found, rows, strict=True):
         judgement = entry.judgement
-        kind = "waived" if judgement.waiver else "review" if judgement.kind is Kind.REVIEW else ""
-        of = f"{judgement.subject} {judgement.rule}{f' ({kind})' if kind else ''}"
+        if _group(judgement) != told:
+            told = _group(judgement)
+            yield f"{told}:"
+        mark = _mark(judgement)
+        of = f"{judgement.subject} {judgement.rule}{f' ({mark})' if mark else ''}"
         line = _aligned(row, widths, plain(of))
         if len(line) <= width:
             yield line
@@ -85,6 +95,13 @@ def ledger_lines(found: Sequence[Entry], *, width: int) -> Iterator[str]:
             yield _aligned(row, widths, plain(judgement.subject))
             rule = plain(of.partition(" ")[2])
             yield " " * min(sum(widths) + 2 * len(widths), max(width - len(rule), 2)) + rule
+
+
+def _group(judgement: Judgement) -> str:
+    """What a margin stands among."""
+    if missed(judgement):
+        return "short of the limit"
+    return "open, by what is known so far" if judgement.kind is Kind.OPEN else "kept, by what is sure"
 
 
 def _aligned(cells: Sequence[str], widths: Sequence[int], last: str) -> str:
@@ -95,15 +112,30 @@ def _aligned(cells: Sequence[str], widths: Sequence[int], last: str) -> str:
     return f"{slack}  {margin}  {have}  {need}  {last}".rstrip()
 
 
+def _mark(judgement: Judgement) -> str:
+    """What a reader should know of a judgement beside its number."""
+    if judgement.waiver:
+        return "waived"
+    if judgement.under:
+        return f"under {judgement.under}"
+    return "review" if judgement.kind is Kind.REVIEW else ""
+
+
 def _cells(entry: Entry) -> tuple[str, str, str, str]:
     measure = entry.measure
-    have, need = measure.texts()
-    return _percent(entry.slack), measure.margin_text(), have, f"{measure.relation.value} {need}"
+    have, _ = measure.texts()
+    return (
+        percent(told_share(entry.judgement), known=measure.is_exact),
+        measure.margin_words(entry.judgement.kind),
+        have,
+        measure.limit_text(),
+    )
 
 
-def _percent(slack: float) -> str:
+def percent(slack: float, *, known: bool) -> str:
+    """A share of the need, short; one without end is not known, or has none."""
     if math.isinf(slack):
-        return "no end" if slack > 0 else "-no end"
+        return "not known" if not known else "no end" if slack > 0 else "-no end"
     percent = 100.0 * slack
     if abs(percent) >= 999.5:
         return f"{'-' if percent < 0 else '+'}>999 %"

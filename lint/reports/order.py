@@ -44,21 +44,25 @@ def kind_word(kind: Kind) -> str:
     return {Kind.NOT_APPLICABLE: "not applicable", Kind.REVIEW: "to look at"}.get(kind, kind.value)
 
 
-def closest_first(judgements: Iterable[Judgement]) -> list[Judgement]:
-    """The judgements with a number, that with the least slack for its need first."""
-    measured = [judgement for judgement in judgements if judgement.measure is not None]
-    return sorted(measured, key=lambda judgement: judgement.measure.slack if judgement.measure else 0.0)
+def explained_by(judgements: Iterable[Judgement]) -> dict[int, list[Judgement]]:
+    """By the identity of each failure, the failures that are told under it.
 
-
-def missing_facts(review: Review) -> dict[str, list[str]]:
-    """Each missing fact, and the rules that wait for it."""
-    waiting: dict[str, list[str]] = {}
-    for judgement in review.judgements:
-        for fact in judgement.missing:
-            rules = waiting.setdefault(fact, [])
-            if judgement.rule not in rules:
-                rules.append(judgement.rule)
-    return waiting
+    Where the rule above fails on several elements, that on the same one counts, else the first on the way to it.
+    """
+    every = list(judgements)
+    failed: dict[str, list[Judgement]] = {}
+    for judgement in every:
+        if judgement.kind is Kind.FAIL and not judgement.waiver:
+            failed.setdefault(judgement.rule, []).append(judgement)
+    found: dict[int, list[Judgement]] = {}
+    for judgement in every:
+        above = failed.get(judgement.under, ()) if judgement.under else ()
+        if above:
+            near = {judgement.subject, *(hop.element for hop in judgement.path)}
+            first = next((one for one in above if one.subject == judgement.subject), None)
+            first = first or next((one for one in above if one.subject in near), above[0])
+            found.setdefault(id(first), []).append(judgement)
+    return found
 
 
 def verdict(review: Review) -> str:

@@ -7,12 +7,11 @@ import re
 from collections.abc import Iterator, Sequence
 from typing import Final
 
-from tidegate.lint.derived.asking import Unknown
-from tidegate.lint.derived.levels.detector_placement import DetectorPlacement
-from tidegate.lint.derived.levels.guarded_loads import Bound
-from tidegate.lint.derived.levels.level_placement import LevelPlacement
-from tidegate.lint.derived.levels.placement_facts import PlacementFacts, spread_of
-from tidegate.lint.physics.placement import Limit, Requirement, Side
+from tidegate.lint.account import term_name
+from tidegate.lint.derived.levels.detector_placement import Borne, DetectorPlacement, Needed
+from tidegate.lint.derived.levels.level_placement import ROUNDING_V, Kept, LevelPlacement, Limit
+from tidegate.lint.derived.safe_rounding import show_down
+from tidegate.lint.facts.names import dimension_at, listed, spoken, spoken_together
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.reports.columns import columns, wrapped
 from tidegate.lint.reports.plain_text import plain
@@ -32,20 +31,24 @@ _NOUNS: Final = {"power_on": "power-on", "under_voltage": "under-voltage", "over
 
 def placement_lines(placed: DetectorPlacement, place: str, *, most_levers: int) -> Iterator[str]:
     """The block of one detector."""
-    comparator = placed.comparator
+    comparator, found = placed.comparator, placed.found
     title = f"{comparator.id}, {_NOUNS[comparator.role]} detector of {comparator.watches}"
     place = plain(place)
     yield f"{title}{' ' * max(2, WIDTH - len(title) - columns(place))}{place}"
-    found = placed.found
-    if isinstance(found, Unknown):
-        yield from row("open", found.text())
-        return
     yield from _levels(found)
-    for label, limit in (("lowest by", found.below), ("highest by", found.above)):
-        yield from row(label, f"{limit.by.value}: {limit_text(found.facts, limit)}")
-    yield from row("hysteresis", _hysteresis(placed, found))
-    if found.margins_v:
-        yield from row("margins", ", ".join(f"{by.value} {signed(v)}" for by, v in found.margins_v.items()))
+    if found.waits:
+        yield from row("surely", _surely(found))
+        yield from row("waits for", _facts(found.waits))
+    for label, limit in (("lowest by", found.best.below), ("highest by", found.best.above)):
+        yield from row(label, "nothing that is known" if limit is None else limit_text(limit))
+    yield from row("hysteresis", _hysteresis(placed))
+    if placed.errors_here is not None or placed.errors_anywhere is not None:
+        yield from row("range" if found.stated.ranged else "errors", _errors(placed))
+    if found.kept:
+        parts = [_kept(each) for each in found.kept]
+        yield from row("margins", ("; " if any("," in part for part in parts) else ", ").join(parts))
+    if placed.borne:
+        yield from row("bears", "; ".join(_borne(placed.borne)))
     if placed.usable:
         yield from row("codes", _codes(placed))
     yield from _levers(placed, most_levers)
@@ -61,97 +64,170 @@ def row(label: str, text: str) -> Iterator[str]:
 
 def _levels(found: LevelPlacement) -> Iterator[str]:
     """Both intervals, and where the levels stand today."""
-    levels, falling = found.facts.levels, found.falling
-    if falling.short_v > 0.0:
-        yield from row("no place", f"{millivolts(falling.short_v)} short")
-    for label, apart_v, today_v in (
-        ("falling", 0.0, levels.falling_v), ("rising", levels.hysteresis_v, levels.rising_v)
-    ):  # fmt: skip
-        least_v, most_v = falling.least_v + apart_v, falling.most_v + apart_v
-        if falling.short_v > 0.0:
-            text = f"at least {up_text(least_v)}, and at most {down_text(most_v)}"
-        else:
-            text = f"{up_text(least_v)} to {down_text(most_v)}"
-            text += f", room {millivolts(found.room_v)}" if label == "falling" else ""
-        yield from row(label, f"{text}; {_today(today_v, least_v, most_v, ranged=levels.ranged)}")
+    stated, ends = found.stated, found.best
+    so_far = " so far" if found.waits else ""
+    if ends.is_empty:
+        short = f"{millivolts(-ends.room_v)} short" if math.isfinite(ends.room_v) else "nothing fits"
+        yield from row("no place", f"{short}, whatever is missing" if found.waits else short)
+    for label, point_v in (("falling", stated.falling_v), ("rising", stated.rising_v)):
+        if point_v is None:
+            continue
+        least_v, most_v = point_v + ends.least_v, point_v + ends.most_v
+        text = f"{_interval(least_v, most_v)}{so_far}"
+        if label == "falling" and math.isfinite(ends.room_v) and not ends.is_empty:
+            text += f", room {millivolts(ends.room_v)}"
+        today = _today(point_v, least_v, most_v, stated.words) if stated.placed else "not placed yet"
+        yield from row(label, f"{text}; {today}")
 
 
-def _today(today_v: float | None, least_v: float, most_v: float, *, ranged: bool) -> str:
-    if today_v is None:
-        return "not placed yet"
-    said = f"today {show(today_v, _V, digits=5)}{', mid-range' if ranged else ''}"
-    if today_v < least_v - 1e-12:
+def _interval(least_v: float, most_v: float) -> str:
+    if least_v == math.inf:
+        other = "any is low enough" if most_v == math.inf else f"at most {down_text(most_v)}"
+        return f"no level is high enough; {other}"
+    if least_v > most_v:
+        return f"at least {up_text(least_v)}, and at most {down_text(most_v)}"
+    if math.isinf(least_v) and math.isinf(most_v):
+        return "anywhere"
+    if math.isinf(least_v):
+        return f"up to {down_text(most_v)}"
+    return f"from {up_text(least_v)}" if math.isinf(most_v) else f"{up_text(least_v)} to {down_text(most_v)}"
+
+
+def _today(today_v: float, least_v: float, most_v: float, words: str) -> str:
+    said = f"today {show(today_v, _V, digits=5)}{f', {words}' if words else ''}"
+    if today_v < least_v == math.inf:
+        return f"{said}, too low whatever it is"
+    if today_v > most_v == -math.inf:
+        return f"{said}, too high whatever it is"
+    if today_v < least_v - ROUNDING_V:
         return f"{said}, {millivolts(least_v - today_v)} too low"
-    if today_v > most_v + 1e-12:
+    if today_v > most_v + ROUNDING_V:
         return f"{said}, {millivolts(today_v - most_v)} too high"
     return said
 
 
-def limit_text(facts: PlacementFacts, limit: Limit) -> str:
+def _surely(found: LevelPlacement) -> str:
+    """What is kept whatever is missing."""
+    ends, point_v = found.sure, found.stated.falling_v
+    if ends.is_empty or point_v is None:
+        return "none, before what is missing is known"
+    return f"falling {_interval(point_v + ends.least_v, point_v + ends.most_v)}, whatever is missing"
+
+
+def _facts(facts: Sequence[str]) -> str:
+    """Facts as people name them, those of one element together."""
+    return "; ".join(spoken_together(facts))
+
+
+def limit_text(limit: Limit) -> str:
     """The numbers behind a limit, and the fact it rests on."""
-    error_v = _error_v(facts, limit)
-    parts = [*_limit_parts(facts, limit), f"error of the {limit.level.value} level {millivolts(error_v)}"]
-    return f"{'; '.join(parts)} ({limit_fact(facts, limit)})"
+    error = f"error of the {limit.which} level {millivolts(limit.error_v)}" if math.isfinite(limit.error_v) else ""
+    return f"{limit.name}: {'; '.join(filter(None, (limit.why, error)))} ({limit.fact})"
 
 
-def limit_fact(facts: PlacementFacts, limit: Limit) -> str:
-    """The fact that a limit rests on most."""
-    return _bound(facts, limit).fact
+def _hysteresis(placed: DetectorPlacement) -> str:
+    stated, largest_v = placed.found.stated, placed.largest_hysteresis_v
+    now_v = stated.hysteresis_v if stated.apart else None
+    parts = ["not given" if now_v is None else f"{millivolts(now_v)} nominal"]
+    parts.append(_needed(placed.least_hysteresis))
+    if largest_v is not None:
+        so_far = " so far" if placed.found.waits else ""
+        fit = f"{millivolts(largest_v)} at most fit" if largest_v >= 0.0 else "not even none fits"
+        parts.append(f"{fit}{so_far}")
+    return "; ".join(parts)
 
 
-def _bound(facts: PlacementFacts, limit: Limit) -> Bound:
-    if limit.by is Requirement.GUARANTEE:
-        return facts.bounds[0]
-    return facts.under_voltage[0] if limit.by is Requirement.BEFORE_UNDER_VOLTAGE else facts.delivered
+def _needed(needed: Needed) -> str:
+    facts = _facts(needed.missing)
+    if needed.sure_v is not None:
+        return f"{millivolts(needed.sure_v)} or more needed{' at the worst' if facts else ''}"
+    if not needed.best_v:
+        return f"least needed not known without {facts}" if facts else "least needed not known"
+    return f"{millivolts(needed.best_v)} or more needed, and what may come with {facts}"
 
 
-def _error_v(facts: PlacementFacts, limit: Limit) -> float:
-    spread = spread_of(facts, limit.level)
-    least = limit.side is Side.LEAST
-    nominal_v = (spread.lowest_nominal_v if least else spread.highest_nominal_v)(limit.nominal_v)
-    return abs(nominal_v - limit.nominal_v)
+def _errors(placed: DetectorPlacement) -> str:
+    """How large the errors may be where the levels stand, and anywhere: as a size, or as times what they are."""
+    said, unit = _size(placed)
+    sign = "+-" if placed.found.stated.ranged else ""
+
+    def largest(times: float) -> str:
+        if times < 0.0:
+            return "none fits"
+        return f"up to {sign}{show_down(said * times, unit)}" if said else f"up to {_times(times)} times"
+
+    fits = [
+        f"{largest(times)} {where}"
+        for where, times in (("here", placed.errors_here), ("at the best place", placed.errors_anywhere))
+        if times is not None
+    ]
+    now = f"{sign}{show(said, unit)} now; " if said else ""
+    return f"{now}{', '.join(fits)}{' so far' if placed.found.waits else ''}"
 
 
-def _limit_parts(facts: PlacementFacts, limit: Limit) -> Iterator[str]:
-    bound, over = _bound(facts, limit), facts.role == "over_voltage"
-    level = show(bound.level_v, _V)
-    if limit.by is Requirement.GUARANTEE:
-        of_rail = bound.element == facts.delivered.element
-        verb = "is signed off" if of_rail else "works"
-        yield f"{bound.element} {verb} {'up to' if over else 'from'} {level}"
-        if facts.response is not None:
-            moves = "rises" if over else "falls"
-            answer = show(facts.response.time_s, Dimension.DURATION)
-            yield f"{facts.delivered.element} {moves} {millivolts(facts.response.moved_v)} in {answer}"
-        else:
-            yield "worst corner against worst corner"
-        return
-    if limit.by is Requirement.BEFORE_UNDER_VOLTAGE:
-        yield f"{bound.element} releases from {level}"
-        return
-    yield f"{bound.element} is delivered {'up to' if over else 'from'} {level}"
-    if limit.by is not Requirement.RELEASE:
-        yield f"half the ripple {millivolts(facts.ripple_v / 2)}"
-    if limit.by is Requirement.QUIET and not over:
-        yield f"load step {millivolts(facts.load_step_a * facts.source_ohm)}"
+def _times(times: float) -> str:
+    return f"{math.floor(times * 100 + 1e-9) / 100:.2f}" if times < 1e6 else f"{times:.3g}"
 
 
-def _hysteresis(placed: DetectorPlacement, found: LevelPlacement) -> str:
-    text = f"{millivolts(found.facts.levels.hysteresis_v)} nominal; "
-    least = placed.least_hysteresis_v
-    if isinstance(least, Unknown):
-        text += f"least needed {least.text()}; "
-    else:
-        text += f"{millivolts(least)} or more needed, "
-    largest_v = found.largest_hysteresis_v
-    return text + (f"{millivolts(largest_v)} at most fit" if largest_v >= 0.0 else "not even none fits")
+def _size(placed: DetectorPlacement) -> tuple[float, Dimension]:
+    """The size of the errors, where it is one number: of the only error, or the half of the range; else nothing."""
+    detector, stated = placed.placing.detector, placed.found.stated
+    trip = detector.trip
+    spans = [span for span in ((trip.falling, trip.rising) if trip is not None else ()) if span is not None]
+    if stated.ranged:
+        halves = {round((s.most - s.least) / 2, 9) for s in spans if s.most is not None and s.least is not None}
+        return (halves.pop() if len(halves) == 1 else 0.0), _V
+    errors = list(detector.errors.values())
+    sizes = [(each.share, Dimension.RATIO) for each in errors] + [(each.amount, _V) for each in errors]
+    given = [(size.most, unit) for size, unit in sizes if size is not None and size.most is not None]
+    return given[0] if len(given) == 1 == len(errors) else (0.0, _V)
+
+
+def _kept(kept: Kept) -> str:
+    """A margin, as far as it is known."""
+    if kept.is_exact:
+        return f"{kept.name} {signed(kept.best_v)}"
+    terms = listed(map(_term, kept.terms))
+    if math.isinf(kept.best_v):
+        known = math.isfinite(kept.sure_v)
+        return f"{kept.name} {signed(kept.sure_v)} at the worst" if known else f"{kept.name} not known without {terms}"
+    if math.isfinite(kept.sure_v):
+        return f"{kept.name} between {signed(kept.sure_v)} and {signed(kept.best_v)}, by {terms}"
+    if kept.best_v < -ROUNDING_V:
+        return f"{kept.name} {signed(kept.best_v)} or worse"
+    return f"{kept.name} {signed(kept.best_v)} before {terms}"
+
+
+def _term(name: str) -> str:
+    """A term as a sentence names it, or a fact that no term of the account has."""
+    return term_name(name) if " " in name or "." not in name else spoken(name)
+
+
+def _borne(borne: Sequence[Borne]) -> Iterator[str]:
+    """What each requirement leaves for what is missing: for all of it together, and for each fact by itself."""
+    for requirement in dict.fromkeys(each.requirement for each in borne):
+        terms = [each for each in borne if each.requirement == requirement]
+        names = listed(_term(each.term) for each in terms)
+        together = " together" if len(terms) > 1 else ""
+        text = f"{requirement}: {show_down(terms[0].room_v, _V)} for {names}{together}"
+        facts = [
+            f"{spoken(each.fact.fact)} {'up to' if each.fact.at_most else 'from'} "
+            f"{show_down(each.fact.value, dimension_at(each.fact.fact) or _V)}"
+            for each in terms
+            if each.fact is not None
+        ]
+        yield f"{text} ({', '.join(facts)}{' by itself' if together else ''})" if facts else text
 
 
 def _codes(placed: DetectorPlacement) -> str:
     usable = [code for code, holds in placed.usable.items() if holds]
+    unsure = [code for code, holds in placed.usable.items() if holds is None]
     ships = placed.comparator.ships_with
-    text = f"{', '.join(usable) or 'none'} usable of {', '.join(placed.usable)}"
-    return f"{text}; ships with {ships}" if ships else text
+    parts = [f"{', '.join(usable) or 'none'} usable of {', '.join(placed.usable)}"]
+    if unsure:
+        others = len(unsure) < len(placed.usable)
+        parts = [*(parts if others else ()), f"not known yet of {', '.join(unsure)}"]
+    return "; ".join([*parts, f"ships with {ships}"] if ships else parts)
 
 
 def _levers(placed: DetectorPlacement, most: int) -> Iterator[str]:
@@ -178,14 +254,14 @@ def millivolts(value_v: float) -> str:
 
 def up_text(level_v: float) -> str:
     """A least level: the next tenth of a millivolt up."""
-    if abs(level_v) > _MOST_ON_GRID_V:
+    if not abs(level_v) <= _MOST_ON_GRID_V:
         return show(level_v, _V)
     return f"{math.ceil(level_v * _GRID - 1e-6) / _GRID:.4f} V"
 
 
 def down_text(level_v: float) -> str:
     """A greatest level: the next tenth of a millivolt down."""
-    if abs(level_v) > _MOST_ON_GRID_V:
+    if not abs(level_v) <= _MOST_ON_GRID_V:
         return show(level_v, _V)
     return f"{math.floor(level_v * _GRID + 1e-6) / _GRID:.4f} V"
 

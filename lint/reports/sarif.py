@@ -13,10 +13,12 @@ from tidegate.lint.description.place import Fault, Place
 from tidegate.lint.engine import Review, RuleFault
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind
+from tidegate.lint.must_keep import must_keep
 from tidegate.lint.quantity import Dimension
 from tidegate.lint.reports.json_form import json_form
-from tidegate.lint.reports.json_report import settings_entry
+from tidegate.lint.reports.json_report import account_entry, finite, must_keep_entry, settings_entry
 from tidegate.lint.reports.plain_text import plain
+from tidegate.lint.reports.words import keep_text, margin_words
 from tidegate.lint.rule import Rule
 from tidegate.lint.settings import Settings
 from tidegate.lint.version import VERSION
@@ -99,7 +101,7 @@ def _rule(rule: Rule) -> dict[str, Any]:
         "fullDescription": _text(rule.proves),
         "help": {"text": help_text},
         "defaultConfiguration": {"level": rule.level.value},
-        "properties": {"family": rule.family, "appliesTo": rule.applies_to, "facts": list(rule.facts)},
+        "properties": {"family": rule.family, "appliesTo": list(rule.applies_to), "facts": list(rule.facts)},
     }
 
 
@@ -123,10 +125,10 @@ def _result(review: Review, judgement: Judgement) -> dict[str, Any]:
         "ruleId": judgement.rule,
         "kind": judgement.kind.value,
         "level": judgement.level.value if judgement.kind is Kind.FAIL else "none",
-        "message": _text(_message(judgement)),
+        "message": _text(_message(review, judgement)),
         "locations": [{"physicalLocation": _physical(place), "logicalLocations": [_logical(judgement)]}],
         "partialFingerprints": {_FINGERPRINT: _fingerprint(review, judgement)},
-        "properties": _properties(judgement),
+        "properties": _properties(review, judgement),
     }
     if judgement.path:
         result["relatedLocations"] = _related(review, judgement)
@@ -139,8 +141,11 @@ def _logical(judgement: Judgement) -> dict[str, str]:
     return {"name": plain(judgement.subject), "fullyQualifiedName": plain(judgement.at), "kind": "element"}
 
 
-def _message(judgement: Judgement) -> str:
+def _message(review: Review, judgement: Judgement) -> str:
     parts = [f"{judgement.subject}: {judgement.message}"]
+    kept = keep_text(judgement, must_keep(review, judgement))
+    if kept:
+        parts.append(f"Must keep: {kept}")
     if judgement.why:
         parts.append(f"Why: {judgement.why}")
     if judgement.path:
@@ -161,23 +166,24 @@ def _fingerprint(review: Review, judgement: Judgement) -> str:
     return hashlib.sha256("\0".join((file, judgement.rule, judgement.subject)).encode()).hexdigest()
 
 
-def _properties(judgement: Judgement) -> dict[str, Any]:
+def _properties(review: Review, judgement: Judgement) -> dict[str, Any]:
     measure = judgement.measure
     properties: dict[str, Any] = {"subject": judgement.subject, "mend": plain(judgement.mend)}
     if judgement.missing:
         properties["missing"] = list(judgement.missing)
+    if judgement.under:
+        properties["under"] = judgement.under
     if measure is not None:
         unit = "1" if measure.dimension is Dimension.COUNT else measure.dimension.unit
         properties |= {"relation": measure.relation.value, "unit": unit}
-        properties |= {name: _number(getattr(measure, name)) for name in ("need", "have", "margin")}
-        properties["marginText"] = measure.margin_text()
+        properties |= {name: finite(getattr(measure, name)) for name in ("need", "have", "margin")}
+        properties |= {"sure": finite(measure.sure_margin), "best": finite(measure.best_margin)}
+        properties |= {"exact": measure.is_exact, "marginText": margin_words(judgement)}
+    if account := account_entry(judgement):
+        properties["account"] = account
+    if kept := must_keep_entry(judgement, must_keep(review, judgement)):
+        properties["mustKeep"] = kept
     return properties
-
-
-def _number(value: float) -> float | str:
-    if abs(value) != float("inf"):
-        return value
-    return "unlimited" if value > 0 else "-unlimited"
 
 
 def _related(review: Review, judgement: Judgement) -> list[dict[str, Any]]:

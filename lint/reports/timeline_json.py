@@ -64,8 +64,8 @@ def _state(state: State) -> dict[str, Any]:
         case MadeSupply():
             return {
                 "maker": _on(state.maker),
-                "rise_s": _finite(state.ramp.rise_s),
-                "fall_s": _finite(state.ramp.fall_s),
+                "rise_s": _finite(state.ramp.rise.most),
+                "fall_s": _finite(state.ramp.fall.most),
             }
         case _:
             return {}

@@ -40,7 +40,7 @@ def blame_for_unknown(lines: Timelines, line: Timeline, start: str, at_s: float)
     seen = {start}
     here = start
     while True:
-        part = lines.read.parts.get(here)
+        part = lines.read.every.get(here)
         if isinstance(part, ComparatorPart):
             return Blame(here, Why.UNDECIDED, _waits_for(lines, line, part, at_s), tuple(hops))
         if isinstance(part, StagePart) and part.hold == "none" and _is_down(lines, line, part, at_s):

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import NamedTuple
 
-from tidegate.lint.timing.interval import ALWAYS, NEVER, Times, both, delayed, either, joined, outside
-from tidegate.lint.timing.parts import StagePart
+from tidegate.lint.timing.interval import NEVER, Times, both, delayed, either, first_from, joined, outside
+from tidegate.lint.timing.parts import NOTHING, StagePart
 from tidegate.lint.timing.state import Decision, On
 
 
@@ -14,7 +14,7 @@ def output_of(part: StagePart, *, given: Decision, alive: On) -> Decision:
     driven = _Driven(given.may_assert, given.may_release, given.may_be_unknown)
     if part.latches:
         driven = _latched(part, driven, alive)
-    if part.release_delay.most > 0.0:
+    if part.release_delay != NOTHING:
         driven = _released_late(part, driven, alive)
     asserts = _through(driven.asserts, part, alive)
     releases = _through(driven.releases, part, alive)
@@ -37,14 +37,14 @@ def _through(times: Times, part: StagePart, alive: On, *, least_s: float | None 
         return NEVER
     delay = part.delay
     seen = both(times, alive.may_be_on)
-    if not seen or delay.most == 0.0:
+    if not seen or delay == NOTHING:
         return seen
     least_s = delay.least if least_s is None else least_s
-    if alive.may_be_on is ALWAYS:
-        return delayed(seen, least_s=least_s, most_s=delay.most)
-    begins = [start for start, _ in alive.may_be_on]
-    spans = [(start if start in begins else start + least_s, end + delay.most) for start, end in seen]
-    return both(joined(spans), alive.may_be_on)
+    if not alive.may_be_off:
+        return both(delayed(seen, least_s=least_s, most_s=delay.most), alive.may_be_on)
+    spans = [(min(start + least_s, first_from(alive.may_be_off, start)), end + delay.most) for start, end in seen]
+    spans = [(start, end) for start, end in spans if start < end]
+    return both(joined(spans), alive.may_be_on) if spans else NEVER
 
 
 class _Driven(NamedTuple):

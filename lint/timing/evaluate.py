@@ -30,7 +30,10 @@ from tidegate.lint.timing.state import (
     ANY_DECISION,
     ANYTHING,
     ASSERTED,
+    KNOWN,
     NEVER_ON,
+    NO_DECISION,
+    NOTHING_KNOWN,
     RELEASED,
     Decision,
     On,
@@ -73,6 +76,10 @@ class Network(msgspec.Struct, frozen=True):
     """Where each element comes in the order."""
     leans_on: Mapping[str, Sequence[str]]
     """What the state of each element follows from, beside the scenario."""
+    others: Mapping[str, Sequence[TimedPart]] = {}
+    """What else an element may be, where a word is missing."""
+    best: bool = False
+    """Whether what is not known is taken for the best: what then may be so may be so whatever it turns out to be."""
 
     def among(self, names: Iterable[str]) -> Network:
         """The same network, with the order of some elements alone; of what leans on itself, all."""
@@ -82,43 +89,34 @@ class Network(msgspec.Struct, frozen=True):
 
     def pinned(self, ends: Mapping[str, bool]) -> Network:
         """The same network with the tolerances of some elements at their least (False) or greatest (True) ends."""
-        parts = dict(self.parts)
+        parts, others = dict(self.parts), dict(self.others)
         for name, greatest in ends.items():
             if name in parts:
                 parts[name] = _at_end(parts[name], greatest)
-        return msgspec.structs.replace(self, parts=parts)
-
-    def without_spread_from_nothing(self, names: Iterable[str]) -> Network:
-        """The same network with each least value of some elements that stands at 0 as great as the greatest."""
-        parts = dict(self.parts)
-        for name in names:
-            if name in parts:
-                parts[name] = _without_spread_from_nothing(parts[name])
-        return msgspec.structs.replace(self, parts=parts)
+            if name in others:
+                others[name] = [_at_end(other, greatest) for other in others[name]]
+        return msgspec.structs.replace(self, parts=parts, others=others)
 
 
-def network(parts: Mapping[str, TimedPart], ramps: Mapping[str, RailRamp]) -> Network:
+def network(
+    parts: Mapping[str, TimedPart], ramps: Mapping[str, RailRamp],
+    others: Mapping[str, Sequence[TimedPart]] | None = None, *, best: bool = False,
+) -> Network:  # fmt: skip
     """The network of some parts."""
     parts = without_started_loops(parts)
     order = in_order(parts)
     place = {name: number for number, (group, _) in enumerate(order) for name in group}
-    return Network(parts, order, ramps, place, {name: leans_on(part) for name, part in parts.items()})
+    leant_on = {name: leans_on(part) for name, part in parts.items()}
+    return Network(parts, order, ramps, place, leant_on, others or {}, best)
 
 
 def _at_end(part: TimedPart, greatest: bool) -> TimedPart:
-    """A part with each quantity at one end; what is not finite stays as it is."""
+    """A part with each quantity at one end; one of which an end is not known stays as it is."""
     changes = {}
     for name, value in bounds_of(part):
-        end = value.most if greatest and value.most < FOREVER_S else value.least
-        changes[name] = Bounds(end, end)
-    return msgspec.structs.replace(part, **changes)
-
-
-def _without_spread_from_nothing(part: TimedPart) -> TimedPart:
-    changes = {}
-    for name, value in bounds_of(part):
-        if value.least == 0.0 and value.most < FOREVER_S:
-            changes[name] = Bounds(value.most, value.most)
+        if -FOREVER_S < value.least <= value.most < FOREVER_S:
+            end = value.most if greatest else value.least
+            changes[name] = Bounds(end, end)
     return msgspec.structs.replace(part, **changes)
 
 
@@ -134,7 +132,7 @@ def evaluate(
     What is ``forced`` has that state whatever it leans on, as an override forces it.  ``found`` holds what was found
     in other scenarios of the same network: what follows from the same states is not worked out anew.
     """
-    states = _States(known or {})
+    states = _States(known or {}, NOTHING_KNOWN if net.best else ANYTHING)
     times = _Timing(net, scenario, states, forced or {})
     for group, leans_on_itself in net.order:
         if leans_on_itself:
@@ -175,17 +173,18 @@ class Found:
 
 class _States(dict[str, State]):
     """States as they are found; what is not timed anew is as it was known, and of what is not known at all, anything
-    may be so."""
+    may be so, or at the best corner nothing that could be told."""
 
-    def __init__(self, known: States) -> None:
+    def __init__(self, known: States, unknown: On) -> None:
         super().__init__()
         self.known = known
+        self.unknown = unknown
 
     def __missing__(self, name: str) -> State:
         try:
             return self.known[name]
         except KeyError:
-            return ANYTHING
+            return self.unknown
 
 
 class _Timing:
@@ -196,6 +195,8 @@ class _Timing:
         self.scenario = scenario
         self.states = states
         self.forced = forced
+        self.unknown = NOTHING_KNOWN if net.best else ANYTHING
+        self.any_decision = NO_DECISION if net.best else ANY_DECISION
 
     def settle_loop(self, group: Sequence[str]) -> None:
         """What leans on itself: nothing is on at first; what follows is followed till it rests, at most twice round."""
@@ -210,13 +211,25 @@ class _Timing:
         for name in group:
             part = self.net.parts[name]
             given = isinstance(part, RailPart) and name in self.scenario.waveforms and not self.scenario.in_sequence
-            self.states[name] = self.state(part) if given else _anything(part)
+            self.states[name] = self.state(part) if given else self._anything(part)
+
+    def _anything(self, part: TimedPart) -> State:
+        match part:
+            case StagePart() | ResetPart() | ComparatorPart():
+                return self.any_decision
+            case LoadPart():
+                return LoadState(self.unknown, self.unknown, self.any_decision, self.unknown)
+            case _:
+                return self.unknown
 
     def state(self, part: TimedPart) -> State:
         """The state of one element, from those of what it leans on."""
         if part.id in self.forced:
             return self.forced[part.id]
-        return _TIMED[type(part)](self, part)
+        state = _TIMED[type(part)](self, part)
+        for other in self.net.others.get(part.id, ()):
+            state = one_or_other(state, _TIMED[type(other)](self, other), surely=self.net.best)
+        return state
 
     def _rail(self, part: RailPart) -> State:
         scenario = self.scenario
@@ -228,19 +241,17 @@ class _Timing:
                 up_s = self._up(part.after)
                 least_s, most_s = up_s[0] + part.delay.least, up_s[1] + part.delay.most
             if most_s == FOREVER_S:
-                return ANYTHING
+                return self.unknown
             return GivenSupply(waveform, least_s=least_s, most_s=most_s)
         if part.made_by is None or ramp is None:
-            return ANYTHING
+            return self.unknown
         maker = self._gate(part.made_by)
-        rise_s = ramp.rise.least if scenario.fast else ramp.rise.most
-        fall_s = ramp.fall.least if scenario.fast else ramp.fall.most
-        return MadeSupply(maker, Ramp(ramp.nominal_v, rise_s, fall_s, part.delay.least, part.delay.most))
+        return MadeSupply(maker, Ramp(ramp.nominal_v, *ramp.at_pace(fast=scenario.fast), part.delay))
 
     def _up_on(self, rail: str) -> On:
         """When a rail has come up."""
         ramp = self.net.ramps.get(rail)
-        return ANYTHING if ramp is None else self._above(rail, Bounds(ramp.up_v, ramp.up_v))
+        return self.unknown if ramp is None else self._above(rail, ramp.up)
 
     def _up(self, rail: str) -> tuple[float, float]:
         """The earliest and the latest time at which a rail comes up, in s."""
@@ -255,7 +266,7 @@ class _Timing:
         if isinstance(supply, On):
             return supply
         if not isinstance(supply, Supply):
-            return ANYTHING
+            return self.unknown
         if level.least < _ABOVE_NOTHING_V:
             level = Bounds(_ABOVE_NOTHING_V, max(level.most, _ABOVE_NOTHING_V))
         return supply.above(level)
@@ -287,7 +298,7 @@ class _Timing:
     def _comparator(self, part: ComparatorPart) -> Decision:
         watched = self.states[part.watches]
         if not isinstance(watched, Supply):
-            return ANY_DECISION
+            return self.any_decision
         return decision_of(part, watched=watched, valid=self._fed(part), armed=self._all_gates(part.armed_by))
 
     def _stage(self, part: StagePart) -> Decision:
@@ -299,18 +310,21 @@ class _Timing:
 
     def _decision(self, name: str) -> Decision:
         state = self.states[name]
-        return state if isinstance(state, Decision) else ANY_DECISION
+        return state if isinstance(state, Decision) else self.any_decision
 
     def _load(self, part: LoadPart) -> LoadState:
         fed = all_on(self._within(rail, works) for rail, works in part.works)
+        if part.may_work:
+            fed = On(all_on(self._within(rail, works) for rail, works in part.may_work).may_be_on, fed.may_be_off)
         up = fed
         if part.needs or part.domain is not None:
             gates = () if part.domain is None else (self._gate(part.domain),)
             up = all_on((fed, *gates, *map(self._gate, part.needs)))
         ready = settled(up, least_s=part.ready.least, most_s=part.ready.most)
-        if not part.resets:
+        if not part.resets and not part.may_have_more_resets:
             return LoadState(fed, ready, RELEASED, up)
-        reset = any_asserts([self._decision(name) for name in part.resets])
+        more = [NO_DECISION if self.net.best else KNOWN] if part.may_have_more_resets else []
+        reset = any_asserts([*(self._decision(name) for name in part.resets), *more])
         return LoadState(fed, ready, reset, all_on((up, lets_go(reset))))
 
     def _within(self, rail: str, works: Bounds) -> On:
@@ -346,14 +360,12 @@ def _at_rest(part: TimedPart) -> State:
             return NEVER_ON
 
 
-def _anything(part: TimedPart) -> State:
-    match part:
-        case StagePart() | ResetPart() | ComparatorPart():
-            return ANY_DECISION
-        case LoadPart():
-            return LoadState(ANYTHING, ANYTHING, ANY_DECISION, ANYTHING)
-        case _:
-            return ANYTHING
+def one_or_other(first: Any, second: Any, *, surely: bool) -> Any:
+    """What may be so where an element is one or the other; ``surely``: what may be so whichever of the two it is."""
+    if isinstance(first, LoadState):
+        return LoadState(*(one_or_other(*pair, surely=surely) for pair in zip(first, second, strict=True)))
+    join = both if surely else either
+    return type(first)(*map(join, first, second))
 
 
 def _comparable(state: State) -> object:

@@ -13,8 +13,6 @@ from tidegate.lint.timing.scenario import Scenario, Scene
 from tidegate.lint.timing.starts import Setting
 from tidegate.lint.timing.waveform import Waveform
 
-_MOST_LEVELS: Final = 12
-"""So many levels of a rail are tried at most; of more, the lowest, the highest, and some between."""
 _JUST: Final = 1e-9
 """Share of a level by which a supply passes it."""
 _SHORTEST: Final = 1e-6
@@ -23,44 +21,47 @@ _SHORTEST: Final = 1e-6
 
 def together(setting: Setting) -> Iterator[Scenario]:
     """All rails off the chip fall at once."""
-    rails = [rail.id for rail in setting.outer_rails()]
     for fast, word in ((True, "fastest"), (False, "slowest")):
-        lacking = any(_lacks(setting.ramps[rail], fast=fast) for rail in rails)
-        if rails and not lacking:
-            waveforms = {rail: _down(setting.ramps[rail], fast=fast) for rail in rails}
+        waveforms = {
+            rail.id: _down(ramp, ramp.fall.least if fast else ramp.fall.most)
+            for rail in setting.outer_rails()
+            if not _lacks(ramp := setting.ramps[rail.id], fast=fast)
+        }
+        if waveforms:
             about = f"every rail falls as {'fast' if fast else 'slowly'} as it may"
             yield Scenario(f"{word} power-down", about, Scene.FALL, waveforms, fast=fast)
 
 
 def _lacks(ramp: RailRamp, *, fast: bool) -> tuple[str, ...]:
-    return ramp.fast_fall_lacks if fast else ramp.slow_fall_lacks
+    return ramp.lacks.fast_fall if fast else ramp.lacks.slow_fall
 
 
-def _down(ramp: RailRamp, *, fast: bool) -> Waveform:
-    return Waveform(((0.0, ramp.nominal_v), (ramp.fall.least if fast else ramp.fall.most, 0.0)))
+def _down(ramp: RailRamp, falls_s: float) -> Waveform:
+    return Waveform(((0.0, ramp.nominal_v), (falls_s, 0.0)))
 
 
 def alone(setting: Setting, rail: str) -> Scenario | None:
-    """One rail falls as fast as it may, while the others stay; None where its fall is not known."""
+    """One rail falls as steeply as it may, while the others stay; None where its fall is not known."""
     ramp = setting.ramps.get(rail)
-    if ramp is None or ramp.fast_fall_lacks:
+    if ramp is None or not ramp.can_fall:
         return None
-    about = f"{rail} falls at {show(ramp.fastest_fall_v_per_s, Dimension.SLOPE)}, by {ramp.limited_by}"
-    return Scenario(f"{rail} falls", about, Scene.FALL, {rail: _down(ramp, fast=True)}, rail=rail)
+    slope_v_per_s = ramp.steepest.v_per_s
+    about = f"{rail} falls at {show(slope_v_per_s, Dimension.SLOPE)}, by {ramp.steepest.by}"
+    return Scenario(f"{rail} falls", about, Scene.FALL, {rail: _down(ramp, ramp.nominal_v / slope_v_per_s)}, rail=rail)
 
 
 def dips(setting: Setting, rail: str) -> Iterator[Scenario]:
     """One rail dips to each critical level: for long, and for just less than its slowest detector surely sees."""
     ramp = setting.ramps.get(rail)
-    if ramp is None or ramp.fast_fall_lacks or ramp.start_lacks:
+    if ramp is None or not ramp.can_dip:
         return
     watching = [
         p for p in setting.by_rail.get(rail, ()) if isinstance(p, ComparatorPart) and p.watches == rail and not p.over
     ]
-    slowest = max(watching, key=lambda part: part.filter.most, default=None)
+    slowest = max(watching, key=lambda part: (_blind_s(part), part.id), default=None)
+    blind_s = 0.0 if slowest is None else _blind_s(slowest)
     for level_v in critical_levels_v(setting.by_rail.get(rail, ()), rail, ramp):
         yield _dip(ramp, rail, level_v=level_v, rests_s=setting.long_s, words="for long")
-        blind_s = 0.0 if slowest is None or slowest.filter.most == FOREVER_S else slowest.filter.most
         if slowest is not None and blind_s > 0.0 and level_v < slowest.falling.least:
             rests_s = (blind_s - _seen_low_s(slowest, ramp, level_v)) * (1.0 - _JUST)
             if rests_s > _SHORTEST * blind_s:
@@ -70,9 +71,15 @@ def dips(setting: Setting, rail: str) -> Iterator[Scenario]:
                 yield _dip(ramp, rail, level_v=level_v, rests_s=0.0, words="and back")
 
 
+def _blind_s(part: ComparatorPart) -> float:
+    """How long a detector is blind for at the most; 0 s where that, or its level, is not known."""
+    known = part.filter.most < FOREVER_S and min(part.falling.least, part.rising.least) > -FOREVER_S
+    return part.filter.most if known else 0.0
+
+
 def _dip(ramp: RailRamp, rail: str, *, level_v: float, rests_s: float, words: str) -> Scenario:
     """A dip from nominal and back, as steep as the rail can be."""
-    low_s = (ramp.nominal_v - level_v) / ramp.fastest_fall_v_per_s
+    low_s = (ramp.nominal_v - level_v) / ramp.steepest.v_per_s
     rises_s = low_s + rests_s
     end_s = rises_s + (ramp.nominal_v - level_v) / ramp.fastest_rise_v_per_s
     points = ((0.0, ramp.nominal_v), (low_s, level_v), (rises_s, level_v), (end_s, ramp.nominal_v))
@@ -82,7 +89,7 @@ def _dip(ramp: RailRamp, rail: str, *, level_v: float, rests_s: float, words: st
 
 def _seen_low_s(part: ComparatorPart, ramp: RailRamp, level_v: float) -> float:
     """How long a detector at its least levels takes a dip that turns round at once for low, in s."""
-    falls_s = (part.falling.least - level_v) / ramp.fastest_fall_v_per_s
+    falls_s = (part.falling.least - level_v) / ramp.steepest.v_per_s
     return falls_s + (part.rising.least - level_v) / ramp.fastest_rise_v_per_s
 
 
@@ -108,10 +115,7 @@ def critical_levels_v(parts: Iterable[TimedPart], rail: str, ramp: RailRamp) -> 
                 found.update(works.least * (1.0 - _JUST) for name, works in part.works if name == rail)
             case _:
                 pass
-    levels = sorted((level for level in found if 0.0 < level < ramp.nominal_v), reverse=True)
-    if len(levels) <= _MOST_LEVELS:
-        return levels
-    return [levels[round(n * (len(levels) - 1) / (_MOST_LEVELS - 1))] for n in range(_MOST_LEVELS)]
+    return sorted((level for level in found if 0.0 < level < ramp.nominal_v), reverse=True)
 
 
 def _deepest_point_v(part: ComparatorPart, ramp: RailRamp) -> float:
@@ -119,5 +123,5 @@ def _deepest_point_v(part: ComparatorPart, ramp: RailRamp) -> float:
     blind_s = part.filter.most * (1.0 - _JUST) - _seen_low_s(part, ramp, part.falling.least)
     if not 0.0 < blind_s < FOREVER_S:
         return part.falling.least
-    s_per_v = 1.0 / ramp.fastest_fall_v_per_s + 1.0 / ramp.fastest_rise_v_per_s
+    s_per_v = 1.0 / ramp.steepest.v_per_s + 1.0 / ramp.fastest_rise_v_per_s
     return part.falling.least - blind_s / s_per_v

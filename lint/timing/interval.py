@@ -152,7 +152,7 @@ def filtered(times: Times, *, least_s: float, most_s: float) -> Times:
 
     A gap that the filter may ignore is filled; a span that it surely ignores falls out; the rest comes through late.
     """
-    if not times or most_s == 0.0:
+    if not times or most_s == 0.0 == least_s:
         return times
     whole: list[tuple[float, float]] = [times[0]]
     for start, end in times[1:]:
@@ -162,6 +162,14 @@ def filtered(times: Times, *, least_s: float, most_s: float) -> Times:
             whole.append((start, end))
     seen = tuple((start, end) for start, end in whole if end - start >= least_s)
     return delayed(seen, least_s=least_s, most_s=most_s)
+
+
+def first_from(times: Times, since_s: float) -> float:
+    """The first time from another on that belongs to the set, or ends it; infinite where none does."""
+    for start, end in times:
+        if end >= since_s or since_s - end <= _TOUCHING * abs(since_s):
+            return max(start, since_s)
+    return FOREVER_S
 
 
 def is_in(times: Times, at_s: float) -> bool:

@@ -75,7 +75,7 @@ def in_order(parts: Mapping[str, TimedPart]) -> list[tuple[list[str], bool]]:
     """Groups of elements, each after what it needs; with each, whether it leans on itself."""
     needs = {name: leans_on(part) for name, part in parts.items()}
     groups = strong_components(needs)
-    return [(group, len(group) > 1 or group[0] in needs[group[0]]) for group in groups]
+    return [(sorted(group), len(group) > 1 or group[0] in needs[group[0]]) for group in groups]
 
 
 def reached(successors: Mapping[str, Iterable[str]], start: str) -> list[str]:

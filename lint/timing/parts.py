@@ -3,13 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from typing import Final, Literal, NamedTuple
+from math import inf
+from typing import Any, Final, Literal, NamedTuple
 
 import msgspec
 
 
 class Bounds(NamedTuple):
-    """A quantity between two ends. Where an end is not given it is the one that no quantity passes: 0, or infinity."""
+    """A quantity between two ends.
+
+    An end that is not exactly known stands at one corner of what is known of it: at the sure corner as far out as it
+    may lie (0, or infinity, where nothing is known), at the best corner as far in, so that the ends may even cross.
+    Sets of times that are worked out at the best corner lie inside those of every completion of the description, sets
+    at the sure corner around them (directed intervals; E. Kaucher, Computing Supplement 2, 33-49, 1980).
+    """
 
     least: float
     most: float
@@ -18,18 +25,21 @@ class Bounds(NamedTuple):
 NOTHING = Bounds(0.0, 0.0)
 """No time at all: of what the description says there is none."""
 
+NOT_NAMED: Final = ""
+"""Stands for an element that is not named: what is so of it is not known."""
+
 
 class Lacks(msgspec.Struct):
     """The facts of one element that are missing."""
 
     whole: list[str] = []
-    """Without these the element cannot be timed at all."""
+    """Names and words: without these the element may be one thing or another."""
     least: list[str] = []
-    """Least values that stand at 0."""
+    """Least values that are not exactly known."""
     most: list[str] = []
-    """Greatest values that stand at infinity."""
-    ready: list[str] = []
-    """Of a load, what its own readiness alone needs."""
+    """Greatest values that are not exactly known."""
+    own: list[str] = []
+    """What matters where the element itself is judged: how long a load takes to be ready, from where a net is read."""
 
 
 class RailPart(msgspec.Struct, frozen=True):
@@ -120,12 +130,15 @@ class LoadPart(msgspec.Struct, frozen=True):
 
     id: str
     works: tuple[tuple[str, Bounds], ...]
-    """Each rail it needs, with the supply between which it works."""
+    """Each rail it needs, with the supply between which it surely works."""
     domain: str | None
     needs: tuple[str, ...]
     ready: Bounds
-    start: Bounds
     resets: tuple[str, ...]
+    may_work: tuple[tuple[str, Bounds], ...] = ()
+    """The same, with the supply between which it may work; empty where both ends are exactly known."""
+    may_have_more_resets: bool = False
+    """Whether a net that does not say what it guards may reset it, too."""
 
 
 TimedPart = RailPart | DomainPart | SourcePart | ComparatorPart | StagePart | ResetPart | LoadPart
@@ -145,3 +158,33 @@ def times_of(part: TimedPart) -> Iterator[Bounds]:
 
 
 _LEVELS: Final = ("works_from", "rising", "falling")
+
+
+def exact_ends(sure: TimedPart, best: TimedPart) -> TimedPart:
+    """A part with those ends that are the same at both corners, which are known; the others lie where none can be."""
+    changes: dict[str, Any] = {
+        name: Bounds(end.least if end.least == inner.least else -inf, end.most if end.most == inner.most else inf)
+        for name, end, inner in _both(sure, best)
+        if end != inner
+    }
+    if isinstance(sure, LoadPart) and isinstance(best, LoadPart):
+        changes["works"] = tuple(
+            (rail, Bounds(works.least if works.least == inner.least else inf, works.most))
+            for (rail, works), (_, inner) in zip(sure.works, best.works, strict=True)
+        )
+    return msgspec.structs.replace(sure, **changes) if changes else sure
+
+
+def with_lone_spread(sure: TimedPart, best: TimedPart) -> TimedPart:
+    """A part at the best corner, but for each least end that is not known where the greatest is: that is as far out."""
+    changes = {
+        name: Bounds(end.least, inner.most)
+        for name, end, inner in _both(sure, best)
+        if end.most == inner.most and end.least != inner.least
+    }
+    return msgspec.structs.replace(best, **changes) if changes else best
+
+
+def _both(sure: TimedPart, best: TimedPart) -> Iterator[tuple[str, Bounds, Bounds]]:
+    """Every quantity of a part at both corners."""
+    return ((name, end, getattr(best, name)) for name, end in bounds_of(sure))

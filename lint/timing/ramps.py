@@ -1,47 +1,96 @@
-"""How each rail comes and goes: the numbers its ramps are made of."""
+"""How each rail comes and goes: the numbers its ramps are made of, at one corner of what is known of them."""
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from typing import Final
 
 import msgspec
 
+from tidegate.lint.derived.supply.steepest_fall import SteepestFall, steepest_fall
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.supply import Rail
+from tidegate.lint.facts.reading import Better, Corner
+from tidegate.lint.facts.view import Number
+from tidegate.lint.facts.views.supply import RailFacts
+from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.physics.domain import DomainError, require_positive
 from tidegate.lint.physics.ramp import ramp_slope_v_per_s
-from tidegate.lint.quantity import Span
+from tidegate.lint.timing.ends import Ends
 from tidegate.lint.timing.parts import Bounds
 
-_INFINITE = float("inf")
+_INFINITE: Final = float("inf")
+_ANY_TIME: Final = Bounds(0.0, _INFINITE)
+
+
+class RampLacks(msgspec.Struct, frozen=True):
+    """The facts without which a number of a ramp is not exactly known."""
+
+    fast_rise: tuple[str, ...] = ()
+    slow_rise: tuple[str, ...] = ()
+    fast_fall: tuple[str, ...] = ()
+    slow_fall: tuple[str, ...] = ()
+    steepest: tuple[str, ...] = ()
+    up: tuple[str, ...] = ()
+
+    @property
+    def rise(self) -> tuple[str, ...]:
+        """Those of the way up."""
+        return tuple(dict.fromkeys((*self.fast_rise, *self.slow_rise)))
+
+
+NOTHING_LACKS: Final = RampLacks()
 
 
 class RailRamp(msgspec.Struct, frozen=True):
     """A rail between 0 V and its nominal level: both times between those of the fastest and the slowest ramp.
 
-    An end that is not given stands where none can pass it; ``start_lacks`` and ``fall_lacks`` say which.
+    An end that is not exactly known stands at a corner; ``lacks`` says which.
     """
 
     nominal_v: float
-    up_v: float
-    """From here on it is up: the least level it is guaranteed for, else the least delivered, else nominal."""
+    up: Bounds
+    """The level from which on it is up: the least that it is guaranteed for."""
     rise: Bounds
     fall: Bounds
-    limited_by: str
-    """What bounds the fastest fall, in words."""
-    start_lacks: tuple[str, ...] = ()
-    fast_fall_lacks: tuple[str, ...] = ()
-    slow_fall_lacks: tuple[str, ...] = ()
+    """The way down to 0 V, when it is switched off."""
+    steepest: SteepestFall
+    """The way down out of service."""
+    lacks: RampLacks = NOTHING_LACKS
+    any_time: Bounds = _ANY_TIME
+    """What a time of which nothing is known stands at."""
+
+    @property
+    def start_lacks(self) -> tuple[str, ...]:
+        """What is missing of the ramps up."""
+        return self.lacks.rise
+
+    @property
+    def up_v(self) -> float:
+        """The level from which on it is surely up, in V."""
+        return self.up.most
+
+    @property
+    def can_fall(self) -> bool:
+        """Whether it falls at all, and it is known how steeply at the most."""
+        return 0.0 < self.steepest.v_per_s < _INFINITE
+
+    @property
+    def can_dip(self) -> bool:
+        """Whether it is known how steeply it falls and rises again."""
+        return self.can_fall and not self.lacks.fast_rise
 
     @property
     def fastest_rise_v_per_s(self) -> float:
         """Slope of the fastest ramp up, in V/s."""
         return ramp_slope_v_per_s(rise_v=self.nominal_v, rise_s=self.rise.least)
 
-    @property
-    def fastest_fall_v_per_s(self) -> float:
-        """Slope of the fastest way down, in V/s."""
-        return ramp_slope_v_per_s(rise_v=self.nominal_v, rise_s=self.fall.least)
+    def at_pace(self, *, fast: bool) -> tuple[Bounds, Bounds]:
+        """How long a rail that its maker makes takes up and down, where it does so as fast, or as slowly, as it may."""
+        lacks = self.lacks
+        rise_s, rise_lacks = (self.rise.least, lacks.fast_rise) if fast else (self.rise.most, lacks.slow_rise)
+        fall_s, fall_lacks = (self.fall.least, lacks.fast_fall) if fast else (self.fall.most, lacks.slow_fall)
+        rise = self.any_time if rise_lacks else Bounds(rise_s, rise_s)
+        return rise, self.any_time if fall_lacks else Bounds(fall_s, fall_s)
 
 
 class Ramps(msgspec.Struct):
@@ -51,86 +100,50 @@ class Ramps(msgspec.Struct):
     lacks: dict[str, tuple[str, ...]] = msgspec.field(default_factory=dict)
     refused: dict[str, DomainError] = msgspec.field(default_factory=dict)
 
+    @property
+    def exact(self) -> bool:
+        """Whether everything is known."""
+        return not self.lacks and all(ramp.lacks == NOTHING_LACKS for ramp in self.by_rail.values())
 
-def read_ramps(description: Description) -> Ramps:
+
+def read_ramps(description: Description, graph: Graph, corner: Corner = Corner.SURE) -> Ramps:
     """The ramps of every rail."""
     found = Ramps()
-    drawn = _drawn_a(description)
     for rail in description.rails.values():
-        nominal_v = rail.nominal.middle if rail.nominal is not None else None
-        if nominal_v is None:
-            found.lacks[rail.id] = (rail.fact("nominal" if rail.nominal is None else "nominal.typ"),)
+        ends = Ends(rail, description, graph, corner)
+        facts = ends.case.of(rail)
+        nominal_v, lacks = ends.read(facts.nominal.typical)
+        if lacks:
+            found.lacks[rail.id] = lacks
             continue
         try:
             require_positive(nominal_v=nominal_v)
-            rise, lacks = _bounds(rail, rail.rise, "rise")
-            fall, fast, slow, limited_by = _fall(rail, nominal_v, drawn.get(rail.id))
+            found.by_rail[rail.id] = _ramp(ends, rail, facts, nominal_v)
         except DomainError as error:
             found.refused[rail.id] = error
-            continue
-        found.by_rail[rail.id] = RailRamp(nominal_v, _up_v(rail, nominal_v), rise, fall, limited_by, lacks, fast, slow)
     return found
 
 
-def _up_v(rail: Rail, nominal_v: float) -> float:
-    for span in (rail.guaranteed, rail.delivered):
-        if span is not None and span.least is not None:
-            return min(span.least, nominal_v)
-    return nominal_v
+def _ramp(ends: Ends, rail: Rail, facts: RailFacts, nominal_v: float) -> RailRamp:
+    up, without_up = ends.read(lambda: (facts.guaranteed.least(Better.MORE), facts.guaranteed.least(Better.LESS)))
+    rise, fast_rise, slow_rise = _times(ends, facts.rise, "rise_s")
+    fall, fast_fall, slow_fall = _times(ends, facts.fall, "fall_s")
+    steepest, not_steepest = ends.read(lambda: steepest_fall(ends.case, rail))
+    lacks = RampLacks(fast_rise, slow_rise, fast_fall, slow_fall, not_steepest, without_up)
+    up_v = Bounds(*(min(max(level_v, 0.0), nominal_v) for level_v in up))
+    any_time = Bounds(_INFINITE, 0.0) if ends.best else _ANY_TIME
+    return RailRamp(nominal_v, up_v, rise, fall, steepest, NOTHING_LACKS if lacks == NOTHING_LACKS else lacks, any_time)
 
 
-def _bounds(rail: Rail, span: Span | None, fact: str) -> tuple[Bounds, tuple[str, ...]]:
-    if span is None:
-        return Bounds(0.0, _INFINITE), (rail.fact(fact),)
-    lacks = []
-    if not _given(rise_s=span.least):
-        lacks.append(rail.fact(f"{fact}.min"))
-    if not _given(rise_s=span.most):
-        lacks.append(rail.fact(f"{fact}.max"))
-    return Bounds(span.least or 0.0, span.most or _INFINITE), tuple(lacks)
+def _times(ends: Ends, fact: Number, name: str) -> tuple[Bounds, tuple[str, ...], tuple[str, ...]]:
+    """The fastest and the slowest time, and what is missing of each.
 
-
-def _given(**time: float | None) -> bool:
-    """Whether a time is given.
-
-    Raises: DomainError: where it is 0 s.
+    Raises: DomainError: where one that is given is 0 s.
     """
-    for name, value_s in time.items():
+    given = fact.given
+    for value_s in () if given is None else (given.least, given.most):
         if value_s is not None:
             require_positive(**{name: value_s})
-    return None not in time.values()
-
-
-def _fall(rail: Rail, nominal_v: float, drawn_a: float | None) -> tuple[Bounds, tuple[str, ...], tuple[str, ...], str]:
-    """The way down: the fastest one as stated, or where nothing is, as steep as a collapse in service.
-
-    A hold-up capacitance that feeds a known current makes it no faster than C V / I.
-    """
-    least_s, most_s = (rail.fall.least, rail.fall.most) if rail.fall is not None else (None, None)
-    limited_by = "its fastest fall"
-    if not least_s and rail.collapse is not None and rail.collapse.most:
-        least_s = nominal_v / rail.collapse.most
-        limited_by = "its collapse"
-    held_up_f = rail.hold_up.least if rail.hold_up is not None else None
-    if held_up_f is not None and drawn_a is not None and drawn_a > 0.0:
-        held_up_s = held_up_f * nominal_v / drawn_a
-        if not least_s or held_up_s > least_s:
-            least_s, limited_by = held_up_s, "its hold-up"
-    fast = () if _given(fall_s=least_s) else (rail.fact("fall" if rail.fall is None else "fall.min"),)
-    slow = () if _given(fall_s=most_s) else (rail.fact("fall" if rail.fall is None else "fall.max"),)
-    least_s = least_s or 0.0
-    return Bounds(least_s, max(most_s or _INFINITE, least_s)), fast, slow, limited_by
-
-
-def _drawn_a(description: Description) -> Mapping[str, float]:
-    """The greatest current that all loads of a rail draw together, of rails where each of them says it, in A."""
-    drawn: dict[str, float] = {}
-    unknown: set[str] = set()
-    for load in description.loads.values():
-        most_a = load.consumes.most if load.consumes is not None else None
-        for need in load.needs:
-            if most_a is None:
-                unknown.add(need.rail)
-            else:
-                drawn[need.rail] = drawn.get(need.rail, 0.0) + most_a
-    return {rail: most_a for rail, most_a in drawn.items() if rail not in unknown}
+    slowest_s, without_slowest = ends.read(lambda: fact.most(Better.LESS))
+    fastest_s, without_fastest = ends.read(lambda: fact.least(Better.MORE))
+    return Bounds(fastest_s, slowest_s), without_fastest, without_slowest

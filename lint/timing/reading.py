@@ -1,24 +1,31 @@
-"""Facts of the description into parts for the timing, with every fact that is missing."""
+"""Facts of the description into parts for the timing at one corner, with every fact that is missing.
+
+A quantity of which an end is not known stands with that end at the corner; an element of which a word is missing is
+several parts, one for each word; and an element that is not named is one of which nothing is known.
+"""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterator, Mapping
+from itertools import product
 from typing import Any, Final
 
 import msgspec
+from msgspec.structs import replace
 
-from tidegate.lint.case import Case, MissingFactsError
 from tidegate.lint.derived.levels.trip_levels import falling_window, rising_window
+from tidegate.lint.derived.reset_path.guarding_nets import guarding_nets, nets_without_guards
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference, StartUp
-from tidegate.lint.description.model.reset_path import Hold, Load, OutputStage, Reset
+from tidegate.lint.description.model.reset_path import Discharge, Hold, Load, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain, Rail
-from tidegate.lint.graph.dependency import Element, Graph
-from tidegate.lint.graph.edge import EdgeKind
-from tidegate.lint.judgement import Level
+from tidegate.lint.facts.reading import Corner
+from tidegate.lint.graph.dependency import Graph
+from tidegate.lint.graph.leaning_gaps import source_gaps
 from tidegate.lint.physics.domain import DomainError
-from tidegate.lint.physics.trip_window import Window
+from tidegate.lint.timing.ends import Ends, names
 from tidegate.lint.timing.parts import (
+    NOT_NAMED,
     NOTHING,
     Bounds,
     ComparatorPart,
@@ -31,278 +38,228 @@ from tidegate.lint.timing.parts import (
     StagePart,
     TimedPart,
 )
-from tidegate.lint.timing.polarity import asserting_levels
+from tidegate.lint.timing.polarity import Polarity, polarity
 
 _INFINITE: Final = float("inf")
 _TIMED: Final = (
     "rails", "domains", "references", "biases", "comparators", "output_stages", "resets", "loads",
 )  # fmt: skip
+_HOLDS: Final = ("none", "asserts", "releases")
 
 
 class Parts(msgspec.Struct, frozen=True):
     """What could be read: parts by id, what is missing of each, and numbers that cannot be."""
 
     parts: Mapping[str, TimedPart]
+    """The elements of which every name and word is given."""
+    every: Mapping[str, TimedPart]
+    others: Mapping[str, tuple[TimedPart, ...]]
+    """What else an element may be, where a word is missing."""
     lacks: Mapping[str, Lacks]
     refused: Mapping[str, DomainError]
 
+    @property
+    def exact(self) -> bool:
+        """Whether everything is known."""
+        return not self.lacks
 
-def read_parts(description: Description, graph: Graph) -> Parts:
+
+def read_parts(description: Description, graph: Graph, corner: Corner = Corner.SURE) -> Parts:
     """Every element that takes part in the timing."""
-    parts: dict[str, TimedPart] = {}
+    every: dict[str, TimedPart] = {}
+    others: dict[str, tuple[TimedPart, ...]] = {}
     lacks: dict[str, Lacks] = {}
     refused: dict[str, DomainError] = {}
-    levels = asserting_levels(description, graph)
+    levels = polarity(description, graph)
     for section in _TIMED:
         read = _READERS[section]
         for element in getattr(description, section).values():
-            reader = _Reader(element, description, graph, levels)
+            ends = Ends(element, description, graph, corner)
             try:
-                part = read(reader, element)
-                if not reader.lacks.whole:
-                    parts[element.id] = part
-            except MissingFactsError as error:
-                reader.lacks.whole.extend(error.missing)
+                first, *rest = read(ends, element, levels)
             except DomainError as error:
                 refused[element.id] = error
-            if any((reader.lacks.whole, reader.lacks.least, reader.lacks.most, reader.lacks.ready)):
-                lacks[element.id] = reader.lacks
-    return Parts(parts, lacks, refused)
+                continue
+            every[element.id] = first
+            if rest:
+                others[element.id] = tuple(rest)
+            missing = ends.lacks
+            if missing.whole or missing.least or missing.most or missing.own:
+                lacks[element.id] = missing
+    named = {name: part for name, part in every.items() if name not in lacks or not lacks[name].whole}
+    return Parts(named, every, others, lacks, refused)
 
 
-class _Reader:
-    """The facts of one element; notes what is missing and which end of a quantity it would have been."""
-
-    def __init__(
-        self, element: Element, description: Description, graph: Graph, levels: Mapping[str, str | None]
-    ) -> None:
-        self.element = element
-        self.description = description
-        self.graph = graph
-        self.levels = levels
-        self.lacks = Lacks()
-
-    def path(self, fact: str) -> str:
-        return self.element.fact(fact)
-
-    def must(self, value: Any, fact: str) -> Any:
-        """A fact without which nothing can be said; noted where it is not given."""
-        if value is None:
-            self.lacks.whole.append(self.path(fact))
-        return value
-
-    def bounds(self, fact: str) -> Bounds:
-        """A quantity of which something must be known; an end that is not given stands where none can pass it."""
-        span = getattr(self.element, fact)
-        if span is None:
-            self.lacks.least.append(self.path(fact))
-            self.lacks.most.append(self.path(fact))
-            return Bounds(0.0, _INFINITE)
-        least, most = span.least, span.most
-        if least is None:
-            self.lacks.least.append(self.path(f"{fact}.min"))
-        if most is None:
-            self.lacks.most.append(self.path(f"{fact}.max"))
-        return Bounds(0.0 if least is None else least, _INFINITE if most is None else most)
-
-    def if_given(self, fact: str) -> Bounds:
-        """A quantity that is nothing where it is not given."""
-        return NOTHING if getattr(self.element, fact) is None else self.bounds(fact)
-
-    def rail_of(self, domain_id: str | None) -> str:
-        """The rail of a domain; noted where it is not given."""
-        domain = self.description.domains.get(domain_id or "")
-        if domain is None:
-            return ""
-        if domain.rail is None:
-            self.lacks.whole.append(domain.fact("rail"))
-            return ""
-        return domain.rail
-
-    def window(self, ask: Callable[[Case, Comparator], Window], comparator: Comparator) -> Bounds:
-        """A trip level between its ends, at the code the part ships with."""
-        case = Case(subject=comparator, rule="", level=Level.NOTE, description=self.description, graph=self.graph)
-        try:
-            found = ask(case, comparator)
-        except MissingFactsError as error:
-            self.lacks.whole.extend(path for path in error.missing if path not in self.lacks.whole)
-            return NOTHING
-        return Bounds(found.least_v, found.most_v)
+def _rail(ends: Ends, rail: Rail, _: Polarity) -> Iterator[RailPart]:
+    waits = rail.after is not None or rail.made_by is not None
+    delay = ends.bounds(ends.case.of(rail).delay) if waits else NOTHING
+    yield RailPart(rail.id, rail.after, rail.made_by, delay)
 
 
-def _names(*groups: str | Iterable[str] | None) -> tuple[str, ...]:
-    """Names as they are given, one or many; what is not given, or said to be none, is left out."""
-    found: list[str] = []
-    for group in groups:
-        if isinstance(group, str):
-            found += [group] if group != "none" else []
-        else:
-            found.extend(group or ())
-    return tuple(found)
+def _domain(ends: Ends, domain: Domain, _: Polarity) -> Iterator[DomainPart]:
+    rail = ends.named(domain.rail, "rail")
+    if domain.kind is None:
+        ends.without("kind")
+    if domain.kind != "always_on":
+        switch = NOT_NAMED if domain.kind is None else ends.named(domain.switched_by, "switched_by")
+        yield DomainPart(domain.id, rail, (domain.switched_by or switch,))
+    if domain.kind != "switched":
+        yield DomainPart(domain.id, rail, ())
 
 
-def _rail(reader: _Reader, rail: Rail) -> RailPart:
-    delay = NOTHING
-    if rail.delay is not None:
-        delay = reader.bounds("delay")
-    elif rail.made_by is not None and isinstance(maker := reader.graph.elements[rail.made_by], Load):
-        delay = _start_of(reader, maker)
-    elif rail.after is not None:
-        reader.must(None, "delay")
-    return RailPart(rail.id, rail.after, rail.made_by, delay)
-
-
-def _start_of(reader: _Reader, maker: Load) -> Bounds:
-    """The start time of a rail's maker stands for the delay of the rail."""
-    if maker.start is None:
-        reader.lacks.least.append(reader.path("delay"))
-        reader.lacks.most.append(reader.path("delay"))
-        return Bounds(0.0, _INFINITE)
-    most = maker.start.most
-    if most is None:
-        reader.lacks.most.append(maker.fact("start.max"))
-    return Bounds(maker.start.least or 0.0, _INFINITE if most is None else most)
-
-
-def _domain(reader: _Reader, domain: Domain) -> DomainPart:
-    reader.must(domain.rail, "rail")
-    kind = reader.must(domain.kind, "kind")
-    if kind == "switched":
-        reader.must(domain.switched_by, "switched_by")
-    return DomainPart(domain.id, domain.rail or "", _names(domain.switched_by) if kind == "switched" else ())
-
-
-def _source(reader: _Reader, source: Reference | Bias) -> SourcePart:
-    domain = reader.must(source.domain, "domain")
-    rail = reader.rail_of(domain)
+def _source(ends: Ends, source: Reference | Bias, _: Polarity) -> Iterator[SourcePart]:
+    facts = ends.case.of(source)
     leant_on = source.bias if isinstance(source, Reference) else source.source
-    return SourcePart(
-        id=source.id, rail=rail, domain=domain, needs=_names(leant_on, source.leans_on, source.gated_by),
-        works_from=reader.bounds("works_from"), settling=reader.bounds("settling"),
+    domain = ends.named(source.domain, "domain")
+    yield SourcePart(
+        id=source.id, rail=ends.rail_of(domain), domain=domain,
+        needs=(*names(leant_on, source.leans_on, source.gated_by), *_sources_not_named(ends, source)),
+        works_from=ends.level(facts.works_from), settling=ends.bounds(facts.settling),
         starts_itself=isinstance(source.start_up, StartUp),
     )  # fmt: skip
 
 
-def _comparator(reader: _Reader, comparator: Comparator) -> ComparatorPart:
-    domain = reader.must(comparator.domain, "domain")
-    rail = reader.rail_of(domain)
-    rising = reader.window(rising_window, comparator)
-    pulse = NOTHING
-    if reader.must(comparator.output, "output") == "pulse":
-        pulse = reader.bounds("pulse")
-        falling = reader.bounds("rearms_below")
-    else:
-        falling = reader.window(falling_window, comparator)
-    ignores, sample = reader.if_given("filter"), reader.if_given("sampling")
-    return ComparatorPart(
-        id=comparator.id, rail=rail, domain=domain, watches=comparator.watches,
-        needs=_names(comparator.bias, comparator.reference, comparator.gated_by),
-        armed_by=_names(comparator.armed_by), over=comparator.role == "over_voltage",
-        works_from=reader.bounds("works_from"), rising=rising, falling=falling,
-        filter=Bounds(ignores.least, ignores.most + sample.most), delay=reader.bounds("delay"), pulse=pulse,
+def _sources_not_named(ends: Ends, element: Reference | Bias | Comparator) -> list[str]:
+    """As many names of none as it is not said of what bias and reference an element leans on."""
+    gaps = list(source_gaps(element))
+    ends.without(*gaps)
+    return [NOT_NAMED] * len(gaps)
+
+
+def _comparator(ends: Ends, comparator: Comparator, _: Polarity) -> Iterator[ComparatorPart]:
+    facts = ends.case.of(comparator)
+    domain = ends.named(comparator.domain, "domain")
+    ignores, sample = ends.bounds(facts.filter), ends.bounds(facts.sampling)
+    whole = ComparatorPart(
+        id=comparator.id, rail=ends.rail_of(domain), domain=domain, watches=comparator.watches,
+        needs=(
+            *names(comparator.bias, comparator.reference, comparator.gated_by), *_sources_not_named(ends, comparator)
+        ),
+        armed_by=names(comparator.armed_by), over=comparator.role == "over_voltage",
+        works_from=ends.level(facts.works_from), rising=ends.window(rising_window, comparator), falling=NOTHING,
+        filter=Bounds(ignores.least, ignores.most + sample.most), delay=ends.bounds(facts.delay), pulse=NOTHING,
         undecided=comparator.undecided or "undefined",
     )  # fmt: skip
+    if comparator.output is None:
+        ends.without("output")
+    if comparator.output != "pulse":
+        yield replace(whole, falling=ends.window(falling_window, comparator))
+    if comparator.output != "level":
+        yield replace(whole, falling=ends.bounds(facts.rearms_below), pulse=ends.bounds(facts.pulse))
 
 
-def _stage(reader: _Reader, stage: OutputStage) -> StagePart:
-    domain = reader.must(stage.domain, "domain")
-    rail = reader.rail_of(domain)
-    drivers = _drivers(reader, stage)
-    works_from = reader.bounds("works_from")
-    if stage.works_from is not None and stage.works_from.least is None:
+def _stage(ends: Ends, stage: OutputStage, levels: Polarity) -> Iterator[StagePart]:
+    facts = ends.case.of(stage)
+    domain = ends.named(stage.domain, "domain")
+    works_from = ends.level(facts.works_from)
+    if stage.works_from is not None and stage.works_from.least is None and stage.works_from.most is not None:
         # A stage is held up to the one level that is given, not perhaps alive from 0 V on.
-        reader.lacks.least.clear()
+        ends.lacks.least.pop()
         works_from = Bounds(works_from.most, works_from.most)
-    latches = stage.kind == "latch"
-    if latches:
-        reader.must(stage.power_up, "power_up")
-    timer, discharge_s = _timer(reader, stage)
-    return StagePart(
-        id=stage.id, rail=rail, domain=domain, needs=_names(stage.gated_by), driven_by=drivers,
-        all_agree=stage.combine == "all_agree", works_from=works_from, hold=_hold(reader, stage), latches=latches,
-        power_up=stage.power_up or "undefined", delay=reader.bounds("delay"), release_delay=timer,
-        discharge_s=discharge_s,
+    timer, discharge_s = _timer(ends, stage)
+    drivers, agreements = _drivers(ends, stage)
+    whole = StagePart(
+        id=stage.id, rail=ends.rail_of(domain), domain=domain, needs=names(stage.gated_by), driven_by=drivers,
+        all_agree=False, works_from=works_from, hold="none", latches=False, power_up="undefined",
+        delay=ends.bounds(facts.delay), release_delay=timer, discharge_s=discharge_s,
     )  # fmt: skip
+    for all_agree, hold, (latches, power_up) in product(agreements, _holds(ends, stage, levels), _latches(ends, stage)):
+        yield replace(whole, all_agree=all_agree, hold=hold, latches=latches, power_up=power_up)
 
 
-def _timer(reader: _Reader, stage: OutputStage) -> tuple[Bounds, float]:
+def _latches(ends: Ends, stage: OutputStage) -> list[tuple[bool, Any]]:
+    """Whether a stage is a latch, and how it comes up then."""
+    found: list[tuple[bool, Any]] = []
+    if stage.kind is None:
+        ends.without("kind")
+    if stage.kind != "latch":
+        found.append((False, stage.power_up or "undefined"))
+    if stage.kind in (None, "latch"):
+        if stage.power_up is None and stage.kind == "latch":
+            ends.without("power_up")
+        found += [(True, word) for word in ((stage.power_up,) if stage.power_up else ("undefined", *_HOLDS[1:]))]
+    return found
+
+
+def _timer(ends: Ends, stage: OutputStage) -> tuple[Bounds, float]:
     """The release delay of a stage, and how long reset must last for it to begin anew."""
     if stage.release_delay is None:
         return NOTHING, 0.0
-    timer = reader.bounds("release_delay")
-    if stage.discharge is None:
-        reader.must(None, "discharge")
-        return timer, _INFINITE
+    facts = ends.case.of(stage)
+    timer = ends.bounds(facts.release_delay)
+    if isinstance(stage.discharge, Discharge):
+        within_s, lacks = ends.read(facts.discharge.within.most)
+        ends.lacks.most += lacks
+        return timer, within_s
     if stage.discharge == "none":
         return timer, _INFINITE
-    within = stage.discharge.within
-    if within is None or within.most is None:
-        reader.lacks.least.append(reader.path("discharge.within" if within is None else "discharge.within.max"))
-        return timer, _INFINITE
-    return timer, within.most
+    ends.without("discharge")
+    return timer, 0.0 if ends.best else _INFINITE
 
 
-def _drivers(reader: _Reader, element: OutputStage | Reset) -> tuple[str, ...]:
-    drivers = tuple(element.driven_by or ())
-    if not drivers:
-        reader.must(None, "driven_by")
-    if len(drivers) > 1:
-        reader.must(element.combine, "combine")
-    return drivers
+def _drivers(ends: Ends, element: OutputStage | Reset) -> tuple[tuple[str, ...], tuple[bool, ...]]:
+    """What drives an element, and whether all of it must agree."""
+    if not element.driven_by:
+        ends.without("driven_by")
+        return (NOT_NAMED,), (False,)
+    if len(element.driven_by) > 1 and element.combine is None:
+        ends.without("combine")
+        return element.driven_by, (False, True)
+    return element.driven_by, (element.combine == "all_agree",)
 
 
-def _hold(reader: _Reader, stage: OutputStage) -> Any:
-    """What the hold of a stage does to the reset nets behind it."""
-    hold = reader.must(stage.hold, "hold")
-    if not isinstance(hold, Hold):
-        return "none"
-    level = reader.levels.get(stage.id)
-    if reader.must(hold.to, "hold.to") is None or level is None:
-        return "asserts"  # what it does is then for passive_default/level to ask
-    return "asserts" if hold.to == level else "releases"
+def _holds(ends: Ends, stage: OutputStage, levels: Polarity) -> tuple[Any, ...]:
+    """What the hold of a stage may do to the reset nets behind it."""
+    if stage.hold == "none":
+        return ("none",)
+    if not isinstance(stage.hold, Hold):
+        ends.without("hold")
+        return _HOLDS
+    level = levels.level.get(stage.id)
+    if stage.hold.to is None:
+        ends.without("hold.to")
+        return _HOLDS[1:]
+    if level is None:
+        unsaid = levels.unsaid.get(stage.id, ())
+        ends.lacks.whole += unsaid
+        # Where nothing is missing, ways lead to nets that differ: what it does is for passive_default/level to ask.
+        return _HOLDS[1:] if unsaid else ("asserts",)
+    return ("asserts",) if stage.hold.to == level else ("releases",)
 
 
-def _reset(reader: _Reader, reset: Reset) -> ResetPart:
-    domain = reader.must(reset.domain, "domain")
-    threshold = reset.receivers.threshold if reset.receivers is not None else None
-    return ResetPart(
-        id=reset.id, driven_by=_drivers(reader, reset), all_agree=reset.combine == "all_agree",
-        guards=tuple(reset.guards or ()), rail=reader.rail_of(domain),
-        reads_from_v=(threshold.least if threshold is not None else None) or 0.0,
+def _reset(ends: Ends, reset: Reset, _: Polarity) -> Iterator[ResetPart]:
+    domain = ends.named(reset.domain, "domain")
+    reads_from_v, lacks = ends.read(ends.case.of(reset).receivers.threshold.least)
+    ends.lacks.own += lacks
+    drivers, agreements = _drivers(ends, reset)
+    whole = ResetPart(
+        id=reset.id, driven_by=drivers, all_agree=False, guards=tuple(reset.guards or ()), rail=ends.rail_of(domain),
+        reads_from_v=reads_from_v,
     )  # fmt: skip
+    for all_agree in agreements:
+        yield replace(whole, all_agree=all_agree)
 
 
-def _load(reader: _Reader, load: Load) -> LoadPart:
-    works = []
-    for index, need in enumerate(load.needs):
-        rail = reader.description.rails[need.rail]
-        span = need.works or rail.guaranteed
-        least = span.least if span is not None else None
-        if least is None:
-            reader.must(None, f"needs.{index}.works" if need.works is None else f"needs.{index}.works.min")
-            continue
-        most = span.most if span is not None else None
-        works.append((need.rail, Bounds(least, _INFINITE if most is None else most)))
+def _load(ends: Ends, load: Load, _: Polarity) -> Iterator[LoadPart]:
+    facts = ends.case.of(load)
+    ready = ends.bounds(facts.ready)  # the first quantity to be read: what is noted by now is about it alone
+    ends.lacks.own, ends.lacks.most, ends.lacks.least = ends.lacks.most, [], []
+    ranges = [(need.rail, *ends.range_within(facts.needs[index].works)) for index, need in enumerate(load.needs)]
     if not load.needs:
-        reader.must(None, "needs")
-    ready = reader.bounds("ready")  # the first quantity to be read: what is noted by now is about it alone
-    reader.lacks.ready, reader.lacks.most, reader.lacks.least = reader.lacks.most, [], []
-    return LoadPart(
-        id=load.id, works=tuple(works), domain=load.domain,
-        needs=_names(load.references, load.leans_on, load.gated_by), ready=ready,
-        start=reader.if_given("start"), resets=_guards_of(reader.graph, load),
+        ends.without("needs")
+    domain = ends.named(load.domain, "domain")
+    unsaid = ends.graph.once(nets_without_guards)
+    ends.lacks.whole += [net.fact("guards") for net in unsaid]
+    leant_on = names(load.references, load.leans_on, load.gated_by)
+    yield LoadPart(
+        id=load.id, works=tuple((rail, surely) for rail, surely, _ in ranges), domain=domain,
+        needs=leant_on if load.needs else (*leant_on, NOT_NAMED), ready=ready,
+        resets=tuple(guarding_nets(ends.graph, load)), may_have_more_resets=bool(unsaid),
+        may_work=tuple((rail, perhaps) for rail, _, perhaps in ranges) if ends.lacks.most else (),
     )  # fmt: skip
 
 
-def _guards_of(graph: Graph, load: Load) -> tuple[str, ...]:
-    """The reset nets that guard a load, or the domain it lives in."""
-    nets = graph.tails(load.id, EdgeKind.GUARDS)
-    if load.domain is not None:
-        nets += graph.tails(load.domain, EdgeKind.GUARDS)
-    return tuple(dict.fromkeys(nets))
-
-
-_READERS: Final[Mapping[str, Callable[[_Reader, Any], TimedPart]]] = {
+_READERS: Final[Mapping[str, Callable[[Ends, Any, Polarity], Iterator[TimedPart]]]] = {
     "rails": _rail, "domains": _domain, "references": _source, "biases": _source, "comparators": _comparator,
     "output_stages": _stage, "resets": _reset, "loads": _load,
 }  # fmt: skip

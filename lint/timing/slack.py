@@ -8,10 +8,10 @@ from typing import Final
 import msgspec
 
 from tidegate.lint.timing.evaluate import LoadState
-from tidegate.lint.timing.interval import FOREVER_S, Times, both, either, outside
+from tidegate.lint.timing.interval import FOREVER_S, NEVER, Times, both, either, outside
 from tidegate.lint.timing.parts import Bounds, ResetPart
 from tidegate.lint.timing.scenario import Scenario, Scene
-from tidegate.lint.timing.state import Decision
+from tidegate.lint.timing.state import Decision, On
 from tidegate.lint.timing.supply import Supply
 from tidegate.lint.timing.timeline import Timeline
 
@@ -38,6 +38,8 @@ class Slack(msgspec.Struct, frozen=True):
     @property
     def slack_s(self) -> float:
         """How much time is left; below 0, how much is short."""
+        if self.first_s == -FOREVER_S or self.then_s == FOREVER_S:
+            return FOREVER_S
         return self.then_s - self.first_s
 
 
@@ -110,13 +112,19 @@ def is_missed(line: Timeline, load: str) -> bool:
     return not any(end > 0.0 for _, end in asserts)
 
 
-def unknown_while_read(line: Timeline, part: ResetPart) -> Times:
-    """When a reset net may be unknown while its receivers have a supply at which they read it."""
+def unknown_while_read(line: Timeline, part: ResetPart, *, nominal_v: float = FOREVER_S) -> Times:
+    """When a reset net may be unknown while its receivers have a supply at which they read it.
+
+    Receivers of which it is not known from where on they read do so at nominal.
+    """
     state, supply = line.states[part.id], line.states[part.rail]
     assert isinstance(state, Decision)
-    if not state.may_be_unknown or not isinstance(supply, Supply):
-        return state.may_be_unknown
-    reads_v = max(part.reads_from_v, _NEXT_TO_NOTHING_V)
+    if not state.may_be_unknown:
+        return NEVER
+    if isinstance(supply, On):
+        return both(state.may_be_unknown, supply.may_be_on)
+    assert isinstance(supply, Supply)
+    reads_v = nominal_v if part.reads_from_v == FOREVER_S else max(part.reads_from_v, _NEXT_TO_NOTHING_V)
     return both(state.may_be_unknown, supply.may_be_high(rising_v=reads_v, falling_v=reads_v))
 
 
@@ -127,7 +135,8 @@ def begin_slack(line: Timeline, *, rail: str, after: str, up_v: float) -> Slack 
     """
     first, then = line.states[after], line.states[rail]
     if not isinstance(first, Supply) or not isinstance(then, Supply):
-        return None
+        anything = any(isinstance(state, On) and state.may_be_on for state in (first, then))
+        return Slack(line.scenario, FOREVER_S, -FOREVER_S) if anything else None
     forced = line.scenario.waveforms.get(rail)
     begun_v = _NEXT_TO_NOTHING_V + (forced.points[0][1] if forced is not None else 0.0)  # what is left is no beginning
     begins = then.may_be_high(rising_v=begun_v, falling_v=begun_v)

@@ -46,7 +46,12 @@ ALWAYS_ON: Final = On(ALWAYS, NEVER)
 NEVER_ON: Final = On(NEVER, ALWAYS)
 ANYTHING: Final = On(ALWAYS, ALWAYS)
 """What is known of an element whose facts are missing."""
+NOTHING_KNOWN: Final = On(NEVER, NEVER)
+"""What may be so whatever the missing facts of an element turn out to be: nothing."""
 ANY_DECISION: Final = Decision(ALWAYS, ALWAYS, ALWAYS)
+NO_DECISION: Final = Decision(NEVER, NEVER, NEVER)
+KNOWN: Final = Decision(ALWAYS, ALWAYS, NEVER)
+"""Asserts or releases, nobody knows when."""
 RELEASED: Final = Decision(NEVER, ALWAYS, NEVER)
 ASSERTED: Final = Decision(ALWAYS, NEVER, NEVER)
 
@@ -64,7 +69,7 @@ def all_on(parts: Iterable[On]) -> On:
 
 def settled(part: On, *, least_s: float, most_s: float) -> On:
     """On when it has been on for a settling time that lies between two bounds."""
-    if most_s == 0.0:
+    if most_s == 0.0 == least_s:
         return part
     return On(
         delayed(part.may_be_on, least_s=least_s, most_s=0.0), delayed(part.may_be_off, least_s=0.0, most_s=most_s)

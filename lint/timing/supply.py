@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import msgspec
 
+from tidegate.lint.physics.domain import product
 from tidegate.lint.timing.interval import NEVER, Times, delayed, outside
 from tidegate.lint.timing.parts import Bounds
 from tidegate.lint.timing.state import On
@@ -70,14 +71,13 @@ class GivenSupply(Supply):
 
 
 class Ramp(msgspec.Struct, frozen=True):
-    """How a made rail comes and goes, straight both ways."""
+    """How a made rail comes and goes, straight both ways; the times are those between 0 V and nominal."""
 
     nominal_v: float
-    rise_s: float
-    fall_s: float
-    delay_least_s: float
-    """From its maker being on until it begins to rise, least and most."""
-    delay_most_s: float
+    rise: Bounds
+    fall: Bounds
+    delay: Bounds
+    """From its maker being on until it begins to rise."""
 
 
 class MadeSupply(Supply):
@@ -91,20 +91,24 @@ class MadeSupply(Supply):
         self.maker = maker
         self.ramp = ramp
 
-    def _up_s(self, level_v: float) -> float:
-        return max(level_v, 0.0) / self.ramp.nominal_v * self.ramp.rise_s
+    def _up(self, level_v: float) -> Bounds:
+        """How long it takes from 0 V to a level."""
+        share = max(level_v, 0.0) / self.ramp.nominal_v
+        return Bounds(product(share, self.ramp.rise.least), product(share, self.ramp.rise.most))
 
-    def _down_s(self, level_v: float) -> float:
-        return max(self.ramp.nominal_v - level_v, 0.0) / self.ramp.nominal_v * self.ramp.fall_s
+    def _down(self, level_v: float) -> Bounds:
+        """How long it takes from nominal to a level."""
+        share = max(self.ramp.nominal_v - level_v, 0.0) / self.ramp.nominal_v
+        return Bounds(product(share, self.ramp.fall.least), product(share, self.ramp.fall.most))
 
     def _may_be_high(self, rising_v: float, falling_v: float) -> Times:
         if rising_v > self.ramp.nominal_v:
             return NEVER
-        up_s = self.ramp.delay_least_s + self._up_s(rising_v)
-        return delayed(self.maker.may_be_on, least_s=up_s, most_s=self._down_s(falling_v))
+        up_s = self.ramp.delay.least + self._up(rising_v).least
+        return delayed(self.maker.may_be_on, least_s=up_s, most_s=self._down(falling_v).most)
 
     def _may_be_low(self, rising_v: float, falling_v: float) -> Times:
         if rising_v > self.ramp.nominal_v:
             return outside(NEVER)
-        up_s = self.ramp.delay_most_s + self._up_s(rising_v)
-        return delayed(self.maker.may_be_off, least_s=self._down_s(falling_v), most_s=up_s)
+        up_s = self.ramp.delay.most + self._up(rising_v).most
+        return delayed(self.maker.may_be_off, least_s=self._down(falling_v).least, most_s=up_s)

@@ -6,25 +6,30 @@
         line.states["por_n"]                      # Decision: may_assert, may_release, may_be_unknown, may_be_held
         line.states["ref_fast"]                   # On: may_be_on, may_be_off
         line.states["adc"]                        # LoadState: fed, ready, reset, running
-    lines.missing("por_n", latest=True, falls=True)   # paths of facts; () where all are there
+    lines.at_best                                 # the same with all that is missing taken for the best
+    lines.gaps("por_n", scenes=(Scene.START,))    # what is missing for an element, and what cannot be tried
 
 Everything is computed when it is first asked for, and kept.  What *may* be is known of each time; what *surely* is, is
-what may not be otherwise.  Intervals are exact where the graph does not reconverge; where two ways share a tolerance,
-they may be wider, and ``pinned`` times the network with that tolerance at one end.
+what may not be otherwise.  What is missing may be anything here, so that what is sure is so whatever it turns out to
+be; ``at_best``, only what may be so whatever is missing may be so.  Intervals are exact where the graph does not
+reconverge; where two ways share a tolerance, they may be wider, and ``pinned`` times the network with that tolerance at
+one end.
 """
 
 from __future__ import annotations
 
-from collections.abc import Collection, Iterable, Mapping, Sequence
+from collections.abc import Collection, Container, Iterable, Iterator, Mapping, Sequence
 from functools import cached_property
 from typing import Final
 
 import msgspec
+from msgspec.structs import replace
 
 from tidegate.lint.description.model.description import Description
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.reset_path import Bypass
 from tidegate.lint.description.model.supply import Rail
+from tidegate.lint.facts.reading import Corner
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.graph.kept_last import keeps_last
@@ -32,12 +37,12 @@ from tidegate.lint.timing.evaluate import Found, Network, States, evaluate, netw
 from tidegate.lint.timing.falls import alone, dips, together
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.order import leans_on, rails_of, reached
-from tidegate.lint.timing.parts import Lacks, TimedPart, times_of
+from tidegate.lint.timing.parts import Lacks, RailPart, TimedPart, exact_ends, times_of, with_lone_spread
 from tidegate.lint.timing.published import published
 from tidegate.lint.timing.ramps import Ramps, read_ramps
 from tidegate.lint.timing.reading import Parts, read_parts
 from tidegate.lint.timing.scenario import Scenario, Scene
-from tidegate.lint.timing.starts import Setting, starts, untried
+from tidegate.lint.timing.starts import Setting, Untried, starts, untried
 from tidegate.lint.timing.state import ASSERTED, RELEASED
 from tidegate.lint.timing.waveform import Waveform
 
@@ -53,29 +58,71 @@ class Timeline(msgspec.Struct, frozen=True):
 
 
 class Timelines:
-    """All scenarios of one description."""
+    """All scenarios of one description, with all that is missing at one corner."""
 
     def __init__(self, description: Description, graph: Graph) -> None:
+        self._begin(description, graph, read_parts(description, graph), read_ramps(description, graph))
+        parts = [*self.read.every.values(), *(other for others in self.read.others.values() for other in others)]
+        self.setting = Setting(description, self.ramps.by_rail, _by_rail(parts), self._long_s())
+
+    def _begin(self, description: Description, graph: Graph, read: Parts, ramps: Ramps, *, best: bool = False) -> None:
         self.description = description
         self.graph = graph
-        self.read: Parts = read_parts(description, graph)
-        self.ramps: Ramps = read_ramps(description)
-        self.network: Network = network(self.read.parts, self.ramps.by_rail)
-        self.setting = Setting(description, self.ramps.by_rail, self._by_rail(), self._long_s())
+        self.read = read
+        self.ramps = ramps
+        self.network: Network = network(read.every, ramps.by_rail, read.others, best=best)
         self._alone: dict[str, Timeline | None] = {}
         self._dips: dict[str, Sequence[Timeline]] = {}
         self._cones: dict[str, Network] = {}
 
-    def _by_rail(self) -> Mapping[str, Sequence[TimedPart]]:
-        found: dict[str, list[TimedPart]] = {}
-        for part in self.read.parts.values():
-            for rail in rails_of(part):
-                found.setdefault(rail, []).append(part)
-        return found
+    @cached_property
+    def at_best(self) -> Timelines:
+        """The same with all that is missing as favourable as it may be, whoever reads it."""
+        if self.read.exact and self.ramps.exact:
+            return self
+        ramps = read_ramps(self.description, self.graph, Corner.BEST)
+        return self._like(self._best_parts, ramps)
+
+    @cached_property
+    def lone_spread(self) -> Timelines:
+        """As ``at_best``, but for least ends that are missing where the greatest is given: those may be anything."""
+        return self._spread(self.read.every)
+
+    def spread_of(self, element: str) -> Timelines:
+        """The same for one element alone; not kept."""
+        return self._spread((element,))
+
+    def _spread(self, elements: Iterable[str]) -> Timelines:
+        parts = dict(self._best_parts.every)
+        for name in elements:
+            if name in parts and name in self.read.every:
+                parts[name] = with_lone_spread(self.read.every[name], parts[name])
+        return self._like(replace(self._best_parts, every=parts), self.at_best.ramps)
+
+    @cached_property
+    def _best_parts(self) -> Parts:
+        return read_parts(self.description, self.graph, Corner.BEST)
+
+    def _like(self, read: Parts, ramps: Ramps) -> Timelines:
+        """Timelines over what may happen whatever is missing, with other numbers."""
+        made = Timelines.__new__(Timelines)
+        made._begin(self.description, self.graph, read, ramps, best=True)
+        made.setting = replace(
+            self.setting, ramps=ramps.by_rail, by_rail=_by_rail(self._exact_parts()), certain=True
+        )  # fmt: skip
+        return made
+
+    def _exact_parts(self) -> Iterator[TimedPart]:
+        """All that can be timed, with the ends that are known."""
+        best = self._best_parts
+        for name in self.read.every.keys() & best.every.keys():
+            sure = (self.read.every[name], *self.read.others.get(name, ()))
+            inner = (best.every[name], *best.others.get(name, ()))
+            yield from map(exact_ends, sure, inner)
 
     def _long_s(self) -> float:
         """A time after which everything has come to rest."""
-        times = (time for part in self.read.parts.values() for time in times_of(part))
+        times = (time for part in self.read.every.values() for time in times_of(part))
         longest_s = max((time.most for time in times if time.most < FOREVER_S), default=0.0)
         return max(_LEAST_LONG_S, _MANY_TIMES * longest_s)
 
@@ -145,12 +192,6 @@ class Timelines:
         net = self.network.among({bypass.overrides, *reached(self._leant_on_by, bypass.overrides)})
         return Timeline(line.scenario, {**line.states, **evaluate(net, line.scenario, line.states, forced)})
 
-    def as_if_given(self, scenario: Scenario, elements: Iterable[str]) -> Timeline:
-        """The timeline with each least value that is missing as great as the greatest: the best that it can be."""
-        net, known = self._seen_by(scenario)
-        lacking = [name for name in elements if name in self.read.lacks and self.read.lacks[name].least]
-        return Timeline(scenario, evaluate(net.without_spread_from_nothing(lacking), scenario, known))
-
     def _cone(self, rail: str) -> Network:
         """The network of what a rail reaches; in a scenario of that rail the rest stays as it is in service."""
         if rail not in self._cones:
@@ -160,7 +201,7 @@ class Timelines:
     @cached_property
     def _leant_on_by(self) -> Mapping[str, Sequence[str]]:
         leant: dict[str, list[str]] = {}
-        for name, part in self.read.parts.items():
+        for name, part in self.read.every.items():
             for needed in leans_on(part):
                 leant.setdefault(needed, []).append(name)
         return leant
@@ -172,77 +213,63 @@ class Timelines:
     # Missing facts
 
     @cached_property
-    def untried(self) -> Sequence[tuple[str, str]]:
-        """Scenarios that are not tried for want of a fact: the name, and the fact."""
+    def untried(self) -> Sequence[Untried]:
+        """Scenarios that are not tried for want of a fact."""
         return list(untried(self.setting))
 
-    def missing(
-        self, element: str, *, latest: bool = False, earliest: bool = False, starts: bool = False,
-        falls: bool = False, slow_falls: bool = False, readiness: bool = False, rails_forced: bool = False,
-    ) -> tuple[str, ...]:  # fmt: skip
-        """The facts that are missing for an element and all it leans on, as paths.
+    def gaps(
+        self, element: str, *, scenes: Container[Scene] = (), falling: Iterable[str] = (), dipping: Iterable[str] = (),
+        power_down: bool = False, own: bool = False, rails_forced: bool = False,
+    ) -> Gaps:  # fmt: skip
+        """What is not known of an element and all it leans on, and what of its rails cannot be tried.
 
-        ``latest``: the greatest values too, ``earliest``: the least ones; ``starts``, ``falls`` and ``slow_falls``:
-        those of the ramps up and down; ``readiness``: of what a load needs alone, not of the nets that reset it, and
-        of its time to be ready; ``rails_forced``: of what makes a rail, no greatest or least values.
+        ``scenes``: kinds of start-ups; ``falling`` and ``dipping``: rails that fall, or dip, alone; ``power_down``: all
+        rails at once; ``own``: what matters where the element itself is judged; ``rails_forced``: of what makes a rail
+        nothing matters.
         Raises: DomainError: where one of them has numbers that cannot be.
         """
-        ramps = (starts or falls or slow_falls) and self._any_ramp_lacks
-        if not (ramps or self._anything_lacks(latest=latest, earliest=earliest, readiness=readiness)):
-            return ()
-        found: dict[str, None] = {}
-        near = self._behind(element, readiness=readiness, through_rails=False) if rails_forced else None
-        for name in self._behind(element, readiness=readiness, through_rails=True):
+        facts, lone, not_tried = ({}, {}, {})  # type: tuple[dict[str, None], dict[str, None], dict[str, None]]
+        names = self._behind(element, readiness=False, through_rails=not rails_forced)
+        rails = [name for name in names if name in self.description.rails]
+        for name in names:
             if name in self.read.refused:
                 raise self.read.refused[name]
+            if name in rails and rails_forced:
+                continue
             lacks = self.read.lacks.get(name, _NO_LACKS)
-            counts = near is None or name in near
-            wanted = (True, latest and counts, earliest and counts, readiness and name == element)
-            groups = (lacks.whole, lacks.most, lacks.least, lacks.ready)
-            for paths in (group for group, is_wanted in zip(groups, wanted, strict=True) if is_wanted):
-                found.update(dict.fromkeys(paths))
-            if ramps:
-                found.update(dict.fromkeys(self._ramp_lacks(name, starts=starts, falls=falls, slow_falls=slow_falls)))
-        return tuple(found)
+            counted = (*lacks.whole, *lacks.most, *(lacks.own if own and name == element else ()))
+            facts.update(dict.fromkeys((*counted, *self._up_lacks(name))))
+            lone.update(dict.fromkeys(path for path in lacks.least if path not in counted))
+        for name in rails:
+            if name in self.ramps.refused:
+                raise self.ramps.refused[name]
+            not_tried.update(dict.fromkeys(self.ramps.lacks.get(name, ())))
+            if power_down and (ramp := self.ramps.by_rail.get(name)) is not None:
+                not_tried.update(dict.fromkeys((*ramp.lacks.fast_fall, *ramp.lacks.slow_fall)))
+        if scenes:
+            behind = set(rails)
+            not_tried.update({one.fact: None for one in self.untried if one.scene in scenes and one.rail in behind})
+            for name in rails:
+                facts.update(dict.fromkeys(self._made_lacks(name)))
+        for name in (*falling, *dipping):
+            if (ramp := self.ramps.by_rail.get(name)) is not None:
+                (facts if ramp.can_fall else not_tried).update(dict.fromkeys(ramp.lacks.steepest))
+                not_tried.update(dict.fromkeys(ramp.lacks.fast_rise if name in dipping else ()))
+        return Gaps(tuple(facts), tuple(lone), tuple(not_tried))
 
-    def _ramp_lacks(self, name: str, *, starts: bool, falls: bool, slow_falls: bool) -> Sequence[str]:
-        if name in self.ramps.refused:
-            raise self.ramps.refused[name]
-        if name in self.ramps.lacks:
-            return self.ramps.lacks[name]
-        ramp = self.ramps.by_rail.get(name)
-        if ramp is None:
+    def _up_lacks(self, name: str) -> Sequence[str]:
+        """What is missing of the level from which on rails are up that an element waits for."""
+        part = self.read.every.get(name)
+        waited_for = [part.after] if isinstance(part, RailPart) else getattr(part, "needs", ())
+        ramps = (self.ramps.by_rail.get(rail or "") for rail in waited_for)
+        return [path for ramp in ramps if ramp is not None for path in ramp.lacks.up]
+
+    def _made_lacks(self, rail: str) -> Sequence[str]:
+        """What is missing of the ramps of a rail that the chip makes."""
+        ramp = self.ramps.by_rail.get(rail)
+        if ramp is None or self.description.rails[rail].made_by is None:
             return ()
-        groups = ((starts, ramp.start_lacks), (falls, ramp.fast_fall_lacks), (slow_falls, ramp.slow_fall_lacks))
-        return [path for wanted, paths in groups if wanted for path in paths]
-
-    def _anything_lacks(self, *, latest: bool, earliest: bool, readiness: bool) -> bool:
-        """Whether any element at all lacks what is asked for: mostly none does, and nobody need look behind any."""
-        lacks = self._lacks_anywhere
-        return (
-            bool(self.read.refused)
-            or lacks.whole
-            or (latest and lacks.most)
-            or (earliest and lacks.least)
-            or (readiness and lacks.ready)
-        )
-
-    @cached_property
-    def _lacks_anywhere(self) -> _Anywhere:
-        lacks = self.read.lacks.values()
-        return _Anywhere(
-            whole=any(lack.whole for lack in lacks),
-            most=any(lack.most for lack in lacks),
-            least=any(lack.least for lack in lacks),
-            ready=any(lack.ready for lack in lacks),
-        )
-
-    @cached_property
-    def _any_ramp_lacks(self) -> bool:
-        ramps = self.ramps.by_rail.values()
-        return bool(self.ramps.lacks or self.ramps.refused) or any(
-            ramp.start_lacks or ramp.fast_fall_lacks or ramp.slow_fall_lacks for ramp in ramps
-        )
+        return (*ramp.lacks.rise, *ramp.lacks.fast_fall, *ramp.lacks.slow_fall)
 
     def behind(self, element: str, *, readiness: bool = False) -> Collection[str]:
         """An element and all it leans on, watched rails included; ``readiness`` leaves out what resets a load."""
@@ -270,16 +297,27 @@ class Timelines:
         return needed
 
 
+def _by_rail(parts: Iterable[TimedPart]) -> Mapping[str, Sequence[TimedPart]]:
+    """What hangs on each rail."""
+    found: dict[str, list[TimedPart]] = {}
+    for part in parts:
+        for rail in rails_of(part):
+            found.setdefault(rail, []).append(part)
+    return found
+
+
 _NO_LACKS: Final = Lacks()
 
 
-class _Anywhere(msgspec.Struct, frozen=True):
-    """Which groups of facts any element lacks."""
+class Gaps(msgspec.Struct, frozen=True):
+    """What is not known for an element, as paths of facts."""
 
-    whole: bool
-    most: bool
-    least: bool
-    ready: bool
+    facts: tuple[str, ...]
+    """Names, words and ends of quantities."""
+    lone: tuple[str, ...]
+    """Least ends that are missing where the greatest is given: they seldom matter."""
+    untried: tuple[str, ...]
+    """Without these, something that the supplies may do cannot be tried."""
 
 
 @keeps_last

@@ -304,7 +304,7 @@ ARGUMENTS: Final = (
         "b.json:1:2: unknown key 'version'; did you mean revision?\n"
         "b.json:1:16: unknown key 'files'; known here: include, subsystem, revision, invented, note, "
         "conditions, process, rails, domains, references, biases, comparators, output_stages, resets, loads, "
-        "modes, bypasses, neighbours, scenarios, waivers; your own keys begin with x-",
+        "modes, bypasses, neighbours, scenarios, complete, waivers; your own keys begin with x-",
         call="compare b.json main.yaml",
     ),
     Bad(

@@ -36,6 +36,12 @@ CONTRADICTIONS: Final = (
         "or make it a scenario",
     ),
     Bad(
+        "a detector that is sampled in a mode and decides at any time",
+        UV + "sampling: none}\nmodes: {sleep: {sampled: [uv]}}\n",
+        "main.yaml:6:27: modes.sleep.sampled[0]: uv decides at any time (sampling: none), and only now and then "
+        "here; give its sampling period, or leave it out here",
+    ),
+    Bad(
         "a pair of an element with itself",
         UV + "}\nneighbours:\n  pair: {kind: capacitance, aggressor: uv, victim: uv}\n",
         "main.yaml:7:52: neighbours.pair.victim: aggressor and victim are one element (uv); name two elements, "

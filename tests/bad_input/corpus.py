@@ -14,6 +14,7 @@ from tests.bad_input.keys import KEYS
 from tests.bad_input.keys_twice import KEYS_TWICE
 from tests.bad_input.misbehaving_rules import MISBEHAVING_RULES
 from tests.bad_input.names import NAMES
+from tests.bad_input.none import NONE
 from tests.bad_input.numbers import NUMBERS
 from tests.bad_input.output_paths import OUTPUT_PATHS
 from tests.bad_input.pack_rules import PACK_RULES
@@ -35,6 +36,7 @@ BY_KIND: Final[Mapping[str, Sequence[Bad]]] = {
     "syntax": SYNTAX,
     "keys": (*KEYS, *KEYS_TWICE),
     "names": NAMES,
+    "none": NONE,
     "quantities": (*QUANTITIES, *UNITS, *SPANS),
     "values": (*VALUES, *NUMBERS, *SHAPES),
     "contradictions": CONTRADICTIONS,

@@ -231,7 +231,7 @@ INCLUDES: Final = (
         {"main.yaml": RAIL + "include: [s.yaml]\n", "s.yaml": "fail_at: error\n"},
         "s.yaml:1:1: unknown key 'fail_at'; known here: include, subsystem, revision, invented, note, "
         "conditions, process, rails, domains, references, biases, comparators, output_stages, resets, loads, "
-        "modes, bypasses, neighbours, scenarios, waivers; your own keys begin with x-",
+        "modes, bypasses, neighbours, scenarios, complete, waivers; your own keys begin with x-",
     ),
     Bad(
         "a name that points into no file",

@@ -195,7 +195,7 @@ KEYS: Final = (
         "rails.avdd.nominal: 1.8 V\n",
         "main.yaml:1:1: unknown key 'rails.avdd.nominal'; known here: include, subsystem, revision, invented, "
         "note, conditions, process, rails, domains, references, biases, comparators, output_stages, resets, "
-        "loads, modes, bypasses, neighbours, scenarios, waivers; your own keys begin with x-",
+        "loads, modes, bypasses, neighbours, scenarios, complete, waivers; your own keys begin with x-",
     ),
     Bad(
         "a key with a slash",
@@ -356,6 +356,6 @@ KEYS: Final = (
         RAIL + "fail_at: error\n",
         "main.yaml:4:1: unknown key 'fail_at'; known here: include, subsystem, revision, invented, note, "
         "conditions, process, rails, domains, references, biases, comparators, output_stages, resets, loads, "
-        "modes, bypasses, neighbours, scenarios, waivers; your own keys begin with x-",
+        "modes, bypasses, neighbours, scenarios, complete, waivers; your own keys begin with x-",
     ),
 )

@@ -80,15 +80,15 @@ MISBEHAVING_RULES: Final = (
     ),
     Bad(
         "a rule that asks for a fact that nobody knows",
-        pack(PACK.replace("BODY", "return case.own.most('colour')")),
-        "house/low on avdd: AttributeError: 'Rail' object has no attribute 'colour'",
+        pack(PACK.replace("BODY", "return case.whole.colour")),
+        "house/low on avdd: AttributeError: 'DescriptionFacts' object has no attribute 'colour'",
         call=JUDGED,
         status=3,
     ),
     Bad(
         "a rule that asks for an element that is not there",
         pack(PACK.replace("BODY", "return case.of('nobody').most('delay')")),
-        "house/low on avdd: AttributeError: 'str' object has no attribute 'section'",
+        "house/low on avdd: TypeError: no element: 'nobody'",
         call=JUDGED,
         status=3,
     ),

@@ -261,9 +261,20 @@ NAMES: Final = (
         "the key out where it is not known",
     ),
     Bad(
-        "none for a reference",
-        UV + "reference: none}\n",
-        "main.yaml:5:55: comparators.uv.reference: none is no name, but says that there is nothing; name one, "
+        "a reference that is nearly none",
+        UV + "reference: None}\n",
+        "main.yaml:5:55: comparators.uv.reference: no reference is called 'None'; describe it, or correct the name",
+    ),
+    Bad(
+        "a reference that is a list",
+        UV + "reference: [ref]}\n",
+        "main.yaml:5:55: comparators.uv.reference: neither none nor a name (found a list); write none, or as "
+        "in ref_fast",
+    ),
+    Bad(
+        "none for what arms a detector",
+        UV + "armed_by: none}\n",
+        "main.yaml:5:54: comparators.uv.armed_by: none is no name, but says that there is nothing; name one, "
         "or leave the key out where it is not known",
     ),
     Bad(

@@ -230,11 +230,6 @@ QUANTITIES: Final = (
         "main.yaml:4:13: rails.avdd.damage: '?' is no voltage; leave the key empty where it is not known yet",
     ),
     Bad(
-        "none for a quantity",
-        RAIL + "    damage: none\n",
-        "main.yaml:4:13: rails.avdd.damage: 'none' is no voltage; leave the key empty where it is not known yet",
-    ),
-    Bad(
         "unlimited",
         RAIL + "    rise: {min: 1 us, max: unlimited}\n",
         "main.yaml:4:28: rails.avdd.rise.max: 'unlimited' is no duration; write a number with its unit, such as 20 us",

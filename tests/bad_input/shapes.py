@@ -67,12 +67,6 @@ SHAPES: Final = (
         "kind: always_on}}",
     ),
     Bad(
-        "a section that is none",
-        RAIL + "domains: none\n",
-        "main.yaml:4:10: domains: a mapping of keys is due (found 'none'); write it as in {aon: {rail: avdd, "
-        "kind: always_on}}",
-    ),
-    Bad(
         "an element that is a number",
         RAIL + "  bvdd: 1\n",
         "main.yaml:4:9: rails.bvdd: a mapping of keys is due (found 1); write it as in {nominal: 1.8 V, "
@@ -105,13 +99,13 @@ SHAPES: Final = (
     Bad(
         "a part that is a text",
         RAIL + "    ripple: small\n",
-        "main.yaml:4:13: rails.avdd.ripple: a mapping of keys is due (found 'small'); write it as in "
+        "main.yaml:4:13: rails.avdd.ripple: neither none nor a mapping of keys (found 'small'); write none, or as in "
         "{peak_to_peak: 10 mV, frequency: 2 MHz}",
     ),
     Bad(
         "a part that is a list",
         RAIL + "    ripple: [10 mV, 1 MHz]\n",
-        "main.yaml:4:13: rails.avdd.ripple: a mapping of keys is due (found a list); write it as in "
+        "main.yaml:4:13: rails.avdd.ripple: neither none nor a mapping of keys (found a list); write none, or as in "
         "{peak_to_peak: 10 mV, frequency: 2 MHz}",
     ),
     Bad(
@@ -226,13 +220,13 @@ SHAPES: Final = (
         "an error without its kind",
         UV + "errors: {offset: 3 mV}}\n",
         "main.yaml:5:61: comparators.uv.errors.offset: a mapping of keys is due (found '3 mV'); write it as in "
-        "{amount: 3 mV, share: 0.5 %}",
+        "{of: offset, amount: 3 mV, is: bound, at: input}",
     ),
     Bad(
         "errors that are a list",
         UV + "errors: [{amount: 3 mV}]}\n",
-        "main.yaml:5:52: comparators.uv.errors: a mapping of keys is due (found a list); write it as in "
-        "{offset: {amount: 3 mV, share: 0.5 %}}",
+        "main.yaml:5:52: comparators.uv.errors: neither none nor a mapping of keys (found a list); write none, or as "
+        "in {offset: {of: offset, amount: 3 mV, is: bound, at: input}}",
     ),
     Bad(
         "an error of an unknown kind",
@@ -277,7 +271,7 @@ SHAPES: Final = (
     Bad(
         "modes that are a list",
         RAIL + "modes: [sleep]\n",
-        "main.yaml:4:8: modes: a mapping of keys is due (found a list); write it as in {sleep: {off: "
+        "main.yaml:4:8: modes: neither none nor a mapping of keys (found a list); write none, or as in {sleep: {off: "
         "[ref_main], sampled: [uv_core]}}",
     ),
     Bad(

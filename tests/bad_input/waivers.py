@@ -149,7 +149,7 @@ WAIVERS: Final = (
     Bad(
         "waivers that are none",
         CHIP + "waivers: none\n",
-        "main.yaml:6:10: waivers: a list is due (found 'none'); leave it out where there is none",
+        "main.yaml:6:10: waivers: none cannot be said here; write [] where there is none",
     ),
     Bad(
         "a day that is over",

@@ -1,4 +1,8 @@
-"""Descriptions of any size: copies of the invented sound example, each with names of its own."""
+"""Descriptions of any size: copies of the invented sound example, each with names of its own.
+
+What is no element grows with the elements: each copy brings its modes and its scenarios, as it brings its overrides and
+neighbours. So the modes of all copies are held against the loads of all copies, which a real chip asks of nobody.
+"""
 
 from __future__ import annotations
 
@@ -13,6 +17,8 @@ SECTIONS = (
     "rails", "domains", "references", "biases", "comparators", "output_stages", "resets", "loads", "bypasses",
     "neighbours",
 )  # fmt: skip
+BESIDES = ("modes", "scenarios")
+"""Sections whose entries are no elements."""
 
 
 def generated(elements: int) -> str:
@@ -25,7 +31,7 @@ def generated(elements: int) -> str:
     if elements < len(names):
         whole |= _first_elements(base, elements)
     for number in range(elements // len(names)):
-        for section in SECTIONS:
+        for section in (*SECTIONS, *BESIDES):
             entries = {f"{name}_{number}": _renamed(entry, names, number) for name, entry in base[section].items()}
             whole.setdefault(section, {}).update(entries)
     return json.dumps(_typed(whole), indent=1)

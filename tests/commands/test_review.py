@@ -86,8 +86,8 @@ def test_waived_findings_stay_in_every_form_as_waived(sound: Path) -> None:
     saves = [word for ending in ENDINGS for word in ("--save", f"report.{ending}")]
     assert review(*saves, "sound.yaml", cwd=sound).returncode == 0
     reports = {ending: (sound / f"report.{ending}").read_text("utf-8") for ending in ENDINGS}
-    assert "  waived   lifts por_n and core_rst_n past ov" in reports["txt"]
-    assert "- **waived** lifts por\\_n and core\\_rst\\_n past ov" in reports["md"]
+    assert "  waived   skip_resets: lifts por_n and core_rst_n past ov" in reports["txt"]
+    assert "- **waived** skip\\_resets: lifts por\\_n and core\\_rst\\_n past ov" in reports["md"]
     (waived,) = [j for j in json.loads(reports["json"])["files"][0]["judgements"] if j["waiver"]]
     assert (waived["rule"], waived["subject"]) == ("bypass/over_voltage_caution", "skip_resets")
     results = json.loads(reports["sarif"])["runs"][0]["results"]
@@ -157,7 +157,7 @@ def test_workers_are_counted(many: Path, workers: str) -> None:
 
 def test_a_worker_that_dies_is_said_and_loses_nothing_quietly(many: Path) -> None:
     pack = (ROOT / "examples" / "house_rules.py").read_text("utf-8")
-    dying = pack.replace('delay_s = case.own.most("delay")', "__import__('os')._exit(9)")
+    dying = pack.replace("delay_s = case.of(comparator).delay.most()", "__import__('os')._exit(9)")
     (many / "dying.py").write_text(dying, "utf-8")
     done = started("--as", "json", "--workers", "2", "--pack", "dying.py", ".", cwd=many)
     assert (done.returncode, done.stdout) == (2, "")

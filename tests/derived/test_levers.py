@@ -5,6 +5,7 @@ from __future__ import annotations
 import pytest
 
 from tests.derived.placing import found, placed
+from tests.rules.sound import both, without
 
 # What a lever says it does, and the same change written into the description.
 CHANGES = {
@@ -33,10 +34,14 @@ CHANGES = {
 }
 
 
+def room_v(patch: str, detector: str) -> float:
+    return found(patch, detector).best.room_v
+
+
 @pytest.mark.parametrize(("detector", "what"), [(d, what) for d, changes in CHANGES.items() for what in changes])
 def test_a_lever_buys_what_the_changed_description_gives(detector: str, what: str) -> None:
     lever = next(lever for lever in placed("", detector).levers if lever.what == what)
-    gained_v = found(CHANGES[detector][what], detector).room_v - found("", detector).room_v
+    gained_v = room_v(CHANGES[detector][what], detector) - room_v("", detector)
     assert gained_v > 0.0
     assert lever.gain_v == pytest.approx(gained_v, abs=1e-9)
 
@@ -52,8 +57,8 @@ def test_the_best_lever_stands_first_and_none_that_buys_nothing() -> None:
 def test_a_stiffer_source_buys_room_where_the_load_step_sets_the_end() -> None:
     patch = "rails: {avdd: {load_step: {max: 200 mA}}}"
     lever = next(lever for lever in placed(patch, "uv").levers if lever.what == "source impedance halved")
-    stiffer = found("rails: {avdd: {load_step: {max: 200 mA}, source_impedance: {max: 0.2 ohm}}}", "uv")
-    assert lever.gain_v == pytest.approx(stiffer.room_v - found(patch, "uv").room_v, abs=1e-9)
+    stiffer = "rails: {avdd: {load_step: {max: 200 mA}, source_impedance: {max: 0.2 ohm}}}"
+    assert lever.gain_v == pytest.approx(room_v(stiffer, "uv") - room_v(patch, "uv"), abs=1e-9)
     assert lever.fact == "rails.avdd.source_impedance"
     assert lever.change == "400 mohm to 200 mohm"
 
@@ -67,7 +72,43 @@ def test_a_range_of_the_levels_is_a_lever() -> None:
 def test_less_hysteresis_is_a_lever_down_to_what_is_needed() -> None:
     answer = placed("", "uv")
     lever = next(lever for lever in answer.levers if lever.what == "hysteresis no larger than needed")
-    assert isinstance(answer.least_hysteresis_v, float)
-    falling_v = 1.627
-    less = f"comparators: {{uv: {{trip: {{falling: 1.627 V, rising: {falling_v + answer.least_hysteresis_v:.9f} V}}}}}}"
-    assert lever.gain_v == pytest.approx(found(less, "uv").room_v - found("", "uv").room_v, abs=1e-8)
+    needed_v = answer.least_hysteresis.sure_v
+    assert needed_v is not None
+    less = f"comparators: {{uv: {{trip: {{falling: 1.627 V, rising: {1.627 + needed_v:.9f} V}}}}}}"
+    assert lever.gain_v == pytest.approx(room_v(less, "uv") - room_v("", "uv"), abs=1e-8)
+
+
+def test_a_source_without_a_nominal_is_tried_a_little_tighter() -> None:
+    lever = next(
+        lever for lever in placed(without("rails.avdd.nominal"), "uv").levers if lever.what == "source 10 mV tighter"
+    )
+    tighter = both(without("rails.avdd.nominal"), "rails: {avdd: {delivered: {min: 1.72 V, max: 1.89 V}}}")
+    assert lever.gain_v == pytest.approx(room_v(tighter, "uv") - room_v(without("rails.avdd.nominal"), "uv"), abs=1e-9)
+    assert (lever.fact, lever.change) == ("rails.avdd.delivered", "1.71 V to 1.72 V")
+
+
+def test_an_under_voltage_detector_placed_higher_makes_room_below_it() -> None:
+    lever = next(lever for lever in placed("", "por").levers if lever.what == "uv placed higher")
+    higher = "comparators: {uv: {trip: {falling: 1.637 V, rising: 1.687 V}}}"
+    assert lever.gain_v == pytest.approx(room_v(higher, "por") - room_v("", "por"), abs=1e-9)
+    assert lever.change == "1.665 V to 1.675 V at least"
+
+
+def test_what_is_missing_is_no_lever_and_stands_at_its_best_for_the_others() -> None:
+    """Without the delay the collapse of the rail counts for the filter alone: 2 V/ms for 1.5 us, of which half."""
+    patch = without("comparators.uv.delay")
+    gains = {lever.what: lever.gain_v for lever in placed(patch, "uv").levers}
+    assert "delay halved" not in gains
+    assert gains["slower collapse, by hold-up"] == pytest.approx(0.0015 / 0.995, abs=1e-9)
+    assert gains["reference error halved"] == pytest.approx(
+        room_v(both(patch, "comparators: {uv: {errors: {reference: {share: 0.2 %}}}}"), "uv") - room_v(patch, "uv"),
+        abs=1e-9,
+    )
+
+
+def test_only_the_end_that_is_known_can_gain() -> None:
+    """Loads that do not say from which supply they work leave the lower end open; the upper one moves all the same."""
+    patch = without("loads.adc.needs.0.works", "loads.core_regulator.needs.0.works")
+    gains = {lever.what: lever.gain_v for lever in placed(patch, "uv").levers}
+    assert gains["tolerance of the source halved"] == pytest.approx(0.045 / 1.005, abs=1e-9)
+    assert "slower collapse, by hold-up" not in gains

@@ -22,7 +22,7 @@ SIZES = st.floats(min_value=1e-14, max_value=1e9)
         (999.6, "999 ohm", "1 kohm"),
         (941176.47, "941 kohm", "942 kohm"),
         (0.0, "0 ohm", "0 ohm"),
-        (math.inf, "unlimited", "unlimited"),
+        (math.inf, "without end", "without end"),
     ],
 )
 def test_size_is_rounded_to_the_side_on_which_it_still_does(ohm: float, down: str, up: str) -> None:

@@ -82,8 +82,8 @@ def test_an_entry_stands_in_one_file_only(tmp_path: Path) -> None:
         "b.yaml:1:1: subsystem: given twice (first at main.yaml:1:1); keep one of them\n"
         "b.yaml:3:3: rails.avdd: given twice (first at main.yaml:3:9); keep one of them\n"
         "b.yaml:6:5: process.vias.v1: given twice (first at main.yaml:4:18); keep one of them\n"
-        "b.yaml:7:13: conditions: a mapping of keys is due (found 'none'); write it as in "
-        "{junction_temperature: {min: -40 degC, max: 125 degC}, service_life: 10 yr}\n"
+        "b.yaml:7:13: conditions: none cannot be said here; leave the key empty where it is not known yet; "
+        "it can be said of loads, modes, bypasses, neighbours\n"
         "b.yaml:8:10: waivers: a list is due (found an empty mapping); write it as in [{rule: bypass/readable, ...}]"
     )
 

@@ -164,7 +164,8 @@ def _check_placement(call: Call, detector: dict[str, Any]) -> None:
     """A detector stands inside its interval if and only if it keeps every limit."""
     if detector["stands"] is None or "margins" not in detector:
         return
-    found = [each["value"] for each in detector["margins"].values() if each is not None]
+    end = "surely" if detector["stands"] else "at_best"
+    found = [each[end]["value"] for each in detector["margins"].values()]
     margins = [value for value in found if value is not None]
     least, most, now = (detector["falling"][key] for key in ("least", "most", "now"))
     scale = 1e-6 * max(1.0, abs(now["value"]))

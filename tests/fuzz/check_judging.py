@@ -10,11 +10,12 @@ import re
 from collections import Counter
 from collections.abc import Iterator
 from pathlib import Path
-from typing import Any, Final
+from typing import Any, Final, get_args
 
 from tests.fuzz.check_loading import given_at
 from tests.fuzz.trouble import Trouble, no_constant, no_number
 from tidegate.lint.description.load import Loaded, load
+from tidegate.lint.description.model.description import CompleteSection
 from tidegate.lint.engine import Catalogue, Review, review
 from tidegate.lint.judgement import Judgement, Kind
 from tidegate.lint.reports.json_report import json_text, review_entry
@@ -22,6 +23,8 @@ from tidegate.lint.settings import Settings
 from tidegate.rules.catalogue import FAMILIES
 
 CATALOGUE: Final = Catalogue(FAMILIES)
+_LISTS: Final = frozenset(("errors", *get_args(CompleteSection)))
+"""What holds as many entries as are described, and perhaps others."""
 TODAY: Final = datetime.date(2026, 1, 1)
 
 
@@ -66,16 +69,13 @@ def _wrong_numbers(judgement: Judgement, *, own: bool) -> Iterator[str]:
 
 
 def _wrongly_missing(judgement: Judgement, result: Review) -> Iterator[str]:
-    if judgement.kind is not Kind.OPEN:
-        if judgement.missing:
-            yield "judged although facts are missing"
-        return
-    if not judgement.missing and "outside the range" not in judgement.message:
+    """What is lacking and there all the same; a list that is given may lack entries."""
+    if judgement.kind is Kind.OPEN and not judgement.missing and "outside the range" not in judgement.message:
         yield "open without a reason"
     for path in judgement.missing:
-        if given_at(result.loaded.sources.data, path):
-            section, _, *fact = path.split(".")
-            yield f"lacks what is given: {section} {'.'.join(fact)}"
+        if path.rpartition(".")[2] not in _LISTS and given_at(result.loaded.sources.data, path):
+            section, *rest = path.split(".")
+            yield f"lacks what is given: {section} {'.'.join(rest[1:])}"
 
 
 def _wrong_texts(judgement: Judgement, given: str) -> Iterator[str]:

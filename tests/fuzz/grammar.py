@@ -23,8 +23,13 @@ from tidegate.lint.units import POWERS, SCALED, Dimension
 ROOT: Final = Path(__file__).resolve().parents[2]
 SCHEMA: Final[Mapping[str, Any]] = json.loads((ROOT / "schema" / "description.schema.json").read_text("utf-8"))
 DEFS: Final[Mapping[str, Any]] = SCHEMA["$defs"]
-NAMED: Final = tuple(key for key, node in SCHEMA["properties"].items() if "propertyNames" in node)
-"""Sections whose entries have names."""
+SECTIONS: Final = {
+    key: section["additionalProperties"]
+    for key, node in SCHEMA["properties"].items()
+    if "propertyNames" in (section := node.get("anyOf", (node,))[-1])
+}
+"""What an entry is, of each section whose entries have names."""
+NAMED: Final = tuple(SECTIONS)
 
 _WORDS: Final = {
     "rails": ("avdd", "vcore", "vio", "vbat"), "domains": ("aon", "sw", "core", "analog"),
@@ -99,7 +104,9 @@ class Writer:
     def _section(self, key: str, node: Mapping[str, Any]) -> Any:
         """A section, or a fact of the description itself; None where it is left out."""
         if key in self.ids:
-            return {name: self.value(node["additionalProperties"], (key, name)) for name in self.ids[key]}
+            if not self.ids[key] and "x-none" in node and self.chance(0.3):
+                return "none"
+            return {name: self.value(SECTIONS[key], (key, name)) for name in self.ids[key]}
         if key == "waivers":
             count = self.choose.randint(0, 3) if self.chance(0.3) else 0
             return [self.value(node["items"], (key, 0)) for _ in range(count)]
@@ -143,7 +150,8 @@ class Writer:
                 least = max(node.get("minItems", 0), self.full == 1.0)
                 if path[-1] == "points" and not self.chance(self.odd / 10):
                     return self._points()
-                return [self.value(node["items"], (*path, i)) for i in range(self.choose.randint(least, 3))]
+                values = [self.value(node["items"], (*path, i)) for i in range(self.choose.randint(least, 3))]
+                return list(dict.fromkeys(values)) if node.get("uniqueItems") else values
             case "boolean":
                 return self.chance(0.5)
             case "number" | "integer":
@@ -289,9 +297,13 @@ class Writer:
 
 def _without_contradictions(data: dict[str, Any]) -> None:
     """Take out the facts that exclude others."""
+    data = {section: entries for section, entries in data.items() if entries != "none"}
     for domain in data.get("domains", {}).values():
         if domain.get("kind") == "always_on":
             domain.pop("switched_by", None)
+    for mode in data.get("modes", {}).values():
+        for name in mode.get("sampled", ()):
+            data.get("comparators", {}).get(name, {}).pop("sampling", None)
     for name, pair in list(data.get("neighbours", {}).items()):
         if pair["aggressor"] == pair["victim"]:
             del data["neighbours"][name]

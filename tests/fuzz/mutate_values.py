@@ -37,6 +37,8 @@ def schema_at(path: Path) -> Mapping[str, Any] | None:
 def dimension_at(path: Path) -> Dimension | None:
     """The dimension of the text at a path; None where it is no quantity, or a whole span."""
     node = schema_at(path[:-1] if path[-1] in _PARTS else path)
+    if node is not None and "x-none" in node:
+        node = resolved(node["anyOf"][-1])
     return Dimension(node["x-quantity"]) if node is not None and "x-quantity" in node else None
 
 

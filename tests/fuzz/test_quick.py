@@ -15,7 +15,7 @@ from hypothesis import HealthCheck, given, settings
 
 from tests.fuzz.campaign import case_of
 from tests.fuzz.cases import MAIN, Case, written
-from tests.fuzz.grammar import NAMED, ROOT, SCHEMA, description, descriptions
+from tests.fuzz.grammar import NAMED, ROOT, SCHEMA, SECTIONS, description, descriptions
 from tests.fuzz.minimise import minimised
 from tests.fuzz.mutate_values import mutated
 from tests.fuzz.run_case import run_case
@@ -59,7 +59,7 @@ def test_the_grammar_reaches_every_section_and_field() -> None:
     for number in range(40):
         _keys(description(random.Random(f"fields/{number}")), (), met)
     for section in NAMED:
-        fields = SCHEMA["$defs"][SCHEMA["properties"][section]["additionalProperties"]["$ref"].rpartition("/")[2]]
+        fields = SCHEMA["$defs"][SECTIONS[section]["$ref"].rpartition("/")[2]]
         assert {(section, field) for field in fields["properties"]} <= met, section
 
 

@@ -302,7 +302,9 @@ def test_a_limit_beyond_the_range_of_a_float_is_refused() -> None:
 @pytest.mark.parametrize(
     ("symbol", "value", "message"),
     [
-        ("activation_energy_ev", 0.0, "activation_energy_ev must be greater than 0 (found 0.0)"),
+        ("activation_energy_ev", -0.1, "activation_energy_ev must be at least 0 (found -0.1)"),
+        ("activation_energy_ev", math.inf, "activation_energy_ev must be at least 0 (found inf)"),
+        ("current_exponent", 0.0, "current_exponent must be greater than 0 (found 0.0)"),
         ("current_exponent", -2.0, "current_exponent must be greater than 0 (found -2.0)"),
     ],
 )
@@ -310,6 +312,17 @@ def test_wear_out_of_range_is_refused(symbol: str, value: float, message: str) -
     with pytest.raises(DomainError) as refusal:
         replace(Wear(0.7, 2.0), **{symbol: value})
     assert str(refusal.value) == message
+
+
+def test_the_ends_of_what_is_not_known_of_the_law() -> None:
+    """Ea = 0: exp(0) = 1 at every temperature; n without end: x^(1/n) is 1 for every x (limits of Black's law)."""
+    assert carry(wear=Wear(0.0, 2.0), use_k=CONDITIONS["stated_k"] + 40.0) == pytest.approx(
+        carry(wear=Wear(0.7, 2.0), use_k=CONDITIONS["stated_k"])
+    )
+    assert carry(wear=Wear(0.7, math.inf), use_life_s=1.0) == CONDITIONS["limit"]
+    assert carry(wear=Wear(0.7, 1e9), use_life_s=1.0) == pytest.approx(CONDITIONS["limit"], rel=1e-6)
+    assert live(wear=Wear(0.7, math.inf), current=0.99 * CONDITIONS["limit"]) == math.inf
+    assert live(wear=Wear(0.7, math.inf), current=1.01 * CONDITIONS["limit"]) == 0.0
 
 
 @pytest.mark.parametrize(

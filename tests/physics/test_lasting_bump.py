@@ -124,13 +124,13 @@ SIZING = {"allowed_v": 1e-3, "lasts_s": 1e-6, "step_v": 1.8, "r_ohm": 1e6, "coup
     [
         (lasting_bump_v, BUMP, {"lasts_s": -1.0}, "lasts_s must be at least 0 (found -1.0)"),
         (lasting_bump_v, BUMP, {"step_v": -1.0}, "step_v must be at least 0 (found -1.0)"),
-        (lasting_bump_v, BUMP, {"r_ohm": 0.0}, "r_ohm must be greater than 0 (found 0.0)"),
+        (lasting_bump_v, BUMP, {"r_ohm": -1.0}, "r_ohm must be at least 0 (found -1.0)"),
         (lasting_bump_v, BUMP, {"coupling_c_f": -1.0}, "coupling_c_f must be at least 0 (found -1.0)"),
         (lasting_bump_v, BUMP, {"ground_c_f": math.nan}, "ground_c_f must be at least 0 (found nan)"),
         (decayed_kick_v, KICK, {"lasts_s": -1.0}, "lasts_s must be at least 0 (found -1.0)"),
         (decayed_kick_v, KICK, {"charge_c": -1.0}, "charge_c must be at least 0 (found -1.0)"),
-        (decayed_kick_v, KICK, {"r_ohm": 0.0}, "r_ohm must be greater than 0 (found 0.0)"),
-        (decayed_kick_v, KICK, {"least_c_f": 0.0}, "least_c_f must be greater than 0 (found 0.0)"),
+        (decayed_kick_v, KICK, {"r_ohm": -1.0}, "r_ohm must be at least 0 (found -1.0)"),
+        (decayed_kick_v, KICK, {"least_c_f": -1.0}, "least_c_f must be at least 0 (found -1.0)"),
         (decayed_kick_v, KICK, {"most_c_f": 1e-13}, "most_c_f must be at least least_c_f, 1e-12 (found 1e-13)"),
         (decayed_kick_v, KICK, {"most_c_f": math.nan}, "most_c_f must be at least least_c_f, 1e-12 (found nan)"),
         (decoupling_for_lasting_bump_f, SIZING, {"allowed_v": 0.0}, "allowed_v must be greater than 0 (found 0.0)"),
@@ -144,3 +144,40 @@ def test_refuses(function: Any, symbols: dict[str, float], wrong: dict[str, floa
     with pytest.raises(DomainError) as refused:
         function(**{**symbols, **wrong})
     assert str(refused.value) == message
+
+
+@pytest.mark.parametrize(
+    ("ends", "limit_v"),
+    [
+        ({"lasts_s": math.inf}, 0.0),
+        ({"r_ohm": 0.0}, 0.0),
+        ({"r_ohm": 0.0, "lasts_s": 0.0}, 1.8 * 1e-15 / 1.01e-13),
+        ({"r_ohm": math.inf}, 1.8 * 1e-15 / 1.01e-13),
+        ({"coupling_c_f": math.inf}, 1.8),
+        ({"ground_c_f": math.inf}, 0.0),
+        ({"step_v": math.inf}, math.inf),
+        ({"step_v": math.inf, "coupling_c_f": 0.0}, 0.0),
+    ],
+)
+def test_lasting_bump_at_the_ends_of_what_is_not_known(ends: dict[str, float], limit_v: float) -> None:
+    # Limits of V Cc/(Cc + Cg + T/R), taken by hand.
+    assert lasting_bump_v(**{**BUMP, **ends}) == pytest.approx(limit_v, rel=1e-12)
+
+
+@pytest.mark.parametrize(
+    ("ends", "limit_v"),
+    [
+        ({"lasts_s": math.inf}, 0.0),
+        ({"r_ohm": 0.0}, 0.0),
+        ({"r_ohm": math.inf}, 1e-15 / 1e-12),
+        ({"least_c_f": 0.0, "most_c_f": math.inf}, 1e-15 / 1e-12 * math.exp(-1.0)),  # C = T/R = 1 pF
+        ({"least_c_f": 0.0, "lasts_s": 0.0}, math.inf),
+        ({"least_c_f": math.inf, "most_c_f": math.inf}, 0.0),
+        ({"charge_c": math.inf}, math.inf),
+        ({"charge_c": math.inf, "r_ohm": 0.0}, 0.0),
+        ({"charge_c": 0.0, "least_c_f": 0.0, "lasts_s": 0.0}, 0.0),
+    ],
+)
+def test_decayed_kick_at_the_ends_of_what_is_not_known(ends: dict[str, float], limit_v: float) -> None:
+    # Limits of (Q/C) exp(-T/(R C)) over the capacitances there can be, taken by hand.
+    assert decayed_kick_v(**{**KICK, **ends}) == pytest.approx(limit_v, rel=1e-12)

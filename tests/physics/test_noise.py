@@ -146,12 +146,12 @@ def test_rate_at_the_mean_is_the_zero_level_rate() -> None:
 
 
 def test_refusals_name_the_symbol() -> None:
-    with pytest.raises(DomainError, match=r"^bandwidth_hz must be greater than 0 \(found 0\.0\)$"):
-        zero_level_rate_hz(bandwidth_hz=0.0)
+    with pytest.raises(DomainError, match=r"^bandwidth_hz must be at least 0 \(found -1\.0\)$"):
+        zero_level_rate_hz(bandwidth_hz=-1.0)
     with pytest.raises(DomainError, match=r"^sigma_v must be greater than 0 \(found 0\.0\)$"):
         false_trip_rate_hz(sigma_v=0.0, bandwidth_hz=1.0, distance_v=1.0)
-    with pytest.raises(DomainError, match=r"^bandwidth_hz must be greater than 0 \(found inf\)$"):
-        false_trip_rate_hz(sigma_v=1.0, bandwidth_hz=math.inf, distance_v=1.0)
+    with pytest.raises(DomainError, match=r"^bandwidth_hz must be at least 0 \(found nan\)$"):
+        false_trip_rate_hz(sigma_v=1.0, bandwidth_hz=math.nan, distance_v=1.0)
     with pytest.raises(DomainError, match=r"^distance_v must be at least 0 \(found -1\.0\)$"):
         false_trip_rate_hz(sigma_v=1.0, bandwidth_hz=1.0, distance_v=-1.0)
 
@@ -161,3 +161,21 @@ def test_distance_refuses_each_symbol(symbol: str) -> None:
     good = {"sigma_v": 1e-3, "bandwidth_hz": 1e6, "life_s": 1e8, "allowed_trips": 1.0}
     with pytest.raises(DomainError, match=f"^{symbol} must be .* \\(found -1\\.0\\)$"):
         false_trip_distance_v(**{**good, symbol: -1.0})
+
+
+@pytest.mark.parametrize(
+    ("symbols", "limit"),
+    [
+        ({"bandwidth_hz": 0.0}, 0.0),
+        ({"life_s": 0.0}, 0.0),
+        ({"bandwidth_hz": math.inf}, math.inf),
+        ({"life_s": math.inf}, math.inf),
+        ({"sigma_v": math.inf}, math.inf),
+        ({"sigma_v": 0.0, "bandwidth_hz": math.inf}, 0.0),
+        ({"bandwidth_hz": 0.0, "life_s": math.inf}, 0.0),
+    ],
+)
+def test_distance_at_the_ends_of_what_is_not_known(symbols: dict[str, float], limit: float) -> None:
+    # Limits of sigma sqrt(2 ln(nu0 T/N)), held at 0 below nu0 T = N; nothing times what has no end is nothing.
+    good = {"sigma_v": 1e-3, "bandwidth_hz": 1e6, "life_s": 1e8, "allowed_trips": 1.0}
+    assert false_trip_distance_v(**{**good, **symbols}) == limit

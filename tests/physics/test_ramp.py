@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import Any
 
 import pint
@@ -22,10 +23,19 @@ def test_a_supply_that_stands_still_has_no_slope() -> None:
 
 
 @pytest.mark.parametrize(
+    ("rise_v", "rise_s", "limit"),
+    [(1.8, 0.0, math.inf), (1.8, math.inf, 0.0), (math.inf, 1.0, math.inf), (0.0, 0.0, 0.0), (0.0, math.inf, 0.0)],
+)
+def test_at_the_ends_of_what_is_not_known(rise_v: float, rise_s: float, limit: float) -> None:
+    # Limits of V/t (IEEE 1788-2015, 10.5.3); nothing has no slope, in however short a time.
+    assert ramp_slope_v_per_s(rise_v=rise_v, rise_s=rise_s) == limit
+
+
+@pytest.mark.parametrize(
     ("symbol", "value", "message"),
     [
         ("rise_v", -1.8, "rise_v must be at least 0 (found -1.8)"),
-        ("rise_s", 0.0, "rise_s must be greater than 0 (found 0.0)"),
+        ("rise_s", -1.0, "rise_s must be at least 0 (found -1.0)"),
     ],
 )
 def test_refused(symbol: str, value: float, message: str) -> None:

@@ -30,7 +30,12 @@ def test_edge_is_about_2_2_time_constants() -> None:
 
 
 @pytest.mark.parametrize("symbol", ["r_ohm", "c_f"])
-@pytest.mark.parametrize("value", [0.0, -1.0, math.inf, math.nan])
-def test_what_is_not_above_zero_is_refused(symbol: str, value: float) -> None:
+@pytest.mark.parametrize("value", [-1.0, math.nan])
+def test_what_is_below_zero_is_refused(symbol: str, value: float) -> None:
     with pytest.raises(DomainError, match=symbol):
         rc_edge_s(**({"r_ohm": 1.0, "c_f": 1.0} | {symbol: value}))
+
+
+def test_what_is_not_known_stands_at_its_end() -> None:
+    assert rc_edge_s(r_ohm=math.inf, c_f=1.0) == rc_edge_s(r_ohm=1.0, c_f=math.inf) == math.inf
+    assert rc_edge_s(r_ohm=math.inf, c_f=0.0) == rc_edge_s(r_ohm=0.0, c_f=math.inf) == 0.0

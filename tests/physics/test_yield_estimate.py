@@ -9,12 +9,13 @@ import pytest
 from scipy import stats
 
 from tidegate.lint.physics.domain import DomainError
-from tidegate.lint.physics.placement import Level, Side
+from tidegate.lint.physics.part_draws import Level
 from tidegate.lint.physics.tolerance import RECTANGULAR_DIVISOR, Contributor, Kind
 from tidegate.lint.physics.yield_estimate import (
     Demand,
     DrawnDetector,
     FailureShare,
+    Side,
     YieldEstimate,
     normal_failure_ppm,
     yield_estimate,

@@ -177,6 +177,7 @@ GF_LIMITS = (
     ("vias", GF_COMP, (0.58, 0.28, 0.18), "mA", EM2),
 )
 GF_TABLE: tuple[tuple[str, str, str, float | Values, str, str], ...] = (
+    ("layers", GF_METALS, "width_bias", 0, "um", "54_Electro-migration1_150.csv: for each micrometre of drawn width"),
     *(
         (section, names, f"limits.{index}.dc", value, unit, source)
         for section, names, values, unit, source in GF_LIMITS

@@ -44,19 +44,20 @@ def supposed(name: str, folder: Path, *patches: Patch) -> Loaded:
     """A published description with suppositions laid over it: mappings are merged, ``None`` removes a key."""
     data = plain(name)
     for patch in patches:
-        data = _laid_over(data, patch)
+        data = laid_over(data, patch)
     file = folder / f"{name}.json"
     file.write_text(json.dumps(data), "utf-8")
     return load(file, shown=file.name)
 
 
-def _laid_over(data: Any, patch: Any) -> Any:
+def laid_over(data: Any, patch: Any) -> Any:
+    """Data with a patch laid over them: mappings are merged, ``None`` removes a key, a quantity is replaced."""
     if not isinstance(patch, Mapping):
         return patch
     is_quantity = isinstance(data, dict) and {"min", "typ", "max"} & data.keys()
     joined = dict(data) if isinstance(data, dict) and not is_quantity else {}
     for key, value in patch.items():
-        joined[key] = _laid_over(joined.get(key), value)
+        joined[key] = laid_over(joined.get(key), value)
     return {key: value for key, value in joined.items() if value is not None}
 
 

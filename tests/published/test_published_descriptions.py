@@ -7,15 +7,16 @@ facts, is the right answer.
 from __future__ import annotations
 
 from collections.abc import Iterator
-from typing import Any, Final
+from typing import Any, Final, get_args
 
 import pytest
 
 from tests.published.reading import HERE, NAMES, ROUNDING_V, as_published, judged, plain, published
+from tidegate.lint.description.model.description import CompleteSection
 from tidegate.lint.description.model.part import Part
 from tidegate.lint.judgement import Kind
 from tidegate.lint.quantity import Span
-from tidegate.rules import claims, own_range, passive_default, self_bias, trip_window
+from tidegate.rules import claims, hysteresis, own_range, passive_default, self_bias, trip_window
 from tidegate.rules.catalogue import FAMILIES
 
 # What holds for all of them
@@ -63,8 +64,13 @@ def test_what_is_said_to_be_missing_is_missing(name: str) -> None:
     for answer in open_ones:
         assert answer.missing, answer
         for fact in answer.missing:
-            assert given(data, fact) is None, f"{answer.rule} on {answer.subject}: {fact}"
+            # A list that is not said to be whole may lack a member.
+            perhaps_more = fact.rpartition(".")[2] in LISTS
+            assert given(data, fact) is None or perhaps_more, f"{answer.rule} on {answer.subject}: {fact}"
 
+
+LISTS: Final = frozenset(("errors", *get_args(CompleteSection)))
+"""What holds as many entries as are described, and perhaps others."""
 
 PASSES: Final = {
     "mspm0l1306_por_bor": {"por", "bor"},
@@ -79,8 +85,12 @@ PASSES: Final = {
 
 @pytest.mark.parametrize("name", NAMES)
 def test_a_part_that_works_is_not_failed_for_want_of_data(name: str) -> None:
-    """That there is some hysteresis is seen; nothing else can pass, and above all nothing fails."""
-    assert Kind.FAIL not in {answer.kind for answer in published(name).values()}
+    """That there is some hysteresis is seen; nothing else can pass, and above all nothing fails.
+
+    What the published levels of RP2350 leave no room for is told by trip_window/spread, under which this family is.
+    """
+    answers = judged(as_published(name), (hysteresis.RULES, trip_window.RULES))
+    assert Kind.FAIL not in {answer.kind for (rule, _), answer in answers.items() if rule.startswith("hysteresis/")}
     passed = {key for key, answer in published(name).items() if answer.kind is Kind.PASS}
     assert passed == {("hysteresis/present", subject) for subject in PASSES.get(name, set())}
 
@@ -122,16 +132,16 @@ def rail_facts(rail: str, *facts: str) -> set[str]:
             "stm32f031_por_pdr",
             "sense",
             "por_pdr",
-            {"hysteresis.amount.min", "hysteresis.amount.max", "hysteresis.feedback"},
+            {"hysteresis.amount.min", "hysteresis.feedback"},
         ),
         (
             "stm1403_supervisor",
             "sense",
             "reset_t",
-            {"hysteresis.amount.min", "hysteresis.amount.max", "hysteresis.feedback"},
+            {"hysteresis.amount.min", "hysteresis.feedback"},
         ),
         # Ranges that overlap, and no word whether the levels move together: neither sound nor swapped.
-        ("rp2350_core_supply", "sense", "bod", {"tracked", "hysteresis.feedback"}),
+        ("rp2350_core_supply", "sense", "bod", {"tracked", "hysteresis.feedback", "hysteresis.amount"}),
         # How the hysteresis is made is not published.
         ("mspm0l1306_por_bor", "sense", "por", {"hysteresis.feedback"}),
         ("mspm0l1306_por_bor", "switches_complementary", "por", {"hysteresis.made_by"}),
@@ -148,11 +158,15 @@ def test_what_the_document_does_not_say_of_the_supply_is_asked() -> None:
     name, subject = "mspm0l1306_por_bor", "por"
     disturbance = rail_facts("vdd", "ripple.peak_to_peak", "dip.depth", "load_step", "source_impedance")
     noise = {"comparators.por.noise.rms"}
-    assert missing(name, "hysteresis/covers_disturbance", subject) == disturbance | noise | {"conditions.coverage"}
-    life = {"conditions.service_life", "conditions.false_trips", "comparators.por.noise.bandwidth"}
-    assert missing(name, "hysteresis/false_trips", subject) == disturbance | noise | life
-    # It is not said what the detector guards, and so nothing bounds its hysteresis from below.
-    assert published(name)["hysteresis/fits_window", subject].kind is Kind.NOT_APPLICABLE
+    # At which level the dip is; and how much the other detector of the chip kicks a reference that both may take.
+    disturbance |= rail_facts("vdd", "dip.at") | {"neighbours"}
+    kicked = {f"comparators.por.{fact}" for fact in ("reference", "filter", "divider.ratio")}
+    kicked |= {"comparators.bor.kick", "references.bandgap.decoupling"}
+    assert missing(name, "hysteresis/covers_disturbance", subject) == disturbance | kicked | noise
+    life = {"conditions.service_life", "comparators.por.noise.bandwidth"}
+    assert missing(name, "hysteresis/false_trips", subject) == disturbance | kicked | noise | life
+    # It is not said what the detector guards, and so nothing is known to bound its hysteresis.
+    assert missing(name, "hysteresis/fits_window", subject) == {"resets"}
     asked = judged(as_published(name), (trip_window.RULES,))["trip_window/release", subject].missing
     assert set(asked) == rail_facts("vdd", "ripple.peak_to_peak", "delivered")
 
@@ -192,15 +206,16 @@ def measured(name: str, rule: str, subject: str) -> tuple[Kind, float, float]:
 @pytest.mark.parametrize(
     ("name", "rule", "subject", "expected"),
     [
-        # DocID025743, Table 20: falls at 1.80 V at the least, and the product behaves down to just that (footnote 2)
-        ("stm32f031_por_pdr", "trip_window/guarantee", "por_pdr", (Kind.PASS, 1.80, 1.80)),
+        # DocID025743, Table 20: falls at 1.80 V at the least, and the product behaves down to just that (footnote 2);
+        # how long the answer takes while the supply falls on is not published.
+        ("stm32f031_por_pdr", "trip_window/guarantee", "por_pdr", (Kind.OPEN, 1.80, 1.80)),
         # SLASEX0D, 7.6.1: POR+ up to 1.51 V, BOR0+ from 1.55 V ("always higher than the POR threshold", says SLAU847D)
         ("mspm0l1306_por_bor", "trip_window/order", "vdd", (Kind.PASS, 1.51, 1.55)),
         # sky130_ajc_ip__brownout: the pin table begins at 3.0 V, the level of code 100 lies down to 2.60509 V
         ("sky130_brownout", "self_bias/works_at_own_trip", "out", (Kind.FAIL, 2.60509, 3.0)),
         # The typical levels lie as far apart as the typical hysteresis says, within the last digit that is printed.
-        ("stm32f031_por_pdr", "claims/hysteresis", "por_pdr", (Kind.PASS, 0.030, 0.040)),
-        ("stm1403_supervisor", "claims/hysteresis", "reset_t", (Kind.PASS, 0.011, 0.010)),
+        ("stm32f031_por_pdr", "claims/hysteresis", "por_pdr", (Kind.PASS, 0.050, 0.040)),
+        ("stm1403_supervisor", "claims/hysteresis", "reset_t", (Kind.PASS, 0.009, 0.010)),
     ],
 )
 def test_published_numbers_decide(name: str, rule: str, subject: str, expected: tuple[Kind, float, float]) -> None:

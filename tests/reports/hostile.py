@@ -105,8 +105,10 @@ def _waiver(rule: str, element: str, text: str) -> dict[str, str]:
 # A pack that says a text wherever a pack can say something.
 _PACK: Final = """
 import json
+from tidegate.lint.account import less, plus
 from tidegate.lint.graph.edge import Hop
 from tidegate.lint.judgement import Level
+from tidegate.lint.quantity import Dimension
 from tidegate.lint.rule import Example, rule
 
 TEXT = json.loads(JSON)
@@ -152,6 +154,22 @@ def cannot_tell(rail, case):
     return case.open([], TEXT)
 
 
+@about("adds_up")
+def adds_up(rail, case):
+    have = case.sum(plus(TEXT, lambda: 0.5, of=TEXT), less(TEXT, lambda: 0.1, of=TEXT))
+    need = case.sum(plus(TEXT, lambda: 0.7, of=TEXT), plus(TEXT, lambda: 0.1))
+    return case.at_least(
+        need=need, have=have, dimension=Dimension.VOLTAGE, says=TEXT, why=TEXT, mend=TEXT, path=(Hop(TEXT, TEXT),)
+    )
+
+
+@about("adds_up_so_far")
+def adds_up_so_far(rail, case):
+    ripple = case.of(rail).dip.depth
+    have = case.sum(plus(TEXT, lambda: 0.5, of=TEXT), less(TEXT, ripple.most, of=TEXT, floor=0.0))
+    return case.at_least(need=0.2, have=have, dimension=Dimension.VOLTAGE, says=TEXT, why=TEXT, mend=TEXT)
+
+
 @about("does_not_apply")
 def does_not_apply(rail, case):
     return case.not_applicable(TEXT)
@@ -162,7 +180,7 @@ def raises(rail, case):
     raise Raised(TEXT)
 
 
-RULES = (fails, asks, passes, waits, cannot_tell, does_not_apply, raises)
+RULES = (fails, asks, passes, waits, adds_up, adds_up_so_far, cannot_tell, does_not_apply, raises)
 """
 
 

@@ -4,11 +4,12 @@ from __future__ import annotations
 
 import pytest
 
-from tests.rules.sound import patched, without
+from tests.rules.sound import both, patched, without
 from tidegate.lint.graph.dependency import build
+from tidegate.lint.physics.trip_window import Window
 from tidegate.lint.reports.ladder import Ladder, ladder_lines, ladders
 
-CLEAN = "reference: null, divider: null, offset: null, all: {amount: 10 mV, is: bound, at: rail}"
+CLEAN = "reference: null, divider: null, offset: null, all: {of: total, amount: 10 mV, is: bound, at: rail}"
 PATCH = (
     f"comparators: {{uv: {{trip: {{falling: 1.63 V, rising: 1.68 V}}, errors: {{{CLEAN}}}}}, "
     f"ov: {{trip: {{falling: 1.91 V, rising: 1.96 V}}, errors: {{{CLEAN}}}}}, "
@@ -91,15 +92,33 @@ def test_a_narrow_terminal_gets_a_list() -> None:
 
 def test_what_is_not_known_is_said_in_one_line() -> None:
     *_, last = ladder_lines(ladder_of(without("rails.avdd.damage")), width=80)
-    assert last == "  not drawn, not given: rails.avdd.damage"
-    *_, last = ladder_lines(ladder_of(without("comparators.uv.errors")), width=80)
-    assert last == "  not drawn, not given: comparators.uv.errors"
+    assert last == "  not given: rails.avdd.damage"
     gone = without(
         *(f"comparators.{name}.trip" for name in ("uv", "ov", "por")),
         *(f"rails.avdd.{fact}" for fact in ("damage", "guaranteed")),
     )
     (line,) = ladder_lines(ladder_of(gone), width=80)
-    assert line.startswith("avdd: no ladder, not given: comparators.por.trip.rising and ")
+    assert line.startswith("avdd: no ladder, not given: comparators.por.trip.")
+
+
+def test_a_level_is_drawn_as_far_as_it_is_told() -> None:
+    """Without its errors a nominal level reaches at least to its nominal; a typical one says no more."""
+    patch = both(PATCH, without("comparators.uv.errors"))
+    rungs = {rung.name: rung for rung in ladder_of(patch).rungs}
+    falling = rungs["uv falling"]
+    assert (falling.window.least_v, falling.window.most_v, falling.open) == (1.63, 1.63, True)
+    assert falling.slack_v == pytest.approx(0.03)
+    *lines, last = ladder_lines(ladder_of(patch), width=90)
+    assert last == "  not given: comparators.uv.errors"
+    shown = next(line for line in lines if "uv falling" in line)
+    assert "1.63 V or beyond" in shown and shown.endswith("+30 mV at most to sign-off")
+    about = ladder_of(
+        both(PATCH, "comparators: {uv: {hysteresis: null, trip: {falling: {typ: 1.63 V}, rising: {min: 1.66 V}}}}")
+    )
+    rungs = {rung.name: rung for rung in about.rungs}
+    window = rungs["uv falling"].window  # a typical level is a nominal one
+    assert (window.least_v, window.most_v) == (pytest.approx(1.62), pytest.approx(1.64))
+    assert (rungs["uv rising"].window.least_v, rungs["uv rising"].open) == (1.66, True)
 
 
 def test_a_rail_that_no_detector_watches_has_no_ladder() -> None:
@@ -108,7 +127,6 @@ def test_a_rail_that_no_detector_watches_has_no_ladder() -> None:
 
 
 def test_long_names_are_shortened() -> None:
-    from tidegate.lint.physics.trip_window import Window
     from tidegate.lint.reports.ladder import Rung
 
     rungs = (Rung("a_name_that_goes_on_and_on rising", Window(1.0, 1.1)), Rung("service", Window(0.5, 0.6)))
@@ -117,7 +135,6 @@ def test_long_names_are_shortened() -> None:
 
 
 def test_all_levels_alike_can_be_drawn() -> None:
-    from tidegate.lint.physics.trip_window import Window
     from tidegate.lint.reports.ladder import Rung
 
     rungs = (Rung("uv rising", Window(1.0, 1.0)), Rung("uv falling", Window(1.0, 1.0)))

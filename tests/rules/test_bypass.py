@@ -41,12 +41,12 @@ def test_sound_example_keeps_every_rule_but_for_one_agreed_caution() -> None:
     assert judgements[CAUTION, "skip_resets"].waiver
 
 
-# What each example changes; where another rule of the family would say the same again, it says so instead.
+# What each example changes.
 FAULTS: Final = {
     PRESENT: {(PRESENT, "uv_core"): FAIL},
-    INDEPENDENT: {(INDEPENDENT, "skip_core"): FAIL, (UP, "skip_core"): NONE},
+    INDEPENDENT: {(INDEPENDENT, "skip_core"): FAIL},
     UP: {(UP, "skip_core"): FAIL},
-    INACTIVE: {(INACTIVE, "skip_core"): FAIL, (HELD, "skip_core"): NONE},
+    INACTIVE: {(INACTIVE, "skip_core"): FAIL},
     HELD: {(HELD, "skip_core"): FAIL},
     LOCKED: {(LOCKED, "skip_core"): FAIL},
     READABLE: {(READABLE, "skip_core"): FAIL},
@@ -121,6 +121,47 @@ def test_an_override_that_asserts_takes_nothing_out() -> None:
     assert judgement.why == "skip_core can only force the reset, not lift it"
 
 
+def test_present_asks_once_for_overrides_of_which_nothing_is_said() -> None:
+    """A section that is left out is one question of the subsystem, and no failure of each detector."""
+    left_out = "{bypasses: null, waivers: null, complete: [comparators, resets, output_stages]}"
+    asked = {key: said for key, said in judged(left_out, RULES).items() if said.kind is OPEN}
+    assert set(asked) == {(PRESENT, detector) for detector in ("por", "uv", "ov", "uv_core")}
+    assert {said.missing for said in asked.values()} == {("bypasses",)}
+    assert asked[PRESENT, "uv_core"].message == (
+        "nothing is said of an override that takes it out of the way to core_rst_n"
+    )
+    none = judged("{bypasses: none, waivers: null, complete: [comparators]}", RULES)
+    assert {key for key, said in none.items() if said.kind is FAIL} == set(asked)
+
+
+def test_a_detector_beside_others_that_are_overridden_is_asked_about() -> None:
+    """skip_resets is described, and nobody says that there is no other override."""
+    said = one("{bypasses: {skip_core: null}, complete: [comparators]}", PRESENT, "uv_core")
+    assert (said.kind, said.missing) == (OPEN, ("bypasses",))
+    assert one("{bypasses: {skip_core: null}, complete: [comparators]}", PRESENT, "uv").kind is PASS
+    # What is described, and might lift it, is asked for first.
+    unsaid = "{bypasses: {skip_core: {forces: null}}, complete: [comparators]}"
+    assert one(unsaid, PRESENT, "uv_core").missing == ("bypasses.skip_core.forces",)
+
+
+def test_a_way_that_may_lead_past_an_override_is_asked_for() -> None:
+    """The net may be driven by uv_core beside core_out; what leads to uv_core is not driven by it."""
+    past = both(skip_core(overrides="core_out"), "resets: {spare_n: {active: low, guards: [adc]}}")
+    assert one(past, PRESENT, "uv_core").missing == ("resets.spare_n.driven_by",)
+    before = both(without("output_stages.uv_out.driven_by"))
+    assert one(before, PRESENT, "uv_core").missing == ("output_stages.uv_out.driven_by",)
+    assert one(before, CAUTION, "skip_core").kind is PASS  # nothing lies behind uv_core
+
+
+def test_detectors_without_any_net_described_wait_for_the_nets() -> None:
+    alone = "{resets: null, loads: null, domains: {analog: {switched_by: null, kind: always_on}}, waivers: null, "
+    alone += "rails: {vcore: {made_by: null}}, neighbours: null, bypasses: {skip_core: {reset_by: null}}, "
+    said = one(alone + "modes: null, complete: [bypasses]}", PRESENT, "uv_core")
+    assert (said.kind, said.missing) == (OPEN, ("resets",))
+    none = one(alone + "modes: null, complete: [bypasses, resets]}", PRESENT, "uv_core")
+    assert (none.kind, none.message) == (NONE, "it drives no reset net")
+
+
 def test_present_is_open_on_what_might_be_an_override() -> None:
     assert one(without("bypasses.skip_core.forces"), PRESENT, "uv_core").missing == ("bypasses.skip_core.forces",)
     assert one(without("bypasses.skip_core.overrides"), PRESENT, "uv_core").missing == ("bypasses.skip_core.overrides",)
@@ -144,9 +185,15 @@ def test_an_override_that_is_active_by_default() -> None:
     assert judgement.message == "active when nobody sets it: what it overrides is out of force in every chip"
     assert judgement.mend == "make inactive the default"
     assert judgement.at == "bypasses.skip_core.default"
-    assert one(skip_core(default="active"), HELD, "skip_core").message == (
-        "its default is active, which needs no hold (bypass/default_inactive says so)"
-    )
+
+
+def test_a_default_that_is_active_and_floats_is_one_finding() -> None:
+    """That nothing holds it is told under what it rests at, with its own words."""
+    assert one(skip_core(default="active"), HELD, "skip_core").kind is PASS
+    floats = one(skip_core(default="active", hold="none"), HELD, "skip_core")
+    assert (floats.kind, floats.under) == (NONE, INACTIVE)
+    assert floats.message.startswith("nothing holds its default: a pin that nobody drives floats")
+    assert one(skip_core(default=None, hold="none"), HELD, "skip_core").kind is FAIL
 
 
 @pytest.mark.parametrize("control", ["pin", "test_port"])

@@ -7,7 +7,7 @@ from typing import Any, Final
 
 import pytest
 
-from tests.rules.sound import changed, judged, without
+from tests.rules.sound import both, changed, judged, without
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind
 from tidegate.rules.bypass import RULES
@@ -97,9 +97,10 @@ def test_a_control_on_a_rail_that_waits_for_what_it_overrides() -> None:
         "driven by gather overridden by skip_resets"
     )
     assert changed(patch, RULES) == {(INDEPENDENT, "skip_resets"): FAIL, (UP, "skip_resets"): NONE}
-    assert one(patch, UP, "skip_resets").message == (
-        "its control hangs on what it overrides (bypass/independent says so)"
-    )
+    under = one(patch, UP, "skip_resets")
+    assert (under.under, under.message) == (
+        INDEPENDENT, "its control lives on vcore, which waits for por_n (bypass/independent says so)",
+    )  # fmt: skip
 
 
 def test_an_override_that_leans_on_a_load_behind_it() -> None:
@@ -121,6 +122,21 @@ def test_an_override_that_leans_on_a_load_behind_it() -> None:
 )
 def test_independent_is_open(fact: str) -> None:
     assert one(without(fact), INDEPENDENT, "skip_core").missing == (fact,)
+
+
+def test_independent_is_open_on_what_might_guard_the_control() -> None:
+    """A net that waits for uv_core and does not say what it guards may hold the domain of the control."""
+    patch = both(guarded("register"), without("resets.core_rst_n.guards"))
+    assert one(patch, INDEPENDENT, "skip_core").missing == ("resets.core_rst_n.guards",)
+    other = both(guarded("register"), "resets: {core_rst_n: {guards: [adc]}, por_n: {guards: null}}")
+    assert one(other, INDEPENDENT, "skip_core").kind is PASS  # por_n does not wait for uv_core
+    unsaid = both(guarded("pin"), "resets: {core_rst_n: {guards: [adc]}, spare_n: {guards: [control]}}")
+    assert one(unsaid, INDEPENDENT, "skip_core").missing == ("resets.spare_n.driven_by",)
+
+
+def test_control_in_a_switched_domain_fails_whatever_it_overrides() -> None:
+    patch = both(skip_core(domain="analog"), without("bypasses.skip_core.overrides"))
+    assert one(patch, UP, "skip_core").kind is FAIL
 
 
 def test_a_register_that_nothing_is_said_to_clear_is_open() -> None:

@@ -10,6 +10,7 @@ import pytest
 from tests.rules.sound import both, changed, judged, of_kind, without
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules import trip_window
 from tidegate.rules.modes import RULES
 
 FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
@@ -47,6 +48,10 @@ def test_each_example_fails_in_one_place_and_holds(rule: Any) -> None:
 # modes/live_detector
 
 
+NO_POR: Final = "output_stages: {gather: {driven_by: [uv_out, ov_latch]}}"
+"""No other detector of avdd that could stand in for uv."""
+
+
 @pytest.mark.parametrize(
     ("facts", "why"),
     [
@@ -58,41 +63,81 @@ def test_each_example_fails_in_one_place_and_holds(rule: Any) -> None:
     ],
 )
 def test_detector_that_does_not_watch_in_a_mode(facts: str, why: str) -> None:
-    said = one(mode(facts), LIVE, "core_regulator")
+    said = one(both(NO_POR, mode(facts)), LIVE, "core_regulator")
     assert said.kind is FAIL
     assert said.message == f"in nap it is not off, and no detector of avdd watches over it: {why}"
     assert said.mend == "keep a detector of avdd awake in nap, or name core_regulator among what is off"
 
 
+@pytest.mark.parametrize(
+    ("facts", "why"),
+    [
+        ("off: [uv]", "uv is off"),
+        ("masked: [uv]", "uv is masked"),
+        ("off: [ref_fast]", "uv leans on ref_fast, which is off"),
+    ],
+)
+def test_a_live_detector_counts_by_its_level(facts: str, why: str) -> None:
+    """por is live, and falls at 1.11 V: the load needs 1.6 V."""
+    said = one(mode(facts), LIVE, "core_regulator")
+    assert said.kind is FAIL
+    assert said.message == "in nap por stands in for uv, and falls at the lowest at 1.11 V, at least 1.6 V needed"
+    assert said.why == f"{why}; core_regulator works from 1.6 V of avdd"
+    assert said.mend == "keep uv awake in nap, or name core_regulator among what is off"
+
+
 def test_way_to_what_is_off_is_shown() -> None:
-    said = one(mode("off: [ref_fast]"), LIVE, "core_regulator")
-    assert path_text(said.path) == "uv takes its reference from ref_fast"
+    for patch in (mode("off: [ref_fast]"), both(NO_POR, mode("off: [ref_fast]"))):
+        assert path_text(one(patch, LIVE, "core_regulator").path) == "uv takes its reference from ref_fast"
+
+
+def twin(level: str) -> str:
+    """A second under-voltage detector of avdd, on a reference of its own."""
+    return f"""
+    references: {{ref_twin: {{kind: band_gap, domain: aon, self_biased: false, bias: bias_start}}}}
+    comparators: {{uv_twin: {{role: under_voltage, watches: avdd, domain: aon, bias: bias_start, reference: ref_twin,
+      trip: {{falling: {level}}}}}}}
+    output_stages: {{gather: {{driven_by: [por_out, uv_out, ov_latch, uv_twin]}}}}
+    """
+
+
+TWIN: Final = twin("{min: 1.62 V, max: 1.64 V}")
 
 
 def test_without_a_way_to_what_is_off_the_rail_is_shown() -> None:
     """What is masked or off itself leans on nothing that is off; of two detectors the first that does shows its way."""
     for facts in ("off: [uv]", "masked: [uv]", "off: [gather]"):
         assert path_text(one(mode(facts), LIVE, "core_regulator").path) == "core_regulator supplied by avdd"
-    twin = """
-    references: {ref_twin: {kind: band_gap, domain: aon, self_biased: false, bias: bias_start}}
-    comparators: {uv_twin: {role: under_voltage, watches: avdd, domain: aon, bias: bias_start, reference: ref_twin}}
-    output_stages: {gather: {driven_by: [por_out, uv_out, ov_latch, uv_twin]}}
-    """
-    said = one(both(twin, mode("off: [uv_twin, ref_fast]")), LIVE, "core_regulator")
-    assert said.message.endswith("uv_twin is off; uv leans on ref_fast, which is off")
+    said = one(both(TWIN, mode("off: [uv_twin, ref_fast]")), LIVE, "core_regulator")
+    assert said.why.startswith("uv leans on ref_fast, which is off; uv_twin is off")
     assert path_text(said.path) == "uv takes its reference from ref_fast"
-    said = one(both(twin, mode("off: [ref_twin, ref_fast]")), LIVE, "core_regulator")
-    assert said.message.endswith("uv_twin leans on ref_twin, which is off; uv leans on ref_fast, which is off")
+    said = one(both(TWIN, mode("off: [ref_twin, ref_fast]")), LIVE, "core_regulator")
+    assert said.why.startswith("uv leans on ref_fast, which is off; uv_twin leans on ref_twin, which is off")
+    assert path_text(said.path) == "uv takes its reference from ref_fast"
+    said = one(both(TWIN, mode("off: [uv, ref_twin]")), LIVE, "core_regulator")
     assert path_text(said.path) == "uv_twin takes its reference from ref_twin"
 
 
 def test_load_that_nothing_resets_or_no_detector_of_its_rails() -> None:
     said = one("resets: {core_rst_n: {guards: [adc]}}", LIVE, "core_logic")
-    assert (said.kind, said.message) == (NONE, "no reset net guards it (reach/has_reset says so)")
+    assert (said.kind, said.message) == (NONE, "no reset net guards it")
     said = one("output_stages: {core_out: {driven_by: [gather]}}", LIVE, "core_logic")
-    assert (said.kind, said.message) == (
-        NONE, "no detector of its rails resets it (reach/every_rail and coverage say so)",
-    )  # fmt: skip
+    assert (said.kind, said.message) == (NONE, "no detector of its rails resets it")
+
+
+@pytest.mark.parametrize(
+    ("patch", "missing"),
+    [
+        (without("resets.core_rst_n.guards"), "resets.core_rst_n.guards"),
+        ("output_stages: {core_out: {driven_by: null}}", "output_stages.core_out.driven_by"),
+        ("{resets: null, domains: {analog: {kind: always_on, switched_by: null}}, complete: [loads]}", "resets"),
+        ("{modes: null, complete: [loads]}", "modes"),
+        ("loads: {core_logic: {needs: null}}", "loads.core_logic.needs"),
+    ],
+)
+def test_what_is_not_described_is_a_question(patch: str, missing: str) -> None:
+    said = one(patch, LIVE, "core_logic")
+    assert (said.kind, missing in said.missing) == (OPEN, True)
 
 
 def test_power_on_detector_does_not_stand_in_for_the_under_voltage_detector() -> None:
@@ -108,14 +153,65 @@ def test_load_that_is_off_needs_no_detector(off: str) -> None:
 
 
 def test_one_of_two_detectors_is_enough() -> None:
-    twin = """
-    comparators: {uv_twin: {role: under_voltage, watches: avdd, domain: aon, bias: bias_start, reference: ref_fast}}
-    output_stages: {gather: {driven_by: [por_out, uv_out, ov_latch, uv_twin]}}
-    """
-    assert one(both(twin, mode("off: [uv]")), LIVE, "core_regulator").kind is PASS
-    assert one(both(twin, mode("off: [uv, uv_twin]")), LIVE, "core_regulator").message.endswith(
-        "uv_twin is off; uv is off"
+    said = one(both(TWIN, mode("off: [uv]")), LIVE, "core_regulator")
+    assert (said.kind, said.message) == (
+        PASS, "in nap uv_twin stands in for uv, and falls at the lowest at 1.62 V, at least 1.6 V needed",
+    )  # fmt: skip
+    assert one(both(TWIN, mode("off: [uv, uv_twin]")), LIVE, "core_regulator").why.startswith(
+        "uv is off; uv_twin is off"
     )
+
+
+@pytest.mark.parametrize(
+    ("level", "kind"),
+    [
+        ("{min: 1.5999 V, max: 1.64 V}", FAIL), ("{min: 1.6 V, max: 1.64 V}", PASS), ("{min: 1.3 V, max: 1.4 V}", FAIL),
+        # Nothing, or too little, is known of its level, and enough that it is too low.
+        ("{max: 1.64 V}", OPEN), ("{typ: 1.62 V}", OPEN), ("{min: 1.3 V, max: 1.64 V}", FAIL), ("{max: 1.59 V}", FAIL),
+    ],
+)  # fmt: skip
+def test_the_level_of_what_stands_in_at_its_limit(level: str, kind: Kind) -> None:
+    patch = both(twin(level), "comparators: {uv_twin: {hysteresis: none}}", mode("off: [uv]"))
+    assert one(patch, LIVE, "core_regulator").kind is kind
+
+
+def test_what_is_missing_of_what_the_load_needs() -> None:
+    gone = without("loads.core_regulator.needs.0.works")
+    said = one(both(TWIN, mode("off: [uv]"), gone), LIVE, "core_regulator")
+    assert (said.kind, said.missing) == (OPEN, ("loads.core_regulator.needs.0.works",))
+
+
+def test_whatever_the_level_of_what_is_not_live_the_load_is_not_guarded() -> None:
+    unknown = both(mode("off: [uv]"), without("comparators.uv.trip", "comparators.uv.hysteresis"))
+    said = one(unknown, LIVE, "core_regulator")
+    assert (said.kind, said.missing) == (FAIL, ())
+
+
+def test_a_detector_falls_no_higher_than_it_rises() -> None:
+    """Nothing is said of its falling level; it rises at 1.5 V."""
+    rising = twin("null").replace("{falling: null}", "{rising: {min: 1.5 V, max: 1.8 V}}")
+    said = one(both(rising, mode("off: [uv]")), LIVE, "core_regulator")
+    assert said.kind is FAIL
+    assert said.measure is not None
+    # At the worst it falls at nothing, and por stands in at 1.11 V.
+    assert (said.measure.sure_margin, said.measure.best_margin) == pytest.approx((1.11 - 1.6, 1.5 - 1.6))
+    high = rising.replace("1.5 V", "1.6 V")
+    assert one(both(high, mode("off: [uv]")), LIVE, "core_regulator").kind is OPEN
+
+
+def test_where_no_detector_protects_the_load_at_all_that_is_told() -> None:
+    """Neither protects the load, in service as in the mode: trip_window/guarantee tells that."""
+    low = both(twin("{min: 1.5 V, max: 1.52 V}"), "comparators: {uv: {trip: {falling: {min: 1.5 V, max: 1.52 V}}}}")
+    said = judged(both(low, mode("off: [uv]")), (*RULES, *trip_window.RULES))[LIVE, "core_regulator"]
+    assert (said.kind, said.under.partition("/")[0]) == (NONE, "trip_window")
+    assert said.measure is not None
+    assert said.measure.margin == pytest.approx(-0.1)
+
+
+def test_a_load_that_may_be_off_with_a_domain_it_does_not_name() -> None:
+    gone = both(mode("off: [analog], masked: [uv]"), "loads: {adc: {domain: null}}", NO_POR)
+    said = one(gone, LIVE, "adc")
+    assert (said.kind, said.missing) == (OPEN, ("loads.adc.domain",))
 
 
 @pytest.mark.parametrize("fact", ["comparators.uv.bias", "comparators.uv.reference", "comparators.uv.domain"])
@@ -258,16 +354,16 @@ def test_sampling_of_a_rail_that_never_moves() -> None:
     )  # fmt: skip
 
 
-@pytest.mark.parametrize(("least", "kind"), [("1.6 V", PASS), ("1.6001 V", NONE)])
-def test_level_that_does_not_protect_at_all_is_judged_elsewhere(least: str, kind: Kind) -> None:
+@pytest.mark.parametrize(("least", "kind"), [("1.6 V", PASS), ("1.6001 V", FAIL)])
+def test_level_that_does_not_protect_at_all_is_sampled_too_seldom(least: str, kind: Kind) -> None:
     """The lowest falling level is 1.6 V: a detector that a rail at rest lets sample as seldom as it will."""
     levels = "trip: {rising: {min: 1.65 V, max: 1.7 V}, falling: {min: 1.6 V, max: 1.64 V}}"
     loads = ", ".join(f"{name}: {{needs: {{0: {{works: {{min: {least}}}}}}}}}" for name in ("adc", "core_regulator"))
     patch = f"{{comparators: {{uv: {{{levels}}}}}, loads: {{{loads}}}, rails: {{avdd: {{collapse: 0 V/s}}}}}}"
     said = one(both(sampled("4 us"), patch), SAMPLING, "uv")
     assert said.kind is kind
-    if kind is NONE:
-        assert said.message == "its level does not protect its loads at all (trip_window/guarantee says so)"
+    if kind is FAIL:
+        assert said.mend == "a level further from what the loads need"
 
 
 def test_sampled_detector_that_guards_no_load_of_its_rail() -> None:

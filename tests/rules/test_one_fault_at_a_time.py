@@ -46,11 +46,7 @@ ALONE: Final = {
     "self_bias/leans_on_nobody": "por",
     "self_bias/reference_starts": "ref_fast",
     "self_bias/bias_starts": "bias_start",
-    "self_bias/rail_loop_starts": "vcore",
-    "self_bias/reference_loop_starts": "ref_main",
-    "self_bias/bias_loop_starts": "bias_main",
-    "self_bias/stage_loop_starts": "por_out",
-    "self_bias/load_loop_starts": "core_logic",
+    "self_bias/loop_starts": "core_regulator",
     "start_up/release_after_ready": "core_regulator",
     "start_up/asserts_in_time": "core_regulator",
     "start_up/rail_order": "vcore",
@@ -64,17 +60,9 @@ ALONE: Final = {
     "reach/synchronised": "core_logic",
     "coverage/over_voltage": "vcore",
     "coverage/guards_something": "spare_n",
-    "coverage/rail_used": "vspare",
-    "coverage/domain_used": "spare",
-    "coverage/reference_used": "spare",
-    "coverage/bias_used": "spare",
-    "coverage/detector_used": "spare",
-    "coverage/stage_used": "spare",
+    "coverage/used": "spare",
     "crossing/stage_shifted": "core_out",
     "crossing/reset_net_shifted": "core_rst_n",
-    "crossing/reference_stays_on": "ref_main",
-    "crossing/bias_stays_on": "bias_copy",
-    "crossing/output_stage_stays_on": "core_out",
     "coupling/supply_step": "uv",
     "bypass/present": "uv_core",
     "bypass/independent": "skip_core",
@@ -90,8 +78,7 @@ ALONE: Final = {
     "electromigration/vias": "por_out",
     "budget/within": "aon",
     "budget/bias_above_leakage": "bias_start",
-    "budget/detector_timing_above_leakage": "uv",
-    "budget/stage_timing_above_leakage": "core_out",
+    "budget/timing_above_leakage": "uv",
     "claims/hysteresis": "uv",
     "claims/divider_ratio": "uv",
     "claims/level_from_reference": "uv",
@@ -100,15 +87,7 @@ ALONE: Final = {
     "claims/reference_current": "ref_fast",
     "claims/bias_current": "bias_main",
     "claims/bias_consumption": "bias_start",
-    "evidence/rails": "avdd",
-    "evidence/references": "ref_fast",
-    "evidence/biases": "bias_start",
-    "evidence/comparators": "uv",
-    "evidence/output_stages": "gather",
-    "evidence/resets": "por_n",
-    "evidence/loads": "adc",
-    "evidence/bypasses": "skip_core",
-    "evidence/neighbours": "core_return",
+    "evidence/covers": "uv",
     "description/rails": "vcore",
     "description/loads": "core_logic",
     "description/references": "ref_fast",
@@ -131,19 +110,16 @@ MORE: Final[dict[str, set[str]]] = {
     "passive_default/held": {"passive_default/held por_n", "start_up/no_unknown_interval por_n"},
     # How long the net is at no level, and in which start-up.
     "passive_default/chain_alive": {"passive_default/chain_alive gather", "start_up/no_unknown_interval core_rst_n"},
-    # The same source feeds the detector that takes over, at a level of its own; and for how long nobody decides.
-    "self_bias/up_in_time": {
-        "self_bias/up_in_time por",
-        "trip_window/crossover_tracks por",
-        "start_up/no_unknown_interval por_n",
-    },
+    # The same source feeds the detector that takes over, at a level of its own.
+    "self_bias/up_in_time": {"self_bias/up_in_time por", "trip_window/crossover_tracks por"},
     # Both nets hang on the detector; and the load that is released first has a time of its own.
     "start_up/no_unknown_interval": {
         "start_up/no_unknown_interval por_n",
         "start_up/no_unknown_interval core_rst_n",
         "start_up/release_after_ready core_regulator",
     },
-    # A pulse, whatever the dips are; the margin of the other load is that of its net; a start-up with a pulse in it.
+    # A pulse, whatever the dips are; a missed dip, under which the late way down is told; the margin of the other load
+    # is that of its net; a start-up with a pulse in it.
     "start_up/dip_is_caught": {
         "start_up/dip_is_caught core_regulator",
         "rearming/level_held uv",
@@ -181,7 +157,7 @@ MORE: Final[dict[str, set[str]]] = {
         "start_up/release_after_ready core_regulator",
         "start_up/dip_is_caught core_regulator",
         "start_up/release_after_ready adc",
-        "start_up/asserts_in_time adc",
+        "start_up/dip_is_caught adc",
     },
     # What one driver that does not assert does to the net and the load.
     "reach/reset_net_combined_safely": {
@@ -200,7 +176,7 @@ MORE: Final[dict[str, set[str]]] = {
     # How long the net is at no level.
     "crossing/input_held": {"crossing/input_held onward", "start_up/no_unknown_interval core_rst_n"},
     # How long the net is at no level.
-    "crossing/detector_stays_on": {"crossing/detector_stays_on uv_core", "start_up/no_unknown_interval core_rst_n"},
+    "crossing/stays_on": {"crossing/stays_on uv_core", "start_up/no_unknown_interval core_rst_n"},
     # Alone it is too much for one; with ripple, droop and noise it is too much for both.
     "coupling/bump": {
         "coupling/bump uv_beside_ov",
@@ -235,7 +211,7 @@ MORE: Final[dict[str, set[str]]] = {
     },
     # Each link is a finding of its own, and each victim has a margin of its own.
     "coupling/ring": {
-        "coupling/ring uv",
+        "coupling/ring ov",
         "hysteresis/covers_disturbance uv",
         "hysteresis/covers_disturbance ov",
         "coupling/bump uv_beside_ov",

@@ -6,6 +6,7 @@ import pytest
 
 from tests.rules.sound import both, changed, judged, of_kind, without
 from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules import self_bias
 from tidegate.rules.own_range import RULES
 
 FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
@@ -45,7 +46,7 @@ def test_example_is_one_fault(rule: object, of: str, also: dict[tuple[str, str],
 @pytest.mark.parametrize(
     ("fact", "limit", "beyond", "kind"),
     [
-        ("works_from", "{max: 1.1 V}", "{max: 1.1001 V}", NONE),  # self_bias/works_at_own_trip says so
+        ("works_from", "{max: 1.1 V}", "{max: 1.1001 V}", FAIL),
         ("works_to", "{min: 1.5 V}", "{min: 1.4999 V}", FAIL),
     ],
 )
@@ -59,7 +60,7 @@ def test_limit_belongs_to_the_good_side(fact: str, limit: str, beyond: str, kind
 
 def test_words() -> None:
     answer = said("levels_inside", "comparators: {por: {works_from: {max: 1.2 V}}}")
-    assert answer.message == "its falling level lies below its own range (self_bias/works_at_own_trip says so)"
+    assert answer.message == "its lowest level 1.1 V, at least 1.2 V needed"
     swapped = "comparators: {por: {trip: {rising: {min: 1.1 V, max: 1.4 V}, falling: {min: 1.2 V, max: 1.5 V}}}}"
     answer = said("levels_inside", swapped, "comparators: {por: {works_from: {max: 1.2 V}}}")
     assert answer.message == "its lowest level 1.1 V, at least 1.2 V needed"
@@ -115,8 +116,7 @@ def test_every_code_counts() -> None:
           low: {rising: {min: 0.95 V, max: 1.1 V}, falling: {min: 0.9 V, max: 1 V}}
           high: {rising: {min: 2.7 V, max: 2.8 V}, falling: {min: 2.6 V, max: 2.7 V}}
     """
-    answer = said("levels_inside", patch)
-    assert answer.message == "its falling level lies below its own range (self_bias/works_at_own_trip says so)"
+    assert said("levels_inside", patch).message == "its lowest level 900 mV, at least 950 mV needed"
     answer = said("levels_inside", patch, "comparators: {por: {works_from: {max: 0.85 V}}}")
     assert (answer.kind, answer.message) == (FAIL, "its highest level 2.8 V, at most 2.75 V needed")
     assert answer.why == "works from 850 mV to 2.75 V; levels 900 mV to 2.8 V, over 2 codes"
@@ -148,7 +148,7 @@ def test_survives_at_its_limit(damage: str, works_to: str, kind: Kind) -> None:
 def test_words_of_survival() -> None:
     answer = said("survives", "rails: {avdd: {damage: 1.95 V}}", of="ov")
     assert answer.message == "until the answer avdd reaches 1.974 V, at most 1.95 V needed"
-    assert answer.why == "rising level up to 1.97 V, 3.5 mV more in 3.5 us; avdd damages above 1.95 V"
+    assert answer.why == "rising level up to 1.97 V, 3.5 mV more until the answer; avdd damages above 1.95 V"
     assert answer.mend == "a level 23.5 mV lower, or a faster answer"
 
 
@@ -156,15 +156,29 @@ def test_a_level_above_the_own_range_is_said_once() -> None:
     patch = "comparators: {ov: {works_to: 1.96 V}}"
     assert said("levels_inside", patch, of="ov").kind is FAIL
     answer = said("survives", patch, of="ov")
-    assert (answer.kind, answer.message) == (
-        NONE, "its level lies above its own range (own_range/levels_inside says so)",
-    )  # fmt: skip
+    assert (answer.kind, answer.under) == (NONE, "own_range/levels_inside")
+    assert answer.message.startswith("until the answer avdd reaches 1.974 V, at most 1.96 V needed")
+
+
+def test_a_falling_level_below_the_own_range_is_told_once() -> None:
+    """The same two numbers: the detector must work where it decides."""
+    found = judged(both(BENCH, "comparators: {por: {works_from: {max: 1.2 V}}}"), (*RULES, *self_bias.RULES))
+    answer = found["own_range/levels_inside", "por"]
+    assert (answer.kind, answer.under) == (NONE, "self_bias/works_at_own_trip")
+    assert answer.measure is not None and answer.measure.margin == pytest.approx(-0.1)
+
+
+def test_what_damages_is_told_beside_a_range_that_is_too_small() -> None:
+    """works_from lies above the levels, and the rail is damaged before the answer: two faults."""
+    patch = both("comparators: {ov: {works_from: {max: 1.95 V}}}", "rails: {avdd: {damage: 1.96 V}}")
+    assert said("levels_inside", patch, of="ov").kind is FAIL
+    assert said("survives", patch, of="ov").kind is FAIL
 
 
 def test_a_level_at_the_end_of_the_own_range_is_judged_with_the_answer() -> None:
     answer = said("survives", "comparators: {ov: {works_to: 1.97 V}}", of="ov")
     assert (answer.kind, answer.message) == (FAIL, "until the answer avdd reaches 1.974 V, at most 1.97 V needed")
-    assert answer.why == "rising level up to 1.97 V, 3.5 mV more in 3.5 us; works to 1.97 V"
+    assert answer.why == "rising level up to 1.97 V, 3.5 mV more until the answer; works to 1.97 V"
     assert answer.mend == "a level 3.5 mV lower, or a faster answer"
     assert answer.at == "comparators.ov.trip.rising"
 
@@ -191,18 +205,42 @@ def test_a_detector_fed_from_elsewhere_must_still_report_below_the_damage() -> N
     [
         ("levels_inside", "por", "comparators.por.works_from"),
         ("levels_inside", "por", "comparators.por.works_to"),
-        ("levels_inside", "por", "comparators.por.domain"),
-        ("levels_inside", "por", "domains.aon.rail"),
         ("survives", "ov", "rails.avdd.damage"),
         ("survives", "ov", "rails.avdd.overshoot"),
         ("survives", "ov", "comparators.ov.delay"),
         ("survives", "ov", "comparators.ov.works_to"),
-        ("survives", "ov", "comparators.ov.domain"),
     ],
 )
 def test_open_names_the_fact_that_is_missing(rule: str, of: str, fact: str) -> None:
     answer = judged(without(fact), RULES)[f"own_range/{rule}", of]
     assert (answer.kind, answer.missing) == (OPEN, (fact,))
+
+
+@pytest.mark.parametrize("fact", ["comparators.ov.domain", "domains.aon.rail"])
+@pytest.mark.parametrize(("works_to", "kind"), [("2.75 V", PASS), ("1.96 V", OPEN)])
+def test_its_own_range_counts_where_another_rail_may_feed_it(fact: str, works_to: str, kind: Kind) -> None:
+    """1.97 V and 1.9735 V: 2.75 V is enough whatever feeds it, 1.96 V only where its own range does not count."""
+    own = f"comparators: {{ov: {{works_to: {works_to}}}}}"
+    for rule in ("levels_inside", "survives"):
+        answer = said(rule, own, without(fact), of="ov")
+        assert answer.kind is kind
+        if kind is OPEN:
+            assert answer.missing == (fact,)
+            assert answer.measure is not None
+            assert answer.measure.sure_margin < 0.0 < answer.measure.best_margin
+
+
+def test_a_level_that_fails_at_the_damage_level_does_so_whatever_feeds_it() -> None:
+    answer = said("survives", without("comparators.ov.domain"), "rails: {avdd: {damage: 1.96 V}}", of="ov")
+    assert answer.kind is FAIL
+
+
+def test_errors_that_are_not_described_leave_the_ends_open() -> None:
+    """uv falls at 1.627 V and rises at 1.677 V, and by how much less or more is not said."""
+    answer = said("levels_inside", without("comparators.uv.errors"), of="uv")
+    assert (answer.kind, answer.missing) == (OPEN, ("comparators.uv.errors",))
+    high = said("levels_inside", without("comparators.uv.errors"), "comparators: {uv: {works_from: 1.63 V}}", of="uv")
+    assert high.kind is FAIL
 
 
 def test_open_names_all_at_once() -> None:

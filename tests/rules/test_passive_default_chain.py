@@ -7,7 +7,7 @@ from typing import Any, Final
 
 import pytest
 
-from tests.rules.sound import judged, of_kind
+from tests.rules.sound import both, judged, of_kind, without
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind
 from tidegate.rules.passive_default import RULES
@@ -96,12 +96,12 @@ def test_rails_of_which_the_order_is_not_given(held_on: str) -> None:
         "rails": {"vio": {"nominal": "3.3 V"}},
         "domains": {"io": {"rail": "vio", "kind": "always_on"}},
     }
-    said = one(stretch(also, domain="io"), ALIVE, "gather")
-    if held_on == "aon":  # nothing is said about what comes before avdd
-        assert (said.kind, said.missing) == (Kind.OPEN, ("rails.avdd.after",))
-    else:  # vcore has its predecessors, and vio is none of them
-        assert said.kind is Kind.FAIL
-        assert said.message.endswith("lives on vio, which is not among the rails that are up before vcore")
+    said = one(both(stretch(also, domain="io"), "complete: [output_stages]"), ALIVE, "gather")
+    assert (said.kind, said.missing) == (Kind.OPEN, ("rails.avdd.after",))  # before which vio may come
+    whole = one(stretch(also, domain="io"), ALIVE, "gather")
+    rail = {"aon": "avdd", "core": "vcore"}[held_on]
+    assert whole.kind is Kind.FAIL
+    assert whole.message.endswith(f"lives on vio, which is not among the rails that are up before {rail}")
 
 
 def test_rails_that_come_after_each_other_do_not_hang() -> None:
@@ -111,7 +111,10 @@ def test_rails_that_come_after_each_other_do_not_hang() -> None:
 
 CHAIN_OPEN: Final = (
     (stretch(domain=None), "output_stages.stretch.domain"),
-    (stretch({"domains": {"core": {"kind": None}}}, domain="core"), "domains.core.kind"),
+    (
+        stretch({**stages(gather={"domain": "core"}), "domains": {"core": {"kind": None}}}, domain="core"),
+        "domains.core.kind",
+    ),
     (stretch({"domains": {"core": {"rail": None}}}, domain="core"), "domains.core.rail"),
     (stretch(domain="core", hold=None), "output_stages.stretch.hold"),
     (stretch(stages(gather={"domain": None})), "output_stages.gather.domain"),
@@ -124,14 +127,40 @@ def test_chain_is_open_without_what_tells_whether_it_is_alive(patch: str, missin
     assert (said.kind, said.missing) == (Kind.OPEN, (missing,))
 
 
+def test_a_stage_that_is_dead_either_way_fails_although_its_domain_is_not_known() -> None:
+    """core is on vcore, which comes up after avdd: switched or not, it is dead while gather is held."""
+    said = one(stretch({"domains": {"core": {"kind": None}}}, domain="core"), ALIVE, "gather")
+    assert said.kind is Kind.FAIL
+    unknown = stretch(stages(second={"driven_by": ["stretch"], "hold": "none"}, rst_out={"driven_by": ["second"]}),
+                      domain="analog")  # fmt: skip
+    assert one(unknown, ALIVE, "gather").kind is Kind.FAIL  # nothing is said of where second lives
+
+
 def test_the_last_stage_is_judged_by_one_rule_alone() -> None:
     patch = "output_stages: {rst_out: {hold: none, domain: analog}}"
     said = one(patch, ALIVE, "gather")
-    assert said.kind is Kind.NOT_APPLICABLE
-    assert said.message == "the output of rst_out is not held (passive_default/held says so)"
+    assert said.kind is Kind.PASS
+    assert said.message == "no stage that is not held stands between its hold and the last one"
     assert set(of_kind(judged(patch, RULES), Kind.FAIL)) == {(HELD, "por_n")}
-    both = "output_stages: {rst_out: {hold: none, domain: analog}, core_out: {hold: none, domain: analog}}"
-    assert one(both, ALIVE, "gather").message == "the output of rst_out is not held (passive_default/held says so)"
+
+
+def test_what_may_be_driven_by_a_held_stage_is_asked_for() -> None:
+    """A net or stage that does not say what drives it may come after the hold; what drives the hold does not."""
+    spare = stretch({"resets": {"spare_n": {"active": "low", "guards": ["adc"]}}})
+    for rule in (ALIVE, LEVEL, STRENGTH, DRIVER):
+        said = one(spare, rule, "gather")
+        assert (said.kind, said.missing) == (Kind.OPEN, ("resets.spare_n.driven_by",))
+    before = both(stretch(), without("output_stages.uv_out.driven_by"))
+    assert [one(before, rule, "gather").kind for rule in (ALIVE, LEVEL, STRENGTH, DRIVER)] == [Kind.PASS] * 4
+
+
+def test_nets_that_are_not_described_may_lie_behind_a_hold() -> None:
+    nowhere = both("{resets: null, domains: {analog: {switched_by: rst_out}}, complete: [output_stages]}")
+    assert one(nowhere, LEVEL, "rst_out").missing == ("resets",)
+    none = both(nowhere, "complete: [resets]")
+    assert (one(none, LEVEL, "rst_out").kind, one(none, LEVEL, "rst_out").message) == (
+        Kind.NOT_APPLICABLE, "no reset net lies behind it",
+    )  # fmt: skip
 
 
 def test_a_stage_that_leads_to_no_reset_net_is_no_part_of_the_chain() -> None:
@@ -181,7 +210,11 @@ def test_two_inversions_undo_each_other() -> None:
 
 def test_kind_that_says_nothing_of_inversion_is_open() -> None:
     said = one("output_stages: {rst_out: {inverting: null, kind: delay}}", LEVEL, "gather")
-    assert said.missing == ("output_stages.rst_out.inverting",)
+    assert (said.kind, said.missing) == (Kind.OPEN, ("output_stages.rst_out.inverting",))
+    assert said.message.endswith("it holds where inverting of rst_out is false")
+    # Where the level arrives wrong on another way, it is wrong whatever the stage does.
+    wrong = "output_stages: {rst_out: {inverting: null, kind: delay}, core_out: {inverting: true}}"
+    assert one(wrong, LEVEL, "gather").kind is Kind.FAIL
 
 
 def test_every_net_and_every_way_counts() -> None:

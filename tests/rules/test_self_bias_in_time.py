@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
+import math
 from typing import Final
 
 import pytest
 
-from tests.rules.sound import judged, without
+from tests.rules.sound import both, judged, without
 from tidegate.lint.graph.edge import path_text
 from tidegate.lint.judgement import Judgement, Kind
 from tidegate.rules.self_bias import RULES
@@ -78,7 +79,7 @@ biases: {{bias_start: {{works_from: {{max: 0.85 V}}}}}}
         ("0 mV/K", 1.0, "; ref_fast is worst at the cold end"),
         ("1 mV/K", 1.165, "; ref_fast is worst at 125 degC"),  # 165 K of warming
         ("{min: 0.5 mV/K, max: 1 mV/K}", 1.165, "; ref_fast is worst at 125 degC"),
-        ("null", 1.0, ""),
+        ("null", 1.0, ""),  # it then holds for all temperatures
     ],
 )
 def test_the_lowest_supply_is_taken_at_the_worst_temperature(slope: str, have_v: float, where: str) -> None:
@@ -86,6 +87,23 @@ def test_the_lowest_supply_is_taken_at_the_worst_temperature(slope: str, have_v:
     assert judgement.kind is PASS
     assert margin(judgement) == pytest.approx(1.2 - have_v, abs=1e-12)
     assert judgement.why == "decides on avdd down to 1.2 V" + where
+
+
+@pytest.mark.parametrize("slope", ["{min: -2 mV/K}", "{typ: -1 mV/K}"])
+def test_a_slope_of_unknown_sign_may_lift_it(slope: str) -> None:
+    """Stated is the lowest supply at the cold end; 200 mV are left until it is worse at the hot one."""
+    judgement = one(SLOPE.format(slope=slope), UP, "por")
+    assert (judgement.kind, judgement.missing) == (OPEN, ("references.ref_fast.works_from_slope.max",))
+    assert judgement.measure is not None
+    assert judgement.measure.sure_margin == -math.inf
+    assert judgement.measure.best_margin == pytest.approx(0.2, abs=1e-12)
+    cold = SLOPE.format(slope=slope).replace("max: 1.0 V", "max: 1.21 V")
+    assert one(cold, UP, "por").kind is FAIL  # at the cold end already, whatever the slope is
+
+
+def test_a_slope_at_one_temperature_moves_nothing() -> None:
+    still = SLOPE.format(slope="{min: -2 mV/K}").replace("{min: -40 degC, max: 125 degC}", "27 degC")
+    assert one(still, UP, "por").kind is PASS
 
 
 def test_a_slope_that_lifts_it_above_the_level_fails() -> None:
@@ -118,6 +136,22 @@ def test_up_in_time_is_open(facts: list[str]) -> None:
     judgement = one(without(*facts), UP, "uv")
     assert judgement.kind is OPEN
     assert sorted(judgement.missing) == sorted(facts)
+
+
+@pytest.mark.parametrize("gone", ["comparators.uv.bias", "biases.bias_start.domain", "comparators.uv.domain"])
+def test_a_source_that_is_late_fails_whatever_else_is_missing(gone: str) -> None:
+    """ref_fast works from 1.7 V, and uv must decide down to 1.6156 V, whatever its bias and its domain."""
+    late = "references: {ref_fast: {works_from: {max: 1.7 V}}}"
+    judgement = one(both(late, without(gone)), UP, "uv")
+    assert (judgement.kind, judgement.missing) == (FAIL, (gone,))
+    assert judgement.message.startswith("ref_fast, which it leans on, works from 1.7 V, at most 1.616 V needed")
+    assert judgement.measure is not None
+    assert judgement.measure.sure_margin == -math.inf
+
+
+def test_a_source_of_unknown_kind_may_come_from_off_the_chip() -> None:
+    judgement = one(without("references.ref_fast.kind"), UP, "uv")
+    assert (judgement.kind, judgement.missing) == (OPEN, ("references.ref_fast.kind",))
 
 
 def test_a_source_of_unknown_parents_is_open() -> None:
@@ -202,8 +236,8 @@ def test_a_reference_from_off_the_chip_is_for_a_person() -> None:
 
 def test_an_external_bias_of_a_power_on_detector_is_one_finding() -> None:
     judgement = one("biases: {bias_start: {kind: external}}", UP, "por")
-    assert judgement.kind is NONE
-    assert judgement.message == "bias_start comes from off the chip (self_bias/leans_on_nobody says so)"
+    assert (judgement.kind, judgement.under) == (NONE, "self_bias/leans_on_nobody")
+    assert judgement.message.startswith("rests on bias_start being there before avdd reaches its trip level")
 
 
 @pytest.mark.parametrize(
@@ -212,7 +246,7 @@ def test_an_external_bias_of_a_power_on_detector_is_one_finding() -> None:
         ("uv: {bias: bias_x, reference: ref_x}", "rests on bias_x being there before avdd reaches its trip level"),
         (
             "por: {bias: bias_x, reference: ref_x, crossover: null}",
-            "bias_x comes from off the chip (self_bias/leans_on_nobody says so)",
+            "rests on bias_x being there before avdd reaches its trip level (self_bias/leans_on_nobody says so)",
         ),
     ],
 )

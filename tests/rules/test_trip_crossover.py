@@ -9,6 +9,7 @@ from scipy.optimize import brentq
 
 from tests.rules.sound import both, judged, without
 from tidegate.lint.judgement import Judgement, Kind
+from tidegate.rules import self_bias
 from tidegate.rules.trip_crossover import RULES
 
 FAIL, PASS, OPEN, NONE = Kind.FAIL, Kind.PASS, Kind.OPEN, Kind.NOT_APPLICABLE
@@ -90,7 +91,7 @@ def test_a_device_that_is_never_ahead_holds_nothing() -> None:
     )  # fmt: skip
     tracks = said("crossover_tracks", patch)
     assert (tracks.kind, tracks.message) == (
-        NONE, "at some corner there is no level at all (trip_window/crossover_level says so)",
+        NONE, "at some corner there is no level at all",
     )  # fmt: skip
 
 
@@ -148,11 +149,11 @@ def test_only_what_moves_the_level_is_told() -> None:
     assert "; what moves it: nothing; " in said("crossover_level", one_point + "offset: 0 V}}}}", exact).why
 
 
-def test_without_a_slope_the_reference_needs_the_same_at_every_temperature() -> None:
-    answer = said(
-        "crossover_tracks", without("references.ref_fast.works_from_slope"),
-        "references: {ref_fast: {works_from: {max: 1.2 V}}}",
-    )  # fmt: skip
+FLAT = "references: {ref_fast: {works_from: {max: 1.2 V}, works_from_slope: 0 V/K}}"
+
+
+def test_what_a_reference_needs_at_every_temperature_is_held_against_the_lowest_level() -> None:
+    answer = said("crossover_tracks", FLAT)
     assert answer.kind is FAIL
     assert answer.measure is not None
     assert answer.measure.have == pytest.approx(LOWEST_V - 0.07, abs=1e-8)
@@ -160,6 +161,24 @@ def test_without_a_slope_the_reference_needs_the_same_at_every_temperature() -> 
     short_v = 1.2 - (LOWEST_V - 0.07)
     assert answer.mend.startswith("a level at least ")
     assert float(answer.mend.split()[4]) == pytest.approx(short_v * 1e3, abs=0.1)
+
+
+def test_the_account_of_tracking_adds_up() -> None:
+    answer = said("crossover_tracks", FLAT)
+    assert answer.measure is not None
+    assert [line.name for line in answer.account] == ["level of the crossover", "hysteresis, most"]
+    assert sum(line.value for line in answer.account) == pytest.approx(answer.measure.have, abs=1e-12)
+
+
+def test_a_slope_that_is_not_sure_may_ask_for_anything_at_the_hot_end() -> None:
+    """Stated for the cold end, where the level is higher; and without a slope for all temperatures."""
+    falls = "references: {ref_fast: {works_from_slope: {min: -2 mV/K}}}"
+    answer = said("crossover_tracks", FLAT, falls)
+    assert (answer.kind, answer.missing) == (OPEN, ("references.ref_fast.works_from_slope.max",))
+    short = said("crossover_tracks", FLAT, falls, "references: {ref_fast: {works_from: {max: 1.4 V}}}")
+    assert short.kind is FAIL  # at the cold end already, whatever the slope is
+    level = said("crossover_tracks", FLAT, without("references.ref_fast.works_from_slope"))
+    assert level.measure == said("crossover_tracks", FLAT).measure
 
 
 def test_a_slope_that_rises_counts_at_the_hot_end() -> None:
@@ -205,6 +224,35 @@ def test_second_crossing_at_its_limit() -> None:
 def test_not_applicable(rule: str, of: str, words: str) -> None:
     answer = said(rule, of=of)
     assert (answer.kind, answer.message) == (NONE, words)
+
+
+@pytest.mark.parametrize("rule", ["crossover_level", "crossover_tracks", "second_crossing"])
+def test_whether_a_crossover_makes_the_level_may_not_be_said(rule: str) -> None:
+    """Without a reference something else makes the level; what, is a question."""
+    answer = said(rule, without("comparators.por.crossover"))
+    assert (answer.kind, answer.missing) == (OPEN, ("comparators.por.crossover",))
+    answer = said(rule, without("comparators.por.crossover", "comparators.por.reference"))
+    assert (answer.kind, answer.missing) == (OPEN, ("comparators.por.reference",))
+
+
+@pytest.mark.parametrize(("level_v", "kind"), [(LOWEST_V - 1e-3, FAIL), (LOWEST_V + 1e-3, PASS), (1.3, PASS),
+                                               (HIGHEST_V - 1e-3, PASS), (HIGHEST_V + 1e-3, FAIL)])  # fmt: skip
+def test_a_level_stated_as_one_number_is_one_of_those_that_the_components_make(level_v: float, kind: Kind) -> None:
+    trip = f"comparators: {{por: {{trip: {{rising: {level_v:.6f} V, falling: {level_v - 0.06:.6f} V}}}}}}"
+    answer = said("crossover_level", trip)
+    assert answer.kind is kind
+    assert answer.message.startswith("rising level as it is stated ")
+
+
+def test_a_level_stated_as_one_number_has_the_errors_of_its_crossover() -> None:
+    """1.3 V and 60 mV less, moved by as much as the components move it: LOWEST_V less 60 mV at the least."""
+    trip = "comparators: {por: {trip: {rising: 1.3 V, falling: 1.24 V}}}"
+    answer = judged(trip, self_bias.RULES)["self_bias/works_at_own_trip", "por"]
+    assert answer.measure is not None
+    assert answer.measure.need == pytest.approx(LOWEST_V - 0.06, abs=1e-8)
+    gone = both(trip, without("comparators.por.crossover.offset"))
+    unknown = judged(gone, self_bias.RULES)["self_bias/works_at_own_trip", "por"]
+    assert (unknown.kind, unknown.missing) == (OPEN, ("comparators.por.crossover.offset",))
 
 
 CRUDE = """
@@ -300,13 +348,51 @@ def test_open_names_the_fact_that_is_missing(fact: str) -> None:
 @pytest.mark.parametrize(
     "fact",
     [
-        "references.ref_fast.works_from", "comparators.por.hysteresis.amount.max", "biases.bias_start.works_from",
-        "comparators.ov.works_from",
+        "references.ref_fast.works_from", "biases.bias_start.works_from", "comparators.ov.works_from",
+        "comparators.uv.bias",
     ],
 )  # fmt: skip
 def test_tracking_needs_what_follows(fact: str) -> None:
     answer = said("crossover_tracks", without(fact))
     assert (answer.kind, answer.missing) == (OPEN, (fact,))
+    late = said("crossover_tracks", without(fact), "comparators: {uv_core: {works_from: {max: 1.3 V}}}")
+    assert late.kind is FAIL  # what is known to follow is short whatever else does
+
+
+@pytest.mark.parametrize("fact", ["comparators.uv.domain", "domains.aon.rail"])
+def test_what_may_be_fed_by_the_rail_follows_where_that_harms(fact: str) -> None:
+    """uv works from 1.05 V and the level is 1.106 V: it may follow. If it worked from 1.3 V, that would decide."""
+    assert said("crossover_tracks", without(fact)).kind is PASS
+    answer = said("crossover_tracks", without(fact), "comparators: {uv: {works_from: {max: 1.3 V}}}")
+    assert (answer.kind, answer.missing) == (OPEN, (fact,))
+
+
+def test_a_load_that_an_under_voltage_detector_may_look_after_is_open() -> None:
+    """Without what drives uv_out, uv may or may not reset the loads of avdd, which need 1.6 V."""
+    answer = said("crossover_tracks", without("output_stages.uv_out.driven_by"))
+    assert (answer.kind, answer.missing) == (OPEN, ("output_stages.uv_out.driven_by",))
+
+
+def test_a_source_from_off_the_chip_follows_no_rail() -> None:
+    outside = "references: {ref_x: {kind: external}}, comparators: {uv: {reference: ref_x}}"
+    assert said("crossover_tracks", f"{{{outside}}}").kind is PASS
+
+
+@pytest.mark.parametrize(
+    ("part", "missing"),
+    [
+        ("resistance: {min: 1.8 Mohm}", "comparators.por.crossover.resistance.max"),
+        ("resistance: {typ: 2 Mohm}", "comparators.por.crossover.resistance.min"),
+        ("gain: {max: 26 uA/V^2}", "comparators.por.crossover.gain.min"),
+    ],
+)
+def test_a_component_without_an_end_has_no_corner(part: str, missing: str) -> None:
+    """An end that is not known is no corner to sweep, and no reason to say that there is no level."""
+    for rule in ("crossover_level", "crossover_tracks"):
+        answer = said(rule, f"comparators: {{por: {{crossover: {{{part}}}}}}}")
+        assert answer.kind is OPEN
+        assert missing in answer.missing
+        assert answer.measure is None
 
 
 def test_level_needs_what_is_stated() -> None:

@@ -12,7 +12,8 @@ import pytest
 from jsonschema import Draft202012Validator
 
 from tidegate.lint.description.load import description_schema, schema_text
-from tidegate.lint.description.names import NAMED_SECTIONS, name_fields
+from tidegate.lint.description.model.description import POLICY
+from tidegate.lint.description.names import NAMED_SECTIONS, name_fields, unique_lists
 from tidegate.lint.quantity import Dimension, parse, pattern
 
 SCHEMA = description_schema()
@@ -26,7 +27,19 @@ EXPLAINED = {
     "minItems", "minProperties", "uniqueItems", "required", "properties", "patternProperties", "additionalProperties",
     "propertyNames", "items", "anyOf", "$ref",
 }  # fmt: skip
-SAID = {"$schema", "$id", "$defs", "title", "description", "examples", "x-quantity", "x-names"}
+SAID = {
+    "$schema",
+    "$id",
+    "$defs",
+    "title",
+    "description",
+    "examples",
+    "x-quantity",
+    "x-names",
+    "x-none",
+    "x-use",
+    "default",
+}
 
 
 def below(node: Any, path: str = "#") -> Iterator[tuple[str, Mapping[str, Any]]]:
@@ -154,3 +167,39 @@ def test_every_reference_to_a_name_says_what_it_names() -> None:
         branches = (node, node.get("items", {}), *node.get("anyOf", ()))
         names = any(branch.get("$ref") == "#/$defs/id" for branch in branches)
         assert names == ("x-names" in node), path
+
+
+def test_none_is_said_where_the_schema_tells_what_it_reads_as_and_nowhere_else() -> None:
+    for path, node in NODES:
+        choices = [branch for branch in node.get("anyOf", ()) if "const" in branch]
+        assert ("x-none" in node) == (choices == [{"const": "none"}]), path
+        if "x-none" in node:
+            assert node["anyOf"][0] == {"const": "none"}, path
+            assert re.search(r"\bnone\b", node["description"]), path
+        if node.get("x-none", "none") != "none":  # else the word itself is what rules ask for
+            reads_as = Draft202012Validator({**node["anyOf"][1], "$defs": DEFS})
+            assert [error.message for error in reads_as.iter_errors(node["x-none"])] == [], path
+
+
+def test_policy_has_a_default_and_the_model_holds_the_same() -> None:
+    assert [path for path, node in NODES if node.get("x-use") == "policy"] == [
+        f"#/$defs/conditions/properties/{key}" for key in POLICY
+    ]
+    policy = {key: node["default"] for key, node in DEFS["conditions"]["properties"].items() if "default" in node}
+    assert policy == POLICY
+    assert [path for path, node in NODES if "default" in node] == [
+        f"#/$defs/conditions/properties/{key}" for key in POLICY
+    ]
+    for key, value in policy.items():
+        assert Draft202012Validator(DEFS["conditions"]).is_valid({key: value})
+
+
+def test_what_can_be_complete_is_every_section_of_elements_and_the_modes() -> None:
+    assert set(SCHEMA["properties"]["complete"]["items"]["enum"]) == {*NAMED_SECTIONS, "modes"}
+    none = {key for key, node in SCHEMA["properties"].items() if "x-none" in node}
+    assert none == {"loads", "modes", "bypasses", "neighbours"}
+
+
+def test_no_list_of_names_holds_a_name_twice() -> None:
+    named = {way[:-1] for field in name_fields(SCHEMA) if (way := field.way)[-1] == "*"}
+    assert named < set(unique_lists(SCHEMA))

@@ -15,7 +15,7 @@ import pytest
 
 from tidegate.lint.description.load import description_schema
 from tidegate.lint.description.model.description import Description
-from tidegate.lint.description.model.part import Element, Name, Part
+from tidegate.lint.description.model.part import Element, Name, Part, use_of
 from tidegate.lint.quantity import Basis, Span
 
 SCHEMA = description_schema()
@@ -47,9 +47,19 @@ def struct_of(name: str) -> type[msgspec.Struct]:
 
 
 def without_none(kind: Any) -> tuple[Any, ...]:
-    """The members of a union, None left out."""
+    """The members of a union, None and the marks of what a fact is for left out."""
     members = get_args(kind) if get_origin(kind) in (types.UnionType, typing.Union) else (kind,)
-    return tuple(member for member in members if member is not types.NoneType)
+    members = tuple(unmarked(member) for member in members if member is not types.NoneType)
+    return without_none(members[0]) if members != (kind,) and len(members) == 1 else members
+
+
+def unmarked(kind: Any) -> Any:
+    """A type without the mark of what a fact is for."""
+    if get_origin(kind) is not typing.Annotated:
+        return kind
+    plain, *metas = get_args(kind)
+    kept = tuple(meta for meta in metas if not meta.extra)
+    return typing.Annotated[(plain, *kept)] if kept else plain
 
 
 BOUNDS = {
@@ -103,7 +113,6 @@ def agrees(kind: Any, node: Mapping[str, Any]) -> bool:
         return False
     if node["type"] == "array":
         item, more = get_args(plain)
-        assert not node.get("uniqueItems") or "x-names" in node  # names_twice() looks at those
         return get_origin(plain) is tuple and more is Ellipsis and agrees(item, node["items"])
     if node["type"] == "object":
         key, value = get_args(plain)
@@ -115,6 +124,12 @@ def agrees(kind: Any, node: Mapping[str, Any]) -> bool:
     return plain is PLAIN[node["type"]]
 
 
+def as_read(node: Mapping[str, Any]) -> Mapping[str, Any]:
+    """What the model holds of a value: where ``none`` is read as another, never the word."""
+    inner: Mapping[str, Any] = node if node.get("x-none", "none") == "none" else node["anyOf"][1]
+    return inner
+
+
 def check(kind: type[msgspec.Struct], node: Mapping[str, Any]) -> None:
     """Compare a struct with the object of the schema that it stands for."""
     fields = {field.encode_name: field for field in msgspec.structs.fields(kind)}
@@ -122,7 +137,9 @@ def check(kind: type[msgspec.Struct], node: Mapping[str, Any]) -> None:
         assert fields.pop("id").required
     assert list(fields) == list(node["properties"])
     for name, field in fields.items():
-        assert agrees(field.type, node["properties"][name]), name
+        assert agrees(field.type, as_read(node["properties"][name])), name
+        if issubclass(kind, Part):
+            assert use_of(kind, field.name) == node["properties"][name].get("x-use", "varies"), name
         assert field.required == (name in node.get("required", ())), name
         if not field.required:
             lists_or_sections = without_none(field.type) == (field.type,)
@@ -168,3 +185,23 @@ def test_an_element_knows_its_section() -> None:
     uv = struct_of("comparator")
     assert issubclass(uv, Element)
     assert msgspec.convert({"id": "uv", "role": "power_on", "watches": "a"}, uv).fact("trip") == "comparators.uv.trip"
+
+
+def test_what_each_fact_is_for_is_marked_once_where_its_field_is_defined() -> None:
+    marked = {
+        f"{kind.__name__}.{field.name}": use
+        for kind in STRUCTS.values()
+        if issubclass(kind, Part)
+        for field in msgspec.structs.fields(kind)
+        if (use := use_of(kind, field.name)) != "varies"
+    }
+    assert marked == {
+        "Rail.guaranteed": "ability", "Need.works": "ability", "OutputStage.release_delay": "promise",
+        "Comparator.undecided": "promise", "OutputStage.hold": "promise", "OutputStage.power_up": "promise",
+        "OutputStage.discharge": "promise", "Reference.start_up": "promise", "Bias.start_up": "promise",
+        "Bypass.hold": "promise", "Bypass.locked_outside_test": "promise", "Bypass.readable": "promise",
+        "Bypass.reset_by": "promise", "Load.synchronised": "promise", "Neighbour.mutual": "promise",
+        "Conditions.combine": "policy", "Conditions.coverage": "policy", "Conditions.false_trips": "policy",
+    }  # fmt: skip
+    with pytest.raises(KeyError):
+        use_of(Part, "nothing")

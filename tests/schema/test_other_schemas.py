@@ -12,6 +12,8 @@ from jsonschema import Draft202012Validator
 
 from tidegate.lint.commands.schema import WHICH
 from tidegate.lint.description.load import description_schema, schema_text
+from tidegate.lint.reports.comparison_report import COMPARISON_SCHEMA
+from tidegate.lint.reports.json_report import REPORT_SCHEMA
 from tidegate.lint.settings import Settings
 
 SCHEMAS: Mapping[str, Any] = {name: json.loads(schema_text(name)) for name in WHICH if name != "description"}
@@ -36,7 +38,8 @@ ALL = [(name, path, node) for name, schema in SCHEMAS.items() for path, node in 
 @pytest.mark.parametrize("name", SCHEMAS)
 def test_a_schema_is_a_json_schema_of_draft_2020_12(name: str) -> None:
     Draft202012Validator.check_schema(SCHEMAS[name])
-    assert SCHEMAS[name]["$id"] == f"urn:tidegate:{name}:1"
+    version = {"report": REPORT_SCHEMA, "comparison": COMPARISON_SCHEMA}.get(name, f"urn:tidegate:{name}:1")
+    assert SCHEMAS[name]["$id"] == version
     assert SCHEMAS[name]["additionalProperties"] is False
 
 

@@ -6,6 +6,7 @@ from typing import Any
 
 import msgspec
 
+from tidegate.lint.derived.supply.steepest_fall import SteepestFall
 from tidegate.lint.timing.evaluate import Network, State, evaluate, network
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.parts import (
@@ -24,7 +25,7 @@ from tidegate.lint.timing.waveform import Waveform
 SLOW = Waveform(((0.0, 0.0), (4.0, 2.0)))
 """Half a volt a second up to 2 V at 4 s."""
 HILL = Waveform(((0.0, 0.0), (4.0, 2.0), (10.0, 2.0), (14.0, 0.0)))
-RAMP = RailRamp(2.0, 1.5, Bounds(4.0, 8.0), Bounds(6.0, 12.0), "its fastest fall")
+RAMP = RailRamp(2.0, Bounds(1.5, 1.5), Bounds(4.0, 8.0), Bounds(6.0, 12.0), SteepestFall(1 / 3, "its collapse"))
 """2 V; up from 1.5 V on; rises in 4 s to 8 s, falls in 6 s to 12 s."""
 
 
@@ -44,7 +45,7 @@ def source(name: str, *needs: str, domain: str = "aon", rail: str = "vdd", **cha
 
 
 def load(name: str = "core", **changes: Any) -> LoadPart:
-    made = LoadPart(name, (("vdd", Bounds(1.0, FOREVER_S)),), None, (), NOTHING, NOTHING, ())
+    made = LoadPart(name, (("vdd", Bounds(1.0, FOREVER_S)),), None, (), NOTHING, ())
     return msgspec.structs.replace(made, **changes)
 
 

@@ -56,7 +56,7 @@ def stage(
 
 
 def load(name: str, *, needs: tuple[str, ...], works: Bounds, ready: Bounds) -> LoadPart:
-    return LoadPart(name, (("vdd", works),), None, needs, ready, NOTHING, ("rst",))
+    return LoadPart(name, (("vdd", works),), None, needs, ready, ("rst",))
 
 
 def random_parts(chance: random.Random) -> dict[str, TimedPart]:

@@ -41,7 +41,7 @@ def rst(*driven_by: str) -> TimedPart:
 
 
 def blamed(*parts: TimedPart, at_s: float, start: str = "rst", **states: State) -> Blame:
-    lines = SimpleNamespace(read=SimpleNamespace(parts={part.id: part for part in parts}))
+    lines = SimpleNamespace(read=SimpleNamespace(every={part.id: part for part in parts}))
     line = Timeline(Scenario("tried", "tried", Scene.START, {}), {"vdd": UP, "aon": ALWAYS_ON, **states})
     return blame_for_unknown(cast(Timelines, lines), line, start, at_s)
 

@@ -9,7 +9,7 @@ from typing import cast
 
 import pytest
 
-from tests.rules.sound import both, patched
+from tests.rules.sound import both, patched, without
 from tidegate.lint.graph.dependency import build
 from tidegate.lint.timing import common_cause
 from tidegate.lint.timing.common_cause import release_slack_apart
@@ -70,10 +70,10 @@ LEANS = ", leans_on: [por, uv, ov, bias_start]"
             f"{{references: {{ref_fast: {{settling: {{min: 0 s, max: 5 ms}}}}}}, {NOT_READY.format('9 ms', LEANS)}}}",
             ("ref_fast", "por", "ov", "uv"),
         ),
-        # What cannot be timed at all has no width.
+        # Of one that lives nobody knows where the times are known all the same.
         (
             f"{{biases: {{bias_start: {{domain: null}}}}, {NOT_READY.format('9 ms', ', leans_on: [bias_start]')}}}",
-            ("ref_fast",),
+            ("ref_fast", "bias_start"),
         ),
     ],
 )
@@ -152,3 +152,18 @@ def test_what_lies_between_the_ends_stands_where_nothing_is_released_at_them(mon
     least, shared = release_slack_apart(lines, "core_regulator", [line for line, _ in courses])
     assert least == min((slack for _, slack in short), key=lambda slack: slack.slack_s)
     assert shared == ()
+
+
+def test_at_best_the_same_elements_are_taken_at_their_ends() -> None:
+    """uv has less tolerance at the best corner than what is left out for it otherwise."""
+    patch = both(NOT_READY.format("9 ms", LEANS), without("comparators.uv.trip.rising"))
+    lines = lines_of(patch)
+    _, shared = release_slack_apart(lines, "core_regulator", lines.starts)
+    best, at_best = release_slack_apart(
+        lines.at_best, "core_regulator", lines.at_best.starts, at_best_of=lines
+    )  # fmt: skip
+    assert list(shared) == list(at_best)
+    known, _ = release_slack_apart(
+        lines_of(NOT_READY.format("9 ms", LEANS)), "core_regulator", lines_of(NOT_READY.format("9 ms", LEANS)).starts
+    )
+    assert best.slack_s >= known.slack_s - 1e-12

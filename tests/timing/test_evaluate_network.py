@@ -4,21 +4,29 @@ from __future__ import annotations
 
 import random
 
+import msgspec
 import pytest
 
 from tests.timing.networks import MADE, SLOW, net, scenario, source
-from tests.timing.random_subsystems import random_parts, random_waveform, supplied_with, with_supply
-from tidegate.lint.timing.evaluate import Found, Network, State, evaluate
-from tidegate.lint.timing.interval import FOREVER_S
+from tests.timing.random_subsystems import INFINITE, random_parts, random_waveform, supplied_with, with_supply
+from tidegate.lint.timing.evaluate import Found, LoadState, Network, State, evaluate, network
+from tidegate.lint.timing.interval import FOREVER_S, both, outside
 from tidegate.lint.timing.parts import (
+    NOT_NAMED,
     NOTHING,
     Bounds,
+    DomainPart,
+    ResetPart,
+    bounds_of,
 )
 from tidegate.lint.timing.state import (
     ALWAYS_ON,
+    ANY_DECISION,
     ANYTHING,
     ASSERTED,
     NEVER_ON,
+    NO_DECISION,
+    NOTHING_KNOWN,
     On,
 )
 from tidegate.lint.timing.supply import GivenSupply
@@ -28,19 +36,80 @@ from tidegate.lint.timing.waveform import Waveform
 def test_a_part_is_pinned_to_one_end() -> None:
     given = net(source("ref", settling=Bounds(0.5, FOREVER_S)))
     least, most = given.pinned({"ref": False}).parts["ref"], given.pinned({"ref": True}).parts["ref"]
-    assert least == source("ref", works_from=Bounds(1.0, 1.0), settling=Bounds(0.5, 0.5))
-    assert most == source("ref", works_from=Bounds(1.5, 1.5), settling=Bounds(0.5, 0.5))  # what is not finite: least
+    # What has no end is taken at neither.
+    assert least == source("ref", works_from=Bounds(1.0, 1.0), settling=Bounds(0.5, FOREVER_S))
+    assert most == source("ref", works_from=Bounds(1.5, 1.5), settling=Bounds(0.5, FOREVER_S))
     assert Network.__struct_config__.frozen
     assert given.pinned({}).parts == given.pinned({"unknown": True}).parts == given.parts
     assert given.parts["ref"] == source("ref", settling=Bounds(0.5, FOREVER_S))
 
 
-def test_least_values_of_nothing_become_as_great_as_the_greatest() -> None:
-    part = source("ref", works_from=Bounds(0.0, 1.5), settling=Bounds(0.5, 1.0))
-    given = net(part, source("late", settling=Bounds(0.0, FOREVER_S)))
-    best = given.without_spread_from_nothing(["ref", "late", "unknown"]).parts
-    assert best["ref"] == source("ref", works_from=Bounds(1.5, 1.5), settling=Bounds(0.5, 1.0))
-    assert best["late"] == given.parts["late"]
+def test_what_is_one_thing_or_another_is_pinned_in_every_form() -> None:
+    forms = source("ref"), source("ref", settling=Bounds(2.0, 3.0))
+    given = network({"ref": forms[0]}, {}, {"ref": forms[1:]})
+    assert given.pinned({"ref": True}).others["ref"] == [
+        source("ref", works_from=Bounds(1.5, 1.5), settling=Bounds(3.0, 3.0))
+    ]
+
+
+def test_an_element_that_is_one_thing_or_another_may_be_as_either_is() -> None:
+    """Half a volt a second: works from 1 V, 2 s; settles in 1 s, or in 2 s to 3 s."""
+    first = source("ref", works_from=Bounds(1.0, 1.0), settling=Bounds(1.0, 1.0))
+    other = msgspec.structs.replace(first, settling=Bounds(2.0, 3.0))
+    base = net(first)
+
+    def state(*, best: bool) -> State:
+        given = network(base.parts, base.ramps, {"ref": [other]}, best=best)
+        return evaluate(given, scenario())["ref"]
+
+    assert state(best=False) == On(((3.0, FOREVER_S),), ((-FOREVER_S, 5.0),))
+    assert state(best=True) == On(((4.0, FOREVER_S),), ((-FOREVER_S, 3.0),))
+
+
+def test_of_what_is_not_named_anything_may_be_so_and_nothing_for_certain() -> None:
+    net_of = ResetPart("rst", (NOT_NAMED,), False, (), "vdd", 0.0)
+    base = net(DomainPart("far", NOT_NAMED, (NOT_NAMED,)), source("ref", domain="far"), net_of)
+    for best, on, decision in ((False, ANYTHING, ANY_DECISION), (True, NOTHING_KNOWN, NO_DECISION)):
+        found = evaluate(network(base.parts, base.ramps, best=best), scenario(Waveform(((0.0, 2.0),))))
+        assert (found["far"], found["ref"], found["rst"]) == (on, on, decision)
+
+
+def _is_inside(inner: State, outer: State) -> bool:
+    """Whether whatever may be so in one state may be so in the other."""
+    if isinstance(inner, LoadState):
+        return all(_is_inside(*pair) for pair in zip(inner, outer, strict=True))  # type: ignore[arg-type]
+    assert isinstance(inner, tuple)
+    assert isinstance(outer, tuple)
+    added = [both(few, outside(many)) for few, many in zip(inner, outer, strict=True)]
+    return all(end - start <= 1e-9 for times in added for start, end in times)
+
+
+@pytest.mark.parametrize("seed", range(120))
+def test_what_is_not_known_lies_around_and_inside_of_every_completion(seed: int) -> None:
+    """Some ends of some tolerances are not known: at the sure corner 0 s or without end, at the best the other way.
+
+    Inclusion of interval arithmetic (IEEE 1788-2015, 4.1), for directed intervals as for proper ones.
+    """
+    chance = random.Random(seed)
+    parts, waveform = random_parts(chance), random_waveform(chance)
+    sure, best = dict(parts), dict(parts)
+    for name in parts:
+        for field, value in bounds_of(parts[name]):
+            if chance.random() < 0.2 and not (field == "release_delay" and value == NOTHING):  # none is not unknown
+                least_known, most_known = chance.choice(((False, True), (True, False), (False, False)))
+                far = Bounds(value.least if least_known else 0.0, value.most if most_known else INFINITE)
+                near = Bounds(
+                    value.least if least_known else (value.most if most_known else INFINITE),
+                    value.most if most_known else (value.least if least_known else 0.0),
+                )
+                sure[name] = msgspec.structs.replace(sure[name], **{field: far})
+                best[name] = msgspec.structs.replace(best[name], **{field: near})
+    known = evaluate(with_supply(parts), supplied_with(waveform))
+    wide = evaluate(with_supply(sure), supplied_with(waveform))
+    inner = evaluate(msgspec.structs.replace(with_supply(best), best=True), supplied_with(waveform))
+    for name in parts:
+        assert _is_inside(known[name], wide[name]), (name, known[name], wide[name])
+        assert _is_inside(inner[name], known[name]), (name, inner[name], known[name])
 
 
 def test_among_orders_some_elements_alone() -> None:

@@ -10,17 +10,18 @@ import pytest
 
 from tests.timing.bare import bare
 from tests.timing.random_subsystems import comparator, load, source, stage
+from tidegate.lint.derived.supply.steepest_fall import SteepestFall
 from tidegate.lint.timing.falls import alone, critical_levels_v, dips, together
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.parts import NOTHING, Bounds, ComparatorPart, ResetPart, TimedPart
-from tidegate.lint.timing.ramps import RailRamp
+from tidegate.lint.timing.ramps import RailRamp, RampLacks
 from tidegate.lint.timing.scenario import Scenario, Scene
 from tidegate.lint.timing.starts import Setting
 from tidegate.lint.timing.waveform import Waveform
 
 RAILS = """
 rails:
-  a: {nominal: 2 V, rise: {min: 1 ms, max: 10 ms}, fall: {min: 4 ms, max: 40 ms}}
+  a: {nominal: 2 V, rise: {min: 1 ms, max: 10 ms}, fall: {min: 4 ms, max: 40 ms}, collapse: 500 V/s}
   b: {nominal: 1 V, rise: {min: 3 ms, max: 20 ms}, fall: {min: 8 ms, max: 9 ms}}
 """
 
@@ -41,15 +42,12 @@ def test_all_rails_fall_at_once() -> None:
 
 
 @pytest.mark.parametrize(
-    ("fall", "names"),
-    [
-        ("{min: 8 ms}", ["fastest power-down"]),
-        ("{max: 9 ms}", ["slowest power-down"]),
-    ],
+    ("fall", "rails"),
+    [("{min: 8 ms}", [{"a", "b"}, {"a"}]), ("{max: 9 ms}", [{"a"}, {"a", "b"}])],
 )
-def test_one_rail_that_does_not_say_how_it_falls_keeps_all_from_it(fall: str, names: list[str]) -> None:
+def test_one_rail_that_does_not_say_how_it_falls_is_left_out(fall: str, rails: list[set[str]]) -> None:
     setting = bare(RAILS.replace("{min: 8 ms, max: 9 ms}", fall)).setting
-    assert [scenario.name for scenario in together(setting)] == names
+    assert [set(scenario.waveforms) for scenario in together(setting)] == rails
 
 
 def test_without_rails_nothing_falls() -> None:
@@ -63,14 +61,15 @@ def test_one_rail_falls_alone_as_fast_as_it_may() -> None:
     assert points(found) == [0.0, 2.0, 4e-3, 0.0]
     assert set(found.waveforms) == {"a"}
     assert (found.name, found.rail, found.scene) == ("a falls", "a", Scene.FALL)
-    assert found.about == "a falls at 500 V/s, by its fastest fall"
+    assert found.about == "a falls at 500 V/s, by its collapse"
     assert alone(setting, "unknown") is None
-    assert alone(bare(RAILS.replace("min: 4 ms, ", "")).setting, "a") is None
+    assert alone(bare(RAILS.replace(", collapse: 500 V/s", "")).setting, "a") is None
+    assert alone(bare(RAILS.replace("500 V/s", "0 V/s")).setting, "a") is None  # it never falls
 
 
 # Dips
 
-RAMP = RailRamp(2.0, 1.8, Bounds(1e-3, 10e-3), Bounds(4e-3, 40e-3), "its fastest fall")
+RAMP = RailRamp(2.0, Bounds(1.8, 1.8), Bounds(1e-3, 10e-3), Bounds(4e-3, 40e-3), SteepestFall(500.0, "its collapse"))
 """2 V; falls at 500 V/s and rises at 2000 V/s at most."""
 JUST = 1.0 - 1e-9
 
@@ -136,12 +135,16 @@ def test_as_deep_as_a_dip_can_go_while_the_filter_ignores_it() -> None:
     assert len(levels(detector(filter=Bounds(0.0, 1.1e-4)))) == 4
 
 
-@pytest.mark.parametrize(("count", "kept"), [(12, list(range(12))), (13, [0, 1, 2, 3, 4, 5, 7, 8, 9, 10, 11, 12])])
-def test_of_many_levels_some_are_tried(count: int, kept: list[int]) -> None:
-    """The highest, the lowest, and those nearest to equal steps between them: 12/11 of a step each for 13 levels."""
-    wanted = [1.5 - 0.1 * number for number in range(count)]
+def test_every_level_is_tried() -> None:
+    wanted = [1.99 - 0.01 * number for number in range(100)]
     parts = [load(f"l{n}", needs=(), works=Bounds(v, FOREVER_S), ready=NOTHING) for n, v in enumerate(wanted)]
-    assert levels(*parts) == exactly(*(wanted[number] * JUST for number in kept))
+    assert levels(*parts) == exactly(*(v * JUST for v in wanted))
+
+
+def test_levels_of_which_nothing_is_known_are_none() -> None:
+    anywhere = Bounds(-FOREVER_S, FOREVER_S)
+    assert levels(detector(falling=anywhere, rising=anywhere, works_from=Bounds(0.0, FOREVER_S))) == []
+    assert levels(load("x", needs=(), works=Bounds(FOREVER_S, 0.0), ready=NOTHING)) == []
 
 
 def dips_of(*parts: TimedPart, ramp: RailRamp = RAMP, long_s: float = 3.0) -> Sequence[Scenario]:
@@ -196,10 +199,11 @@ def test_a_dip_deeper_than_any_rest_allows_turns_round_at_once() -> None:
     assert back.rises_s == pytest.approx(3e-3)
 
 
-@pytest.mark.parametrize("lacks", ["start_lacks", "fast_fall_lacks"])
-def test_a_rail_whose_slopes_are_not_known_does_not_dip(lacks: str) -> None:
-    assert dips_of(CORE, ramp=msgspec.structs.replace(RAMP, **{lacks: ("x",)})) == []
-    assert len(dips_of(CORE, ramp=msgspec.structs.replace(RAMP, slow_fall_lacks=("x",)))) == 1
+def test_a_rail_whose_slopes_are_not_known_does_not_dip() -> None:
+    for lacks, falls in ((RampLacks(fast_rise=("x",)), RAMP.steepest), (RampLacks(), SteepestFall(FOREVER_S, ""))):
+        assert dips_of(CORE, ramp=msgspec.structs.replace(RAMP, lacks=lacks, steepest=falls)) == []
+    other = RampLacks(slow_rise=("x",), fast_fall=("x",), slow_fall=("x",), up=("x",))
+    assert len(dips_of(CORE, ramp=msgspec.structs.replace(RAMP, lacks=other))) == 1
 
 
 def test_a_rail_without_a_ramp_does_not_dip() -> None:

@@ -8,7 +8,7 @@ import pytest
 
 from tests.rules.sound import patched
 from tidegate.lint.graph.dependency import build
-from tidegate.lint.timing.polarity import asserting_levels
+from tidegate.lint.timing.polarity import asserting_levels, polarity
 
 
 def levels(patch: str = "") -> Mapping[str, str | None]:
@@ -71,3 +71,24 @@ def test_a_stage_in_a_ring_is_left_after_it_has_no_level() -> None:
     assert found["rst_out"] == "low"
     same = levels("output_stages: {por_out: {driven_by: [por, gather], combine: any_asserts}}")
     assert same["gather"] == same["por_out"] == "low"
+
+
+@pytest.mark.parametrize(
+    ("patch", "stage", "expected"),
+    [
+        ("", "gather", ()),
+        ("resets: {por_n: {active: null}}", "rst_out", ("resets.por_n.active",)),
+        ("resets: {por_n: {active: null}}", "gather", ("resets.por_n.active",)),
+        ("resets: {por_n: {active: null}}", "core_out", ()),
+        ("output_stages: {core_out: {inverting: null}}", "gather", ("output_stages.core_out.inverting",)),
+        ("output_stages: {core_out: {inverting: null}}", "core_out", ()),
+        # The nearest: what is behind a stage of which it is not known whether it inverts does not help.
+        (
+            "{resets: {core_rst_n: {active: null}}, output_stages: {core_out: {inverting: null}}}", "gather",
+            ("output_stages.core_out.inverting",),
+        ),
+    ],
+)  # fmt: skip
+def test_what_is_missing_for_a_level(patch: str, stage: str, expected: tuple[str, ...]) -> None:
+    description = patched(patch).description
+    assert polarity(description, build(description)).unsaid.get(stage, ()) == expected

@@ -17,7 +17,7 @@ from tidegate.lint.timing.slack import (
     unknown_while_read,
     worst,
 )
-from tidegate.lint.timing.state import ALWAYS_ON, ANYTHING, RELEASED, Decision, On
+from tidegate.lint.timing.state import ALWAYS_ON, ANYTHING, NOTHING_KNOWN, RELEASED, Decision, On
 from tidegate.lint.timing.supply import GivenSupply
 from tidegate.lint.timing.timeline import Timeline
 from tidegate.lint.timing.waveform import Waveform
@@ -195,8 +195,12 @@ def test_what_comes_again_does_not_count() -> None:
 def test_a_rail_that_does_not_begin_is_after_nothing() -> None:
     flat = GivenSupply(Waveform(((0.0, 0.0),)))
     assert begin_slack(line({"first": UP, "then": flat}), rail="then", after="first", up_v=1.5) is None
-    assert begin_slack(line({"first": ANYTHING, "then": UP}), rail="then", after="first", up_v=1.5) is None
-    assert begin_slack(line({"first": UP, "then": ANYTHING}), rail="then", after="first", up_v=1.5) is None
+    # Of one of which nothing is known it may be up never, and begin long ago; at the best corner nothing is said.
+    for unknown in ({"first": ANYTHING, "then": UP}, {"first": UP, "then": ANYTHING}):
+        slack = begin_slack(line(unknown), rail="then", after="first", up_v=1.5)
+        assert slack is not None
+        assert slack.slack_s == -FOREVER_S
+    assert begin_slack(line({"first": NOTHING_KNOWN, "then": UP}), rail="then", after="first", up_v=1.5) is None
 
 
 def test_what_is_left_on_a_rail_is_no_beginning() -> None:

@@ -61,7 +61,7 @@ def test_fastest_and_slowest() -> None:
 
 def test_without_a_rail_that_can_rise_only_what_is_described_is_tried() -> None:
     assert tried("rails: {a: {nominal: 2 V}}") == {}
-    assert tried("rails: {a: {nominal: 2 V, rise: {min: 1 ms}}}") == {}
+    assert list(tried("rails: {a: {nominal: 2 V, rise: {min: 1 ms}}}")) == ["fastest ramp"]
     assert tried("rails: {a: {rise: {min: 1 ms, max: 2 ms}}}") == {}
     assert list(tried(ONE)) == ["fastest ramp", "slowest ramp"]
     assert type(bare(ONE).setting).__struct_config__.frozen
@@ -102,8 +102,10 @@ def test_a_dip_that_is_not_known_or_nothing_is_none(dip: str) -> None:
     assert "ramp that goes back" not in tried(f"{ONE}    dip: {dip}\n")
 
 
-def test_a_rail_beside_one_that_goes_back_rises_slowly() -> None:
-    found = tried(TWO.replace("  b:", f"{DIP}  b:"))["ramp that goes back"]
+def test_a_rail_beside_one_that_goes_back_rises_slowly_if_it_never_does() -> None:
+    beside = TWO.replace("  b:", f"{DIP}  b:")
+    assert set(tried(beside)["ramp that goes back"].waveforms) == {"a"}  # nobody knows whether b goes back
+    found = tried(beside.replace("max: 9 ms}", "max: 9 ms}, dip: none"))["ramp that goes back"]
     assert flat(0.0, 0.0, 20e-3, 1.0) == points(found, "b")
     assert flat(0.0, 0.0, 5e-3, 1.0, 6e-3, 0.8, 12e-3, 2.0) == points(found)
 
@@ -154,14 +156,16 @@ def test_residual_charge(residual: str, expected: list[float]) -> None:
 
 def test_residual_charge_is_told_rail_by_rail_in_few_words() -> None:
     text = TWO.replace("  b:", "    residual: 0.5 V\n  b:")
-    assert tried(text)["residual charge"].about == "the fastest ramp, with a at 500 mV, b at 0 V"
+    assert tried(text)["residual charge"].about == "the fastest ramp, with a at 500 mV"
+    both = text.replace("max: 9 ms}", "max: 9 ms}, residual: 0 V")
+    assert tried(both)["residual charge"].about == "the fastest ramp, with a at 500 mV, b at 0 V"
     assert "residual charge" not in tried(f"{ONE}    residual: 0 V\n")
     assert "residual charge" not in tried(ONE)
 
 
 @pytest.mark.parametrize(("last", "length"), [("bcde1", 120), ("bcde12", 121)])
 def test_of_many_rails_no_more_is_told_than_fits(last: str, length: int) -> None:
-    names = ["bcde1234", "bcde1235", "bcde1236", "bcde1237", last, "x"]
+    names = [last, "bcde1234", "bcde1235", "bcde1236", "bcde1237", "x"]  # by id
     rail = "  {}: {{nominal: 1 V, rise: {{min: 1 ms, max: 2 ms}}, residual: 0.1 V, after: a}}\n"
     text = ONE.replace("    fall", "    residual: 10 mV\n    fall") + "".join(map(rail.format, names))
     whole = "a at 10 mV" + "".join(f", {name} at 100 mV" for name in names)
@@ -200,7 +204,6 @@ def test_off_and_on_again_waits_for_the_slowest_and_the_longest() -> None:
     [
         ONE,
         ONE + "    off_time: {max: 20 ms}\n",
-        TWO.replace("  b:", f"{OFF}  b:"),  # b does not say how long
         (ONE + OFF).replace("{min: 4 ms, max: 40 ms}", "{max: 40 ms}"),
     ],
 )
@@ -318,18 +321,49 @@ def test_points_of_unknown_time_or_level_are_left_out(half: tuple[str, Any], exp
     assert flat(0.0, 2.0) == points(with_points())
 
 
+BACK, CHARGE, AGAIN = "a ramp that goes back", "residual charge", "off and on again"
+
+
 @pytest.mark.parametrize(
     ("facts", "expected"),
     [
-        ("", {"a ramp that goes back": "dip.depth", "residual charge": "residual", "off and on again": "off_time"}),
+        ("", [(BACK, "dip.depth"), (CHARGE, "residual"), (AGAIN, "off_time")]),
         (
             "    dip: {at: 1 V}\n    residual: 0 V\n    off_time: {max: 1 s}\n",
-            {"a ramp that goes back": "dip.depth", "off and on again": "off_time"},
+            [(BACK, "dip.depth"), (AGAIN, "off_time.min")],
         ),
-        ("    dip: {depth: 0 V}\n    off_time: 1 s\n", {"residual charge": "residual"}),
-        ("    dip: {depth: 0 V}\n    off_time: 1 s\n    residual: 0 V\n", {}),
+        ("    dip: {depth: 0 V}\n    off_time: 1 s\n", [(CHARGE, "residual")]),
+        ("    dip: none\n    off_time: 1 s\n    residual: {min: 0 V}\n", [(CHARGE, "residual.max")]),
+        ("    dip: {depth: 0 V}\n    off_time: 1 s\n    residual: 0 V\n", []),
+        # A dip of which it is not said where it is may be anywhere, and one place alone is tried.
+        ("    dip: {depth: 1 mV}\n    off_time: 1 s\n    residual: 0 V\n", [(f"{BACK} anywhere", "dip.at")]),
+        (
+            "    dip: {depth: 1 mV, at: {max: 1 V}}\n    off_time: 1 s\n    residual: 0 V\n",
+            [(f"{BACK} anywhere", "dip.at.min")],
+        ),
+        ("    dip: {depth: 1 mV, at: {min: 0 V, max: 1 V}}\n    off_time: 1 s\n    residual: 0 V\n", []),
     ],
 )
-def test_what_is_not_tried_names_the_fact(facts: str, expected: dict[str, str]) -> None:
+def test_what_is_not_tried_names_the_fact(facts: str, expected: list[tuple[str, str]]) -> None:
     found = list(untried(bare(ONE + facts).setting))
-    assert found == [(name, f"rails.a.{fact}") for name, fact in expected.items()]
+    assert [(one.name, one.fact) for one in found] == [(name, f"rails.a.{fact}") for name, fact in expected]
+    assert {one.scene for one in found} <= {Scene.START, Scene.CYCLE}
+
+
+def test_what_a_ramp_lacks_is_not_tried_either() -> None:
+    rest = "dip: none, residual: 0 V, off_time: 1 s"
+    for ramp, expected in (
+        ("rise: {min: 1 ms}, fall: {min: 4 ms}", [("slowest ramp", "rise.max")]),
+        ("rise: {max: 1 ms}, fall: {min: 4 ms}", [("fastest ramp", "rise.min")]),
+        ("rise: 1 ms, fall: {max: 4 ms}", [(AGAIN, "fall.min")]),
+    ):
+        found = untried(bare(f"rails: {{a: {{nominal: 2 V, {ramp}, {rest}}}}}").setting)
+        assert [(one.name, one.fact) for one in found] == [(name, f"rails.a.{fact}") for name, fact in expected]
+
+
+def test_only_what_is_certain_is_tried_where_that_is_wanted() -> None:
+    """A dip may be anywhere, and what is left on a rail is not said: neither is a course that is there for certain."""
+    text = ONE + "    dip: {depth: 0.2 V}\n    off_time: 20 ms\n"
+    assert {"ramp that goes back", "off and on again"} <= set(tried(text))
+    certain = msgspec.structs.replace(bare(text).setting, certain=True)
+    assert [scenario.name for scenario in starts(certain)] == ["fastest ramp", "slowest ramp"]

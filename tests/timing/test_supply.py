@@ -11,7 +11,7 @@ from tidegate.lint.timing.supply import GivenSupply, MadeSupply, Ramp, Supply
 from tidegate.lint.timing.waveform import Waveform
 
 # 2 V, up within 4 s (2 s a volt), down within 8 s (4 s a volt); begins 1 s to 3 s after its maker is on.
-RAMP = Ramp(nominal_v=2.0, rise_s=4.0, fall_s=8.0, delay_least_s=1.0, delay_most_s=3.0)
+RAMP = Ramp(nominal_v=2.0, rise=Bounds(4.0, 4.0), fall=Bounds(8.0, 8.0), delay=Bounds(1.0, 3.0))
 MAKER = On(((10.0, 40.0),), ((-FOREVER_S, 12.0), (35.0, FOREVER_S)))
 """On from 10 s to 40 s at most, surely from 12 s to 35 s."""
 

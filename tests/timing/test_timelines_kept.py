@@ -13,7 +13,7 @@ from tests.timing.bare import bare
 from tidegate.lint.graph.dependency import build
 from tidegate.lint.physics.domain import DomainError
 from tidegate.lint.timing.evaluate import LoadState, evaluate
-from tidegate.lint.timing.interval import ALWAYS, NEVER
+from tidegate.lint.timing.interval import ALWAYS, FOREVER_S, NEVER
 from tidegate.lint.timing.order import leans_on
 from tidegate.lint.timing.scenario import Scenario, Scene
 from tidegate.lint.timing.state import ASSERTED, RELEASED, Decision, On
@@ -88,7 +88,7 @@ def test_what_was_made_once_is_kept(sound: Timelines) -> None:
         assert sound.alone(rail) is sound.alone(rail)
         assert sound.dips(rail) is sound.dips(rail)
         assert [line.scenario.rail for line in sound.dips(rail)] == [rail] * len(sound.dips(rail))
-    assert lines_of(without("rails.avdd.fall", "rails.avdd.collapse", "rails.avdd.hold_up")).alone("avdd") is None
+    assert lines_of(without("rails.avdd.collapse", "rails.avdd.hold_up")).alone("avdd") is None
     assert sound.up_v("avdd") == pytest.approx(1.6)
 
 
@@ -127,22 +127,48 @@ def test_an_override_forces_what_it_overrides_and_what_is_behind_it(sound: Timel
     assert never.may_release == NEVER
 
 
-def test_as_if_given_takes_missing_least_values_for_the_greatest(sound: Timelines) -> None:
-    (line,) = [line for line in sound.starts if line.scenario.name == "fastest ramp"]
-    # ref_fast says no least works_from: 0 V at the best, or 1.06 V; then 5 us to 60 us more.
-    best = sound.as_if_given(line.scenario, ["ref_fast", "uv_out", "unknown"]).states["ref_fast"]
-    assert isinstance(best, On)
-    assert best.may_be_on[0][0] == pytest.approx(50e-6 * 1.06 / 1.8 + 5e-6)
-    assert sound.as_if_given(line.scenario, ["uv"]).states["ref_fast"] == line.states["ref_fast"]
-    fall = sound.alone("vcore")
-    assert fall is not None
-    anew = sound.as_if_given(fall.scenario, []).states
-    assert {name: anew[name] for name in anew if name != "vcore"} == {
-        name: fall.states[name] for name in fall.states if name != "vcore"
-    }
-    # uv_out lacks nothing: its delay of 5 ns to 60 ns stays as it is.
-    out, as_it_is = sound.as_if_given(line.scenario, ["uv_out"]).states["uv_out"], line.states["uv_out"]
-    assert out == as_it_is
+# Both corners
+
+
+def _on(lines: Timelines, name: str = "ref_fast") -> On:
+    (line,) = [line for line in lines.starts if line.scenario.name == "fastest ramp"]
+    found = line.states[name]
+    assert isinstance(found, On)
+    return found
+
+
+def test_at_best_a_missing_least_value_is_as_great_as_the_greatest(sound: Timelines) -> None:
+    # ref_fast says no least works_from: 0 V at the sure corner, 1.06 V at the best; then 5 us to 60 us more.
+    assert _on(sound).may_be_on[0][0] == pytest.approx(5e-6, rel=1e-6)
+    assert _on(sound.at_best).may_be_on[0][0] == pytest.approx(50e-6 * 1.06 / 1.8 + 5e-6)
+    assert _on(sound.at_best).may_be_off == _on(sound).may_be_off
+    assert _on(sound.lone_spread) == _on(sound)  # where the greatest is given, the least may be anything
+    uv_out = [lines.starts[0].states["uv_out"] for lines in (sound, sound.at_best)]
+    assert all(isinstance(state, Decision) for state in uv_out)
+
+
+def test_at_best_of_what_is_missing_altogether_nothing_is_certain() -> None:
+    lines = lines_of(without("references.ref_fast.settling"))
+    assert _on(lines).may_be_off == ALWAYS
+    assert _on(lines.at_best) == On(NEVER, ((-FOREVER_S, pytest.approx(50e-6 * 1.06 / 1.8)),))
+    assert _on(lines.lone_spread) == _on(lines.at_best)
+
+
+def test_where_nothing_is_missing_both_corners_are_one() -> None:
+    facts = "nominal: 2 V, rise: 1 ms, fall: 1 ms, collapse: 1 V/ms, guaranteed: {min: 1.8 V, max: 2.2 V}"
+    known = bare(f"rails: {{v: {{{facts}}}}}")
+    assert known.at_best is known
+    assert bare("rails: {v: {nominal: 2 V}}").at_best is not bare("rails: {v: {nominal: 2 V}}")
+
+
+def test_what_is_certain_and_what_is_not_are_tried_by_the_same_courses(sound: Timelines) -> None:
+    """But for those that are there only if what is missing turns out so."""
+    lines = lines_of("{rails: {avdd: {dip: {at: null}}}, comparators: {uv: {trip: {falling: {max: 1.64 V}}}}}")
+    names, certain = ({line.scenario.name for line in each.starts} for each in (lines, lines.at_best))
+    assert names - certain == {"ramp that goes back"}
+    dips, sure = ({line.scenario.name for line in each.dips("avdd")} for each in (lines, lines.at_best))
+    assert sure < dips
+    assert {line.scenario.name for line in sound.starts} == {line.scenario.name for line in sound.at_best.starts}
 
 
 # What is missing
@@ -150,69 +176,86 @@ def test_as_if_given_takes_missing_least_values_for_the_greatest(sound: Timeline
 
 RISE = "rails.avdd.rise.min"
 DETECTOR: dict[str, Any] = {"references": {"ref_fast": {"settling": {"min": "5 us"}}}}
+START = (Scene.START,)
 
 
 @pytest.mark.parametrize(
-    ("patch", "element", "ask", "expected"),
+    ("patch", "element", "ask", "facts", "untried"),
     [
-        # The whole groups always, the ends where they are asked for.
-        (without("comparators.uv.domain"), "uv", {}, ["comparators.uv.domain"]),
-        (without("comparators.uv.domain"), "por_n", {}, ["comparators.uv.domain"]),
-        (without("comparators.uv.domain"), "por", {}, []),
-        (json.dumps(DETECTOR), "uv", {"latest": True}, ["references.ref_fast.settling.max"]),
-        (json.dumps(DETECTOR), "uv", {"earliest": False}, []),
-        ("", "ref_fast", {"earliest": True}, ["references.ref_fast.works_from.min"]),
-        ("", "ref_fast", {"latest": True}, []),
+        # Names, words and greatest ends of all it leans on; least ones by themselves.
+        (without("comparators.uv.domain"), "uv", {}, ["comparators.uv.domain"], []),
+        (without("comparators.uv.domain"), "por_n", {}, ["comparators.uv.domain"], []),
+        (without("comparators.uv.domain"), "por", {}, [], []),
+        (json.dumps(DETECTOR), "uv", {}, ["references.ref_fast.settling.max"], []),
+        ("", "ref_fast", {}, [], []),
+        (without("comparators.uv.sampling"), "uv", {}, ["comparators.uv.sampling"], []),
+        (without("comparators.uv.filter"), "por_n", {}, ["comparators.uv.filter"], []),
         # Ramps, of the rails behind an element and no others.
-        (without(RISE), "uv", {"starts": True}, [RISE]),
-        (without(RISE), "uv", {}, []),
-        (without(RISE), "uv", {"falls": True}, []),
-        (without("rails.avdd.fall.max"), "uv", {"slow_falls": True}, ["rails.avdd.fall.max"]),
-        (without("rails.avdd.fall.max"), "uv", {"falls": True, "starts": True}, []),
+        (without(RISE), "uv", {"scenes": START}, [], [RISE]),
+        (without(RISE), "uv", {}, [], []),
+        (without(RISE), "uv", {"falling": ["avdd"]}, [], []),
+        (without(RISE), "uv", {"dipping": ["avdd"]}, [], [RISE]),
+        (without("rails.avdd.fall.max"), "uv", {"power_down": True}, [], ["rails.avdd.fall.max"]),
+        (without("rails.avdd.fall.max"), "uv", {"falling": ["avdd"], "scenes": START}, [], []),
         (
-            without("rails.avdd.fall", "rails.avdd.collapse", "rails.avdd.hold_up"), "uv", {"falls": True},
-            ["rails.avdd.fall"],
+            without("rails.avdd.collapse", "rails.avdd.hold_up"), "uv", {"falling": ["avdd"]}, [],
+            ["rails.avdd.collapse"],
         ),
-        (without("rails.vcore.rise.min"), "uv", {"starts": True}, []),
-        (without("rails.vcore.rise.min"), "uv_core", {"starts": True}, ["rails.vcore.rise.min"]),
-        (without("rails.avdd.nominal"), "uv", {"starts": True}, ["rails.avdd.nominal"]),
+        (without("rails.avdd.collapse"), "uv", {"falling": ["avdd"]}, ["rails.avdd.collapse"], []),  # its hold-up
+        (without("rails.vcore.rise.min"), "uv", {"scenes": START}, [], []),
+        (without("rails.vcore.rise.min"), "uv_core", {"scenes": START}, ["rails.vcore.rise.min"], []),
+        (without("rails.avdd.nominal"), "uv", {}, [], ["rails.avdd.nominal"]),
+        (without("rails.avdd.residual"), "uv", {"scenes": START}, [], ["rails.avdd.residual"]),
+        (without("rails.avdd.off_time"), "uv", {"scenes": START}, [], []),
+        (without("rails.avdd.off_time"), "uv", {"scenes": (Scene.CYCLE,)}, [], ["rails.avdd.off_time"]),
         # A rail that comes after another waits for it, and a detector for the rail that it watches.
-        (without(RISE), "vcore", {"starts": True}, [RISE]),
-        # Readiness: of the load itself, and not of the nets that reset it.
-        (without("loads.adc.ready"), "adc", {"readiness": True}, ["loads.adc.ready"]),
-        (without("loads.adc.ready"), "adc", {}, []),
-        (without("comparators.uv.domain"), "core_regulator", {"readiness": True}, []),
-        (without("comparators.uv.domain"), "core_regulator", {}, ["comparators.uv.domain"]),
-        # The readiness of another load is asked for with that load.
-        (without("loads.core_regulator.ready"), "vcore", {"readiness": True}, []),
+        (without(RISE), "vcore", {"scenes": START}, [], [RISE]),
+        (without("rails.avdd.guaranteed"), "vcore", {}, ["rails.avdd.guaranteed"], []),
+        (without("rails.avdd.guaranteed"), "uv", {}, [], []),
+        # Its own time to be ready matters where the load itself is judged.
+        (without("loads.adc.ready"), "adc", {"own": True}, ["loads.adc.ready"], []),
+        (without("loads.adc.ready"), "adc", {}, [], []),
+        (without("loads.core_regulator.ready"), "vcore", {"own": True}, [], []),
+        # A net that does not say what it guards may guard any load.
+        (
+            "resets: {extra: {driven_by: [rst_out], active: low, domain: aon}}", "core_logic", {},
+            ["resets.extra.guards"], [],
+        ),
     ],
 )  # fmt: skip
-def test_what_is_missing(patch: str, element: str, ask: dict[str, bool], expected: list[str]) -> None:
-    assert list(lines_of(patch).missing(element, **ask)) == expected
+def test_what_is_missing(patch: str, element: str, ask: dict[str, Any], facts: list[str], untried: list[str]) -> None:
+    found = lines_of(patch).gaps(element, **ask)
+    assert (list(found.facts), list(found.untried)) == (facts, untried)
+
+
+def test_least_ends_are_named_by_themselves() -> None:
+    assert lines_of().gaps("ref_fast").lone == ("references.ref_fast.works_from.min",)
+    gone = lines_of(without("references.ref_fast.settling")).gaps("ref_fast")
+    assert gone.facts == ("references.ref_fast.settling",)
+    assert gone.lone == ("references.ref_fast.works_from.min",)
 
 
 def test_where_rails_are_forced_what_makes_them_counts_no_more() -> None:
-    patch = both(json.dumps(DETECTOR), without("domains.core.kind", "comparators.por.domain"))
-    lines = lines_of(patch)
+    lines = lines_of(both(json.dumps(DETECTOR), without("domains.core.kind", "comparators.por.domain")))
     slow = "references.ref_fast.settling.max"
     # core_logic lives on vcore, which the regulator makes from ref_fast; it is reset by detectors that lean on it, too.
-    assert slow in lines.missing("core_logic", latest=True, readiness=True)
-    assert lines.missing("core_logic", latest=True, readiness=True, rails_forced=True) == (
-        "domains.core.kind", "comparators.por.domain",
-    )  # fmt: skip
-    assert slow in lines.missing("core_regulator", latest=True, rails_forced=True)
+    assert set(lines.gaps("core_logic").facts) == {slow, "domains.core.kind", "comparators.por.domain"}
+    alone = lines_of(both(
+        json.dumps(DETECTOR), "output_stages: {core_out: {driven_by: [por_out]}}"
+    ))  # fmt: skip
+    assert slow in alone.gaps("core_logic").facts
+    assert alone.gaps("core_logic", rails_forced=True).facts == ()
+    assert slow in lines.gaps("core_regulator", rails_forced=True).facts
     # What stands behind its reset net, further away than its rail, counts as well.
     late = lines_of("comparators: {uv: {delay: {min: 0.3 us}}}")
-    asked = {"latest": True, "rails_forced": True}
-    assert late.missing("core_regulator", **asked) == ("comparators.uv.delay.max",)
+    assert late.gaps("core_regulator", rails_forced=True).facts == ("comparators.uv.delay.max",)
 
 
 def test_numbers_that_cannot_be_are_raised_where_they_are_behind_what_is_asked() -> None:
     lines = lines_of("rails: {vcore: {nominal: 0 V}}")
     with pytest.raises(DomainError, match="nominal_v"):
-        lines.missing("uv_core", starts=True)
-    assert lines.missing("uv", starts=True) == ()
-    assert lines.missing("uv_core") == ()
+        lines.gaps("uv_core")
+    assert lines.gaps("uv").untried == ()
 
 
 def test_behind_an_element_stands_all_it_leans_on(sound: Timelines) -> None:
@@ -231,5 +274,7 @@ def test_behind_an_element_stands_all_it_leans_on(sound: Timelines) -> None:
 
 def test_untried_is_worked_out_once(sound: Timelines) -> None:
     assert sound.untried == []
-    assert lines_of(without("rails.avdd.residual")).untried == [("residual charge", "rails.avdd.residual")]
+    lines = lines_of(without("rails.avdd.residual"))
+    assert [one[:3] for one in lines.untried] == [("residual charge", "rails.avdd.residual", "avdd")]
+    assert lines.untried is lines.untried
     assert sound.alone("unknown") is None

@@ -124,7 +124,7 @@ def release_level(case: Case, comparator: Comparator) -> CrossoverLevel:
 
 def level_is_known(case: Case, comparator: Comparator) -> bool:
     """Whether the components say enough for the level of a crossover to be worked out at each temperature."""
-    return case.attempt(lambda: release_facts(case, comparator)) is not None
+    return case.if_known(lambda: release_facts(case, comparator)) is not None
 
 
 @answered_once

@@ -127,9 +127,9 @@ def _spread(facts: CrossoverFacts, level_v: LevelOf) -> Spread:
 
 
 def _tracking(case: Case, comparator: Comparator, facts: CrossoverFacts) -> Tracking | None:
-    bounds, kept_v = case.gather(
-        lambda: follower_supplies(case, comparator),
-        lambda: 0.0 if has_no_hysteresis(comparator) else hysteresis_window(case, as_shipped(case, comparator)).most_v,
+    bounds, kept_v = (
+        follower_supplies(case, comparator),
+        (0.0 if has_no_hysteresis(comparator) else hysteresis_window(case, as_shipped(case, comparator)).most_v),
     )
     if not bounds:
         return None
@@ -153,9 +153,9 @@ def _needs_v(lines: list[FollowerLine], t_k: FloatArray, cold_k: float) -> Float
 
 def _second(case: Case, comparator: Comparator) -> SecondCrossing:
     rail = case.of(case.description.rails[comparator.watches])
-    facts, in_service_v = case.gather(
-        lambda: second_crossing_facts(case, comparator),
-        lambda: rail.most("delivered") + rail.most("ripple.peak_to_peak") / 2,
+    facts, in_service_v = (
+        second_crossing_facts(case, comparator),
+        rail.delivered.most() + rail.ripple.peak_to_peak.most() / 2,
     )
     return SecondCrossing(_spread(facts, level_of(facts)), in_service_v)
 

@@ -2,15 +2,17 @@
 
 from __future__ import annotations
 
-from math import inf
+from math import inf, isinf
 
 import msgspec
 
-from tidegate.lint.case import Case, Facts
+from tidegate.lint.case import Case
 from tidegate.lint.derived.disturbance.input_share import input_share
 from tidegate.lint.description.model.detector import Comparator, Reference
 from tidegate.lint.description.model.reset_path import Neighbour
+from tidegate.lint.facts.views.reset_path import NeighbourFacts
 from tidegate.lint.physics import coupling
+from tidegate.lint.physics.domain import product, quotient
 from tidegate.lint.physics.lasting_bump import decayed_kick_v, lasting_bump_v
 
 
@@ -20,12 +22,12 @@ class CoupledEdge(msgspec.Struct, frozen=True):
     step_v: float
     least_edge_s: float
     most_edge_s: float
-    """Infinite where it is not said how slow the edge can be."""
+    """Infinite where it does not matter how slow the edge can be."""
     r_ohm: float
     coupling_c_f: float
     least_c_f: float
     most_c_f: float
-    """Infinite where it is not said how much capacitance the node can have."""
+    """Infinite where it does not matter how much capacitance the node can have."""
 
     @property
     def peak_v(self) -> float:
@@ -42,70 +44,51 @@ class CoupledEdge(msgspec.Struct, frozen=True):
             ground_c_f=self.least_c_f,
         )  # fmt: skip
         bound_v = min(self.peak_v, held_v)
-        least_c_f = self.coupling_c_f + self.least_c_f
-        if self.most_edge_s >= lasts_s or least_c_f == 0.0:
+        if self.most_edge_s >= lasts_s or isinf(self.coupling_c_f):
             return bound_v
         after_edge_v = decayed_kick_v(
-            lasts_s=lasts_s - self.most_edge_s, charge_c=self.step_v * self.coupling_c_f, r_ohm=self.r_ohm,
-            least_c_f=least_c_f, most_c_f=self.coupling_c_f + self.most_c_f,
+            lasts_s=lasts_s - self.most_edge_s, charge_c=product(self.step_v, self.coupling_c_f), r_ohm=self.r_ohm,
+            least_c_f=self.coupling_c_f + self.least_c_f, most_c_f=self.coupling_c_f + self.most_c_f,
         )  # fmt: skip
         return min(bound_v, after_edge_v)
 
 
-def coupled_edge(case: Case, pair: Neighbour) -> CoupledEdge:
-    """The edge and the node of a pair that couples through a capacitance."""
+def coupled_edge(case: Case, pair: Neighbour, lasts_s: float) -> CoupledEdge:
+    """The edge and the node of a pair that couples through a capacitance, for whoever sees what lasts for a time."""
     facts = case.of(pair)
-    node_c = pair.node.capacitance if pair.node is not None else None
-    slowest_s = pair.edge.most if pair.edge is not None else None
-    edge = CoupledEdge(
-        step_v=facts.most("step"),
-        least_edge_s=facts.least("edge"),
-        most_edge_s=inf if slowest_s is None else slowest_s,
-        r_ohm=facts.most("node.resistance"),
-        coupling_c_f=facts.most("capacitance"),
-        least_c_f=facts.least("node.capacitance"),
-        most_c_f=inf if node_c is None or node_c.most is None else node_c.most,
+    least_c_f = facts.node.capacitance.least()
+    waits = lasts_s > 0.0  # else the peak is all there is to see
+    return CoupledEdge(
+        step_v=facts.step.most(),
+        least_edge_s=facts.edge.least(),
+        most_edge_s=facts.edge.most() if waits else inf,
+        r_ohm=facts.node.resistance.most(),
+        coupling_c_f=facts.capacitance.most(),
+        least_c_f=least_c_f,
+        most_c_f=max(least_c_f, facts.node.capacitance.most()) if waits else inf,
     )
-    case.settle()
-    return edge
 
 
-def rail_share(case: Case, facts: Facts, victim: Comparator) -> float:
+def rail_share(case: Case, facts: NeighbourFacts, victim: Comparator) -> float:
     """The part of a change at the rail that shows where a pair of neighbours meets its victim."""
-    return 1.0 if facts.must("at") == "rail" else input_share(case, victim)
+    return 1.0 if facts.at.must() == "rail" else input_share(case, victim)
 
 
-class ReferenceNode(msgspec.Struct, frozen=True):
-    """A decoupled reference, which gives a charge thrown onto it back through its source resistance."""
+def kick_v(case: Case, reference: Reference, *, charge_c: float, lasts_s: float) -> float:
+    """What a charge thrown onto a reference can still move it by after a time, in V at the reference.
 
-    least_c_f: float
-    most_c_f: float
-    """Infinite where it is not said how much decoupling it can have."""
-    r_ohm: float
-    """Infinite where it does not matter."""
-    share: float
-    """The part of a change at the victim's rail that equals a change of the reference."""
-
-    def lasting_v(self, charge_c: float, lasts_s: float) -> float:
-        """What a charge can still move the victim's level by after a time, V at its rail."""
-        if lasts_s == 0.0:
-            return coupling.charge_kick_v(charge_c=charge_c, c_f=self.least_c_f) / self.share
-        return (
-            decayed_kick_v(
-                lasts_s=lasts_s, charge_c=charge_c, r_ohm=self.r_ohm, least_c_f=self.least_c_f, most_c_f=self.most_c_f
-            )
-            / self.share
-        )
-
-
-def reference_node(case: Case, reference: Reference, victim: Comparator) -> ReferenceNode:
-    """A reference as one of the comparators on it feels it move."""
+    It gives the charge back through its source resistance.
+    """
     facts = case.of(reference)
-    decays = victim.filter is not None  # without a filter, the peak is all there is to see
-    c_f, r_ohm, share = case.gather(
-        lambda: facts.least("decoupling"),
-        lambda: facts.most("source_resistance") if decays else inf,
-        lambda: input_share(case, victim),
-    )
-    most_f = reference.decoupling.most if reference.decoupling is not None else None
-    return ReferenceNode(least_c_f=c_f, most_c_f=inf if most_f is None else most_f, r_ohm=r_ohm, share=share)
+    least_c_f = facts.decoupling.least()
+    if lasts_s == 0.0:
+        return coupling.charge_kick_v(charge_c=charge_c, c_f=least_c_f)
+    return decayed_kick_v(
+        lasts_s=lasts_s, charge_c=charge_c, r_ohm=facts.source_resistance.most(), least_c_f=least_c_f,
+        most_c_f=max(least_c_f, facts.decoupling.most()),
+    )  # fmt: skip
+
+
+def at_rail_v(at_node_v: float, share: float) -> float:
+    """A disturbance of a node, in V at the rail of which the node sees a share."""
+    return quotient(at_node_v, share)

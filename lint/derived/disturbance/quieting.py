@@ -1,4 +1,4 @@
-"""What would keep a neighbour's bump as small as it must be, and what that costs."""
+"""What would keep a neighbour's bump as small as it must be, and what that costs; for where all of it is known."""
 
 from __future__ import annotations
 
@@ -25,17 +25,13 @@ Kept = tuple[Comparator, float]
 
 def quieter_pair(case: Case, pair: Neighbour, victims: Sequence[Kept]) -> str:
     """What would make a described pair quiet enough for each of its victims."""
+    facts = case.of(pair)
     if pair.kind == "shared_reference":
-        charge_c, reference = case.gather(
-            lambda: case.of(pair).most("charge"), lambda: case.of(pair).element("reference")
-        )
-        return quieter_reference(case, reference, charge_c, victims)
+        return quieter_reference(case, facts.reference.element(), facts.charge.most(), victims)
     if pair.kind == "capacitance":
         return _quieter_node(case, pair, victims)
-    facts = case.of(pair)
     allowed_v = min(kept_v * rail_share(case, facts, victim) for victim, kept_v in victims)
-    step_a, impedance_ohm = facts.most("current_step"), facts.most("impedance")
-    case.settle()
+    step_a, impedance_ohm = facts.current_step.most(), facts.impedance.most()
     ohm, amperes = Dimension.RESISTANCE, Dimension.CURRENT
     return (
         f"an impedance of at most {show_down(allowed_v / step_a, ohm)} (now {show(impedance_ohm, ohm)}), or a step of "
@@ -48,17 +44,18 @@ def quieter_reference(case: Case, reference: Reference, charge_c: float, victims
     allowed_v = min(kept_v * input_share(case, victim) for victim, kept_v in victims)
     facts = case.of(reference)
     needed_f = coupling.decoupling_for_charge_f(charge_c=charge_c, allowed_v=allowed_v)
-    enough = f"at least {show_up(needed_f, Dimension.CAPACITANCE)} on {reference.id}"
-    now_f = facts.least("decoupling")
-    case.settle()
-    r_ohm = case.attempt(lambda: facts.most("source_resistance"))
-    cost = "" if r_ohm is None else f", which then settles {_settles(r_ohm, needed_f)}"
-    return f"{enough} (now {show(now_f, Dimension.CAPACITANCE)}){cost}"
+    now_f = facts.decoupling.least()
+    r_ohm = case.if_known(facts.source_resistance.most)
+    cost = "" if not r_ohm else f", which then settles {_settles(r_ohm, needed_f)}"
+    return (
+        f"at least {show_up(needed_f, Dimension.CAPACITANCE)} on {reference.id} "
+        f"(now {show(now_f, Dimension.CAPACITANCE)}){cost}"
+    )
 
 
 def _quieter_node(case: Case, pair: Neighbour, victims: Sequence[Kept]) -> str:
     """The capacitance of the node in which no edge leaves more than each victim's level keeps."""
-    edge = coupled_edge(case, pair)
+    edge = coupled_edge(case, pair, 0.0)
     node = {"step_v": edge.step_v, "r_ohm": edge.r_ohm, "coupling_c_f": edge.coupling_c_f}
     needed_f = 0.0
     for victim, kept_v in victims:

@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable
+from collections.abc import Callable
 
 import msgspec
 
+from tidegate.lint.account import Sum
 from tidegate.lint.case import Case
-from tidegate.lint.derived.disturbance.disturbance import Bump, ignored_s
-from tidegate.lint.derived.levels.trip_levels import hysteresis_window
+from tidegate.lint.derived.disturbance.disturbance import Bump, bump, seen_term
+from tidegate.lint.derived.disturbance.kept_distance import kept
+from tidegate.lint.derived.disturbance.who_disturbs import Disturber
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.judgement import Measure, Relation
 from tidegate.lint.quantity import Dimension, show
@@ -17,41 +19,41 @@ from tidegate.lint.quantity import Dimension, show
 class SeenBump(msgspec.Struct, frozen=True):
     """In V at the rail that the victim watches."""
 
+    disturber: Disturber
     victim: Comparator
-    bump: Bump
-    seen_v: float
+    seen: Sum
     """What its filter lets it see."""
-    kept_v: float
-    """Its least hysteresis; 0 or less where its level keeps no distance."""
+    kept: Sum
+    """Its least hysteresis; 0 where its level keeps no distance."""
 
     @property
-    def is_kept(self) -> bool:
-        """Whether the level keeps the distance that the bump needs; at the limit, it does."""
-        return Measure(self.kept_v, self.seen_v, Dimension.VOLTAGE, Relation.AT_MOST).holds
+    def measure(self) -> Measure:
+        """What it sees against what it keeps; at the limit, it keeps its distance."""
+        return Measure(self.kept.value, self.seen.value, Dimension.VOLTAGE, Relation.AT_MOST)
 
-    @property
-    def spare_v(self) -> float:
-        """What the bump leaves of the distance, V."""
-        return self.kept_v - self.seen_v
-
-    def text(self) -> str:
-        """The bump, and how much of it the filter lets through."""
-        peak = f"a peak of {show(self.bump.peak_v, Dimension.VOLTAGE)} at the rail"
-        filter_s = self.victim.filter.least if self.victim.filter is not None else None
-        if filter_s is None or self.seen_v == self.bump.peak_v:
-            return peak
-        seen, ignored = show(self.seen_v, Dimension.VOLTAGE), show(filter_s, Dimension.DURATION)
-        return f"{peak}, {seen} after the {ignored} that the filter ignores"
+    def text(self, case: Case) -> str:
+        """The bump, and how much of it the filter lets through; empty where it is not known."""
+        return bump_text(case, self.victim, lambda: bump(case, self.disturber))
 
 
-def seen_bumps(case: Case, victim: Comparator, asks: Iterable[Callable[[], Bump]]) -> list[SeenBump]:
-    """Work out bumps on one victim, what it sees of each and the distance that its level keeps.
+def bump_text(case: Case, victim: Comparator, ask: Callable[[], Bump]) -> str:
+    """A bump in words; empty where it is not known."""
+    known = case.if_known(ask)
+    if known is None:
+        return ""
+    peak = f"a peak of {show(known.peak_v, Dimension.VOLTAGE)} at the rail"
+    filter_s = case.if_known(case.of(victim).filter.least)
+    if not filter_s or known.seen_v == known.peak_v:
+        return peak
+    seen, ignored = show(known.seen_v, Dimension.VOLTAGE), show(filter_s, Dimension.DURATION)
+    return f"{peak}, {seen} after the {ignored} that the filter ignores"
 
-    Raises: MissingFactsError: where a fact of any of them is missing, with all that is.
+
+def seen_bump(case: Case, victim: Comparator, disturber: Disturber) -> SeenBump:
+    """What a comparator sees of a disturber, and the distance that its level keeps.
+
+    Raises:
+        MissingFactsError: where it is not said at which code the levels are, and they make the hysteresis.
+        DomainError: where a formula refuses its numbers.
     """
-    bumps, lasts_s, kept_v = case.gather(
-        lambda: case.gather_all(asks),
-        lambda: ignored_s(case, victim),
-        lambda: hysteresis_window(case, victim).least_v,
-    )
-    return [SeenBump(victim, bump, bump.lasting_v(lasts_s), kept_v) for bump in bumps]
+    return SeenBump(disturber, victim, case.sum(seen_term(case, disturber)), kept(case, victim))

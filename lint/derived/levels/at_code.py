@@ -22,7 +22,7 @@ def as_shipped(case: Case, comparator: Comparator) -> Comparator:
     """
     if not comparator.codes or comparator.trip is not None:
         return comparator
-    return at_code(comparator, case.of(comparator).must("ships_with"))
+    return at_code(comparator, case.of(comparator).ships_with.must())
 
 
 def as_far_as_said(comparator: Comparator) -> Comparator:

@@ -8,6 +8,7 @@ import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.levels.guarded_loads import Bound
+from tidegate.lint.physics.domain import product
 
 
 class FollowerLine(msgspec.Struct, frozen=True):
@@ -24,17 +25,12 @@ class FollowerLine(msgspec.Struct, frozen=True):
 
     def needs_v(self, t_k: float, cold_k: float) -> float:
         """The supply needed at a temperature, V."""
-        return self.at_cold_v + self.slope_v_per_k * (t_k - cold_k)
+        return self.at_cold_v + product(self.slope_v_per_k, t_k - cold_k)
 
 
 def follower_lines(case: Case, bounds: Sequence[Bound]) -> list[FollowerLine]:
-    """A line for each element that follows; level where nothing is said about temperature.
-
-    Raises: MissingFactsError: where a fact is missing.
-    """
-    lines = [_line(case, bound) for bound in bounds]
-    case.settle()
-    return lines
+    """A line for each element that follows: level where nothing is said about temperature."""
+    return [_line(case, bound) for bound in bounds]
 
 
 def most_demanding(lines: Sequence[FollowerLine], t_k: float, cold_k: float) -> FollowerLine:
@@ -47,4 +43,4 @@ def _line(case: Case, bound: Bound) -> FollowerLine:
     if reference is None or reference.works_from_slope is None:
         return FollowerLine(bound.element, bound.level_v, 0.0)
     facts = case.of(reference)
-    return FollowerLine(bound.element, facts.most("works_from"), facts.most("works_from_slope"))
+    return FollowerLine(bound.element, facts.works_from.most(), facts.works_from_slope.most())

@@ -23,10 +23,23 @@ class Bound(msgspec.Struct, frozen=True):
     element: str
     fact: str
     path: Path
+    waits: tuple[str, ...] = ()
+    """The facts without which the level is not exactly known."""
 
 
-def guarded_loads(graph: Graph, detector: str) -> Iterator[tuple[Load, Path]]:
+def guarded_loads(graph: Graph, detector: str) -> tuple[tuple[Load, Path], ...]:
     """Every load that a reset net of a detector guards, by itself or with its domain, and the way to it."""
+    kept = graph.once(_kept)
+    if detector not in kept:
+        kept[detector] = tuple(_guarded(graph, detector))
+    return kept[detector]
+
+
+def _kept(_graph: Graph) -> dict[str, tuple[tuple[Load, Path], ...]]:
+    return {}
+
+
+def _guarded(graph: Graph, detector: str) -> Iterator[tuple[Load, Path]]:
     reach = Reach(detector, drives(graph))
     seen: set[str] = set()
     for net in reach:
@@ -63,8 +76,10 @@ def _supplies(case: Case, comparator: Comparator, *, least: bool) -> list[Bound]
         facts = case.of(load)
         for index, need in enumerate(load.needs):
             if need.rail == comparator.watches:
-                fact = f"needs.{index}.works"
-                level_v = facts.least(fact) if least else facts.most(fact)
-                found.append(Bound(level_v, load.id, facts.path(fact), path))
+                works = facts.needs[index].works
+                log = case.reading.listen()
+                level_v = works.least() if least else works.most()
+                case.reading.unlisten()
+                found.append(Bound(level_v, load.id, works.path, path, tuple(log)))
     case.settle()
     return found

@@ -3,122 +3,191 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Iterator, Sequence
 from typing import Final
 
 import msgspec
-from msgspec.structs import replace
 
-from tidegate.lint.derived.levels.placement_facts import PlacementFacts, limits, nominal_limits, spread_of
-from tidegate.lint.physics.placement import (
-    Level,
-    Limit,
-    Placement,
-    Requirement,
-    Side,
-    largest_hysteresis_v,
-    placement,
-)
-from tidegate.lint.physics.trip_window import Window
+from tidegate.lint.derived.levels.placing import AS_STATED, Answer, Place, Placing, Stated
+from tidegate.lint.derived.levels.requirements import Due
+from tidegate.lint.derived.levels.trip_levels import Which
+from tidegate.lint.facts.reading import Corner
 
-_MOST_STEPS: Final = 60
+
+class Limit(msgspec.Struct, frozen=True):
+    """What sets an end of an interval.
+
+    Symbols:
+        name           the requirement
+        which          the level that it holds for
+        limit_v     V  what the end of that level must keep
+        error_v     V  how far the end of the level lies from its nominal there
+        fact           the fact that the limit rests on most
+        why            the numbers behind it
+    """
+
+    name: str
+    which: Which
+    limit_v: float
+    error_v: float
+    fact: str
+    why: str
+
+
+class Ends(msgspec.Struct, frozen=True):
+    """How far the levels may be moved, in V, with all that is missing at one corner.
+
+    Symbols:
+        least_v, most_v  V  the ends, from where the levels stand; without end where nothing limits them
+        below, above        what sets them; None where nothing does, or nothing is known that does
+    """
+
+    least_v: float
+    most_v: float
+    below: Limit | None
+    above: Limit | None
+
+    @property
+    def room_v(self) -> float:
+        """How far the levels can be moved, in V; below 0 by what is short."""
+        return self.most_v - self.least_v if self.most_v != self.least_v else 0.0
+
+    @property
+    def middle_v(self) -> float:
+        """The place that leaves the same room to either side, in V; without end where an end is."""
+        return (self.least_v + self.most_v) / 2
+
+    @property
+    def is_empty(self) -> bool:
+        """Whether no level keeps every limit."""
+        return not self.least_v <= self.most_v
+
+
+class Kept(msgspec.Struct, frozen=True):
+    """How far the levels as they stand keep a requirement, in V, with all that is missing at either corner."""
+
+    name: str
+    sure_v: float
+    best_v: float
+    terms: tuple[str, ...]
+    """What is not known of it, by term or fact."""
+
+    @property
+    def is_exact(self) -> bool:
+        """Whether nothing is missing."""
+        return not self.terms
 
 
 class LevelPlacement(msgspec.Struct, frozen=True):
     """The answer for one detector.
 
     Symbols:
-        falling                  interval of the nominal falling level; the rising one lies the hysteresis above
-        below, above             the limits that set its ends, as limits on the level itself
-        largest_hysteresis_v  V  largest nominal hysteresis that leaves a place for the levels
-        margins_v             V  of the levels of today, by requirement; empty where the levels are not given
+        stated  where the levels stand today
+        best    the ends as far as is known: no level beyond them can keep every limit
+        sure    the ends within which every limit is kept whatever is missing; the same where nothing is
+        kept    how the levels of today keep each requirement; empty where there are none
+        waits   the facts that are missing
     """
 
-    facts: PlacementFacts
-    falling: Placement
-    below: Limit
-    above: Limit
-    largest_hysteresis_v: float
-    margins_v: Mapping[Requirement, float]
+    stated: Stated
+    best: Ends
+    sure: Ends
+    kept: tuple[Kept, ...]
+    waits: tuple[str, ...]
 
     @property
-    def room_v(self) -> float:
-        """How far the levels can be moved, in V; below 0 by what is short."""
-        return self.falling.most_v - self.falling.least_v
+    def is_exact(self) -> bool:
+        """Whether nothing is missing."""
+        return not self.waits
 
     @property
-    def middle_v(self) -> float:
-        """The falling level that leaves the same room to either side, in V."""
-        return (self.falling.most_v + self.falling.least_v) / 2
+    def stands(self) -> bool | None:
+        """Whether the levels of today keep every limit; None where there are none, or where what is missing decides."""
+        return stands(self.kept)
 
 
-def place_levels(facts: PlacementFacts) -> LevelPlacement:
-    """Solve the limits for the levels."""
-    hysteresis_v = facts.levels.hysteresis_v
-    raw, nominal = limits(facts), nominal_limits(facts)
-    found = placement(nominal, hysteresis_v=hysteresis_v)
+ROUNDING_V: Final = 1e-12
+"""What rounding leaves of a level at its limit."""
+
+
+def stands(kept: Sequence[Kept]) -> bool | None:
+    """Whether levels keep every requirement; None where there are none, or where what is missing decides."""
+    if not kept or any(each.best_v < -ROUNDING_V for each in kept):
+        return False if kept else None
+    return True if all(each.sure_v >= -ROUNDING_V for each in kept) else None
+
+
+def kept_by(placing: Placing) -> tuple[Kept, ...]:
+    """How the levels as they stand keep each requirement; empty where there are none."""
+    return tuple(_kept(placing, _today(placing))) if placing.stated.placed else ()
+
+
+def place_levels(placing: Placing) -> LevelPlacement:
+    """Solve the requirements for the levels, at both corners of what is missing."""
+    today = _today(placing)
+    waits = dict.fromkeys(placing.unsaid)
+    for answer in today.values():
+        waits.update(dict.fromkeys(answer.waits))
+    best = _ends(placing, Corner.BEST, today)
     return LevelPlacement(
-        facts=facts,
-        falling=found,
-        below=_setting(raw, nominal, Side.LEAST, found.least_v, hysteresis_v),
-        above=_setting(raw, nominal, Side.MOST, found.most_v, hysteresis_v),
-        largest_hysteresis_v=_largest_hysteresis_v(facts),
-        margins_v=_margins_today_v(facts),
-    )
+        stated=placing.stated,
+        best=best,
+        sure=_ends(placing, Corner.SURE, today) if waits else best,
+        kept=tuple(_kept(placing, today)) if placing.stated.placed else (),
+        waits=tuple(waits),
+    )  # fmt: skip
 
 
-def _setting(
-    raw: tuple[Limit, ...], nominal: tuple[Limit, ...], side: Side, end_v: float, hysteresis_v: float
-) -> Limit:
-    """The limit behind an end, before the error was taken off."""
-    ends_v = (limit.nominal_v - (hysteresis_v if limit.level is Level.RISING else 0.0) for limit in nominal)
-    return next(limit for limit, at_v in zip(raw, ends_v, strict=True) if limit.side is side and at_v == end_v)
+def _today(placing: Placing) -> dict[tuple[str, Corner], Answer]:
+    return {(due.name, corner): placing.margin(due, corner) for due in placing.dues for corner in Corner}
 
 
-def _largest_hysteresis_v(facts: PlacementFacts) -> float:
-    """By steps: where one level is stated as the other and the hysteresis, its limits depend on it a little."""
-    hysteresis_v = largest_hysteresis_v(nominal_limits(facts))
-    for _ in range(_MOST_STEPS):
-        before_v = hysteresis_v
-        hysteresis_v = largest_hysteresis_v(nominal_limits(with_hysteresis(facts, hysteresis_v)))
-        if abs(hysteresis_v - before_v) <= 1e-12:
-            break
-    return hysteresis_v
+def _ends(placing: Placing, corner: Corner, today: dict[tuple[str, Corner], Answer]) -> Ends:
+    least: tuple[float, Due | None] = (-math.inf, None)
+    most: tuple[float, Due | None] = (math.inf, None)
+    for due in placing.dues:
+        if math.isinf(margin_v := today[due.name, corner].margin_v) and corner is Corner.BEST and margin_v > 0.0:
+            continue
+        limit_v = placing.limit_v(due, corner)
+        if due.end == "least" and limit_v > least[0]:
+            least = (limit_v, due)
+        elif due.end == "most" and limit_v < most[0]:
+            most = (limit_v, due)
+    return Ends(least[0], most[0], _limit(placing, corner, *least), _limit(placing, corner, *most))
 
 
-def with_hysteresis(facts: PlacementFacts, hysteresis_v: float) -> PlacementFacts:
-    """The same detector with another nominal hysteresis."""
-    levels = facts.levels
-    more_v = hysteresis_v - levels.hysteresis_v
-    falling, rising = levels.falling, levels.rising
-    if falling.above_base_v:
-        falling = replace(falling, above_base_v=falling.above_base_v - more_v)
-    if rising.above_base_v:
-        rising = replace(rising, above_base_v=rising.above_base_v + more_v)
-    return replace(facts, levels=replace(levels, hysteresis_v=hysteresis_v, falling=falling, rising=rising))
+def _limit(placing: Placing, corner: Corner, shift_v: float, due: Due | None) -> Limit | None:
+    """What sets an end; None where that is not known, or lies beyond every level."""
+    if due is None:
+        return None
+    answer = placing.margin(due, corner, Place(shift_v) if math.isfinite(shift_v) else AS_STATED)
+    found = answer.requirement
+    if found is None:
+        return None
+    stated = placing.stated
+    point_v = stated.falling_v if found.which == "falling" else stated.rising_v
+    error_v = math.nan if point_v is None else abs(found.have.value - (point_v + shift_v))
+    fact = found.need.lines[0].of or (found.bound.fact if found.bound is not None else "")
+    if found.bound is not None:
+        fact = found.bound.fact
+    return Limit(found.name, found.which, found.need.value, error_v, fact, found.why)
 
 
-def windows_at(facts: PlacementFacts, falling_v: float, rising_v: float) -> Mapping[Level, Window]:
-    """Where the levels lie, in V, with their nominals placed."""
-    found = {}
-    for level, nominal_v in ((Level.FALLING, falling_v), (Level.RISING, rising_v)):
-        error_v = spread_of(facts, level).at_v(nominal_v)
-        found[level] = Window(nominal_v - error_v, nominal_v + error_v)
-    return found
+def _kept(placing: Placing, today: dict[tuple[str, Corner], Answer]) -> Iterator[Kept]:
+    for due in placing.dues:
+        sure, best = today[due.name, Corner.SURE], today[due.name, Corner.BEST]
+        if best.requirement is None and not best.waits:
+            continue  # there is nothing of the sort to keep
+        yield Kept(due.name, sure.margin_v, best.margin_v, _terms(best, sure))
 
 
-def margins_v(facts: PlacementFacts, windows: Mapping[Level, Window]) -> Mapping[Requirement, float]:
-    """How far the levels keep each requirement, in V; below 0 they do not."""
-    found: dict[Requirement, float] = {}
-    for limit in limits(facts):
-        window = windows[limit.level]
-        margin_v = window.least_v - limit.nominal_v if limit.side is Side.LEAST else limit.nominal_v - window.most_v
-        found[limit.by] = min(margin_v, found.get(limit.by, math.inf))
-    return found
-
-
-def _margins_today_v(facts: PlacementFacts) -> Mapping[Requirement, float]:
-    levels = facts.levels
-    if levels.falling_v is None or levels.rising_v is None:
-        return {}
-    return margins_v(facts, windows_at(facts, levels.falling_v, levels.rising_v))
+def _terms(*answers: Answer) -> tuple[str, ...]:
+    """What is not known, by term where the account has it, with the facts that no term names."""
+    found: dict[str, None] = {}
+    for answer in answers:
+        lines = () if answer.requirement is None else (*answer.requirement.have.lines, *answer.requirement.need.lines)
+        terms = [line for line in lines if line.waits]
+        covered = {fact for line in terms for fact in line.waits}
+        found.update(dict.fromkeys(line.name for line in terms))
+        found.update(dict.fromkeys(fact for fact in answer.waits if fact not in covered))
+    return tuple(found)

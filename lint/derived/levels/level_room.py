@@ -2,100 +2,80 @@
 
 from __future__ import annotations
 
-from typing import Final
-
 import msgspec
 
+from tidegate.lint.account import Sum
 from tidegate.lint.case import Case
 from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.derived.levels.at_code import as_shipped
-from tidegate.lint.derived.levels.level_margins import LevelMargin, comes_back, guarantee, protects_nothing
+from tidegate.lint.derived.levels.requirements import Requirement, comes_back, protects
 from tidegate.lint.derived.levels.trip_levels import (
+    End,
+    Which,
     falling_window,
-    has_no_hysteresis,
-    hysteresis_window,
+    hysteresis_end,
+    level_end,
     levels_bound_hysteresis,
     rising_window,
 )
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.judgement import Measure, Relation
-from tidegate.lint.physics.trip_window import Window
 from tidegate.lint.quantity import Dimension
-
-NEVER_APART: Final = "what it guards does not work in all the range delivered (description/loads says so)"
-"""Why there is no room to judge, where the description itself leaves none."""
 
 
 class LevelRoom(msgspec.Struct, frozen=True):
     """The room between the limit of the level that protects and that of the level that lets go, in V."""
 
-    protects: LevelMargin
-    returns: LevelMargin
-    room_v: float
+    protects: Requirement
+    returns: Requirement
+    room: Sum
     """Below 0 where the two limits lie the wrong way round."""
-    spread_v: float
+    spread: Sum
     """How far the level that protects lies from end to end."""
-    hysteresis_v: float
+    hysteresis: Sum
     """How much further the level that lets go can lie; 0 where there is no hysteresis."""
-    apart_by_description: bool
-    """Whether the load and what the rail delivers contradict each other, whatever the levels are."""
 
     @property
-    def left_v(self) -> float:
+    def left(self) -> Sum:
         """What the spread leaves of the room."""
-        return self.room_v - self.spread_v
+        return self.room.less(self.spread)
 
     @property
     def spread_fits(self) -> bool:
         """Whether there is room for the spread."""
-        return Measure(self.room_v, self.spread_v, Dimension.VOLTAGE, Relation.AT_MOST).holds
-
-    @property
-    def hysteresis_fits(self) -> bool:
-        """Whether what the spread leaves is enough for the hysteresis."""
-        return Measure(self.left_v, self.hysteresis_v, Dimension.VOLTAGE, Relation.AT_MOST).holds
+        return Measure(self.room.value, self.spread.value, Dimension.VOLTAGE, Relation.AT_MOST).holds
 
 
-def tracks_its_bound(case: Case, comparator: Comparator, protects: LevelMargin) -> bool:
+def tracks_its_bound(case: Case, comparator: Comparator, found: Requirement) -> bool:
     """Whether a level that is made without a reference moves with temperature as what it protects does."""
-    assert protects.bound is not None
-    return comparator.crossover is not None and protects.bound.element not in case.description.loads
+    assert found.bound is not None
+    return comparator.crossover is not None and found.bound.element not in case.description.loads
 
 
 @answered_once
 def level_room(case: Case, comparator: Comparator) -> LevelRoom | None:
     """The room of a detector; None where nothing leans on it, or where its level tracks what does.
 
-    Raises: MissingFactsError: where a fact is missing.
+    Raises: MissingFactsError: where a fact without which there is no number is missing.
     """
-    if protects_nothing(case, comparator):
-        return None
     shipped = as_shipped(case, comparator)
-    over = comparator.role == "over_voltage"
-    protects, returns, level, apart = case.gather(
-        lambda: guarantee(case, shipped),
-        lambda: comes_back(case, shipped),
-        lambda: rising_window(case, shipped) if over else falling_window(case, shipped),
-        lambda: Window(0.0, 0.0) if has_no_hysteresis(shipped) else hysteresis_window(case, shipped),
-    )
-    assert protects is not None and protects.bound is not None
-    if tracks_its_bound(case, comparator, protects):
+    found, returns = protects(case, shipped), comes_back(case, shipped)
+    if found is None or tracks_its_bound(case, comparator, found):
         return None
-    onward = -1.0 if over else 1.0
-    last_v = level.least_v if over else level.most_v
-    hysteresis_v = apart.most_v
-    if levels_bound_hysteresis(shipped, "falling" if over else "rising", "least" if over else "most"):
-        hysteresis_v = min(hysteresis_v, onward * (returns.end_v - last_v))
-    delivered = case.description.rails[comparator.watches].delivered
-    assert delivered is not None
-    service_v = delivered.most if over else delivered.least
-    assert service_v is not None
+    over = comparator.role == "over_voltage"
+    level = rising_window(case, shipped) if over else falling_window(case, shipped)
+    last: End = "least" if over else "most"
+    lets_go: Which = "falling" if over else "rising"
+    apart = hysteresis_end(case, shipped, "most")
+    if levels_bound_hysteresis(shipped, lets_go):
+        other = level_end(case, shipped, lets_go, last)
+        further = level.end(last).less(other) if over else other.less(level.end(last))
+        apart = min(apart, further, key=lambda each: each.value)
+    elif shipped.trip is not None and getattr(shipped.trip, lets_go) is None:
+        # a level that is not stated lies no further, and may lie less far: which extremes go together is not said
+        apart = msgspec.structs.replace(apart, loose=level_end(case, shipped, lets_go, last).loose)
+    limits = (found.need, returns.need) if over else (returns.need, found.need)
     return LevelRoom(
-        protects=protects,
-        returns=returns,
-        room_v=onward * (returns.limit_v - protects.limit_v),
-        spread_v=level.most_v - level.least_v,
-        hysteresis_v=hysteresis_v,
-        apart_by_description=protects.bound.element in case.description.loads
-        and onward * (service_v - protects.bound.level_v) < 0.0,
-    )
+        protects=found, returns=returns, room=limits[0].less(limits[1]),
+        spread=level.end("most").less(level.end("least")), hysteresis=apart,
+    )  # fmt: skip

@@ -1,26 +1,37 @@
-"""What would give the levels of a detector more room, and how much: the placement once more with one thing changed."""
+"""What would give the levels of a detector more room, and how much: the placement once more with one fact changed."""
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+import math
+from collections.abc import Callable, Iterator, Sequence
+from functools import partial
 from typing import Final
 
 import msgspec
-from msgspec.structs import replace
 
-from tidegate.lint.derived.levels.level_placement import LevelPlacement, place_levels, with_hysteresis
-from tidegate.lint.derived.levels.level_spread import LevelSpread
-from tidegate.lint.derived.levels.placement_facts import PlacementFacts
-from tidegate.lint.quantity import Dimension, show
+from tidegate.lint.case import Case
+from tidegate.lint.derived.levels.follower_supplies import follower_supplies
+from tidegate.lint.derived.levels.guarded_loads import Bound, greatest_supplies, least_supplies
+from tidegate.lint.derived.levels.largest_fits import error_changes, one_error, range_changes, widened
+from tidegate.lint.derived.levels.level_placement import Ends, LevelPlacement
+from tidegate.lint.derived.levels.placing import Changes, Placing
+from tidegate.lint.derived.levels.response import slope
+from tidegate.lint.derived.levels.trip_causes import cause
+from tidegate.lint.derived.levels.trip_levels import rising_window
+from tidegate.lint.derived.reset_path.guarding_nets import watching
+from tidegate.lint.description.model.detector import Comparator, Hysteresis, Trip
+from tidegate.lint.facts.reading import Corner, Reading
+from tidegate.lint.facts.view import Number
+from tidegate.lint.judgement import Level
+from tidegate.lint.quantity import Dimension, Voltage, show
 
 _STEP_V: Final = 0.010
-"""By how much a sign-off or another detector's level is moved, to see what it buys."""
+"""By how much a sign-off, a supply or another detector's level is moved, to see what it buys."""
 
 _WORTH_V: Final = 5e-5
 """What buys less is not named."""
 
 _V: Final = Dimension.VOLTAGE
-_S: Final = Dimension.DURATION
 
 
 class Lever(msgspec.Struct, frozen=True):
@@ -32,125 +43,170 @@ class Lever(msgspec.Struct, frozen=True):
     gain_v: float
 
 
-def levers(found: LevelPlacement, *, detector: str, rail: str, least_hysteresis_v: float | None) -> list[Lever]:
-    """Every lever that buys room, the best first.
+class _Tried(msgspec.Struct, frozen=True):
+    what: str
+    change: str
+    fact: str
+    changes: Changes
+    apart_v: float = 0.0
+
+
+def levers(placing: Placing, found: LevelPlacement, *, least_hysteresis_v: float | None) -> tuple[Lever, ...]:
+    """Every lever that buys room, the best first; what is missing stands at its best.
 
     ``least_hysteresis_v`` is what the hysteresis must at least be, None where that is not known.
     """
-    base = f"comparators.{detector}"
+    case = Case(
+        subject=placing.detector, rule="", level=Level.NOTE, description=placing.description, graph=placing.graph,
+        reading=Reading(Corner.BEST),
+    )  # fmt: skip
     tried = [
-        *_errors(found.facts, base),
-        *_response(found.facts, base, f"rails.{rail}"),
-        *_supply(found.facts, f"rails.{rail}"),
-        *_bounds(found.facts),
-        *_hysteresis(found.facts, base, least_hysteresis_v),
+        *_errors(placing, case),
+        *_response(placing, case),
+        *_supply(placing, case),
+        *_bounds(placing, case),
+        *_hysteresis(placing, least_hysteresis_v),
     ]
-    solved = [
-        Lever(what, change, fact, place_levels(facts).room_v - found.room_v) for what, change, fact, facts in tried
-    ]
-    return sorted((lever for lever in solved if lever.gain_v >= _WORTH_V), key=lambda lever: -lever.gain_v)
+    solved = [Lever(each.what, each.change, each.fact, _gain_v(placing, found.best, each)) for each in tried]
+    return tuple(sorted((lever for lever in solved if lever.gain_v >= _WORTH_V), key=lambda lever: -lever.gain_v))
 
 
-_Tried = tuple[str, str, str, PlacementFacts]
+def _gain_v(placing: Placing, now: Ends, tried: _Tried) -> float:
+    """By how much either end moves out, in V."""
+    then = placing.interval_v(Corner.BEST, apart_v=tried.apart_v, changes=tried.changes)
+    gains = (now.least_v - then[0], then[1] - now.most_v)
+    return sum(gain_v for gain_v in gains if math.isfinite(gain_v))
 
 
-def _errors(facts: PlacementFacts, base: str) -> Iterator[_Tried]:
-    names = list(dict.fromkeys(e.at_zero.name for s in _spreads(facts) for e in s.errors))
-    for name in names:
-        yield f"{name} error halved", _halved_error(facts, name), f"{base}.errors.{name}", _scaled(facts, {name})
-    if len(names) > 1:
-        yield "all errors halved, as by trim", "", f"{base}.errors", _scaled(facts, set(names))
-    if any(spread.half_v for spread in _spreads(facts)):
-        levels = facts.levels
-        narrower = replace(
-            levels,
-            falling=replace(levels.falling, half_v=levels.falling.half_v / 2),
-            rising=replace(levels.rising, half_v=levels.rising.half_v / 2),
-        )
-        widest_v = max(spread.half_v for spread in _spreads(facts))
-        change = f"+-{show(widest_v, _V)} to +-{show(widest_v / 2, _V)}"
-        fact = f"{base}.trip" if levels.ranged else f"{base}.hysteresis.amount"
-        what = "range of the levels halved" if levels.ranged else "tolerance of the hysteresis halved"
-        yield what, change, fact, replace(facts, levels=narrower)
+def _halved(value: float) -> float:
+    return value / 2
 
 
-def _spreads(facts: PlacementFacts) -> tuple[LevelSpread, LevelSpread]:
-    return facts.levels.falling, facts.levels.rising
+def _errors(placing: Placing, case: Case) -> Iterator[_Tried]:
+    detector = placing.detector
+    base = f"comparators.{detector.id}"
+    for name in detector.errors:
+        yield _Tried(
+            f"{name} error halved", _halved_error(case, placing, name), f"{base}.errors.{name}",
+            one_error(placing, name, 0.5),
+        )  # fmt: skip
+    if len(detector.errors) > 1:
+        yield _Tried("all errors halved, as by trim", "", f"{base}.errors", dict(error_changes(placing, 0.5)))
+    ranges = range_changes(placing, 0.5)
+    if ranges:
+        trip = detector.trip or Trip()
+        widest_v = max(_half_v(span) for span in (trip.falling, trip.rising) if span is not None)
+        yield _Tried("range of the levels halved", _half_widths(widest_v), f"{base}.trip", ranges)
+    amount = detector.hysteresis.amount if isinstance(detector.hysteresis, Hysteresis) else None
+    narrower = widened(amount, 0.5)
+    if amount is not None and narrower is not None:
+        change, fact = _half_widths(_half_v(amount)), placing.amount
+        yield _Tried("tolerance of the hysteresis halved", change, fact, {fact: narrower})
 
 
-def _halved_error(facts: PlacementFacts, name: str) -> str:
-    error = next(e for s in _spreads(facts) for e in s.errors if e.at_zero.name == name)
-    parts = []
-    if error.share:
-        parts.append((error.share, Dimension.RATIO))
-    if error.at_zero.at_rail_v:
-        parts.append((error.at_zero.at_rail_v, _V))
-    sizes = ", ".join(f"{show(size, unit)} to {show(size / 2, unit)}" for size, unit in parts)
+def _half_v(span: Voltage) -> float:
+    return 0.0 if span.least is None or span.most is None else (span.most - span.least) / 2
+
+
+def _half_widths(half_v: float) -> str:
+    return f"+-{show(half_v, _V)} to +-{show(half_v / 2, _V)}"
+
+
+def _halved_error(case: Case, placing: Placing, name: str) -> str:
+    found = case.if_known(lambda: cause(case, placing.detector, name))
+    if found is None:
+        return ""
+    parts = [(found.share, Dimension.RATIO), (found.amount_v, _V)]
+    sizes = ", ".join(f"{show(size, unit)} to {show(size / 2, unit)}" for size, unit in parts if size)
     return f"{sizes} at the rail"
 
 
-def _scaled(facts: PlacementFacts, names: set[str]) -> PlacementFacts:
-    def narrower(spread: LevelSpread) -> LevelSpread:
-        errors = tuple(e.scaled(0.5) if e.at_zero.name in names else e for e in spread.errors)
-        return replace(spread, errors=errors)
-
-    levels = facts.levels
-    return replace(facts, levels=replace(levels, falling=narrower(levels.falling), rising=narrower(levels.rising)))
-
-
-def _response(facts: PlacementFacts, base: str, rail: str) -> Iterator[_Tried]:
-    now = facts.response
-    if now is None:
-        return
-    for what, fact, size_s, faster in (
-        ("delay", "delay", now.delay_s, replace(now, delay_s=now.delay_s / 2)),
-        ("filter", "filter", now.filter_s, replace(now, filter_s=now.filter_s / 2)),
-        ("sampling period", "sampling", now.sampling_s, replace(now, sampling_s=now.sampling_s / 2)),
-    ):
-        change = f"{show(size_s, _S)} to {show(size_s / 2, _S)}"
-        yield f"{what} halved", change, f"{base}.{fact}", replace(facts, response=faster)
-    slower = replace(now, slew_v_per_s=now.slew_v_per_s / 2)
-    change = f"{show(now.slew_v_per_s, Dimension.SLOPE)} to {show(slower.slew_v_per_s, Dimension.SLOPE)}"
-    over = facts.role == "over_voltage"
-    what, fact = ("slower overshoot", "overshoot") if over else ("slower collapse, by hold-up", "collapse")
-    yield what, change, f"{rail}.{fact}", replace(facts, response=slower)
+def _response(placing: Placing, case: Case) -> Iterator[_Tried]:
+    own = case.of(placing.detector)
+    if placing.detector.role != "power_on":
+        for what, fact in (("delay", own.delay), ("filter", own.filter), ("sampling period", own.sampling)):
+            yield from _halves(case, f"{what} halved", fact, Dimension.DURATION)
+        over = placing.detector.role == "over_voltage"
+        what = "slower overshoot" if over else "slower collapse, by hold-up"
+        yield from _halves(case, what, slope(case, placing.detector), Dimension.SLOPE)
 
 
-def _supply(facts: PlacementFacts, rail: str) -> Iterator[_Tried]:
-    if facts.nominal_v is not None:
-        now_v = facts.delivered.level_v
-        tighter = replace(facts.delivered, level_v=(now_v + facts.nominal_v) / 2)
-        change = f"{show(now_v, _V)} to {show(tighter.level_v, _V)}"
-        yield "tolerance of the source halved", change, f"{rail}.delivered", replace(facts, delivered=tighter)
-    change = f"{show(facts.ripple_v, _V)} to {show(facts.ripple_v / 2, _V)}"
-    calmer = replace(facts, ripple_v=facts.ripple_v / 2)
-    yield "ripple halved, by decoupling", change, f"{rail}.ripple.peak_to_peak", calmer
-    stiffer = replace(facts, source_ohm=facts.source_ohm / 2)
-    unit = Dimension.RESISTANCE
-    change = f"{show(facts.source_ohm, unit)} to {show(stiffer.source_ohm, unit)}"
-    yield "source impedance halved", change, f"{rail}.source_impedance", stiffer
+def _halves(case: Case, what: str, fact: Number, dimension: Dimension) -> Iterator[_Tried]:
+    """A fact halved, where it is known."""
+    now = case.if_known(fact.most)
+    if now is not None:
+        change = f"{show(now, dimension)} to {show(now / 2, dimension)}"
+        yield _Tried(what, change, fact.path, {fact.path: _halved})
 
 
-def _bounds(facts: PlacementFacts) -> Iterator[_Tried]:
-    first, over = facts.bounds[0], facts.role == "over_voltage"
-    wider_v = first.level_v + (_STEP_V if over else -_STEP_V)
-    moved = [bound for bound in facts.bounds if (bound.level_v < wider_v if over else bound.level_v > wider_v)]
-    ends = [replace(bound, level_v=wider_v) if bound in moved else bound for bound in facts.bounds]
-    names = ", ".join(dict.fromkeys(bound.element for bound in moved))
-    change = f"{show(first.level_v, _V)} to {show(wider_v, _V)}"
-    step = show(_STEP_V, _V)
-    what = f"{names} working from {step} less" if facts.role == "power_on" else f"{names} signed off {step} wider"
-    yield what, change, first.fact, replace(facts, bounds=tuple(ends))
-    if facts.under_voltage:
-        after = facts.under_voltage[0]
-        higher = replace(after, level_v=after.level_v + _STEP_V)
-        others = tuple(sorted((higher, *facts.under_voltage[1:]), key=lambda bound: bound.level_v))
-        change = f"{show(after.level_v, _V)} to {show(higher.level_v, _V)} at least"
-        yield f"{after.element} placed higher", change, after.fact, replace(facts, under_voltage=others)
+def _supply(placing: Placing, case: Case) -> Iterator[_Tried]:
+    detector = placing.detector
+    over = detector.role == "over_voltage"
+    rail = case.of(case.description.rails[detector.watches])
+    now_v = case.if_known(rail.delivered.most if over else rail.delivered.least)
+    if now_v is not None:
+        nominal_v = None if rail.nominal.given is None else rail.nominal.given.middle
+        inwards_v = -_STEP_V if over else _STEP_V
+        what, then_v = f"source {show(_STEP_V, _V)} tighter", now_v + inwards_v
+        if nominal_v is not None:
+            what, then_v = "tolerance of the source halved", (now_v + nominal_v) / 2
+        change = f"{show(now_v, _V)} to {show(then_v, _V)}"
+        path, by_v = rail.delivered.path, then_v - now_v
+        yield _Tried(what, change, path, {path: lambda value: value + by_v})
+    yield from _halves(case, "ripple halved, by decoupling", rail.ripple.peak_to_peak, _V)
+    yield from _halves(case, "source impedance halved", rail.source_impedance, Dimension.RESISTANCE)
 
 
-def _hysteresis(facts: PlacementFacts, base: str, least_v: float | None) -> Iterator[_Tried]:
-    now_v = facts.levels.hysteresis_v
-    if least_v is not None and 0.0 <= least_v < now_v:
+def _bounds(placing: Placing, case: Case) -> Iterator[_Tried]:
+    detector = placing.detector
+    over, power_on = detector.role == "over_voltage", detector.role == "power_on"
+    ask = follower_supplies if power_on else greatest_supplies if over else least_supplies
+    bounds = case.if_known(partial(ask, case, detector)) or _signed_off(placing, case)
+    if bounds:
+        first = bounds[0]
+        wider_v = first.level_v + (_STEP_V if over else -_STEP_V)
+        moved = [bound for bound in bounds if (bound.level_v < wider_v if over else bound.level_v > wider_v)]
+        names = ", ".join(dict.fromkeys(bound.element for bound in moved))
+        step = show(_STEP_V, _V)
+        what = f"{names} working from {step} less" if power_on else f"{names} signed off {step} wider"
+        change = f"{show(first.level_v, _V)} to {show(wider_v, _V)}"
+        yield _Tried(what, change, first.fact, {bound.fact: _by(wider_v - bound.level_v) for bound in moved})
+    if power_on:
+        yield from _under_voltage(placing, case)
+
+
+def _by(more: float) -> Callable[[float], float]:
+    return lambda value: value + more
+
+
+def _signed_off(placing: Placing, case: Case) -> Sequence[Bound]:
+    """The range that its rail is signed off for, where nothing leans on a detector."""
+    rail = case.description.rails[placing.detector.watches]
+    guaranteed = case.of(rail).guaranteed
+    level_v = case.if_known(guaranteed.most if placing.detector.role == "over_voltage" else guaranteed.least)
+    return () if level_v is None else (Bound(level_v, rail.id, guaranteed.path, ()),)
+
+
+def _under_voltage(placing: Placing, case: Case) -> Iterator[_Tried]:
+    """The under-voltage detector that lets go first, placed higher."""
+    others = watching(case.graph, placing.detector.watches, ("under_voltage",))
+    levels = [(case.if_known(partial(_lets_go_from_v, case, other)), other) for other in others]
+    known = [(level_v, other) for level_v, other in levels if level_v is not None]
+    if known:
+        level_v, other = min(known, key=lambda each: each[0])
+        moved = Placing(placing.description, placing.graph, other)
+        change = f"{show(level_v, _V)} to {show(level_v + _STEP_V, _V)} at least"
+        changes = {moved.falling: _by(_STEP_V), moved.rising: _by(_STEP_V)}
+        yield _Tried(f"{other.id} placed higher", change, moved.rising, changes)
+
+
+def _lets_go_from_v(case: Case, other: Comparator) -> float:
+    return rising_window(case, other).least_v
+
+
+def _hysteresis(placing: Placing, least_v: float | None) -> Iterator[_Tried]:
+    now_v = placing.stated.hysteresis_v
+    if least_v is not None and now_v is not None and 0.0 <= least_v < now_v:
         change = f"{show(now_v, _V)} to {show(least_v, _V)}"
-        yield "hysteresis no larger than needed", change, f"{base}.hysteresis", with_hysteresis(facts, least_v)
+        fact = f"comparators.{placing.detector.id}.hysteresis"
+        yield _Tried("hysteresis no larger than needed", change, fact, {}, least_v - now_v)

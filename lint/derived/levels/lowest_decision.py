@@ -6,9 +6,11 @@ from functools import partial
 
 import msgspec
 
+from tidegate.lint.account import Sum, plus
 from tidegate.lint.case import Case
 from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.derived.levels.at_code import at_code
+from tidegate.lint.derived.levels.furthest import lowest
 from tidegate.lint.derived.levels.trip_levels import falling_window
 from tidegate.lint.description.model.detector import Comparator
 from tidegate.lint.description.model.supply import Rail
@@ -16,26 +18,34 @@ from tidegate.lint.quantity import Dimension, show
 
 
 class LowestDecision(msgspec.Struct, frozen=True):
-    """The lowest level of a rail at which something fed from it must work, and why."""
+    """The lowest level of a rail at which something fed from it must work, in V, and why."""
 
-    level_v: float
+    level: Sum
     why: str
     is_trip_level: bool
     """Whether it is the detector's own falling level, which the designer may move."""
+
+    @property
+    def level_v(self) -> float:
+        """The level."""
+        return self.level.value
 
 
 @answered_once
 def lowest_decision(case: Case, comparator: Comparator, rail: Rail) -> LowestDecision:
     """On the watched rail the lowest falling level, at any code; on another the lowest level at which it is delivered.
 
-    Raises: MissingFactsError: where a fact is not given.
+    Raises: MissingFactsError: where a fact without which an error has no size is missing.
     """
     if rail.id == comparator.watches:
-        level_v, at = min(case.gather_all(partial(_falling, case, *each) for each in _at_every_code(comparator)))
-        return LowestDecision(level_v, f"decides on {rail.id} down to {show(level_v, Dimension.VOLTAGE)}{at}", True)
-    level_v = case.of(rail).least("delivered")
-    case.settle()
-    return LowestDecision(level_v, f"{rail.id} is delivered down to {show(level_v, Dimension.VOLTAGE)}", False)
+        levels = case.each(partial(_falling, case, *each) for each in _at_every_code(comparator))
+        level, at = lowest([each for each, _ in levels]), min(levels, key=lambda each: each[0].value)[1]
+        why = f"decides on {rail.id} down to {show(level.value, Dimension.VOLTAGE)}{at}"
+        return LowestDecision(level, why, is_trip_level=True)
+    delivered = case.of(rail).delivered
+    least = case.sum(plus(f"{rail.id} delivered, least", delivered.least, of=delivered))
+    why = f"{rail.id} is delivered down to {show(least.value, Dimension.VOLTAGE)}"
+    return LowestDecision(least, why, is_trip_level=False)
 
 
 def _at_every_code(comparator: Comparator) -> list[tuple[Comparator, str]]:
@@ -44,5 +54,5 @@ def _at_every_code(comparator: Comparator) -> list[tuple[Comparator, str]]:
     return [*plain, *((at_code(comparator, code), f" at {code}") for code in comparator.codes)]
 
 
-def _falling(case: Case, comparator: Comparator, at: str) -> tuple[float, str]:
-    return falling_window(case, comparator).least_v, at
+def _falling(case: Case, comparator: Comparator, at: str) -> tuple[Sum, str]:
+    return falling_window(case, comparator).end("least"), at

@@ -2,46 +2,41 @@
 
 from __future__ import annotations
 
-import msgspec
+import math
 
 from tidegate.lint.case import Case
 from tidegate.lint.derived.answered_once import answered_once
 from tidegate.lint.description.model.detector import Comparator
+from tidegate.lint.facts.view import Number
 from tidegate.lint.physics.trip_window import droop_during_response_v, response_time_s
-
-
-class Response(msgspec.Struct, frozen=True):
-    """The longest answer of a detector in its parts, and the steepest move of its rail away from service."""
-
-    delay_s: float
-    filter_s: float
-    sampling_s: float
-    slew_v_per_s: float
-
-    @property
-    def time_s(self) -> float:
-        """Longest time from the crossing to the answer, in s."""
-        return response_time_s(delay_s=self.delay_s, filter_s=self.filter_s, sampling_period_s=self.sampling_s)
-
-    @property
-    def moved_v(self) -> float:
-        """How far the rail moves on in that time, in V."""
-        return droop_during_response_v(slew_v_per_s=self.slew_v_per_s, delay_s=self.time_s)
+from tidegate.lint.quantity import Dimension, show
 
 
 @answered_once
-def response(case: Case, comparator: Comparator) -> Response:
-    """The longest answer of a detector; a filter or a sampling period that is left out is not there.
+def answer_s(case: Case, comparator: Comparator) -> float:
+    """Longest time from the crossing to the answer, in s."""
+    own = case.of(comparator)
+    return response_time_s(delay_s=own.delay.most(), filter_s=own.filter.most(), sampling_period_s=own.sampling.most())
 
-    Raises: MissingFactsError: where its delay, or the slope of its rail, is not given.
-    """
-    facts = case.of(comparator)
+
+def slope(case: Case, comparator: Comparator) -> Number:
+    """The fact that says how steeply the rail moves out of service, towards the level that asserts."""
     rail = case.of(case.description.rails[comparator.watches])
-    found = Response(
-        delay_s=facts.most("delay"),
-        filter_s=0.0 if comparator.filter is None else facts.most("filter"),
-        sampling_s=0.0 if comparator.sampling is None else facts.most("sampling"),
-        slew_v_per_s=rail.most("overshoot" if comparator.role == "over_voltage" else "collapse"),
+    return rail.overshoot if comparator.role == "over_voltage" else rail.collapse
+
+
+@answered_once
+def moved_v(case: Case, comparator: Comparator) -> float:
+    """How far the rail moves on while the detector answers, in V."""
+    return droop_during_response_v(slew_v_per_s=slope(case, comparator).most(), delay_s=answer_s(case, comparator))
+
+
+def response_text(case: Case, comparator: Comparator) -> str:
+    """The move of the rail until the answer, in words, as far as it is known."""
+    moves = "rises" if comparator.role == "over_voltage" else "falls"
+    moved = case.if_known(lambda: (answer_s(case, comparator), moved_v(case, comparator)))
+    if moved is None or not all(map(math.isfinite, moved)):
+        return f"{comparator.watches} {moves} by what is not known yet"
+    return (
+        f"{show(moved[0], Dimension.DURATION)} later, {comparator.watches} {moves} {show(moved[1], Dimension.VOLTAGE)}"
     )
-    case.settle()
-    return found

@@ -1,119 +1,123 @@
-"""What a line or its vias may carry on this chip: limits of the process, carried to its temperature and life."""
+"""What a line or its vias may carry on this chip: limits of the process, carried to its temperature and to a time."""
 
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 from typing import Final
 
 import msgspec
 
-from tidegate.lint.case import Case, Facts
-from tidegate.lint.description.model.process import LayerLimit, ViaLimit
-from tidegate.lint.physics.electromigration import Wear, carried_limit
+from tidegate.lint.case import Case
+from tidegate.lint.derived.at_corner import at_corner
+from tidegate.lint.facts.reading import Better, MissingFactsError
+from tidegate.lint.facts.view import Number
+from tidegate.lint.facts.views.process import LayerFacts, LayerLimitFacts, ViaKindFacts, ViaLimitFacts
+from tidegate.lint.physics import electromigration
+from tidegate.lint.physics.electromigration import Exposure, Wear
 from tidegate.lint.quantity import Dimension, show
 
 _SAME: Final = 1e-9  # far above what rounding leaves, far below what a process tells apart
+_ANY: Final = 1.0
+"""What stands for a constant of the law where it changes nothing."""
+
+Seconds = Callable[[], float]
 
 
-class DirectLimit(msgspec.Struct, frozen=True):
-    """Most direct current: as stated, and for the hottest junction and the service life of this chip.
+class StatedLimit(msgspec.Struct, frozen=True):
+    """A direct current that the process states for the temperature and life of an entry of one of its tables.
 
-    In the unit in which the process states it: A for each via or narrow line, A/m for each width of a line.
+    In the unit in which it is stated: A for each via or narrow line, A/m for each width of a line.
     """
 
-    stated: float
-    stated_k: float
-    stated_life_s: float
-    here: float
-    hottest_k: float
+    dc: Number
+    entry: LayerLimitFacts | ViaLimitFacts
 
-    def of(self, conductor: Callable[[float], float]) -> DirectLimit:
-        """The limit, in A, of a conductor that makes so much of what is stated for its width, or for one via."""
-        here_a, stated_a = conductor(self.here), conductor(self.stated)
-        return DirectLimit(stated_a, self.stated_k, self.stated_life_s, here_a, self.hottest_k)
+    def text(self, case: Case) -> str:
+        """Under which conditions it is stated, and whether it is carried from there."""
+        stated_k, hottest_k = self._temperatures_k(case)
+        stated_s, life_s = self.entry.life.least(), case.whole.conditions.service_life.most()
+        stated = f"{show(stated_k, Dimension.TEMPERATURE)} and {show(stated_s, Dimension.DURATION)}"
+        if _is_same(stated_k, hottest_k) and _is_same(stated_s, life_s):
+            return f"limit of {stated}"
+        return f"limit carried from {stated} to {show(hottest_k, Dimension.TEMPERATURE)} by Black's law"
 
-    def text(self) -> str:
-        """Under which conditions it is stated, and whether it was carried from there."""
-        stated_for = f"{show(self.stated_k, Dimension.TEMPERATURE)} and {show(self.stated_life_s, Dimension.DURATION)}"
-        if math.isclose(self.here, self.stated, rel_tol=_SAME):
-            return f"limit of {stated_for}"
-        return f"limit carried from {stated_for} to {show(self.hottest_k, Dimension.TEMPERATURE)} by Black's law"
+    def carried(self, case: Case, time_s: Seconds) -> float:
+        """The current that may flow for so long at the hottest junction of this chip, in the unit of the limit.
+
+        A constant of the law that is not given stands at its least and at its most favourable: a small activation
+        energy gains a cooler chip least, and costs a hotter one least.
+        """
+        if time_s() == 0.0:
+            return math.inf
+        stated = self.dc.least()
+        if stated in (0.0, math.inf):
+            return stated
+
+        def here() -> float:
+            stated_k, hottest_k = self._temperatures_k(case)
+            stated_life_s, used_s = self.entry.life.least(), time_s()
+            energy_ev, exponent = self._energy_ev(case), case.whole.process.current_exponent
+            if not _is_same(stated_k, hottest_k):
+                exponent.number(Better.LESS)  # named beside the energy, whatever that leads to
+            life_s = electromigration.life_s(
+                current=stated, limit=stated, wear=Wear(energy_ev, _ANY), stated_k=stated_k, use_k=hottest_k,
+                stated_life_s=stated_life_s,
+            )  # fmt: skip
+            if _is_same(life_s, used_s):
+                return stated
+            steepness = exponent.number(Better.LESS if life_s > used_s else Better.MORE)
+            return electromigration.carried_limit(
+                limit=stated, wear=Wear(energy_ev, steepness), stated_k=stated_k, use_k=hottest_k,
+                stated_life_s=stated_life_s, use_life_s=used_s,
+            )  # fmt: skip
+
+        return at_corner(case, here, sure=0.0, best=math.inf)
+
+    def damage(self, case: Case, current: float, time_s: Seconds) -> float:
+        """The share of the life that a current uses up in so long, on what the limit is stated for."""
+        if time_s() == 0.0:
+            return 0.0
+
+        def used() -> float:
+            stated, (stated_k, hottest_k) = self.dc.least(), self._temperatures_k(case)
+            exponent = case.whole.process.current_exponent.number(Better.LESS if current > stated else Better.MORE)
+            return electromigration.damage_share(
+                exposures=[Exposure(time_s=time_s(), current=current)], limit=stated,
+                wear=Wear(self._energy_ev(case), exponent), stated_k=stated_k, use_k=hottest_k,
+                stated_life_s=self.entry.life.least(),
+            )  # fmt: skip
+
+        return at_corner(case, used, sure=math.inf, best=0.0)
+
+    def _temperatures_k(self, case: Case) -> tuple[float, float]:
+        return self.entry.temperature.least(), case.whole.conditions.junction_temperature.most()
+
+    def _energy_ev(self, case: Case) -> float:
+        stated_k, hottest_k = self._temperatures_k(case)
+        if _is_same(stated_k, hottest_k):
+            return _ANY
+        energy = case.whole.process.activation_energy
+        return energy.least() if stated_k >= hottest_k else energy.most()
 
 
-class LimitEntry(msgspec.Struct, frozen=True):
-    """The entry of a process table that a limit is taken from, and where it stands."""
-
-    entry: LayerLimit | ViaLimit
-    facts: Facts
+def _is_same(first: float, second: float) -> bool:
+    return math.isclose(first, second, rel_tol=_SAME)
 
 
-def entry_at(case: Case, limits: Sequence[LayerLimit | ViaLimit], table: Facts, index: int) -> LimitEntry:
-    """One entry of a table."""
-    return LimitEntry(limits[index], case.part(limits[index], table.path(f"limits.{index}")))
-
-
-def chosen_entry(case: Case, limits: Sequence[LayerLimit | ViaLimit], table: Facts) -> LimitEntry:
-    """Of the entries with a direct current: the coolest that is not cooler than the chip at its hottest, else the
-    hottest.
+def chosen_entry(case: Case, table: LayerFacts | ViaKindFacts) -> LayerLimitFacts | ViaLimitFacts:
+    """Of the entries of a table: the coolest that is not cooler than the chip at its hottest, else the hottest.
 
     Raises: MissingFactsError: where there is none, or the temperature of one is not given.
     """
-    hottest_k = case.whole.most("conditions.junction_temperature")
-    known = [entry_at(case, limits, table, index) for index, entry in enumerate(limits) if entry.dc is not None]
-    if not known:
-        table.lacks("limits.0.dc" if limits else "limits")
-    stated = [(found.facts.least("temperature"), found) for found in known]
-    case.settle()
+    conditions = case.whole.conditions
+    hottest_k, _ = conditions.junction_temperature.most(), conditions.service_life.most()  # all that is due is named
+    entries: list[LayerLimitFacts | ViaLimitFacts] = [*table.limits]
+    if not entries:
+        raise MissingFactsError([table.limits.path])
+    unsaid = [entry.temperature.path for entry in entries if entry.temperature.given is None]
+    if unsaid:
+        raise MissingFactsError(unsaid)
+    stated = [(entry.temperature.least(), entry) for entry in entries]
     above = [at for at in stated if at[0] >= hottest_k * (1.0 - _SAME)]
-    at = min(above, key=lambda at: at[0]) if above else max(stated, key=lambda at: at[0])
-    return at[1]
-
-
-def table_limit(case: Case, limits: Sequence[LayerLimit | ViaLimit], table: Facts) -> tuple[LimitEntry, DirectLimit]:
-    """The entry that counts for this chip, and its direct current carried to it.
-
-    Raises: MissingFactsError: where a fact is missing.
-    """
-    entry, _ = case.gather(
-        lambda: chosen_entry(case, limits, table), lambda: case.whole.most("conditions.service_life")
-    )
-    return entry, direct_limit(case, entry, entry.facts.least("dc"))
-
-
-def direct_limit(case: Case, found: LimitEntry, stated: float) -> DirectLimit:
-    """A direct current stated for the temperature and life of an entry, carried to those of this chip by Black's law.
-
-    Where the law's constants are not given, a limit that is stated for a junction as hot and a life as long, or more,
-    stands as it is.
-    Raises: MissingFactsError: where a fact is missing.
-    """
-    stated_k, stated_life_s = found.facts.least("temperature"), found.facts.least("life")
-    hottest_k = case.whole.most("conditions.junction_temperature")
-    life_s = case.whole.most("conditions.service_life")
-    case.settle()
-    as_hot, as_long = stated_k >= hottest_k * (1.0 - _SAME), stated_life_s >= life_s * (1.0 - _SAME)
-    alike = math.isclose(stated_k, hottest_k, rel_tol=_SAME) and math.isclose(stated_life_s, life_s, rel_tol=_SAME)
-    wear = case.attempt(lambda: wear_of(case, stated_k=stated_k, hottest_k=hottest_k))
-    if alike or (wear is None and as_hot and as_long):
-        return DirectLimit(stated, stated_k, stated_life_s, stated, hottest_k)
-    wear = wear or wear_of(case, stated_k=stated_k, hottest_k=hottest_k)
-    here = carried_limit(
-        limit=stated, wear=wear, stated_k=stated_k, use_k=hottest_k, stated_life_s=stated_life_s, use_life_s=life_s
-    )
-    return DirectLimit(stated, stated_k, stated_life_s, here, hottest_k)
-
-
-def wear_of(case: Case, *, stated_k: float, hottest_k: float) -> Wear:
-    """How the metal wears, with the activation energy that is worst for this chip.
-
-    Where the chip is cooler than the limit is stated for, a small one gains it least; where it is hotter, a large one
-    costs it most.
-    Raises: MissingFactsError: where a constant of the law is not given.
-    """
-    whole = case.whole
-    fact = "process.activation_energy"
-    energy_ev = whole.least(fact) if stated_k >= hottest_k else whole.most(fact)
-    exponent = whole.number("process.current_exponent")
-    case.settle()
-    return Wear(activation_energy_ev=energy_ev, current_exponent=exponent)
+    return min(above, key=lambda at: at[0])[1] if above else max(stated, key=lambda at: at[0])[1]

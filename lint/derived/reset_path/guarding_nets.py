@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Mapping
 
 from tidegate.lint.case import Case
+from tidegate.lint.derived.unsaid import unsaid
 from tidegate.lint.description.model.detector import Comparator
-from tidegate.lint.description.model.reset_path import Load, OutputStage, Reset
+from tidegate.lint.description.model.reset_path import Load, Reset
 from tidegate.lint.graph.dependency import Graph
 from tidegate.lint.graph.edge import EdgeKind
 from tidegate.lint.graph.paths import Reach, driven_by
@@ -48,20 +49,18 @@ def watching(graph: Graph, rail: str, roles: tuple[str, ...]) -> list[Comparator
     return [one for one in found if isinstance(one, Comparator) and one.role in roles]
 
 
-def note_undriven(case: Case, net: str) -> None:
-    """Note the stages behind a net, and the net itself, of which it is not said what drives them."""
-    for name in Reach(net, driven_by(case.graph)):
-        element = case.graph.elements[name]
-        if isinstance(element, OutputStage | Reset) and element.driven_by is None:
-            case.of(element).lacks("driven_by")
+def guard_gaps(case: Case, load: Load) -> tuple[str, ...]:
+    """What might let more reset nets guard a load than are described to."""
+    nets = guarding_nets(case.graph, load)
+    silent = (net.fact("guards") for net in case.graph.once(nets_without_guards) if net.id not in nets)
+    domain = (load.fact("domain"),) if load.domain is None and case.graph.once(_guards_a_domain) else ()
+    return (*unsaid(case, "resets"), *silent, *domain)
 
 
-def note_unsaid_guards(case: Case) -> None:
-    """Note the reset nets of which it is not said what they guard; that there is none at all where there is none."""
-    if not case.description.resets:
-        case.whole.lacks("resets")
-    for net in case.graph.once(nets_without_guards):
-        case.of(net).lacks("guards")
+def _guards_a_domain(graph: Graph) -> bool:
+    return any(
+        edge.kind is EdgeKind.GUARDS and graph.elements[edge.head].section == "domains" for edge in graph.edges()
+    )
 
 
 def nets_without_guards(graph: Graph) -> tuple[Reset, ...]:

@@ -19,7 +19,7 @@ class Origin(msgspec.Struct, frozen=True):
 def origin(case: Case, element: str) -> Origin:
     """Follow a signal back through stages that pass it on: one driver, and no memory.
 
-    Raises: MissingFactsError: where it is not given what a stage on the way does.
+    Where it is not given what a stage on the way does, all that it may do is tried.
     """
     inverted = False
     seen: set[str] = set()
@@ -28,9 +28,8 @@ def origin(case: Case, element: str) -> Origin:
         stage = case.graph.elements[element]
         if not isinstance(stage, OutputStage) or stage.driven_by is None or len(stage.driven_by) != 1:
             break
-        if case.of(stage).must("kind") == "latch":
+        if case.of(stage).kind.must() == "latch":
             break
         inverted ^= inverts(case, stage)
         element = stage.driven_by[0]
-    case.settle()
     return Origin(element, inverted)

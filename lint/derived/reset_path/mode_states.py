@@ -89,5 +89,5 @@ class ModeState:
 
 @keeps_last
 def mode_states(description: Description, graph: Graph) -> tuple[ModeState, ...]:
-    """Every mode; those of the last description asked for are kept."""
-    return tuple(ModeState(name, mode, graph) for name, mode in description.modes.items())
+    """Every mode, by name; those of the last description asked for are kept."""
+    return tuple(ModeState(name, description.modes[name], graph) for name in sorted(description.modes))

@@ -77,13 +77,9 @@ def _overridden(graph: Graph, forces: tuple[str | None, ...]) -> list[str]:
 
 
 def aimless_overrides(graph: Graph) -> tuple[Bypass, ...]:
-    """The overrides of which it is not said what they take out."""
-    return tuple(each for each in graph.elements.values() if isinstance(each, Bypass) and each.overrides is None)
-
-
-def undriven_resets(graph: Graph) -> tuple[Reset, ...]:
-    """The reset nets of which it is not said what drives them."""
-    return tuple(each for each in graph.elements.values() if isinstance(each, Reset) and each.driven_by is None)
+    """The overrides of which it is not said what they take out, and which may lift a reset."""
+    overrides = (each for each in graph.elements.values() if isinstance(each, Bypass) and each.overrides is None)
+    return tuple(each for each in overrides if each.forces != "asserted")
 
 
 def ways_left(graph: Graph, detector: str, out: frozenset[str]) -> Reach:

@@ -56,10 +56,9 @@ class Arrival(msgspec.Struct, frozen=True):
 def arrivals(case: Case, stage: OutputStage, behind: Onward) -> tuple[Arrival, ...]:
     """How the level of a stage's output reaches each reset net; twice where ways with and without inversion lead there.
 
-    Raises: MissingFactsError: where it is not given whether a stage on a way inverts.
+    Where it is not given whether a stage on a way inverts, either is tried.
     """
     inverted_by = {after.id: inverts(case, after) for after in behind.stages}
-    case.settle()
     return tuple(_walk(case, stage, behind, inverted_by))
 
 
@@ -96,8 +95,6 @@ def _path(came: dict[_State, tuple[_State | None, str]], end: _State) -> Path:
 
 
 def inverts(case: Case, stage: OutputStage) -> bool:
-    """Whether a stage inverts: as stated, or as its kind says; noted where neither does."""
-    stated = stage.inverting if stage.inverting is not None else _SAID_BY_KIND.get(stage.kind or "")
-    if stated is None:
-        case.of(stage).lacks("inverting")
-    return bool(stated)
+    """Whether a stage inverts: as stated, or as its kind says; where neither does, either is tried."""
+    said = stage.inverting if stage.inverting is not None else _SAID_BY_KIND.get(stage.kind or "")
+    return case.of(stage).inverting.must() if said is None else said

@@ -6,6 +6,7 @@ import msgspec
 
 from tidegate.lint.case import Case
 from tidegate.lint.description.model.detector import Bias, Reference
+from tidegate.lint.physics.domain import product
 from tidegate.lint.quantity import Dimension, show
 
 
@@ -20,20 +21,16 @@ class LowestSupply(msgspec.Struct, frozen=True):
 def lowest_supply(case: Case, source: Bias | Reference) -> LowestSupply:
     """Where a bias or reference works from: as stated for the cold end, or what its slope makes of it at the hot end.
 
-    The corner that is worst at the cold end and the steepest slope are taken together.
-    Raises: MissingFactsError: where a fact is not given.
+    The corner that is worst at the cold end and the steepest slope are taken together.  Without a slope the level is
+    stated for all temperatures.
     """
-    facts = case.of(source)
-    cold_v = facts.most("works_from")
+    cold_v = case.of(source).works_from.most()
     if not isinstance(source, Reference) or source.works_from_slope is None:
-        case.settle()
         return LowestSupply(cold_v, "")
-    slope_v_per_k = facts.most("works_from_slope")
-    if slope_v_per_k <= 0.0:  # not above zero: it works from less when it is warm
-        case.settle()
+    slope_v_per_k = case.of(source).works_from_slope.most()
+    if slope_v_per_k <= 0.0:  # it works from less when it is warm
         return LowestSupply(cold_v, "at the cold end")
-    cold_k, hot_k = (
-        case.whole.least("conditions.junction_temperature"), case.whole.most("conditions.junction_temperature"),
-    )  # fmt: skip
-    case.settle()
-    return LowestSupply(cold_v + slope_v_per_k * (hot_k - cold_k), f"at {show(hot_k, Dimension.TEMPERATURE)}")
+    junction = case.whole.conditions.junction_temperature
+    hot_k = junction.most()
+    rise_v = product(slope_v_per_k, max(hot_k - junction.least(), 0.0))
+    return LowestSupply(cold_v + rise_v, f"at {show(hot_k, Dimension.TEMPERATURE)}")

@@ -2,14 +2,24 @@
 
 from __future__ import annotations
 
-from typing import Literal
+from collections.abc import Mapping
+from typing import Final, Literal, TypeAlias
 
 from tidegate.lint.description.model.detector import Bias, Comparator, Reference
-from tidegate.lint.description.model.part import AtLeastOne, Date, Name, NotNegative, Part, Positive, Text
+from tidegate.lint.description.model.part import AtLeastOne, Date, Name, NotNegative, Part, Policy, Positive, Text
 from tidegate.lint.description.model.process import Process
 from tidegate.lint.description.model.reset_path import Bypass, Load, Neighbour, OutputStage, Reset
 from tidegate.lint.description.model.supply import Domain, Rail
 from tidegate.lint.quantity import Duration, Temperature, Voltage
+
+CompleteSection: TypeAlias = Literal[
+    "rails", "domains", "references", "biases", "comparators", "output_stages", "resets", "loads", "modes", "bypasses",
+    "neighbours",
+]  # fmt: skip
+"""A section that may be said to hold all that there is."""
+
+POLICY: Final[Mapping[str, str | float]] = {"combine": "worst_case", "coverage": 3.0, "false_trips": 0.001}
+"""What holds where ``conditions`` do not say: how a house judges is no fact of a chip, and is never missing."""
 
 
 class Conditions(Part, frozen=True, kw_only=True):
@@ -18,9 +28,9 @@ class Conditions(Part, frozen=True, kw_only=True):
     junction_temperature: Temperature | None = None
     service_life: Duration | None = None
     power_cycles: NotNegative | None = None
-    combine: Literal["worst_case", "root_sum_square"] | None = None
-    coverage: Positive | None = None
-    false_trips: Positive | None = None
+    combine: Policy[Literal["worst_case", "root_sum_square"]] | None = None
+    coverage: Policy[Positive] | None = None
+    false_trips: Policy[Positive] | None = None
     note: Text | None = None
 
 
@@ -89,4 +99,5 @@ class Description(Part, frozen=True, kw_only=True):
     bypasses: dict[Name, Bypass] = {}
     neighbours: dict[Name, Neighbour] = {}
     scenarios: dict[Name, Scenario] = {}
+    complete: tuple[CompleteSection, ...] = ()
     waivers: tuple[Waiver, ...] = ()

@@ -6,7 +6,7 @@ from typing import ClassVar, Literal
 
 import msgspec
 
-from tidegate.lint.description.model.part import Element, Name, NameOrNone, Part, Positive, Text, UpToOne
+from tidegate.lint.description.model.part import Element, Name, NameOrNone, Part, Positive, Promise, Text, UpToOne
 from tidegate.lint.description.model.timing import Timing
 from tidegate.lint.quantity import (
     Capacitance,
@@ -50,7 +50,7 @@ class Reference(Element, frozen=True, kw_only=True):
     bias: NameOrNone | None = None
     leans_on: tuple[Name, ...] | None = None
     self_biased: bool | None = None
-    start_up: StartUp | Literal["none"] | None = None
+    start_up: Promise[StartUp | Literal["none"]] | None = None
     gated_by: Name | None = None
     resistance: Resistance | None = None
     consumes: Current | None = None
@@ -70,7 +70,7 @@ class Bias(Element, frozen=True, kw_only=True):
     works_from: Voltage | None = None
     settling: Duration | None = None
     leans_on: tuple[Name, ...] | None = None
-    start_up: StartUp | Literal["none"] | None = None
+    start_up: Promise[StartUp | Literal["none"]] | None = None
     gated_by: Name | None = None
     resistance: Resistance | None = None
     consumes: Current | None = None
@@ -106,6 +106,7 @@ class Hysteresis(Part, frozen=True, kw_only=True):
 class Contributor(Part, frozen=True, kw_only=True):
     """Error contributor."""
 
+    of: Literal["reference", "divider", "offset", "trim", "drift", "total", "other"] | None = None
     amount: Voltage | None = None
     share: Ratio | None = None
     is_: Literal["bound", "sigma"] | None = msgspec.field(default=None, name="is")
@@ -157,7 +158,7 @@ class Comparator(Element, frozen=True, kw_only=True):
     watches: Name
     domain: Name | None = None
     bias: NameOrNone | None = None
-    reference: Name | None = None
+    reference: NameOrNone | None = None
     crossover: Crossover | None = None
     trip: Trip | None = None
     tracked: bool | None = None
@@ -180,6 +181,6 @@ class Comparator(Element, frozen=True, kw_only=True):
     rearms_below: Voltage | None = None
     output: Literal["level", "pulse"] | None = None
     pulse: Duration | None = None
-    undecided: Literal["asserts", "releases", "undefined"] | None = None
+    undecided: Promise[Literal["asserts", "releases", "undefined"]] | None = None
     consumes: Current | None = None
     note: Text | None = None

@@ -4,7 +4,17 @@ from __future__ import annotations
 
 from typing import ClassVar, Literal
 
-from tidegate.lint.description.model.part import AtLeastOne, Count, Element, Name, NotNegative, Part, Text
+from tidegate.lint.description.model.part import (
+    Ability,
+    AtLeastOne,
+    Count,
+    Element,
+    Name,
+    NotNegative,
+    Part,
+    Promise,
+    Text,
+)
 from tidegate.lint.description.model.timing import Timing
 from tidegate.lint.quantity import (
     Capacitance,
@@ -66,7 +76,7 @@ class OutputStage(Element, frozen=True, kw_only=True):
     domain: Name | None = None
     kind: Literal["gain", "inverter", "buffer", "schmitt", "latch", "level_shifter", "filter", "delay"] | None = None
     inverting: bool | None = None
-    hold: Hold | Literal["none"] | None = None
+    hold: Promise[Hold | Literal["none"]] | None = None
     works_from: Voltage | None = None
     threshold: Voltage | None = None
     input_edge: Duration | None = None
@@ -77,12 +87,12 @@ class OutputStage(Element, frozen=True, kw_only=True):
     output: OutputLine | None = None
     leakage: Current | None = None
     load: Capacitance | None = None
-    power_up: Literal["asserts", "releases", "undefined"] | None = None
+    power_up: Promise[Literal["asserts", "releases", "undefined"]] | None = None
     dwell: Duration | None = None
     edges_per_cycle: NotNegative | None = None
     delay: Duration | None = None
-    release_delay: Duration | None = None
-    discharge: Discharge | Literal["none"] | None = None
+    release_delay: Promise[Duration] | None = None
+    discharge: Promise[Discharge | Literal["none"]] | None = None
     timing: Timing | None = None
     gated_by: Name | None = None
     consumes: Current | None = None
@@ -118,7 +128,7 @@ class Need(Part, frozen=True, kw_only=True):
     """Need of a supply."""
 
     rail: Name
-    works: Voltage | None = None
+    works: Ability[Voltage] | None = None
 
 
 class Load(Element, frozen=True, kw_only=True):
@@ -132,7 +142,7 @@ class Load(Element, frozen=True, kw_only=True):
     ready: Duration | None = None
     start: Duration | None = None
     clocked: bool | None = None
-    synchronised: bool | None = None
+    synchronised: Promise[bool] | None = None
     consumes: Current | None = None
     leans_on: tuple[Name, ...] | None = None
     gated_by: Name | None = None
@@ -148,12 +158,12 @@ class Bypass(Element, frozen=True, kw_only=True):
     forces: Literal["released", "asserted"] | None = None
     controlled_by: Literal["pin", "register", "fuse", "test_port"] | None = None
     domain: Name | None = None
-    reset_by: Name | None = None
+    reset_by: Promise[Name] | None = None
     leans_on: tuple[Name, ...] | None = None
     default: Literal["inactive", "active"] | None = None
-    hold: Hold | Literal["none"] | None = None
-    locked_outside_test: bool | None = None
-    readable: bool | None = None
+    hold: Promise[Hold | Literal["none"]] | None = None
+    locked_outside_test: Promise[bool] | None = None
+    readable: Promise[bool] | None = None
     note: Text | None = None
 
 
@@ -172,7 +182,7 @@ class Neighbour(Element, frozen=True, kw_only=True):
     kind: Literal["capacitance", "shared_reference", "supply_impedance", "shared_return"]
     aggressor: Name
     victim: Name
-    mutual: bool | None = None
+    mutual: Promise[bool] | None = None
     at: Literal["rail", "input", "reference"] | None = None
     capacitance: Capacitance | None = None
     step: Voltage | None = None

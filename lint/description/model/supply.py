@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import ClassVar, Literal
 
-from tidegate.lint.description.model.part import Element, Name, Part, Text
+from tidegate.lint.description.model.part import Ability, Element, Name, Part, Text
 from tidegate.lint.quantity import Capacitance, Current, Duration, Frequency, Resistance, Slope, Voltage
 
 
@@ -29,7 +29,7 @@ class Rail(Element, frozen=True, kw_only=True):
 
     nominal: Voltage | None = None
     delivered: Voltage | None = None
-    guaranteed: Voltage | None = None
+    guaranteed: Ability[Voltage] | None = None
     damage: Voltage | None = None
     rise: Duration | None = None
     fall: Duration | None = None

@@ -10,7 +10,7 @@ import msgspec
 from tidegate.lint.physics.trip_window import Window
 from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.reports.drawing.scale import Linear, round_values, shortened, text_width
-from tidegate.lint.reports.ladder import Ladder, Rung
+from tidegate.lint.reports.ladder import Ladder, Rung, range_text
 
 WIDTH: Final = 960.0
 _LEFT: Final = 172.0
@@ -129,7 +129,7 @@ def says(ladder: Ladder) -> str:
     parts = []
     for rung in ladder.rungs:
         slack = f", slack {_slack_text(rung)}" if rung.slack_v is not None else ""
-        parts.append(f"{rung.name} {_values(rung.window)}{slack}")
+        parts.append(f"{rung.name} {range_text(rung)}{slack}")
     return f"Levels of {ladder.rail}, highest first: {'; '.join(parts)}."
 
 
@@ -165,7 +165,7 @@ def _rows(rungs: Sequence[Rung], whole: Linear, main: Linear, top: float) -> Ite
             bar=_bar(rung, main),
             staff=_bar(rung, whole),
             staff_y=_STAFF_TOP + _STAFF_ROW * number,
-            values=_values(rung.window),
+            values=range_text(rung),
             gap=_gap(rung, by_name, main),
         )
 
@@ -197,15 +197,7 @@ def _gap(rung: Rung, by_name: dict[str, Window], scale: Linear) -> Gap | None:
 def _slack_text(rung: Rung) -> str:
     assert rung.slack_v is not None
     sign = "-" if rung.slack_v < 0.0 else "+"
-    return f"{sign}{show(abs(rung.slack_v), _V, digits=3)} to {rung.slack_to}"
-
-
-def _values(window: Window) -> str:
-    least, most = show(window.least_v, _V), show(window.most_v, _V)
-    if least == most:
-        return least
-    number, _, unit = least.partition(" ")
-    return f"{number} to {most}" if most.endswith(f" {unit}") else f"{least} to {most}"
+    return f"{sign}{show(abs(rung.slack_v), _V, digits=3)}{' at most' if rung.open else ''} to {rung.slack_to}"
 
 
 def _bands(rungs: Sequence[Rung], scale: Linear) -> Iterator[Band]:

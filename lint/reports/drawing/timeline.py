@@ -182,21 +182,22 @@ def _waves_of(supply: Supply) -> list[list[tuple[float, float]]]:
     assert isinstance(supply, MadeSupply)
     ramp, maker = supply.ramp, supply.maker
     return [
-        _made(maker.may_be_on, delay_s=ramp.delay_least_s, supply=supply),
-        _made(outside(maker.may_be_off), delay_s=ramp.delay_most_s, supply=supply),
+        _made(maker.may_be_on, ramp.nominal_v, (ramp.delay.least, ramp.rise.least, ramp.fall.least)),
+        _made(outside(maker.may_be_off), ramp.nominal_v, (ramp.delay.most, ramp.rise.most, ramp.fall.most)),
     ]
 
 
-def _made(on: Times, *, delay_s: float, supply: MadeSupply) -> list[tuple[float, float]]:
-    ramp = supply.ramp
+def _made(on: Times, nominal_v: float, takes_s: tuple[float, float, float]) -> list[tuple[float, float]]:
+    """The course of a rail that is made while something is on: it begins after a time, rises in one, falls in one."""
+    delay_s, rise_s, fall_s = takes_s
     points: list[tuple[float, float]] = []
     for start_s, end_s in on:
         if start_s == -FOREVER_S:
-            points.append((-FOREVER_S, ramp.nominal_v))
+            points.append((-FOREVER_S, nominal_v))
         else:
-            points += [(start_s + delay_s, 0.0), (start_s + delay_s + ramp.rise_s, ramp.nominal_v)]
+            points += [(start_s + delay_s, 0.0), (start_s + delay_s + rise_s, nominal_v)]
         if end_s < FOREVER_S:
-            points += [(end_s, ramp.nominal_v), (end_s + ramp.fall_s, 0.0)]
+            points += [(end_s, nominal_v), (end_s + fall_s, 0.0)]
     return sorted(points, key=lambda point: point[0])
 
 

@@ -7,6 +7,7 @@ import msgspec
 from tidegate.lint.reports.drawing.graph import GraphDrawing
 from tidegate.lint.reports.drawing.ladder import LadderDrawing
 from tidegate.lint.reports.drawing.timeline import TimelineDrawing
+from tidegate.lint.reports.drawing.waterfall import WaterfallDrawing
 
 
 class Finding(msgspec.Struct, frozen=True):
@@ -28,15 +29,31 @@ class Finding(msgspec.Struct, frozen=True):
     share: str
     missing: tuple[str, ...]
     waiver: str
+    keep: str
+    """What the missing facts must keep, for what is open."""
+    explains: tuple[tuple[str, str], ...]
+    """The failures that this one explains: where each stands, and what it is."""
+    account: WaterfallDrawing | None
 
 
 class Kept(msgspec.Struct, frozen=True):
-    """A rule that holds."""
+    """A rule that holds, or a failure that another one explains."""
 
     anchor: str
     rule: str
     message: str
     margin: str
+    account: WaterfallDrawing | None
+
+
+class DetectorMargin(msgspec.Struct, frozen=True):
+    """One of the three margins of a detector."""
+
+    name: str
+    margin: str
+    kind: str
+    finding: str
+    """Where the judgement stands; empty where there is none."""
 
 
 class ElementPart(msgspec.Struct, frozen=True):
@@ -47,9 +64,13 @@ class ElementPart(msgspec.Struct, frozen=True):
     noun: str
     place: str
     note: str
+    three: tuple[DetectorMargin, ...]
     findings: tuple[Finding, ...]
+    explained: tuple[Kept, ...]
+    """Failures that others explain."""
     kept: tuple[Kept, ...]
     not_applicable: int
+    """How many do not apply, without those that are explained."""
 
 
 class LedgerRow(msgspec.Struct, frozen=True):
@@ -65,19 +86,36 @@ class LedgerRow(msgspec.Struct, frozen=True):
     need: str
     relation: str
     margin: str
+    margin_note: str
+    """What is said of the margin where it is not known to both ends."""
     share: str
     slack: str
-    """The margin as a share of the need, as a number that sorts."""
+    """Its place among all margins, as a number that sorts."""
     bar: float
     """The same for the eye: from -1 to 1, one half being a margin of a tenth of the need."""
 
 
-class Missing(msgspec.Struct, frozen=True):
-    """A fact that is missing, and the rules that wait for it."""
+class QuestionPart(msgspec.Struct, frozen=True):
+    """Facts to find out next, asked together."""
 
-    fact: str
-    rules: tuple[str, ...]
+    what: str
+    settles: str
+    keep: str
+    paths: str
     finding: str
+    """Where the gravest of the judgements that wait for them stands."""
+
+
+class OpenPart(msgspec.Struct, frozen=True):
+    """What is open: the questions that settle most, what else is missing, what is known so far."""
+
+    questions: tuple[QuestionPart, ...]
+    rest: tuple[str, ...]
+    known: tuple[Finding, ...]
+    """The open judgements with a number, the gravest and nearest first."""
+    unexplained: tuple[Finding, ...]
+    """Those that wait for no fact."""
+    nothing_known: int
 
 
 class FamilyRow(msgspec.Struct, frozen=True):
@@ -185,8 +223,7 @@ class DescriptionPart(msgspec.Struct, frozen=True):
     todo: tuple[Todo, ...]
     more_todo: int
     families: tuple[FamilyRow, ...]
-    missing: tuple[Missing, ...]
-    unexplained: tuple[Finding, ...]
+    open: OpenPart
     elements: tuple[ElementPart, ...]
     pictures: Pictures
     ledger: tuple[LedgerRow, ...]

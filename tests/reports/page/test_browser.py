@@ -1,6 +1,7 @@
 """The page in a browser (headless Chromium): no error, no request, filter, sort, links, keyboard, print, hostile text.
 
-Needs chromium and chromium-driver; skipped where they are not there.
+Needs chromium and chromium-driver; skipped where they are not there. What depends on the widths of letters is tested
+with two families of fonts, each skipped by name where it is not installed; with no font at all everything fails.
 """
 
 from __future__ import annotations
@@ -15,6 +16,7 @@ from typing import Any
 
 import pytest
 
+from tests.reports.page.fonts import FAMILIES, demand_a_font, force
 from tests.reports.page.pages import ATTACKS, BROKEN, hostile, part_of, written
 
 webdriver = pytest.importorskip("selenium.webdriver", reason="selenium is not installed")
@@ -41,12 +43,14 @@ class Pages:
         self.hostile = written(folder, "hostile", hostile())
         self.several = written(folder, "several", "", BROKEN)
 
-    def open(self, address: str, *, width: int = 1280) -> None:
-        """Open a page at a width; what the browser complained about before is forgotten."""
+    def open(self, address: str, *, width: int = 1280, fonts: str = "") -> None:
+        """Open a page at a width, with a family of fonts; what the browser complained about before is forgotten."""
         self.command("Emulation.setDeviceMetricsOverride", width=width, height=900, deviceScaleFactor=1, mobile=False)
         self.browser.get_log("browser")
         self.browser.get("about:blank")
         self.browser.get(address)
+        if fonts:
+            force(self.browser, FAMILIES[fonts])
 
     def command(self, name: str, **arguments: Any) -> Any:
         return self.browser.execute_cdp_cmd(name, arguments)
@@ -67,6 +71,7 @@ def pages(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Pages]:
             options.add_argument(flag)
         browser = webdriver.Chrome(options=options, service=Service(DRIVER))
         try:
+            demand_a_font(browser)
             yield Pages(browser, tmp_path_factory.mktemp("pages"))
         finally:
             browser.quit()
@@ -84,11 +89,71 @@ def test_no_error_and_no_request(pages: Pages, name: str) -> None:
     assert pages.run("return performance.getEntriesByType('resource').length") == 0
 
 
-@pytest.mark.parametrize("width", [1280, 800, 400])
-def test_nothing_is_wider_than_the_window(pages: Pages, width: int) -> None:
-    for address in (pages.broken, pages.hostile):
-        pages.open(address, width=width)
+with_each_family = pytest.mark.parametrize("fonts", sorted(FAMILIES))
+at_each_width = pytest.mark.parametrize("width", [1280, 1101, 800, 400])
+UNFOLD = "document.querySelectorAll('details').forEach(d => { d.open = true; });"
+
+
+@with_each_family
+@at_each_width
+def test_nothing_is_wider_than_the_window(pages: Pages, width: int, fonts: str) -> None:
+    for address in (pages.broken, pages.hostile, pages.several):
+        pages.open(address, width=width, fonts=fonts)
         assert pages.run("return document.documentElement.scrollWidth") <= width
+        pages.run(UNFOLD)
+        assert pages.run("return document.documentElement.scrollWidth") <= width
+
+
+SIDEWAYS = """
+return Array.from(document.querySelectorAll('.scroll')).filter(n => n.firstElementChild.tagName === 'TABLE')
+  .filter(n => n.scrollWidth > n.clientWidth).map(n => n.getAttribute('aria-label'))
+"""
+
+
+@with_each_family
+@at_each_width
+def test_tables_are_whole(pages: Pages, width: int, fonts: str) -> None:
+    """From 800 px on no table is cut off; on a telephone the tables of five columns and more move sideways."""
+    allowed = {"Table of margins", "Table to sign", "Index of descriptions"} if width == 400 else set()
+    for address in (pages.several, pages.broken):
+        pages.open(address, width=width, fonts=fonts)
+        assert set(pages.run(SIDEWAYS)) <= allowed
+
+
+BROKEN_WORDS = """
+const found = [], range = document.createRange();
+const texts = document.createTreeWalker(document.body, NodeFilter.SHOW_TEXT);
+while (texts.nextNode()) {
+  const node = texts.currentNode;
+  if (node.parentElement.closest('svg, script, .code, .hide, option')) continue;
+  for (const word of node.data.matchAll(/[^\\s\\/-]+/g)) {
+    range.setStart(node, word.index);
+    range.setEnd(node, word.index + word[0].length);
+    const lines = new Set(Array.from(range.getClientRects()).map(r => Math.round(r.top)));
+    if (lines.size > 1) found.push(word[0]);
+  }
+}
+return found;
+"""
+
+
+@with_each_family
+@at_each_width
+def test_no_word_is_broken(pages: Pages, width: int, fonts: str) -> None:
+    """Words break at hyphens and slashes alone. Names set as code may be longer than a line."""
+    for address in (pages.several, pages.broken):
+        pages.open(address, width=width, fonts=fonts)
+        pages.run(UNFOLD)
+        assert pages.run(BROKEN_WORDS) == []
+
+
+def test_a_broken_word_is_seen(pages: Pages) -> None:
+    """The same question, asked of a page with a word broken on purpose."""
+    pages.open(pages.sound)
+    pages.run("const h = document.querySelector('.tally tbody th'); h.textContent = 'w'.repeat(900)")
+    pages.run("document.querySelector('.tally').style.cssText = 'table-layout: fixed; overflow-wrap: anywhere'")
+    pages.run("document.querySelector('.tally tbody th').style.overflowWrap = 'anywhere'")
+    assert pages.run(BROKEN_WORDS) == ["w" * 900]
 
 
 SHOWN = "return Array.from(document.querySelectorAll('table.ledger tbody tr')).filter(r => !r.hidden)"

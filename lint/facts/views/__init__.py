@@ -1,0 +1,1 @@
+"""A view for each class of the model, made from it."""
