@@ -115,7 +115,9 @@ def outputs(tmp_path_factory: pytest.TempPathFactory) -> dict[str, dict[str, byt
     found = {}
     for name, folder, process in started:
         assert process.wait(timeout=600) == 0, name
-        found[name] = {path.name: path.read_bytes() for path in folder.iterdir() if path.name not in EXAMPLES}
+        # Python may leave its compiled form of the rule pack in a folder beside it.
+        written = (path for path in folder.iterdir() if path.is_file() and path.name not in EXAMPLES)
+        found[name] = {path.name: path.read_bytes() for path in written}
     return found
 
 
