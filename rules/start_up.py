@@ -18,6 +18,7 @@ from tidegate.lint.quantity import Dimension, show
 from tidegate.lint.rule import Example, Rule, rule
 from tidegate.lint.timing.blame import Why, blame_for_unknown
 from tidegate.lint.timing.common_cause import release_slack_apart
+from tidegate.lint.timing.hidden import with_certain_releases
 from tidegate.lint.timing.interval import FOREVER_S
 from tidegate.lint.timing.judging import judged_in_time
 from tidegate.lint.timing.parts import ResetPart
@@ -62,15 +63,22 @@ def release_comes_after_ready(load: Load, case: Case) -> Judgement:
     rails = [need.rail for need in load.needs]
     gaps = wide.gaps(load.id, scenes=_ANY_START, falling=rails, dipping=rails, own=True)
     surely = worst(release_slack(line, load.id) for line in _courses(wide, rails))
+    comes = any(line.scenario.scene is Scene.START for line in wide.starts)
 
     def judge(lines: Timelines) -> Judgement:
-        if surely is None and (not gaps.untried or lines is wide):
+        if surely is None and (lines is wide or (comes and not gaps.untried)):
             names = ", ".join(line.scenario.name for line in wide.starts)
             return case.fails(
                 f"its reset is never released ({names})",
                 mend="let every detector that resets it let go within the supply in service",
             )
-        courses = _courses(lines, rails)
+        every = _courses(lines, rails)
+        courses: Sequence[Timeline] = every
+        if gaps.facts or gaps.lone:
+            other = wide.at_best if lines is wide else wide
+            courses = with_certain_releases(lines, every, other, _courses(other, rails), load.id)
+        if lines is wide and len(courses) < len(every):
+            return case.fails("it is not known whether its reset is released again", mend="give what asserts it")
         least = worst(release_slack(line, load.id) for line in courses)
         if least is None or surely is None:
             return case.passes("it is not known when its reset is released")
@@ -153,6 +161,8 @@ def no_unknown_interval(reset: Reset, case: Case) -> Judgement:
             if spans:
                 return _unknown(reset, case, lines, max(spans, key=_length))
         tried = len(lines.starts) + len(lines.falls) + len(alone) + len(dipping)
+        if lines is wide and not tried:
+            return case.fails("nothing that the supplies do can be tried", mend="give what drives it, and its rails")
         return case.passes(f"known in {tried} start-ups, falls and dips", at="driven_by")
 
     return judged_in_time(case, gaps, judge)

@@ -253,7 +253,8 @@ class Timelines:
                 facts.update(dict.fromkeys(self._made_lacks(name)))
         for name in (*falling, *dipping):
             if (ramp := self.ramps.by_rail.get(name)) is not None:
-                (facts if ramp.can_fall else not_tried).update(dict.fromkeys(ramp.lacks.steepest))
+                # Less steep may be worse for how it comes back, not for how it goes.
+                (not_tried if scenes or not ramp.can_fall else facts).update(dict.fromkeys(ramp.lacks.steepest))
                 not_tried.update(dict.fromkeys(ramp.lacks.fast_rise if name in dipping else ()))
         return Gaps(tuple(facts), tuple(lone), tuple(not_tried))
 
